@@ -67,7 +67,8 @@ def as_values(
     except (TypeError, ValueError) as cause:
         if isinstance(cause, LaplaceVerifyError):
             raise
-        raise error(f"{name} must be real numbers of shape ({count},), got {type(values).__name__}") from cause
+        got = type(values).__name__
+        raise error(f"{name} must be real numbers of shape ({count},), got {got}") from cause
     if array.ndim == 0:
         return np.full(count, float(array))
     if array.shape == (count, 1):

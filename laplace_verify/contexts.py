@@ -1,9 +1,10 @@
 """Number contexts: a formula is written once and runs on float64 arrays and on mpmath numbers.
 
 A formula takes a context `ctx` and uses mpmath's function names: ``ctx.exp``, ``ctx.log``, ``ctx.atan2``,
-``ctx.pi``. `FLOAT` maps them to numpy ufuncs; `precise(digits)` is an mpmath context of its own, so no global
-precision is ever changed. Numbers of a precise context also answer numpy's ufuncs (numpy calls a method of the
-ufunc's name on objects), which lets a user's ``np.exp(x) * np.cos(y)`` be evaluated to any number of digits.
+``ctx.pi``. `FLOAT` maps them to numpy ufuncs; `precise(digits)` is an mpmath context of its own, so no
+global precision is ever changed. Numbers of a precise context also answer numpy's ufuncs (numpy calls a
+method of the ufunc's name on objects), which lets a user's ``np.exp(x) * np.cos(y)`` be evaluated to any
+number of digits.
 """
 
 from __future__ import annotations
