@@ -1,0 +1,464 @@
+"""What every field can do: a function u with div(K grad u) = 0, its gradient, and as many digits as asked for.
+
+A family of fields is a frozen dataclass of parameters with three formulas written once over a number context
+(`laplace_verify.contexts`): ``_value(ctx, x, side)``, ``_gradient(ctx, x, side)`` and, where u is not defined
+everywhere, ``_valid(points)``. Here is the rest: checks of what comes in, blocks, refusal of points where u has
+no value, and precision that is raised until two evaluations agree.
+"""
+
+from __future__ import annotations
+
+import math
+from abc import ABC, abstractmethod
+from collections.abc import Callable, Iterable
+from fractions import Fraction
+from functools import lru_cache
+from typing import TYPE_CHECKING, Any, ClassVar
+
+import mpmath
+import numpy as np
+import numpy.typing as npt
+
+from laplace_verify.arrays import Array, BoolArray, as_points, blocks
+from laplace_verify.contexts import FLOAT, Number, Precise, precise
+from laplace_verify.errors import FieldError
+from laplace_verify.fields.exact import exact_point
+from laplace_verify.fields.singular import Basis, Cut, Enclosure, Singularity
+
+if TYPE_CHECKING:
+    from typing import Self
+
+__all__ = ["Field"]
+
+Side = npt.ArrayLike | None
+
+
+class Field(ABC):
+    """A harmonic function of `dim` coordinates: value, gradient, singular points, exact parameters.
+
+    Fields add, subtract and multiply by numbers; they move (`shifted`, `rotated`, `scaled`), invert (`inverted`)
+    and, in the plane, have a conjugate (`conjugate`). Values scale with the field, gradients with value per
+    length; angles are radians.
+
+    >>> from laplace_verify import fields
+    >>> u = 2 * fields.affine((1, 0)) - fields.polynomial(2)
+    >>> u.value([[1.0, 2.0], [0.5, 0.0], [0.0, 0.0]]).tolist()
+    [5.0, 0.75, 0.0]
+    """
+
+    __slots__ = ()
+
+    kind: ClassVar[str] = ""  # the name in a specification, set by `specs.registered`
+
+    # -- what a family says about itself -------------------------------------------------------------------
+
+    @property
+    @abstractmethod
+    def dim(self) -> int:
+        """Number of space dimensions, 1, 2 or 3."""
+
+    @property
+    @abstractmethod
+    def formula(self) -> str:
+        """The field in one readable line."""
+
+    @property
+    def singularities(self) -> tuple[Singularity, ...]:
+        """Points where the field is not smooth."""
+        return ()
+
+    @property
+    def cuts(self) -> tuple[Cut, ...]:
+        """Branch cuts (plane fields only)."""
+        return ()
+
+    @property
+    def basis(self) -> Basis:
+        """Why its digits can be believed, see `Enclosure`."""
+        return "closed form"
+
+    @property
+    def opaque(self) -> bool:
+        """Whether the field is a user's own function, whose harmonicity and smoothness are unknown."""
+        return False
+
+    @property
+    def degree(self) -> int | None:
+        """Total degree if the field is a polynomial, else None."""
+        return None
+
+    @property
+    def growth(self) -> float:
+        """Exponent e of |u| = O(|x|**e) far away; 0 also stands for log |x|; inf if not of this form."""
+        return math.inf if self.degree is None else float(self.degree)
+
+    @abstractmethod
+    def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:
+        """Return u at coordinates x: arrays (n,) if ctx is FLOAT, else numbers of the precise context.
+
+        `side` is None, or +1, -1 (0: not on a cut) per point.
+        """
+
+    @abstractmethod
+    def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:
+        """Return the d partial derivatives at coordinates x, as `_value` does."""
+
+    def _valid(self, points: Array) -> BoolArray:
+        """Return at which of the points (n, d) the formulas hold, shape (n,)."""
+        return np.ones(len(points), dtype=bool)
+
+    # -- float64 -------------------------------------------------------------------------------------------
+
+    def value(self, points: npt.ArrayLike, side: Side = None) -> Array:
+        """Return u, shape (n,), at points of shape (n, d).
+
+        Parameters
+        ----------
+        points : array_like, shape (n, d)
+            Finite coordinates; in 1-D a list of n numbers will do.
+        side : None, +1, -1 or array_like of them, shape (n,)
+            On which side of a branch cut a point on it is meant: +1 is the left of the cut's direction.
+
+        Raises
+        ------
+        FieldError
+            At a pole, a logarithmic or a jump point; on a cut without `side`; where the formula does not hold;
+            if the shape is wrong or a coordinate is not finite.
+        """
+        points = as_points(points, self.dim, error=FieldError)
+        side = _as_sides(side, len(points))
+        values = np.empty(len(points))
+        for block in blocks(len(points)):
+            part, lip = points[block], None if side is None else side[block]
+            self._refuse(part, lip, derivative=False, first=block.start)
+            with np.errstate(all="ignore"):  # whatever is not finite is refused by name below
+                values[block] = self._value(FLOAT, _columns(part), lip)
+            self._refuse_infinite(part, np.isfinite(values[block]), first=block.start)
+        return values
+
+    def gradient(self, points: npt.ArrayLike, side: Side = None) -> Array:
+        """Return grad u, shape (n, d), at points of shape (n, d); parameters as in `value`.
+
+        Raises
+        ------
+        FieldError
+            As `value`, and at a singular point r**e with e < 1, where the gradient is infinite.
+        """
+        points = as_points(points, self.dim, error=FieldError)
+        side = _as_sides(side, len(points))
+        gradients = np.empty(points.shape)
+        for block in blocks(len(points)):
+            part, lip = points[block], None if side is None else side[block]
+            self._refuse(part, lip, derivative=True, first=block.start)
+            with np.errstate(all="ignore"):
+                for axis, derivative in enumerate(self._gradient(FLOAT, _columns(part), lip)):
+                    gradients[block, axis] = derivative
+            self._refuse_infinite(part, np.isfinite(gradients[block]).all(axis=1), first=block.start)
+        return gradients
+
+    # -- any number of digits ------------------------------------------------------------------------------
+
+    def at(self, point: Iterable[Number] | Number, digits: int = 30, side: int | None = None) -> mpmath.mpf:
+        """Return u at one point with `digits` correct digits, as a number that carries them all.
+
+        Coordinates may be ints, floats (their exact binary value), strings such as "0.1" or "1/3", fractions or
+        mpmath numbers. The working precision is raised until two evaluations agree; where u vanishes by
+        cancellation the agreement is absolute.
+
+        >>> from laplace_verify import fields
+        >>> str(fields.polynomial(2).at(("0.1", "0.3"), digits=20))
+        '-0.08'
+
+        Raises
+        ------
+        FieldError
+            As `value`; or if `digits` is not an integer from 1 to 400.
+        """
+        return self._settled(point, digits, side, derivative=False)[0][0]
+
+    def gradient_at(
+        self, point: Iterable[Number] | Number, digits: int = 30, side: int | None = None
+    ) -> tuple[mpmath.mpf, ...]:
+        """Return the d components of grad u at one point with `digits` correct digits each; see `at`.
+
+        Raises
+        ------
+        FieldError
+            As `gradient`; or if `digits` is not an integer from 1 to 400.
+        """
+        return self._settled(point, digits, side, derivative=True)[0]
+
+    def enclosure(
+        self, point: Iterable[Number] | Number, digits: int = 30, side: int | None = None
+    ) -> Enclosure:
+        """Return u at one point with an error radius and its basis.
+
+        The radius is the difference of evaluations at two working precisions plus 10**-digits of the value.
+
+        >>> from laplace_verify import fields
+        >>> value, radius, basis = fields.log_source((0, 0)).enclosure((1, 1), digits=20)
+        >>> abs(value - mpmath.log(2) / 2) <= radius, radius < 1e-20, basis
+        (True, True, 'closed form')
+
+        Raises
+        ------
+        FieldError
+            As `at`.
+        """
+        (value,), (difference,) = self._settled(point, digits, side, derivative=False)
+        with mpmath.workdps(15):
+            radius = abs(difference) + abs(value) * mpmath.mpf(10) ** -digits
+        return Enclosure(value, +radius, self.basis)
+
+    def _settled(
+        self, point: Iterable[Number] | Number, digits: int, side: int | None, *, derivative: bool
+    ) -> tuple[tuple[mpmath.mpf, ...], tuple[mpmath.mpf, ...]]:
+        """Return components of u or grad u, and their change at the last raise of the working precision."""
+        precise(digits)  # refuses a number of digits out of range
+        place = exact_point((point,) if _is_number(point) else point, "point", (self.dim,))  # type: ignore[arg-type]
+        lip = _as_sides(side, 1)
+        row = np.array([[float(c) for c in place]])
+        self._refuse(row, lip, derivative=derivative, first=None, place=place)
+        one_side = None if lip is None else int(lip[0])
+
+        def evaluate(ctx: Precise) -> list[Any]:
+            x = tuple(ctx.number(c) for c in place)
+            try:
+                if derivative:
+                    return [_real(ctx, g, place) for g in self._gradient(ctx, x, one_side)]
+                return [_real(ctx, self._value(ctx, x, one_side), place)]
+            except (ZeroDivisionError, OverflowError, ValueError) as cause:
+                if isinstance(cause, FieldError):
+                    raise
+                raise FieldError(f"{self.formula} has no value at {_text(place)}: {cause}") from cause
+
+        values, changes = _agreeing(evaluate, digits, self.formula)
+        as_global = mpmath.mp.make_mpf  # a number of the global type that keeps every digit
+        return tuple(as_global(v._mpf_) for v in values), tuple(as_global(c._mpf_) for c in changes)
+
+    # -- refusals ------------------------------------------------------------------------------------------
+
+    def _refuse(
+        self, points: Array, side: Array | None, *, derivative: bool, first: int | None, place: Any = None
+    ) -> None:
+        """Raise FieldError at the first point where the field has no value (or no gradient)."""
+        for singularity in self.singularities:
+            hit = _equal(points, singularity.point, place)
+            if not hit.any():
+                continue
+            where = _name(points, hit, first, place)
+            if singularity.kind == "jump":
+                raise FieldError(f"{self.formula} jumps at {where}: it has no single value there")
+            if singularity.kind != "power":
+                raise FieldError(f"{self.formula} is infinite at {where}; leave this point out")
+            if derivative and singularity.exponent < 1:
+                raise FieldError(
+                    f"the gradient of {self.formula} is infinite at {where}: "
+                    f"u ~ r^{singularity.exponent:.4g} there; leave this point out"
+                )
+        for cut in self.cuts:
+            hit = cut.meets(points) if place is None else np.array([_on_cut(cut, place)])
+            if side is not None:
+                hit &= side == 0
+            if hit.any():
+                raise FieldError(
+                    f"{self.formula} has two values at {_name(points, hit, first, place)}, which lies on its "
+                    "branch cut: say side=+1 (left of the cut's direction) or side=-1"
+                )
+        valid = self._valid(points)
+        if not valid.all():
+            raise FieldError(f"{self.formula} is not defined at {_name(points, ~valid, first, place)}")
+
+    def _refuse_infinite(self, points: Array, finite: BoolArray, *, first: int) -> None:
+        """Raise FieldError at the first point whose result is not finite."""
+        if not finite.all():
+            raise FieldError(
+                f"{self.formula} is not a finite float64 at {_name(points, ~finite, first, None)}: "
+                "the point is singular or too far out"
+            )
+
+    # -- algebra and motions: each builds a field of its own family ----------------------------------------
+
+    def __add__(self, other: Field) -> Field:
+        """Return the sum of two fields of the same dimension."""
+        from laplace_verify.fields.combinations import combined
+
+        return combined((1, self), (1, other)) if isinstance(other, Field) else NotImplemented
+
+    def __sub__(self, other: Field) -> Field:
+        """Return the difference of two fields of the same dimension."""
+        from laplace_verify.fields.combinations import combined
+
+        return combined((1, self), (-1, other)) if isinstance(other, Field) else NotImplemented
+
+    def __mul__(self, factor: Number) -> Field:
+        """Return the field times a number (int, float, Fraction, mpf or a string such as "2/3")."""
+        from laplace_verify.fields.combinations import combined
+
+        return NotImplemented if isinstance(factor, Field) else combined((factor, self))
+
+    def __rmul__(self, factor: Number) -> Field:
+        """Return a number times the field."""
+        return self.__mul__(factor)
+
+    def __neg__(self) -> Field:
+        """Return minus the field."""
+        return self.__mul__(-1)
+
+    __array_ufunc__ = None  # numpy scalars leave `*` to `__rmul__` instead of looping over the field
+
+    def shifted(self, vector: Iterable[Number]) -> Field:
+        """Return u(x - vector): the picture of u moved by `vector`."""
+        from laplace_verify.fields.motions import Shifted
+
+        return Shifted(field=self, vector=tuple(vector))  # type: ignore[arg-type]  # made exact there
+
+    def rotated(self, angle: Number, axis: Iterable[Number] | None = None) -> Field:
+        """Return the picture of u turned by `angle` radians, counter-clockwise about the origin or `axis` (3-D)."""
+        from laplace_verify.fields.motions import Rotated
+
+        return Rotated(field=self, angle=angle, axis=None if axis is None else tuple(axis))  # type: ignore[arg-type]
+
+    def scaled(self, factor: Number) -> Field:
+        """Return u(x / factor): the picture of u enlarged by `factor` > 0."""
+        from laplace_verify.fields.motions import Scaled
+
+        return Scaled(field=self, factor=factor)  # type: ignore[arg-type]
+
+    def inverted(self, centre: Iterable[Number], radius: Number) -> Field:
+        """Return the Kelvin transform of u in the circle or sphere about `centre`, see `kelvin.Inverted`."""
+        from laplace_verify.fields.kelvin import Inverted
+
+        return Inverted(field=self, centre=tuple(centre), radius=radius)  # type: ignore[arg-type]
+
+    def conjugate(self) -> Field:
+        """Return v with u + i v analytic: v_x = -u_y, v_y = u_x (in the plane, where it is single-valued).
+
+        If u is a potential with velocity grad u, v is the stream function.
+
+        Raises
+        ------
+        FieldError
+            If the field is not a plane one, or has no single-valued conjugate in closed form.
+        """
+        raise FieldError(f"{self.formula} has no conjugate in closed form" + self._why_no_conjugate())
+
+    def _why_no_conjugate(self) -> str:
+        """Return the reason, for the message of `conjugate`."""
+        return "" if self.dim == 2 else f": conjugates belong to the plane, this field is {self.dim}-D"
+
+    # -- files ---------------------------------------------------------------------------------------------
+
+    def spec(self) -> dict[str, Any]:
+        """Return the field as plain data (dict, list, str, int, float) that `from_spec` turns back exactly.
+
+        Raises
+        ------
+        FieldError
+            If a part of it is a user's function, which cannot be written to a file.
+        """
+        from laplace_verify.fields.specs import to_spec
+
+        return to_spec(self)
+
+    @classmethod
+    def _from_parameters(cls, parameters: dict[str, Any]) -> Self:
+        """Return the field of this family with the given parameters, read from a specification."""
+        return cls(**parameters)
+
+
+def _agreeing(
+    evaluate: Callable[[Precise], list[Any]], digits: int, formula: str
+) -> tuple[list[Any], list[Any]]:
+    """Raise the working precision until two evaluations agree to `digits` digits; return value and change.
+
+    A component that vanishes by cancellation never agrees relatively: once the precision is more than twice
+    what was asked for, it is accepted if it is below 10**-(digits + 60).
+    """
+    previous = evaluate(_working(digits))
+    extra = 10
+    while True:
+        ctx = _working(digits + extra)
+        current = evaluate(ctx)
+        changes = [a - b for a, b in zip(current, previous, strict=True)]
+        unit, zero = ctx.mpf(10) ** -(digits + 2), ctx.mpf(10) ** -(digits + 60)
+        settled = all(
+            abs(change) <= unit * abs(value) or (extra > digits + 80 and abs(value) <= zero)
+            for change, value in zip(changes, current, strict=True)
+        )
+        if settled:
+            return current, changes
+        if extra > 8 * digits + 2000:
+            raise FieldError(f"{formula} does not settle to {digits} digits at {digits + extra} digits")
+        previous, extra = current, 2 * extra
+
+
+@lru_cache(maxsize=64)
+def _working(digits: int) -> Precise:
+    """Return the context for a working precision, which may exceed what a caller can ask for."""
+    return Precise(digits)
+
+
+def _real(ctx: Precise, number: Any, place: Any) -> Any:
+    """Return a result as a real number of the context."""
+    result = ctx.convert(number)
+    if not (isinstance(result, ctx.mpf) and ctx.isfinite(result)):
+        raise FieldError(f"the value at {_text(place)} is {ctx.nstr(result, 5)}, not a finite real number")
+    return result
+
+
+def _columns(points: Array) -> tuple[Array, ...]:
+    """Return the coordinates as contiguous arrays."""
+    return tuple(np.ascontiguousarray(points.T))
+
+
+def _as_sides(side: Side, count: int) -> Array | None:
+    """Return sides as an array (count,) of +1, -1 (0: not on a cut), or None.
+
+    Raises
+    ------
+    FieldError
+        If the shape is neither () nor (count,), or an entry is not one of these.
+    """
+    if side is None:
+        return None
+    try:
+        sides = np.asarray(side, dtype=np.float64)
+    except (TypeError, ValueError) as cause:
+        raise FieldError(f"side must be None, +1, -1 or an array of them, got {side!r}") from cause
+    if sides.shape not in ((), (count,)):
+        raise FieldError(f"side must be one number or have shape ({count},), got {sides.shape}")
+    if not np.isin(sides, (-1.0, 0.0, 1.0)).all():
+        raise FieldError("side must be None, +1 or -1 (0 for points that are not on a cut)")
+    return np.ascontiguousarray(np.broadcast_to(sides, (count,)))
+
+
+def _equal(points: Array, singular: tuple[float, ...], place: Any) -> BoolArray:
+    """Return which points are the singular one; a precise point is compared exactly."""
+    if place is None:
+        return np.asarray((points == singular).all(axis=1))
+    return np.array([all(a == b for a, b in zip(place, singular, strict=True))])
+
+
+def _on_cut(cut: Cut, place: Any) -> bool:
+    """Return whether a precise point lies on a cut."""
+    ctx = _working(60)
+    return cut.meets_exactly(*(ctx.number(c) for c in place))
+
+
+def _is_number(point: Any) -> bool:
+    """Return whether a single coordinate was given in place of a point."""
+    return isinstance(point, (int, float, str, Fraction)) or hasattr(point, "_mpf_") or np.ndim(point) == 0
+
+
+def _name(points: Array, hit: BoolArray, first: int | None, place: Any) -> str:
+    """Return "point 7 = (0.0, 1.0)" for the first point that is hit."""
+    if place is not None:
+        return f"point {_text(place)}"
+    row = int(np.flatnonzero(hit)[0])
+    return f"point {row + (first or 0)} = {tuple(points[row].tolist())}"
+
+
+def _text(place: tuple[Any, ...]) -> str:
+    """Return a precise point in a message."""
+    return "(" + ", ".join(str(c)[:30] for c in place) + ")"
