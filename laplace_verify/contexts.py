@@ -42,7 +42,7 @@ class FloatContext:
     sin, cos, tan, sinh, cosh, tanh = np.sin, np.cos, np.tan, np.sinh, np.cosh, np.tanh
     asin, acos, atan, atan2 = np.arcsin, np.arccos, np.arctan, np.arctan2
     asinh, acosh, atanh, hypot = np.arcsinh, np.arccosh, np.arctanh, np.hypot
-    fabs, where = np.abs, np.where
+    fabs, where = np.abs, staticmethod(np.where)  # np.where would bind to the instance
     pi = math.pi
 
     @staticmethod
