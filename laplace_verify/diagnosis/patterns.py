@@ -1,0 +1,101 @@
+"""How the failing cases fail: a limit that is wrong, whole orders lost, or the gradient alone.
+
+The loss of a norm is its expected order less the observed one. A consistent scheme with a closure one order
+too low loses one; a wrong sign, coefficient or constant leaves an error that does not shrink at all
+(observed order near 0). Score: share of the failing cases that show the pattern, times 0.9, so that a
+feature that separates the cases perfectly comes first.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from statistics import median
+
+from laplace_verify.diagnosis.finding import Finding, case_list, counted
+from laplace_verify.measure.results import Order, Study
+from laplace_verify.measure.verdict import Verdict
+
+__all__ = ["patterns", "short_norms"]
+
+_WEIGHT = 0.9
+_SHARE = 0.6
+_NEAR = 0.3
+
+
+def short_norms(study: Study) -> dict[str, Order]:
+    """Return the deciding norms in which a study falls short, all with a number as observed order."""
+    return {
+        norm: order
+        for norm, order in study.orders.items()
+        if order.decides and order.verdict is Verdict.FAIL and order.observed is not None
+    }
+
+
+def patterns(failing: Sequence[Study]) -> list[Finding]:
+    """Return the manners of failing that most failing cases share."""
+    found: list[Finding | None] = [
+        _pattern(
+            failing,
+            _without_limit,
+            "do not get smaller errors by refinement: they converge to a wrong limit, or stop at a floor. Typical of "
+            "a wrong sign, coefficient, normal or constant, or of an iteration that stops early",
+        ),
+        _pattern(
+            failing,
+            lambda study: any(_lost(order, 1.0) for order in short_norms(study).values()),
+            "lose one order. Typical of one-sided differences, of data taken half a cell away, of a closure "
+            "one order lower at the boundary, or of straight edges in place of curves",
+        ),
+        _pattern(
+            failing,
+            lambda study: bool(short_norms(study)) and all(_of_gradient(norm) for norm in short_norms(study)),
+            "fall short in gradient or flux only, the values converge as expected: look at how the gradient "
+            "is recovered",
+            "is recovered",
+        ),
+    ]
+    return [finding for finding in found if finding is not None]
+
+
+def _pattern(failing: Sequence[Study], shows: Callable[[Study], bool], text: str) -> Finding | None:
+    """Return a finding if enough failing studies show the pattern."""
+    showing = [study for study in failing if shows(study)]
+    if not showing or len(showing) < _SHARE * len(failing):
+        return None
+    orders = [o.observed for study in showing for o in short_norms(study).values() if o.observed is not None]
+    who = counted(len(showing), len(failing), "failing cases")
+    evidence = f"observed orders: median {median(orders):.2f}, from {min(orders):.2f} to {max(orders):.2f}; "
+    return Finding(
+        text=f"{who[0].upper()}{who[1:]} {_agree(text, len(showing), len(failing))}",
+        evidence=evidence + f"cases: {case_list(showing)}",
+        score=_WEIGHT * len(showing) / len(failing),
+        studies=tuple(showing),
+    )
+
+
+def _agree(text: str, count: int, whole: int) -> str:
+    """Put the verb into the singular where one case is spoken of."""
+    if count > 1 and whole > 1:
+        return text
+    first, _, rest = text.partition(" ")
+    return f"{'does' if first == 'do' else first + 's'} {rest}".replace(
+        "they converge", "it converges"
+    ).replace("or stop at", "or stops at")
+
+
+def _without_limit(study: Study) -> bool:
+    return bool(short_norms(study)) and all(_flat(order) for order in short_norms(study).values())
+
+
+def _flat(order: Order) -> bool:
+    return order.observed is not None and order.observed < _NEAR
+
+
+def _lost(order: Order, loss: float) -> bool:
+    if order.observed is None or not isinstance(order.expected, float | int) or _flat(order):
+        return False
+    return abs(order.expected - order.observed - loss) < _NEAR
+
+
+def _of_gradient(norm: str) -> bool:
+    return norm in ("H1-semi", "energy") or norm.startswith(("flux", "fluxdensity"))

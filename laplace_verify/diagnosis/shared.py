@@ -1,0 +1,140 @@
+"""Features that failing cases share and passing cases lack.
+
+Score of a feature: a/F - b/P, where a of F failing and b of P passing cases have it. Beside it stands
+Fisher's exact probability (one-sided) of so uneven a split if the feature had nothing to do with failing,
+
+    p = sum_{k >= a} C(a + b, k) C(F + P - a - b, F - k) / C(F + P, F).
+
+Two features together are named only if they separate the groups better than either alone. Features that the
+same cases have cannot be told apart and are named together.
+
+References
+----------
+Fisher 1922, "On the interpretation of chi-squared from contingency tables, and the calculation of P", J.
+Royal Statistical Society 85, 87-94 (the test; from memory, unchecked).
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from itertools import combinations
+
+from scipy.stats import hypergeom
+
+from laplace_verify.diagnosis.finding import Finding, case_list, counted, listed
+from laplace_verify.measure.results import Study
+
+__all__ = ["feature_names", "shared_features"]
+
+_LOWEST_SCORE = 0.3
+_GAIN_OF_A_PAIR = 0.1
+_LIMIT = 5
+
+
+def feature_names(study: Study) -> frozenset[str]:
+    """Return the features a study has, as words: true ones by name, others as "name: value".
+
+    >>> from laplace_verify.measure.verdict import Verdict
+    >>> study = Study(solver="s", case_id="c", case_title="", verdict=Verdict.PASS, sizes=[], seed=0,
+    ...               features={"Neumann condition": True, "tensor": False, "dimension": 2.0, "shape":
+    "disc"}) >>> sorted(feature_names(study)) ['Neumann condition', 'dimension: 2', 'shape: disc']
+    """
+    names = set()
+    for name, value in study.features.items():
+        if value is True:
+            names.add(name)
+        elif isinstance(value, str):
+            names.add(f"{name}: {value}")
+        elif isinstance(value, int | float) and not isinstance(value, bool):
+            names.add(f"{name}: {value:g}")
+    return frozenset(names)
+
+
+def shared_features(
+    bad: Sequence[Study], good: Sequence[Study], bad_word: str, good_word: str
+) -> list[Finding]:
+    """Return what sets the `bad` studies apart from the `good` ones, best first."""
+    if not bad:
+        return []
+    if not good:
+        return [_no_contrast(bad, bad_word, good_word)]
+    features = {id(study): feature_names(study) for study in (*bad, *good)}
+    groups: dict[tuple[frozenset[int], frozenset[int]], list[str]] = {}
+    for name in sorted(set().union(*(features[id(study)] for study in bad))):
+        have_bad = frozenset(k for k, study in enumerate(bad) if name in features[id(study)])
+        have_good = frozenset(k for k, study in enumerate(good) if name in features[id(study)])
+        groups.setdefault((have_bad, have_good), []).append(name)
+    single = {key: _score(key, len(bad), len(good)) for key in groups}
+    found = [
+        (single[key], key, names, False) for key, names in groups.items() if single[key] >= _LOWEST_SCORE
+    ]
+    found += _pairs(groups, single, len(bad), len(good))
+    found.sort(key=lambda entry: (-entry[0], entry[3], entry[2]))
+    words = (bad_word, good_word)
+    return [_finding(score, key, names, pair, bad, good, words) for score, key, names, pair in found[:_LIMIT]]
+
+
+_Key = tuple[frozenset[int], frozenset[int]]
+_Found = tuple[float, _Key, list[str], bool]
+
+
+def _score(key: _Key, bad: int, good: int) -> float:
+    return len(key[0]) / bad - len(key[1]) / good
+
+
+def _pairs(groups: dict[_Key, list[str]], single: dict[_Key, float], bad: int, good: int) -> list[_Found]:
+    """Return pairs of features, had by most failing cases, that separate better than either feature."""
+    common = [key for key in groups if len(key[0]) >= 0.7 * bad and len(key[0]) > 1]
+    best: dict[_Key, _Found] = {}
+    for one, two in combinations(common, 2):
+        both = (one[0] & two[0], one[1] & two[1])
+        score = _score(both, bad, good)
+        if both in groups or score < max(single[one], single[two]) + _GAIN_OF_A_PAIR or score < _LOWEST_SCORE:
+            continue
+        names = [groups[one][0], groups[two][0]]
+        if both not in best or names < best[both][2]:
+            best[both] = (score, both, names, True)
+    return sorted(best.values(), key=lambda entry: (-entry[0], entry[2]))[:2]
+
+
+def _finding(
+    score: float,
+    key: _Key,
+    names: list[str],
+    pair: bool,
+    bad: Sequence[Study],
+    good: Sequence[Study],
+    words: tuple[str, str],
+) -> Finding:
+    """Put one feature, or one group of features that cannot be told apart, into words."""
+    with_it = [bad[k] for k in sorted(key[0])]
+    counts = f"{counted(len(key[0]), len(bad), f'{words[0]} cases')} {_have(len(key[0]), len(bad))}"
+    others = counted(len(key[1]), len(good), words[1]) + (" too" if len(key[1]) == len(good) else "")
+    text = f"{' together with '.join(names) if pair else names[0]}: {counts}, {others}"
+    if not pair and len(names) > 1:
+        text += f". The same cases have {listed(names[1:], 4)}: these cases cannot tell them apart"
+    a, b = len(key[0]), len(key[1])
+    chance = float(hypergeom.sf(a - 1, len(bad) + len(good), a + b, len(bad)))
+    evidence = (
+        f"score {a}/{len(bad)} - {b}/{len(good)} = {score:.2f}; "
+        f"probability of so uneven a split by chance {chance:.2g}; "
+        f"cases: {case_list(with_it)}"
+    )
+    if b:
+        evidence += f"; {words[1]} with it: {case_list([good[k] for k in sorted(key[1])])}"
+    return Finding(text=text, evidence=evidence, score=score, studies=tuple(with_it))
+
+
+def _have(part: int, whole: int) -> str:
+    return "has it" if whole == 1 or part == 1 else "have it"
+
+
+def _no_contrast(bad: Sequence[Study], bad_word: str, good_word: str) -> Finding:
+    """Say that nothing can be set apart when no case is good."""
+    common = sorted(frozenset.intersection(*(feature_names(study) for study in bad)))
+    text = (
+        f"None of the cases is {good_word} to compare with: look first at what every case uses "
+        "(the equation inside, the reported h, the declared order, how the answer is handed back)"
+    )
+    evidence = f"{len(bad)} {bad_word}: {case_list(bad)}; all share: {listed(common, 8) or 'no feature'}"
+    return Finding(text=text, evidence=evidence, score=0.5, studies=tuple(bad))
