@@ -1,0 +1,69 @@
+"""Cutting the pieces of a boundary at fractions of their length, and the angles at which pieces meet."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator, Mapping, Sequence
+
+import numpy as np
+
+from laplace_verify.arrays import Array
+from laplace_verify.errors import GeometryError, nearest_names
+from laplace_verify.geometry.boundary import Boundary, Curve
+
+__all__ = ["check_fractions", "junction_openings", "split_piece"]
+
+SHORTEST = 1e-6  # least length of a part, relative to the whole piece
+
+
+def check_fractions(
+    splits: Mapping[str, Sequence[float]], whole: Mapping[str, Boundary]
+) -> tuple[tuple[str, tuple[float, ...]], ...]:
+    """Return the splits as sorted tuples, refusing unknown pieces, surfaces and fractions that do not rise."""
+    checked = []
+    for name, values in sorted(splits.items()):
+        if name not in whole:
+            raise GeometryError(f"cannot split {name!r}: no such piece; {nearest_names(name, whole)}")
+        if not isinstance(whole[name], Curve):
+            raise GeometryError(f"cannot split {name!r}: only curves and straight sides in 2-D can be split")
+        try:
+            fractions = tuple(float(value) for value in values)
+        except (TypeError, ValueError) as cause:
+            raise GeometryError(f"fractions of {name!r} must be a list of numbers, got {values!r}") from cause
+        gaps = np.diff([0.0, *fractions, 1.0])
+        if not fractions or not (gaps >= SHORTEST).all():
+            raise GeometryError(
+                f"fractions of {name!r} must rise strictly inside (0, 1), at least {SHORTEST:g} apart, "
+                f"got {list(fractions)}"
+            )
+        checked.append((name, fractions))
+    return tuple(checked)
+
+
+def split_piece(piece: Boundary, fractions: Sequence[float]) -> tuple[list[Boundary], list[Boundary]]:
+    """Return the parts of a piece in order of their numbers, and in order of travel."""
+    if not fractions or not isinstance(piece, Curve):
+        return [piece], [piece]
+    edges = [0.0, *fractions, 1.0]
+    parts: list[Boundary] = []
+    for k, (start, stop) in enumerate(zip(edges[:-1], edges[1:], strict=True), start=1):
+        span = (start, stop) if piece.rising else (1.0 - stop, 1.0 - start)
+        parts.append(piece.part(*span, f"{piece.name}-{k}"))
+    return parts, parts if piece.rising else parts[::-1]
+
+
+def junction_openings(travelled: Sequence[Boundary]) -> Iterator[tuple[str, str, Array, float]]:
+    """Yield (piece, next piece, corner (1, 2), interior angle) around a closed loop of curves.
+
+    Turning left by ``turn`` leaves the interior angle ``pi - turn``; a complete turn back is the tip of a slit.
+    """
+    curves = [piece for piece in travelled if isinstance(piece, Curve)]
+    if len(curves) < 2:
+        return
+    for first, second in zip(curves, [*curves[1:], curves[0]], strict=True):
+        arriving, leaving = first.tangents([1.0])[0], second.tangents([0.0])[0]
+        cross = arriving[0] * leaving[1] - arriving[1] * leaving[0]
+        opening = math.pi - math.atan2(cross, float(arriving @ leaving))
+        if opening < 1e-9:
+            opening = 2.0 * math.pi
+        yield first.name, second.name, second.point([0.0]), opening
