@@ -1,0 +1,241 @@
+"""The verdict: the observed order of every deciding norm against the expected one, three-valued.
+
+With tol half of the smallest loss of order to be seen and se the standard error of the fit over K >= 4 levels:
+
+    PASS if p >= p_exp - tol + 2 se and the last pair slope >= p_exp - tol - 2 sqrt(2) sigma / ln(ratio),
+    FAIL if p <= p_exp - tol - 2 se,
+    otherwise INCONCLUSIVE: another level may settle it.
+
+The rule is one-sided: convergence faster than expected passes. Simulated over sequences with noise of 2 to 5 %, next-order
+terms of -50 to 100 % on the coarsest grid and p = 2, sound and one-order-low methods are told apart without an error in
+60000 (below 5e-5 at 95 %); the tests repeat a part of that simulation. An order study cannot see a defect whose
+error is still below the method's own on the finest level.
+
+References
+----------
+The rule and its rates are derived here. Roache 1994, J. Fluids Eng. 116, 405-413, for observed orders.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping, Sequence
+from dataclasses import replace
+
+from laplace_verify.measure.expected import Expectation, is_functional, smallest_loss
+from laplace_verify.measure.orders import OrderFit, fit_order, noise_level, pair_orders
+from laplace_verify.measure.rates import judge_decrease, judge_exponential, stagnation
+from laplace_verify.measure.results import Level, Order
+from laplace_verify.measure.series import MINIMUM_LEVELS, Series, series_of
+from laplace_verify.measure.verdict import Verdict
+
+__all__ = ["combine", "judge", "judge_norm"]
+
+
+def judge(
+    levels: Sequence[Level],
+    expectations: Mapping[str, Expectation],
+    *,
+    kind: str = "other",
+    error_floor: float | None = None,
+    mixed_signs: Mapping[str, str] | None = None,
+) -> dict[str, Order]:
+    """Return norm -> Order for every norm that was measured, from plain numbers alone.
+
+    Parameters
+    ----------
+    levels : sequence of Level
+        Coarsest first.
+    expectations : mapping
+        norm -> Expectation, fixed before the run.
+    kind : str
+        The kind of method (it sets the scatter to assume).
+    error_floor : float, optional
+        The declared relative floor.
+    mixed_signs : mapping, optional
+        Functionals that cannot be judged and why (their signed error passes through zero).
+    """
+    judged = [level for level in levels if level.judged]
+    noise = noise_level(kind, [level.size for level in judged], [level.h for level in judged])
+    orders: dict[str, Order] = {}
+    for norm, expectation in expectations.items():
+        if not any(norm in level.errors for level in levels):
+            continue
+        series = series_of(norm, levels, error_floor)
+        order = judge_norm(series, expectation, noise)
+        if mixed_signs and norm in mixed_signs and not series.exact:
+            order = replace(order, decides=False, verdict=None, note=f"{norm}: {mixed_signs[norm]}")
+        pairs = pair_orders(
+            [level.h for level in levels], [level.errors.get(norm, math.nan) for level in levels]
+        )
+        orders[norm] = replace(order, pairs=pairs)
+    return orders
+
+
+def judge_norm(series: Series, expectation: Expectation, noise: float) -> Order:
+    """Return the order and verdict of one norm (`pairs` is left to the caller)."""
+    expected = expectation.expected
+    if series.exact:
+        return _order(series, expectation, None, Verdict.PASS, "exact to round-off at every size")
+    if expected == "exponential":
+        observed, verdict, words = judge_exponential(series)
+        return replace(_order(series, expectation, None, verdict, words), observed=observed)
+    if expected == "decrease":
+        fit = _fit(series, None, noise)
+        verdict, words = judge_decrease(series)
+        return _order(series, expectation, fit, verdict, words)
+    if not isinstance(expected, float | int):
+        return _order(series, expectation, _fit(series, None, noise), None, "no rate is expected")
+    fit = _fit(series, float(expected), noise)
+    verdict, words = _algebraic(series, float(expected), fit, noise)
+    return _order(series, expectation, fit, verdict, words)
+
+
+def combine(orders: Mapping[str, Order]) -> tuple[Verdict, list[str], list[str]]:
+    """Return verdict, reasons and remarks: every deciding norm must pass and none may fail.
+
+    A functional (flux, quantity) may fail a study but not leave it open: its signed error can pass through zero.
+    """
+    deciding = {norm: order for norm, order in orders.items() if order.decides and order.verdict is not None}
+    remarks = [order.note for norm, order in orders.items() if norm not in deciding and order.note]
+    open_functionals = [
+        norm for norm, order in deciding.items()
+        if is_functional(norm) and order.verdict is Verdict.INCONCLUSIVE
+    ]  # fmt: skip
+    for norm in open_functionals:
+        remarks.append(deciding.pop(norm).note)
+    if not deciding:
+        return Verdict.INCONCLUSIVE, ["theory promises no rate in any norm that could be measured"], remarks
+    verdicts = [order.verdict for order in deciding.values()]
+    reasons = [order.note for order in deciding.values()]
+    if Verdict.FAIL in verdicts:
+        return Verdict.FAIL, reasons, remarks
+    if Verdict.INCONCLUSIVE in verdicts:
+        return Verdict.INCONCLUSIVE, reasons, remarks
+    return Verdict.PASS, reasons, remarks
+
+
+def _fit(series: Series, expected: float | None, noise: float) -> OrderFit | None:
+    """Return the fit over the levels above the floor, None if fewer than three."""
+    if series.above < 3:
+        return None
+    return fit_order(series.h[: series.above], series.errors[: series.above], expected, noise)
+
+
+def _algebraic(series: Series, expected: float, fit: OrderFit | None, noise: float) -> tuple[Verdict, str]:
+    """Return verdict and words for an expected number."""
+    stuck = stagnation(series, expected)
+    if stuck is not None:
+        return stuck
+    least = expected - smallest_loss(expected) / 2
+    if series.at_floor and series.above < MINIMUM_LEVELS:
+        return _down_to_floor(series, least, noise)
+    if fit is None:
+        return Verdict.INCONCLUSIVE, f"only {series.above} levels can be judged; {_advice(series)}"
+    if series.above < MINIMUM_LEVELS:
+        return Verdict.INCONCLUSIVE, f"three levels give an order but no verdict; {_advice(series)}"
+    slopes = pair_orders(series.h[: series.above], series.errors[: series.above])
+    last = slopes[-1]
+    margin = 2 * math.sqrt(2) * noise / math.log(series.h[series.above - 2] / series.h[series.above - 1])
+    holds = last is not None and last >= least - margin
+    if fit.low >= least and holds:
+        return Verdict.PASS, ""
+    stalled = not holds and all(slope is not None and slope >= least for slope in slopes[:-1])
+    if stalled or fit.low >= least:
+        words = (
+            f"stalled: the error falls as expected up to size {series.sizes[series.above - 2]} but only at order "
+            f"{last:.2f} to size {series.sizes[series.above - 1]}. If a solver tolerance or a reduced precision "
+            f"stops it, declare error_floor; if not, {_advice(series)}"
+        )
+        return Verdict.INCONCLUSIVE, words
+    if fit.high <= least:
+        return Verdict.FAIL, ""
+    return Verdict.INCONCLUSIVE, f"too few or too rough levels to tell; {_advice(series)}"
+
+
+def _down_to_floor(series: Series, least: float, noise: float) -> tuple[Verdict, str]:
+    """Return verdict and words where fewer than four levels lie above the floor.
+
+    The slope into the first level at the floor is a lower bound of the order: the floor only adds to the error.
+    """
+    top = series.above
+    h, errors = series.h[: top + 1], series.errors[: top + 1]
+    slopes = [slope for slope in pair_orders(h, errors) if slope is not None]
+    best = max(slopes[-2:], default=math.inf)  # no slope: the error vanishes at the floor
+    if top >= 3:
+        best = max(best, math.log(errors[0] / errors[2]) / math.log(h[0] / h[2]))
+    if best >= least:
+        return Verdict.PASS, f"falls to the floor, at order {best:.2f} or more before it"
+    margin = 2 * math.sqrt(2) * noise / math.log(h[0] / h[1])
+    if top >= 3 and best < least - margin:
+        return Verdict.FAIL, f"falls to the floor, but only at order {best:.2f}"
+    return Verdict.INCONCLUSIVE, f"only {top} levels above the floor; run coarser sizes"
+
+
+def _advice(series: Series) -> str:
+    """Return which size to run next."""
+    if not series.sizes:
+        return "run finer sizes"
+    if len(series.sizes) > 1:
+        ratio = series.sizes[-1] / series.sizes[-2]
+        return f"run a finer size, {round(series.sizes[-1] * ratio)}"
+    return f"run finer sizes, {2 * series.sizes[-1]}, {4 * series.sizes[-1]}, {8 * series.sizes[-1]}"
+
+
+def _order(
+    series: Series, expectation: Expectation, fit: OrderFit | None, verdict: Verdict | None, words: str
+) -> Order:
+    """Assemble an Order and its sentence."""
+    expected = expectation.expected
+    tolerance = smallest_loss(float(expected)) / 2 if isinstance(expected, float | int) else None
+    if verdict is Verdict.PASS and len(series.sizes) < MINIMUM_LEVELS and not series.exact:
+        verdict = Verdict.INCONCLUSIVE
+        words = f"{words}; {_few(series)}" if words else _few(series)
+    return Order(
+        observed=fit.order if fit else None,
+        low=fit.low if fit else None,
+        high=fit.high if fit else None,
+        formal=expectation.formal,
+        expected=expected,
+        decides=expectation.decides,
+        tolerance=tolerance,
+        basis=expectation.basis,
+        verdict=verdict,
+        left_out=series.left_out,
+        note=_sentence(series, expectation, fit, verdict, words, tolerance),
+    )
+
+
+def _few(series: Series) -> str:
+    """Return why a good order over few levels is no PASS."""
+    return f"{len(series.sizes)} levels can be judged, a verdict needs {MINIMUM_LEVELS}; {_advice(series)}"
+
+
+def _sentence(
+    series: Series,
+    expectation: Expectation,
+    fit: OrderFit | None,
+    verdict: Verdict | None,
+    words: str,
+    tolerance: float | None,
+) -> str:
+    """Return, say, "max: formal order 2, expected 2, observed 1.02 [0.95, 1.09] over 4 levels: FAIL (...)"."""
+    parts = []
+    if expectation.formal is not None:
+        formal = expectation.formal
+        parts.append(f"formal order {formal if isinstance(formal, str) else format(formal, '.3g')}")
+    expected = expectation.expected
+    if expected is not None:
+        parts.append(f"expected {expected if isinstance(expected, str) else format(expected, '.3g')}")
+    if fit is not None:
+        parts.append(f"observed {fit.order:.2f} [{fit.low:.2f}, {fit.high:.2f}] over {series.above} levels")
+    text = f"{series.norm}: {', '.join(parts)}" if parts else f"{series.norm}:"
+    if verdict is not None and expectation.decides:
+        text += f": {verdict}"
+    elif verdict is not None or expected is None:
+        text += " (does not decide)"
+    if words:
+        text += f"; {words}"
+    if tolerance is not None and expectation.decides and fit is not None:
+        text += f" (tolerance {tolerance:.3g}; a loss of {2 * tolerance:.3g} or more is to be seen)"
+    return text

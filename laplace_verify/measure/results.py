@@ -1,0 +1,129 @@
+"""What a study leaves behind: plain numbers and words.
+
+Nothing here holds a field or a solver, so a result travels between processes and to JSON as it is, and every
+verdict can be recomputed from it.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from typing import Literal, TypeAlias
+
+from laplace_verify.measure.table import Format, convergence_table
+from laplace_verify.measure.verdict import Verdict
+
+__all__ = ["ErrorMap", "Feature", "Level", "Order", "Rate", "Study"]
+
+Rate: TypeAlias = float | Literal["exponential", "decrease"] | None
+Feature: TypeAlias = bool | float | str | None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Level:
+    """One size: its spacing, its cost and its errors.
+
+    `errors` and `relative` map a norm to ||u_h - u|| and ||u_h - u|| / ||u||. With lengths in L and values in U
+    an L2 error is in U L^(d/2), an H1-semi error in U L^(d/2 - 1); relative errors have no unit. A norm that
+    could not be measured is absent. `moves` maps a piece to the largest distance by which data points were
+    moved onto it, `left_out` is the share of the sample points outside the solver's mesh.
+    """
+
+    size: int
+    h: float
+    unknowns: int
+    seconds: float
+    errors: dict[str, float]
+    relative: dict[str, float]
+    judged: bool = True
+    note: str = ""
+    moves: dict[str, float] = field(default_factory=dict)
+    left_out: float = 0.0
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Order:
+    """Observed against expected order in one norm.
+
+    `formal` is what the author declares, `expected` what remains of it after the regularity of solution and
+    domain: a number, "exponential", "decrease" (theory promises convergence but no rate) or None (theory
+    promises nothing). [`low`, `high`] is observed -+ 2 standard errors. `pairs` holds the order between
+    neighbouring levels (None where undefined), `left_out` the sizes that did not enter the fit, and why.
+    """
+
+    observed: float | None
+    low: float | None
+    high: float | None
+    formal: float | str | None
+    expected: float | str | None
+    decides: bool
+    tolerance: float | None = None
+    note: str = ""
+    basis: str = ""
+    verdict: Verdict | None = None
+    pairs: list[float | None] = field(default_factory=list)
+    left_out: dict[str, str] = field(default_factory=dict)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class ErrorMap:
+    """Signed errors u_h - u at up to 4000 points of one level: where the error sits."""
+
+    size: int
+    points: list[list[float]]
+    errors: list[float]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Study:
+    """One solver on one case at a sequence of sizes, and the verdict.
+
+    `local` maps a place (a piece's name, "corner NAME/NAME", "interior") to the largest error there at every
+    level, None where no point was sampled. `features` describes case and solver in plain words for diagnosis.
+    `crash` is the traceback if the verdict is ERROR. `known` is the author's reason for a known deviation.
+    """
+
+    solver: str
+    case_id: str
+    case_title: str
+    verdict: Verdict
+    sizes: list[int]
+    seed: int
+    levels: list[Level] = field(default_factory=list)
+    orders: dict[str, Order] = field(default_factory=dict)
+    reasons: list[str] = field(default_factory=list)
+    remarks: list[str] = field(default_factory=list)
+    features: dict[str, Feature] = field(default_factory=dict)
+    local: dict[str, list[float | None]] = field(default_factory=dict)
+    error_map: ErrorMap | None = None
+    known: str | None = None
+    crash: str = ""
+
+    @property
+    def deciding(self) -> list[str]:
+        """The norms that decide the verdict."""
+        return [norm for norm, order in self.orders.items() if order.decides]
+
+    def table(self, fmt: Format = "text", norms: list[str] | None = None) -> str:
+        """Return errors and orders by level as "text", "markdown" or "latex".
+
+        Parameters
+        ----------
+        fmt : str
+            "text", "markdown" or "latex" (booktabs).
+        norms : list of str, optional
+            Columns; default: the deciding norms and those of max, L2, H1-semi that were measured.
+
+        Raises
+        ------
+        RecordError
+            If `fmt` or a norm is unknown.
+        """
+        if norms is None:
+            usual = [norm for norm in ("max", "L2", "H1-semi") if norm in self.orders]
+            norms = list(dict.fromkeys(self.deciding + usual))
+        return convergence_table(self.levels, self.orders, norms, fmt)
+
+    def __str__(self) -> str:
+        """Return solver, case, verdict and reasons on a few lines."""
+        lines = [f"{self.solver} on {self.case_id}: {self.verdict}", *(f"  {r}" for r in self.reasons)]
+        return "\n".join(lines)

@@ -1,0 +1,214 @@
+"""Verdicts on sequences of errors: simulated error rates and named failures."""
+
+import math
+
+import numpy as np
+import pytest
+
+from laplace_verify.measure import Level, Verdict
+from laplace_verify.measure.expected import Expectation
+from laplace_verify.measure.judge import combine, judge
+
+SEED = 20431
+
+
+def levels_of(h, errors, norm="max", scale=1.0, judged=True):
+    """Levels of size 1/h."""
+    return [
+        Level(size=round(1 / s), h=float(s), unknowns=10, seconds=0.0, errors={norm: float(e)},
+              relative={norm: float(e) / scale}, judged=judged)
+        for s, e in zip(h, errors, strict=True)
+    ]  # fmt: skip
+
+
+def expect(expected, norm="max", formal=2.0, decides=True):
+    return {norm: Expectation(norm=norm, formal=formal, expected=expected, decides=decides, basis="test")}
+
+
+def verdict_of(h, errors, expected=2.0, norm="max", formal=2.0, **options):
+    orders = judge(levels_of(h, errors, norm), expect(expected, norm, formal), **options)
+    verdict, reasons, _ = combine(orders)
+    return verdict, " ".join(reasons)
+
+
+def halving(levels):
+    return 2.0 ** -(3.0 + np.arange(levels))
+
+
+def simulate(rng, expected, loss, noise, most):
+    """One method refined until the verdict is in: the final verdict."""
+    h = halving(most)
+    size, q = rng.uniform(-0.5, 1.0), rng.choice([1.0, 2.0])
+    errors = h ** (expected - loss) * (1 + size * (h / h[0]) ** q) * np.exp(noise * rng.standard_normal(most))
+    for count in range(4, most + 1):
+        verdict, _ = verdict_of(h[:count], errors[:count], expected)
+        if verdict is not Verdict.INCONCLUSIVE:
+            break
+    return verdict
+
+
+@pytest.mark.parametrize(
+    ("expected", "loss", "noise", "most", "wrong", "undecided"),
+    [
+        # From 60000 simulated sequences of this kind each: no false alarm, no miss, nothing undecided at loss 1.
+        # With 400 sequences here, 0 wrong bounds the rate below 0.75 % at 95 %.
+        (2.0, 1.0, 0.02, 6, 0, 0),
+        (2.0, 1.0, 0.05, 6, 0, 0),
+        (2.0, 1.0, 0.10, 6, 0, 4),
+        # Half an order at orders 1 and 2/3 (reentrant corner): rarely undecided, never wrong.
+        (1.0, 0.5, 0.02, 6, 0, 40),
+        (2 / 3, 0.5, 0.02, 6, 0, 40),
+    ],
+)
+def test_simulated_error_rates(expected, loss, noise, most, wrong, undecided):
+    rng = np.random.default_rng(SEED)
+    sound = [simulate(rng, expected, 0.0, noise, most) for _ in range(200)]
+    faulty = [simulate(rng, expected, loss, noise, most) for _ in range(200)]
+    assert sound.count(Verdict.FAIL) + faulty.count(Verdict.PASS) <= wrong
+    assert sound.count(Verdict.INCONCLUSIVE) + faulty.count(Verdict.INCONCLUSIVE) <= undecided
+
+
+@pytest.mark.parametrize(
+    ("h", "errors", "expected"),
+    [
+        # Five-point scheme: e^x cos y on the unit square; L-shape with r^(2/3) (maximum errors, h = 1/8 ... 1/128).
+        (halving(5), [2.7635e-4, 7.0711e-5, 1.7749e-5, 4.4418e-6, 1.1108e-6], 2.0),
+        (halving(5), [2.011e-2, 1.303e-2, 8.298e-3, 5.249e-3, 3.313e-3], 2 / 3),
+    ],
+)
+def test_published_sequences_pass(h, errors, expected):
+    verdict, reason = verdict_of(h, errors, expected, kind="finite difference")
+    assert verdict is Verdict.PASS, reason
+
+
+def test_one_order_too_low_fails_and_the_reason_names_the_orders():
+    verdict, reason = verdict_of(halving(4), 0.3 * halving(4) ** 1.02)
+    assert verdict is Verdict.FAIL
+    assert "max: formal order 2, expected 2, observed 1.02 [" in reason
+    assert "over 4 levels: FAIL" in reason
+
+
+def test_faster_than_expected_passes():
+    assert verdict_of(halving(4), halving(4) ** 4)[0] is Verdict.PASS
+
+
+def test_a_wrong_limit_fails_as_not_converging():
+    verdict, reason = verdict_of(halving(4), 0.1 + 0.001 * halving(4))
+    assert verdict is Verdict.FAIL
+    assert "does not converge: the error stays at 1.00e-01" in reason
+
+
+def test_growing_errors_fail_as_diverging():
+    verdict, reason = verdict_of(halving(4), 1e-3 / halving(4))
+    assert verdict is Verdict.FAIL
+    assert "diverges" in reason
+
+
+def test_small_errors_that_do_not_fall_look_like_a_tolerance():
+    verdict, reason = verdict_of(halving(4), np.full(4, 3e-9))
+    assert verdict is Verdict.INCONCLUSIVE
+    assert "declare error_floor" in reason
+
+
+def test_a_stall_on_the_last_level_is_not_called_a_failure():
+    verdict, reason = verdict_of(halving(5), [*halving(4) ** 2, halving(5)[3] ** 2])
+    assert verdict is Verdict.INCONCLUSIVE, reason
+    assert "stalled" in reason
+
+
+def test_exact_to_round_off_passes_with_three_levels():
+    verdict, reason = verdict_of(halving(3), [1e-16, 4e-15, 0.0])
+    assert verdict is Verdict.PASS
+    assert "exact to round-off" in reason
+
+
+def test_three_levels_give_an_order_but_no_pass():
+    verdict, reason = verdict_of(halving(3), halving(3) ** 2)
+    assert verdict is Verdict.INCONCLUSIVE
+    assert "observed 2.00" in reason
+    assert "run a finer size, 64" in reason
+
+
+def test_levels_at_the_floor_are_left_out_with_the_reason():
+    errors = np.maximum(1e-4 * halving(6) ** 4, 1e-9)
+    orders = judge(levels_of(halving(6), errors), expect(4.0), error_floor=1e-10)
+    assert orders["max"].verdict is Verdict.PASS, orders["max"].note
+    assert set(orders["max"].left_out) == {"32", "64", "128", "256"}
+    assert all("floor" in why for why in orders["max"].left_out.values())
+
+
+def test_a_fall_to_the_floor_below_the_expected_order_fails():
+    errors = np.maximum(1e-6 * halving(6) ** 1, 2e-8)
+    verdict, reason = verdict_of(halving(6), errors, 4.0, error_floor=3e-9)
+    assert verdict is Verdict.FAIL, reason
+
+
+def test_unjudged_levels_stay_visible_with_their_note():
+    coarse = levels_of(halving(2), [0.5, 0.4], judged=False)
+    coarse = [Level(**{**{name: getattr(v, name) for name in Level.__slots__}, "note": "too coarse"}) for v in coarse]
+    fine = levels_of(halving(6)[2:], halving(6)[2:] ** 2)
+    order = judge([*coarse, *fine], expect(2.0))["max"]
+    assert order.verdict is Verdict.PASS
+    assert order.left_out == {"8": "too coarse", "16": "too coarse"}
+    assert len(order.pairs) == 5
+
+
+def test_exponential_convergence_to_the_floor_passes():
+    n = np.array([4.0, 8.0, 16.0, 32.0])
+    verdict, _ = verdict_of(1 / n, np.maximum(np.exp(-2.5 * n), 1e-15), "exponential", formal="exponential")
+    assert verdict is Verdict.PASS
+
+
+def test_exponential_convergence_above_the_floor_passes_by_its_growing_order():
+    n = np.array([8.0, 16.0, 32.0, 64.0])
+    verdict, reason = verdict_of(1 / n, np.exp(-0.2 * n), "exponential", formal="exponential")
+    assert verdict is Verdict.PASS
+    assert "exp(-0.2 n)" in reason
+    assert verdict_of(1 / n, np.exp(-2 * np.sqrt(n)), "exponential", formal="exponential")[0] is Verdict.PASS
+
+
+def test_an_algebraic_method_that_declares_exponential_fails():
+    n = np.array([8.0, 16.0, 32.0, 64.0])
+    verdict, reason = verdict_of(1 / n, n**-4.0, "exponential", formal="exponential")
+    assert verdict is Verdict.FAIL
+    assert "algebraic" in reason
+
+
+def test_a_wrong_limit_under_exponential_fails():
+    assert verdict_of(halving(4), np.full(4, 0.2), "exponential", formal="exponential")[0] is Verdict.FAIL
+
+
+def test_plain_decrease_passes_and_no_decrease_fails():
+    assert verdict_of(halving(4), halving(4) ** 0.6, "decrease")[0] is Verdict.PASS
+    assert verdict_of(halving(4), np.full(4, 0.2), "decrease")[0] is Verdict.FAIL
+
+
+def test_one_failing_norm_fails_the_study_and_one_open_norm_leaves_it_open():
+    good = judge(levels_of(halving(4), halving(4) ** 2), expect(2.0))
+    bad = judge(levels_of(halving(4), halving(4) ** 1, "L2"), expect(2.0, "L2"))
+    short = judge(levels_of(halving(3), halving(3) ** 2, "L2"), expect(2.0, "L2"))
+    assert combine({**good, **bad})[0] is Verdict.FAIL
+    assert combine({**good, **short})[0] is Verdict.INCONCLUSIVE
+
+
+def test_an_open_functional_is_a_remark_and_a_failing_one_fails():
+    good = judge(levels_of(halving(4), halving(4) ** 2), expect(2.0))
+    name = "flux:top"
+    short = judge(levels_of(halving(3), halving(3) ** 2, name), expect(2.0, name))
+    bad = judge(levels_of(halving(4), halving(4) ** 1, name), expect(2.0, name))
+    verdict, _, remarks = combine({**good, **short})
+    assert verdict is Verdict.PASS
+    assert any(name in remark for remark in remarks)
+    assert combine({**good, **bad})[0] is Verdict.FAIL
+
+
+def test_a_norm_without_a_rate_never_decides():
+    verdict, reasons, remarks = combine(judge(levels_of(halving(4), halving(4)), expect(None, decides=False)))
+    assert verdict is Verdict.INCONCLUSIVE
+    assert "theory promises no rate" in reasons[0]
+    assert "does not decide" in remarks[0]
+
+
+def test_nan_never_passes():
+    with pytest.raises(Exception, match="positive and finite"):
+        verdict_of(halving(4), [0.1, math.nan, 0.01, 0.001])
