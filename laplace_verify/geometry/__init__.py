@@ -5,12 +5,16 @@ from laplace_verify.geometry.boundary import Boundary
 from laplace_verify.geometry.cartesian import Box, Interval, Rectangle
 from laplace_verify.geometry.polygons import LShape, Polygon
 from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
+from laplace_verify.geometry.solids import Ball, Cylinder, SphericalShell
+from laplace_verify.geometry.spec import shape_from_spec, shape_to_spec
 
 __all__ = [
     "Annulus",
+    "Ball",
     "Boundaries",
     "Boundary",
     "Box",
+    "Cylinder",
     "Disc",
     "Ellipse",
     "Interval",
@@ -20,4 +24,7 @@ __all__ = [
     "Rectangle",
     "Sector",
     "Shape",
+    "SphericalShell",
+    "shape_from_spec",
+    "shape_to_spec",
 ]
