@@ -48,11 +48,14 @@ def by_index(index: Any, function: Callable[..., Any], *arguments: Any) -> Any:
     low, high = int(index.min(initial=0)), int(index.max(initial=0))
     if low == high and index.size:
         return function(low, *arguments)
-    result = np.zeros(index.shape, dtype=np.complex128)
+    result: Any = None
     for k in np.unique(index):
         here = np.flatnonzero(index == k)
-        result[here] = function(int(k), *(a[here] for a in arguments))
-    return result
+        part = function(int(k), *(a[here] for a in arguments))
+        if result is None:
+            result = np.zeros(index.shape, dtype=part.dtype)
+        result[here] = part
+    return np.zeros(index.shape) if result is None else result
 
 
 def horner(coefficients: Sequence[Any], z: Any) -> Any:
