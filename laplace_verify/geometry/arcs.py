@@ -1,9 +1,9 @@
 """Curved pieces in the plane: arcs of circles and of ellipses with axes along x and y.
 
-Nearest points on an ellipse: the best of many points on the arc brackets a sign change of the derivative of the
-squared distance, which is then bisected; no case distinction, no divergence, and arcs that are not closed are
-handled like closed ones. Fractions of length go through the elliptic integral ``E(phi | m)`` (Abramowitz and
-Stegun 1964, Handbook of Mathematical Functions, section 17.2).
+Nearest points on an ellipse: the best of many points on the arc brackets a sign change of the derivative of
+the squared distance, which is then bisected; no case distinction, no divergence, and arcs that are not
+closed are handled like closed ones. Fractions of length go through the elliptic integral ``E(phi | m)``
+(Abramowitz and Stegun 1964, Handbook of Mathematical Functions, section 17.2).
 """
 
 from __future__ import annotations
@@ -27,7 +27,7 @@ QUARTER = math.pi / 4.0
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Arc(Curve):
-    """The arc ``centre + (a cos s, b sin s)`` for s from `first` to `last` (`first` < `last` <= `first` + 2 pi).
+    """The arc ``centre + (a cos s, b sin s)`` for s from `first` to `last`, at most 2 pi apart.
 
     `hole` says that the region lies outside the ellipse: the normal then points to the centre and travel is
     clockwise. Closed if the arc is a full turn.
@@ -75,7 +75,7 @@ class Arc(Curve):
     def _length(self, angle: Array) -> Array:
         """Length from angle 0: integral of sqrt(a^2 sin^2 + b^2 cos^2) = b E(s | 1 - a^2/b^2)."""
         a, b = self.semi_axes
-        length: Array = b * ellipeinc(angle, 1.0 - (a / b) ** 2)
+        length: Array = b * np.asarray(ellipeinc(angle, 1.0 - (a / b) ** 2), dtype=np.float64)
         return length
 
     def _angle_at(self, fractions: Array) -> Array:
@@ -85,7 +85,8 @@ class Arc(Curve):
             return self.first + t * (self.last - self.first)
         start, stop = self._length(np.array([self.first, self.last]))
         wanted = start + t * (stop - start)
-        low, high = np.full(len(t), self.first), np.full(len(t), self.last)
+        low: Array = np.full(len(t), self.first)
+        high: Array = np.full(len(t), self.last)
         for _ in range(54):  # bisection halves the bracket to the spacing of float64
             middle = (low + high) / 2.0
             below = self._length(middle) < wanted
@@ -94,7 +95,8 @@ class Arc(Curve):
 
     def _on(self, angle: Array) -> Array:
         unit = np.stack([np.cos(angle), np.sin(angle)], axis=1)
-        return np.array(self.centre) + np.array(self.semi_axes) * unit
+        points: Array = np.array(self.centre) + np.array(self.semi_axes) * unit
+        return points
 
     def _at(self, fractions: Array) -> Array:
         return self._on(self._angle_at(fractions))
@@ -108,11 +110,12 @@ class Arc(Curve):
         span = self.last - self.first
         # beyond the arc the nearer end is nearest: past `last` up to half of the gap, else before `first`
         past = np.where(turned - span <= (TURN - span) / 2.0, span, 0.0)
-        return self.first + np.where(turned <= span, turned, past)
+        angle: Array = self.first + np.where(turned <= span, turned, past)
+        return angle
 
     def _elliptic_parameter(self, points: Array) -> Array:
         scaled = (points - np.array(self.centre)) / np.array(self.semi_axes)
-        angle = self.first + np.mod(np.arctan2(scaled[:, 1], scaled[:, 0]) - self.first, TURN)
+        angle: Array = self.first + np.mod(np.arctan2(scaled[:, 1], scaled[:, 0]) - self.first, TURN)
         # points on the arc already (quadrature nodes, as a rule) need no search
         off = (np.abs(np.hypot(scaled[:, 0], scaled[:, 1]) - 1.0) > 1e-14) | (angle > self.last)
         rows = np.flatnonzero(off)
@@ -138,10 +141,11 @@ class Arc(Curve):
             low, high = np.where(slope > 0.0, low, middle), np.where(slope > 0.0, middle, high)
         angle = (low + high) / 2.0
         if self.closed:
-            return self.first + np.mod(angle - self.first, TURN)
-        # bisection stops just short of an end it converges to
-        angle = np.where(high >= self.last, self.last, np.where(low <= self.first, self.first, angle))
-        return np.clip(angle, self.first, self.last)
+            angle = self.first + np.mod(angle - self.first, TURN)
+        else:  # bisection stops just short of an end it converges to
+            angle = np.where(high >= self.last, self.last, np.where(low <= self.first, self.first, angle))
+        clipped: Array = np.clip(angle, self.first, self.last)
+        return clipped
 
     def _project(self, points: Array) -> Array:
         return self._on(self._parameter(points))

@@ -1,9 +1,9 @@
 """What every shape offers, and every piece of its boundary.
 
 A shape is a closed region of R^d bounded by named pieces. Its outline is one or several loops of pieces,
-travelled with the region on the left: counter-clockwise outside, clockwise around holes. Where two pieces meet
-at the interior angle ``opening``, solutions of Laplace's equation behave like ``r**(pi/opening)`` (Grisvard 1985,
-Elliptic Problems in Nonsmooth Domains, section 4.4), so junctions are part of the geometry.
+travelled with the region on the left: counter-clockwise outside, clockwise around holes. Where two pieces
+meet at the interior angle ``opening``, solutions of Laplace's equation behave like ``r**(pi/opening)``
+(Grisvard 1985, Elliptic Problems in Nonsmooth Domains, section 4.4), so junctions are part of the geometry.
 """
 
 from __future__ import annotations
@@ -84,7 +84,8 @@ class Junction:
 class Shape(ABC):
     """A closed bounded region with named boundary pieces (abstract).
 
-    `splits` holds the fractions given to `split`, by name of the whole piece; it is no argument to pass by hand.
+    `splits` holds the fractions given to `split`, by name of the whole piece; it is no argument to pass by
+    hand.
     """
 
     splits: tuple[tuple[str, tuple[float, ...]], ...] = field(default=(), kw_only=True)
@@ -161,7 +162,9 @@ class Shape(ABC):
         whole = {piece.name: piece for loop in self._loops() for piece in loop}
         cuts = dict(self.splits)
         return Boundaries(
-            part for name in self._order(tuple(whole)) for part in split_piece(whole[name], cuts.get(name, ()))[0]
+            part
+            for name in self._order(tuple(whole))
+            for part in split_piece(whole[name], cuts.get(name, ()))[0]
         )
 
     @cached_property
@@ -264,7 +267,7 @@ class Shape(ABC):
     def boundary_quadrature(
         self, order: int, singular: npt.ArrayLike = (), cell: float | None = None
     ) -> dict[str, tuple[Array, Array, Array]]:
-        """Return {name: (points, outward unit normals, weights)} for every piece; arguments as `quadrature`."""
+        """Return {name: (points, outward unit normals, weights)} for every piece; see `quadrature`."""
         return {piece.name: piece.quadrature(order, singular, cell) for piece in self.pieces}
 
     def split(self, **fractions: Sequence[float]) -> Self:
@@ -286,7 +289,9 @@ class Shape(ABC):
         merged = dict(self.splits)
         for name, values in fractions.items():
             if name in merged:
-                raise GeometryError(f"{name!r} is already split at {list(merged[name])}; give all in one call")
+                raise GeometryError(
+                    f"{name!r} is already split at {list(merged[name])}; give all in one call"
+                )
             merged[name] = tuple(values)
         return replace(self, splits=tuple(merged.items()))
 
@@ -295,6 +300,5 @@ class Shape(ABC):
         given = ", ".join(repr(getattr(self, f.name)) for f in fields(self) if f.name != "splits")
         text = f"{type(self).__name__}({given})"
         if self.splits:
-            text += f".split(**{ {name: list(values) for name, values in self.splits} !r})"
+            text += f".split(**{ {name: list(values) for name, values in self.splits}!r})"
         return text
-

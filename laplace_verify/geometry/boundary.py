@@ -56,9 +56,10 @@ class Boundary(ABC):
 
     @abstractmethod
     def point(self, t: npt.ArrayLike) -> Array:
-        """Return points (n, d) at t in [0, 1]: (n,) fractions of length on curves, (n, 2) of area on surfaces.
+        """Return points (n, d) at t in [0, 1].
 
-        Curves are travelled with the region on the left.
+        On curves t (n,) are fractions of length, on surfaces t (n, 2) keep ratios of area. Curves
+        are travelled with the region on the left.
         """
 
     @abstractmethod
@@ -82,7 +83,8 @@ class Boundary(ABC):
     def part(self, start: float, stop: float, name: str) -> Boundary:
         """Return the part between two fractions of length, in order of travel; curves only."""
         raise GeometryError(
-            f"{self.name!r} cannot be split at {start!r}, {stop!r} into {name!r}: only curves and straight sides can"
+            f"{self.name!r} cannot be cut at {start!r}, {stop!r} for {name!r}: "
+            "only curves and straight sides can"
         )
 
     def project(self, points: npt.ArrayLike) -> Array:
@@ -116,7 +118,9 @@ class Boundary(ABC):
         if normals is not None:
             given = as_points(normals, self.dim, error=GeometryError, name="normals")
             if len(given) != len(array):
-                raise GeometryError(f"normals must be one per point: {len(array)} points, {len(given)} normals")
+                raise GeometryError(
+                    f"normals must be one per point: {len(array)} points, {len(given)} normals"
+                )
             on &= (given * self._normals(array)).sum(axis=1) > 0.0
         return on
 

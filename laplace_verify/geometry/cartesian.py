@@ -25,7 +25,8 @@ def _ordered(lower: Sequence[float], upper: Sequence[float], names: tuple[str, s
     for axis, (a, b) in enumerate(zip(lower, upper, strict=True)):
         if not b > a:
             raise GeometryError(
-                f"{names[1]} must exceed {names[0]} in every coordinate, got {a!r} and {b!r} in coordinate {axis}"
+                f"{names[1]} must exceed {names[0]} in every coordinate, "
+                f"got {a!r} and {b!r} in coordinate {axis}"
             )
 
 
@@ -41,7 +42,7 @@ class _Cartesian(Shape):
 
     def _inside(self, points: Array) -> BoolArray:
         lower, upper = self.bounding_box
-        inside: BoolArray = ((points >= lower) & (points <= upper)).all(axis=1)
+        inside: BoolArray = np.all((points >= lower) & (points <= upper), axis=1)
         return inside
 
     def _draw(self, generator: np.random.Generator, n: int) -> Array:
@@ -138,7 +139,8 @@ class Rectangle(_Cartesian):
         names = ("bottom", "right", "top", "left")
         return (
             tuple(
-                Segment(name=name, start=corners[k], stop=corners[(k + 1) % 4]) for k, name in enumerate(names)
+                Segment(name=name, start=corners[k], stop=corners[(k + 1) % 4])
+                for k, name in enumerate(names)
             ),
         )
 

@@ -61,7 +61,8 @@ def proportions(lower: Sequence[float], upper: Sequence[float], shape: str) -> N
     largest = max(extents)
     if not min(extents) >= THINNEST * largest or not largest > 0.0:
         raise GeometryError(
-            f"{shape} is degenerate: its extents are {extents}; each must be at least {THINNEST:g} of the largest"
+            f"{shape} is degenerate: its extents are {extents}; "
+            f"each must be at least {THINNEST:g} of the largest"
         )
     reach = max(abs(x) for x in (*lower, *upper))
     if not largest >= max(THINNEST * reach, 1.0 / LARGEST) or not math.isfinite(reach):

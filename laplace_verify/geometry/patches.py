@@ -1,14 +1,15 @@
 """Quadrature on exactly mapped patches: ``integral f = sum_patches sum_q w_q J(s_q) f(x(s_q))``.
 
-A patch is a box in parameter space with an exact map onto a part of a shape, so curved shapes lose nothing to
-their geometry. Patches are bisected along their longest physical direction while they exceed the wanted size,
-and while they lie nearer to a singular point than their own diameter (dyadic grading: the patches shrink
-geometrically towards the point, and on each of them the integrand is smooth relative to the patch; Schwab 1998,
-p- and hp-Finite Element Methods, section 3.3, from memory, unchecked). Every patch then takes a tensor Gauss rule.
+A patch is a box in parameter space with an exact map onto a part of a shape, so curved shapes lose nothing
+to their geometry. Patches are bisected along their longest physical direction while they exceed the wanted
+size, and while they lie nearer to a singular point than their own diameter (dyadic grading: the patches
+shrink geometrically towards the point, and on each of them the integrand is smooth relative to the patch;
+Schwab 1998, p- and hp-Finite Element Methods, section 3.3, from memory, unchecked). Every patch then takes
+a tensor Gauss rule.
 
-In directions that are angles a polynomial becomes a trigonometric polynomial, which no Gauss rule integrates
-exactly; enough points are taken for its remainder ``(p h/2)**(2n) / (2n)!`` (h the half width, derived here from
-the remainder of Gauss's rule) to vanish in float64.
+In directions that are angles a polynomial becomes a trigonometric polynomial, which no Gauss rule
+integrates exactly; enough points are taken for its remainder ``(p h/2)**(2n) / (2n)!`` (h the half width,
+derived here from the remainder of Gauss's rule) to vanish in float64.
 """
 
 from __future__ import annotations
@@ -41,8 +42,8 @@ class Chart:
     lower, upper
         Corners of the boxes, shape (m, k).
     place
-        ``place(parameters (n, k), box (n,)) -> points (n, d), jacobian (n,)``; `box` is the row of the box each
-        parameter belongs to.
+        ``place(parameters (n, k), box (n,)) -> points (n, d), jacobian (n,)``; `box` is the row of the box
+        each parameter belongs to.
     angles
         For each direction, whether it is an angle (polynomials become trigonometric there).
     extra
@@ -167,9 +168,7 @@ def _tensor_rule(
     return points, weights
 
 
-def _subdivide(
-    chart: Chart, targets: Array, cell: float | None
-) -> tuple[Array, Array, IntArray, BoolArray]:
+def _subdivide(chart: Chart, targets: Array, cell: float | None) -> tuple[Array, Array, IntArray, BoolArray]:
     """Bisect the boxes until none is too large or too near a singular point for its size."""
     k = chart.lower.shape[1]
     lower, upper = chart.lower, chart.upper
@@ -177,7 +176,9 @@ def _subdivide(
     lengths, centres = _measure(chart, lower, upper, box)
     extent = float(np.sqrt((lengths**2).sum(axis=1)).max())
     # below `floor` a point of the patch could no longer be told from the singular point in float64
-    floor = np.maximum(2.0 ** -LEVELS[k] * extent, 2.0**10 * np.finfo(float).eps * np.abs(targets).max(axis=1))
+    floor = np.maximum(
+        2.0 ** -LEVELS[k] * extent, 2.0**10 * np.finfo(float).eps * np.abs(targets).max(axis=1)
+    )
     if k == 1:
         floor = np.where((targets == 0.0).all(axis=1), 2.0**-60 * extent, floor)
     done: list[tuple[Array, Array, IntArray, BoolArray]] = []
@@ -223,7 +224,7 @@ def _refinement(
 
 
 def _measure(chart: Chart, lower: Array, upper: Array, box: IntArray) -> tuple[Array, Array]:
-    """Return the largest length of each patch per direction (m, k), along its edges, and its centre (m, d)."""
+    """Return the largest length of each patch per direction (m, k) and its centre (m, d)."""
     m, k = lower.shape
     corners = []
     for code in range(2**k):

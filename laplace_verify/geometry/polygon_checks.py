@@ -1,8 +1,9 @@
 """What makes a list of vertices the boundary of a connected polygon.
 
-Sides may meet only at common vertices. A side walked there and back is a slit and counts once. The walk around a
-loop is a connected plane graph, so by Euler's formula it has ``E - V + 1`` bounded faces, V different vertices and
-E different sides: exactly one if the inside hangs together (no pinch, no slit from boundary to boundary).
+Sides may meet only at common vertices. A side walked there and back is a slit and counts once. The walk
+around a loop is a connected plane graph, so by Euler's formula it has ``E - V + 1`` bounded faces, V
+different vertices and E different sides: exactly one if the inside hangs together (no pinch, no slit from
+boundary to boundary).
 """
 
 from __future__ import annotations
@@ -34,7 +35,7 @@ def signed_area(loop: Loop) -> float:
 
 
 def check_loop(loop: Loop, name: str, *, hole: bool = False) -> None:
-    """Refuse sides of no length, sides that cross or touch, outward spikes, and loops that enclose no area."""
+    """Refuse sides of no length, sides that cross or touch, outward spikes, loops without area."""
     starts = np.array(loop)
     stops = np.roll(starts, -1, axis=0)
     extent = _extent(starts)
@@ -46,8 +47,8 @@ def check_loop(loop: Loop, name: str, *, hole: bool = False) -> None:
     found = _conflict(starts, stops, starts, stops, ROUNDING * extent)
     if found is not None:
         raise GeometryError(
-            f"sides {found[0] + 1} and {found[1] + 1} of {name} cross or touch; a boundary may meet itself only in "
-            "a slit, a side walked there and back between the same two vertices"
+            f"sides {found[0] + 1} and {found[1] + 1} of {name} cross or touch; a boundary may meet itself "
+            "only in a slit, a side walked there and back between the same two vertices"
         )
     if not abs(signed_area(loop)) > THINNEST * extent**2:
         raise GeometryError(f"{name} enclose no area")
@@ -95,7 +96,7 @@ def _meet(first: Array, second: Array, tol: float) -> bool:
 
 
 def _conflict(a: Array, b: Array, c: Array, d: Array, tol: float) -> tuple[int, int] | None:
-    """Return the first sides (i of a-b, j of c-d) that cross, or of which one ends on the other but not at its end."""
+    """Return the first sides i (a to b) and j (c to d) that cross or touch other than at common ends."""
     for rows in blocks(len(a), max(1, 500_000 // len(c))):
         p, q = a[rows, None, :], b[rows, None, :]
         same = [(s == t).all(axis=2) for s in (p, q) for t in (c[None], d[None])]

@@ -2,11 +2,11 @@
 
 A slit is a side walked there and back: two pieces share its place, with opposite normals.
 
-Quadrature: horizontal lines through all vertices cut the plane into slabs; inside a slab the sides that cross it
-do not cross one another, and taken from left to right in pairs they bound the region (even-odd rule). Each pair is
-a trapezoid, mapped bilinearly from the unit square. A slit inside the region is met twice and parts two trapezoids
-of the same region. Derived here; the decomposition is that of Chazelle and Incerpi 1984, Triangulation and
-shape-complexity (from memory, unchecked).
+Quadrature: horizontal lines through all vertices cut the plane into slabs; inside a slab the sides that
+cross it do not cross one another, and taken from left to right in pairs they bound the region (even-odd
+rule). Each pair is a trapezoid, mapped bilinearly from the unit square. A slit inside the region is met
+twice and parts two trapezoids of the same region. Derived here; the decomposition is that of Chazelle and
+Incerpi 1984, Triangulation and shape-complexity (from memory, unchecked).
 """
 
 from __future__ import annotations
@@ -14,6 +14,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass, field
 from functools import lru_cache
+from itertools import pairwise
 from typing import Any, ClassVar
 
 import numpy as np
@@ -112,7 +113,11 @@ class _Polygonal(Shape):
 
         count = len(corners)
         return Chart(
-            lower=np.zeros((count, 2)), upper=np.ones((count, 2)), place=place, angles=(False, False), extra=(0, 1)
+            lower=np.zeros((count, 2)),
+            upper=np.ones((count, 2)),
+            place=place,
+            angles=(False, False),
+            extra=(0, 1),
         )
 
 
@@ -134,13 +139,13 @@ def trapezoids(rings: tuple[Vertices, ...]) -> tuple[Array, Array]:
     levels = levels[np.concatenate([[True], np.diff(levels) > 1e-14 * (levels[-1] - levels[0])])]
     bottom, top = np.minimum(starts[:, 1], stops[:, 1]), np.maximum(starts[:, 1], stops[:, 1])
     found = []
-    for low, high in zip(levels[:-1], levels[1:], strict=True):
+    for low, high in pairwise(levels.tolist()):
         middle = (low + high) / 2.0
         crossing = (bottom < middle) & (top > middle)
         a, b = starts[crossing], stops[crossing]
         slope = (b[:, 0] - a[:, 0]) / (b[:, 1] - a[:, 1])
-        at = {y: np.clip(a[:, 0] + (y - a[:, 1]) * slope, np.minimum(a[:, 0], b[:, 0]), np.maximum(a[:, 0], b[:, 0]))
-              for y in (low, middle, high)}  # fmt: skip
+        least, most = np.minimum(a[:, 0], b[:, 0]), np.maximum(a[:, 0], b[:, 0])
+        at = {y: np.clip(a[:, 0] + (y - a[:, 1]) * slope, least, most) for y in (low, middle, high)}
         order = np.argsort(at[middle], kind="stable")
         left, right = order[0::2], order[1::2]
         for i, j in zip(left, right, strict=True):
@@ -187,12 +192,14 @@ class LShape(_Polygonal):
     def _rings(self) -> tuple[Vertices, ...]:
         return (self.vertices,)
 
+
 @dataclass(frozen=True, slots=True, repr=False)
 class Polygon(_Polygonal):
     """The polygon with the given vertices, counter-clockwise, less its holes.
 
-    Pieces side-1 (from vertex 1 to vertex 2), side-2, ...; hole-1-side-1, ... A side walked there and back is a
-    slit. Holes may be given in either orientation; they are kept clockwise, beginning at the same vertex.
+    Pieces side-1 (from vertex 1 to vertex 2), side-2, ...; hole-1-side-1, ... A side walked there and back
+    is a slit. Holes may be given in either orientation; they are kept clockwise, beginning at the same
+    vertex.
 
     >>> square = Polygon([(0, 0), (1, 0), (1, 1), (0, 1)], holes=[[(0.4, 0.4), (0.4, 0.6), (0.6, 0.6)]])
     >>> print(round(square.measure, 12), square.pieces.names[-1])

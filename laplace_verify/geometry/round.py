@@ -23,9 +23,7 @@ __all__ = ["Annulus", "Disc", "Ellipse", "Sector"]
 FLATTEST = 1e-3  # least ratio of semi-axes: patches of the rim grow as its inverse
 
 
-def polar_chart(
-    centre: Sequence[float], semi_axes: Sequence[float], opening: float = TURN
-) -> Chart:
+def polar_chart(centre: Sequence[float], semi_axes: Sequence[float], opening: float = TURN) -> Chart:
     """Return patches of ``centre + s (a cos t, b sin t)``, 0 < s < 1, 0 < t < opening; Jacobian ``a b s``."""
     origin, axes = np.array(centre), np.array(semi_axes)
 
@@ -117,7 +115,9 @@ class Ellipse(Shape):
         if not min(self.semi_axes) > 0.0:
             raise GeometryError(f"semi_axes must be > 0, got {self.semi_axes!r}")
         if not min(self.semi_axes) >= FLATTEST * max(self.semi_axes):
-            raise GeometryError(f"semi_axes must differ by less than a factor {1 / FLATTEST:g}, got {self.semi_axes!r}")
+            raise GeometryError(
+                f"semi_axes must differ by less than a factor {1 / FLATTEST:g}, got {self.semi_axes!r}"
+            )
         self._check()
 
     @property
@@ -128,7 +128,9 @@ class Ellipse(Shape):
     @property
     def bounding_box(self) -> tuple[Array, Array]:
         """Lower and upper corner, each of shape (2,)."""
-        return np.array(self.centre) - np.array(self.semi_axes), np.array(self.centre) + np.array(self.semi_axes)
+        return np.array(self.centre) - np.array(self.semi_axes), np.array(self.centre) + np.array(
+            self.semi_axes
+        )
 
     def _loops(self) -> tuple[tuple[Boundary, ...], ...]:
         axes = tuple(self.semi_axes)
@@ -195,7 +197,9 @@ class Annulus(Shape):
 
     def _loops(self) -> tuple[tuple[Boundary, ...], ...]:
         radii = (self.inner, self.inner), (self.outer, self.outer)
-        inner = Arc(name="inner", centre=self.hole_centre, semi_axes=radii[0], first=0.0, last=TURN, hole=True)
+        inner = Arc(
+            name="inner", centre=self.hole_centre, semi_axes=radii[0], first=0.0, last=TURN, hole=True
+        )
         outer = Arc(name="outer", centre=tuple(self.centre), semi_axes=radii[1], first=0.0, last=TURN)
         return (inner,), (outer,)
 
@@ -234,8 +238,8 @@ class Annulus(Shape):
 class Sector(Shape):
     """The sector 0 < r < radius, 0 < angle < opening, apex at the origin; pieces start, end, arc.
 
-    `start` lies on angle 0, `end` on angle `opening`. At an opening of 2 pi it is a slit disc: start and end share
-    a place and have opposite normals.
+    `start` lies on angle 0, `end` on angle `opening`. At an opening of 2 pi it is a slit disc: start and
+    end share a place and have opposite normals.
 
     >>> Sector(1.0, 6.283185307179586).junctions[0].pieces
     ('start', 'arc')

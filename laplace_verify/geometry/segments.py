@@ -117,7 +117,9 @@ class Segment(Curve):
         return points
 
     def _parameter(self, points: Array) -> Array:
-        return np.clip((points - self.ends[0]) @ self._direction() / self.measure, 0.0, 1.0)
+        t = (points - self.ends[0]) @ self._direction() / self.measure
+        clipped: Array = np.clip(t, 0.0, 1.0)
+        return clipped
 
     def _project(self, points: Array) -> Array:
         return self._at(self._parameter(points))

@@ -21,7 +21,7 @@ __all__ = ["Ball", "Cylinder", "SphericalShell"]
 
 
 def _radial_chart(centre: Sequence[float], inner: float, outer: float) -> Chart:
-    """Return patches ``centre + r e(polar angle, azimuth)``, inner < r < outer; Jacobian ``r^2 sin(polar angle)``."""
+    """Return patches ``centre + r e(t, p)``, t polar angle, p azimuth; Jacobian ``r^2 sin t``."""
     origin = np.array(centre)
 
     def place(parameters: Array, _box: IntArray) -> tuple[Array, Array]:
@@ -46,7 +46,7 @@ class Ball(Shape):
     """The ball of a centre and radius; piece surface.
 
     >>> print(round(Ball((0, 0, 0), 1.0).measure, 12))
-    4.18879020479
+    4.188790204786
     """
 
     centre: Sequence[float]

@@ -23,7 +23,8 @@ __all__ = ["SHAPES", "shape_from_spec", "shape_to_spec"]
 SHAPES: dict[str, type[Shape]] = {
     shape.kind: shape
     for shape in (
-        Interval, Rectangle, Box, Disc, Ellipse, Annulus, Sector, LShape, Polygon, Ball, SphericalShell, Cylinder,
+        Interval, Rectangle, Box, Disc, Ellipse, Annulus, Sector, LShape, Polygon,
+        Ball, SphericalShell, Cylinder,
     )
 }  # fmt: skip
 
@@ -38,7 +39,9 @@ def shape_to_spec(shape: Shape) -> dict[str, Any]:
     {'kind': 'rectangle', 'lower': [0.0, 0.0], 'upper': [2.0, 1.0], 'split': {'top': [0.5]}}
     """
     if type(shape) not in SHAPES.values():
-        raise GeometryError(f"only the shapes of this package can be written down, got {type(shape).__name__}")
+        raise GeometryError(
+            f"only the shapes of this package can be written down, got {type(shape).__name__}"
+        )
     spec: dict[str, Any] = {"kind": shape.kind}
     for field in fields(shape):
         value = getattr(shape, field.name)
@@ -56,7 +59,8 @@ def shape_from_spec(spec: Mapping[str, Any]) -> Shape:
     Raises
     ------
     GeometryError
-        If the kind is unknown, or a field is missing, unknown or not what the shape needs; it names the field.
+        If the kind is unknown, or a field is missing, unknown or not what the shape needs; it names the
+        field.
 
     Examples
     --------

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator, Mapping, Sequence
+from itertools import pairwise
 
 import numpy as np
 
@@ -19,7 +20,7 @@ SHORTEST = 1e-6  # least length of a part, relative to the whole piece
 def check_fractions(
     splits: Mapping[str, Sequence[float]], whole: Mapping[str, Boundary]
 ) -> tuple[tuple[str, tuple[float, ...]], ...]:
-    """Return the splits as sorted tuples, refusing unknown pieces, surfaces and fractions that do not rise."""
+    """Return the splits as sorted tuples, refusing what cannot be cut."""
     checked = []
     for name, values in sorted(splits.items()):
         if name not in whole:
@@ -46,7 +47,7 @@ def split_piece(piece: Boundary, fractions: Sequence[float]) -> tuple[list[Bound
         return [piece], [piece]
     edges = [0.0, *fractions, 1.0]
     parts: list[Boundary] = []
-    for k, (start, stop) in enumerate(zip(edges[:-1], edges[1:], strict=True), start=1):
+    for k, (start, stop) in enumerate(pairwise(edges), start=1):
         span = (start, stop) if piece.rising else (1.0 - stop, 1.0 - start)
         parts.append(piece.part(*span, f"{piece.name}-{k}"))
     return parts, parts if piece.rising else parts[::-1]
@@ -55,7 +56,8 @@ def split_piece(piece: Boundary, fractions: Sequence[float]) -> tuple[list[Bound
 def junction_openings(travelled: Sequence[Boundary]) -> Iterator[tuple[str, str, Array, float]]:
     """Yield (piece, next piece, corner (1, 2), interior angle) around a closed loop of curves.
 
-    Turning left by ``turn`` leaves the interior angle ``pi - turn``; a complete turn back is the tip of a slit.
+    Turning left by ``turn`` leaves the interior angle ``pi - turn``; a complete turn back is the tip of a
+    slit.
     """
     curves = [piece for piece in travelled if isinstance(piece, Curve)]
     if len(curves) < 2:

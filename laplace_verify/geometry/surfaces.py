@@ -26,7 +26,7 @@ def around(angle: Array) -> Array:
 
 
 def outwards(offset: Array, fallback: tuple[float, ...]) -> Array:
-    """Return offset (n, d) divided by its length; `fallback` where it vanishes and every direction is as near."""
+    """Return offset (n, d) divided by its length; `fallback` where that vanishes."""
     length = np.sqrt((offset**2).sum(axis=1))
     at_centre = length == 0.0
     unit: Array = offset / np.where(at_centre, 1.0, length)[:, None]
@@ -83,7 +83,7 @@ class Sphere(Surface):
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Tube(Surface):
-    """The lateral surface ``r = radius, z0 < z < z1`` of a cylinder around the z axis; normal away from the axis."""
+    """The lateral surface ``r = radius, z0 < z < z1`` of a cylinder around the z axis."""
 
     radius: float
     z0: float
@@ -145,7 +145,9 @@ class RoundFace(Surface):
         return np.tile([0.0, 0.0, self.outward], (len(points), 1))
 
     def _at(self, u: Array, v: Array) -> Array:
-        return np.column_stack([self.radius * np.sqrt(u)[:, None] * around(TURN * v), np.full(len(u), self.z)])
+        return np.column_stack(
+            [self.radius * np.sqrt(u)[:, None] * around(TURN * v), np.full(len(u), self.z)]
+        )
 
     def _chart(self) -> Chart:
         def place(parameters: Array, _box: IntArray) -> tuple[Array, Array]:
