@@ -89,5 +89,7 @@ def join_terms(terms: list[tuple[Exact, str]]) -> str:
     for coefficient, name in terms:
         size = show(abs(coefficient))
         body = name if name and size == "1" else f"{size} {name}".strip()
-        text += (" - " if coefficient < 0 else " + ") + body if text else ("-" if coefficient < 0 else "") + body
+        text += (
+            (" - " if coefficient < 0 else " + ") + body if text else ("-" if coefficient < 0 else "") + body
+        )
     return text

@@ -87,7 +87,9 @@ class Combination(Field):
         return join_terms(parts)
 
     def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:
-        parts = (ctx.number(f) * t._value(ctx, x, side) for f, t in zip(self.factors, self.terms, strict=True))
+        parts = (
+            ctx.number(f) * t._value(ctx, x, side) for f, t in zip(self.factors, self.terms, strict=True)
+        )
         return reduce(lambda a, b: a + b, parts)
 
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:
@@ -118,7 +120,9 @@ def combined(*pairs: tuple[Number, Field]) -> Field:
     terms: list[Field] = []
     for factor, field in pairs:
         number = exact(factor, "factor")
-        inner = zip(field.factors, field.terms, strict=True) if isinstance(field, Combination) else ((1, field),)
+        inner = (
+            zip(field.factors, field.terms, strict=True) if isinstance(field, Combination) else ((1, field),)
+        )
         for own, term in inner:
             factors.append(product(number, own))
             terms.append(term)

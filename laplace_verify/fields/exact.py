@@ -23,7 +23,9 @@ __all__ = ["Exact", "exact", "exact_point", "offset", "rational", "show"]
 Exact: TypeAlias = int | float | Fraction
 
 # Digits and exponent are bounded: Fraction("1e999999999") would fill the memory.
-NUMERAL = re.compile(r"\s*[+-]?(\d{1,1000}(\.\d{0,1000})?|\.\d{1,1000})([eE][+-]?\d{1,3}|/\d{1,1000})?\s*", re.ASCII)
+NUMERAL = re.compile(
+    r"\s*[+-]?(\d{1,1000}(\.\d{0,1000})?|\.\d{1,1000})([eE][+-]?\d{1,3}|/\d{1,1000})?\s*", re.ASCII
+)
 
 
 def exact(number: Number, name: str) -> Exact:
@@ -40,7 +42,9 @@ def exact(number: Number, name: str) -> Exact:
     result: Exact
     if isinstance(number, str):
         if not NUMERAL.fullmatch(number):
-            raise FieldError(f'{name} must be a decimal such as "0.25" or a fraction such as "2/3", got {number[:60]!r}')
+            raise FieldError(
+                f'{name} must be a decimal such as "0.25" or a fraction such as "2/3", got {number[:60]!r}'
+            )
         try:
             result = _simplest(Fraction(number))
         except (ValueError, ZeroDivisionError) as cause:
@@ -130,3 +134,20 @@ def _fraction_of_mpf(number: Any, name: str) -> Fraction:
 def _either(dims: tuple[int, ...]) -> str:
     """Return "2 or 3"."""
     return " or ".join(str(d) for d in dims)
+
+
+def whole(number: Any, name: str, lowest: int, highest: int) -> int:
+    """Return a whole number between two bounds.
+
+    Raises
+    ------
+    FieldError
+        If it is none.
+    """
+    if (
+        isinstance(number, bool)
+        or not isinstance(number, numbers.Integral)
+        or not lowest <= number <= highest
+    ):
+        raise FieldError(f"{name} must be a whole number from {lowest} to {highest}, got {str(number)[:60]}")
+    return int(number)

@@ -74,7 +74,9 @@ def _read(spec: Any, depth: int) -> Field:
     except FieldError:
         raise
     except (TypeError, ValueError) as cause:
-        raise FieldError(f"a field of kind {kind!r} cannot be made of {sorted(parameters)}: {cause}") from cause
+        raise FieldError(
+            f"a field of kind {kind!r} cannot be made of {sorted(parameters)}: {cause}"
+        ) from cause
 
 
 def _parameter(value: Any, depth: int) -> Any:
