@@ -110,11 +110,9 @@ def values(given: Any, points: Array | None, mesh: CellMesh | None, where: str) 
     bad = ~np.isfinite(result)
     if bad.any():
         row = int(np.flatnonzero(bad)[0])
-        are = "is" if bad.sum() == 1 and len(bad) == 1 else "are"
         raise AnswerError(
-            f"values must be finite, but {int(bad.sum())} of {len(bad)} {are} not; values[{row}] is "
-            f"{result[row]} "
-            f"at point {places[row].tolist()}"
+            f"values must be finite, but {int(bad.sum())} of {len(bad)} are not; "
+            f"values[{row}] is {result[row]} at point {places[row].tolist()}"
         )
     return frozen(result)
 
@@ -129,9 +127,8 @@ def weights(given: Any, count: int) -> Array:
     if bad.any():
         row = int(np.flatnonzero(bad)[0])
         raise AnswerError(
-            f"weights must be positive and finite, but {int(bad.sum())} of {count} are not; weights[{row}] "
-            f"is "
-            f"{result[row]}"
+            f"weights must be positive and finite, but {int(bad.sum())} of {count} are not; "
+            f"weights[{row}] is {result[row]}"
         )
     return frozen(result)
 

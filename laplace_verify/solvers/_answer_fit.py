@@ -44,9 +44,8 @@ def check(answer: Answer, problem: Problem) -> None:
         if missing.any():
             row = int(np.flatnonzero(missing)[0])
             raise AnswerError(
-                f"points must lie in the shape, but {int(missing.sum())} of {number} lie outside; the first "
-                f"is "
-                f"points[{row}] = {answer.points[row].tolist()}"
+                f"points must lie in the shape, but {int(missing.sum())} of {number} lie outside; "
+                f"the first is points[{row}] = {answer.points[row].tolist()}"
             )
         _cover(answer, problem)
     names = [piece.name for piece in problem.pieces]

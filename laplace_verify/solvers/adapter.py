@@ -281,7 +281,7 @@ def as_answer(returned: object) -> Answer:
 
 def _material(problem: Problem) -> str:
     """Return which kind of conductivity the problem has."""
-    if problem.regions:
+    if len(problem.regions) > 1:  # a homogeneous problem has one region, the whole shape
         return "regions"
     return "tensor" if np.ndim(problem.conductivity) == 2 else "scalar"
 

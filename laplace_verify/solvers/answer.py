@@ -68,11 +68,10 @@ class Answer:
     >>> pool = Answer([0.0, 0.5, 1.0], [1.0, 1.5, 2.0], cells={"line": [[0, 1], [1, 2]]})
     >>> pool.kind, pool.value_at([[0.25], [0.6]]).tolist()
     ('cells', [1.25, 1.6])
-    >>> Answer([0.0, 0.5, 1.0], [1.0, float("nan"), 2.0])
+    >>> Answer([0.0, 0.5, 1.0], [1.0, float("nan"), 2.0])  # doctest: +ELLIPSIS
     Traceback (most recent call last):
     ...
-    laplace_verify.errors.AnswerError: values must be finite, but 1 of 3 are not; values[1] is nan at point
-    [0.5]
+    laplace_verify.errors.AnswerError: values must be finite, but 1 of 3 are not; values[1] is nan ...
     """
 
     points: Array | None = None

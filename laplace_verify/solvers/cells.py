@@ -258,21 +258,21 @@ def _jacobian_degree(kind: Element) -> int:
 def _orientation(block: CellBlock) -> int:
     """Return how many cells run clockwise; refuse folded and degenerate ones."""
     kind = block.element
-    at = np.vstack([kind.nodes, kind.quadrature(2 * kind.degree)[0]])
-    det = determinant(block.jacobian(at))
+    inside = determinant(block.jacobian(kind.quadrature(2 * kind.degree)[0]))
+    # At the nodes themselves det J may vanish: quarter-point cells at the tip of a crack are made so.
+    at_nodes = determinant(block.jacobian(kind.nodes))
     low, high = block.boxes()
     least = FOLDED * np.prod(high - low, axis=1)
-    positive = np.min(det, axis=1) > least
-    negative = np.max(det, axis=1) < -least
+    positive = (np.min(inside, axis=1) > least) & (np.min(at_nodes, axis=1) >= -least)
+    negative = (np.max(inside, axis=1) < -least) & (np.max(at_nodes, axis=1) <= least)
     bad = ~(positive | negative)
     if bad.any():
         row = int(np.flatnonzero(bad)[0])
+        nodes, places = block.nodes[row].tolist(), block.corners[row].tolist()
         raise AnswerError(
-            f"cells[{kind.name!r}]: {int(bad.sum())} of {len(bad)} cells are folded or have no volume; the "
-            f"first is "
-            f"row {row}, nodes {block.nodes[row].tolist()} at {block.corners[row].tolist()}. List the nodes "
-            f"in "
-            "meshio's order (round the cell, corners before edge nodes)"
+            f"cells[{kind.name!r}]: {int(bad.sum())} of {len(bad)} cells are folded or have no volume; the first "
+            f"is row {row}, nodes {nodes} at {places}. List the nodes in meshio's order (round the cell, corners "
+            "before edge nodes)"
         )
     return int(negative.sum())
 
