@@ -87,7 +87,7 @@ def join_terms(terms: list[tuple[Exact, str]]) -> str:
     """
     text = ""
     for coefficient, name in terms:
-        size = show(abs(coefficient))
+        size = show(-coefficient if coefficient < 0 else coefficient)
         body = name if name and size == "1" else f"{size} {name}".strip()
         text += (
             (" - " if coefficient < 0 else " + ") + body if text else ("-" if coefficient < 0 else "") + body

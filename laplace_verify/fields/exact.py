@@ -54,7 +54,7 @@ def exact(number: Number, name: str) -> Exact:
     elif isinstance(number, numbers.Integral):
         result = int(number)
     elif isinstance(number, numbers.Rational):
-        result = _simplest(Fraction(number.numerator, number.denominator))
+        result = _simplest(Fraction(int(number.numerator), int(number.denominator)))
     elif hasattr(number, "_mpf_"):
         result = _simplest(_fraction_of_mpf(number, name))
     elif isinstance(number, numbers.Real):
@@ -144,10 +144,8 @@ def whole(number: Any, name: str, lowest: int, highest: int) -> int:
     FieldError
         If it is none.
     """
-    if (
-        isinstance(number, bool)
-        or not isinstance(number, numbers.Integral)
-        or not lowest <= number <= highest
-    ):
-        raise FieldError(f"{name} must be a whole number from {lowest} to {highest}, got {str(number)[:60]}")
-    return int(number)
+    if not isinstance(number, bool) and isinstance(number, numbers.Integral):
+        result = int(number)
+        if lowest <= result <= highest:
+            return result
+    raise FieldError(f"{name} must be a whole number from {lowest} to {highest}, got {str(number)[:60]}")

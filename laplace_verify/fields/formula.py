@@ -34,10 +34,10 @@ OPERATORS = {ast.Add: "+", ast.Sub: "-", ast.Mult: "*", ast.Div: "/", ast.Pow: "
 
 @dataclass(frozen=True, slots=True)
 class Formula:
-    """A formula of the coordinates x, y, z, of r (distance from the origin) and theta (atan2(y, x), in the plane).
+    """A formula of x, y, z, of r (distance from the origin) and of theta (atan2(y, x), in the plane).
 
-    Allowed are + - * / **, numbers, pi, e and the functions exp log sin cos tan sinh cosh tanh sqrt asin acos atan
-    and atan2(y, x).
+    Allowed are + - * / **, numbers, pi, e and the functions exp log sin cos tan sinh cosh tanh sqrt asin
+    acos atan and atan2(y, x).
 
     >>> f = Formula.parse("x**2 - y**2 + 0.5*x")
     >>> sorted(f.variables)
@@ -58,7 +58,8 @@ class Formula:
         Raises
         ------
         FieldError
-            If the text holds anything else than a formula, or one beyond the bounds; the message names the place.
+            If the text holds anything else than a formula, or one beyond the bounds; the message names the
+            place.
         """
         if not isinstance(text, str):
             raise FieldError(f"a formula must be a string, got {type(text).__name__}")

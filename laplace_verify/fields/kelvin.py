@@ -5,8 +5,8 @@ With x* = c + R^2 (x - c)/|x - c|^2 the mirror image of x,
     2-D:  v(x) = u(x*)                    3-D:  v(x) = (R/|x - c|) u(x*)
 
 is harmonic wherever u is at x*. (W. Thomson, Lord Kelvin, 1847; Axler, Bourdon & Ramey, Harmonic Function
-Theory, 2001, ch. 4, from memory, unchecked.) Behaviour of u far away shows near c: |u| = O(|x|^e) becomes a pole
-of exponent -e, in 3-D -e - 1.
+Theory, 2001, ch. 4, from memory, unchecked.) Behaviour of u far away shows near c: |u| = O(|x|^e) becomes a
+pole of exponent -e, in 3-D -e - 1.
 """
 
 from __future__ import annotations
@@ -95,7 +95,7 @@ class Inverted(Field):
         dx, dy = cut.direction
         along = float(offsets[0] * dx + offsets[1] * dy)
         across = abs(float(offsets[1] * dx - offsets[0] * dy))
-        # Points c + t d with along <= t <= along + length go to t -> R^2/t; the same direction keeps the sides.
+        # Points c + t d with along <= t <= along + length go to t -> R^2/t; the direction stays, so do sides.
         if across > 1e-14 * float(np.abs(offsets).sum()) or along < 0 <= along + cut.length:
             raise FieldError(
                 f"the branch cut of {self.field.formula} would not stay straight in this inversion: put the "
@@ -124,7 +124,7 @@ class Inverted(Field):
 
     @property
     def growth(self) -> float:
-        """The field has a value at the centre, so 0 in the plane and -1 in space, unless it is singular there."""
+        """0 in the plane and -1 in space, unless the field is singular at the centre."""
         centre = tuple(float(c) for c in self.centre)
         at_centre = [s for s in self.field.singularities if s.point == centre]
         return max([0.0, *(-s.exponent for s in at_centre)]) - (self.dim - 2)
@@ -163,7 +163,8 @@ class Inverted(Field):
         images = np.stack(image, axis=1)
         finite = off_centre & np.isfinite(images).all(axis=1)
         images[~finite] = [float(c) for c in self.centre]
-        return finite & (self.field._valid(images) | ~finite)
+        valid: BoolArray = finite & (self.field._valid(images) | ~finite)
+        return valid
 
     def conjugate(self) -> Field:
         """Return minus the inverted conjugate: mirror images turn the plane over."""

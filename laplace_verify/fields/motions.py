@@ -1,7 +1,7 @@
 """Rigid motions and enlargements: the Laplacian does not see them (up to a constant factor).
 
-The moved field is u(M^{-1} x). Singular points and cuts move along; a motion of the plane keeps left and right,
-so the sides of a cut keep their meaning.
+The moved field is u(M^{-1} x). Singular points and cuts move along; a motion of the plane keeps left and
+right, so the sides of a cut keep their meaning.
 """
 
 from __future__ import annotations
@@ -26,8 +26,8 @@ __all__ = ["Moved", "Rotated", "Scaled", "Shifted"]
 class Moved(Field):
     """What shifted, turned, enlarged and stretched fields share: u(M^{-1} x) with M linear plus a shift.
 
-    A subclass has a dataclass field `field`, gives the preimage of coordinates in `_back`, turns a gradient in
-    `_forward`, and says in `_linear` and `_vector` where points go: x -> linear @ x + vector.
+    A subclass has a dataclass field `field`, gives the preimage of coordinates in `_back`, turns a gradient
+    in `_forward`, and says in `_linear` and `_vector` where points go: x -> linear @ x + vector.
     """
 
     __slots__ = ()

@@ -1,7 +1,7 @@
 """Harmonic polynomials of the plane: real and imaginary part of ((x + i y - c)/scale)^n.
 
-The power is formed by repeated squaring, (a + i b)^2 = (a - b)(a + b) + 2 i a b, which costs log2(n) steps and has
-a relative error of about n roundings, what rounding x and y themselves would do to it.
+The power is formed by repeated squaring, (a + i b)^2 = (a - b)(a + b) + 2 i a b, which costs log2(n) steps
+and has a relative error of about n roundings, what rounding x and y themselves would do to it.
 """
 
 from __future__ import annotations
@@ -129,4 +129,4 @@ def _shifted(name: str, centre: Exact) -> str:
     """Return ``x`` or ``(x - 2/3)``."""
     if not centre:
         return name
-    return f"({name} {'-' if centre > 0 else '+'} {show(abs(centre))})"
+    return f"({name} {'-' if centre > 0 else '+'} {show(-centre if centre < 0 else centre)})"

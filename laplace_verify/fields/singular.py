@@ -7,8 +7,8 @@ Near a singular point p, with r = |x - p|, a field behaves like a smooth functio
     r^e  (e < 0)                    "pole"
     an angle                        "jump"       e = 0: boundary values jump, the value depends on the way in
 
-A plane field with a power or an angle in it needs a branch cut: a straight segment or ray that its points must
-not lie on, unless the caller says from which side they are meant.
+A plane field with a power or an angle in it needs a branch cut: a straight segment or ray that its points
+must not lie on, unless the caller says from which side they are meant.
 """
 
 from __future__ import annotations
@@ -44,8 +44,9 @@ def weakest_basis(*bases: Basis) -> Basis:
 class Enclosure(NamedTuple):
     """A number with an error radius and the reason to believe it: |u - value| <= radius.
 
-    `basis` is "closed form" (only rounding is left, and was compared at two precisions), "tail bound" (a series
-    with a proven bound for what was left out) or "uncertified" (a user's function whose inside is unknown).
+    `basis` is "closed form" (only rounding is left, and was compared at two precisions), "tail bound" (a
+    series with a proven bound for what was left out) or "uncertified" (a user's function whose inside is
+    unknown).
     """
 
     value: mpmath.mpf
@@ -112,7 +113,8 @@ class Cut:
         """Return which points lie on the cut, to rounding; its own start does not count."""
         size = np.abs(points).sum(axis=1) + abs(self.start[0]) + abs(self.start[1])
         on: BoolArray = self.distance(points) <= ROUNDING * size
-        return on & (points != self.start).any(axis=1)
+        away: BoolArray = (points != self.start).any(axis=1)
+        return on & away
 
     def meets_exactly(self, x: mpmath.mpf, y: mpmath.mpf) -> bool:
         """Return whether one precise point lies on the cut: exactly if the cut is parallel to an axis."""

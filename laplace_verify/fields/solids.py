@@ -4,7 +4,8 @@ Schmidt's seminormalisation, without the sign (-1)^m: with N = sqrt((2 - [m = 0]
 
     C_lm + i S_lm = N r^l P_l^m(cos t) e^{i m phi},        sum over m of C^2 + S^2 = r^(2l),  so |u| <= r^l.
 
-In Cartesian coordinates, no angle is formed: start from C_mm + i S_mm = sqrt(2 (2m-1)!!/(2m)!!) (x + i y)^m and go up,
+In Cartesian coordinates, no angle is formed: start from C_mm + i S_mm = sqrt(2 (2m-1)!!/(2m)!!) (x + i y)^m
+and go up,
 
     sqrt(l^2 - m^2) Y_l = (2l - 1) z Y_{l-1} - sqrt((l-1)^2 - m^2) r^2 Y_{l-2},
 
@@ -14,9 +15,9 @@ which is stable (the Legendre recurrence at fixed order). Derivatives are solid 
     d/dx C_lm = (1/2) [-a C_{l-1,m+1} + b C_{l-1,m-1}],    d/dy C_lm = (1/2) [-a S_{l-1,m+1} - b S_{l-1,m-1}],
     d/dx S_lm = (1/2) [-a S_{l-1,m+1} + b S_{l-1,m-1}],    d/dy S_lm = (1/2) [ a C_{l-1,m+1} + b C_{l-1,m-1}],
 
-a = sqrt((l-m)(l-m-1)), b = sqrt((l+m)(l+m-1)), b times sqrt 2 if m = 1; for m = 0 grad_xy = -sqrt(l(l-1)/2) (C, S)_{l-1,1}
-(derived here from (d/dx + i d/dy) r^l P_l^m e^{i m phi} = -r^{l-1} P_{l-1}^{m+1} e^{i (m+1) phi}; compare Hobson,
-Spherical and Ellipsoidal Harmonics, 1931, ch. III, from memory, unchecked).
+a = sqrt((l-m)(l-m-1)), b = sqrt((l+m)(l+m-1)), b times sqrt 2 if m = 1; for m = 0 grad_xy = -sqrt(l(l-1)/2)
+(C, S)_{l-1,1} (derived here from (d/dx + i d/dy) r^l P_l^m e^{i m phi} = -r^{l-1} P_{l-1}^{m+1} e^{i (m+1)
+phi}; compare Hobson, Spherical and Ellipsoidal Harmonics, 1931, ch. III, from memory, unchecked).
 """
 
 from __future__ import annotations
@@ -89,9 +90,10 @@ class Solid(Field):
 
 
 def solid(l: int, m: int) -> Solid:  # noqa: E741  # the symbol of the literature
-    """Return the real solid harmonic of degree l, order m: r^l P_l^m(cos t) cos(m phi), or sin(|m| phi) for m < 0.
+    """Return the real solid harmonic r^l P_l^m(cos t) cos(m phi), or sin(|m| phi) for m < 0.
 
-    Schmidt seminormalised without the sign (-1)^m, so that |u| <= r^l: (1, 0) is z, (1, 1) is x, (1, -1) is y.
+    Schmidt seminormalised without the sign (-1)^m, so that |u| <= r^l: (1, 0) is z, (1, 1) is x, (1, -1) is
+    y.
 
     Parameters
     ----------

@@ -201,8 +201,8 @@ def dipole(point: Iterable[Number], direction: Iterable[Number]) -> Dipole:
 
     In the plane it is the derivative of log r along `direction`, in space minus that of 1/r.
 
-    >>> dipole((0, 0), (1, 0)).value([[2.0, 0.0], [0.0, 1.0], [1.0, 1.0]]).tolist()
-    [0.5, 0.0, 0.5]
+    >>> dipole((0, 0), (1, 0)).value([[2.0, 0.0], [0.0, 1.0], [0.5, 0.0]]).tolist()
+    [0.5, 0.0, 2.0]
 
     Raises
     ------

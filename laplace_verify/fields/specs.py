@@ -1,8 +1,8 @@
 """Fields as plain data: ``{"kind": "wedge", "alpha": "2/3", ...}``, exact in both directions.
 
-Numbers are written as int, float (the shortest decimal that gives the same binary value back) or as a fraction
-in a string. Nothing is executed when a specification is read: each kind names a dataclass, whose parameters are
-validated as if a user had typed them.
+Numbers are written as int, float (the shortest decimal that gives the same binary value back) or as a
+fraction in a string. Nothing is executed when a specification is read: each kind names a dataclass, whose
+parameters are validated as if a user had typed them.
 """
 
 from __future__ import annotations
@@ -37,10 +37,10 @@ def registered(kind: str) -> Callable[[F], F]:
 
 def to_spec(field: Field) -> dict[str, Any]:
     """Return the kind and the parameters of a field as plain data."""
-    if not (is_dataclass(field) and type(field).kind):
+    family: Any = type(field)
+    if not (is_dataclass(family) and field.kind):
         raise FieldError(f"{field.formula} cannot be written to a file: its family is not registered")
-    parameters = {f.name: _plain(getattr(field, f.name)) for f in fields(field)}
-    return {"kind": type(field).kind, **parameters}
+    return {"kind": field.kind, **{f.name: _plain(getattr(field, f.name)) for f in fields(family)}}
 
 
 def from_spec(spec: dict[str, Any]) -> Field:

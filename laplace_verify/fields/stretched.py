@@ -1,7 +1,7 @@
 """Fields for an anisotropic conductivity: v(x) = u(K^{-1/2} x) solves div(K grad v) = 0.
 
-With S = K^{-1/2} (symmetric), grad v = S grad u and div(K grad v) = trace(K S H S) = trace(H) = 0, where H is the
-Hessian of the harmonic u at S x (derived here). n . K grad v = n . K^{1/2} grad u.
+With S = K^{-1/2} (symmetric), grad v = S grad u and div(K grad v) = trace(K S H S) = trace(H) = 0, where H
+is the Hessian of the harmonic u at S x (derived here). n . K grad v = n . K^{1/2} grad u.
 """
 
 from __future__ import annotations

@@ -150,7 +150,7 @@ class UserField(Field):
         return sum(weight * (moved(j) - moved(-j)) for j, weight in WEIGHTS) / (60 * h)
 
     def _steps(self, x: tuple[Any, ...]) -> Array:
-        """Return float64 steps, powers of two, a twentieth of the distance to the next singular point or less."""
+        """Return float64 steps: powers of two, at most a twentieth of the distance to a singular point."""
         distance = np.full(len(x[0]), np.inf)
         for s in self.singular:
             offsets = [c - p for c, p in zip(x, s.point, strict=True)]
@@ -188,8 +188,8 @@ def field(
         ``"exp(pi*y)*sin(pi*x)"``, where decimals and pi are exact and derivatives too; see `Formula`.
     gradient : callable, optional
         ``gradient(x, y)`` returning the tuple of partial derivatives. Without it: a sixth-order central
-        difference with steps of 1/256 (smaller near singular points), good to about 1e-12 where `f` varies over
-        lengths of order one. Not for formulas.
+        difference with steps of 1/256 (smaller near singular points), good to about 1e-12 where `f` varies
+        over lengths of order one. Not for formulas.
     singular : sequence of points or Singularity
         Where `f` has no value (plain points are taken as poles) or is not smooth.
     dim : int, optional
@@ -220,7 +220,8 @@ def field(
         if gradient is not None:
             raise FieldError("a formula differentiates itself: leave gradient out")
         formula = _parsed(f)
-        return FormulaField(text=formula.text, dim=_dim_of(formula) if dim is None else dim, singular=points)  # type: ignore[arg-type]  # checked there
+        count = _dim_of(formula) if dim is None else dim
+        return FormulaField(text=formula.text, dim=count, singular=_singular_points(points, count))
     if not callable(f):
         raise FieldError(f"a field is made of a function or a formula string, got {type(f).__name__}")
     if gradient is not None and not callable(gradient):
@@ -246,7 +247,7 @@ def _dim_of_signature(f: Callable[..., Any], dim: int | None) -> Any:
     try:
         parameters = inspect.signature(f).parameters.values()
     except (TypeError, ValueError):  # numpy ufuncs and some builtins have none
-        parameters = None  # type: ignore[assignment]
+        parameters = None
     if parameters is None or any(p.kind is p.VAR_POSITIONAL for p in parameters):
         if dim is None:
             raise FieldError("the number of coordinates cannot be told from the function: give dim=")

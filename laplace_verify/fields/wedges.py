@@ -1,9 +1,9 @@
-"""Corner powers of the plane: r^alpha sin(alpha theta) and r^alpha cos(alpha theta), (r, theta) about an apex.
+"""Corner powers of the plane: r^alpha sin(alpha theta) and r^alpha cos(alpha theta) about an apex.
 
-They are the leading solutions at a corner of opening w: sin with alpha = pi/w vanishes on both sides, cos with
-alpha = pi/w has no flux through them, and alpha = pi/(2 w) serves a corner where the conditions change (w = pi: a
-change in the middle of a straight side, alpha = 1/2). Unless alpha is whole, theta needs a branch cut: a ray from
-the apex at the angle `cut`, where theta runs through (cut - 2 pi, cut].
+They are the leading solutions at a corner of opening w: sin with alpha = pi/w vanishes on both sides, cos
+with alpha = pi/w has no flux through them, and alpha = pi/(2 w) serves a corner where the conditions change
+(w = pi: a change in the middle of a straight side, alpha = 1/2). Unless alpha is whole, theta needs a branch
+cut: a ray from the apex at the angle `cut`, where theta runs through (cut - 2 pi, cut].
 """
 
 from __future__ import annotations
@@ -63,7 +63,7 @@ class Wedge(Field):
             raise FieldError("alpha must not be 0; for a constant use fields.affine((0, 0), constant)")
         if self.part not in ("sin", "cos"):
             raise FieldError(f'part must be "sin" or "cos", got {self.part!r}')
-        if not abs(self.cut) <= 4 * math.pi + 1e-9:
+        if not abs(float(self.cut)) <= 4 * math.pi + 1e-9:
             raise FieldError(f"cut is an angle in radians between -4 pi and 4 pi, got {self.cut}")
 
     @property
@@ -183,20 +183,20 @@ def wedge(
     cut: Number = DEFAULT_CUT,
     apex: Iterable[Number] = (0, 0),
 ) -> Wedge:
-    """Return u = r^alpha sin(alpha theta) or r^alpha cos(alpha theta) about an apex, theta in (cut - 2 pi, cut].
+    """Return u = r^alpha sin(alpha theta) or r^alpha cos(alpha theta), theta in (cut - 2 pi, cut].
 
     Parameters
     ----------
     alpha : number
         Exponent, not 0; ``"2/3"`` or a Fraction is exact. A whole number gives a polynomial (or, below 0, a
-        pole) without cut; any other positive one a singular point at the apex, whose gradient is infinite there
-        if alpha < 1.
+        pole) without cut; any other positive one a singular point at the apex, whose gradient is infinite
+        there if alpha < 1.
     part : {"sin", "cos"}
     cut : number
         Angle in radians of the ray where theta jumps by 2 pi; it must lie outside the domain or on a slit.
-        The default 7 pi/4 bisects the missing quadrant of an L-shape, and suits a sector of opening up to 7 pi/4 and
-        the half-plane y > 0. For a wider sector give pi + opening/2; for a slit along the positive x axis 2 pi,
-        where ``side=+1`` is the lip theta = 0 and ``side=-1`` the lip theta = 2 pi.
+        The default 7 pi/4 bisects the missing quadrant of an L-shape, and suits a sector of opening up to 7
+        pi/4 and the half-plane y > 0. For a wider sector give pi + opening/2; for a slit along the positive
+        x axis 2 pi, where ``side=+1`` is the lip theta = 0 and ``side=-1`` the lip theta = 2 pi.
     apex : tuple of two numbers
 
     Examples

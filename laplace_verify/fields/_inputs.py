@@ -1,0 +1,67 @@
+"""Points and sides as a user gives them, and how a message names them."""
+
+from __future__ import annotations
+
+from fractions import Fraction
+from typing import Any, TypeAlias
+
+import numpy as np
+import numpy.typing as npt
+
+from laplace_verify.arrays import Array, BoolArray
+from laplace_verify.errors import FieldError
+
+__all__ = ["Side", "as_sides", "columns", "equals", "is_number", "name_of", "text_of"]
+
+Side: TypeAlias = npt.ArrayLike | None
+
+
+def columns(points: Array) -> tuple[Array, ...]:
+    """Return the coordinates as contiguous arrays."""
+    return tuple(np.ascontiguousarray(points.T))
+
+
+def as_sides(side: Side, count: int) -> Array | None:
+    """Return sides as an array (count,) of +1, -1 (0: not on a cut), or None.
+
+    Raises
+    ------
+    FieldError
+        If the shape is neither () nor (count,), or an entry is not one of these.
+    """
+    if side is None:
+        return None
+    try:
+        sides = np.asarray(side, dtype=np.float64)
+    except (TypeError, ValueError) as cause:
+        raise FieldError(f"side must be None, +1, -1 or an array of them, got {side!r}") from cause
+    if sides.shape not in ((), (count,)):
+        raise FieldError(f"side must be one number or have shape ({count},), got {sides.shape}")
+    if not np.isin(sides, (-1.0, 0.0, 1.0)).all():
+        raise FieldError("side must be None, +1 or -1 (0 for points that are not on a cut)")
+    return np.ascontiguousarray(np.broadcast_to(sides, (count,)))
+
+
+def equals(points: Array, singular: tuple[float, ...], place: Any) -> BoolArray:
+    """Return which points are the singular one; a precise point is compared exactly."""
+    if place is None:
+        return np.asarray((points == singular).all(axis=1))
+    return np.array([all(a == b for a, b in zip(place, singular, strict=True))])
+
+
+def is_number(point: Any) -> bool:
+    """Return whether a single coordinate was given in place of a point."""
+    return isinstance(point, (int, float, str, Fraction)) or hasattr(point, "_mpf_") or np.ndim(point) == 0
+
+
+def name_of(points: Array, hit: BoolArray, first: int | None, place: Any) -> str:
+    """Return "point 7 = (0.0, 1.0)" for the first point that is hit."""
+    if place is not None:
+        return f"point {text_of(place)}"
+    row = int(np.flatnonzero(hit)[0])
+    return f"point {row + (first or 0)} = {tuple(points[row].tolist())}"
+
+
+def text_of(place: tuple[Any, ...]) -> str:
+    """Return a precise point in a message."""
+    return "(" + ", ".join(str(c)[:30] for c in place) + ")"
