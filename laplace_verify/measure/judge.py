@@ -24,7 +24,7 @@ from dataclasses import replace
 
 from laplace_verify.measure.expected import Expectation, is_functional, smallest_loss
 from laplace_verify.measure.orders import OrderFit, fit_order, noise_level, pair_orders
-from laplace_verify.measure.rates import judge_decrease, judge_exponential, stagnation
+from laplace_verify.measure.rates import Finding, judge_decrease, judge_exponential, stagnation
 from laplace_verify.measure.results import Level, Order
 from laplace_verify.measure.series import MINIMUM_LEVELS, Series, series_of
 from laplace_verify.measure.verdict import Verdict
@@ -76,19 +76,16 @@ def judge_norm(series: Series, expectation: Expectation, noise: float) -> Order:
     """Return the order and verdict of one norm (`pairs` is left to the caller)."""
     expected = expectation.expected
     if series.exact:
-        return _order(series, expectation, None, Verdict.PASS, "exact to round-off at every size")
+        return _order(series, expectation, None, Finding(Verdict.PASS, "exact to round-off at every size"))
     if expected == "exponential":
-        observed, verdict, words = judge_exponential(series)
-        return replace(_order(series, expectation, None, verdict, words), observed=observed)
+        observed, finding = judge_exponential(series)
+        return replace(_order(series, expectation, None, finding), observed=observed)
     if expected == "decrease":
-        fit = _fit(series, None, noise)
-        verdict, words = judge_decrease(series)
-        return _order(series, expectation, fit, verdict, words)
+        return _order(series, expectation, _fit(series, None, noise), judge_decrease(series))
     if not isinstance(expected, float | int):
-        return _order(series, expectation, _fit(series, None, noise), None, "no rate is expected")
+        return _order(series, expectation, _fit(series, None, noise), None)
     fit = _fit(series, float(expected), noise)
-    verdict, words = _algebraic(series, float(expected), fit, noise)
-    return _order(series, expectation, fit, verdict, words)
+    return _order(series, expectation, fit, _algebraic(series, float(expected), fit, noise))
 
 
 def combine(orders: Mapping[str, Order]) -> tuple[Verdict, list[str], list[str]]:
@@ -122,8 +119,8 @@ def _fit(series: Series, expected: float | None, noise: float) -> OrderFit | Non
     return fit_order(series.h[: series.above], series.errors[: series.above], expected, noise)
 
 
-def _algebraic(series: Series, expected: float, fit: OrderFit | None, noise: float) -> tuple[Verdict, str]:
-    """Return verdict and words for an expected number."""
+def _algebraic(series: Series, expected: float, fit: OrderFit | None, noise: float) -> Finding:
+    """Return the finding for an expected number."""
     stuck = stagnation(series, expected)
     if stuck is not None:
         return stuck
@@ -131,15 +128,17 @@ def _algebraic(series: Series, expected: float, fit: OrderFit | None, noise: flo
     if series.at_floor and series.above < MINIMUM_LEVELS:
         return _down_to_floor(series, least, noise)
     if fit is None:
-        return Verdict.INCONCLUSIVE, f"only {series.above} levels can be judged; {_advice(series)}"
+        words = f"{series.above} levels can be judged, too few for an order; {_advice(series)}"
+        return Finding(Verdict.INCONCLUSIVE, words, finer=True)
     if series.above < MINIMUM_LEVELS:
-        return Verdict.INCONCLUSIVE, f"three levels give an order but no verdict; {_advice(series)}"
+        words = f"three levels give an order but no verdict; {_advice(series)}"
+        return Finding(Verdict.INCONCLUSIVE, words, finer=True)
     slopes = pair_orders(series.h[: series.above], series.errors[: series.above])
     last = slopes[-1]
     margin = 2 * math.sqrt(2) * noise / math.log(series.h[series.above - 2] / series.h[series.above - 1])
     holds = last is not None and last >= least - margin
     if fit.low >= least and holds:
-        return Verdict.PASS, ""
+        return Finding(Verdict.PASS)
     stalled = not holds and all(slope is not None and slope >= least for slope in slopes[:-1])
     if stalled or fit.low >= least:
         words = (
@@ -147,14 +146,15 @@ def _algebraic(series: Series, expected: float, fit: OrderFit | None, noise: flo
             f"{last:.2f} to size {series.sizes[series.above - 1]}. If a solver tolerance or a reduced precision "
             f"stops it, declare error_floor; if not, {_advice(series)}"
         )
-        return Verdict.INCONCLUSIVE, words
+        return Finding(Verdict.INCONCLUSIVE, words, finer=True)
     if fit.high <= least:
-        return Verdict.FAIL, ""
-    return Verdict.INCONCLUSIVE, f"too few or too rough levels to tell; {_advice(series)}"
+        return Finding(Verdict.FAIL)
+    words = f"too few or too rough levels to tell; {_advice(series)}"
+    return Finding(Verdict.INCONCLUSIVE, words, finer=True)
 
 
-def _down_to_floor(series: Series, least: float, noise: float) -> tuple[Verdict, str]:
-    """Return verdict and words where fewer than four levels lie above the floor.
+def _down_to_floor(series: Series, least: float, noise: float) -> Finding:
+    """Return the finding where fewer than four levels lie above the floor.
 
     The slope into the first level at the floor is a lower bound of the order: the floor only adds to the error.
     """
@@ -165,11 +165,11 @@ def _down_to_floor(series: Series, least: float, noise: float) -> tuple[Verdict,
     if top >= 3:
         best = max(best, math.log(errors[0] / errors[2]) / math.log(h[0] / h[2]))
     if best >= least:
-        return Verdict.PASS, f"falls to the floor, at order {best:.2f} or more before it"
+        return Finding(Verdict.PASS, f"falls to the floor, at order {best:.2f} or more before it")
     margin = 2 * math.sqrt(2) * noise / math.log(h[0] / h[1])
     if top >= 3 and best < least - margin:
-        return Verdict.FAIL, f"falls to the floor, but only at order {best:.2f}"
-    return Verdict.INCONCLUSIVE, f"only {top} levels above the floor; run coarser sizes"
+        return Finding(Verdict.FAIL, f"falls to the floor, but only at order {best:.2f}")
+    return Finding(Verdict.INCONCLUSIVE, f"{top} levels lie above the floor, too few; run coarser sizes")
 
 
 def _advice(series: Series) -> str:
@@ -183,14 +183,13 @@ def _advice(series: Series) -> str:
 
 
 def _order(
-    series: Series, expectation: Expectation, fit: OrderFit | None, verdict: Verdict | None, words: str
+    series: Series, expectation: Expectation, fit: OrderFit | None, finding: Finding | None
 ) -> Order:
     """Assemble an Order and its sentence."""
     expected = expectation.expected
-    tolerance = smallest_loss(float(expected)) / 2 if isinstance(expected, float | int) else None
-    if verdict is Verdict.PASS and len(series.sizes) < MINIMUM_LEVELS and not series.exact:
-        verdict = Verdict.INCONCLUSIVE
-        words = f"{words}; {_few(series)}" if words else _few(series)
+    if finding and finding.verdict is Verdict.PASS and len(series.sizes) < MINIMUM_LEVELS and not series.exact:
+        words = f"{finding.words}; {_few(series)}" if finding.words else _few(series)
+        finding = Finding(Verdict.INCONCLUSIVE, words, finer=True)
     return Order(
         observed=fit.order if fit else None,
         low=fit.low if fit else None,
@@ -198,11 +197,12 @@ def _order(
         formal=expectation.formal,
         expected=expected,
         decides=expectation.decides,
-        tolerance=tolerance,
+        tolerance=smallest_loss(float(expected)) / 2 if isinstance(expected, float | int) else None,
         basis=expectation.basis,
-        verdict=verdict,
+        verdict=finding.verdict if finding else None,
+        finer=bool(finding and finding.finer),
         left_out=series.left_out,
-        note=_sentence(series, expectation, fit, verdict, words, tolerance),
+        note=_sentence(series, expectation, fit, finding),
     )
 
 
@@ -212,30 +212,24 @@ def _few(series: Series) -> str:
 
 
 def _sentence(
-    series: Series,
-    expectation: Expectation,
-    fit: OrderFit | None,
-    verdict: Verdict | None,
-    words: str,
-    tolerance: float | None,
+    series: Series, expectation: Expectation, fit: OrderFit | None, finding: Finding | None
 ) -> str:
-    """Return, say, "max: formal order 2, expected 2, observed 1.02 [0.95, 1.09] over 4 levels: FAIL (...)"."""
+    """Return, say, "max: formal order 2, expected 2, observed 1.02 [0.95, 1.09] over 4 levels: FAIL"."""
     parts = []
-    if expectation.formal is not None:
-        formal = expectation.formal
+    formal, expected = expectation.formal, expectation.expected
+    if formal is not None:
         parts.append(f"formal order {formal if isinstance(formal, str) else format(formal, '.3g')}")
-    expected = expectation.expected
     if expected is not None:
         parts.append(f"expected {expected if isinstance(expected, str) else format(expected, '.3g')}")
     if fit is not None:
         parts.append(f"observed {fit.order:.2f} [{fit.low:.2f}, {fit.high:.2f}] over {series.above} levels")
     text = f"{series.norm}: {', '.join(parts)}" if parts else f"{series.norm}:"
-    if verdict is not None and expectation.decides:
-        text += f": {verdict}"
-    elif verdict is not None or expected is None:
-        text += " (does not decide)"
-    if words:
-        text += f"; {words}"
-    if tolerance is not None and expectation.decides and fit is not None:
-        text += f" (tolerance {tolerance:.3g}; a loss of {2 * tolerance:.3g} or more is to be seen)"
+    if finding is None:
+        return f"{text}; no rate is expected, it does not decide ({expectation.basis})"
+    text += f": {finding.verdict}" if expectation.decides else " (does not decide)"
+    if finding.words:
+        text += f"; {finding.words}"
+    if expectation.decides and fit is not None and isinstance(expected, float | int):
+        loss = smallest_loss(float(expected))
+        text += f" (tolerance {loss / 2:.3g}: a loss of {loss:.3g} or more is to be seen)"
     return text

@@ -8,6 +8,7 @@ order by the fourth root of the growth of n therefore tells them apart (derived 
 from __future__ import annotations
 
 import math
+from typing import NamedTuple
 
 import numpy as np
 
@@ -15,15 +16,25 @@ from laplace_verify.measure.orders import pair_orders
 from laplace_verify.measure.series import Series
 from laplace_verify.measure.verdict import Verdict
 
-__all__ = ["judge_decrease", "judge_exponential", "stagnation"]
+__all__ = ["Finding", "judge_decrease", "judge_exponential", "stagnation"]
 
 STEEP = 6.0  # a fall to the floor in one step counts as geometric from this local order on
 FLAT = 0.9  # last error over first: nothing was gained
-TINY = 1e-6  # relative errors below it that do not fall look like a tolerance or a precision, not a wrong limit
+TINY = (
+    1e-6  # relative errors below it that do not fall look like a tolerance or a precision, not a wrong limit
+)
 HALVED = 0.5
 
 
-def stagnation(series: Series, expected: float = 1.0) -> tuple[Verdict, str] | None:
+class Finding(NamedTuple):
+    """A verdict, why in words, and whether a finer level may settle what is open."""
+
+    verdict: Verdict
+    words: str = ""
+    finer: bool = False
+
+
+def stagnation(series: Series, expected: float = 1.0) -> Finding | None:
     """Return a verdict if the error does not fall over three levels or more, None if it falls.
 
     `expected` is the order that should have shown: over a range of h in which it means less than a factor
@@ -40,55 +51,63 @@ def stagnation(series: Series, expected: float = 1.0) -> tuple[Verdict, str] | N
             f"the error stays near {last:.1e} (relative {series.relative[-1]:.1e}): small, but neither falling nor at "
             f"round-off. If a solver tolerance or a reduced precision stops it, declare error_floor"
         )
-        return Verdict.INCONCLUSIVE, words
+        return Finding(Verdict.INCONCLUSIVE, words)
     if last > 2 * first:
-        return Verdict.FAIL, f"diverges: the error grows from {first:.2e} to {last:.2e}"
-    return Verdict.FAIL, f"does not converge: the error stays at {last:.2e} (relative {series.relative[-1]:.1e})"
+        return Finding(Verdict.FAIL, f"diverges: the error grows from {first:.2e} to {last:.2e}")
+    words = f"does not converge: the error stays at {last:.2e} (relative {series.relative[-1]:.1e})"
+    return Finding(Verdict.FAIL, words)
 
 
-def judge_exponential(series: Series) -> tuple[float | None, Verdict, str]:
-    """Return b of e ~ exp(-b n), verdict and words for a method that declares exponential convergence."""
+def judge_exponential(series: Series) -> tuple[float | None, Finding]:
+    """Return b of e ~ exp(-b n) and the finding for a method that declares exponential convergence."""
     stuck = stagnation(series)
     if stuck is not None:
-        return None, *stuck
-    top = series.above
-    stop = top + 1 if series.at_floor else top
+        return None, stuck
+    stop = series.above + 1 if series.at_floor else series.above
     n, errors = [float(size) for size in series.sizes[:stop]], series.errors[:stop]
-    inverse = [1 / size for size in n]
-    orders = [order for order in pair_orders(inverse, errors) if order is not None]
-    if len(n) < 2 or not all(error > 0 for error in errors):
-        if series.at_floor:
-            return None, Verdict.PASS, "falls to zero"
-        return None, Verdict.INCONCLUSIVE, "too few levels; run more sizes"
+    if series.at_floor and not all(error > 0 for error in errors):
+        return None, Finding(Verdict.PASS, "falls to zero")
+    if len(n) < 2:
+        return None, Finding(Verdict.INCONCLUSIVE, "too few levels; run more sizes", finer=True)
     rate = -float(np.polyfit(n, np.log(errors), 1)[0])
-    said = f"error falls like exp(-{rate:.3g} n)"
+    return rate, _geometric(series, n, errors, f"error falls like exp(-{rate:.3g} n)")
+
+
+def _geometric(series: Series, n: list[float], errors: list[float], said: str) -> Finding:
+    """Tell geometric convergence from a power by the growth of the local order."""
+    orders = [order for order in pair_orders([1 / size for size in n], errors) if order is not None]
     if min(orders) <= 0:
-        return rate, Verdict.INCONCLUSIVE, "the error rises between levels above the floor; declare error_floor if it is one"
+        words = "the error rises between levels above the floor; declare error_floor if it is one"
+        return Finding(Verdict.INCONCLUSIVE, words)
     if series.at_floor and orders[-1] >= STEEP:
-        return rate, Verdict.PASS, f"{said} and reaches the floor by size {series.sizes[top]}"
+        return Finding(Verdict.PASS, f"{said} and reaches the floor by size {series.sizes[series.above]}")
     if len(orders) < 2:
-        return rate, Verdict.INCONCLUSIVE, f"{said}; too few levels to tell it from a power; run more sizes"
+        return Finding(Verdict.INCONCLUSIVE, f"{said}; too few levels to tell it from a power", finer=True)
     growth = orders[-1] / orders[0]
     reach = math.sqrt(n[-1] * n[-2] / (n[1] * n[0]))
     if growth >= reach**0.25:
-        return rate, Verdict.PASS, f"{said}: the local order grows from {orders[0]:.1f} to {orders[-1]:.1f}"
+        words = f"{said}: the local order grows from {orders[0]:.1f} to {orders[-1]:.1f}"
+        return Finding(Verdict.PASS, words)
     if growth <= reach**0.125 and not series.at_floor:
         words = f"the local order stays near {orders[-1]:.2f}: algebraic, not exponential convergence"
-        return rate, Verdict.FAIL, words
-    return rate, Verdict.INCONCLUSIVE, f"{said}, but too roughly to tell it from a power; run sizes in between"
+        return Finding(Verdict.FAIL, words)
+    words = f"{said}, but too roughly to tell it from a power; run sizes in between"
+    return Finding(Verdict.INCONCLUSIVE, words, finer=True)
 
 
-def judge_decrease(series: Series) -> tuple[Verdict, str]:
-    """Return verdict and words where theory promises convergence without a rate: the error must halve."""
+def judge_decrease(series: Series) -> Finding:
+    """Return the finding where theory promises convergence without a rate: the error must halve."""
     stuck = stagnation(series)
     if stuck is not None:
         return stuck
     said = "theory claims convergence and no rate"
     if series.at_floor and series.above:
-        return Verdict.PASS, f"falls to the floor; {said}"
+        return Finding(Verdict.PASS, f"falls to the floor; {said}")
     if len(series.errors) < 3:
-        return Verdict.INCONCLUSIVE, "fewer than three levels can be judged; run finer sizes"
+        words = "fewer than three levels can be judged; run finer sizes"
+        return Finding(Verdict.INCONCLUSIVE, words, finer=True)
     first, last = series.errors[0], series.errors[-1]
     if last <= HALVED * first and last <= 1.1 * series.errors[-2]:
-        return Verdict.PASS, f"falls from {first:.2e} to {last:.2e}; {said}"
-    return Verdict.INCONCLUSIVE, f"falls only from {first:.2e} to {last:.2e}; {said}; run finer sizes"
+        return Finding(Verdict.PASS, f"falls from {first:.2e} to {last:.2e}; {said}")
+    words = f"falls only from {first:.2e} to {last:.2e}; {said}; run finer sizes"
+    return Finding(Verdict.INCONCLUSIVE, words, finer=True)

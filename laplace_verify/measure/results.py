@@ -47,7 +47,8 @@ class Order:
     `formal` is what the author declares, `expected` what remains of it after the regularity of solution and
     domain: a number, "exponential", "decrease" (theory promises convergence but no rate) or None (theory
     promises nothing). [`low`, `high`] is observed -+ 2 standard errors. `pairs` holds the order between
-    neighbouring levels (None where undefined), `left_out` the sizes that did not enter the fit, and why.
+    neighbouring levels (None where undefined), `left_out` the sizes that did not enter the fit, and
+    why. `finer` says that a finer level may settle what is open.
     """
 
     observed: float | None
@@ -60,6 +61,7 @@ class Order:
     note: str = ""
     basis: str = ""
     verdict: Verdict | None = None
+    finer: bool = False
     pairs: list[float | None] = field(default_factory=list)
     left_out: dict[str, str] = field(default_factory=dict)
 

@@ -5,7 +5,6 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from laplace_verify.measure.expected import is_functional
 from laplace_verify.measure.results import Level
 
 __all__ = ["MINIMUM_LEVELS", "ROUND_OFF", "Series", "series_of"]
@@ -74,10 +73,3 @@ def series_of(norm: str, levels: Sequence[Level], error_floor: float | None) -> 
         exact=exact,
         left_out=left_out,
     )
-
-
-def keeps_sign(norm: str, signed: Sequence[float]) -> bool:
-    """Return whether the errors of a functional can be judged: all of one sign (always true for norms)."""
-    if not is_functional(norm):
-        return True
-    return all(value > 0 for value in signed) or all(value < 0 for value in signed)

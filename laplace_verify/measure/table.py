@@ -39,7 +39,9 @@ def convergence_table(
     rows = [_row(k, level, orders, norms) for k, level in enumerate(levels)]
     if levels:
         rows.append(_fit_row(orders, norms))
-    table: str = tabulate(rows, headers=headers, tablefmt=STYLES[fmt], disable_numparse=True, stralign="right")
+    table: str = tabulate(
+        rows, headers=headers, tablefmt=STYLES[fmt], disable_numparse=True, stralign="right"
+    )
     notes = _notes(levels, orders, norms)
     if not notes:
         return table
@@ -82,7 +84,9 @@ def _notes(levels: Sequence[Level], orders: Mapping[str, Order], norms: Sequence
     for norm in norms:
         for size, why in orders[norm].left_out.items():
             found.setdefault(f"size {size} not in the fit: {why}", []).append(norm)
-    notes = [f"{text} ({', '.join(where)})" if len(where) < len(norms) else text for text, where in found.items()]
+    notes = [
+        f"{text} ({', '.join(where)})" if len(where) < len(norms) else text for text, where in found.items()
+    ]
     marked = {f"size {size}" for norm in norms for size in orders[norm].left_out}
     notes += [f"size {v.size}: {v.note}" for v in levels if v.note and f"size {v.size}" not in marked]
     return notes

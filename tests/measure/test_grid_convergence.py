@@ -38,7 +38,9 @@ def test_reproduces_the_tutorial_example_with_ratio_two():
     # Slater, NPARC Alliance, Examining Spatial (Grid) Convergence (digits quoted from memory, recomputed).
     found = grid_convergence([0.97050, 0.96854, 0.96178], [1, 2, 4])
     got = (found.order, found.extrapolated, found.index, found.coarse_index, found.asymptotic_ratio)
-    np.testing.assert_allclose(got, (1.786170, 0.9713003, 0.001030826, 0.003562493, 1.002024), rtol=2e-6, atol=0)
+    np.testing.assert_allclose(
+        got, (1.786170, 0.9713003, 0.001030826, 0.003562493, 1.002024), rtol=2e-6, atol=0
+    )
 
 
 @pytest.mark.parametrize(("coarsest", "order"), [(4, 1.9411992), (8, 1.9844128)])

@@ -145,7 +145,10 @@ def test_a_fall_to_the_floor_below_the_expected_order_fails():
 
 def test_unjudged_levels_stay_visible_with_their_note():
     coarse = levels_of(halving(2), [0.5, 0.4], judged=False)
-    coarse = [Level(**{**{name: getattr(v, name) for name in Level.__slots__}, "note": "too coarse"}) for v in coarse]
+    coarse = [
+        Level(**{**{name: getattr(v, name) for name in Level.__slots__}, "note": "too coarse"})
+        for v in coarse
+    ]
     fine = levels_of(halving(6)[2:], halving(6)[2:] ** 2)
     order = judge([*coarse, *fine], expect(2.0))["max"]
     assert order.verdict is Verdict.PASS

@@ -1,0 +1,54 @@
+"""The acceptance criteria of a study, fixed before the solver runs: norms, expected orders, which of them decide."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+from typing import TYPE_CHECKING
+
+from laplace_verify.measure.expected import Expectation, expected_order
+from laplace_verify.measure.functionals import probes
+from laplace_verify.solvers.declarations import order_in
+
+if TYPE_CHECKING:
+    from laplace_verify.problems import Case
+    from laplace_verify.solvers import Adapter
+
+__all__ = ["LEVEL", "expectations", "norms_of"]
+
+LEVEL = "quantity:level"
+INTERIOR = ("max", "L1", "L2", "H1-semi", "energy")
+
+
+def norms_of(case: Case) -> list[str]:
+    """Return every norm that may be measured on a case."""
+    names = list(INTERIOR)
+    for head in ("trace", "flux", "fluxdensity"):
+        names += [f"{head}:{piece.name}" for piece in case.problem.pieces]
+    names += [f"quantity:{name}" for name in case.quantities]
+    if case.problem.constant is not None:
+        names.append(LEVEL)
+    return names + [f"probe:{k}" for k in range(len(probes(case)))]
+
+
+def expectations(solver: Adapter, case: Case) -> dict[str, Expectation]:
+    """Return norm -> Expectation for a solver on a case.
+
+    The level of a pure Neumann answer decides only if the solver declares that it fixes the constant; its order is
+    then that of the L2 error.
+    """
+    claimed = solver.expected.get(case.id)
+    found = {}
+    for norm in norms_of(case):
+        rate = None if claimed is None else order_in(norm, solver.kind, claimed)
+        found[norm] = expected_order(solver.kind, norm, solver.formal_order, case.regularity, rate)
+    if LEVEL in found:
+        found[LEVEL] = _level(found["L2"], fixes=solver.fixes_constant)
+    return found
+
+
+def _level(volume: Expectation, *, fixes: bool) -> Expectation:
+    """Return what is expected of the level of a pure Neumann answer."""
+    if not fixes:
+        basis = "the solver does not declare that it fixes the constant: shown, does not decide"
+        return replace(volume, norm=LEVEL, expected=None, decides=False, basis=basis)
+    return replace(volume, norm=LEVEL, basis=f"the mean of the error is bounded by its L2 norm: {volume.basis}")

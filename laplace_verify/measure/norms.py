@@ -1,0 +1,224 @@
+"""Error norms of one answer.
+
+With e = u_h - u: max |e|, L1 = int |e|, L2 = (int e^2)^(1/2), H1-semi = (int |grad e|^2)^(1/2), energy =
+(int grad e . K grad e)^(1/2), each absolute and divided by the same norm of u over the same points. A callable is
+integrated over the shape, a nodal answer with cells element by element with those cells' own shape functions, a bare
+cloud at its own points with its weights, or equal ones. A pure Neumann answer is aligned first: the weighted mean
+of e is taken out, and kept as the error of the level.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from laplace_verify.arrays import Array, BoolArray
+from laplace_verify.errors import AnswerError
+from laplace_verify.measure.sampling import quadrature_points, scattered_points
+
+if TYPE_CHECKING:
+    from laplace_verify.measure.exact import Exact
+    from laplace_verify.problems import Problem
+    from laplace_verify.solvers import Answer
+
+__all__ = ["Measured", "Sample", "measure_norms", "sample_answer"]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Sample:
+    """An answer at points: quadrature points with weights, and further points for the maximum only.
+
+    `values` and `gradients` are the solver's; `extra` and `extra_values` serve the maximum. `left_out` is the
+    share of the quadrature weight outside the solver's mesh.
+    """
+
+    points: Array
+    weights: Array
+    values: Array
+    gradients: Array | None
+    extra: Array
+    extra_values: Array
+    left_out: float = 0.0
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Measured:
+    """Norms of one level, the level's own error (pure Neumann), and signed errors at points."""
+
+    errors: dict[str, float]
+    relative: dict[str, float]
+    shift: float
+    points: Array
+    signed: Array
+    left_out: float
+    near: float | None  # largest error nearer to the boundary than the declared clearance
+
+
+def sample_answer(
+    answer: Answer, problem: Problem, singular: Array, h: float, generator: np.random.Generator, max_points: int
+) -> Sample:
+    """Evaluate an answer where it is to be measured."""
+    if answer.kind == "callable":
+        return _sample_callable(answer, problem, singular, h, generator, max_points)
+    if answer.kind == "cells":
+        return _sample_cells(answer, generator, max_points)
+    points, values = answer.points, answer.values
+    if points is None or values is None:
+        raise AnswerError("points and values, or evaluate, must be given: this answer has neither")
+    weights = answer.weights
+    if weights is None:
+        weights = np.full(len(points), problem.shape.measure / len(points))
+    return Sample(
+        points=points, weights=weights, values=values, gradients=answer.gradient_at(points),
+        extra=points[:0], extra_values=values[:0],
+    )  # fmt: skip
+
+
+def measure_norms(sample: Sample, exact: Exact, problem: Problem, clearance: float = 0.0) -> Measured:
+    """Return every norm of the values and, if there is one, of the gradient.
+
+    `clearance`, relative to the shape's extent, keeps points near the boundary out of the norms; the largest error
+    there is reported apart.
+    """
+    u, extra_u = exact.values(sample.points), exact.values(sample.extra)
+    defined, extra_defined = np.isfinite(u), np.isfinite(extra_u)
+    if not defined.any():
+        raise AnswerError("no point of the answer lies where the exact solution has a value")
+    clear, extra_clear = defined, extra_defined
+    if clearance > 0:
+        reach = clearance * problem.shape.extent
+        clear = defined & (problem.shape.distance(sample.points) >= reach)
+        extra_clear = extra_defined & (problem.shape.distance(sample.extra) >= reach)
+        if not clear.any():
+            raise AnswerError(f"no point lies further than the declared clearance {clearance} from the boundary")
+    weights = np.where(clear, sample.weights, 0.0)
+    total = float(weights.sum())
+    error, extra_error = sample.values - u, sample.extra_values - extra_u
+    shift, mean = 0.0, 0.0
+    if problem.constant is not None:
+        shift = float(weights[clear] @ error[clear]) / total
+        mean = float(weights[clear] @ u[clear]) / total
+        error, extra_error = error - shift, extra_error - shift
+    errors, relative = _value_norms(
+        np.concatenate([error[clear], extra_error[extra_clear]]),
+        np.concatenate([u[clear], extra_u[extra_clear]]) - mean,
+        weights[clear],
+    )
+    if sample.gradients is not None:
+        _add_gradient_norms(errors, relative, sample, exact, problem, clear)
+    left_out = sample.left_out + float(sample.weights[~defined].sum() / sample.weights.sum())
+    return Measured(
+        errors=errors, relative=relative, shift=shift,
+        points=np.concatenate([sample.points[clear], sample.extra[extra_clear]]),
+        signed=np.concatenate([error[clear], extra_error[extra_clear]]),
+        left_out=left_out,
+        near=_largest(np.concatenate([error[defined & ~clear], extra_error[extra_defined & ~extra_clear]])),
+    )  # fmt: skip
+
+
+def _value_norms(error: Array, u: Array, weights: Array) -> tuple[dict[str, float], dict[str, float]]:
+    """Return max, L1, L2 of the error, absolute and relative; the first len(weights) entries carry weights."""
+    count = len(weights)
+    norms = {
+        "max": lambda f: float(np.max(np.abs(f))),
+        "L1": lambda f: float(weights @ np.abs(f[:count])),
+        "L2": lambda f: float(np.sqrt(weights @ f[:count] ** 2)),
+    }
+    errors = {name: norm(error) for name, norm in norms.items()}
+    relative = {name: errors[name] / (norm(u) or 1.0) for name, norm in norms.items()}
+    return errors, relative
+
+
+def _add_gradient_norms(
+    errors: dict[str, float], relative: dict[str, float], sample: Sample, exact: Exact, problem: Problem,
+    clear: BoolArray,
+) -> None:  # fmt: skip
+    """Add H1-semi and energy where both gradients exist."""
+    if sample.gradients is None:
+        return
+    gradients = exact.gradients(sample.points)
+    usable = clear & np.isfinite(gradients).all(axis=1) & np.isfinite(sample.gradients).all(axis=1)
+    if not usable.any():
+        return
+    gradient, weights = gradients[usable], sample.weights[usable]
+    error = sample.gradients[usable] - gradient
+    tensor = problem.tensor
+    # a constant has no gradient to be relative to: values per length take its place
+    extent, largest = problem.shape.extent, float(np.max(np.abs(exact.values(sample.points)[clear])))
+    per_length = (largest or 1.0) / extent * float(np.sqrt(weights.sum()))
+    for name, form in (("H1-semi", np.eye(problem.dim)), ("energy", tensor)):
+        norms = [float(np.sqrt(weights @ ((g @ form) * g).sum(axis=1))) for g in (error, gradient)]
+        errors[name] = norms[0]
+        relative[name] = norms[0] / (norms[1] or per_length * float(np.sqrt(np.trace(form) / problem.dim)))
+
+
+def _sample_callable(
+    answer: Answer, problem: Problem, singular: Array, h: float, generator: np.random.Generator, max_points: int
+) -> Sample:
+    """Evaluate a callable at quadrature and scattered points; NaN near curved pieces is outside its mesh."""
+    shape = problem.shape
+    points, weights = quadrature_points(shape, singular, h, max_points)
+    extra = scattered_points(shape, singular, h, generator, max_points)
+    values, extra_values = answer.value_at(points), answer.value_at(extra)
+    inside = _inside_mesh(points, values, problem, h, "evaluate")
+    extra_inside = _inside_mesh(extra, extra_values, problem, h, "evaluate")
+    gradients = None
+    if answer.has_gradient:
+        gradients = answer.gradient_at(points[inside])
+        if gradients is not None:
+            _inside_mesh(points[inside], gradients.sum(axis=1), problem, h, "gradient")
+    return Sample(
+        points=points[inside], weights=weights[inside], values=values[inside], gradients=gradients,
+        extra=extra[extra_inside], extra_values=extra_values[extra_inside],
+        left_out=float(weights[~inside].sum() / weights.sum()),
+    )  # fmt: skip
+
+
+def _sample_cells(answer: Answer, generator: np.random.Generator, max_points: int) -> Sample:
+    """Evaluate a nodal answer element by element; the maximum also over random points and nodes."""
+    mesh = answer.mesh
+    if mesh is None:
+        raise AnswerError("cells: this answer has none")
+    degree = max(block.element.degree for block in mesh.blocks)
+    order = 2 * degree + 2
+    samples = answer.element_quadrature(order if mesh.count * (order + 1) <= 2 * max_points else 2 * degree)
+    scattered = answer.random_points(int(generator.integers(2**31)), per_cell=1)
+    extra, extra_values = scattered.points, scattered.values
+    if answer.location == "point" and answer.points is not None and answer.values is not None:
+        used = np.unique(np.concatenate([block.nodes.ravel() for block in mesh.blocks]))
+        extra = np.concatenate([extra, answer.points[used]])
+        extra_values = np.concatenate([extra_values, answer.values[used]])
+    return Sample(
+        points=samples.points, weights=samples.weights, values=samples.values, gradients=samples.gradients,
+        extra=extra, extra_values=extra_values,
+    )  # fmt: skip
+
+
+def _inside_mesh(points: Array, values: Array, problem: Problem, h: float, name: str) -> BoolArray:
+    """Return which values are numbers; NaN further than h from every curved piece is an error."""
+    known: BoolArray = np.isfinite(values)
+    if known.all():
+        return known
+    outside = points[~known]
+    distance = np.full(len(outside), np.inf)
+    for piece in problem.pieces:
+        if piece.curved:
+            offset = outside - piece.project(outside)
+            distance = np.minimum(distance, np.sqrt((offset**2).sum(axis=1)))
+    bad = ~(distance <= h)
+    if bad.any():
+        where = outside[int(np.flatnonzero(bad)[0])].tolist()
+        raise AnswerError(
+            f"{name} must return numbers inside the shape, but {int(bad.sum())} of {len(points)} are NaN; the first "
+            f"at {where}, not within h = {h:.3g} of a curved piece (there NaN means outside the mesh)"
+        )
+    if not known.any():
+        raise AnswerError(f"{name} returned NaN at all of {len(points)} points")
+    return known
+
+
+def _largest(error: Array) -> float | None:
+    """Return max |error|, None if there is none."""
+    return float(np.max(np.abs(error))) if len(error) else None

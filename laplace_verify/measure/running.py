@@ -1,0 +1,137 @@
+"""One level of a study: solve, measure, keep plain numbers."""
+
+from __future__ import annotations
+
+import math
+import time
+from dataclasses import dataclass, field
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from laplace_verify.errors import AnswerError
+from laplace_verify.measure.criteria import LEVEL
+from laplace_verify.measure.exact import Exact
+from laplace_verify.measure.functionals import ExactFluxes, measure_functionals
+from laplace_verify.measure.norms import Measured, measure_norms, sample_answer
+from laplace_verify.measure.places import error_map, local_errors
+from laplace_verify.measure.results import ErrorMap, Level
+from laplace_verify.measure.sampling import level_generator
+from laplace_verify.solvers.spacing import spacing
+
+if TYPE_CHECKING:
+    from laplace_verify.problems import Case
+    from laplace_verify.solvers import Adapter, Answer
+
+__all__ = ["LevelResult", "Runner"]
+
+MOST_POINTS = {1: 20_000, 2: 200_000, 3: 400_000}
+WANTED = 1000  # points offered to a solver that must know beforehand where it will be asked
+ROUNDING = 1e-9
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class LevelResult:
+    """A level with what only the study needs: signed functionals, places, map, remarks."""
+
+    level: Level
+    signed: dict[str, float]
+    local: dict[str, float | None]
+    error_map: ErrorMap
+    remarks: tuple[str, ...]
+
+
+@dataclass(slots=True, eq=False)
+class Runner:
+    """Runs levels of one solver on one case; the exact solution is kept between them."""
+
+    solver: Adapter
+    case: Case
+    seed: int
+    max_points: int | None = None
+    exact: Exact = field(init=False)
+    fluxes: ExactFluxes = field(init=False)
+
+    def __post_init__(self) -> None:
+        """Prepare the exact solution."""
+        self.exact = Exact(self.case)
+        self.fluxes = ExactFluxes(self.case, self.exact)
+
+    def run(self, size: int) -> LevelResult:
+        """Solve and measure one size; whatever the solver raises passes through."""
+        generator = level_generator(self.seed, self.case.id, size)
+        shape = self.case.problem.shape
+        most = self.max_points or MOST_POINTS[shape.dim]
+        wanted = shape.sample(min(WANTED, most), seed=int(generator.integers(2**31)))
+        problem, log = self.case.problem.watched()
+        start = time.perf_counter()
+        answer = self.solver.solve(problem, size, wanted, seed=self.seed)
+        seconds = time.perf_counter() - start
+        h = self._spacing(answer, size)
+        singular = self.case.regularity.singular_points
+        sample = sample_answer(answer, self.case.problem, singular, h, generator, most)
+        measured = measure_norms(sample, self.exact, self.case.problem, self.solver.clearance)
+        numbers, signed = self._functionals(answer, measured, h)
+        note, judged = self._judged(h)
+        level = Level(
+            size=size, h=h, unknowns=answer.degrees_of_freedom or 0, seconds=seconds,
+            errors=measured.errors | {norm: pair[0] for norm, pair in numbers.items()},
+            relative=measured.relative | {norm: pair[1] for norm, pair in numbers.items()},
+            judged=judged, note=note, moves=dict(log.largest), left_out=measured.left_out,
+        )  # fmt: skip
+        return LevelResult(
+            level=level,
+            signed=signed,
+            local=local_errors(shape, measured.points, measured.signed, h, generator),
+            error_map=error_map(size, measured.points, measured.signed, generator),
+            remarks=tuple(answer.remarks(self.case.problem)) + self._near(measured, size),
+        )
+
+    def _spacing(self, answer: Answer, size: int) -> float:
+        """Return h; for stochastic solvers 1/samples, in which their order is 1/2."""
+        if self.solver.kind == "stochastic" and answer.samples:
+            return 1.0 / answer.samples
+        return float(spacing(answer, self.case.problem, self.solver.kind, size).h)
+
+    def _judged(self, h: float) -> tuple[str, bool]:
+        """Return a note and whether the level counts: it must resolve the smallest length of the case."""
+        scale = self.case.regularity.scale
+        by_n = self.solver.formal_order("L2") == "exponential" or self.solver.kind == "stochastic"
+        if by_n or not math.isfinite(scale) or h <= scale / 2 * (1 + ROUNDING):
+            return "", True
+        return f"too coarse to be judged: h = {h:.3g} exceeds half the smallest length {scale:.3g}", False
+
+    def _functionals(
+        self, answer: Answer, measured: Measured, h: float
+    ) -> tuple[dict[str, tuple[float, float]], dict[str, float]]:
+        """Return norm -> (error, relative error) and signed errors of everything but the interior norms."""
+        scale = float(np.max(np.abs(self.exact.values(measured.points)))) or 1.0
+        found = measure_functionals(answer, self.case, self.exact, self.fluxes, h, measured.shift, scale)
+        if self.case.problem.constant is not None:
+            found.add(LEVEL, measured.shift, scale)
+        return {norm: (found.errors[norm], found.relative[norm]) for norm in found.errors}, found.signed
+
+    def _near(self, measured: Measured, size: int) -> tuple[str, ...]:
+        """Return a remark on the points that the declared clearance keeps out of the norms."""
+        if measured.near is None or not self.solver.clearance > 0:
+            return ()
+        return (
+            f"size {size}: largest error {measured.near:.2e} at points nearer to the boundary than the declared "
+            f"clearance, which do not decide",
+        )
+
+
+def check_falling(levels: list[Level]) -> None:
+    """Refuse spacings that do not fall from size to size.
+
+    Raises
+    ------
+    AnswerError
+        Naming the two sizes.
+    """
+    for coarse, fine in zip(levels, levels[1:], strict=False):
+        if not fine.h < coarse.h:
+            raise AnswerError(
+                f"h must fall from size to size, but it is {coarse.h:.4g} at size {coarse.size} and {fine.h:.4g} at size "
+                f"{fine.size}"
+            )

@@ -1,0 +1,219 @@
+"""A study: one solver on one case at rising sizes, measured against the exact solution and judged.
+
+The criteria are fixed before the solver runs. Whatever a solver does (raise, return NaN or another shape, never
+converge) ends in a verdict; only misuse by the caller raises.
+"""
+
+from __future__ import annotations
+
+import traceback
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field
+from typing import TYPE_CHECKING
+
+from laplace_verify.errors import AdapterError, LaplaceVerifyError, ProblemError
+from laplace_verify.measure.criteria import expectations
+from laplace_verify.measure.expected import Expectation
+from laplace_verify.measure.features import features
+from laplace_verify.measure.judge import combine, judge
+from laplace_verify.measure.levels import check_sizes, default_sizes, further_sizes
+from laplace_verify.measure.oddities import oddities, sign_changes
+from laplace_verify.measure.results import Level, Order, Study
+from laplace_verify.measure.running import LevelResult, Runner, check_falling
+from laplace_verify.measure.verdict import Verdict
+from laplace_verify.problems import Case
+from laplace_verify.solvers import Adapter, Refused
+
+if TYPE_CHECKING:
+    from typing import Any
+
+__all__ = ["study"]
+
+
+def study(
+    solver: Adapter,
+    case: Case,
+    sizes: Sequence[int] | None = None,
+    seed: int = 0,
+    max_points: int | None = None,
+) -> Study:
+    """Run `solver` on `case` at several sizes and judge the observed order of its errors.
+
+    Parameters
+    ----------
+    solver : Adapter
+        What `adapt` returns.
+    case : Case
+        From the catalogue, or made by `case`.
+    sizes : sequence of int, optional
+        Three or more, increasing; four are needed for a PASS. Default: the solver's own, else 8 16 32 64 in one and two
+        dimensions and 6 9 13 19 28 in three. Up to four more are added to the default if the verdict is still open
+        and the work stays bounded.
+    seed : int
+        Seed of the sample points and of solvers that take one. Same seed, same numbers.
+    max_points : int, optional
+        Cap on the sample points of a level; default 20 000, 200 000, 400 000 in one, two, three dimensions.
+
+    Returns
+    -------
+    Study
+        Levels, orders, verdict, reasons and remarks. Errors are in the units of u (times lengths, see `Level`).
+
+    Raises
+    ------
+    AdapterError
+        If `solver` is no adapter or the sizes are not three or more, increasing.
+    ProblemError
+        If `case` is no case.
+
+    Examples
+    --------
+    >>> from laplace_verify import fields
+    >>> from laplace_verify.geometry import Rectangle
+    >>> from laplace_verify.problems import case
+    >>> from laplace_verify.solvers import Answer, adapt
+    >>> @adapt(kind="finite difference", order=2)
+    ... def answer_of_order_two(problem, n):
+    ...     return Answer(evaluate=lambda x: x[:, 0] * (1 + 1 / n**2), h=1 / n)
+    >>> found = study(answer_of_order_two, case(Rectangle((0, 0), (2, 1)), {}, fields.affine((1, 0))))
+    >>> str(found.verdict), round(found.orders["max"].observed, 2)
+    ('PASS', 2.0)
+    """
+    _check_arguments(solver, case, max_points)
+    given = check_sizes(sizes) if sizes is not None else solver.sizes
+    planned = given if given is not None else default_sizes(case.dim)
+    run = _Run(solver, case, Runner(solver, case, seed, max_points), list(planned), expectations(solver, case))
+    reason = solver.refuses(case.problem)
+    if reason is not None:
+        return run.result(Verdict.NOT_APPLICABLE, [reason], [])
+    try:
+        for size in planned:
+            run.add(size)
+    except (Exception, SystemExit) as cause:
+        return run.broken(size, cause)
+    if given is None:
+        run.refine(started=len(planned))
+    return run.judged()
+
+
+@dataclass(slots=True, eq=False)
+class _Run:
+    """The state of a study while it runs."""
+
+    solver: Adapter
+    case: Case
+    runner: Runner
+    sizes: list[int]
+    criteria: Mapping[str, Expectation]
+    results: list[LevelResult] = field(default_factory=list)
+    remarks: list[str] = field(default_factory=list)
+
+    @property
+    def levels(self) -> list[Level]:
+        """The levels so far, coarsest first."""
+        return [result.level for result in self.results]
+
+    def add(self, size: int) -> None:
+        """Run one more size."""
+        result = self.runner.run(size)
+        check_falling(sorted([*self.levels, result.level], key=lambda level: level.size))
+        self.results = sorted([*self.results, result], key=lambda r: r.level.size)
+
+    def refine(self, started: int) -> None:
+        """Add sizes while the verdict is open, a finer level may settle it, and the work stays bounded."""
+        added: list[int] = []
+        while True:
+            orders = self.orders()
+            verdict, _, _ = combine(orders)
+            wanting = any(order.decides and order.finer for order in orders.values())
+            further = further_sizes(self.levels, self.case.dim, started)
+            if verdict is not Verdict.INCONCLUSIVE or not wanting or not further:
+                break
+            try:
+                for size in further:
+                    self.add(size)
+                    added.append(size)
+            except (Exception, SystemExit) as cause:
+                self.remarks.append(f"size {size} was tried beyond the default sizes and broke: {_said(cause)}")
+                break
+        if added:
+            self.remarks.append(f"the default sizes left the verdict open; added: {', '.join(map(str, added))}")
+        self.sizes = [level.size for level in self.levels]
+
+    def orders(self) -> dict[str, Order]:
+        """Judge the levels so far."""
+        mixed = sign_changes([result.signed for result in self.results if result.level.judged])
+        return judge(
+            self.levels, self.criteria, kind=self.solver.kind, error_floor=self.solver.error_floor, mixed_signs=mixed
+        )
+
+    def judged(self) -> Study:
+        """Return the study with its verdict."""
+        orders = self.orders()
+        verdict, reasons, remarks = combine(orders)
+        faults, odd = oddities(self.levels)
+        if faults:
+            verdict, reasons = Verdict.FAIL, [*reasons, *faults]
+        remarks += [*odd, *dict.fromkeys(remark for result in self.results for remark in result.remarks)]
+        return self.result(verdict, reasons, [*remarks, *self.remarks], orders)
+
+    def broken(self, size: int, cause: BaseException) -> Study:
+        """Return the study of a solver that broke, with the levels it finished."""
+        if isinstance(cause, Refused):
+            reason = f"size {size}: the solver declined a well-posed problem: {cause}"
+        else:
+            reason = f"size {size}: {_said(cause)}"
+        text = "".join(traceback.format_exception(cause))
+        return self.result(Verdict.ERROR, [reason], self.remarks, self.orders(), crash=text)
+
+    def result(
+        self,
+        verdict: Verdict,
+        reasons: list[str],
+        remarks: list[str],
+        orders: dict[str, Order] | None = None,
+        crash: str = "",
+    ) -> Study:
+        """Assemble a Study."""
+        known = self.solver.known.get(self.case.id)
+        if known is not None:
+            remarks = [f"known deviation, says its author: {known}", *remarks]
+        last: Any = self.results[-1] if self.results else None
+        places = list(dict.fromkeys(place for result in self.results for place in result.local))
+        return Study(
+            solver=self.solver.name,
+            case_id=self.case.id,
+            case_title=self.case.title,
+            verdict=verdict,
+            sizes=self.sizes,
+            seed=self.runner.seed,
+            levels=self.levels,
+            orders=orders or {},
+            reasons=reasons,
+            remarks=remarks,
+            features=features(self.case, self.runner.exact),
+            local={place: [result.local.get(place) for result in self.results] for place in places},
+            error_map=last.error_map if last else None,
+            known=known,
+            crash=crash,
+        )
+
+
+def _check_arguments(solver: object, case: object, max_points: int | None) -> None:
+    """Refuse what is no adapter, no case, or no number of points."""
+    if not isinstance(solver, Adapter):
+        raise AdapterError(
+            f"solver must be an adapter, got {type(solver).__name__}; wrap the function first: "
+            'lv.adapt(solve, name="...", kind="finite difference", order=2)'
+        )
+    if not isinstance(case, Case):
+        raise ProblemError(f"case must be a Case, got {case!r}; take one from lv.catalogue or make one with lv.case")
+    if max_points is not None and not max_points >= 100:
+        raise AdapterError(f"max_points must be at least 100, got {max_points!r}")
+
+
+def _said(cause: BaseException) -> str:
+    """Return what an exception says, with its type unless it is one of ours."""
+    if isinstance(cause, LaplaceVerifyError):
+        return str(cause)
+    return f"the solver raised {type(cause).__name__}: {cause}"
