@@ -64,17 +64,28 @@ def precision(given: object) -> tuple[str, ...]:
     return ()
 
 
-def unmasked(name: str, given: Any) -> Any:
-    """Refuse masked entries, which numpy would turn into whatever lies under the mask."""
+def numbers(name: str, given: Any) -> Any:
+    """Return `given` if it holds numbers only; refuse what numpy would turn into NaN, or into a guess.
+
+    Masked entries would become what lies under the mask, None would become NaN, and "1.5" the number 1.5.
+    """
     if isinstance(given, np.ma.MaskedArray) and np.ma.getmaskarray(given).any():
         masked = int(np.ma.getmaskarray(given).sum())
         raise AnswerError(f"{name} must not be masked, but {masked} of {given.size} entries are")
+    try:
+        array = np.asarray(given)
+    except ValueError as cause:
+        raise AnswerError(f"{name} must be a rectangular array of numbers: {cause}") from cause
+    hollow = array.dtype == object and any(entry is None for entry in array.flat)
+    if hollow or array.dtype.kind not in "biufcO":
+        what = "None" if hollow else f"{type(given).__name__} of {array.dtype}"
+        raise AnswerError(f"{name} must be real numbers, got {what}")
     return given
 
 
 def nodes(given: Any, values: Any, cells: object, where: str) -> Array:
     """Return points as a read-only (n, d) array; the dimension is theirs, 1-D if a plain list."""
-    unmasked("points", given)
+    numbers("points", given)
     shape = np.shape(given)
     if len(shape) not in (1, 2):
         raise AnswerError(f"points must have shape (n, d), one row per point, got {shape}")
@@ -94,7 +105,7 @@ def nodes(given: Any, values: Any, cells: object, where: str) -> Array:
 
 def values(given: Any, points: Array | None, mesh: CellMesh | None, where: str) -> Array:
     """Return values as a read-only (n,) array: one per point, or one per cell."""
-    unmasked("values", given)
+    numbers("values", given)
     if np.ndim(given) == 0:
         raise AnswerError(f"values must be an array, one value per point, got {given!r}")
     per_cell = mesh is not None and where == "cell"
@@ -119,7 +130,7 @@ def values(given: Any, points: Array | None, mesh: CellMesh | None, where: str) 
 
 def weights(given: Any, count: int) -> Array:
     """Return weights as a read-only (n,) array of positive numbers."""
-    unmasked("weights", given)
+    numbers("weights", given)
     if np.shape(given) not in ((count,), (count, 1)):
         raise AnswerError(f"weights must have shape ({count},), one per value, got {np.shape(given)}")
     result = as_values(given, count, error=AnswerError, name="weights")
@@ -135,7 +146,7 @@ def weights(given: Any, count: int) -> Array:
 
 def rows(name: str, given: Any, count: int, columns: int) -> Array:
     """Return what a gradient function gave as (count, columns); (count,) will do in 1-D; NaN passes."""
-    unmasked(name, given)
+    numbers(name, given)
     array = np.asarray(given)
     if array.dtype.kind not in "iuf":
         raise AnswerError(f"{name} must return real numbers of shape (n, {columns}), got {array.dtype}")

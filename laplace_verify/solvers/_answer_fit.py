@@ -83,9 +83,7 @@ def remarks(answer: Answer, problem: Problem) -> tuple[str, ...]:
                 f"{mesh.clockwise} of {mesh.count} cells run clockwise; their orientation is ignored"
             )
         if mesh.unused:
-            found.append(
-                f"{mesh.unused} of {len(mesh.nodes)} nodes belong to no cell; their values are not judged"
-            )
+            found.append(f"{mesh.unused} of {len(mesh.nodes)} nodes belong to no cell and are not judged")
         flat = not any(piece.curved for piece in problem.shape.pieces)
         cover = _ratio(float(mesh.volumes().sum()), problem)
         if flat and not abs(cover - 1) <= COVER_REMARK:

@@ -317,9 +317,7 @@ def _called(function: Evaluate, points: Array, name: str, columns: int | None) -
         asked = points[part].copy()  # the solver may write into its argument
         returned = function(asked)
         if columns is None:
-            result[part] = as_values(
-                checks.unmasked(name, returned), len(asked), error=AnswerError, name=name
-            )
+            result[part] = as_values(checks.numbers(name, returned), len(asked), error=AnswerError, name=name)
         else:
             result[part] = checks.rows(name, returned, len(asked), columns)
     infinite = np.isinf(result) if columns is None else np.isinf(result).any(axis=1)

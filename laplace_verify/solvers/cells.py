@@ -270,9 +270,9 @@ def _orientation(block: CellBlock) -> int:
         row = int(np.flatnonzero(bad)[0])
         nodes, places = block.nodes[row].tolist(), block.corners[row].tolist()
         raise AnswerError(
-            f"cells[{kind.name!r}]: {int(bad.sum())} of {len(bad)} cells are folded or have no volume; the first "
-            f"is row {row}, nodes {nodes} at {places}. List the nodes in meshio's order (round the cell, corners "
-            "before edge nodes)"
+            f"cells[{kind.name!r}]: {int(bad.sum())} of {len(bad)} cells are folded or have no volume; "
+            f"the first is row {row}, nodes {nodes} at {places}. List the nodes in meshio's order "
+            "(round the cell, corners before edge nodes)"
         )
     return int(negative.sum())
 

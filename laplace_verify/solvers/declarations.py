@@ -199,7 +199,7 @@ def check_declaration(given: Mapping[str, Any]) -> dict[str, Any]:
         "reproduces_degree": _whole("reproduces_degree", get("reproduces_degree")),
         "discrete_laws": frozenset(_texts("discrete_laws", get("discrete_laws", ()))),
         "fixes_constant": _flag("fixes_constant", get("fixes_constant", False)),
-        "clearance": _number("clearance", get("clearance", 0.0), positive=False),
+        "clearance": _number("clearance", get("clearance"), positive=False) or 0.0,
         "formulation": _formulation(get("formulation"), kind),
         "sizes": _sizes(get("sizes")),
         "variants": _variants(get("variants")),

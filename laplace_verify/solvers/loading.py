@@ -66,14 +66,14 @@ def _module(place: str, solver: str) -> ModuleType:
     is_file = place.endswith(".py") or "/" in place or "\\" in place
     if is_file and not Path(place).is_file():
         raise AdapterError(f"there is no file {place} (solver {solver!r})")
+    if is_file and not place.endswith(".py"):
+        raise AdapterError(f"{place} is no Python file: its name must end in .py (solver {solver!r})")
     try:
         if is_file:
             return module_from_file(place)
         search_also(Path.cwd())
         with contextlib.redirect_stdout(sys.stderr):
             return importlib.import_module(place)
-    except AdapterError:
-        raise
     except (Exception, SystemExit) as cause:
         raise AdapterError(f"cannot import {place}: {_told(cause)} (solver {solver!r})") from cause
 
@@ -82,12 +82,11 @@ def _told(cause: BaseException) -> str:
     """Return an exception in one line, with the last line of code it came from."""
     if isinstance(cause, SyntaxError):
         return f"SyntaxError: {cause.msg}, {cause.filename} line {cause.lineno}"
-    frames = [
-        frame for frame in traceback.extract_tb(cause.__traceback__) if "importlib" not in frame.filename
-    ]
-    last = frames[-1] if frames else None
-    here = last is None or Path(last.filename).name in (Path(__file__).name, "_imports.py")
-    where = "" if here or last is None else f", {last.filename} line {last.lineno}"
+    # The user's own code is meant, not the import machinery nor this package.
+    here = str(Path(__file__).parent)
+    frames = traceback.extract_tb(cause.__traceback__)
+    theirs = [f for f in frames if "importlib" not in f.filename and not f.filename.startswith(here)]
+    where = f", {theirs[-1].filename} line {theirs[-1].lineno}" if theirs else ""
     return f"{type(cause).__name__}: {cause}{where}"
 
 

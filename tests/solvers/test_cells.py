@@ -80,7 +80,7 @@ def test_integral_of_a_cubic_is_exact_on_affine_cells(name, make_mesh, affine_ma
 
 @pytest.mark.parametrize("name", ["line3", "triangle6", "quad8", "quad9", "tetra10"])
 def test_volume_of_cells_on_a_smoothly_mapped_cube_converges(name, make_mesh):
-    """x -> x + 0.1 sin(pi x_1) e_2 keeps the volume; quadratic cells reach it far faster than h^2."""
+    """The last coordinate is stretched by 1 + 0.2 sin(pi x_1); quadratic cells integrate that like Simpson."""
     dim = ELEMENTS[name].dim
 
     def shear(points):
@@ -91,7 +91,7 @@ def test_volume_of_cells_on_a_smoothly_mapped_cube_converges(name, make_mesh):
     points, cells = make_mesh(name, n=4, bend=shear)
     mesh = CellMesh(points, connectivity(cells, len(points)))
     wanted = 1 + 0.2 * 2 / np.pi if dim > 1 else 1  # integral of the height over the base
-    # Simpson's rule with four intervals: h^4 / 180 * pi^4 * 0.2 / 16 with h = 1/4 is below 2e-4; exact in 1-D.
+    # Simpson's rule with four intervals: h^4 / 180 * pi^4 * 0.2 / 16 with h = 1/4 < 2e-4; exact in 1-D.
     assert mesh.volumes().sum() == pytest.approx(wanted, rel=2e-4, abs=0)
     assert mesh.quadrature(0, np.zeros(len(points))).weights.sum() == pytest.approx(
         mesh.volumes().sum(), rel=1e-13, abs=0

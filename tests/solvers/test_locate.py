@@ -31,7 +31,7 @@ def test_random_points_of_cells_are_found_where_they_came_from(name, make_mesh, 
 @pytest.mark.parametrize("name", NAMES)
 def test_nodes_are_found_and_points_outside_are_not(name, make_mesh, bend):
     points, cells = make_mesh(name, bend=bend)
-    mesh, locator = build(points, cells)
+    _, locator = build(points, cells)
     found, _ = locator.find(points)
     assert (found >= 0).all()
     found, at = locator.find(points + 3.0)
@@ -49,7 +49,7 @@ def test_points_just_outside_a_curved_edge_are_outside():
 
 
 def test_cells_that_bulge_beyond_all_their_nodes_still_hold_their_points():
-    """The right side is the parabola through x = 2, 2.1 and 1.6 at y = 0, 1 and 2: its top is no node."""
+    """The right side is a parabola through x = 2, 2.1 and 1.6: its farthest point is no node."""
     points = np.array([[0, 0], [2, 0], [1.6, 2], [0, 2], [1, 0], [2.1, 1], [0.8, 2], [0, 1]])
     mesh, locator = build(points, {"quad8": [[0, 1, 2, 3, 4, 5, 6, 7]]})
     samples = mesh.random(4, 4000, np.zeros(8))
@@ -58,7 +58,7 @@ def test_cells_that_bulge_beyond_all_their_nodes_still_hold_their_points():
 
 
 def test_quarter_point_cells_are_no_folded_cells():
-    """Edge nodes a quarter of the way from corner 0 give r^(1/2) there; det J vanishes at that corner only."""
+    """Edge nodes a quarter of the way along give r^(1/2) at corner 0; det J vanishes there only."""
     points = np.array([[0, 0], [1, 0], [0, 1], [0.25, 0], [0.5, 0.5], [0, 0.25]])
     mesh, locator = build(points, {"triangle6": [[0, 1, 2, 3, 4, 5]]})
     assert mesh.volumes().sum() == pytest.approx(0.5, rel=1e-13, abs=0)
