@@ -151,7 +151,7 @@ class Field(ABC):
             with np.errstate(all="ignore"):
                 for axis, derivative in enumerate(self._gradient(FLOAT, columns(part), lip)):
                     gradients[block, axis] = derivative
-            self._refuse_infinite(part, np.isfinite(gradients[block]).all(axis=1), first=block.start)
+            self._refuse_infinite(part, np.asarray(np.isfinite(gradients[block]).all(axis=1)), first=block.start)
         return gradients
 
     # -- any number of digits ------------------------------------------------------------------------------

@@ -10,6 +10,7 @@ Derivatives are exact by forward differentiation: every node gives its value and
 from __future__ import annotations
 
 import ast
+import sys
 import warnings
 from collections.abc import Mapping
 from dataclasses import dataclass
@@ -26,6 +27,7 @@ LONGEST = 2000  # characters
 DEEPEST = 100  # levels of nesting
 LARGEST_POWER = 1000
 LARGEST_FOLDED = 4000  # bits of an exact intermediate number
+LARGEST = Fraction(sys.float_info.max)
 
 CARTESIAN = ("x", "y", "z")
 VARIABLES = (*CARTESIAN, "r", "theta")
@@ -52,8 +54,8 @@ class Formula:
     variables: frozenset[str]
 
     @classmethod
-    def parse(cls, text: str) -> Formula:
-        """Return the formula that `text` spells.
+    def parse(cls, text: str, names: tuple[str, ...] = VARIABLES) -> Formula:
+        """Return the formula of the variables `names` that `text` spells.
 
         Raises
         ------
@@ -76,7 +78,7 @@ class Formula:
             raise FieldError(f"formula {text[:80]!r}, column {cause.offset}: {cause.msg}") from cause
         except (RecursionError, MemoryError, ValueError) as cause:
             raise FieldError(f"formula {text[:80]!r} is nested too deeply or malformed") from cause
-        reader = _Reader(text)
+        reader = _Reader(text, names)
         node = reader.read(tree.body, 0)
         return cls(text=text, node=node, variables=frozenset(reader.variables))
 
@@ -132,8 +134,9 @@ def _derived(ctx: Any, name: str, given: dict[str, Dual]) -> Dual | None:
 class _Reader:
     """Turns the nodes that `ast` found into our own, refusing all others."""
 
-    def __init__(self, text: str) -> None:
+    def __init__(self, text: str, names: tuple[str, ...]) -> None:
         self.text = text
+        self.names = names
         self.variables: set[str] = set()
 
     def refuse(self, node: ast.AST, reason: str) -> FieldError:
@@ -160,7 +163,8 @@ class _Reader:
             case ast.BinOp(op=ast.BitXor()):
                 raise self.refuse(node, "write ** for powers, not ^")
         raise self.refuse(
-            node, f"{type(node).__name__} is not allowed; use + - * / ** and functions of x, y, z"
+            node,
+            f"{type(node).__name__} is not allowed; use + - * / ** and functions of {', '.join(self.names)}",
         )
 
     def _number(self, node: ast.Constant) -> Constant:
@@ -176,8 +180,8 @@ class _Reader:
     def _name(self, node: ast.Name) -> Node:
         if node.id in ("pi", "e"):
             return Symbol(node.id)
-        if node.id not in VARIABLES:
-            known = [*VARIABLES, "pi", "e", *Call.FUNCTIONS]
+        if node.id not in self.names:
+            known = [*self.names, "pi", "e", *Call.FUNCTIONS]
             raise self.refuse(node, f"unknown name {node.id[:40]!r}; {nearest_names(node.id[:40], known)}")
         self.variables.add(node.id)
         return Symbol(node.id)
@@ -189,7 +193,13 @@ class _Reader:
             return self._power(node, left, right)
         if operator == "/" and isinstance(right, Constant) and right.number == 0:
             raise self.refuse(node, "division by zero")
-        return _folded(operator, left, right)
+        return self.checked(node, _folded(operator, left, right))
+
+    def checked(self, node: ast.AST, result: Node) -> Node:
+        """Refuse a number beyond the range of float64."""
+        if isinstance(result, Constant) and not abs(result.number) <= LARGEST:
+            raise self.refuse(node, "this is too large a number")
+        return result
 
     def _power(self, node: ast.BinOp, base: Node, exponent: Node) -> Node:
         if not isinstance(exponent, Constant):
@@ -198,12 +208,12 @@ class _Reader:
         if not abs(power) <= LARGEST_POWER or power.denominator > 10**6:
             raise self.refuse(node, f"exponents must be between -{LARGEST_POWER} and {LARGEST_POWER}")
         if isinstance(base, Constant) and power.denominator == 1:
-            size = max(abs(base.number.numerator), base.number.denominator).bit_length() * abs(power)
             if base.number == 0 and power < 0:
                 raise self.refuse(node, "division by zero")
+            size = max(abs(base.number.numerator), base.number.denominator).bit_length() * abs(power)
             if size > LARGEST_FOLDED:
                 raise self.refuse(node, "this power is too large a number")
-            return Constant(base.number ** int(power))
+            return self.checked(node, Constant(base.number ** int(power)))
         return Power(base, power)
 
     def _call(self, node: ast.Call, depth: int) -> Node:

@@ -111,9 +111,11 @@ class Cut:
 
     def meets(self, points: Array) -> BoolArray:
         """Return which points lie on the cut, to rounding; its own start does not count."""
-        size = np.abs(points).sum(axis=1) + abs(self.start[0]) + abs(self.start[1])
-        on: BoolArray = self.distance(points) <= ROUNDING * size
-        away: BoolArray = (points != self.start).any(axis=1)
+        rounding = ROUNDING * (np.abs(points).sum(axis=1) + abs(self.start[0]) + abs(self.start[1]))
+        on: BoolArray = self.distance(points) <= rounding
+        away: BoolArray = np.hypot(points[:, 0] - self.start[0], points[:, 1] - self.start[1]) > (
+            0.0 if self.start == (0.0, 0.0) else rounding
+        )
         return on & away
 
     def meets_exactly(self, x: mpmath.mpf, y: mpmath.mpf) -> bool:
