@@ -9,7 +9,7 @@ from __future__ import annotations
 import importlib
 from typing import TYPE_CHECKING, Any
 
-__version__ = "0.1.0"
+from laplace_verify.version import __version__
 
 if TYPE_CHECKING:
     from laplace_verify import fields as fields
