@@ -13,14 +13,14 @@ elements (from memory, unchecked).
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from typing import NamedTuple
 
 import numpy as np
 import numpy.typing as npt
 
-from laplace_verify.arrays import Array, IntArray
+from laplace_verify.arrays import BLOCK, Array, IntArray, blocks
 from laplace_verify.errors import AnswerError
 from laplace_verify.solvers.elements import ELEMENTS, Element, element
 
@@ -55,22 +55,32 @@ class CellBlock:
 
     def jacobian(self, at: Array) -> Array:
         """Return J_ij = dx_i/dxi_j, shape (m, q, d, d), at reference points as in `points`."""
-        coordinates = np.swapaxes(self.corners, 1, 2)[:, np.newaxis]
-        result: Array = coordinates @ self.element.shape_gradient(at)
-        return result
+        return _contract(np.swapaxes(self.corners, 1, 2), self.element.shape_gradient(at))
 
     def values(self, at: Array, nodal: Array) -> Array:
         """Return u, shape (m, q), for nodal values (all nodes of the mesh,)."""
         result: Array = (self.element.shape(at) @ nodal[self.nodes][..., np.newaxis])[..., 0]
         return result
 
-    def gradients(self, at: Array, nodal: Array) -> Array:
+    def gradients(self, at: Array, nodal: Array, jacobian: Array | None = None) -> Array:
         """Return grad u = J^-T grad_xi u, shape (m, q, d)."""
-        slopes = nodal[self.nodes][:, np.newaxis, np.newaxis, :] @ self.element.shape_gradient(
-            at
-        )  # (m, q, 1, d)
-        result: Array = (slopes @ inverse(self.jacobian(at)))[..., 0, :]
+        slopes = _contract(nodal[self.nodes][:, np.newaxis], self.element.shape_gradient(at))[:, :, 0]
+        inverted = inverse(self.jacobian(at) if jacobian is None else jacobian)
+        result: Array = np.einsum("mqi,mqij->mqj", slopes, inverted)
         return result
+
+    def portions(self, points: int) -> Iterator[tuple[slice, CellBlock]]:
+        """Yield the block in parts of so many cells that `points` in each stay in the processor's cache."""
+        for part in blocks(len(self.nodes), max(1, BLOCK // points)):
+            yield (
+                part,
+                CellBlock(
+                    element=self.element,
+                    nodes=self.nodes[part],
+                    corners=self.corners[part],
+                    first=self.first + part.start,
+                ),
+            )
 
     def pick(self, rows: IntArray) -> CellBlock:
         """Return a block of the chosen cells, one per entry of `rows` (cells may repeat)."""
@@ -135,7 +145,7 @@ class CellMesh:
         parts = []
         for block in self.blocks:
             at, weights = block.element.quadrature(_jacobian_degree(block.element))
-            parts.append(np.abs(determinant(block.jacobian(at))) @ weights)
+            parts += [np.abs(determinant(b.jacobian(at))) @ weights for _, b in block.portions(len(at))]
         return np.concatenate(parts)
 
     def centroids(self) -> Array:
@@ -154,7 +164,7 @@ class CellMesh:
         parts = []
         for block in self.blocks:
             at, weights = block.element.quadrature(order + _jacobian_degree(block.element))
-            parts.append(_sample(block, at, weights, values, per_cell))
+            parts += [_sample(b, at, weights, values, per_cell) for _, b in block.portions(len(at))]
         return _join(parts)
 
     def random(self, seed: int, count: int, values: Array, *, per_cell: bool = False) -> Samples:
@@ -164,7 +174,7 @@ class CellMesh:
         for block in self.blocks:
             at = block.element.random(generator, (len(block.nodes), count))
             weights = np.full(count, block.element.volume / count)
-            parts.append(_sample(block, at, weights, values, per_cell))
+            parts += [_sample(b, at[part], weights, values, per_cell) for part, b in block.portions(count)]
         return _join(parts)
 
 
@@ -213,6 +223,16 @@ def _block_nodes(kind: Element, array: npt.ArrayLike, count: int) -> IntArray:
     return result
 
 
+def _contract(nodal: Array, slopes: Array) -> Array:
+    """Return sum_k nodal[m, i, k] slopes[(m,) q, k, j], shape (m, q, i, j).
+
+    Not by matrix products: so small, they cost more in the library's threads than in arithmetic.
+    """
+    pattern = "mik,mqkj->mqij" if slopes.ndim == 4 else "mik,qkj->mqij"
+    result: Array = np.einsum(pattern, nodal, slopes)
+    return result
+
+
 def determinant(jacobian: Array) -> Array:
     """Return det J for matrices (..., d, d), d = 1, 2, 3."""
     j = jacobian
@@ -221,7 +241,16 @@ def determinant(jacobian: Array) -> Array:
     if j.shape[-1] == 2:
         planar: Array = j[..., 0, 0] * j[..., 1, 1] - j[..., 0, 1] * j[..., 1, 0]
         return planar
-    result: Array = np.einsum("...i,...i->...", j[..., 0, :], np.cross(j[..., 1, :], j[..., 2, :]))
+    result: Array = np.einsum("...i,...i->...", j[..., 0, :], _cross(j[..., 1, :], j[..., 2, :]))
+    return result
+
+
+def _cross(a: Array, b: Array) -> Array:
+    """Return a x b along the last axis."""
+    result = np.empty(np.broadcast_shapes(a.shape, b.shape))
+    for i in range(3):
+        k, m = (i + 1) % 3, (i + 2) % 3
+        result[..., i] = a[..., k] * b[..., m] - a[..., m] * b[..., k]
     return result
 
 
@@ -239,7 +268,7 @@ def inverse(jacobian: Array) -> Array:
             adjugate[..., 0, 1], adjugate[..., 1, 0] = -j[..., 0, 1], -j[..., 1, 0]
         else:
             for i in range(3):
-                adjugate[..., :, i] = np.cross(j[..., (i + 1) % 3, :], j[..., (i + 2) % 3, :])
+                adjugate[..., :, i] = _cross(j[..., (i + 1) % 3, :], j[..., (i + 2) % 3, :])
         result: Array = adjugate / det[..., np.newaxis, np.newaxis]
         return result
 
@@ -258,13 +287,13 @@ def _jacobian_degree(kind: Element) -> int:
 def _orientation(block: CellBlock) -> int:
     """Return how many cells run clockwise; refuse folded and degenerate ones."""
     kind = block.element
-    inside = determinant(block.jacobian(kind.quadrature(2 * kind.degree)[0]))
-    # At the nodes themselves det J may vanish: quarter-point cells at the tip of a crack are made so.
-    at_nodes = determinant(block.jacobian(kind.nodes))
     low, high = block.boxes()
     least = FOLDED * np.prod(high - low, axis=1)
-    positive = (np.min(inside, axis=1) > least) & (np.min(at_nodes, axis=1) >= -least)
-    negative = (np.max(inside, axis=1) < -least) & (np.max(at_nodes, axis=1) <= least)
+    # At the nodes themselves det J may vanish: quarter-point cells at the tip of a crack are made so.
+    smallest, largest = _extreme_determinants(block, kind.quadrature(2 * kind.degree)[0])
+    smallest_at_nodes, largest_at_nodes = _extreme_determinants(block, kind.nodes)
+    positive = (smallest > least) & (smallest_at_nodes >= -least)
+    negative = (largest < -least) & (largest_at_nodes <= least)
     bad = ~(positive | negative)
     if bad.any():
         row = int(np.flatnonzero(bad)[0])
@@ -277,16 +306,23 @@ def _orientation(block: CellBlock) -> int:
     return int(negative.sum())
 
 
+def _extreme_determinants(block: CellBlock, at: Array) -> tuple[Array, Array]:
+    """Return the least and the largest det J of every cell at reference points (q, d)."""
+    dets = [determinant(part.jacobian(at)) for _, part in block.portions(len(at))]
+    return np.concatenate([d.min(axis=1) for d in dets]), np.concatenate([d.max(axis=1) for d in dets])
+
+
 def _sample(block: CellBlock, at: Array, weights: Array, values: Array, per_cell: bool) -> Samples:
     """Evaluate one block at reference points."""
     points = block.points(at)
-    volume = np.abs(determinant(block.jacobian(at))) * weights
+    jacobian = block.jacobian(at)
+    volume = np.abs(determinant(jacobian)) * weights
     rows = np.arange(len(block.nodes)) + block.first
     numbers = np.repeat(rows, points.shape[1])
     flat = points.reshape(-1, points.shape[-1])
     if per_cell:
         return Samples(flat, volume.ravel(), values[numbers], None, numbers)
-    gradients = block.gradients(at, values).reshape(-1, points.shape[-1])
+    gradients = block.gradients(at, values, jacobian).reshape(-1, points.shape[-1])
     return Samples(flat, volume.ravel(), block.values(at, values).ravel(), gradients, numbers)
 
 

@@ -80,7 +80,7 @@ def test_integral_of_a_cubic_is_exact_on_affine_cells(name, make_mesh, affine_ma
 
 @pytest.mark.parametrize("name", ["line3", "triangle6", "quad8", "quad9", "tetra10"])
 def test_volume_of_cells_on_a_smoothly_mapped_cube_converges(name, make_mesh):
-    """The last coordinate is stretched by 1 + 0.2 sin(pi x_1); quadratic cells integrate that like Simpson."""
+    """The last coordinate is stretched by 1 + 0.2 sin(pi x_1): quadratic cells work like Simpson's rule."""
     dim = ELEMENTS[name].dim
 
     def shear(points):
