@@ -15,6 +15,7 @@ import sys
 from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass, replace
 from functools import partial
+from pathlib import Path
 from typing import TYPE_CHECKING, Any, Required, TypedDict, Unpack, overload
 
 import numpy as np
@@ -86,15 +87,18 @@ class Adapter:
         """Call the solve function as it was written."""
         return self.function(*arguments, **keywords)
 
-    def __reduce__(self) -> str | tuple[Any, ...]:
-        """Travel by name where the adapter has replaced its function under the function's own name."""
-        function = self.function
-        module, name = getattr(function, "__module__", None), getattr(function, "__qualname__", "")
+    def __reduce__(self) -> tuple[Any, ...]:
+        """Travel by name where an adapter stands under its function's own name, as decorated ones do."""
+        values = {slot: getattr(self, slot) for slot in self.__slots__}
+        module = getattr(self.function, "__module__", None)
+        name = getattr(self.function, "__qualname__", "")
         home = sys.modules.get(module) if module else None
-        if home is not None and "<" not in name and _attribute(home, name) is self:
-            return _by_name, (module, name, getattr(home, "__file__", None))
-        values = tuple(getattr(self, slot) for slot in self.__slots__)
-        return _by_values, (tuple(self.__slots__), values)
+        found = _attribute(home, name)
+        if isinstance(found, Adapter) and found.function is self.function:
+            del values["function"]  # pickle would look it up by name and find the adapter instead
+            place = (module, name, getattr(home, "__file__", None))
+            return _by_name, (*place, None if found is self else values)
+        return _by_values, (values,)
 
     def formal_order(self, norm: str) -> float | Exponential | None:
         """Return the declared order in a norm; None if the declaration promises none there."""
@@ -321,13 +325,30 @@ def _attribute(home: object, name: str) -> object:
     return home
 
 
-def _by_name(module: str, name: str, file: str | None) -> object:
-    """Find an adapter again in another process: by its module's name, else by its file."""
-    if module not in sys.modules and file is not None and importlib.util.find_spec(module) is None:
-        return _attribute(module_from_file(file), name)
-    return _attribute(importlib.import_module(module), name)
+def _by_name(module: str, name: str, file: str | None, values: Mapping[str, Any] | None) -> Adapter:
+    """Find an adapter again in another process, by module or file; `values` are what differs from it."""
+    if module in sys.modules:
+        home = sys.modules[module]
+    elif file is not None and Path(file).is_file() and not _importable(module):
+        home = module_from_file(file)
+    else:
+        home = importlib.import_module(module)
+    found = _attribute(home, name)
+    if not isinstance(found, Adapter):
+        raise AdapterError(
+            f"{module} has no adapter {name!r} in this process; define it at the top of its file"
+        )
+    return found if values is None else replace(found, **values)
 
 
-def _by_values(names: Sequence[str], values: Sequence[Any]) -> Adapter:
+def _importable(module: str) -> bool:
+    """Whether Python finds a module by its name."""
+    try:
+        return importlib.util.find_spec(module) is not None
+    except ModuleNotFoundError:  # its package is missing
+        return False
+
+
+def _by_values(values: Mapping[str, Any]) -> Adapter:
     """Make an adapter again from its attributes."""
-    return Adapter(**dict(zip(names, values, strict=True)))
+    return Adapter(**values)

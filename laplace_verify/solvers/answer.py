@@ -34,7 +34,7 @@ AnswerKind: TypeAlias = Literal["callable", "cells", "cloud"]
 SAME_NODE = 1e-9  # of the extent of the nodes: a point this close to a node is the node
 
 
-@dataclass(frozen=True, slots=True, eq=False, init=False)
+@dataclass(frozen=True, slots=True, eq=False, init=False, repr=False)
 class Answer:
     """The result of one solve.
 
@@ -156,6 +156,11 @@ class Answer:
         }
         for name, value in arguments.items():
             object.__setattr__(self, name, value)
+
+    def __repr__(self) -> str:
+        """Show what kind of answer it is and how large."""
+        size = "" if self.values is None else f", {len(self.values)} values"
+        return f"Answer({self.kind}{size}{'' if self.h is None else f', h={self.h:.6g}'})"
 
     @property
     def kind(self) -> AnswerKind:

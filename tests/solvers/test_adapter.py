@@ -1,7 +1,9 @@
 """Calling a solver through its adapter."""
 
+import dataclasses
 import pickle
 import re
+import sys
 
 import numpy as np
 import pytest
@@ -51,6 +53,21 @@ def test_a_renamed_adapter_travels_by_its_attributes():
     again = pickle.loads(pickle.dumps(renamed))
     assert again.describe() == renamed.describe()
     assert again.function is np.hypot
+
+
+def test_a_changed_adapter_travels_with_its_changes():
+    changed = dataclasses.replace(ones, sizes=(3, 5, 7))
+    again = pickle.loads(pickle.dumps(changed))
+    assert again.function is ones.function
+    assert again.sizes == (3, 5, 7)
+    assert again.describe() == changed.describe()
+
+
+def test_an_adapter_that_is_gone_in_the_other_process_is_missed_by_name(monkeypatch):
+    blob = pickle.dumps(ones)
+    monkeypatch.delattr(sys.modules[__name__], "ones")
+    with pytest.raises(lv.AdapterError, match=r"has no adapter 'ones' in this process"):
+        pickle.loads(blob)
 
 
 def capable(**declared):

@@ -167,6 +167,10 @@ class TestConstruction:
         again = pickle.loads(pickle.dumps(answer))
         assert again.value_at([[0.25]]) == pytest.approx([1.5], rel=1e-15, abs=0)
 
+    def test_it_shows_its_kind_and_size_in_one_line(self):
+        assert repr(lv.Answer(GRID, VALUES, h=0.25)) == "Answer(cloud, 12 values, h=0.25)"
+        assert repr(lv.Answer(evaluate=np.sin)) == "Answer(callable)"
+
 
 class TestValidation:
     """Arguments that do not fit the problem are refused by `validated`."""
