@@ -1,0 +1,393 @@
+"""Triangulations of planar shapes with n cells along every side, for sample solvers and pictures.
+
+Rectangles and L-shapes get right triangles on a grid, polygons the uniform refinement of a constrained Delaunay
+triangulation of their corners, discs, ellipses and sectors fans of about equilateral triangles mapped onto circles,
+annuli a polar grid. Meshes of one shape with n and 2 n cells are nested up to the curvature of the boundary, so h is
+proportional to 1/n. The ends of boundary pieces, those made by ``split`` included, are nodes.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable
+from dataclasses import dataclass
+
+import numpy as np
+import numpy.typing as npt
+
+from laplace_verify.arrays import Array, IntArray, frozen
+from laplace_verify.errors import GeometryError
+from laplace_verify.geometry._ear_clipping import clip_ears, flip_to_delaunay, join_holes
+from laplace_verify.geometry.base import Shape
+from laplace_verify.geometry.boundary import Boundary
+from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
+from laplace_verify.geometry.splitting import split_piece
+
+__all__ = ["Mesh", "subdivide", "triangulate"]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Mesh:
+    """Triangles, counter-clockwise, and the boundary edges of every piece, domain on their left.
+
+    Attributes
+    ----------
+    points : (n, 2)
+        The two lips of a slit have nodes of their own.
+    triangles : (m, 3)
+        Node numbers.
+    boundary : dict of (k, 2)
+        Node numbers of the edges on each piece, by its name.
+    """
+
+    points: Array
+    triangles: IntArray
+    boundary: dict[str, IntArray]
+
+    @property
+    def h(self) -> float:
+        """The longest edge."""
+        corners = self.points[self.triangles]
+        return float(np.max(np.linalg.norm(corners - np.roll(corners, 1, axis=1), axis=2)))
+
+    @property
+    def areas(self) -> Array:
+        """The areas of the triangles, shape (m,), all positive."""
+        a, b, c = np.moveaxis(self.points[self.triangles], 1, 0)
+        return 0.5 * ((b - a)[:, 0] * (c - a)[:, 1] - (b - a)[:, 1] * (c - a)[:, 0])
+
+
+def subdivide(breaks: npt.ArrayLike, n: int) -> Array:
+    """Return about n + 1 rising coordinates that contain all `breaks`, cells nearly equal.
+
+    Every interval between two breaks gets at least one cell, so there may be more than n.
+
+    >>> subdivide([0.0, 0.3, 1.0], 4).tolist()
+    [0.0, 0.3, 0.5333333333333333, 0.7666666666666666, 1.0]
+    """
+    stops = np.asarray(breaks, dtype=np.float64)
+    marks = np.rint(n * (stops - stops[0]) / (stops[-1] - stops[0])).astype(int)
+    for k in range(1, len(marks)):
+        marks[k] = max(marks[k], marks[k - 1] + 1)
+    parts = [
+        np.linspace(stops[k], stops[k + 1], marks[k + 1] - marks[k], endpoint=False)
+        for k in range(len(marks) - 1)
+    ]
+    return np.concatenate([*parts, stops[-1:]])
+
+
+def triangulate(shape: Shape, n: int) -> Mesh:
+    """Return a triangulation of a planar shape with n cells along every side.
+
+    Arcs are cut into n cells per 60 degrees (annuli: 6 n to 12 n cells around). A side that ``split`` cuts keeps its n
+    cells on rectangles; on polygons each part of it gets n.
+
+    Raises
+    ------
+    GeometryError
+        If n is not a positive integer or the shape is not one of those named above.
+
+    Examples
+    --------
+    >>> from laplace_verify.geometry import Rectangle
+    >>> mesh = triangulate(Rectangle((0, 0), (2, 1)), 4)
+    >>> len(mesh.points), len(mesh.triangles), len(mesh.boundary["top"]), float(mesh.areas.sum())
+    (25, 32, 4, 2.0)
+    """
+    if isinstance(n, bool) or not isinstance(n, (int, np.integer)) or n < 1:
+        raise GeometryError(f"n, the cells along every side, must be an integer >= 1, got {n!r}")
+    for kind, build in _BUILDERS.items():
+        if shape.is_a(kind):
+            return build(shape, int(n))
+    raise GeometryError(f"cannot triangulate a shape of kind {shape.kind!r}; can: {', '.join(_BUILDERS)}")
+
+
+# ---- structured grids ------------------------------------------------------------------------------------------
+
+
+def _from_grid(shape: Shape, n: int) -> Mesh:
+    """Cut the squares of a grid by parallel diagonals; an L-shape is three squares of n x n cells."""
+    lower, upper = shape.bounding_box
+    ends = np.concatenate([lower[None], upper[None], *(piece.ends for piece in shape.pieces)])
+    count = 2 * n if shape.is_a("l-shape") else n
+    x, y = (subdivide(np.unique(ends[:, axis]), count) for axis in (0, 1))
+    middles = np.stack(np.meshgrid((x[1:] + x[:-1]) / 2, (y[1:] + y[:-1]) / 2), axis=-1).reshape(-1, 2)
+    row, column = np.divmod(np.flatnonzero(shape.contains(middles)), len(x) - 1)
+    south_west = row * len(x) + column
+    south_east, north_west, north_east = south_west + 1, south_west + len(x), south_west + len(x) + 1
+    triangles = np.concatenate(
+        [
+            np.stack([south_west, south_east, north_east], axis=1),
+            np.stack([south_west, north_east, north_west], axis=1),
+        ]
+    )
+    points = np.stack(np.meshgrid(x, y), axis=-1).reshape(-1, 2)
+    return _tagged(points, triangles, shape)
+
+
+def _tagged(points: Array, triangles: IntArray, shape: Shape) -> Mesh:
+    """Drop unused nodes and give each boundary edge to the piece that its middle lies on."""
+    used, renumbered = np.unique(triangles, return_inverse=True)
+    points, triangles = points[used], renumbered.reshape(-1, 3)
+    edges = _outer_edges(triangles)
+    middles = points[edges].mean(axis=1)
+    boundary = {piece.name: edges[piece.contains(middles)] for piece in shape.pieces}
+    return _finished(points, triangles, boundary)
+
+
+def _outer_edges(triangles: IntArray) -> IntArray:
+    """Return the directed edges whose reverse belongs to no triangle."""
+    edges = np.concatenate([triangles[:, [0, 1]], triangles[:, [1, 2]], triangles[:, [2, 0]]])
+    base = int(triangles.max()) + 1
+    forward, backward = edges @ [base, 1], edges @ [1, base]
+    return edges[~np.isin(forward, backward)]
+
+
+def _finished(points: Array, triangles: IntArray, boundary: dict[str, IntArray]) -> Mesh:
+    """Freeze the arrays of a mesh."""
+    return Mesh(points=frozen(points), triangles=triangles, boundary=boundary)
+
+
+# ---- fans: disc, ellipse, sector -------------------------------------------------------------------------------
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class _Fan:
+    """Triangles about a centre: ring i carries wedges * i steps, of which each node is one."""
+
+    ring: IntArray
+    share: Array  # the part of the ring's angle behind each node, 0 to 1
+    triangles: IntArray
+    start: IntArray  # nodes on the first ray, outwards
+    end: IntArray  # nodes on the last ray, inwards
+    rim: IntArray  # nodes on the last ring, the first one repeated if closed
+
+
+def _fan(wedges: int, n: int, *, closed: bool) -> _Fan:
+    """Cut `wedges` triangles that share the centre into n * n each."""
+    rings = np.arange(n + 1)
+    counts = np.maximum(wedges * rings + (0 if closed else 1), 1)
+    first = np.cumsum(counts) - counts
+
+    def node(ring: int, step: npt.NDArray[np.int64]) -> IntArray:
+        return first[ring] + (step % counts[ring] if closed else step)
+
+    triangles = []
+    for i in range(n):
+        wedge, t = (
+            index.ravel() for index in np.meshgrid(np.arange(wedges), np.arange(i + 1), indexing="ij")
+        )
+        inner, outer = wedge * i + t, wedge * (i + 1) + t
+        triangles.append(np.stack([node(i, inner), node(i + 1, outer), node(i + 1, outer + 1)], axis=1))
+        inner, outer = inner[t < i], outer[t < i]
+        triangles.append(np.stack([node(i, inner), node(i + 1, outer + 1), node(i, inner + 1)], axis=1))
+    ring = np.repeat(rings, counts)
+    step = np.arange(len(ring)) - first[ring]
+    return _Fan(
+        ring=ring,
+        share=step / np.maximum(wedges * ring, 1),
+        triangles=np.concatenate(triangles),
+        start=first,
+        end=(first + counts - 1)[::-1],
+        rim=node(n, np.arange(wedges * n + 1)),
+    )
+
+
+def _from_disc(shape: Shape, n: int) -> Mesh:
+    """Map six equilateral triangles onto a disc, ring by ring, and scale it to an ellipse."""
+    if isinstance(shape, Disc):
+        centre, axes = np.array(shape.centre), np.full(2, shape.radius)
+    elif isinstance(shape, Ellipse):
+        centre, axes = np.array(shape.centre), np.array(shape.semi_axes)
+    fan = _fan(6, n, closed=True)
+    breaks = _turns(np.concatenate([piece.ends for piece in shape.pieces]), centre, axes)
+    angle = 2.0 * math.pi * _stretched(fan.share, breaks, 6 * n)
+    points = centre + axes * (fan.ring / n * np.array([np.cos(angle), np.sin(angle)])).T
+    rim = _edges(fan.rim)
+    ends = angle[rim[:, 0]]
+    middles = centre + axes * _unit(ends + 0.5 * ((angle[rim[:, 1]] - ends) % (2.0 * math.pi)))
+    return _finished(points, fan.triangles, _by_piece(list(shape.pieces), rim, middles))
+
+
+def _from_sector(shape: Shape, n: int) -> Mesh:
+    """Map a fan of triangles with about 60 degrees each onto a sector."""
+    if not isinstance(shape, Sector):
+        raise GeometryError(f"a sector is needed here, got {shape!r}")
+    wedges = max(1, round(shape.opening / (math.pi / 3.0)))
+    fan = _fan(wedges, n, closed=False)
+    ends = np.concatenate([piece.ends for piece in shape.pieces])
+    radii = np.linalg.norm(ends, axis=1) / shape.radius
+    on_arc = ends[np.abs(radii - 1.0) < SAME]
+    breaks = (np.arctan2(on_arc[:, 1], on_arc[:, 0]) % (2.0 * math.pi)) / shape.opening
+    angle = shape.opening * _stretched(fan.share, breaks, wedges * n)
+    along = shape.radius * _stretched(fan.ring / n, radii, n)
+    rays = {"start": _edges(fan.start), "arc": _edges(fan.rim), "end": _edges(fan.end)}
+    points = along[:, np.newaxis] * _unit(angle)
+    boundary: dict[str, IntArray] = {}
+    for name, edges in rays.items():
+        middles = points[edges].mean(axis=1)
+        if name == "arc":
+            middles = shape.radius * _unit(angle[edges].mean(axis=1))
+        parts = [piece for piece in shape.pieces if piece.name == name or piece.name.startswith(name + "-")]
+        boundary |= _by_piece(parts, edges, middles)
+    return _finished(points, fan.triangles, {piece.name: boundary[piece.name] for piece in shape.pieces})
+
+
+def _from_annulus(shape: Shape, n: int) -> Mesh:
+    """Map a grid of n cells across and 6 n to 12 n around between two circles and cut it by diagonals."""
+    if not isinstance(shape, Annulus):
+        raise GeometryError(f"an annulus is needed here, got {shape!r}")
+    centre = np.array(shape.centre)
+    hole = centre if shape.inner_centre is None else np.array(shape.inner_centre)
+    around = n * min(12, max(6, round(math.pi * (shape.inner + shape.outer) / (shape.outer - shape.inner))))
+    on_inner = np.concatenate([piece.ends for piece in shape.pieces if piece.name.startswith("inner")])
+    on_outer = np.concatenate([piece.ends for piece in shape.pieces if piece.name.startswith("outer")])
+    breaks = np.concatenate([_turns(on_inner, hole, np.ones(2)), _turns(on_outer, centre, np.ones(2))])
+    angle = 2.0 * math.pi * _stretched(np.arange(around) / around, breaks, around)
+    inside, outside = hole + shape.inner * _unit(angle), centre + shape.outer * _unit(angle)
+    depth = (np.arange(n + 1) / n)[:, np.newaxis, np.newaxis]
+    points = ((1.0 - depth) * inside + depth * outside).reshape(-1, 2)
+    ring, step = (index.ravel() for index in np.meshgrid(np.arange(n), np.arange(around), indexing="ij"))
+    a, b = ring * around + step, ring * around + (step + 1) % around
+    c, d = b + around, a + around
+    triangles = np.concatenate([np.stack([a, d, c], axis=1), np.stack([a, c, b], axis=1)])
+    half = angle + 0.5 * (np.roll(angle, -1) - angle) % math.pi
+    loop = np.stack([np.arange(around), (np.arange(around) + 1) % around], axis=1)
+    inner = [piece for piece in shape.pieces if piece.name.startswith("inner")]
+    outer = [piece for piece in shape.pieces if piece.name.startswith("outer")]
+    boundary = _by_piece(inner, loop[:, ::-1], hole + shape.inner * _unit(half))
+    boundary |= _by_piece(outer, loop + n * around, centre + shape.outer * _unit(half))
+    return _finished(points, triangles, {piece.name: boundary[piece.name] for piece in shape.pieces})
+
+
+SAME = 1e-9  # relative distance at which two places are one
+
+
+def _unit(angle: Array) -> Array:
+    """Return the unit vectors (n, 2) at the given angles."""
+    return np.stack([np.cos(angle), np.sin(angle)], axis=-1)
+
+
+def _turns(points: Array, centre: Array, axes: Array) -> Array:
+    """Return the eccentric angles of points on an ellipse as parts of a full turn, in [0, 1)."""
+    offset = (points - centre) / axes
+    return (np.arctan2(offset[:, 1], offset[:, 0]) / (2.0 * math.pi)) % 1.0
+
+
+def _stretched(share: Array, breaks: Array, cells: int) -> Array:
+    """Move positions in [0, 1] so that the nearest of the marks k / cells comes to lie on every break."""
+    inner = np.unique(breaks.round(12))
+    inner = inner[(inner > SAME) & (inner < 1.0 - SAME)]
+    marks = subdivide([0.0, *inner, 1.0], cells)
+    if len(marks) != cells + 1:
+        raise GeometryError(f"n is too small: {len(inner)} ends of pieces do not fit on {cells} cells")
+    return np.interp(share, np.arange(cells + 1) / cells, marks)
+
+
+def _edges(nodes: IntArray) -> IntArray:
+    """Return the edges (k, 2) of a chain of nodes."""
+    return np.stack([nodes[:-1], nodes[1:]], axis=1)
+
+
+def _by_piece(pieces: list[Boundary], edges: IntArray, middles: Array) -> dict[str, IntArray]:
+    """Give every edge to the piece that holds its middle, moved onto the curve."""
+    return {piece.name: edges[piece.contains(middles)] for piece in pieces}
+
+
+# ---- polygons --------------------------------------------------------------------------------------------------
+
+
+def _from_polygon(shape: Shape, n: int) -> Mesh:
+    """Triangulate the corners, then cut every edge in n."""
+    corners, rings, sides = _walks(shape)
+    walk = join_holes(corners, rings)
+    triangles = flip_to_delaunay(corners, clip_ears(corners, walk), set(sides))
+    return _refined(corners, triangles, sides, n)
+
+
+def _walks(shape: Shape) -> tuple[Array, list[list[int]], dict[tuple[int, int], str]]:
+    """Return corners, the closed walks through them and the piece on each side; both lips of a slit have corners."""
+    cuts = dict(shape.splits)
+    corners: list[Array] = []
+    rings: list[list[int]] = []
+    sides: dict[tuple[int, int], str] = {}
+    for loop in shape._loops():
+        travelled = [part for piece in loop for part in split_piece(piece, cuts.get(piece.name, ()))[1]]
+        ring = list(range(len(corners), len(corners) + len(travelled)))
+        corners += [piece.ends[0] for piece in travelled]
+        sides |= {(ring[k - 1], ring[k]): travelled[k - 1].name for k in range(len(ring))}
+        rings.append(ring)
+    return np.array(corners), rings, sides
+
+
+def _refined(
+    corners: Array, coarse: list[tuple[int, int, int]], sides: dict[tuple[int, int], str], n: int
+) -> Mesh:
+    """Cut every triangle into n * n; edges are shared by neighbours, but not across a slit."""
+    points = [corners]
+    count = len(corners)
+    chains: dict[tuple[int, int], IntArray] = {}
+
+    def added(new: Array) -> IntArray:
+        nonlocal count
+        points.append(new)
+        count += len(new)
+        return np.arange(count - len(new), count)
+
+    def chain(a: int, b: int) -> IntArray:
+        if (a, b) not in sides and (b, a) in chains:
+            return chains[b, a][::-1]
+        if (a, b) not in chains:
+            t = (np.arange(1, n) / n)[:, np.newaxis]
+            middle = added(corners[a] + t * (corners[b] - corners[a]))
+            chains[a, b] = np.concatenate([[a], middle, [b]])
+        return chains[a, b]
+
+    triangles = [_cut(corners, triangle, n, chain, added) for triangle in coarse]
+    boundary: dict[str, list[IntArray]] = {}
+    for side, name in sides.items():
+        boundary.setdefault(name, []).append(_edges(chains[side]))
+    return _finished(
+        np.concatenate(points),
+        np.concatenate(triangles),
+        {name: np.concatenate(e) for name, e in boundary.items()},
+    )
+
+
+def _cut(
+    corners: Array,
+    triangle: tuple[int, int, int],
+    n: int,
+    chain: Callable[[int, int], IntArray],
+    added: Callable[[Array], IntArray],
+) -> IntArray:
+    """Cut one triangle (a, b, c) into n * n; node (i, j) lies at a + i/n (b - a) + j/n (c - a)."""
+    a, b, c = triangle
+    lattice = np.full((n + 1, n + 1), -1)
+    along = np.arange(n + 1)
+    lattice[along, 0], lattice[n - along, along], lattice[0, n - along] = (
+        chain(a, b),
+        chain(b, c),
+        chain(c, a),
+    )
+    i, j = np.nonzero(np.add.outer(along, along) < n)
+    inside = (i > 0) & (j > 0)
+    s, t = i[inside, np.newaxis] / n, j[inside, np.newaxis] / n
+    lattice[i[inside], j[inside]] = added(
+        corners[a] + s * (corners[b] - corners[a]) + t * (corners[c] - corners[a])
+    )
+    upright = np.stack([lattice[i, j], lattice[i + 1, j], lattice[i, j + 1]], axis=1)
+    i, j = i[i + j < n - 1], j[i + j < n - 1]
+    return np.concatenate(
+        [upright, np.stack([lattice[i + 1, j], lattice[i + 1, j + 1], lattice[i, j + 1]], axis=1)]
+    )
+
+
+_BUILDERS: dict[str, Callable[[Shape, int], Mesh]] = {
+    "rectangle": _from_grid,
+    "l-shape": _from_grid,
+    "polygon": _from_polygon,
+    "ellipse": _from_disc,
+    "sector": _from_sector,
+    "annulus": _from_annulus,
+}

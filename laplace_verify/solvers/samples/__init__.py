@@ -1,0 +1,25 @@
+"""Sample solvers: what wiring a solver in looks like, and what a sound one and a faulty one get for a verdict.
+
+`five_point` is the one to read first: `finite_difference` says what it solves, `rectilinear` how the grid works.
+"""
+
+from __future__ import annotations
+
+from laplace_verify.solvers.samples.chebyshev_collocation import chebyshev
+from laplace_verify.solvers.samples.faults import FAULTS, Fault
+from laplace_verify.solvers.samples.finite_difference import five_point, seven_point
+from laplace_verify.solvers.samples.linear_elements import p1_element
+from laplace_verify.solvers.samples.source_points import fundamental_solutions
+
+__all__ = [
+    "ALL",
+    "FAULTS",
+    "Fault",
+    "chebyshev",
+    "five_point",
+    "fundamental_solutions",
+    "p1_element",
+    "seven_point",
+]
+
+ALL = (five_point, seven_point, p1_element, chebyshev, fundamental_solutions)

@@ -1,0 +1,260 @@
+"""Finite differences on a rectilinear grid: three, five or seven points, second order up to the boundary.
+
+The unknowns sit on the grid's nodes, boundary included. Derivative conditions close the balance of the half cell
+(quarter cell in a corner) that a boundary node owns, so its equation has the order of the interior ones:
+
+    flux through the cell's inner faces  =  area * g                  (Neumann,  n . K grad u = g)
+                                         =  area * (g - alpha u)      (Robin,    n . K grad u + alpha u = g)
+
+Dirichlet nodes are no unknowns; their values go to the right-hand side. Where a Dirichlet piece meets another
+condition, Dirichlet wins; where two Dirichlet pieces meet, the later piece gives the value (it never enters a
+five-point equation); where two derivative conditions meet, the node's box has a face on either piece.
+
+A `Scheme` is the list of these decisions, one small function each, so that a single one can be exchanged.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, replace
+from functools import partial
+
+import numpy as np
+import scipy.sparse as sp
+from scipy.interpolate import interpn
+
+from laplace_verify.arrays import Array, BoolArray, IntArray
+from laplace_verify.problems import Piece, Problem
+from laplace_verify.solvers.adapter import Adapter, adapt
+from laplace_verify.solvers.answer import Answer
+from laplace_verify.solvers.samples.levels import level_shift
+from laplace_verify.solvers.samples.linear_systems import conjugate_gradients, direct
+from laplace_verify.solvers.samples.rectilinear import Grid, Patch, axis_balances, grid_on
+
+__all__ = ["SCHEME", "Equations", "Scheme", "five_point", "five_point_with", "seven_point", "solve_on_grid"]
+
+
+@dataclass(slots=True, eq=False)
+class Equations:
+    """The equations being put together: ``matrix @ u = load`` at nodes that are not `held` at `values`."""
+
+    matrix: sp.csr_array
+    load: Array
+    held: BoolArray
+    values: Array
+    level_is_free: bool = True  # no condition fixes the constant
+
+    def add_transfer(self, nodes: IntArray, strength: Array) -> None:
+        """Add a flux out of some nodes' boxes, `strength` times the value at the node."""
+        diagonal = np.zeros(len(self.load))
+        diagonal[nodes] = strength
+        self.matrix = self.matrix + sp.diags_array(diagonal)
+        self.level_is_free &= not np.any(strength > 0.0)
+
+    def overwrite(self, nodes: IntArray, rows: sp.csr_array, load: Array) -> None:
+        """Replace the equations of some nodes."""
+        kept = np.ones(len(self.load))
+        kept[nodes] = 0.0
+        self.matrix = sp.diags_array(kept) @ self.matrix + rows
+        self.load = kept * self.load + load
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Side:
+    """One boundary piece as the grid sees it."""
+
+    grid: Grid
+    patch: Patch
+    piece: Piece
+    tensor: Array
+
+    @property
+    def name(self) -> str:
+        """The piece's name."""
+        return self.piece.name
+
+
+# ---- the parts of the scheme -----------------------------------------------------------------------------------
+
+
+def box_stencil(grid: Grid, tensor: Array) -> sp.csr_array:
+    """Return the balance of fluxes over every node's box."""
+    first, *others = axis_balances(grid, tensor)
+    return sum(others, start=first)
+
+
+def half_cell_flux(equations: Equations, side: Side) -> None:
+    """Let the prescribed flux enter the half cells: load += area * g."""
+    nodes, areas = side.grid.shares(side.patch)
+    equations.load[nodes] += areas * side.piece.data(side.grid.points[nodes])
+
+
+def half_cell_transfer(equations: Equations, side: Side) -> None:
+    """Let the flux g - alpha u enter the half cells."""
+    nodes, areas = side.grid.shares(side.patch)
+    points = side.grid.points[nodes]
+    equations.add_transfer(nodes, areas * side.piece.alpha(points))
+    equations.load[nodes] += areas * side.piece.data(points)
+
+
+def held_values(equations: Equations, side: Side) -> None:
+    """Hold the nodes of a Dirichlet piece at its data."""
+    nodes, _ = side.grid.shares(side.patch)
+    equations.held[nodes] = True
+    equations.values[nodes] = side.piece.data(side.grid.points[nodes])
+    equations.level_is_free = False
+
+
+def carried_load(equations: Equations, sides: list[Side]) -> Array:  # noqa: ARG001 - a scheme may go side by side
+    """Return the load of the unknowns, with the held values carried over."""
+    free = ~equations.held
+    return equations.load[free] - equations.matrix[free][:, equations.held] @ equations.values[equations.held]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Scheme:
+    """The decisions that make a finite-difference solver."""
+
+    stencil: Callable[[Grid, Array], sp.csr_array] = box_stencil
+    robin: Callable[[Equations, Side], None] = half_cell_transfer
+    neumann: Callable[[Equations, Side], None] = half_cell_flux
+    dirichlet: Callable[[Equations, Side], None] = held_values
+    load: Callable[[Equations, list[Side]], Array] = carried_load
+
+
+SCHEME = Scheme()
+
+
+# ---- putting it together ---------------------------------------------------------------------------------------
+
+
+def solve_on_grid(problem: Problem, n: int, scheme: Scheme = SCHEME) -> Answer:
+    """Solve div(K grad u) = 0 on an interval, rectangle, L-shape or box with n cells along every side."""
+    grid = grid_on(problem.shape, n)
+    sides = [
+        Side(grid=grid, patch=grid.patch(piece.boundary), piece=piece, tensor=problem.tensor)
+        for piece in problem.pieces
+    ]
+    equations = assemble(grid, problem.tensor, sides, scheme)
+    values, residual, iterations = solved(equations, scheme, sides)
+    if equations.level_is_free:
+        mean = np.average(values, weights=grid.node_volumes())
+        values = values + level_shift(problem, mean, lambda points: interpolated(grid, values, points))
+    lower, upper = problem.shape.bounding_box
+    cells = n if not problem.shape.is_a("l-shape") else 2 * n
+    return Answer(
+        grid.points,
+        values,
+        cells=grid.cells_by_name(),
+        h=float(np.max(upper - lower)) / cells,
+        unknowns=int(np.count_nonzero(~equations.held)),
+        fluxes=fluxes(grid, sides, values),
+        residual=residual,
+        iterations=iterations,
+    )
+
+
+def assemble(grid: Grid, tensor: Array, sides: list[Side], scheme: Scheme) -> Equations:
+    """Write the balance of every box, then close it piece by piece; Dirichlet comes last and so wins."""
+    count = len(grid.points)
+    equations = Equations(
+        scheme.stencil(grid, tensor), np.zeros(count), np.zeros(count, np.bool_), np.zeros(count)
+    )
+    for kind in ("robin", "neumann", "dirichlet"):
+        for side in sides:
+            if side.piece.kind == kind:
+                getattr(scheme, kind)(equations, side)
+    return equations
+
+
+def solved(equations: Equations, scheme: Scheme, sides: list[Side]) -> tuple[Array, float, int | None]:
+    """Return the nodal values, the relative residual, and the number of iterations (None: direct)."""
+    free, grid = ~equations.held, sides[0].grid
+    matrix, load = equations.matrix[free][:, free].tocsc(), scheme.load(equations, sides)
+    volumes = grid.node_volumes()[free]
+    solve = conjugate_gradients if grid.dim == 3 else direct
+    unknown, iterations = solve(matrix, load, volumes if equations.level_is_free else None)
+    values = equations.values.copy()
+    values[free] = unknown
+    size = max(float(np.max(np.abs(load), initial=0.0)), np.finfo(float).tiny)
+    return values, float(np.max(np.abs(matrix @ unknown - load), initial=0.0)) / size, iterations
+
+
+# ---- what is handed back ---------------------------------------------------------------------------------------
+
+
+def interpolated(grid: Grid, values: Array, points: Array) -> Array:
+    """Return the values between the nodes, linear along every axis."""
+    full = np.zeros([len(axis) for axis in grid.axes])
+    full[tuple(grid.place.T)] = values
+    between: Array = interpn(grid.axes, full, points)
+    return between
+
+
+def fluxes(grid: Grid, sides: list[Side], values: Array) -> dict[str, float]:
+    """Return the integral of n . K grad u over every piece.
+
+    On Dirichlet pieces it is what the half cells lack for balance, which is as accurate as the nodal values. A corner
+    of two Dirichlet pieces has one balance for two faces; each face then takes the part along its own axis.
+    """
+    along = [balance @ values for balance in axis_balances(grid, sides[0].tensor)]
+    lacking = np.sum(along, axis=0)
+    held = np.zeros((grid.dim, len(values)))  # area of the Dirichlet faces at every node, by axis
+    given: dict[str, float] = {}
+    for side in sides:
+        nodes, areas = grid.shares(side.patch)
+        if side.piece.kind == "dirichlet":
+            held[side.patch.axis, nodes] += areas
+            continue
+        points = grid.points[nodes]
+        entering = areas * side.piece.data(points)
+        if side.piece.kind == "robin":
+            entering -= areas * side.piece.alpha(points) * values[nodes]
+        lacking[nodes] -= entering
+        given[side.name] = float(np.sum(entering))
+    corner = np.count_nonzero(held, axis=0) > 1
+    for side in sides:
+        if side.piece.kind == "dirichlet":
+            nodes, areas = grid.shares(side.patch)
+            entering = np.where(corner[nodes], along[side.patch.axis][nodes], lacking[nodes])
+            given[side.name] = float(entering @ (areas / held[side.patch.axis, nodes]))
+    return given
+
+
+# ---- the solvers -----------------------------------------------------------------------------------------------
+
+
+@adapt(
+    name="five-point finite differences",
+    kind="finite difference",
+    order=2,
+    dims={1, 2},
+    shapes={"interval", "rectangle", "l-shape"},
+    conditions={"dirichlet", "neumann", "robin"},
+    conductivity={"scalar", "tensor"},
+    error_floor=1e-11,
+)
+def five_point(problem: Problem, n: int) -> Answer:
+    """Solve on an interval, a rectangle or an L-shape by the three- or five-point formula and LU factors."""
+    return solve_on_grid(problem, n)
+
+
+@adapt(
+    name="seven-point finite differences",
+    kind="finite difference",
+    order=2,
+    dims={3},
+    shapes={"box"},
+    conditions={"dirichlet", "neumann", "robin"},
+    conductivity={"scalar", "tensor"},
+    error_floor=1e-10,
+    sizes=(6, 9, 13, 19, 28),
+)
+def seven_point(problem: Problem, n: int) -> Answer:
+    """Solve on a box by the seven-point formula and conjugate gradients."""
+    return solve_on_grid(problem, n)
+
+
+def five_point_with(scheme: Scheme, name: str) -> Adapter:
+    """Return the five-point solver with another scheme; it still declares what `five_point` does."""
+    return replace(five_point, function=partial(solve_on_grid, scheme=scheme), name=name)
