@@ -78,10 +78,6 @@ def remarks(answer: Answer, problem: Problem) -> tuple[str, ...]:
     found = []
     mesh = answer.mesh
     if mesh is not None:
-        if mesh.clockwise:
-            found.append(
-                f"{mesh.clockwise} of {mesh.count} cells run clockwise; their orientation is ignored"
-            )
         if mesh.unused:
             found.append(f"{mesh.unused} of {len(mesh.nodes)} nodes belong to no cell and are not judged")
         flat = not any(piece.curved for piece in problem.shape.pieces)

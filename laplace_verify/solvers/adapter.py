@@ -1,6 +1,6 @@
 """The adapter: a user's solve function with what it can do, and the one door through which it is called.
 
-Mathematical contract of a solve function ``solve(problem, n) -> Answer``: it approximates the solution of
+What a solve function ``solve(problem, n) -> Answer`` undertakes: it approximates the solution of
 div(K grad u) = 0 in ``problem.shape`` under the conditions of ``problem.pieces``, the better the larger the
 resolution number n, and it depends on nothing but its arguments.
 """

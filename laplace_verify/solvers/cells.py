@@ -117,13 +117,12 @@ class CellMesh:
         If a cell is folded, degenerate, or of another dimension than the points.
     """
 
-    __slots__ = ("blocks", "clockwise", "count", "dim", "nodes", "unused")
+    __slots__ = ("blocks", "count", "dim", "nodes", "unused")
 
     def __init__(self, points: Array, cells: Mapping[str, IntArray]) -> None:
         self.dim = points.shape[1]
         self.nodes = points
         self.blocks: list[CellBlock] = []
-        self.clockwise = 0
         self.count = 0
         for name, nodes in cells.items():
             kind = element(name)
@@ -134,7 +133,7 @@ class CellMesh:
                     "only the cells that fill the shape, not those of its boundary"
                 )
             block = CellBlock(element=kind, nodes=nodes, corners=points[nodes], first=self.count)
-            self.clockwise += _orientation(block)
+            _refuse_folded(block)
             self.blocks.append(block)
             self.count += len(nodes)
         used = np.unique(np.concatenate([block.nodes.ravel() for block in self.blocks]))
@@ -284,8 +283,8 @@ def _jacobian_degree(kind: Element) -> int:
     return kind.dim * (kind.degree - 1) if kind.simplex else kind.dim * kind.degree - 1
 
 
-def _orientation(block: CellBlock) -> int:
-    """Return how many cells run clockwise; refuse folded and degenerate ones."""
+def _refuse_folded(block: CellBlock) -> None:
+    """Raise AnswerError if det J changes sign in a cell or vanishes."""
     kind = block.element
     low, high = block.boxes()
     least = FOLDED * np.prod(high - low, axis=1)
@@ -293,7 +292,7 @@ def _orientation(block: CellBlock) -> int:
     smallest, largest = _extreme_determinants(block, kind.quadrature(2 * kind.degree)[0])
     smallest_at_nodes, largest_at_nodes = _extreme_determinants(block, kind.nodes)
     positive = (smallest > least) & (smallest_at_nodes >= -least)
-    negative = (largest < -least) & (largest_at_nodes <= least)
+    negative = (largest < -least) & (largest_at_nodes <= least)  # clockwise: as good as the other
     bad = ~(positive | negative)
     if bad.any():
         row = int(np.flatnonzero(bad)[0])
@@ -303,7 +302,6 @@ def _orientation(block: CellBlock) -> int:
             f"the first is row {row}, nodes {nodes} at {places}. List the nodes in meshio's order "
             "(round the cell, corners before edge nodes)"
         )
-    return int(negative.sum())
 
 
 def _extreme_determinants(block: CellBlock, at: Array) -> tuple[Array, Array]:
