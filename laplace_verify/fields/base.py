@@ -151,7 +151,8 @@ class Field(ABC):
             with np.errstate(all="ignore"):
                 for axis, derivative in enumerate(self._gradient(FLOAT, columns(part), lip)):
                     gradients[block, axis] = derivative
-            self._refuse_infinite(part, np.asarray(np.isfinite(gradients[block]).all(axis=1)), first=block.start)
+            finite = np.asarray(np.isfinite(gradients[block]).all(axis=1))
+            self._refuse_infinite(part, finite, first=block.start)
         return gradients
 
     # -- any number of digits ------------------------------------------------------------------------------

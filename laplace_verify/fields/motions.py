@@ -27,9 +27,9 @@ class Moved(Field):
     """What shifted, turned, enlarged and stretched fields share: u(M^{-1} x) with M linear plus a shift.
 
     A subclass has a dataclass field `field`, gives the preimage of coordinates in `_back`, turns a gradient
-    in `_forward`, and says in `_map` where points go: x -> matrix @ x + vector. Coordinates are rounded on the
-    way back, which costs |grad u| |x| eps: near a singular point of a turned and shifted field more than the
-    field itself would lose.
+    in `_forward`, and says in `_map` where points go: x -> matrix @ x + vector. Coordinates are rounded on
+    the way back, which costs |grad u| |x| eps: near a singular point of a turned and shifted field more than
+    the field itself would lose.
     """
 
     __slots__ = ()

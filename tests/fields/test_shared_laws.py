@@ -1,7 +1,7 @@
 """What every family of fields must do, checked over a table of all of them by routes the code does not use.
 
-Derivatives are central differences in 40 digits, float64 values are compared with 40-digit ones, and each law has
-a twin that breaks it.
+Derivatives are central differences in 40 digits, float64 values are compared with 40-digit ones, and each law
+has a twin that breaks it.
 """
 
 import json
@@ -242,8 +242,8 @@ def test_functions_cannot_be_written_to_a_file(name):
 
 
 CONJUGATES = [
-    "affine-2d", "polynomial-2-re", "polynomial-7-im", "exp-cos", "exp-sin-decay", "cosh-cos-pi", "sinh-sin-pi",
-    "sinh-below", "dipole-2d", "wedge-2-3-sin", "wedge-1-2-cos", "wedge-far-turn", "wedge-pole", "shifted",
+    "affine-2d", "polynomial-2-re", "polynomial-7-im", "exp-cos", "exp-sin-decay", "cosh-cos-pi",
+    "sinh-sin-pi", "sinh-below", "dipole-2d", "wedge-2-3-sin", "wedge-1-2-cos", "wedge-far-turn", "wedge-pole", "shifted",
     "rotated", "rotated-quarter", "scaled", "inverted-2d", "inverted-wedge", "nested",
 ]  # fmt: skip
 
