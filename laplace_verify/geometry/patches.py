@@ -185,6 +185,8 @@ def _subdivide(chart: Chart, targets: Array, cell: float | None) -> tuple[Array,
     total = 0
     while len(lower):
         split, near = _refinement(lengths, centres, targets, floor, cell)
+        # at the end t = 1 of a side parameters are no finer than eps, however near the target is to 0
+        split &= (upper - lower).max(axis=1) > 2.0**10 * np.finfo(float).eps * np.abs(upper).max(axis=1)
         keep = ~split
         done.append((lower[keep], upper[keep], box[keep], near[keep]))
         total += int(keep.sum())

@@ -1,0 +1,32 @@
+"""Boundary value problems, and cases with exact solutions."""
+
+from laplace_verify.problems.case import Case, case
+from laplace_verify.problems.conditions import Condition, dirichlet, neumann, robin
+from laplace_verify.problems.pieces import MoveLog, Piece, Pieces
+from laplace_verify.problems.problem import Problem, Region, problem
+from laplace_verify.problems.quantities import Quantity, energy_of_solution, flux_through, value_at
+from laplace_verify.problems.regularity import Regularity
+from laplace_verify.problems.stored import StoredValue
+from laplace_verify.problems.units import Units
+
+__all__ = [
+    "Case",
+    "Condition",
+    "MoveLog",
+    "Piece",
+    "Pieces",
+    "Problem",
+    "Quantity",
+    "Region",
+    "Regularity",
+    "StoredValue",
+    "Units",
+    "case",
+    "dirichlet",
+    "energy_of_solution",
+    "flux_through",
+    "neumann",
+    "problem",
+    "robin",
+    "value_at",
+]

@@ -1,0 +1,136 @@
+"""Which condition holds on which piece, and the conductivity: what `problem` and `case` have in common."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from typing import Any
+
+import numpy as np
+
+from laplace_verify.arrays import Array, frozen
+from laplace_verify.errors import ProblemError, nearest_names
+from laplace_verify.geometry import Shape
+from laplace_verify.problems.conditions import KINDS, Condition
+from laplace_verify.problems.data import PointFunction
+
+__all__ = ["alpha_of", "as_conductivity", "as_tensor", "by_piece", "is_shape"]
+
+SYMMETRY = 1e-12  # relative
+LARGEST_RATIO = 1e12  # of eigenvalues: beyond it K is singular in float64
+
+
+def is_shape(shape: Any) -> Shape:
+    """Return `shape` if it is a bounded shape.
+
+    Raises
+    ------
+    ProblemError
+        If it is not.
+    """
+    if not isinstance(shape, Shape):
+        raise ProblemError(f"shape must be a shape such as Rectangle((0, 0), (1, 1)), got {shape!r}")
+    if not shape.bounded:
+        raise ProblemError(f"{shape!r} is unbounded; only problems on bounded shapes can be posed")
+    return shape
+
+
+def as_conductivity(conductivity: Any, dim: int) -> float | Array:
+    """Return a positive number as float, a symmetric positive definite (d, d) matrix as a frozen array.
+
+    Raises
+    ------
+    ProblemError
+        If it is neither.
+
+    Examples
+    --------
+    >>> as_conductivity(2, dim=3)
+    2.0
+    """
+    if isinstance(conductivity, bool) or isinstance(conductivity, str):
+        raise ProblemError(f"conductivity must be a positive number or a matrix, got {conductivity!r}")
+    try:
+        array = np.asarray(conductivity, dtype=np.float64)
+    except (TypeError, ValueError) as cause:
+        raise ProblemError(
+            f"conductivity must be a positive number or a ({dim}, {dim}) matrix, got {conductivity!r}"
+        ) from cause
+    if not np.isfinite(array).all():
+        raise ProblemError(f"conductivity must be finite, got {array.tolist()}")
+    if array.ndim == 0:
+        if not array > 0.0:
+            raise ProblemError(f"conductivity must be > 0, got {float(array)!r}")
+        return float(array)
+    if array.shape != (dim, dim):
+        raise ProblemError(f"a conductivity tensor must have shape ({dim}, {dim}), got {array.shape}")
+    if not np.abs(array - array.T).max() <= SYMMETRY * np.abs(array).max():
+        raise ProblemError(f"a conductivity tensor must be symmetric, got {array.tolist()}")
+    array = (array + array.T) / 2.0
+    eigenvalues = np.linalg.eigvalsh(array)
+    if not (eigenvalues[0] > 0.0 and eigenvalues[-1] <= LARGEST_RATIO * eigenvalues[0]):
+        raise ProblemError(
+            f"a conductivity tensor must be positive definite, got {array.tolist()} with eigenvalues "
+            f"{eigenvalues.tolist()}"
+        )
+    return frozen(array)
+
+
+def as_tensor(conductivity: float | Array, dim: int) -> Array:
+    """Return the conductivity as a matrix (d, d)."""
+    if isinstance(conductivity, float):
+        return frozen(conductivity * np.eye(dim))
+    return conductivity
+
+
+def by_piece(shape: Shape, conditions: Mapping[str, Any]) -> dict[str, Condition]:
+    """Return the condition of each piece that `conditions` speaks of, in the order of the shape's pieces.
+
+    The name of a piece that was split stands for all its parts, if none of them is named too.
+
+    Raises
+    ------
+    ProblemError
+        If a name is unknown, names conflict, or a condition is neither a `Condition` nor the name of a kind.
+    """
+    if not isinstance(conditions, Mapping):
+        raise ProblemError(f"conditions must be a dict {{piece: condition}}, got {type(conditions).__name__}")
+    names = [piece.name for piece in shape.pieces]
+    parts = {name: [f"{name}-{k + 1}" for k in range(len(cuts) + 1)] for name, cuts in shape.splits}
+    found: dict[str, Condition] = {}
+    origin: dict[str, str] = {}
+    for given, condition in conditions.items():
+        targets = [given] if given in names else parts.get(given, [])
+        if not targets:
+            known = nearest_names(str(given), [*names, *parts])
+            raise ProblemError(f"conditions name an unknown piece {given!r} of {shape.kind!r}; {known}")
+        for target in targets:
+            if target in found:
+                raise ProblemError(
+                    f"conflicting conditions on piece {target!r}: it is named by {origin[target]!r} and by "
+                    f"{given!r}; name the whole piece or its parts, not both"
+                )
+            found[target], origin[target] = _condition(given, condition), given
+    return {name: found[name] for name in names if name in found}
+
+
+def _condition(piece: str, condition: Any) -> Condition:
+    """Return a condition given as such or by the name of its kind."""
+    if isinstance(condition, Condition):
+        return condition
+    if condition == "robin":
+        raise ProblemError(
+            f"the Robin condition of piece {piece!r} needs its coefficient: write robin(alpha)"
+        )
+    if isinstance(condition, str) and condition in KINDS:
+        return Condition(kind=condition)
+    known = nearest_names(str(condition), KINDS)
+    raise ProblemError(
+        f"the condition of piece {piece!r} must be dirichlet, neumann or robin, got {condition!r}; {known}"
+    )
+
+
+def alpha_of(piece: str, condition: Condition, dim: int) -> PointFunction | None:
+    """Return Robin's coefficient as a function of points, None for other kinds."""
+    if condition.alpha is None:
+        return None
+    return PointFunction(condition.alpha, dim, f"Robin's alpha of piece {piece!r}")

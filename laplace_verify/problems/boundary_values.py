@@ -1,0 +1,158 @@
+"""Exact boundary data: u, the flux n . K grad u, and Robin's g = n . K grad u + alpha u, on the true boundary."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+import numpy as np
+
+from laplace_verify.arrays import Array
+from laplace_verify.errors import FieldError, ProblemError
+from laplace_verify.fields import Field, Singularity
+from laplace_verify.geometry import Boundary
+from laplace_verify.problems.conditions import Kind
+from laplace_verify.problems.data import PointFunction
+from laplace_verify.problems.limits import bounded_limit, near, sides_on
+
+__all__ = ["BoundaryField", "ExactData"]
+
+
+class BoundaryField:
+    """A field seen from one piece of the boundary of a shape.
+
+    Parameters
+    ----------
+    field, boundary
+        The field and the piece.
+    tensor
+        Conductivity, shape (d, d).
+    size
+        Size of the shape, which tolerances refer to.
+    """
+
+    __slots__ = ("_boundary", "_field", "_size", "_tensor")
+
+    def __init__(self, field: Field, boundary: Boundary, tensor: Array, size: float) -> None:
+        self._field, self._boundary, self._tensor, self._size = field, boundary, tensor, size
+
+    def value(self, points: Array) -> Array:
+        """Return u (n,) at points (n, d) on the piece; at a jump the limit along the piece."""
+        return self._filled(points, self._value, self._steepness, derivative=False)
+
+    def flux(self, points: Array) -> Array:
+        """Return n . K grad u (n,) at points (n, d) on the piece, n the outward normal.
+
+        Raises
+        ------
+        ProblemError
+            At a singular point where it is infinite.
+        """
+        return self._filled(points, self._flux, self._flow, derivative=True)
+
+    def densities(self, points: Array) -> tuple[Array, Array]:
+        """Return u and the flux, each (n,), at quadrature points graded towards singular points.
+
+        Such points come so near to a singular point that they must be told from it to the last bit; one that
+        cannot be told counts 0, which the error radius of the integral covers.
+        """
+        values, fluxes = np.zeros(len(points)), np.zeros(len(points))
+        apart = np.ones(len(points), dtype=bool)
+        for singularity in self._field.singularities:
+            apart &= (points != np.asarray(singularity.point)).any(axis=1)
+        values[apart] = self._named(self._value, points[apart])
+        fluxes[apart] = self._named(self._flux, points[apart])
+        return values, fluxes
+
+    def flux_limit(self, singularity: Singularity) -> float | None:
+        """Return the limit of the flux along the piece at a singular point on it, None if it has none."""
+        return bounded_limit(self._flux, self._flow, self._boundary, singularity, self._size)
+
+    def _filled(
+        self,
+        points: Array,
+        function: Callable[[Array], Array],
+        magnitude: Callable[[Array], Array],
+        *,
+        derivative: bool,
+    ) -> Array:
+        """Evaluate `function`, with limits along the piece where the field itself has no value."""
+        values = np.empty(len(points))
+        ordinary = np.ones(len(points), dtype=bool)
+        for singularity in self._field.singularities:
+            if not _undefined(singularity, derivative):
+                continue
+            hit = near(points, singularity.point, self._size)
+            if not hit.any():
+                continue
+            limit = None
+            if singularity.kind in ("jump", "power"):
+                limit = bounded_limit(function, magnitude, self._boundary, singularity, self._size)
+            if limit is None:
+                row = int(np.flatnonzero(hit)[0])
+                what = "flux n . K grad u" if derivative else "value"
+                raise ProblemError(
+                    f"the {what} on piece {self._boundary.name!r} has no finite limit at point {row} = "
+                    f"{tuple(points[row].tolist())}, a singular point ({singularity.kind}); leave this point out"
+                )
+            values[hit], ordinary[hit] = limit, False
+        if ordinary.any():
+            values[ordinary] = self._named(function, points[ordinary])
+        return values
+
+    def _named(self, function: Callable[[Array], Array], points: Array) -> Array:
+        """Evaluate `function`, naming the piece if the field refuses."""
+        try:
+            return function(points)
+        except FieldError as cause:
+            raise ProblemError(f"data of piece {self._boundary.name!r}: {cause}") from cause
+
+    def _value(self, points: Array) -> Array:
+        return self._field.value(points, side=self._sides(points))
+
+    def _current(self, points: Array) -> Array:
+        """Return K grad u (n, d)."""
+        return self._field.gradient(points, side=self._sides(points)) @ self._tensor
+
+    def _flux(self, points: Array) -> Array:
+        flux: Array = (self._boundary.normals(points) * self._current(points)).sum(axis=1)
+        return flux
+
+    def _flow(self, points: Array) -> Array:
+        """Return |K grad u| (n,)."""
+        flow: Array = np.sqrt((self._current(points) ** 2).sum(axis=1))
+        return flow
+
+    def _steepness(self, points: Array) -> Array:
+        """Return size |grad u| (n,), the change of u over the shape."""
+        gradients = self._field.gradient(points, side=self._sides(points))
+        steepness: Array = self._size * np.sqrt((gradients**2).sum(axis=1))
+        return steepness
+
+    def _sides(self, points: Array) -> Array | None:
+        return sides_on(self._field, self._boundary, points, self._size)
+
+
+def _undefined(singularity: Singularity, derivative: bool) -> bool:
+    """Return whether the field has no value (no gradient) at the singular point."""
+    if singularity.kind == "power":
+        return derivative and singularity.exponent < 1.0
+    return True
+
+
+class ExactData:
+    """Data of a condition derived from an exact field, which stays out of sight of whoever holds the problem."""
+
+    __slots__ = ("__alpha", "__kind", "__seen")
+
+    def __init__(self, seen: BoundaryField, kind: Kind, alpha: PointFunction | None) -> None:
+        self.__seen, self.__kind, self.__alpha = seen, kind, alpha
+
+    def __call__(self, points: Array) -> Array:
+        """Return f or g (n,) at points (n, d) on the piece."""
+        if self.__kind == "dirichlet":
+            return self.__seen.value(points)
+        flux = self.__seen.flux(points)
+        if self.__alpha is None:
+            return flux
+        data: Array = flux + self.__alpha(points) * self.__seen.value(points)
+        return data

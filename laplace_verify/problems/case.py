@@ -1,0 +1,305 @@
+"""A manufactured case: an exact field, and the problem whose boundary data are derived from it."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass, replace
+from dataclasses import field as dataclass_field
+from typing import Any
+
+import numpy as np
+import numpy.typing as npt
+
+from laplace_verify.arrays import Array
+from laplace_verify.errors import ProblemError
+from laplace_verify.fields import Field
+from laplace_verify.geometry import Shape
+from laplace_verify.problems.assembly import alpha_of, as_conductivity, as_tensor, by_piece, is_shape
+from laplace_verify.problems.boundary_values import BoundaryField, ExactData
+from laplace_verify.problems.compatibility import (
+    Constant,
+    as_constant,
+    check_constant,
+    default_constant,
+    is_pure_neumann,
+)
+from laplace_verify.problems.conditions import Condition, Kind
+from laplace_verify.problems.pieces import Piece, Pieces
+from laplace_verify.problems.problem import Problem, no_constant
+from laplace_verify.problems.quantities import Quantity, QuantitySpec, evaluate
+from laplace_verify.problems.regularity import Regularity, derive
+from laplace_verify.problems.scaling import (
+    Scale,
+    as_scale,
+    scaled_condition,
+    scaled_constant,
+    scaled_quantity,
+    scaled_regularity,
+    scaled_shape,
+)
+from laplace_verify.problems.singular_checks import check_singularities
+from laplace_verify.problems.solution_checks import check_equation, check_green
+from laplace_verify.problems.stored import StoredValue
+from laplace_verify.problems.units import Units
+
+__all__ = ["Case", "case"]
+
+ID = re.compile(r"[a-z0-9]+(-[a-z0-9]+)*")
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False, repr=False)
+class Case:
+    """A problem with its exact solution and what is known about it.
+
+    Attributes
+    ----------
+    id, title, statement, reading
+        Plain words: a permanent name, a headline, the mathematics, and a physical reading.
+    tags, sources
+        Words to select by; where problem or solution are described.
+    problem
+        What a solver is handed; it holds no exact solution in reach.
+    exact
+        The exact field.
+    regularity
+        Exponents, singular points, smallest length.
+    quantities
+        Name -> exact quantity.
+    units
+        Of lengths, values and conductivity; "" in dimensionless cases.
+    stored
+        High-precision reference values, if some are kept in a file.
+    window
+        None: norms are taken over the whole shape.
+    """
+
+    id: str
+    title: str
+    statement: str
+    reading: str
+    tags: frozenset[str]
+    sources: tuple[str, ...]
+    problem: Problem
+    exact: Field
+    regularity: Regularity
+    quantities: Mapping[str, Quantity]
+    units: Units = Units()
+    stored: tuple[StoredValue, ...] = ()
+    window: None = None
+    _conditions: Mapping[str, Condition] = dataclass_field(default_factory=dict)
+
+    @property
+    def dim(self) -> int:
+        """Number of space dimensions."""
+        return self.problem.dim
+
+    @property
+    def conditions(self) -> frozenset[str]:
+        """The kinds of condition in use."""
+        return frozenset(piece.kind for piece in self.problem.pieces)
+
+    def scaled(self, length: Scale = None, value: Scale = None, conductivity: Scale = None) -> Case:
+        """Return the dimensional twin: x = length x', u = value u', K = conductivity K'.
+
+        Parameters
+        ----------
+        length, value, conductivity
+            Positive numbers, or (number, unit) such as ``(0.2, "m")``; None leaves one as it is.
+
+        Raises
+        ------
+        ProblemError
+            If a number is not positive or a unit cannot be read.
+
+        Examples
+        --------
+        >>> from laplace_verify import fields
+        >>> from laplace_verify.geometry import Rectangle
+        >>> from laplace_verify.problems import flux_through
+        >>> plate = case(Rectangle((0, 0), (1, 1)), {}, fields.affine((0, 1)),
+        ...              quantities={"heat in through the top": flux_through("top", exact=1)})
+        >>> twin = plate.scaled(length=(2, "m"), value=(50, "K"), conductivity=(0.5, "W/(m K)"))
+        >>> twin.quantities["heat in through the top"].value, twin.quantities["heat in through the top"].unit
+        (25.0, 'W/m')
+        """
+        big, length_unit = as_scale(length, "length", self.units.length)
+        high, value_unit = as_scale(value, "value", self.units.value)
+        good, conductivity_unit = as_scale(conductivity, "conductivity", self.units.conductivity)
+        units = Units(length=length_unit, value=value_unit, conductivity=conductivity_unit)
+        shape = scaled_shape(self.problem.shape, big)
+        exact = high * self.exact.scaled(big)
+        k = as_conductivity(np.asarray(self.problem.conductivity) * good, self.dim)
+        conditions = {
+            name: scaled_condition(name, condition, self.dim, big, good)
+            for name, condition in self._conditions.items()
+        }
+        return replace(
+            self,
+            problem=Problem(
+                name=self.id,
+                shape=shape,
+                pieces=_pieces(shape, conditions, exact, as_tensor(k, self.dim)),
+                conductivity=k,
+                constant=scaled_constant(self.problem.constant, big, high),
+            ),
+            exact=exact,
+            regularity=scaled_regularity(self.regularity, big),
+            quantities={
+                name: scaled_quantity(quantity, self.dim, big, high, good, units)
+                for name, quantity in self.quantities.items()
+            },
+            units=units,
+            stored=(),  # they are values of the dimensionless case
+            _conditions=conditions,
+        )
+
+    def __repr__(self) -> str:
+        """Show id, shape and field."""
+        return f"Case({self.id!r}, {self.problem.shape!r}, u = {self.exact.formula})"
+
+
+def case(
+    shape: Shape,
+    conditions: Mapping[str, str | Condition],
+    field: Field,
+    conductivity: float | npt.ArrayLike = 1.0,
+    *,
+    id: str = "case",  # noqa: A002  # the public name of the attribute
+    title: str = "",
+    statement: str = "",
+    tags: Iterable[str] = (),
+    sources: Iterable[str] = (),
+    reading: str = "",
+    quantities: Mapping[str, QuantitySpec] | None = None,
+    constant: Any = None,
+) -> Case:
+    """Return the case whose exact solution is `field`; boundary data are derived from it.
+
+    Parameters
+    ----------
+    shape
+        The region.
+    conditions
+        Piece name -> "dirichlet", "neumann" or ``robin(alpha)``. Pieces not named are Dirichlet; the name of a
+        split piece stands for its parts.
+    field
+        The exact solution, with div(K grad field) = 0 in the shape; this is checked.
+    conductivity
+        K: a positive number or a symmetric positive definite matrix (d, d).
+    id, title, statement, tags, sources, reading
+        Words, see `Case`. The id consists of lower-case words joined by hyphens.
+    quantities
+        Name -> `flux_through`, `value_at` or `energy_of_solution`, evaluated from the exact field.
+    constant
+        Pure Neumann only: ("mean", v) or ("point", x, v); by default the mean of the exact field.
+
+    Raises
+    ------
+    ProblemError
+        If the field is no solution in the shape (the message gives point and residual), data are given although
+        they are derived, names are unknown or conflict, or the conductivity is not positive definite.
+
+    Examples
+    --------
+    >>> from laplace_verify import fields
+    >>> from laplace_verify.geometry import Rectangle
+    >>> plate = case(Rectangle((0, 0), (1, 1)), {"left": "neumann"}, fields.polynomial(2))
+    >>> plate.problem.pieces["left"].kind, plate.regularity.solution
+    ('neumann', inf)
+    """
+    is_shape(shape)
+    _check_words(id, field)
+    if field.dim != shape.dim:
+        raise ProblemError(f"the field has dimension {field.dim}, the shape {shape!r} has dimension {shape.dim}")
+    k = as_conductivity(conductivity, shape.dim)
+    tensor = as_tensor(k, shape.dim)
+    complete = _derived(shape, conditions)
+    _check_solution(shape, field, tensor)
+    kinds: dict[str, Kind] = {name: condition.kind for name, condition in complete.items()}
+    regularity = derive(shape, field, kinds, tensor)
+    pieces = _pieces(shape, complete, field, tensor)
+    for piece in pieces:  # a field that is not defined on the boundary shows here, by the piece's name
+        piece.data(piece.sample(5)[0])
+    return Case(
+        id=id,
+        title=title,
+        statement=statement,
+        reading=reading,
+        tags=frozenset(tags),
+        sources=tuple(sources),
+        problem=Problem(
+            name=id,
+            shape=shape,
+            pieces=pieces,
+            conductivity=k,
+            constant=_constant(constant, shape, pieces, field, regularity.singular_points),
+        ),
+        exact=field,
+        regularity=regularity,
+        quantities=evaluate(quantities or {}, shape, field, tensor, regularity),
+        _conditions=complete,
+    )
+
+
+def _check_words(id_: str, field: Any) -> None:
+    """Refuse an id that is no plain name, and a solution that is no field."""
+    if not isinstance(id_, str) or not ID.fullmatch(id_):
+        raise ProblemError(f"id must be lower-case words joined by hyphens, such as 'warm-plate', got {id_!r}")
+    if not isinstance(field, Field):
+        raise ProblemError(
+            f"the exact solution must be a field, got {type(field).__name__}; "
+            "wrap a function or a formula with laplace_verify.field"
+        )
+
+
+def _derived(shape: Shape, conditions: Mapping[str, str | Condition]) -> dict[str, Condition]:
+    """Return the condition of every piece, refusing data."""
+    given = by_piece(shape, conditions)
+    for name, condition in given.items():
+        if condition.data is not None:
+            raise ProblemError(
+                f"piece {name!r}: data of a case are derived from its exact field; give the kind alone "
+                f"({'robin(alpha)' if condition.kind == 'robin' else repr(condition.kind)}), or use problem()"
+            )
+    return {piece.name: given.get(piece.name, Condition(kind="dirichlet")) for piece in shape.pieces}
+
+
+def _check_solution(shape: Shape, field: Field, tensor: Array) -> None:
+    """Refuse a field that is no solution of div(K grad u) = 0 in the shape."""
+    check_singularities(shape, field)
+    check_equation(shape, field, tensor)
+    if field.opaque:  # a closed form declares its singular points; of a user's function nothing is known
+        singular = np.array([s.point for s in field.singularities]).reshape(-1, shape.dim)
+        check_green(shape, field, tensor, singular)
+
+
+def _pieces(shape: Shape, conditions: Mapping[str, Condition], field: Field, tensor: Array) -> Pieces:
+    """Return the pieces with data derived from the field."""
+    pieces = []
+    for boundary in shape.pieces:
+        condition = conditions[boundary.name]
+        alpha = alpha_of(boundary.name, condition, shape.dim)
+        seen = BoundaryField(field, boundary, tensor, shape.size)
+        pieces.append(
+            Piece(
+                boundary=boundary,
+                kind=condition.kind,
+                shape_size=shape.size,
+                _data=ExactData(seen, condition.kind, alpha),
+                _alpha=alpha,
+            )
+        )
+    return Pieces(pieces)
+
+
+def _constant(given: Any, shape: Shape, pieces: Pieces, field: Field, singular: Array) -> Constant | None:
+    """Return the constant of a pure Neumann case, by default the mean of the exact field."""
+    if not is_pure_neumann(pieces):
+        no_constant(given)
+        return None
+    if given is None:
+        return default_constant(shape, field, singular)
+    constant = as_constant(given, shape)
+    check_constant(constant, shape, field, singular)
+    return constant

@@ -1,0 +1,159 @@
+"""How smooth solution and shape are: the exponents that limit the order of any method.
+
+*Solution.* Near a singular point on the closed shape u - smooth ~ r**e; the smallest e counts, 0 for a jump of
+boundary data, infinity if there is none.
+
+*Domain.* Where two pieces meet at the interior angle w, solutions with smooth data behave like r**(pi/w) if both
+pieces carry the same type of condition (Dirichlet, or flux: Neumann and Robin) and r**(pi/(2 w)) if Dirichlet
+meets flux (Grisvard 1985, Elliptic Problems in Nonsmooth Domains, section 4.4; Kondrat'ev 1967). Robin's term is
+of lower order and leaves the exponent. With a tensor K the angle is the one seen after the substitution
+x -> K^{-1/2} x, which turns a normal n into K^{1/2} n: if n_1, n_2 are the outward normals,
+
+    w' = pi -+ arccos( n_1 . K n_2 / sqrt(n_1 . K n_1  n_2 . K n_2) ),   - for w < pi, + for w > pi   (derived here).
+
+*Scale.* The smallest length that a grid must resolve: of the shape (pieces, gaps), or of the solution (distance to
+singular points outside, distances between those on the boundary).
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping
+from dataclasses import dataclass
+from itertools import combinations
+
+import numpy as np
+from scipy.spatial.distance import cdist, pdist
+
+from laplace_verify.arrays import Array, frozen
+from laplace_verify.fields import Field
+from laplace_verify.geometry import Boundary, Junction, Shape
+from laplace_verify.problems.conditions import Kind
+from laplace_verify.problems.singular_checks import on_shape
+
+__all__ = ["Regularity", "derive"]
+
+SAMPLES = {1: 1, 2: 64, 3: 144}  # points of a piece when gaps between pieces are measured
+COINCIDENT = 1e-9  # of the shape's size: the lips of a slit have no gap
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class Regularity:
+    """Smoothness of a case.
+
+    Attributes
+    ----------
+    solution
+        Smallest exponent e of u - smooth ~ r**e over the singular points; 0 for a jump, inf if smooth.
+    domain
+        Smallest exponent of the shape's junctions under the conditions, inf if it has none.
+    singular_points
+        Points of the closed shape where the solution is singular, shape (m, d).
+    scale
+        Smallest length that matters; grids coarser than half of it are not judged.
+    jumps
+        Those of the singular points where boundary data jump, shape (k, d).
+    """
+
+    solution: float
+    domain: float
+    singular_points: Array
+    scale: float
+    jumps: Array
+
+    def __post_init__(self) -> None:
+        """Freeze the arrays."""
+        object.__setattr__(self, "singular_points", frozen(self.singular_points))
+        object.__setattr__(self, "jumps", frozen(self.jumps))
+
+
+def derive(shape: Shape, field: Field, kinds: Mapping[str, Kind], tensor: Array) -> Regularity:
+    """Return the regularity of an exact solution in a shape with a kind of condition on each piece.
+
+    Parameters
+    ----------
+    shape, field
+        The shape and the exact solution.
+    kinds
+        Piece name -> "dirichlet", "neumann" or "robin".
+    tensor
+        Conductivity as a matrix (d, d).
+    """
+    singular = on_shape(shape, field)
+    places = list(dict.fromkeys(s.point for s in singular))
+    jumps = list(dict.fromkeys(s.point for s in singular if s.kind == "jump"))
+    return Regularity(
+        solution=min((s.exponent for s in singular), default=math.inf),
+        domain=min((junction_exponent(shape, j, kinds, tensor) for j in shape.junctions), default=math.inf),
+        singular_points=np.array(places).reshape(-1, shape.dim),
+        scale=_scale(shape, field, places),
+        jumps=np.array(jumps).reshape(-1, shape.dim),
+    )
+
+
+def junction_exponent(shape: Shape, junction: Junction, kinds: Mapping[str, Kind], tensor: Array) -> float:
+    """Return the exponent of a junction, inf where one smooth piece is merely cut in two."""
+    first, second = (kinds[name] for name in junction.pieces)
+    opening = seen_opening(shape, junction, tensor)
+    if (first == "dirichlet") != (second == "dirichlet"):
+        return math.pi / (2.0 * opening)
+    if first == second and abs(opening - math.pi) < 1e-9:
+        return math.inf
+    return math.pi / opening
+
+
+def seen_opening(shape: Shape, junction: Junction, tensor: Array) -> float:
+    """Return the interior angle of a junction in coordinates that make the conductivity isotropic."""
+    isotropic = np.allclose(tensor, tensor[0, 0] * np.eye(len(tensor)), rtol=1e-12, atol=0.0)
+    if isotropic or abs(junction.opening - math.pi) < 1e-12:
+        return junction.opening
+    first, second = (shape.pieces[name].normals(junction.points) for name in junction.pieces)
+    mixed = ((first @ tensor) * second).sum(axis=1)
+    norms = np.sqrt(((first @ tensor) * first).sum(axis=1) * ((second @ tensor) * second).sum(axis=1))
+    turn = np.arccos(np.clip(mixed / norms, -1.0, 1.0))
+    seen = math.pi - turn if junction.opening < math.pi else math.pi + turn
+    return float(seen.max())
+
+
+def _scale(shape: Shape, field: Field, places: list[tuple[float, ...]]) -> float:
+    """Return the smallest length of shape and solution."""
+    lower, upper = shape.bounding_box
+    lengths = [*(upper - lower).tolist(), *(_extent(piece) for piece in shape.pieces if shape.dim > 1)]
+    lengths += _gaps(shape)
+    if field.singularities:
+        away = shape.distance(np.array([s.point for s in field.singularities]))
+        lengths += away[away > COINCIDENT * shape.size].tolist()
+    if len(places) > 1:
+        lengths.append(float(pdist(np.array(places)).min()))
+    return float(min(lengths))
+
+
+def _extent(piece: Boundary) -> float:
+    """Return the length of an open curve, the width of a closed one, sqrt(area) of a surface."""
+    if piece.dim == 3:
+        return math.sqrt(piece.measure)
+    return piece.measure if len(piece.ends) else piece.measure / math.pi
+
+
+def _gaps(shape: Shape) -> list[float]:
+    """Return distances between pieces that do not meet: necks, holes near the rim, opposite sides."""
+    if shape.dim == 1:
+        return []
+    meeting = {frozenset(junction.pieces) for junction in shape.junctions}
+    samples = {piece.name: piece.sample(SAMPLES[shape.dim])[0] for piece in shape.pieces}
+    gaps = []
+    for first, second in combinations(samples, 2):
+        if frozenset((first, second)) in meeting or _touching(
+            shape.pieces[first], shape.pieces[second], shape.size
+        ):
+            continue
+        gaps.append(float(cdist(samples[first], samples[second]).min()))
+    return gaps
+
+
+def _touching(first: Boundary, second: Boundary, size: float) -> bool:
+    """Return whether an end of one curve lies on the other, as at the mouth of a slit."""
+    for one, other in ((first, second), (second, first)):
+        if len(one.ends) and (np.hypot(*(one.ends - other.project(one.ends)).T) <= COINCIDENT * size).any():
+            return True
+    return False

@@ -1,0 +1,71 @@
+"""Declared singular points and cuts of a field against a shape: none strictly inside, no pole on its boundary.
+
+A cut is followed exactly, not by sampling: an interval of it whose middle lies outside the shape and farther from
+the boundary than half its length lies outside altogether (the distance is 1-Lipschitz); other intervals are
+halved until one shows a point strictly inside, or they are as short as the tolerance.
+"""
+
+from __future__ import annotations
+
+import math
+
+import numpy as np
+
+from laplace_verify.arrays import Array
+from laplace_verify.errors import ProblemError
+from laplace_verify.fields import Cut, Field, Singularity
+from laplace_verify.geometry import Shape
+
+__all__ = ["check_singularities", "on_shape"]
+
+ON_BOUNDARY = 1e-9  # of the shape's size
+SHORTEST = 1e-4  # of the shape's size: intervals of a cut that are not halved further
+
+
+def on_shape(shape: Shape, field: Field) -> tuple[Singularity, ...]:
+    """Return the field's singular points that lie in the closed shape."""
+    return tuple(s for s in field.singularities if shape.contains(np.array([s.point]), tol=ON_BOUNDARY).all())
+
+
+def check_singularities(shape: Shape, field: Field) -> None:
+    """Refuse a field that is singular strictly inside the shape, or infinite on its boundary.
+
+    Raises
+    ------
+    ProblemError
+        If a declared singular point lies inside, a log or pole on the boundary, or a cut crosses the interior.
+    """
+    for singularity in on_shape(shape, field):
+        inside = bool(shape.distance(np.array([singularity.point]))[0] > ON_BOUNDARY * shape.size)
+        if inside or singularity.kind in ("log", "pole"):
+            raise ProblemError(
+                f"{field.formula} is no solution in {shape!r}: it has a singular point ({singularity.kind}) "
+                f"{'inside' if inside else 'on the boundary'} at {singularity.point}; move the point outside"
+            )
+    for cut in field.cuts:
+        crossing = _point_inside(shape, cut)
+        if crossing is not None:
+            raise ProblemError(
+                f"{field.formula} is no solution in {shape!r}: its branch cut from {cut.start} along "
+                f"{cut.direction} crosses the interior, for example at {crossing}; turn the cut away"
+            )
+
+
+def _point_inside(shape: Shape, cut: Cut) -> tuple[float, ...] | None:
+    """Return a point of the cut strictly inside the shape, None if there is none."""
+    start, direction = np.array(cut.start), np.array(cut.direction)
+    lower, upper = shape.bounding_box
+    reach = float(np.sqrt((np.maximum(np.abs(start - lower), np.abs(start - upper)) ** 2).sum()))
+    edges = np.linspace(0.0, min(cut.length, reach), 65)
+    low, high = edges[:-1], edges[1:]
+    while len(low):
+        middle, half = (low + high) / 2.0, (high - low) / 2.0
+        points: Array = start + middle[:, None] * direction
+        within, distance = shape.contains(points), shape.distance(points)
+        inside = within & (distance > ON_BOUNDARY * shape.size)
+        if inside.any():
+            return tuple(points[int(np.argmax(np.where(inside, distance, -math.inf)))].tolist())
+        again = (distance < half) & (half > SHORTEST * shape.size / 2.0)
+        low, middle, high = low[again], middle[again], high[again]
+        low, high = np.concatenate([low, middle]), np.concatenate([middle, high])
+    return None

@@ -1,0 +1,201 @@
+"""Is the field a solution of div(K grad u) = 0 in the shape?
+
+Two checks that see different things:
+
+1. The equation at seeded interior points, by second differences in high precision along the eigenvectors q_i of
+   K = sum lambda_i q_i q_i': sum_i lambda_i [u(p + h q_i) - 2 u(p) + u(p - h q_i)] / h^2, with truncation h^2 / 12 u''''
+   far below the tolerance; a user's own gradient is compared with central differences on the same points.
+2. Green's third identity at seeded interior points p, with the fundamental solution G of div(K grad G) = -delta:
+
+       u(p) = integral over the boundary of ( G n . K grad u - u n . K grad G ) ds.
+
+   With rho^2 = (x-p)' K^{-1} (x-p) and D = sqrt(det K): G = -log(rho) / (2 pi D) in the plane and 1 / (4 pi D rho)
+   in space; since K K^{-1} = 1, n . K grad G = -n . (x-p) / (2 pi D rho^2) and -n . (x-p) / (4 pi D rho^3).
+   A pole or a jump inside, however far from p, breaks the identity; the equation at points is blind to it.
+
+References: Kellogg 1929, Foundations of Potential Theory, ch. VIII (Green's identities), from memory, unchecked;
+the form for a tensor follows from the substitution x -> K^{-1/2} x (derived here).
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable
+from typing import Any
+
+import mpmath
+import numpy as np
+
+from laplace_verify.arrays import Array
+from laplace_verify.errors import FieldError, ProblemError
+from laplace_verify.fields import Field
+from laplace_verify.geometry import Shape
+from laplace_verify.problems.boundary_values import BoundaryField
+
+__all__ = ["check_equation", "check_green"]
+
+SEED = 20411  # of the interior points
+EQUATION = 1e-8  # largest residual, relative to its own terms
+GRADIENT = 1e-8
+GREEN = 1e-7  # largest mismatch, relative to the size of u
+UNSETTLED = 1e-5  # largest change at the last refinement that still counts as settled
+REFINEMENTS = {2: 6, 3: 4}
+GREEN_POINTS = 4
+
+
+def check_equation(shape: Shape, field: Field, tensor: Array) -> None:
+    """Refuse a field with div(K grad u) != 0 at one of a few seeded interior points.
+
+    Raises
+    ------
+    ProblemError
+        With the point, the residual and the size of its terms; or if a user's gradient is not that of u.
+    """
+    count = 8 if field.opaque else 4
+    lambdas, vectors = np.linalg.eigh(tensor)
+    for point in _interior(shape, count):
+        try:
+            _check_at(field, point, lambdas, vectors, shape.size)
+        except FieldError as cause:
+            raise ProblemError(f"{field.formula} cannot be evaluated inside {shape!r}: {cause}") from cause
+
+
+def _check_at(field: Field, point: Array, lambdas: Array, vectors: Array, size: float) -> None:
+    """Check the equation, and a user's gradient, at one point."""
+    second, first, value = _differences(field, point, vectors, size)
+    terms = [float(k) * d for k, d in zip(lambdas, second, strict=True)]
+    residual = float(sum(terms))
+    scale = float(sum(abs(t) for t in terms)) + float(lambdas.max()) * abs(value) / size**2
+    if not abs(residual) <= EQUATION * scale:
+        raise ProblemError(
+            f"{field.formula} is no solution: div(K grad u) = {residual:.6g} at {tuple(point.tolist())}, "
+            f"with single terms up to {max(abs(float(t)) for t in terms):.3g}; it must vanish for K = "
+            f"{((vectors * lambdas) @ vectors.T).tolist()}"
+        )
+    if field.opaque:
+        gradient = field.gradient(point[None, :])[0]
+        numeric = vectors @ np.array(first)
+        if not np.abs(gradient - numeric).max() <= GRADIENT * (np.abs(numeric).max() + abs(value) / size):
+            raise ProblemError(
+                f"the gradient given for {field.formula} is wrong: {gradient.tolist()} at {tuple(point.tolist())}, "
+                f"differences of the value give {numeric.tolist()}"
+            )
+
+
+def _differences(
+    field: Field, point: Array, vectors: Array, size: float
+) -> tuple[list[Any], list[float], float]:
+    """Return second and first differences along the columns of `vectors`, and the value, at a point."""
+    evaluate, step, digits = _evaluator(field, point, size)
+    with mpmath.workdps(digits + 15):
+        h = mpmath.mpf(step)
+        middle = evaluate([mpmath.mpf(c) for c in point.tolist()])
+        second, first = [], []
+        for q in vectors.T.tolist():
+            shifted = [
+                evaluate(
+                    [mpmath.mpf(c) + sign * h * mpmath.mpf(e) for c, e in zip(point.tolist(), q, strict=True)]
+                )
+                for sign in (1, -1)
+            ]
+            second.append((shifted[0] - 2 * middle + shifted[1]) / h**2)
+            first.append(float((shifted[0] - shifted[1]) / (2 * h)))
+    return second, first, float(middle)
+
+
+def _evaluator(field: Field, point: Array, size: float) -> tuple[Callable[[list[Any]], Any], float, int]:
+    """Return u at high precision with a step that suits it."""
+    digits = 40
+    del point
+    return (lambda x: field.at(tuple(x), digits=digits)), 1e-9 * size, digits
+
+
+def check_green(shape: Shape, field: Field, tensor: Array, singular: Array) -> None:
+    """Refuse a field that breaks Green's third identity at one of a few seeded interior points.
+
+    Parameters
+    ----------
+    shape, field, tensor
+        The shape, the field, and K as a matrix (d, d).
+    singular
+        Points (m, d) of the boundary towards which the quadrature is graded.
+
+    Raises
+    ------
+    ProblemError
+        With the point and the mismatch, or if the boundary integral does not settle.
+    """
+    points = _deepest(shape, GREEN_POINTS)
+    expected = field.value(points)
+    if shape.dim == 1:
+        ends = np.concatenate([piece.point([0.0]) for piece in shape.pieces])[:, 0]
+        values = field.value(ends)
+        found = np.interp(points[:, 0], np.sort(ends), values[np.argsort(ends)])
+        scale = float(np.abs(values).max())
+        _compare(field, points, expected, found, np.zeros(len(points)), scale)
+        return
+    cell, previous = shape.size / 4.0, None
+    change = np.full(len(points), math.inf)
+    for _ in range(REFINEMENTS[shape.dim]):
+        found, scale = _green(shape, field, tensor, points, singular, cell)
+        change = change if previous is None else np.abs(found - previous)
+        if previous is not None and change.max() <= GREEN / 10.0 * scale:
+            break
+        previous, cell = found, cell / 2.0
+    if not change.max() <= UNSETTLED * scale:
+        row = int(np.argmax(change))
+        raise ProblemError(
+            f"{field.formula} cannot be checked in {shape!r}: the boundary integral of Green's identity for the "
+            f"point {tuple(points[row].tolist())} still changes by {change[row]:.3g}; declare its singular points"
+        )
+    _compare(field, points, expected, found, change, scale)
+
+
+def _compare(field: Field, points: Array, expected: Array, found: Array, change: Array, scale: float) -> None:
+    """Refuse a mismatch between the value inside and the boundary integral."""
+    mismatch = np.abs(found - expected)
+    allowed = np.maximum(GREEN * max(scale, float(np.abs(expected).max())), 5.0 * change)
+    if not (mismatch <= allowed).all():
+        row = int(np.argmax(mismatch - allowed))
+        raise ProblemError(
+            f"{field.formula} is no solution: Green's third identity misses its value at "
+            f"{tuple(points[row].tolist())} by {mismatch[row]:.6g} ({found[row]:.6g} instead of "
+            f"{expected[row]:.6g}); there is a singular point or a jump inside the shape"
+        )
+
+
+def _green(
+    shape: Shape, field: Field, tensor: Array, points: Array, singular: Array, cell: float
+) -> tuple[Array, float]:
+    """Return the boundary integral for each of the points, and the largest |u| met on the boundary."""
+    total, largest = np.zeros(len(points)), 0.0
+    root = math.sqrt(float(np.linalg.det(tensor)))
+    inverse = np.linalg.inv(tensor)
+    for piece in shape.pieces:
+        x, normals, weights = piece.quadrature(11, singular=singular, cell=cell)
+        u, flux = BoundaryField(field, piece, tensor, shape.size).densities(x)
+        largest = max(largest, float(np.abs(u).max()))
+        for row, point in enumerate(points):
+            offset = x - point
+            rho = np.sqrt(((offset @ inverse) * offset).sum(axis=1))
+            normal_part = (normals * offset).sum(axis=1)
+            if shape.dim == 2:
+                g = -np.log(rho) / (2.0 * math.pi * root)
+                dg = -normal_part / (2.0 * math.pi * root * rho**2)
+            else:
+                g = 1.0 / (4.0 * math.pi * root * rho)
+                dg = -normal_part / (4.0 * math.pi * root * rho**3)
+            total[row] += float(weights @ (g * flux - u * dg))
+    return total, largest
+
+
+def _interior(shape: Shape, count: int) -> Array:
+    """Return seeded points not too near the boundary: the deeper half of twice as many."""
+    points = shape.sample(2 * count, seed=SEED)
+    return points[np.argsort(-shape.distance(points), kind="stable")[:count]]
+
+
+def _deepest(shape: Shape, count: int) -> Array:
+    """Return the deepest of many seeded points: there the integrand is smoothest."""
+    points = shape.sample(16 * count, seed=SEED + 1)
+    return points[np.argsort(-shape.distance(points), kind="stable")[:count]]
