@@ -45,7 +45,10 @@ def as_sides(side: Side, count: int) -> Array | None:
 def equals(points: Array, singular: tuple[float, ...], place: Any) -> BoolArray:
     """Return which points are the singular one; a precise point is compared exactly."""
     if place is None:
-        return np.asarray((points == singular).all(axis=1))
+        same: BoolArray = points[:, 0] == singular[0]
+        if same.any():  # rare: most blocks are done after one coordinate
+            same = np.asarray((points == singular).all(axis=1))
+        return same
     return np.array([all(a == b for a, b in zip(place, singular, strict=True))])
 
 

@@ -131,7 +131,7 @@ class Field(ABC):
             self._refuse(part, lip, derivative=False, first=block.start)
             with np.errstate(all="ignore"):  # whatever is not finite is refused by name below
                 values[block] = self._value(FLOAT, columns(part), lip)
-            self._refuse_infinite(part, np.asarray(np.isfinite(values[block])), first=block.start)
+            self._refuse_infinite(part, values[block], first=block.start)
         return values
 
     def gradient(self, points: npt.ArrayLike, side: Side = None) -> Array:
@@ -151,8 +151,7 @@ class Field(ABC):
             with np.errstate(all="ignore"):
                 for axis, derivative in enumerate(self._gradient(FLOAT, columns(part), lip)):
                     gradients[block, axis] = derivative
-            finite = np.asarray(np.isfinite(gradients[block]).all(axis=1))
-            self._refuse_infinite(part, finite, first=block.start)
+            self._refuse_infinite(part, gradients[block], first=block.start)
         return gradients
 
     # -- any number of digits ------------------------------------------------------------------------------
@@ -271,11 +270,13 @@ class Field(ABC):
         if not valid.all():
             raise FieldError(f"{self.formula} is not defined at {name_of(points, ~valid, first, place)}")
 
-    def _refuse_infinite(self, points: Array, finite: BoolArray, *, first: int) -> None:
+    def _refuse_infinite(self, points: Array, results: Array, *, first: int) -> None:
         """Raise FieldError at the first point whose result is not finite."""
+        finite = np.isfinite(results)
         if not finite.all():
+            bad = ~finite.reshape(len(points), -1).all(axis=1)
             raise FieldError(
-                f"{self.formula} is not a finite float64 at {name_of(points, ~finite, first, None)}: "
+                f"{self.formula} is not a finite float64 at {name_of(points, bad, first, None)}: "
                 "the point is singular or too far out"
             )
 

@@ -111,12 +111,15 @@ class Cut:
 
     def meets(self, points: Array) -> BoolArray:
         """Return which points lie on the cut, to rounding; its own start does not count."""
-        rounding = ROUNDING * (np.abs(points).sum(axis=1) + abs(self.start[0]) + abs(self.start[1]))
-        on: BoolArray = self.distance(points) <= rounding
-        away: BoolArray = np.hypot(points[:, 0] - self.start[0], points[:, 1] - self.start[1]) > (
-            0.0 if self.start == (0.0, 0.0) else rounding
-        )
-        return on & away
+        x, y = points[:, 0], points[:, 1]
+        (start_x, start_y), (ex, ey) = self.start, self.direction
+        dx, dy = x - start_x, y - start_y
+        rounding = ROUNDING * (np.abs(x) + np.abs(y) + (abs(start_x) + abs(start_y)))
+        on: BoolArray = np.abs(ex * dy - ey * dx) <= rounding
+        if on.any():
+            along = ex * dx + ey * dy
+            on &= (along > (rounding if start_x or start_y else 0.0)) & (along <= self.length + rounding)
+        return on
 
     def meets_exactly(self, x: mpmath.mpf, y: mpmath.mpf) -> bool:
         """Return whether one precise point lies on the cut: exactly if the cut is parallel to an axis."""
