@@ -8,7 +8,14 @@ from dataclasses import dataclass
 from fractions import Fraction
 from typing import Any, ClassVar, NamedTuple, TypeAlias
 
+from laplace_verify.contexts import FLOAT
+from laplace_verify.errors import FieldError
+
 __all__ = ["Binary", "Call", "Constant", "Dual", "Node", "Power", "Symbol"]
+
+
+GROWING = ("exp", "sin", "cos", "tan", "sinh", "cosh", "tanh")
+LARGEST_MAGNITUDE = 64  # bits before the point: sin(10^(10^10)) would need gigabytes of pi
 
 
 class Dual(NamedTuple):
@@ -113,6 +120,10 @@ class Call:
     def evaluate(self, ctx: Any, names: Names) -> Dual:
         """Return the function and, by the chain rule, its derivatives."""
         inner = [argument.evaluate(ctx, names) for argument in self.arguments]
+        if ctx is not FLOAT and self.name in GROWING and _huge(ctx, inner[0].value):
+            raise FieldError(
+                f"{self.name} of a number beyond 2^{LARGEST_MAGNITUDE} is not worked out precisely"
+            )
         value = getattr(ctx, self.name)(*(a.value for a in inner))
         if not any(a.partials for a in inner):
             return Dual(value, ())
@@ -125,6 +136,11 @@ class Call:
 
 
 Node: TypeAlias = Constant | Symbol | Binary | Power | Call
+
+
+def _huge(ctx: Any, a: Any) -> bool:
+    """Return whether a precise number is so large that its exponential or sine would fill the memory."""
+    return bool(ctx.isfinite(a) and ctx.mag(a) > LARGEST_MAGNITUDE)
 
 
 def _slope(ctx: Any, name: str, a: Any, value: Any) -> Any:

@@ -49,5 +49,6 @@ def real(ctx: Precise, number: Any, place: Any) -> Any:
     """Return a result as a real number of the context."""
     result = ctx.convert(number)
     if not (isinstance(result, ctx.mpf) and ctx.isfinite(result)):
-        raise FieldError(f"the value at {text_of(place)} is {ctx.nstr(result, 5)}, not a finite real number")
+        what = "complex" if isinstance(result, ctx.mpc) else "infinite or undefined"
+        raise FieldError(f"the value at {text_of(place)} is {what}, not a finite real number")
     return result

@@ -18,11 +18,11 @@ import numpy as np
 import numpy.typing as npt
 
 from laplace_verify.arrays import Array, BoolArray, as_points, blocks
-from laplace_verify.contexts import FLOAT, Number, Precise, precise
+from laplace_verify.contexts import FLOAT, MAX_DIGITS, Number, Precise
 from laplace_verify.errors import FieldError
 from laplace_verify.fields._inputs import Side, as_sides, columns, equals, is_number, name_of, text_of
 from laplace_verify.fields._precision import agreeing, real, working
-from laplace_verify.fields.exact import exact_point
+from laplace_verify.fields.exact import exact_point, whole
 from laplace_verify.fields.singular import Basis, Cut, Enclosure, Singularity
 
 if TYPE_CHECKING:
@@ -170,7 +170,7 @@ class Field(ABC):
         Raises
         ------
         FieldError
-            As `value`; or if `digits` is not an integer from 1 to 400.
+            As `value`; or if `digits` is not a whole number from 1 to 400.
         """
         return self._settled(point, digits, side, derivative=False)[0][0]
 
@@ -182,7 +182,7 @@ class Field(ABC):
         Raises
         ------
         FieldError
-            As `gradient`; or if `digits` is not an integer from 1 to 400.
+            As `gradient`; or if `digits` is not a whole number from 1 to 400.
         """
         return self._settled(point, digits, side, derivative=True)[0]
 
@@ -212,7 +212,7 @@ class Field(ABC):
         self, point: Iterable[Number] | Number, digits: int, side: int | None, *, derivative: bool
     ) -> tuple[tuple[mpmath.mpf, ...], tuple[mpmath.mpf, ...]]:
         """Return components of u or grad u, and their change at the last raise of the working precision."""
-        precise(digits)  # refuses a number of digits out of range
+        digits = whole(digits, "digits", 1, MAX_DIGITS)
         place = exact_point((point,) if is_number(point) else point, "point", (self.dim,))  # type: ignore[arg-type]
         lip = as_sides(side, 1)
         row = np.array([[float(c) for c in place]])
@@ -274,7 +274,7 @@ class Field(ABC):
         """Raise FieldError at the first point whose result is not finite."""
         finite = np.isfinite(results)
         if not finite.all():
-            bad = ~finite.reshape(len(points), -1).all(axis=1)
+            bad = np.asarray(~finite.reshape(len(points), -1).all(axis=1))
             raise FieldError(
                 f"{self.formula} is not a finite float64 at {name_of(points, bad, first, None)}: "
                 "the point is singular or too far out"

@@ -81,7 +81,7 @@ class Combination(Field):
         parts = []
         for factor, term in zip(self.factors, self.terms, strict=True):
             text = term.formula
-            if factor != 1 and (" + " in text or " - " in text or text.startswith("-")):
+            if factor != 1 and (_is_sum(text) or (abs(float(factor)) != 1 and text[0].isdigit())):
                 text = f"({text})"
             parts.append((factor, text))
         return join_terms(parts)
@@ -127,6 +127,16 @@ def combined(*pairs: tuple[Number, Field]) -> Field:
             factors.append(product(number, own))
             terms.append(term)
     return Combination(factors=tuple(factors), terms=tuple(terms))
+
+
+def _is_sum(text: str) -> bool:
+    """Return whether a formula has a plus or minus outside its brackets."""
+    depth = 0
+    for before, sign in zip(" " + text, text, strict=False):
+        depth += (sign in "([") - (sign in ")]")
+        if depth == 0 and sign in "+-" and before == " ":
+            return True
+    return False
 
 
 def product(a: Exact, b: Exact) -> Exact:

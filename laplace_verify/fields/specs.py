@@ -7,6 +7,7 @@ parameters are validated as if a user had typed them.
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable
 from dataclasses import fields, is_dataclass
 from fractions import Fraction
@@ -99,7 +100,9 @@ def _plain(value: Any) -> Any:
     if isinstance(value, tuple):
         return [_plain(item) for item in value]
     if isinstance(value, Singularity):
-        return {"point": list(value.point), "exponent": value.exponent, "as": value.kind}
+        return {"point": list(value.point), "exponent": _plain(value.exponent), "as": value.kind}
+    if isinstance(value, float) and not math.isfinite(value):
+        raise FieldError(f"{value} cannot be written to a file; give a finite number")
     if value is None or isinstance(value, str | int | float):
         return value
     raise FieldError(f"a {type(value).__name__} cannot be written to a file; give a formula string")

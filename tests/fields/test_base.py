@@ -110,6 +110,11 @@ def test_basis_and_opacity_of_a_sum_are_those_of_its_weakest_term():
     assert not (fields.polynomial(2) + fields.wedge(0.5)).opaque
 
 
+def test_sums_read_well():
+    u = 2 * fields.affine((0, 3)) - fields.polynomial(2) + fields.wedge("2/3")
+    assert u.formula == "2 (3 y) - Re (x + i y)^2 + r^(2/3) sin(2/3 theta)"
+
+
 @pytest.mark.parametrize("factor", [float("nan"), float("inf"), "x", None, 1j, True, np.ones(2)])
 def test_bad_factors_are_refused(factor):
     with pytest.raises(FieldError, match="factor"):

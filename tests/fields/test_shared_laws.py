@@ -242,9 +242,9 @@ def test_functions_cannot_be_written_to_a_file(name):
 
 
 CONJUGATES = [
-    "affine-2d", "polynomial-2-re", "polynomial-7-im", "exp-cos", "exp-sin-decay", "cosh-cos-pi",
-    "sinh-sin-pi", "sinh-below", "dipole-2d", "wedge-2-3-sin", "wedge-1-2-cos", "wedge-far-turn", "wedge-pole",
-    "shifted", "rotated", "rotated-quarter", "scaled", "inverted-2d", "inverted-wedge", "nested",
+    "affine-2d", "polynomial-2-re", "polynomial-7-im", "exp-cos", "exp-sin-decay", "cosh-cos-pi", "dipole-2d",
+    "sinh-sin-pi", "sinh-below", "wedge-2-3-sin", "wedge-1-2-cos", "wedge-far-turn", "wedge-pole", "shifted",
+    "rotated", "rotated-quarter", "scaled", "inverted-2d", "inverted-wedge", "nested",
 ]  # fmt: skip
 
 
@@ -312,5 +312,5 @@ def test_bad_points_are_refused(row):
     with pytest.raises(FieldError, match="coordinates"):
         row.field.at((0.5,) * (d + 1), 20)
     for digits in (0, 401, 2.5, True):
-        with pytest.raises(FieldError, match="digits must be an integer from 1 to 400"):
+        with pytest.raises(FieldError, match="digits must be a whole number from 1 to 400"):
             row.field.at((0.5,) * d, digits)

@@ -73,6 +73,12 @@ def test_fractions_and_singular_points_survive():
     assert fields.from_spec(spec).singularities == u.singularities
 
 
+def test_infinite_numbers_are_not_written():
+    pole = fields.Singularity(point=(0, 0), exponent=-float("inf"), kind="pole")
+    with pytest.raises(FieldError, match="-inf cannot be written to a file"):
+        fields.field("x*y", singular=[pole]).spec()
+
+
 def test_floats_keep_their_binary_value():
     u = fields.affine((0.1, 1e-300), 1 / 3)
     again = fields.from_spec(json.loads(json.dumps(u.spec())))

@@ -127,6 +127,13 @@ def test_bad_requests(make, reason):
         make()
 
 
+@pytest.mark.parametrize("text", ["sin(exp(exp(x)))", "exp(exp(exp(exp(x))))", "cosh(exp(exp(x)))*log(0-x)"])
+def test_towers_of_exponentials_do_not_exhaust_memory(text):
+    with pytest.raises(FieldError, match=r"beyond 2\^64"):
+        fields.field(text).at(24, 30)
+    assert fields.field("sin(exp(exp(x)))").at(1, 30) == fields.field("sin(exp(exp(x)))").at(1, 30)
+
+
 def test_a_field_is_passed_through():
     u = fields.wedge("2/3")
     assert fields.field(u) is u
