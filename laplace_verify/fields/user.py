@@ -178,18 +178,17 @@ def field(
     singular: Iterable[Singularity | Iterable[Number]] = (),
     dim: int | None = None,
 ) -> Field:
-    """Return a field from a user's own function of the coordinates, or from a formula string.
+    """Return a field from a user's own function or formula string; that it is harmonic is not checked here.
 
     Parameters
     ----------
     f : callable or str
-        ``f(x, y)`` over numpy arrays of shape (n,), written with numpy's functions, so that it can also be
-        evaluated on precise numbers; note that ``np.pi`` holds 16 digits. Or text such as
-        ``"exp(pi*y)*sin(pi*x)"``, where decimals and pi are exact and derivatives too; see `Formula`.
+        ``f(x, y)`` over numpy arrays of shape (n,), written with numpy's functions so that precise numbers
+        can be put in too (``np.pi`` holds 16 digits only). Or text such as ``"exp(pi*y)*sin(pi*x)"``, where
+        decimals, pi and derivatives are exact; see `Formula`.
     gradient : callable, optional
-        ``gradient(x, y)`` returning the tuple of partial derivatives. Without it: a sixth-order central
-        difference with steps of 1/256 (smaller near singular points), good to about 1e-12 where `f` varies
-        over lengths of order one. Not for formulas.
+        ``gradient(x, y)`` returning the partial derivatives. Without it: a sixth-order difference with steps
+        of 1/256, smaller near singular points; about 1e-12 where `f` varies over lengths of order one.
     singular : sequence of points or Singularity
         Where `f` has no value (plain points are taken as poles) or is not smooth.
     dim : int, optional
@@ -203,10 +202,6 @@ def field(
     ('2.71828182', True)
     >>> field("x**2 - y**2").gradient([[3.0, 1.0]]).tolist()
     [[6.0, -2.0]]
-
-    Notes
-    -----
-    Whether the function is harmonic is not checked here.
 
     Raises
     ------
