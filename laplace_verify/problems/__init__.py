@@ -5,7 +5,9 @@ from laplace_verify.problems.conditions import Condition, dirichlet, neumann, ro
 from laplace_verify.problems.pieces import MoveLog, Piece, Pieces
 from laplace_verify.problems.problem import Problem, Region, problem
 from laplace_verify.problems.quantities import Quantity, energy_of_solution, flux_through, value_at
+from laplace_verify.problems.random_cases import random_case
 from laplace_verify.problems.regularity import Regularity
+from laplace_verify.problems.schema import case_from_json, case_to_json
 from laplace_verify.problems.stored import StoredValue
 from laplace_verify.problems.units import Units
 
@@ -22,11 +24,14 @@ __all__ = [
     "StoredValue",
     "Units",
     "case",
+    "case_from_json",
+    "case_to_json",
     "dirichlet",
     "energy_of_solution",
     "flux_through",
     "neumann",
     "problem",
+    "random_case",
     "robin",
     "value_at",
 ]

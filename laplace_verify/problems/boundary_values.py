@@ -1,4 +1,4 @@
-"""Exact boundary data: u, the flux n . K grad u, and Robin's g = n . K grad u + alpha u, on the true boundary."""
+"""Exact data on the true boundary: u, the flux n . K grad u, and Robin's g = n . K grad u + alpha u."""
 
 from __future__ import annotations
 
@@ -92,7 +92,8 @@ class BoundaryField:
                 what = "flux n . K grad u" if derivative else "value"
                 raise ProblemError(
                     f"the {what} on piece {self._boundary.name!r} has no finite limit at point {row} = "
-                    f"{tuple(points[row].tolist())}, a singular point ({singularity.kind}); leave this point out"
+                    f"{tuple(points[row].tolist())}, a singular point ({singularity.kind}); leave this "
+                    f"point out"
                 )
             values[hit], ordinary[hit] = limit, False
         if ordinary.any():
@@ -140,7 +141,7 @@ def _undefined(singularity: Singularity, derivative: bool) -> bool:
 
 
 class ExactData:
-    """Data of a condition derived from an exact field, which stays out of sight of whoever holds the problem."""
+    """Data of a condition derived from an exact field, which stays out of sight of the problem's user."""
 
     __slots__ = ("__alpha", "__kind", "__seen")
 

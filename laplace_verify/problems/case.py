@@ -84,7 +84,7 @@ class Case:
     exact: Field
     regularity: Regularity
     quantities: Mapping[str, Quantity]
-    units: Units = Units()
+    units: Units = dataclass_field(default_factory=Units)
     stored: tuple[StoredValue, ...] = ()
     window: None = None
     _conditions: Mapping[str, Condition] = dataclass_field(default_factory=dict)
@@ -181,8 +181,8 @@ def case(
     shape
         The region.
     conditions
-        Piece name -> "dirichlet", "neumann" or ``robin(alpha)``. Pieces not named are Dirichlet; the name of a
-        split piece stands for its parts.
+        Piece name -> "dirichlet", "neumann" or ``robin(alpha)``. Pieces not named are Dirichlet; the name
+        of a split piece stands for its parts.
     field
         The exact solution, with div(K grad field) = 0 in the shape; this is checked.
     conductivity
@@ -197,8 +197,9 @@ def case(
     Raises
     ------
     ProblemError
-        If the field is no solution in the shape (the message gives point and residual), data are given although
-        they are derived, names are unknown or conflict, or the conductivity is not positive definite.
+        If the field is no solution in the shape (the message gives point and residual), data are given
+        although they are derived, names are unknown or conflict, or the conductivity is not positive
+        definite.
 
     Examples
     --------
@@ -211,7 +212,9 @@ def case(
     is_shape(shape)
     _check_words(id, field)
     if field.dim != shape.dim:
-        raise ProblemError(f"the field has dimension {field.dim}, the shape {shape!r} has dimension {shape.dim}")
+        raise ProblemError(
+            f"the field has dimension {field.dim}, the shape {shape!r} has dimension {shape.dim}"
+        )
     k = as_conductivity(conductivity, shape.dim)
     tensor = as_tensor(k, shape.dim)
     complete = _derived(shape, conditions)
@@ -245,7 +248,9 @@ def case(
 def _check_words(id_: str, field: Any) -> None:
     """Refuse an id that is no plain name, and a solution that is no field."""
     if not isinstance(id_, str) or not ID.fullmatch(id_):
-        raise ProblemError(f"id must be lower-case words joined by hyphens, such as 'warm-plate', got {id_!r}")
+        raise ProblemError(
+            f"id must be lower-case words joined by hyphens, such as 'warm-plate', got {id_!r}"
+        )
     if not isinstance(field, Field):
         raise ProblemError(
             f"the exact solution must be a field, got {type(field).__name__}; "

@@ -63,7 +63,8 @@ class Condition:
             object.__setattr__(self, name, _checked(getattr(self, name), name))
         if isinstance(self.alpha, float) and not self.alpha >= 0.0:
             raise ProblemError(
-                f"Robin's alpha must be >= 0, got {self.alpha!r}: with n . K grad u + alpha u = g and the outward "
+                f"Robin's alpha must be >= 0, got {self.alpha!r}: with n . K grad u + alpha u = g and "
+                f"the outward "
                 "normal a passive surface has a positive coefficient"
             )
 
@@ -128,8 +129,11 @@ def _given(kind: Kind, data: Data | None) -> Condition:
 
 def _checked(data: Any, name: str) -> Data | None:
     """Return data with numbers as float, refusing what is neither number, text, field nor function."""
-    if data is None or isinstance(data, str | Field) or callable(data):
+    if data is None or isinstance(data, str | Field):
         return data
+    if callable(data):
+        function: Callable[..., Any] = data
+        return function
     if isinstance(data, bool) or not isinstance(data, int | float | np.integer | np.floating):
         raise ProblemError(
             f"{name} of a condition must be a number, a formula string, a field or a function, "

@@ -49,7 +49,8 @@ class PointFunction:
     Raises
     ------
     ProblemError
-        If a formula cannot be read, a field has another dimension, or a function takes another number of arguments.
+        If a formula cannot be read, a field has another dimension, or a function takes another number of
+        arguments.
     """
 
     __slots__ = ("_columns", "_formula", "dim", "name", "source")
@@ -79,7 +80,8 @@ class PointFunction:
         Raises
         ------
         ProblemError
-            If a function raises, or its result has the wrong shape or is not finite; the first such point is named.
+            If a function raises, or its result has the wrong shape or is not finite; the first such point
+            is named.
         """
         if isinstance(self.source, float):
             return np.full(len(points), self.source)
@@ -133,7 +135,8 @@ def _takes_columns(function: Callable[..., Any], dim: int, name: str) -> bool:
         return False
     wanted = f"{least}" if least == most else f"{least} to {most:g}"
     raise ProblemError(
-        f"{name} is a function of {wanted} arguments; it must take the {dim} coordinates, or one array of points"
+        f"{name} is a function of {wanted} arguments; it must take the {dim} coordinates, or one array "
+        f"of points"
     )
 
 

@@ -1,14 +1,14 @@
 """A field on the boundary: which lip of a cut, and the limit along a piece where the field is singular.
 
 Value and flux on a piece are meant from inside the shape and along that piece. On a cut that runs along the
-piece (a slit: two pieces in one place) the inward side -n picks the lip. At a singular point p, usually an end of
-the piece, f(p) is the limit of f along the piece, extrapolated from two points on it at distances delta and
-2 delta:
+piece (a slit: two pieces in one place) the inward side -n picks the lip. At a singular point p, usually an
+end of the piece, f(p) is the limit of f along the piece, extrapolated from two points on it at distances
+delta and 2 delta:
 
     f(p) = 2 f(delta) - f(2 delta) + O(delta^2 f''),   delta = 1e-7 of the shape's size
 
-so that the error is of the size of round-off wherever f is smooth along the piece. Where f is not (a flux that
-grows like r^(e-1)), the two values differ by far more than delta and there is no limit to return.
+so that the error is of the size of round-off wherever f is smooth along the piece. Where f is not (a flux
+that grows like r^(e-1)), the two values differ by far more than delta and there is no limit to return.
 """
 
 from __future__ import annotations
@@ -49,9 +49,9 @@ def directions_along(boundary: Boundary, place: Array, size: float) -> list[Arra
 
 
 def sides_on(field: Field, boundary: Boundary, points: Array, size: float) -> Array | None:
-    """Return the side (n,) of the field's cuts on which the shape lies at points of a piece; None if on no cut.
+    """Return the side (n,) of the field's cuts on which the shape lies at points of a piece.
 
-    +1 is the left of a cut's direction, 0 stands for points that are on no cut.
+    None if no point is on a cut; +1 is the left of a cut's direction, 0 stands for points that are on no cut.
     """
     if not field.cuts:
         return None

@@ -84,20 +84,20 @@ class Piece:
     def data(self, points: npt.ArrayLike) -> Array:
         """Return the boundary data (n,) at points (n, d): u, n . K grad u, or n . K grad u + alpha u.
 
-        Points are first moved onto the piece, so that the data are always those of the true boundary: by at most
-        1e-9 of the shape's size on flat pieces and 0.1 of it on curved ones. Where data jump, at an end of the
-        piece, the value is the limit along this piece.
+        Points are first moved onto the piece, so that the data are always those of the true boundary: by at
+        most 1e-9 of the shape's size on flat pieces and 0.1 of it on curved ones. Where data jump, at an
+        end of the piece, the value is the limit along this piece.
 
         Raises
         ------
         ProblemError
-            If a point is farther off the piece than that (piece, point and distance are named), or the data are
-            infinite there.
+            If a point is farther off the piece than that (piece, point and distance are named), or the data
+            are infinite there.
         """
         return self._data(self._moved(points))
 
     def alpha(self, points: npt.ArrayLike) -> Array:
-        """Return Robin's coefficient alpha >= 0, shape (n,), at points (n, d), moved onto the piece as in `data`.
+        """Return Robin's alpha >= 0, shape (n,), at points (n, d), moved onto the piece as in `data`.
 
         Raises
         ------

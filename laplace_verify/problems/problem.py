@@ -1,4 +1,4 @@
-"""A boundary value problem as a solver is handed it: div(K grad u) = 0 in a shape, a condition on every piece.
+"""A boundary value problem as a solver is handed it: div(K grad u) = 0, a condition on every piece.
 
 A problem holds no exact solution in reach: data come out of ``piece.data(points)`` and nothing else does.
 """
@@ -157,8 +157,9 @@ def problem(
     Raises
     ------
     ProblemError
-        If a piece has no condition or no data, names are unknown or conflict, the conductivity is not positive
-        definite, pure Neumann data do not balance, or `constant` is given where u is fixed by the conditions.
+        If a piece has no condition or no data, names are unknown or conflict, the conductivity is not
+        positive definite, pure Neumann data do not balance, or `constant` is given where u is fixed by the
+        conditions.
 
     Examples
     --------
@@ -179,7 +180,8 @@ def problem(
         check_balance(shape, pieces)
         fixed: Constant | None = as_constant(("mean", 0.0) if constant is None else constant, shape)
     else:
-        fixed = no_constant(constant)
+        no_constant(constant)
+        fixed = None
     return Problem(name=name, shape=shape, pieces=pieces, conductivity=k, constant=fixed)
 
 

@@ -5,8 +5,8 @@
     energy   integral over the shape of grad u . K grad u dx = integral over the boundary of u n . K grad u ds
 
 Integrals over the boundary are graded towards singular points and done at two orders; the radius is their
-difference plus rounding plus, at a singular point r**e, what the innermost panel of the grading can hold. A value
-given in closed form is checked against the integral and then replaces it.
+difference plus rounding plus, at a singular point r**e, what the innermost panel of the grading can hold. A
+value given in closed form is checked against the integral and then replaces it.
 """
 
 from __future__ import annotations
@@ -14,6 +14,7 @@ from __future__ import annotations
 import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
+from decimal import ROUND_CEILING, Decimal
 from fractions import Fraction
 from typing import Literal, TypeAlias
 
@@ -28,7 +29,9 @@ from laplace_verify.problems.limits import near
 from laplace_verify.problems.regularity import Regularity
 
 __all__ = [
+    "CLOSED_FORM",
     "Quantity",
+    "QuantityKind",
     "QuantitySpec",
     "Where",
     "energy_of_solution",
@@ -145,7 +148,23 @@ def _evaluated(
                 f"quantity {name!r}: the closed form {spec.exact} disagrees with the field's {value!r}"
             )
         value, radius = exact, 4 * EPS * abs(exact)
+    else:
+        value, radius = _rounded(value, radius)
     return Quantity(value=value, unit=spec.unit, radius=radius, kind=spec.kind, where=spec.where)
+
+
+def _rounded(value: float, radius: float) -> tuple[float, float]:
+    """Return the value without digits far below the radius, and the radius rounded up to one digit.
+
+    What is dropped differs from machine to machine; the radius has room for it.
+    """
+    if not radius > 0.0:
+        return value, radius
+    wide = Decimal(1.2 * radius)
+    unit = Decimal(10) ** wide.adjusted()
+    enlarged = (wide / unit).to_integral_value(rounding=ROUND_CEILING) * unit
+    digits = unit / 10
+    return float((Decimal(value) / digits).to_integral_value() * digits), float(enlarged)
 
 
 def _value(name: str, spec: QuantitySpec, shape: Shape, field: Field) -> tuple[float, float, float]:
@@ -211,7 +230,8 @@ def _hidden(name: str, kind: str, piece: Boundary, seen: BoundaryField, field: F
         if singularity.exponent <= 0.0:
             what = "flux through" if kind == "flux" else "energy at"
             raise ProblemError(
-                f"quantity {name!r}: the {what} piece {piece.name!r} is infinite, because boundary data jump at "
+                f"quantity {name!r}: the {what} piece {piece.name!r} is infinite, because boundary data "
+                f"jump at "
                 f"{singularity.point}"
             )
         if piece.dim == 2:
@@ -224,8 +244,8 @@ def _tail(piece: Boundary, seen: BoundaryField, singularity: Singularity, size: 
 
     There the flux is at most C r**(e-1), whose integral up to R is C R**e / e; C is measured at 1e-6 size. A
     Gauss rule of n points misses a share O(n**(-2 e)) of it (Davis and Rabinowitz 1984, Methods of Numerical
-    Integration, section 2.12, from memory, unchecked); twice 12**(-2 e) is taken. Panels end where float64 no longer
-    tells points from the singular one.
+    Integration, section 2.12, from memory, unchecked); twice 12**(-2 e) is taken. Panels end where float64
+    no longer tells points from the singular one.
     """
     normal = piece.normals(np.array([singularity.point]))[0]
     place = np.array(singularity.point)
@@ -236,7 +256,7 @@ def _tail(piece: Boundary, seen: BoundaryField, singularity: Singularity, size: 
     largest = float(np.abs(seen.flux(points)).max())
     e = singularity.exponent
     panel = 2.0**11 * EPS * max(size, float(np.abs(place).max()))
-    return 2.0 * 12.0 ** (-2.0 * e) * largest * r * (panel / r) ** e / e
+    return 2.0 * math.pow(12.0, -2.0 * e) * largest * r * math.pow(panel / r, e) / e
 
 
 def _number(name: str, exact: Exact) -> float:

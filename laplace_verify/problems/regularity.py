@@ -1,18 +1,19 @@
 """How smooth solution and shape are: the exponents that limit the order of any method.
 
-*Solution.* Near a singular point on the closed shape u - smooth ~ r**e; the smallest e counts, 0 for a jump of
-boundary data, infinity if there is none.
+*Solution.* Near a singular point on the closed shape u - smooth ~ r**e; the smallest e counts, 0 for a jump
+of boundary data, infinity if there is none.
 
-*Domain.* Where two pieces meet at the interior angle w, solutions with smooth data behave like r**(pi/w) if both
-pieces carry the same type of condition (Dirichlet, or flux: Neumann and Robin) and r**(pi/(2 w)) if Dirichlet
-meets flux (Grisvard 1985, Elliptic Problems in Nonsmooth Domains, section 4.4; Kondrat'ev 1967). Robin's term is
-of lower order and leaves the exponent. With a tensor K the angle is the one seen after the substitution
-x -> K^{-1/2} x, which turns a normal n into K^{1/2} n: if n_1, n_2 are the outward normals,
+*Domain.* Where two pieces meet at the interior angle w, solutions with smooth data behave like r**(pi/w) if
+both pieces carry the same type of condition (Dirichlet, or flux: Neumann and Robin) and r**(pi/(2 w)) if
+Dirichlet meets flux (Grisvard 1985, Elliptic Problems in Nonsmooth Domains, section 4.4; Kondrat'ev 1967).
+Robin's term is of lower order and leaves the exponent. With a tensor K the angle is the one seen after the
+substitution x -> K^{-1/2} x, which turns a normal n into K^{1/2} n: if n_1, n_2 are the outward normals,
 
-    w' = pi -+ arccos( n_1 . K n_2 / sqrt(n_1 . K n_1  n_2 . K n_2) ),   - for w < pi, + for w > pi   (derived here).
+    w' = pi -+ arccos( n_1 . K n_2 / sqrt(n_1 . K n_1  n_2 . K n_2) ),   - for w < pi, + for w > pi
+    (derived here).
 
-*Scale.* The smallest length that a grid must resolve: of the shape (pieces, gaps), or of the solution (distance to
-singular points outside, distances between those on the boundary).
+*Scale.* The smallest length that a grid must resolve: of the shape (pieces, gaps), or of the solution
+(distance to singular points outside, distances between those on the boundary).
 """
 
 from __future__ import annotations

@@ -1,8 +1,8 @@
-"""Declared singular points and cuts of a field against a shape: none strictly inside, no pole on its boundary.
+"""Declared singular points and cuts against a shape: none strictly inside, no pole on its boundary.
 
-A cut is followed exactly, not by sampling: an interval of it whose middle lies outside the shape and farther from
-the boundary than half its length lies outside altogether (the distance is 1-Lipschitz); other intervals are
-halved until one shows a point strictly inside, or they are as short as the tolerance.
+A cut is followed exactly, not by sampling: an interval of it whose middle lies outside the shape and
+farther from the boundary than half its length lies outside altogether (the distance is 1-Lipschitz); other
+intervals are halved until one shows a point strictly inside, or they are as short as the tolerance.
 """
 
 from __future__ import annotations
@@ -33,7 +33,8 @@ def check_singularities(shape: Shape, field: Field) -> None:
     Raises
     ------
     ProblemError
-        If a declared singular point lies inside, a log or pole on the boundary, or a cut crosses the interior.
+        If a declared singular point lies inside, a log or pole on the boundary, or a cut crosses the
+        interior.
     """
     for singularity in on_shape(shape, field):
         inside = bool(shape.distance(np.array([singularity.point]))[0] > ON_BOUNDARY * shape.size)

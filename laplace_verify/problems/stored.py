@@ -3,8 +3,13 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from decimal import Decimal, InvalidOperation
 
-__all__ = ["StoredValue"]
+from laplace_verify.errors import ProblemError, nearest_names
+
+__all__ = ["BASES", "StoredValue"]
+
+BASES = ("closed form", "tail bound", "maximum principle", "two routes")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -18,9 +23,21 @@ class StoredValue:
     value, gradient
         u and the components of grad u.
     radius
-        Error radius of the value and of every component of the gradient.
+        Error radius of the value and of every component of the gradient, >= 0.
     basis
-        "closed form", "tail bound" (proven) or "two routes" (confirmed by agreement, not proven).
+        "closed form", "tail bound" or "maximum principle" (proven), or "two routes" (confirmed by the
+        agreement of two independent computations, not proven).
+
+    Raises
+    ------
+    ProblemError
+        If a string is no decimal number, the gradient has not one component per coordinate, or the basis is
+        unknown.
+
+    Examples
+    --------
+    >>> StoredValue(point=("0.5",), value="0.25", gradient=("1",), radius="0", basis="closed form").value
+    '0.25'
     """
 
     point: tuple[str, ...]
@@ -28,3 +45,34 @@ class StoredValue:
     gradient: tuple[str, ...]
     radius: str
     basis: str
+
+    def __post_init__(self) -> None:
+        """Check every string."""
+        for name, texts in (("point", self.point), ("gradient", self.gradient)):
+            if not isinstance(texts, tuple | list) or not texts:
+                raise ProblemError(
+                    f"{name} of a stored value must be a tuple of decimal strings, got {texts!r}"
+                )
+            object.__setattr__(self, name, tuple(_decimal(name, text) for text in texts))
+        _decimal("value", self.value)
+        if not Decimal(_decimal("radius", self.radius)) >= 0:
+            raise ProblemError(f"radius of a stored value must be >= 0, got {self.radius!r}")
+        if len(self.point) != len(self.gradient):
+            raise ProblemError(
+                f"a stored value at {self.point} needs {len(self.point)} derivatives, got "
+                f"{len(self.gradient)}"
+            )
+        if self.basis not in BASES:
+            raise ProblemError(
+                f"unknown basis {self.basis!r} of a stored value; {nearest_names(self.basis, BASES)}"
+            )
+
+
+def _decimal(name: str, text: str) -> str:
+    """Return the text if it is a finite decimal number."""
+    try:
+        if isinstance(text, str) and Decimal(text).is_finite():
+            return text
+    except InvalidOperation:
+        pass
+    raise ProblemError(f"{name} of a stored value must be a decimal in a string such as '0.25', got {text!r}")

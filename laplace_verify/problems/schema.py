@@ -1,0 +1,335 @@
+"""Cases as JSON: one file a case, readable without Python, the same bytes for the same case.
+
+    format, format_version    "laplace-verify case", 1
+    id, title, statement, reading, tags, sources
+    dim, shape                {"kind": "rectangle", "lower": [0, 0], "upper": [1, 1], "split": {"top": [0.4]}}
+    conductivity              a number or a matrix
+    conditions                piece -> {"kind": "robin", "alpha": 3.0}
+    constant                  null, or {"kind": "mean" | "point", "point": null | [x, y], "value": v}
+    exact                     {"formula": text, "basis": why its digits can be believed, "field": parameters}
+    regularity                exponents (null: smooth, no limit), singular points, jumps, smallest length
+    quantities                name -> {"kind", "where", "value", "radius", "unit"}; numbers as decimal strings
+    units                     of length, value, conductivity; "" if dimensionless
+    stored                    high-precision values as decimal strings with radius and basis
+
+Reading derives data, regularity and quantities again from the exact field and refuses a file that disagrees
+with them, so a file edited by hand cannot bring a wrong answer into a study.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator
+from contextlib import contextmanager
+from dataclasses import replace
+from typing import Any, Literal
+
+import msgspec
+
+from laplace_verify.errors import LaplaceVerifyError, RecordError
+from laplace_verify.fields import from_spec
+from laplace_verify.geometry import shape_from_spec, shape_to_spec
+from laplace_verify.problems.case import Case, case
+from laplace_verify.problems.compatibility import Constant
+from laplace_verify.problems.conditions import Condition, Kind
+from laplace_verify.problems.quantities import CLOSED_FORM, Quantity, QuantityKind, QuantitySpec
+from laplace_verify.problems.regularity import Regularity
+from laplace_verify.problems.stored import StoredValue
+from laplace_verify.problems.units import Units
+
+__all__ = ["FORMAT", "FORMAT_VERSION", "case_from_json", "case_to_json"]
+
+FORMAT = "laplace-verify case"
+FORMAT_VERSION = 1
+AGREEMENT = 1e-9  # of exponents and lengths in a file with those derived
+
+
+class _Condition(msgspec.Struct, kw_only=True, forbid_unknown_fields=True, omit_defaults=True):
+    kind: Kind
+    alpha: float | str | None = None
+
+
+class _Constant(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
+    kind: Literal["mean", "point"]
+    point: tuple[float, ...] | None
+    value: float
+
+
+class _Exact(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
+    formula: str
+    basis: str
+    field: dict[str, Any]
+
+
+class _Regularity(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
+    solution: float | None
+    domain: float | None
+    singular_points: list[list[float]]
+    jumps: list[list[float]]
+    scale: float
+
+
+class _Quantity(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
+    kind: QuantityKind
+    where: str | tuple[float, ...] | None
+    value: str
+    radius: str
+    unit: str
+
+
+class _Units(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
+    length: str
+    value: str
+    conductivity: str
+
+
+class _Stored(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
+    point: tuple[str, ...]
+    value: str
+    gradient: tuple[str, ...]
+    radius: str
+    basis: str
+
+
+class _CaseFile(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
+    format: str
+    format_version: int
+    id: str
+    title: str
+    statement: str
+    reading: str
+    tags: list[str]
+    sources: list[str]
+    dim: int
+    shape: dict[str, Any]
+    conductivity: float | list[list[float]]
+    conditions: dict[str, _Condition]
+    constant: _Constant | None
+    exact: _Exact
+    regularity: _Regularity
+    quantities: dict[str, _Quantity]
+    units: _Units
+    stored: list[_Stored]
+
+
+def case_to_json(case: Case) -> bytes:
+    """Return the JSON of a case: UTF-8, two blanks of indentation, a newline at the end.
+
+    Raises
+    ------
+    RecordError
+        If a part cannot be written down: an exact field or Robin's alpha that is a Python function.
+
+    Examples
+    --------
+    >>> from laplace_verify import fields
+    >>> from laplace_verify.geometry import Interval
+    >>> from laplace_verify.problems import case
+    >>> text = case_to_json(case(Interval(0, 1), {}, fields.affine((2,))))
+    >>> text == case_to_json(case_from_json(text))
+    True
+    """
+    problem = case.problem
+    k = problem.conductivity
+    with _named(f"case {case.id!r}", "exact"):
+        exact = _Exact(formula=case.exact.formula, basis=case.exact.basis, field=case.exact.spec())
+    content = _CaseFile(
+        format=FORMAT,
+        format_version=FORMAT_VERSION,
+        id=case.id,
+        title=case.title,
+        statement=case.statement,
+        reading=case.reading,
+        tags=sorted(case.tags),
+        sources=list(case.sources),
+        dim=case.dim,
+        shape=shape_to_spec(problem.shape),
+        conductivity=k if isinstance(k, float) else k.tolist(),
+        conditions={piece.name: _condition(case, piece.name) for piece in problem.pieces},
+        constant=_constant_to_file(problem.constant),
+        exact=exact,
+        regularity=_regularity_to_file(case.regularity),
+        quantities={name: _quantity_to_file(q) for name, q in case.quantities.items()},
+        units=_Units(length=case.units.length, value=case.units.value, conductivity=case.units.conductivity),
+        stored=[
+            _Stored(point=s.point, value=s.value, gradient=s.gradient, radius=s.radius, basis=s.basis)
+            for s in case.stored
+        ],
+    )
+    return msgspec.json.format(msgspec.json.encode(content), indent=2) + b"\n"
+
+
+def case_from_json(data: bytes, path: str = "case file") -> Case:
+    """Return the case that a JSON file describes.
+
+    Parameters
+    ----------
+    data
+        Content of the file.
+    path
+        Its name, for messages.
+
+    Raises
+    ------
+    RecordError
+        If the file is no case file, or a field is missing, unknown, malformed, or disagrees with what
+        follows from the exact field; file and field are named.
+    """
+    content = _decoded(data, path)
+    with _named(path, "shape"):
+        shape = shape_from_spec(content.shape)
+    if shape.dim != content.dim:
+        raise RecordError(f"{path}: dim is {content.dim}, but the shape has dimension {shape.dim}")
+    with _named(path, "exact.field"):
+        field = from_spec(content.exact.field)
+    with _named(path, "conditions"):
+        conditions = {n: Condition(kind=c.kind, alpha=c.alpha) for n, c in content.conditions.items()}
+    specs = {
+        name: QuantitySpec(kind=q.kind, where=q.where, unit=q.unit) for name, q in content.quantities.items()
+    }
+    with _named(path, "problem"):
+        made = case(
+            shape,
+            conditions,
+            field,
+            content.conductivity,
+            id=content.id,
+            title=content.title,
+            statement=content.statement,
+            tags=content.tags,
+            sources=content.sources,
+            reading=content.reading,
+            quantities=specs,
+            constant=_constant_from_file(content.constant),
+        )
+    _check_regularity(path, content.regularity, made.regularity)
+    with _named(path, "stored"):
+        stored = tuple(StoredValue(**msgspec.structs.asdict(s)) for s in content.stored)
+        for value in stored:
+            if len(value.point) != shape.dim:
+                raise RecordError(f"point {value.point} needs {shape.dim} coordinates")
+    return replace(
+        made,
+        quantities={
+            name: _quantity_from_file(path, name, q, made.quantities[name])
+            for name, q in content.quantities.items()
+        },
+        units=Units(**msgspec.structs.asdict(content.units)),
+        stored=stored,
+    )
+
+
+def _decoded(data: bytes, path: str) -> _CaseFile:
+    """Return the typed content of a file."""
+    try:
+        head = msgspec.json.decode(data)
+    except msgspec.DecodeError as cause:
+        raise RecordError(f"{path}: not JSON: {cause}") from cause
+    except RecursionError as cause:
+        raise RecordError(f"{path}: nested too deeply") from cause
+    if not isinstance(head, dict) or head.get("format") != FORMAT:
+        raise RecordError(f'{path}: not a case file; it must hold an object with "format": "{FORMAT}"')
+    if head.get("format_version") != FORMAT_VERSION:
+        raise RecordError(
+            f"{path}: format_version {head.get('format_version')!r} cannot be read, only {FORMAT_VERSION}"
+        )
+    try:
+        return msgspec.convert(head, _CaseFile)
+    except msgspec.ValidationError as cause:
+        raise RecordError(f"{path}: {cause}") from cause
+
+
+@contextmanager
+def _named(path: str, part: str) -> Iterator[None]:
+    """Turn errors of this package into RecordError that names file and field."""
+    try:
+        yield
+    except LaplaceVerifyError as cause:
+        raise RecordError(f"{path}: {part}: {cause}") from cause
+
+
+def _condition(case: Case, name: str) -> _Condition:
+    """Return kind and alpha of a piece."""
+    condition = case._conditions[name]
+    alpha = condition.alpha
+    if alpha is not None and not isinstance(alpha, float | str):
+        raise RecordError(
+            f"case {case.id!r}: Robin's alpha of piece {name!r} is a function, which cannot be written "
+            f"to a file; "
+            "give a number or a formula string"
+        )
+    return _Condition(kind=condition.kind, alpha=alpha)
+
+
+def _constant_to_file(constant: Constant | None) -> _Constant | None:
+    if constant is None:
+        return None
+    if constant[0] == "mean":
+        return _Constant(kind="mean", point=None, value=constant[1])
+    return _Constant(kind="point", point=constant[1], value=constant[2])
+
+
+def _constant_from_file(constant: _Constant | None) -> Any:
+    if constant is None:
+        return None
+    if constant.kind == "mean":
+        return ("mean", constant.value)
+    return ("point", constant.point, constant.value)
+
+
+def _regularity_to_file(regularity: Regularity) -> _Regularity:
+    return _Regularity(
+        solution=_exponent(regularity.solution),
+        domain=_exponent(regularity.domain),
+        singular_points=regularity.singular_points.tolist(),
+        jumps=regularity.jumps.tolist(),
+        scale=_rounded(regularity.scale),
+    )
+
+
+def _exponent(exponent: float) -> float | None:
+    """Return an exponent for a file: null stands for infinity."""
+    return _rounded(exponent) if math.isfinite(exponent) else None
+
+
+def _rounded(number: float) -> float:
+    """Return twelve significant digits: the last bits may differ between machines."""
+    return float(f"{number:.12g}")
+
+
+def _check_regularity(path: str, given: _Regularity, derived: Regularity) -> None:
+    """Refuse a file whose regularity is not that of its own exact field."""
+    expected = _regularity_to_file(derived)
+    for name in ("solution", "domain", "scale"):
+        a, b = getattr(given, name), getattr(expected, name)
+        if (a is None) != (b is None) or (a is not None and not abs(a - b) <= AGREEMENT * abs(b)):
+            raise RecordError(f"{path}: regularity.{name} is {a}, but shape and exact field give {b}")
+    for name in ("singular_points", "jumps"):
+        a, b = getattr(given, name), getattr(expected, name)
+        if a != b:
+            raise RecordError(f"{path}: regularity.{name} is {a}, but the exact field has {b}")
+
+
+def _quantity_to_file(quantity: Quantity) -> _Quantity:
+    return _Quantity(
+        kind=quantity.kind,
+        where=quantity.where,
+        value=repr(quantity.value),
+        radius=repr(quantity.radius),
+        unit=quantity.unit,
+    )
+
+
+def _quantity_from_file(path: str, name: str, given: _Quantity, derived: Quantity) -> Quantity:
+    """Return the quantity of a file, refusing one that the exact field does not have."""
+    try:
+        value, radius = float(given.value), float(given.radius)
+    except ValueError as cause:
+        raise RecordError(f"{path}: quantities.{name}: value and radius must be decimal strings") from cause
+    room = radius + derived.radius + CLOSED_FORM * (1.0 + abs(derived.value))
+    if not (abs(value - derived.value) <= room and 0.0 <= radius < math.inf):
+        raise RecordError(
+            f"{path}: quantities.{name}: value is {given.value} +- {given.radius}, the exact field gives "
+            f"{derived.value!r} +- {derived.radius:.2g}"
+        )
+    return replace(derived, value=value, radius=radius)
