@@ -156,7 +156,7 @@ class Record:
 
 
 def record_to_json(record: Record, path: str | os.PathLike[str] | None = None) -> bytes:
-    """Return the record as UTF-8 JSON, indented, and write it to `path` if one is given (atomically).
+    """Return the record as UTF-8 JSON, one line an entry, and write it to `path` if one is given (atomically).
 
     Raises
     ------
@@ -167,7 +167,7 @@ def record_to_json(record: Record, path: str | os.PathLike[str] | None = None) -
         plain = _mark(msgspec.to_builtins(record))
     except TypeError as cause:
         raise RecordError(f"the record holds something that is not plain data: {cause}") from cause
-    data = msgspec.json.format(msgspec.json.encode({"format": FORMAT, **plain}), indent=1) + b"\n"
+    data = _laid_out({"format": FORMAT, **plain})
     if path is not None:
         write_atomically(Path(path), data)
     return data
@@ -201,6 +201,17 @@ def record_from_json(source: str | os.PathLike[str] | bytes) -> Record:
         return msgspec.convert(_unmark(plain), Record)
     except msgspec.ValidationError as cause:
         raise RecordError(f"{name}: {_field_message(cause)}") from cause
+
+
+def _laid_out(plain: dict[str, Any]) -> bytes:
+    """Return JSON with a line for every field and, in lists, for every entry: fit for `diff`, yet small."""
+    fields = []
+    for key, value in plain.items():
+        text = msgspec.json.encode(value)
+        if isinstance(value, list) and value:
+            text = b"[\n" + b",\n".join(msgspec.json.encode(entry) for entry in value) + b"\n]"
+        fields.append(msgspec.json.encode(key) + b": " + text)
+    return b"{\n" + b",\n".join(fields) + b"\n}\n"
 
 
 def _field_message(error: msgspec.ValidationError) -> str:

@@ -45,5 +45,5 @@ def counted(part: int, whole: int, what: str) -> str:
     if whole == 1:
         return f"the only one of the {what}" if part else f"not the only one of the {what}"
     if part == whole:
-        return f"all {whole} {what}"
+        return f"both {what}" if whole == 2 else f"all {whole} {what}"
     return f"{part} of the {whole} {what}" if part else f"none of the {whole} {what}"

@@ -37,8 +37,8 @@ def patterns(failing: Sequence[Study]) -> list[Finding]:
         _pattern(
             failing,
             _without_limit,
-            "do not get smaller errors by refinement: they converge to a wrong limit, or stop at a floor. Typical of "
-            "a wrong sign, coefficient, normal or constant, or of an iteration that stops early",
+            "do not get smaller errors by refinement: they converge to a wrong limit, or stop at a floor. "
+            "Typical of a wrong sign, coefficient, normal or constant, or of an iteration that stops early",
         ),
         _pattern(
             failing,
@@ -50,7 +50,6 @@ def patterns(failing: Sequence[Study]) -> list[Finding]:
             failing,
             lambda study: bool(short_norms(study)) and all(_of_gradient(norm) for norm in short_norms(study)),
             "fall short in gradient or flux only, the values converge as expected: look at how the gradient "
-            "is recovered",
             "is recovered",
         ),
     ]

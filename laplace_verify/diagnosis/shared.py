@@ -60,7 +60,7 @@ def shared_features(
         return [_no_contrast(bad, bad_word, good_word)]
     features = {id(study): feature_names(study) for study in (*bad, *good)}
     groups: dict[tuple[frozenset[int], frozenset[int]], list[str]] = {}
-    for name in sorted(set().union(*(features[id(study)] for study in bad))):
+    for name in _in_order(bad):
         have_bad = frozenset(k for k, study in enumerate(bad) if name in features[id(study)])
         have_good = frozenset(k for k, study in enumerate(good) if name in features[id(study)])
         groups.setdefault((have_bad, have_good), []).append(name)
@@ -72,6 +72,13 @@ def shared_features(
     found.sort(key=lambda entry: (-entry[0], entry[3], entry[2]))
     words = (bad_word, good_word)
     return [_finding(score, key, names, pair, bad, good, words) for score, key, names, pair in found[:_LIMIT]]
+
+
+def _in_order(studies: Sequence[Study]) -> list[str]:
+    """Return the features of the studies in the order in which they list them: the general ones come first."""
+    listed_by = {name: place for study in studies for place, name in enumerate(study.features)}
+    names: set[str] = set().union(*(feature_names(study) for study in studies))
+    return sorted(names, key=lambda name: (listed_by.get(name, listed_by.get(name.split(":")[0], 0)), name))
 
 
 _Key = tuple[frozenset[int], frozenset[int]]

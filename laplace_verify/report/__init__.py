@@ -1,0 +1,5 @@
+"""Reports and figures from a record: HTML, Markdown, LaTeX, CSV, JSON, JUnit."""
+
+from laplace_verify.report.writer import FORMATS, write_report
+
+__all__ = ["FORMATS", "write_report"]

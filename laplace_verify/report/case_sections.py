@@ -1,0 +1,264 @@
+"""The section of a case: what was asked, what was measured, what was concluded."""
+
+from __future__ import annotations
+
+import math
+
+from laplace_verify.campaign.record import CaseInfo, Record
+from laplace_verify.measure.results import Level, Study
+from laplace_verify.report.content import (
+    Block,
+    Cell,
+    Code,
+    Column,
+    Facts,
+    Items,
+    Paragraph,
+    Picture,
+    Section,
+    Table,
+)
+from laplace_verify.report.figures import convergence_figure, order_figure, shown_norms
+from laplace_verify.report.maps import case_figure, error_figure
+from laplace_verify.report.text import (
+    accepted,
+    finest_error,
+    interval,
+    joined,
+    number,
+    order,
+    seconds,
+    vector,
+)
+
+__all__ = ["case_anchor", "case_section"]
+
+
+def case_anchor(study: Study) -> str:
+    """Return the anchor of a study's section."""
+    return f"case-{study.case_id}"
+
+
+def case_section(record: Record, study: Study) -> Section:
+    """Return everything known about one study."""
+    info = record.case(study.case_id)
+    blocks: list[Block] = []
+    if info is not None:
+        blocks += _question(info)
+    blocks += _conclusion(study)
+    if study.orders:
+        blocks.append(_order_table(study))
+    if study.levels:
+        blocks.append(_level_table(study))
+        blocks += _left_out(study)
+        blocks.append(_pictures(study, info))
+    title = info.title if info and info.title else study.case_title or study.case_id
+    return Section(
+        anchor=case_anchor(study),
+        title=f"{title} ({study.case_id})" if title != study.case_id else title,
+        blocks=tuple(blocks),
+        verdict=study.verdict,
+    )
+
+
+def _question(info: CaseInfo) -> list[Block]:
+    """Return statement, reading and facts of the case."""
+    blocks: list[Block] = []
+    if info.dim == 2 and any(len(piece.outline) > 1 for piece in info.pieces):
+        blocks.append(
+            Picture(
+                key=f"shape-{info.id}",
+                title="The problem",
+                alt=f"The {info.shape} with its boundary pieces: "
+                + joined(f"{piece.name} ({piece.condition})" for piece in info.pieces)
+                + ".",
+                caption="Boundary pieces by name, lines by condition.",
+                draw=lambda: case_figure(info),
+            )
+        )
+    blocks += [Paragraph(text=info.statement, tone="lead")] if info.statement else []
+    pairs = [
+        ("Reading", info.reading),
+        ("Shape", f"{info.shape}, {info.dim}-D"),
+        ("Conditions", ", ".join(f"{piece.name}: {piece.condition}" for piece in info.pieces)),
+        ("Conductivity", info.conductivity),
+        ("Exact solution", info.formula),
+        ("Regularity", _regularity(info)),
+        ("Quantities", "; ".join(f"{q.name} = {q.value!r} {q.unit}".strip() for q in info.quantities)),
+        ("Tags", ", ".join(info.tags)),
+        ("Sources", "; ".join(info.sources)),
+    ]
+    blocks.append(Facts(pairs=tuple((name, value) for name, value in pairs if value)))
+    return blocks
+
+
+def _regularity(info: CaseInfo) -> str:
+    """Return exponents and singular points in words."""
+    found = info.regularity
+    if found is None:
+        return ""
+    solution = (
+        "smooth"
+        if math.isinf(found.solution)
+        else f"u behaves like r^{number(found.solution)} at its worst point"
+    )
+    domain = (
+        "no corner matters"
+        if math.isinf(found.domain)
+        else f"smallest corner exponent {number(found.domain)}"
+    )
+    text = f"{solution}; {domain}; smallest length {number(found.scale)}"
+    if found.singular_points:
+        text += f"; singular at {joined(map(vector, found.singular_points[:6]))}"
+    return text + (f"; data jump at {joined(map(vector, found.jumps[:6]))}" if found.jumps else "")
+
+
+def _conclusion(study: Study) -> list[Block]:
+    """Return reasons, remarks, and what the solver said when it broke."""
+    blocks: list[Block] = []
+    if accepted(study):
+        blocks.append(Paragraph(label="Accepted deviation.", text=f"Declared before the run: {study.known}"))
+    if len(study.reasons) == 1:
+        blocks.append(Paragraph(label="Why.", text=study.reasons[0]))
+    elif study.reasons:
+        blocks += [Paragraph(label="Why.", text=""), Items(entries=tuple(study.reasons))]
+    if study.crash:
+        blocks += [Paragraph(label="What the solver raised.", text=""), Code(text=study.crash)]
+    if study.remarks:
+        blocks += [
+            Paragraph(label="Remarks.", text="These do not decide the verdict."),
+            Items(entries=tuple(study.remarks)),
+        ]
+    return blocks
+
+
+def _order_table(study: Study) -> Table:
+    """Return one row a norm: formal, expected, observed order."""
+    columns = (
+        Column(title="Norm"),
+        Column(title="Role"),
+        Column(title="Formal order", align="right"),
+        Column(title="Expected order", align="right"),
+        Column(title="Observed order", align="right"),
+        Column(title="Tolerance", align="right"),
+        Column(title="Finest error", align="right"),
+        Column(title="Verdict"),
+        Column(title="Why this order is expected"),
+    )
+    rows = tuple(
+        (
+            Cell(text=norm),
+            Cell(text="decides" if found.decides else "remark"),
+            Cell(text=order(found.formal)),
+            Cell(text="falls, no rate" if found.expected == "decrease" else order(found.expected)),
+            Cell(text=interval(found)),
+            Cell(text=number(found.tolerance, 2)),
+            Cell(text=number(finest_error(study, norm))),
+            Cell(text="–", verdict=found.verdict if found.decides else None),
+            Cell(text=found.basis),
+        )
+        for norm, found in study.orders.items()
+    )
+    return Table(caption="Formal, expected and observed order by norm", columns=columns, rows=rows)
+
+
+def _level_table(study: Study) -> Table:
+    """Return the grid table: one row a level, error and order to the level before for every shown norm."""
+    norms = shown_norms(study)
+    columns = [
+        Column(title=title, align="right") for title in ("Level", "n", "h", "Ratio", "Unknowns", "Seconds")
+    ]
+    for norm in norms:
+        columns += [Column(title=norm, align="right"), Column(title="order", align="right")]
+    columns.append(Column(title="Judged"))
+    rows = tuple(_level_row(study, place, level, norms) for place, level in enumerate(study.levels))
+    caption = (
+        "Grid table: absolute errors and the order from the level before. "
+        "Ratio: h of the level before over h (refinement ratio)"
+    )
+    return Table(caption=caption, columns=tuple(columns), rows=rows)
+
+
+def _level_row(study: Study, place: int, level: Level, norms: list[str]) -> tuple[Cell, ...]:
+    """Return the cells of one level."""
+    before = study.levels[place - 1].h if place else math.nan
+    texts = [
+        str(place + 1),
+        str(level.size),
+        number(level.h, 4),
+        f"{before / level.h:.2f}" if place and level.h > 0 else "",
+        str(level.unknowns),
+        seconds(level.seconds),
+    ]
+    out = set()
+    for norm in norms:
+        found = study.orders.get(norm)
+        pairs = found.pairs if found else []
+        pair = pairs[place - 1] if 0 < place <= len(pairs) else None
+        texts += [number(level.errors.get(norm)), "" if pair is None else order(pair)]
+        if found and str(level.size) in found.left_out:
+            out.add(norm)
+    judged = (
+        "yes" if level.judged and not out else "no" if not level.judged else f"not in {joined(sorted(out))}"
+    )
+    return tuple(Cell(text=text) for text in [*texts, judged])
+
+
+def _left_out(study: Study) -> list[Block]:
+    """Say why levels did not enter a fit, each reason once."""
+    reasons: dict[tuple[str, str], list[str]] = {}
+    for norm in shown_norms(study):
+        found = study.orders.get(norm)
+        for size, why in (found.left_out if found else {}).items():
+            reasons.setdefault((size, why), []).append(norm)
+    lines = [
+        f"n = {size} is not in the fit of {joined(norms)}: {why}" for (size, why), norms in reasons.items()
+    ]
+    named = {size for size, _ in reasons}
+    lines += [
+        f"n = {level.size}: {level.note}"
+        for level in study.levels
+        if level.note and str(level.size) not in named
+    ]
+    return [Items(entries=tuple(lines))] if lines else []
+
+
+def _pictures(study: Study, info: CaseInfo | None) -> tuple[Picture, ...]:
+    """Return convergence, observed order and error map."""
+    words = "; ".join(
+        f"{norm}: observed {interval(found)}, expected {order(found.expected)}"
+        for norm, found in study.orders.items()
+        if found.decides
+    )
+    pictures = [
+        Picture(
+            key=f"errors-{study.case_id}",
+            title="Convergence",
+            alt=f"Errors against h, both logarithmic, {len(study.levels)} levels. {words}.",
+            caption="Errors against h with the expected slope (dotted). Hollow marks are not in the fit, "
+            "thin lines do not decide.",
+            draw=lambda: convergence_figure(study),
+        ),
+        Picture(
+            key=f"orders-{study.case_id}",
+            title="Observed order",
+            alt=f"Order between neighbouring levels against h. {words}.",
+            caption="Order between neighbouring levels. Dotted: expected; dashed: lowest accepted; band: "
+            "fitted order of the first norm with 2 standard errors.",
+            draw=lambda: order_figure(study),
+        ),
+    ]
+    field = study.error_map
+    if field is not None and field.points:
+        worst = max(range(len(field.errors)), key=lambda k: abs(field.errors[k]))
+        largest = f"largest {number(abs(field.errors[worst]))} at {vector(field.points[worst])}"
+        pictures.append(
+            Picture(
+                key=f"map-{study.case_id}",
+                title="Error map",
+                alt=f"Size of the error at {len(field.points)} points for n = {field.size}: {largest}.",
+                caption=f"|error| for n = {field.size}, {largest}.",
+                draw=lambda: error_figure(field, info),
+            )
+        )
+    return tuple(pictures)

@@ -1,0 +1,46 @@
+"""The report as one HTML file: nothing outside it is needed to read it, and no script.
+
+The templates beside this module are filled with escaping always on; only the figures, which we draw
+ourselves and whose text matplotlib escapes, are put in as they are.
+"""
+
+from __future__ import annotations
+
+from functools import cache
+
+from jinja2 import Environment, PackageLoader, StrictUndefined
+from markupsafe import Markup
+
+from laplace_verify.report import content
+from laplace_verify.report.svg import figure_to_svg
+from laplace_verify.report.text import SYMBOLS, VERDICT_WORDS, printable
+
+__all__ = ["to_html"]
+
+
+def to_html(document: content.Document) -> str:
+    """Return the document as a complete HTML page."""
+    text: str = _environment().get_template("report.html.jinja").render(document=document)
+    return printable("\n".join(line.rstrip() for line in text.splitlines() if line.strip()) + "\n")
+
+
+@cache
+def _environment() -> Environment:
+    environment = Environment(
+        loader=PackageLoader("laplace_verify.report", "templates"),
+        autoescape=True,
+        undefined=StrictUndefined,
+        trim_blocks=True,
+        lstrip_blocks=True,
+    )
+    environment.filters["css"] = lambda verdict: VERDICT_WORDS[verdict].replace(" ", "-")
+    environment.filters["symbol"] = lambda verdict: SYMBOLS[verdict]
+    environment.filters["words"] = lambda verdict: VERDICT_WORDS[verdict]
+    environment.filters["svg"] = _svg
+    environment.tests["instance_of"] = lambda entry, name: isinstance(entry, getattr(content, name))
+    return environment
+
+
+def _svg(picture: content.Picture) -> Markup:
+    """Draw a picture; the result is markup of our own making."""
+    return Markup(figure_to_svg(picture.draw(), key=picture.key, title=picture.title, alt=picture.alt))

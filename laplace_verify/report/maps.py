@@ -1,0 +1,243 @@
+"""Pictures in space: the error of the finest level, and a case with its conditions.
+
+In two dimensions every pixel inside the outline takes the error of the nearest measured point, without
+interpolation. In one dimension the error is drawn against x; in three, each of three views shows the
+largest error along the line of sight.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from typing import TYPE_CHECKING
+
+import numpy as np
+from scipy.spatial import cKDTree
+
+from laplace_verify.arrays import Array, BoolArray
+from laplace_verify.campaign.record import CaseInfo, PieceInfo
+from laplace_verify.measure.results import ErrorMap
+from laplace_verify.report.style import INK, QUIET, SERIES, drawing, log_axis, new_figure
+from laplace_verify.report.text import number
+
+if TYPE_CHECKING:
+    from matplotlib.axes import Axes
+    from matplotlib.colorbar import Colorbar
+    from matplotlib.figure import Figure
+
+__all__ = ["case_figure", "error_figure", "inside_outline"]
+
+_WIDTH, _HEIGHT = 4.4, 3.6
+_PIXELS = 240
+_DECADES = 4.0  # shades span at most this many powers of ten below the largest error
+_LINES = {
+    "dirichlet": ("-", SERIES[0]),
+    "neumann": ((0, (5, 2)), SERIES[1]),
+    "robin": ((0, (4, 1.5, 1, 1.5)), SERIES[3]),
+    "periodic": ((0, (1, 1.5)), SERIES[2]),
+    "axis": ((0, (8, 2, 1, 2)), SERIES[6]),
+}
+
+
+def error_figure(field: ErrorMap, info: CaseInfo | None) -> Figure:
+    """Return where the error |u_h - u| of the finest level sits."""
+    points = np.asarray(field.points, dtype=np.float64)
+    errors = np.abs(np.asarray(field.errors, dtype=np.float64))
+    with drawing():
+        figure = new_figure(_WIDTH, _HEIGHT, fitted=points.ndim == 2 and points.shape[1] == 3)
+        if points.ndim != 2 or not len(points):
+            figure.text(0.5, 0.5, "no point was measured", ha="center", color=QUIET)
+        elif points.shape[1] == 1:
+            _along_line(figure.add_subplot(), points[:, 0], errors)
+        elif points.shape[1] == 2:
+            _plane_map(figure, points, errors, info.pieces if info else ())
+        else:
+            _three_views(figure, points, errors)
+        return figure
+
+
+def _along_line(axes: Axes, x: Array, errors: Array) -> None:
+    """Draw the error of a one-dimensional case against x."""
+    rank = np.argsort(x, kind="stable")
+    positive = errors[rank] > 0
+    axes.plot(x[rank][positive], errors[rank][positive], color=SERIES[0], linewidth=1.0)
+    if positive.any():
+        top = float(errors.max())
+        # An error that changes sign dips towards zero; the dips are no information.
+        axes.set_ylim(top * 1e-4, top * 2)
+        log_axis(axes, "y")
+    axes.set_xlabel("x")
+    axes.set_ylabel("|error|")
+    axes.grid(True)
+    axes.minorticks_off()
+
+
+def _shades(errors: Array) -> tuple[float, float]:
+    """Return the limits of log10 |error| for the shades."""
+    top = float(errors.max()) if len(errors) and np.isfinite(errors).all() else math.nan
+    if not top > 0:
+        return -1.0, 0.0
+    positive = errors[errors > 0]
+    high = math.log10(top)
+    low = max(math.log10(float(np.quantile(positive, 0.05))), high - _DECADES)
+    return min(low, high - 0.5), high
+
+
+def _logarithm(errors: Array, floor: float) -> Array:
+    """Return log10 of errors, not below `floor`; NaN stays NaN."""
+    logarithm: Array = np.log10(np.maximum(errors, 10.0**floor))
+    return logarithm
+
+
+def _plane_map(figure: Figure, points: Array, errors: Array, pieces: Sequence[PieceInfo]) -> None:
+    """Draw the nearest-point map of a plane case inside its outline."""
+    axes = figure.add_axes((0.13, 0.14, 0.66, 0.8))
+    outline = [np.asarray(piece.outline, dtype=np.float64) for piece in pieces if len(piece.outline) > 1]
+    every = np.vstack([points, *outline]) if outline else points
+    lower, upper = every.min(axis=0), every.max(axis=0)
+    cell = float((upper - lower).max()) / _PIXELS
+    counts = np.maximum(np.ceil((upper - lower) / cell).astype(int), 1)
+    x, y = (lower[k] + (np.arange(counts[k]) + 0.5) * cell for k in (0, 1))
+    grid = np.stack(np.meshgrid(x, y), axis=-1).reshape(-1, 2)
+    low, high = _shades(errors)
+    distance, nearest = cKDTree(points).query(grid)
+    values = _logarithm(errors, low)[nearest]
+    inside = inside_outline(grid, outline) if outline else distance < 4 * _spacing(points)
+    image = np.where(inside, values, np.nan).reshape(counts[1], counts[0])
+    extent = (lower[0], lower[0] + counts[0] * cell, lower[1], lower[1] + counts[1] * cell)
+    shown = axes.imshow(
+        image, origin="lower", extent=extent, cmap="cividis", vmin=low, vmax=high, interpolation="nearest"
+    )
+    for line in outline:
+        axes.plot(line[:, 0], line[:, 1], color=INK, linewidth=0.9)
+    axes.set_aspect("equal")
+    margin = 0.03 * float((upper - lower).max())
+    axes.set_xlim(lower[0] - margin, upper[0] + margin)
+    axes.set_ylim(lower[1] - margin, upper[1] + margin)
+    axes.set_xlabel("x")
+    axes.set_ylabel("y")
+    axes.locator_params(nbins=5)
+    _label_scale(figure.colorbar(shown, cax=figure.add_axes((0.83, 0.2, 0.03, 0.68))))
+
+
+def _spacing(points: Array) -> float:
+    """Return a typical distance between neighbouring points."""
+    if len(points) < 2:
+        return 1.0
+    distance, _ = cKDTree(points).query(points, k=2)
+    return float(np.median(np.asarray(distance)[:, 1]))
+
+
+def inside_outline(points: Array, outline: Sequence[Array]) -> BoolArray:
+    """Return which points lie inside the closed curves that the polylines make up (even-odd rule).
+
+    A slit, walked there and back, counts twice and so does no harm.
+    """
+    x, y = points.T
+    inside = np.zeros(len(points), dtype=np.bool_)
+    for line in outline:
+        for (x0, y0), (x1, y1) in zip(line[:-1].tolist(), line[1:].tolist(), strict=True):
+            if y0 == y1:
+                continue
+            crosses = (y0 > y) != (y1 > y)
+            inside[crosses] ^= x[crosses] < x0 + (y[crosses] - y0) * ((x1 - x0) / (y1 - y0))
+    return inside
+
+
+def _three_views(figure: Figure, points: Array, errors: Array) -> None:
+    """Draw, for three directions, the largest error along the line of sight on a grid of squares."""
+    low, high = _shades(errors)
+    values = _logarithm(errors, low)
+    lower, upper = points.min(axis=0), points.max(axis=0)
+    cell = float((upper - lower).max()) / max(math.sqrt(len(points) / 3), 4.0)
+    grid = np.clip(((points - lower) / cell).astype(int), 0, None)
+    axes_of = figure.subplots(1, 3)
+    shown = None
+    for axes, (across, up, along) in zip(axes_of, ((0, 1, "z"), (0, 2, "y"), (1, 2, "x")), strict=True):
+        image = np.full((grid[:, up].max() + 1, grid[:, across].max() + 1), -np.inf)
+        np.maximum.at(image, (grid[:, up], grid[:, across]), values)
+        image[np.isneginf(image)] = np.nan
+        extent = (
+            lower[across], lower[across] + image.shape[1] * cell, lower[up], lower[up] + image.shape[0] * cell
+        )  # fmt: skip
+        shown = axes.imshow(image, origin="lower", extent=extent, cmap="cividis", vmin=low, vmax=high)
+        axes.set_title(f"along {along}")
+        axes.set_xlabel("xyz"[across])
+        axes.set_ylabel("xyz"[up], labelpad=1)
+        axes.locator_params(nbins=3)
+        axes.tick_params(labelsize=7)
+    if shown is not None:
+        _label_scale(figure.colorbar(shown, ax=list(axes_of), location="bottom", shrink=0.9, pad=0.03))
+
+
+def _label_scale(bar: Colorbar) -> None:
+    """Label the scale of the shades by the errors themselves."""
+    from matplotlib.ticker import FuncFormatter, MaxNLocator
+
+    bar.set_label("|error|")
+    bar.outline.set_visible(False)
+    bar.locator = MaxNLocator(nbins=5, steps=[1, 2, 5, 10])
+    bar.formatter = FuncFormatter(lambda value, _: number(10.0**value, 2))
+    bar.update_ticks()
+
+
+def case_figure(info: CaseInfo) -> Figure:
+    """Return the shape of a case: its pieces by name, lines by condition, singular points marked."""
+    with drawing():
+        figure = new_figure(_WIDTH, _HEIGHT)
+        solid = info.dim == 3
+        axes = figure.add_subplot(projection="3d") if solid else figure.add_subplot()
+        seen: set[str] = set()
+        for piece in info.pieces:
+            _draw_piece(axes, piece, info.dim, label="" if piece.condition in seen else piece.condition)
+            seen.add(piece.condition)
+        if info.regularity is not None and info.dim < 3:
+            _draw_points(axes, info)
+        axes.set_xlabel("x")
+        if info.dim == 1:
+            axes.set_yticks([])
+            axes.set_ylim(-1, 1)
+            axes.spines["left"].set_visible(False)
+        else:
+            axes.set_ylabel("y")
+            axes.set_aspect("equal")
+            axes.margins(0.12)
+        if axes.get_legend_handles_labels()[0]:
+            axes.legend(
+                loc="lower left", bbox_to_anchor=(-0.1, 1.0), ncols=3, handlelength=3.0, borderaxespad=0.1
+            )
+        return figure
+
+
+def _draw_piece(axes: Axes, piece: PieceInfo, dim: int, label: str) -> None:
+    """Draw one piece and its name."""
+    line = np.asarray(piece.outline, dtype=np.float64)
+    if not line.size:
+        return
+    style, colour = _LINES.get(piece.condition, ("-", INK))
+    if dim == 1:
+        axes.plot(line[:, 0], np.zeros(len(line)), "s", color=colour, label=label or None)
+        axes.annotate(piece.name, (line[0, 0], 0.0), xytext=(0, 9), textcoords="offset points", ha="center")
+    elif dim == 2:
+        axes.plot(line[:, 0], line[:, 1], color=colour, linestyle=style, linewidth=2.0, label=label or None)
+        middle = line[len(line) // 2] if len(line) > 2 else line.mean(axis=0)
+        axes.annotate(
+            piece.name, (middle[0], middle[1]), ha="center", va="center", fontsize=8,
+            bbox={"boxstyle": "round,pad=0.15", "facecolor": "white", "edgecolor": "none", "alpha": 0.85},
+        )  # fmt: skip
+    else:
+        axes.plot(*line.T, ".", color=colour, markersize=2.0, label=label or None)
+
+
+def _draw_points(axes: Axes, info: CaseInfo) -> None:
+    """Mark singular points and jumps of the data."""
+    if info.regularity is None:
+        return
+    for points, marker, label in (
+        (info.regularity.singular_points, "*", "singular point"),
+        (info.regularity.jumps, "x", "jump of the data"),
+    ):
+        if points:
+            place = np.asarray(points, dtype=np.float64)
+            y = place[:, 1] if info.dim == 2 else np.zeros(len(place))
+            axes.plot(place[:, 0], y, marker, color=SERIES[3], markersize=8, linestyle="none", label=label)
