@@ -40,9 +40,9 @@ def as_points(
         array = array[:, np.newaxis]
     if array.ndim != 2 or array.shape[1] != dim:
         raise error(f"{name} must have shape (n, {dim}), one row per point, got {array.shape}")
-    bad = ~np.isfinite(array).all(axis=1)
-    if bad.any():
-        row = int(np.flatnonzero(bad)[0])
+    finite = np.isfinite(array)
+    if not finite.all():
+        row = int(np.flatnonzero(~finite.all(axis=1))[0])
         raise error(f"{name} must be finite, but row {row} is {array[row].tolist()}")
     return array
 

@@ -86,7 +86,7 @@ def _as_method(function: Any) -> Any:
 FLOAT = FloatContext()
 
 
-@lru_cache(maxsize=32)
+@lru_cache(maxsize=32, typed=True)  # typed: True must not find the context of 1
 def precise(digits: int) -> Precise:
     """Return the shared context for `digits` digits.
 

@@ -23,21 +23,27 @@ from __future__ import annotations
 import math
 from collections.abc import Callable
 from dataclasses import dataclass
-from typing import Any
+from typing import Any, TypeAlias
 
 import numpy as np
 
 from laplace_verify.errors import FieldError
+from laplace_verify.fields.exact import Exact, offset
 from laplace_verify.fields.polylog import accuracy, unit
 
-__all__ = ["MOST_TERMS", "Decay", "difference_sum", "terms_needed"]
+__all__ = ["MOST_TERMS", "Decay", "mode_slopes", "mode_value", "side_angles", "terms_needed"]
 
 MOST_TERMS = 20000
+
+Place: TypeAlias = tuple[Any, Any, Any, Any]  # (p, q, r, gap), see `_difference_sum`
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Decay:
-    """The statement |A_n| <= bound * ratio**n * n**-power for all n >= 1; A_n = 0 for n > last."""
+    """The statement |A_n| <= bound * ratio**n * n**-power * scale for all n >= 1; A_n = 0 for n > last.
+
+    `scale` is the size of u the truncation error is to be compared with; it need not be known here.
+    """
 
     bound: float = 1.0
     ratio: float = 1.0
@@ -45,10 +51,11 @@ class Decay:
     last: int | None = None
 
     def tail(self, count: int, p: float, weight: int) -> float:
-        """Return a bound of sum_{n > count} n**weight |A_n| e^{-n p}, divided by the bound of the first term.
+        """Return a bound of sum_{n > count} n**weight |A_n| rho**(n - 1) / scale with rho = e^{-p} * ratio.
 
-        Two bounds are known and the smaller counts: a geometric series with ratio r = e^{-p} * ratio *
-        (1 + 1/count)**weight, and for p = 0 the integral count**(1 - e) / (e - 1) with e = power - weight > 1.
+        Dividing by rho keeps the first mode's relative accuracy far from the side. Two bounds are known and the
+        smaller counts: a geometric series of ratio rho (1 + 1/(count + 1))**(weight - power), and, with
+        e = power - weight > 1, the integral of x**-e.
         """
         if self.last is not None and count >= self.last:
             return 0.0
@@ -60,7 +67,7 @@ class Decay:
             bounds.append(decayed * float(count + 1) ** -exponent / (1 - growth))
         if exponent > 1:
             bounds.append(decayed * float(count) ** (1 - exponent) / (exponent - 1))
-        return min(bounds)
+        return self.bound * min(bounds)
 
 
 def terms_needed(decay: Decay, p: float, weight: int, digits: float) -> int:
@@ -90,11 +97,32 @@ def terms_needed(decay: Decay, p: float, weight: int, digits: float) -> int:
     return count
 
 
-def difference_sum(
+def side_angles(ctx: Any, gamma: Any, x: Any, ends: tuple[Exact, Exact]) -> tuple[Any, Any]:
+    """Return gamma s and pi - gamma s for the coordinate x along the side, from distances to its two ends."""
+    s, rest = offset(ctx, x, ends[0]), -offset(ctx, x, ends[1])
+    return gamma * ctx.where(s > 0, s, 0 * s), gamma * ctx.where(rest > 0, rest, 0 * rest)
+
+
+def mode_value(ctx: Any, even: bool, coefficients: Callable[[int], Any], decay: Decay, place: Place) -> Any:
+    """Return part sum G_n (z^n - y^n), see `_difference_sum`; coefficients(N) returns the real G_1 ... G_N."""
+    _, modes = _difference_sum(ctx, coefficients, decay, place, 0)
+    return modes.real if even else modes.imag
+
+
+def mode_slopes(
+    ctx: Any, even: bool, coefficients: Callable[[int], Any], decay: Decay, place: Place
+) -> tuple[Any, Any]:
+    """Return the derivatives of `mode_value` in q and in p with p + gap / 2 fixed; coefficients(N): n G_n."""
+    total, modes = _difference_sum(ctx, coefficients, decay, place, 1)
+    both = 2 * total - modes  # z^n + y^n
+    return (-modes.imag, -both.real) if even else (modes.real, -both.imag)
+
+
+def _difference_sum(
     ctx: Any,
     coefficients: Callable[[int], Any],
     decay: Decay,
-    place: tuple[Any, Any, Any, Any],
+    place: Place,
     weight: int,
 ) -> tuple[Any, Any]:
     """Return S = sum G_n z^n and D = sum G_n (z^n - y^n), z = e^{-p + iq}, y = e^{-gap} z.
@@ -102,7 +130,7 @@ def difference_sum(
     Parameters
     ----------
     coefficients : callable
-        coefficients(N) returns the real G_1 ... G_N, already multiplied by n**weight.
+        coefficients(N) returns the real G_1 ... G_N, already multiplied by n**weight, N at most decay.last.
     decay : Decay
         Bound of |G_n| / n**weight times (1 - e^{-n gap}), that is of the coefficients A_n.
     place : (p, q, r, gap)
@@ -115,7 +143,9 @@ def difference_sum(
         return _horner_pair(ctx, coefficients(terms_needed(decay, float(p), weight, digits)), *place)
     total = np.empty(p.shape, dtype=np.complex128)
     difference = np.empty(p.shape, dtype=np.complex128)
-    band = np.clip(np.frexp(p)[1], -1000, 12)  # points within a factor of two in p share their number of terms
+    band = np.clip(
+        np.frexp(p)[1], -1000, 12
+    )  # points within a factor of two in p share their number of terms
     for k in np.unique(band):
         here = np.flatnonzero(band == k)
         count = terms_needed(decay, float(p[here].min()), weight, digits)
@@ -129,7 +159,9 @@ def _horner_pair(ctx: Any, coefficients: Any, p: Any, q: Any, r: Any, gap: Any) 
     shrink = ctx.expm1(-gap)
     y, apart = z + z * shrink, -z * shrink
     total, divided = z * 0, z * 0
-    for c in reversed(coefficients):  # both recurrences are updated in place: blocks are large, terms are many
+    for c in reversed(
+        coefficients
+    ):  # both recurrences are updated in place: blocks are large, terms are many
         divided *= y
         divided += total
         total *= z

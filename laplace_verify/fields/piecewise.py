@@ -20,7 +20,7 @@ from laplace_verify.contexts import Number
 from laplace_verify.errors import FieldError
 from laplace_verify.fields.exact import Exact, exact, rational, show
 
-__all__ = ["Continuation", "Piecewise", "constant", "parabola", "piecewise", "ramp", "step", "tent"]
+__all__ = ["Continuation", "Piecewise", "parabola", "piecewise", "ramp", "step", "tent"]
 
 HIGHEST_DEGREE = 12
 
@@ -32,7 +32,7 @@ class Piecewise:
     """f(t) = sum_k coefficients[i][k] (t - breaks[i])^k for breaks[i] <= t < breaks[i+1].
 
     t is the coordinate along the side (x on top and bottom, y on left and right) or, if `fraction`, the fraction
-    of its length, 0 to 1. `piecewise`, `ramp`, `step`, `tent`, `parabola` and `constant` make them.
+    of its length, 0 to 1. `piecewise`, `ramp`, `step`, `tent` and `parabola` make them.
     """
 
     breaks: tuple[Exact, ...]
@@ -62,7 +62,9 @@ class Piecewise:
             raise FieldError(f"breaks must rise, got {', '.join(show(b) for b in breaks)}")
         for i, row in enumerate(rows):
             if not 1 <= len(row) <= HIGHEST_DEGREE + 1:
-                raise FieldError(f"coefficients[{i}] must have 1 to {HIGHEST_DEGREE + 1} entries, got {len(row)}")
+                raise FieldError(
+                    f"coefficients[{i}] must have 1 to {HIGHEST_DEGREE + 1} entries, got {len(row)}"
+                )
         object.__setattr__(self, "breaks", breaks)
         object.__setattr__(self, "coefficients", rows)
 
@@ -155,15 +157,6 @@ def parabola(height: Number = 1) -> Piecewise:
     return Piecewise(breaks=(0, 1), coefficients=((0, top, -top),), fraction=True)
 
 
-def constant(value: Number = 1) -> Piecewise:
-    """Return the same value on the whole side.
-
-    >>> constant(2).coefficients
-    ((2,),)
-    """
-    return Piecewise(breaks=(0, 1), coefficients=((value,),), fraction=True)  # type: ignore[arg-type]
-
-
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Continuation:
     """The even (insulated) or odd (zero) continuation of piecewise polynomial data, period twice the side.
@@ -183,9 +176,7 @@ class Continuation:
         """Return the continuation, with the places where nothing jumps left out."""
         size = max(len(row) for row in rows)
         left = [_derivatives(row, Fraction(0), size) for row in rows]
-        right = [
-            _derivatives(row, b - a, size) for row, a, b in zip(rows, breaks, breaks[1:], strict=False)
-        ]
+        right = [_derivatives(row, b - a, size) for row, a, b in zip(rows, breaks, breaks[1:], strict=False)]
         parity = [(-1) ** p * (1 if even else -1) for p in range(size)]  # of the p-th derivative at an end
         before = [tuple(s * g for s, g in zip(parity, left[0], strict=True)), *right]
         after = [*left, tuple(s * g for s, g in zip(parity, right[-1], strict=True))]

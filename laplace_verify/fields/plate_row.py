@@ -23,11 +23,12 @@ from typing import Any
 
 import numpy as np
 
-from laplace_verify.contexts import FLOAT, Precise
+from laplace_verify.contexts import FLOAT
 from laplace_verify.fields.exact import offset
-from laplace_verify.fields.mode_sums import Decay, difference_sum
+from laplace_verify.fields.mode_sums import Decay, mode_slopes, mode_value, side_angles
 from laplace_verify.fields.piecewise import Continuation
-from laplace_verify.fields.polylog import NEAR, accuracy, by_index, polylog
+from laplace_verify.fields.plate_box import Depth
+from laplace_verify.fields.polylog import NEAR, accuracy, by_index, polylog, rounded, source
 
 __all__ = ["row_gradient", "row_value"]
 
@@ -47,24 +48,32 @@ class _Table:
     decay: Decay
 
 
-def row_value(ctx: Any, data: Continuation, height: Fraction, x: Any, d: Any, h: Any) -> Any:
+def row_value(ctx: Any, data: Continuation, depth: Depth, x: Any, d: Any, h: Any) -> Any:
     """Return u at coordinate x along the side, distances d from it and h from the opposite side."""
-    table = _table(ctx, data, height)
+    table = _table(ctx, data, depth.width)
     parts = (_far_value, _near_value)
-    return by_index(_nearness(ctx, table, d), lambda k, *at: parts[k](ctx, table, *at), x, d, h)
+    total = table.mean * depth.linear(ctx, h)
+    for near, far, _ in depth.images(ctx, d, h):
+        total = total + by_index(
+            _nearness(ctx, table, near), lambda k, *at: parts[k](ctx, table, *at), x, near, far
+        )
+    return total
 
 
-def row_gradient(ctx: Any, data: Continuation, height: Fraction, x: Any, d: Any, h: Any) -> tuple[Any, Any]:
+def row_gradient(ctx: Any, data: Continuation, depth: Depth, x: Any, d: Any, h: Any) -> tuple[Any, Any]:
     """Return the derivatives of u along the side and with respect to d."""
-    table = _table(ctx, data, height)
+    table = _table(ctx, data, depth.width)
     parts = (_far_gradient, _near_gradient)
 
     def both(k: int, *at: Any) -> Any:  # packed as along + i depth, so that masks are applied once
-        along, depth = parts[k](ctx, table, *at)
-        return along + 1j * depth if ctx is FLOAT else ctx.mpc(along, depth)
+        pair = parts[k](ctx, table, *at)
+        return pair[0] + 1j * pair[1] if ctx is FLOAT else ctx.mpc(*pair)
 
-    packed = by_index(_nearness(ctx, table, d), both, x, d, h)
-    return packed.real, packed.imag
+    along, across = 0 * x, 0 * x
+    for near, far, sign in depth.images(ctx, d, h):
+        packed = by_index(_nearness(ctx, table, near), both, x, near, far)
+        along, across = along + packed.real, across + sign * packed.imag
+    return along, across + table.mean * depth.slope(ctx)
 
 
 def _nearness(ctx: Any, table: _Table, d: Any) -> Any:
@@ -72,51 +81,39 @@ def _nearness(ctx: Any, table: _Table, d: Any) -> Any:
     return ctx.where(table.gamma * d < NEAR, 1, 0)
 
 
-def _angles(ctx: Any, table: _Table, x: Any) -> tuple[Any, Any]:
-    """Return gamma s and pi - gamma s, both from distances to the ends."""
-    s, rest = offset(ctx, x, table.ends[0]), -offset(ctx, x, table.ends[1])
-    return table.gamma * ctx.where(s > 0, s, 0 * s), table.gamma * ctx.where(rest > 0, rest, 0 * rest)
+def _modes_place(ctx: Any, table: _Table, x: Any, distance: Any, gap: Any) -> tuple[Any, Any, Any, Any]:
+    """Return the place that the mode sums take."""
+    q, r = side_angles(ctx, table.gamma, x, table.ends)
+    return table.gamma * distance, q, r, 2 * table.gamma * gap
 
 
 def _far_value(ctx: Any, table: _Table, x: Any, d: Any, h: Any) -> Any:
-    """Return the sum over all modes."""
-    q, r = _angles(ctx, table, x)
-    place = (table.gamma * d, q, r, 2 * table.gamma * h)
-    _, modes = difference_sum(ctx, lambda n: table.modes[0][:n], table.decay, place, 0)
-    return table.mean * (h / table.height) + (modes.real if table.even else modes.imag)
+    """Return the sum over all modes n >= 1."""
+    place = _modes_place(ctx, table, x, d, h)
+    return mode_value(ctx, table.even, lambda n: table.modes[0][:n], table.decay, place)
 
 
 def _far_gradient(ctx: Any, table: _Table, x: Any, d: Any, h: Any) -> tuple[Any, Any]:
     """Return the derivatives of `_far_value` along the side and in d."""
-    q, r = _angles(ctx, table, x)
-    place = (table.gamma * d, q, r, 2 * table.gamma * h)
-    total, modes = difference_sum(ctx, lambda n: table.modes[1][:n], table.decay, place, 1)
-    both = 2 * total - modes
-    along, depth = (-modes.imag, both.real) if table.even else (modes.real, both.imag)
-    return table.gamma * along, -table.gamma * depth - table.mean / table.height
+    place = _modes_place(ctx, table, x, d, h)
+    along, depth = mode_slopes(ctx, table.even, lambda n: table.modes[1][:n], table.decay, place)
+    return table.gamma * along, table.gamma * depth
 
 
 def _near_value(ctx: Any, table: _Table, x: Any, d: Any, h: Any) -> Any:
-    """Return polylogarithms plus the remainder of the modes."""
-    q, r = _angles(ctx, table, x)
-    total = _row_sum(ctx, table, x, d, 0)
-    place = (table.gamma * (table.height + h), q, r, 2 * table.gamma * d)
-    _, modes = difference_sum(ctx, lambda n: table.modes[0][:n], table.decay, place, 0)
-    return table.mean * (h / table.height) + total.real - (modes.real if table.even else modes.imag)
+    """Return polylogarithms plus the remainder of the modes, e^{-k (2b + d)} - e^{-k (2b - d)}."""
+    place = _modes_place(ctx, table, x, table.height + h, d)
+    modes = mode_value(ctx, table.even, lambda n: table.modes[0][:n], table.decay, place)
+    return _row_sum(ctx, table, x, d, 0).real - modes
 
 
 def _near_gradient(ctx: Any, table: _Table, x: Any, d: Any, h: Any) -> tuple[Any, Any]:
     """Return the derivatives of `_near_value` along the side and in d."""
-    q, r = _angles(ctx, table, x)
-    total = table.gamma * _row_sum(ctx, table, x, d, 1)
-    place = (table.gamma * (table.height + h), q, r, 2 * table.gamma * d)
-    outer, modes = difference_sum(ctx, lambda n: table.modes[1][:n], table.decay, place, 1)
-    both = 2 * outer - modes
-    along, depth = (modes.imag, both.real) if table.even else (-modes.real, both.imag)
-    return (
-        -total.imag + table.gamma * along,
-        -total.real - table.gamma * depth - table.mean / table.height,
-    )
+    place = _modes_place(ctx, table, x, table.height + h, d)
+    along, depth = mode_slopes(ctx, table.even, lambda n: table.modes[1][:n], table.decay, place)
+    total = _row_sum(ctx, table, x, d, 1)
+    # The modes are subtracted, but d runs against their distance.
+    return -table.gamma * (total.imag + along), table.gamma * (depth - total.real)
 
 
 def _row_sum(ctx: Any, table: _Table, x: Any, d: Any, lowered: int) -> Any:
@@ -165,7 +162,7 @@ def _table(ctx: Any, data: Continuation, height: Fraction) -> _Table:
     """Return the numbers of one context: everything is exact up to here and rounded once."""
     ends = (data.breaks[0], data.breaks[-1])
     length = ends[1] - ends[0]
-    high = Precise(30) if ctx is FLOAT else ctx
+    high = source(ctx)
     images = [image for image in data.images(ends[0] - length, ends[1]) if image[0] > ends[0] - length]
     scaled = [
         (place, [high.number(jump * length**p) / high.pi ** (p + 1) for p, jump in enumerate(jumps)])
@@ -176,15 +173,15 @@ def _table(ctx: Any, data: Continuation, height: Fraction) -> _Table:
     base = high.expm1(-2 * high.pi * high.number(height / length))
     divided = []
     for n, mode in enumerate(modes, start=1):
-        divided.append(-mode / (base if n == 1 else high.expm1(-2 * n * high.pi * high.number(height / length))))
+        divided.append(
+            -mode / (base if n == 1 else high.expm1(-2 * n * high.pi * high.number(height / length)))
+        )
     weighted = [n * mode for n, mode in enumerate(divided, start=1)]
-    convert = (lambda number: float(number)) if ctx is FLOAT else (lambda number: number)
-    bound = max((abs(float(mode)) for mode in modes), default=0.0) or 1.0
     return _Table(
         gamma=ctx.pi / ctx.number(length), length=ctx.number(length), height=ctx.number(height), even=data.even,
         ends=ends, mean=ctx.number(data.mean),
-        places=[(place, [convert(f) for f in factors]) for place, factors in scaled],
-        modes=([convert(m) for m in divided], [convert(m) for m in weighted]), decay=Decay(bound=bound, last=count),
+        places=[(place, rounded(ctx, factors)) for place, factors in scaled],
+        modes=(rounded(ctx, divided), rounded(ctx, weighted)), decay=Decay(last=count),
     )  # fmt: skip
 
 

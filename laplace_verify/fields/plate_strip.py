@@ -11,7 +11,8 @@ sines of d that decays away from c (matched at p = 0, then integrated p times in
     s < c:  + J b^p / pi^{p+1} Im Li_{p+1}(e^{-beta (c - s) + i beta d}),
     s > c:  - (-1)^p J b^p / pi^{p+1} Im Li_{p+1}(e^{-beta (s - c) + i beta d}).
 
-u is P of the piece that s lies in plus these terms for all places of the continuation. Places within 1 / beta
+If the opposite side is insulated, Q_0 = 1 and Q_k'(0) = 0 in P, b is doubled in the terms with Li, and these are
+taken at d and at 2b - d. u is P of the piece that s lies in plus these terms for all places of the continuation. Places within 1 / beta
 are summed by `polylog`; all farther ones on one side form a single power series in the exponential of the first
 of them. On the hot side every imaginary part is exactly zero and u is exactly f.
 """
@@ -30,50 +31,66 @@ import numpy as np
 from laplace_verify.contexts import FLOAT
 from laplace_verify.fields.exact import offset
 from laplace_verify.fields.piecewise import Continuation
+from laplace_verify.fields.plate_box import Depth
 from laplace_verify.fields.polylog import NEAR, accuracy, by_index, horner, polylog, power_series, unit
 
-__all__ = ["strip_gradient", "strip_value"]
+__all__ = ["data_on_side", "strip_gradient", "strip_value"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class _Table:
     """What the sums need, as numbers of one context; see `_table`."""
 
-    beta: Any
-    height: Any
+    beta: Any  # pi / width
+    height: Any  # b
+    mirrored: bool
     breaks: tuple[Fraction, ...]
     derivatives: list[list[list[Any]]]  # [piece][m]: coefficients of the m-th derivative of f
-    profiles: list[tuple[list[Any], list[Any]]]  # b^{2k} of Q_k / (x (1 - x)) for k > 0, and of Q_k'
+    profiles: list[tuple[list[Any], list[Any]]]  # see `_profiles`
     places: list[Fraction]
     sorted_places: Any  # the same as numbers of the context
     ranks: list[int]  # a place is on the left of a point in piece i if its rank is at most i
     left: list[list[Any]]  # per place the factors of Li_1, Li_2, ... for points on its right
     right: list[list[Any]]
-    series_left: list[Any]  # per place: coefficients of the power series of it and all farther ones on its left
+    series_left: list[
+        Any
+    ]  # per place: coefficients of the power series of it and all farther ones on its left
     series_right: list[Any]
 
 
-def strip_value(ctx: Any, data: Continuation, height: Fraction, x: Any, d: Any, h: Any) -> Any:
+def strip_value(ctx: Any, data: Continuation, depth: Depth, x: Any, d: Any, h: Any) -> Any:
     """Return u at coordinate x along the side, distances d from it and h from the opposite side."""
-    table = _table(ctx, data, height)
-    piece = _piece(ctx, table, x)
-    left, right = _sums(ctx, table, x, d, h, piece, lowered=0)
-    return by_index(piece, lambda i, *at: _polynomial(ctx, table, i, *at), x, d, h) + (left + right).imag
+    table = _table(ctx, data, depth)
+    piece = _piece(ctx, table.breaks, x)
+    total = by_index(piece, lambda i, *at: _polynomial(ctx, table, i, *at), x, d, h)
+    for near, far, _ in depth.images(ctx, d, h):
+        left, right = _sums(ctx, table, x, near, far, piece, lowered=0)
+        total = total + (left + right).imag
+    return total
 
 
-def strip_gradient(ctx: Any, data: Continuation, height: Fraction, x: Any, d: Any, h: Any) -> tuple[Any, Any]:
+def strip_gradient(ctx: Any, data: Continuation, depth: Depth, x: Any, d: Any, h: Any) -> tuple[Any, Any]:
     """Return the derivatives of u along the side and with respect to d."""
-    table = _table(ctx, data, height)
-    piece = _piece(ctx, table, x)
-    left, right = _sums(ctx, table, x, d, h, piece, lowered=1)
+    table = _table(ctx, data, depth)
+    piece = _piece(ctx, table.breaks, x)
     along = by_index(piece, lambda i, *at: _polynomial(ctx, table, i, *at, order=1), x, d, h)
-    depth = by_index(piece, lambda i, *at: _polynomial_depth(ctx, table, i, *at), x, d, h)
-    return along + table.beta * (right - left).imag, depth + table.beta * (right + left).real
+    across = by_index(piece, lambda i, *at: _polynomial_depth(ctx, table, i, *at), x, h)
+    for near, far, sign in depth.images(ctx, d, h):
+        left, right = _sums(ctx, table, x, near, far, piece, lowered=1)
+        along, across = along + table.beta * (right - left).imag, across + sign * table.beta * (right + left).real
+    return along, across
 
 
-def _piece(ctx: Any, table: _Table, x: Any) -> Any:
+def data_on_side(ctx: Any, data: Continuation, x: Any) -> Any:
+    """Return the data f at coordinate x along the side."""
+    rows = [[ctx.number(c) for c in row] for row in data.rows]
+    piece = _piece(ctx, data.breaks, x)
+    return by_index(piece, lambda i, x: horner(rows[i], offset(ctx, x, data.breaks[i])), x)
+
+
+def _piece(ctx: Any, breaks: tuple[Fraction, ...], x: Any) -> Any:
     """Return the index of the piece each point lies in; a break belongs to the piece on its right."""
-    inner = [offset(ctx, x, place) >= 0 for place in table.breaks[1:-1]]
+    inner = [offset(ctx, x, place) >= 0 for place in breaks[1:-1]]
     if isinstance(x, np.ndarray):
         return np.sum(inner, axis=0, dtype=np.int64) if inner else np.zeros(x.shape, dtype=np.int64)
     return sum(inner)
@@ -82,26 +99,26 @@ def _piece(ctx: Any, table: _Table, x: Any) -> Any:
 def _polynomial(ctx: Any, table: _Table, i: int, x: Any, d: Any, h: Any, order: int = 0) -> Any:
     """Return P, or with order = 1 its derivative along the side, for points of piece i."""
     t, depth, rest = offset(ctx, x, table.breaks[i]), d / table.height, h / table.height
+    lowest = 1 if table.mirrored else rest
     derivatives = table.derivatives[i][order:]
-    total = horner(derivatives[0], t) * rest if derivatives else 0 * t
+    total = horner(derivatives[0], t) * lowest if derivatives else 0 * t
     for k in range(1, (len(derivatives) + 1) // 2):
-        total = total + horner(derivatives[2 * k], t) * (rest * depth * horner(table.profiles[k][0], rest))
+        total = total + horner(derivatives[2 * k], t) * (lowest * depth * horner(table.profiles[k][0], rest))
     return total
 
 
-def _polynomial_depth(ctx: Any, table: _Table, i: int, x: Any, d: Any, h: Any) -> Any:  # noqa: ARG001
+def _polynomial_depth(ctx: Any, table: _Table, i: int, x: Any, h: Any) -> Any:
     """Return the derivative of P with respect to d, for points of piece i."""
     t, rest = offset(ctx, x, table.breaks[i]), h / table.height
+    lowest = rest if table.mirrored else 1
     total = 0 * t
     for k in range((len(table.derivatives[i]) + 1) // 2):
-        slope = horner(table.profiles[k][1], rest * rest) if k else 1 + 0 * rest
+        slope = lowest * horner(table.profiles[k][1], rest * rest)
         total = total - horner(table.derivatives[i][2 * k], t) * slope / table.height
     return total
 
 
-def _sums(
-    ctx: Any, table: _Table, x: Any, d: Any, h: Any, piece: Any, *, lowered: int
-) -> tuple[Any, Any]:
+def _sums(ctx: Any, table: _Table, x: Any, d: Any, h: Any, piece: Any, *, lowered: int) -> tuple[Any, Any]:
     """Return the sums over the places on the left and on the right, orders lowered by 0 or 1."""
     q, r = table.beta * d, table.beta * h
     turn = unit(ctx, q, r)
@@ -130,7 +147,12 @@ def _sums(
 
 
 def _near(
-    ctx: Any, table: _Table, place: tuple[Any, ...], bounds: tuple[Any, Any], sums: tuple[Any, Any], lowered: int
+    ctx: Any,
+    table: _Table,
+    place: tuple[Any, ...],
+    bounds: tuple[Any, Any],
+    sums: tuple[Any, Any],
+    lowered: int,
 ) -> tuple[Any, Any]:
     """Add the places number first ... last - 1 of each point by polylogarithms."""
     (x, q, r, piece), (first, last), (left, right) = place, bounds, sums
@@ -159,29 +181,27 @@ def _near(
 
 
 @lru_cache(maxsize=64)
-def _table(ctx: Any, data: Continuation, height: Fraction) -> _Table:
+def _table(ctx: Any, data: Continuation, depth: Depth) -> _Table:
     """Return the numbers of one context: everything is exact up to here and rounded once."""
-    reach = Fraction(math.ceil(1 + accuracy(ctx) / math.pi)) * height
+    width, pi = depth.width, +ctx.pi
+    reach = Fraction(math.ceil(1 + accuracy(ctx) / math.pi)) * width
     images = data.images(data.breaks[0] - reach, data.breaks[-1] + reach)
     places = [place for place, _ in images]
-    pi = ctx.pi + 0
     left, right = [], []
     for _, jumps in images:
-        scaled = [ctx.number(jump * height**p) / pi ** (p + 1) for p, jump in enumerate(jumps)]
+        scaled = [ctx.number(jump * width**p) / pi ** (p + 1) for p, jump in enumerate(jumps)]
         left.append([-((-1) ** p) * f for p, f in enumerate(scaled)])
         right.append(scaled)
-    gaps = [ctx.exp(-pi * ctx.number((b - a) / height)) for a, b in zip(places, places[1:], strict=False)]
+    gaps = [ctx.exp(-pi * ctx.number((b - a) / width)) for a, b in zip(places, places[1:], strict=False)]
     derivatives = [
-        [
-            [ctx.number(c * math.perm(k, m)) for k, c in enumerate(row) if k >= m]
-            for m in range(len(row))
-        ]
+        [[ctx.number(c * math.perm(k, m)) for k, c in enumerate(row) if k >= m] for m in range(len(row))]
         for row in data.rows
     ]
     numbers = [ctx.number(place) for place in places]
     return _Table(
-        beta=pi / ctx.number(height), height=ctx.number(height), breaks=data.breaks, derivatives=derivatives,
-        profiles=_profiles(ctx, max(len(row) for row in data.rows) // 2, height), places=places,
+        beta=pi / ctx.number(width), height=ctx.number(depth.extent), mirrored=depth.mirrored,
+        breaks=data.breaks, derivatives=derivatives,
+        profiles=_profiles(ctx, max(len(row) for row in data.rows) // 2, depth), places=places,
         sorted_places=np.array(numbers) if ctx is FLOAT else numbers,
         ranks=[_rank(data.breaks, place) for place in places], left=left, right=right,
         series_left=_series(ctx, left, gaps), series_right=_series(ctx, right[::-1], gaps[::-1])[::-1],
@@ -214,18 +234,24 @@ def _series(ctx: Any, factors: list[list[Any]], gaps: list[Any]) -> list[tuple[l
     return result
 
 
-def _profiles(ctx: Any, highest: int, height: Fraction) -> list[tuple[list[Any], list[Any]]]:
-    """Return for k = 0 ... highest b^{2k} times Q_k / (x (1 - x)) in powers of x, and Q_k' in powers of x^2."""
-    odd = [Fraction(1)]  # Q_k = sum_i odd[i] x^{2i+1}
+def _profiles(ctx: Any, highest: int, depth: Depth) -> list[tuple[list[Any], list[Any]]]:
+    """Return for k = 0 ... highest b^{2k} times Q_k without its factors, and times Q_k' without its lowest power.
+
+    Zero opposite: Q_k = sum_i c_i x^{2i+1}, with the factors x (1 - x). Mirror opposite: Q_k = sum_i c_i x^{2i},
+    Q_k'(0) = 0 in place of Q_k(0) = 0, with the factor 1 - x. What is left is in powers of x, the derivative in
+    powers of x^2 after x^0 or x^1. (k = 0 has no factor 1 - x; its first entry is not used.)
+    """
+    lowest = 0 if depth.mirrored else 1
+    c = [Fraction(1)]
     profiles: list[tuple[list[Any], list[Any]]] = []
     for k in range(highest + 1):
         if k:
-            odd = [Fraction(0)] + [-c / ((2 * i + 2) * (2 * i + 3)) for i, c in enumerate(odd)]
-            odd[0] = -sum(odd[1:], Fraction(0))
-        dense = [Fraction(0)] * (2 * len(odd) - 1)  # Q_k / x; divided by 1 - x: partial sums
-        dense[::2] = odd
-        partial = [sum(dense[: i + 1], Fraction(0)) for i in range(len(dense) - 1)]
-        slope = [(2 * i + 1) * c for i, c in enumerate(odd)]
-        scale = height ** (2 * k)
-        profiles.append(([ctx.number(c * scale) for c in partial], [ctx.number(c * scale) for c in slope]))
+            c = [Fraction(0)] + [-a / ((2 * i + lowest + 1) * (2 * i + lowest + 2)) for i, a in enumerate(c)]
+            c[0] = -sum(c[1:], Fraction(0))
+        dense = [Fraction(0)] * (2 * len(c) - 1)
+        dense[::2] = c
+        quotient = [sum(dense[: i + 1], Fraction(0)) for i in range(len(dense) - 1)]  # by 1 - x: partial sums
+        slope = [(2 * i + lowest) * a for i, a in enumerate(c)][1 - lowest :] or [Fraction(0)]
+        scale = depth.extent ** (2 * k)
+        profiles.append(([ctx.number(a * scale) for a in quotient], [ctx.number(a * scale) for a in slope]))
     return profiles

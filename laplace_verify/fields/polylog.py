@@ -26,7 +26,7 @@ import numpy as np
 
 from laplace_verify.contexts import FLOAT, Precise
 
-__all__ = ["NEAR", "accuracy", "by_index", "horner", "polylog", "power_series", "unit"]
+__all__ = ["NEAR", "accuracy", "by_index", "horner", "polylog", "power_series", "rounded", "source", "unit"]
 
 NEAR = 1.0  # p >= NEAR: the direct series takes at most accuracy(ctx) / NEAR terms
 SPLIT = 2.0  # angle up to which the expansion is about z = 1; both then converge like 0.13^n ... 0.23^n
@@ -119,7 +119,9 @@ def _about_plus_one(ctx: Any, order: int, p: Any, q: Any, r: Any) -> Any:  # noq
     w = _complex(ctx, p, -q)
     size, angle = p * p + q * q, ctx.atan2(q, p)
     zero = size == 0
-    logarithm = _complex(ctx, ctx.log(ctx.where(zero, size + 1, size)) / 2, -angle)  # at w = 0 times w^(s-1) = 0
+    logarithm = _complex(
+        ctx, ctx.log(ctx.where(zero, size + 1, size)) / 2, -angle
+    )  # at w = 0 times w^(s-1) = 0
     power = factor * w ** (order - 1)
     return horner(head, w) + power * (harmonic - logarithm) + w ** (order + 1) * horner(tail, w * w)
 
@@ -174,12 +176,12 @@ def _complex(ctx: Any, real: Any, imaginary: Any) -> Any:
     return result
 
 
-def _rounded(ctx: Any, numbers: list[Any]) -> list[Any]:
+def rounded(ctx: Any, numbers: list[Any]) -> list[Any]:
     """Return precise numbers as float64 if that is the context."""
     return [float(n) for n in numbers] if ctx is FLOAT else numbers
 
 
-def _source(ctx: Any) -> Any:
+def source(ctx: Any) -> Any:
     """Return the precise context that constants for `ctx` are computed in."""
     return _CONSTANTS if ctx is FLOAT else ctx
 
@@ -191,14 +193,14 @@ _CONSTANTS = Precise(30)
 def _inverse_powers(ctx: Any, order: int) -> list[Any]:
     """Return 1 / n^order for n = 1, ..., as many as the direct series can need."""
     count = 2 + math.ceil(accuracy(ctx) / NEAR)
-    high = _source(ctx)
-    return _rounded(ctx, [1 / high.mpf(n) ** order for n in range(1, count + 1)])
+    high = source(ctx)
+    return rounded(ctx, [1 / high.mpf(n) ** order for n in range(1, count + 1)])
 
 
 @lru_cache(maxsize=256)
 def _zeta_coefficients(ctx: Any, order: int) -> tuple[list[Any], list[Any], Any, Any]:
     """Return head (powers 0..s), tail (powers s+1, s+3, ...), H_{s-1} and (-1)^{s-1} / (s-1)!."""
-    high = _source(ctx)
+    high = source(ctx)
     sign = [(-1) ** k for k in range(order + 2)]
     head = [
         high.mpf(0) if k == order - 1 else sign[k] * high.zeta(order - k) / high.factorial(k)
@@ -206,19 +208,17 @@ def _zeta_coefficients(ctx: Any, order: int) -> tuple[list[Any], list[Any], Any,
     ]
     ratio = (NEAR**2 + SPLIT**2) / (2 * math.pi) ** 2
     count = 2 + math.ceil(accuracy(ctx) / -math.log(ratio))
-    tail = [
-        sign[order + 1] * high.zeta(-1 - 2 * j) / high.factorial(order + 1 + 2 * j) for j in range(count)
-    ]
+    tail = [sign[order + 1] * high.zeta(-1 - 2 * j) / high.factorial(order + 1 + 2 * j) for j in range(count)]
     harmonic = sum((high.mpf(1) / k for k in range(1, order)), high.mpf(0))
     factor = sign[order - 1] / high.factorial(order - 1)
-    harmonic, factor = _rounded(ctx, [harmonic, factor])
-    return _rounded(ctx, head), _rounded(ctx, tail), harmonic, factor
+    harmonic, factor = rounded(ctx, [harmonic, factor])
+    return rounded(ctx, head), rounded(ctx, tail), harmonic, factor
 
 
 @lru_cache(maxsize=256)
 def _eta_coefficients(ctx: Any, order: int) -> tuple[list[Any], list[Any]]:
     """Return head (powers 0..s) and tail (powers s+1, s+3, ...) of the expansion about z = -1."""
-    high = _source(ctx)
+    high = source(ctx)
     ratio = (NEAR**2 + (math.pi - SPLIT) ** 2) / math.pi**2
     count = 2 + math.ceil(accuracy(ctx) / -math.log(ratio))
 
@@ -227,4 +227,4 @@ def _eta_coefficients(ctx: Any, order: int) -> tuple[list[Any], list[Any]]:
 
     head = [coefficient(k) for k in range(order + 1)]
     tail = [coefficient(order + 1 + 2 * j) for j in range(count)]
-    return _rounded(ctx, head), _rounded(ctx, tail)
+    return rounded(ctx, head), rounded(ctx, tail)

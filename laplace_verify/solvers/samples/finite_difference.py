@@ -25,8 +25,9 @@ from scipy.interpolate import interpn
 
 from laplace_verify.arrays import Array, BoolArray, IntArray
 from laplace_verify.problems import Piece, Problem
-from laplace_verify.solvers.adapter import Adapter, adapt
+from laplace_verify.solvers.adapter import Adapter, Refused, adapt
 from laplace_verify.solvers.answer import Answer
+from laplace_verify.solvers.samples.corner_rows import corner_rows
 from laplace_verify.solvers.samples.levels import level_shift
 from laplace_verify.solvers.samples.linear_systems import conjugate_gradients, direct
 from laplace_verify.solvers.samples.rectilinear import Grid, Patch, axis_balances, grid_on
@@ -116,6 +117,7 @@ class Scheme:
     """The decisions that make a finite-difference solver."""
 
     stencil: Callable[[Grid, Array], sp.csr_array] = box_stencil
+    corners: Callable[[Grid, Array, list[Patch]], sp.csr_array] = corner_rows
     robin: Callable[[Equations, Side], None] = half_cell_transfer
     neumann: Callable[[Equations, Side], None] = half_cell_flux
     dirichlet: Callable[[Equations, Side], None] = held_values
@@ -156,10 +158,11 @@ def solve_on_grid(problem: Problem, n: int, scheme: Scheme = SCHEME) -> Answer:
 
 def assemble(grid: Grid, tensor: Array, sides: list[Side], scheme: Scheme) -> Equations:
     """Write the balance of every box, then close it piece by piece; Dirichlet comes last and so wins."""
-    count = len(grid.points)
-    equations = Equations(
-        scheme.stencil(grid, tensor), np.zeros(count), np.zeros(count, np.bool_), np.zeros(count)
-    )
+    count, balance = len(grid.points), scheme.stencil(grid, tensor)
+    open_patches = [side.patch for side in sides if side.piece.kind != "dirichlet"]
+    if grid.dim == 2:
+        balance = balance + scheme.corners(grid, tensor, open_patches)
+    equations = Equations(balance, np.zeros(count), np.zeros(count, np.bool_), np.zeros(count))
     for kind in ("robin", "neumann", "dirichlet"):
         for side in sides:
             if side.piece.kind == kind:
@@ -251,7 +254,14 @@ def five_point(problem: Problem, n: int) -> Answer:
     sizes=(6, 9, 13, 19, 28),
 )
 def seven_point(problem: Problem, n: int) -> Answer:
-    """Solve on a box by the seven-point formula and conjugate gradients."""
+    """Solve on a box by the seven-point formula and conjugate gradients.
+
+    With mixed derivatives the edges between derivative conditions would lose a logarithm, see `corner_rows`, and the
+    rows that mend it are not symmetric, as conjugate gradients need them to be: such problems are declined.
+    """
+    open_axes = {tuple(piece.normals(piece.point([[0.5, 0.5]]))[0] ** 2) for piece in problem.pieces if piece.kind != "dirichlet"}
+    if np.count_nonzero(problem.tensor) > 3 and len(open_axes) > 1:
+        raise Refused("mixed derivatives with derivative conditions on faces that meet in an edge")
     return solve_on_grid(problem, n)
 
 
