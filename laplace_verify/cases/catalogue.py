@@ -1,0 +1,122 @@
+"""The named cases: a mapping from ids to cases that are built when first asked for."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterable, Iterator, Mapping
+from functools import partial
+
+from laplace_verify.cases.families import FAMILIES
+from laplace_verify.errors import ProblemError, UnknownCaseError, nearest_names
+from laplace_verify.problems import Case
+
+__all__ = ["Catalogue", "catalogue"]
+
+Builder = Callable[[], Case]
+
+
+class Catalogue(Mapping[str, Case]):
+    """Cases by id, in a stable order.
+
+    Parameters
+    ----------
+    builders
+        Id -> function that builds the case. Each is called once, when its case is first asked for.
+
+    Examples
+    --------
+    >>> catalogue["plate-saddle"].exact.formula
+    'Re (x + i y)^2'
+    >>> [case.id for case in catalogue.select(dim=1, conditions={"neumann"})]
+    ['rod-pure-flux']
+    """
+
+    def __init__(self, builders: Mapping[str, Builder]) -> None:
+        self._builders = dict(builders)
+        self._built: dict[str, Case] = {}
+
+    def __getitem__(self, id_: str) -> Case:
+        """Return the case of an id.
+
+        Raises
+        ------
+        UnknownCaseError
+            If there is none; the nearest ids are named.
+        """
+        if id_ not in self._built:
+            if id_ not in self._builders:
+                raise UnknownCaseError(
+                    f"no case is called {id_!r}; {nearest_names(str(id_), self._builders)}"
+                )
+            self._built[id_] = self._builders[id_]()
+        return self._built[id_]
+
+    def __contains__(self, id_: object) -> bool:
+        """Return whether there is a case of this id, without building it."""
+        return id_ in self._builders
+
+    def __iter__(self) -> Iterator[str]:
+        """Iterate over the ids."""
+        return iter(self._builders)
+
+    def __len__(self) -> int:
+        """Return the number of cases."""
+        return len(self._builders)
+
+    def __repr__(self) -> str:
+        """Show the number of cases."""
+        return f"Catalogue({len(self)} cases)"
+
+    def select(
+        self,
+        *,
+        dim: int | None = None,
+        shape: str | None = None,
+        conditions: Iterable[str] | None = None,
+        tags: Iterable[str] | None = None,
+    ) -> list[Case]:
+        """Return the cases that match, in order.
+
+        Parameters
+        ----------
+        dim
+            Number of space dimensions.
+        shape
+            Kind of shape; "polygon" matches rectangles and L-shapes too, "ellipse" discs.
+        conditions
+            What a solver can do: a case matches if all conditions it uses are among them.
+        tags
+            A case matches if it has all of them.
+
+        Raises
+        ------
+        ProblemError
+            If `conditions` or `tags` is a string instead of a set of them.
+
+        Examples
+        --------
+        >>> [case.id for case in catalogue.select(dim=3, shape="box", conditions={"neumann"})]
+        ['box-pure-flux']
+        """
+        can, wanted = _words(conditions, "conditions"), _words(tags, "tags")
+        return [
+            case
+            for case in self.values()
+            if (dim is None or case.dim == dim)
+            and (shape is None or case.problem.shape.is_a(shape))
+            and (can is None or case.conditions <= can)
+            and (wanted is None or wanted <= case.tags)
+        ]
+
+
+def _words(words: Iterable[str] | None, name: str) -> frozenset[str] | None:
+    """Return a set of words, refusing a single string: its letters are no words."""
+    if words is None:
+        return None
+    if isinstance(words, str):
+        raise ProblemError(f"{name} must be a set of words such as {{{words!r}}}, got the string {words!r}")
+    return frozenset(words)
+
+
+catalogue = Catalogue(
+    {id_: partial(lambda definer, id_: definer().build(id_), definer, id_) for id_, definer in FAMILIES.items()}
+)
