@@ -156,7 +156,7 @@ class Record:
 
 
 def record_to_json(record: Record, path: str | os.PathLike[str] | None = None) -> bytes:
-    """Return the record as UTF-8 JSON, one line an entry, and write it to `path` if one is given (atomically).
+    """Return the record as UTF-8 JSON, one line an entry; write it to `path` if one is given (atomically).
 
     Raises
     ------

@@ -75,7 +75,7 @@ def shared_features(
 
 
 def _in_order(studies: Sequence[Study]) -> list[str]:
-    """Return the features of the studies in the order in which they list them: the general ones come first."""
+    """Return the features of the studies in the order in which they list them, general ones first."""
     listed_by = {name: place for study in studies for place, name in enumerate(study.features)}
     names: set[str] = set().union(*(feature_names(study) for study in studies))
     return sorted(names, key=lambda name: (listed_by.get(name, listed_by.get(name.split(":")[0], 0)), name))

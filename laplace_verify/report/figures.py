@@ -53,13 +53,13 @@ def convergence_figure(study: Study) -> Figure:
             _error_line(axes, study, norm, place, exponential)
             found = study.orders.get(norm)
             if found and found.decides and isinstance(found.expected, float | int):
-                anchor = _last_point(study.levels, norm)
+                anchor = _first_point(study, norm)
                 # One guide a slope, below the lowest curve of that slope.
                 if anchor and (found.expected not in slopes or anchor[1] < slopes[found.expected][1]):
                     slopes[found.expected] = anchor
-        _finish_errors(axes, study, exponential)
-        for expected, anchor in slopes.items():
+        for expected, anchor in slopes.items() if not exponential else ():
             _slope_guide(axes, study.levels, expected, anchor)
+        _finish_errors(axes, study, exponential)
         return figure
 
 
@@ -87,32 +87,41 @@ def _error_line(axes: Axes, study: Study, norm: str, place: int, exponential: bo
     )  # fmt: skip
 
 
-def _last_point(levels: Sequence[Level], norm: str) -> tuple[float, float] | None:
-    """Return (h, error) of the finest level whose error can be drawn."""
-    for level in reversed(levels):
+def _first_point(study: Study, norm: str) -> tuple[float, float] | None:
+    """Return (h, error) of the coarsest judged level whose error can be drawn."""
+    left_out = study.orders[norm].left_out
+    for level in study.levels:
         error = level.errors.get(norm, math.nan)
-        if level.h > 0 and error > 0 and math.isfinite(error):
+        judged = level.judged and str(level.size) not in left_out
+        if judged and level.h > 0 and error > 0 and math.isfinite(error):
             return level.h, error
     return None
 
 
 def _slope_guide(axes: Axes, levels: Sequence[Level], expected: float, anchor: tuple[float, float]) -> None:
-    """Draw a dashed line of the expected slope through (h, error / 2) and write the slope beside it."""
-    h = [level.h for level in levels if level.h > 0]
+    """Draw a dotted line of the expected slope from just below the coarsest judged error.
+
+    A curve that leaves it upwards falls short.
+    """
     start, error = anchor
-    stop = min(max(h), 8 * start)
-    if not stop > start:
+    stop = min((level.h for level in levels if level.h > 0), default=start)
+    if not stop < start:
         return
-    ends = [error / 2, error / 2 * (stop / start) ** expected]
+    ends = [0.7 * error, 0.7 * error * (stop / start) ** expected]
     axes.plot([start, stop], ends, color=INK, linestyle=(0, (1, 1.5)), linewidth=1.2)
-    middle = math.sqrt(start * stop), math.sqrt(ends[0] * ends[1])
     axes.annotate(
-        f"slope {order(expected)}", middle, xytext=(5, -9), textcoords="offset points", fontsize=8, color=INK
+        f"slope {order(expected)}",
+        (stop, ends[1]),
+        xytext=(6, -8),
+        textcoords="offset points",
+        fontsize=8,
+        color=INK,
     )
 
 
 def _finish_errors(axes: Axes, study: Study, exponential: bool) -> None:
     """Set axes, grid and legend."""
+    axes.margins(y=0.1)
     if exponential:
         axes.set_xlabel("size n")
         log_axis(axes, "y")
@@ -187,10 +196,8 @@ def _expected_lines(axes: Axes, study: Study) -> list[float]:
         if isinstance(found.expected, float | int):
             heights.setdefault(float(found.expected), found.tolerance)
     for expected, tolerance in heights.items():
-        axes.axhline(expected, color=INK, linestyle=(0, (1, 1.5)), linewidth=1.2)
-        axes.annotate(
-            f"expected {order(expected)}", (0.99, expected), xycoords=("axes fraction", "data"),
-            xytext=(0, 3), textcoords="offset points", ha="right", fontsize=8, color=INK,
+        axes.axhline(
+            expected, color=INK, linestyle=(0, (1, 1.5)), linewidth=1.2, label=f"expected {order(expected)}"
         )  # fmt: skip
         if tolerance is not None:
             axes.axhline(expected - tolerance, color=QUIET, linestyle=(0, (5, 3)), linewidth=0.8)

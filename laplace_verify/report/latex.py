@@ -43,16 +43,17 @@ _PREAMBLE = r"""\documentclass[10pt,a4paper]{article}
 """
 _HEADINGS = ("section", "subsection", "subsubsection", "paragraph")
 _GREEK = (
-    "alpha", "beta", "gamma", "delta", "varepsilon", "zeta", "eta", "theta", "iota", "kappa", "lambda", "mu", "nu",
-    "xi", "pi", "rho", "sigma", "tau", "varphi", "chi", "psi", "omega",
+    "alpha", "beta", "gamma", "delta", "varepsilon", "zeta", "eta", "theta", "iota", "kappa", "lambda", "mu",
+    "nu", "xi", "pi", "rho", "sigma", "tau", "varphi", "chi", "psi", "omega",
 )  # fmt: skip
 _COMMANDS = {
-    "\\": r"\textbackslash{}", "{": r"\{", "}": r"\}", "$": r"\$", "&": r"\&", "#": r"\#", "%": r"\%", "_": r"\_",
-    "^": r"\textasciicircum{}", "~": r"\textasciitilde{}", "<": r"\textless{}", ">": r"\textgreater{}",
+    "\\": r"\textbackslash{}", "{": r"\{", "}": r"\}", "$": r"\$", "&": r"\&", "#": r"\#", "%": r"\%",
+    "_": r"\_", "^": r"\textasciicircum{}", "~": r"\textasciitilde{}", "<": r"\textless{}", ">": r"\textgreater{}",
     "|": r"\textbar{}", '"': r"\textquotedbl{}", "'": r"\textquotesingle{}", "`": r"\textasciigrave{}",
     "–": r"\textendash{}", "—": r"\textemdash{}", "…": r"\ldots{}", "“": "``", "”": "''", "‘": "`", "’": "'",
-    "·": r"$\cdot$", "×": r"$\times$", "±": r"$\pm$", "−": "$-$", "∞": r"$\infty$", "≤": r"$\leq$", "≥": r"$\geq$",
-    "≈": r"$\approx$", "≠": r"$\neq$", "→": r"$\to$", "∇": r"$\nabla$", "∂": r"$\partial$", "√": r"$\surd$",
+    "·": r"$\cdot$", "×": r"$\times$", "±": r"$\pm$", "−": "$-$", "∞": r"$\infty$",
+    "≤": r"$\leq$", "≥": r"$\geq$", "≈": r"$\approx$",
+    "≠": r"$\neq$", "→": r"$\to$", "∇": r"$\nabla$", "∂": r"$\partial$", "√": r"$\surd$",
     "∈": r"$\in$", "∫": r"$\int$", "Σ": r"$\Sigma$", "∑": r"$\sum$", "°": r"$^\circ$", "✓": r"$\surd$",
     "✗": r"$\times$", "○": r"$\circ$", "⁻": "$^{-}$", "²": "$^2$", "³": "$^3$", "¹": "$^1$", "⁰": "$^0$",
     "µ": r"$\mu$", "½": r"$\frac12$", "Δ": r"$\Delta$", "Ω": r"$\Omega$", "Γ": r"$\Gamma$", "\u200b": "",
@@ -162,11 +163,11 @@ def table_to_latex(table: Table) -> str:
     layout = "".join(_layout(table))
     head = " & ".join(rf"\textbf{{{escape_latex(column.title)}}}" for column in table.columns)
     rows = "\n".join(" & ".join(map(_cell, row)) + r" \\" for row in table.rows)
-    caption = rf"\multicolumn{{{len(table.columns)}}}{{@{{}}p{{0.95\textwidth}}}}{{{escape_latex(table.caption)}}} \\[2pt]"
-    return (
-        f"{{\\footnotesize\n\\begin{{longtable}}[l]{{@{{}}{layout}@{{}}}}\n{caption}\n\\hline\n{head} \\\\\n\\hline\n"
-        f"\\endhead\n{rows}\n\\hline\n\\end{{longtable}}}}"
-    )
+    width = rf"\multicolumn{{{len(table.columns)}}}{{@{{}}p{{0.95\textwidth}}}}"
+    caption = rf"{width}{{{escape_latex(table.caption)}}} \\[2pt]"
+    lines = [caption, r"\hline", rf"{head} \\", r"\hline", r"\endhead", rows, r"\hline"]
+    body = "\n".join(line for line in lines if line)
+    return f"{{\\footnotesize\n\\begin{{longtable}}[l]{{@{{}}{layout}@{{}}}}\n{body}\n\\end{{longtable}}}}"
 
 
 def _layout(table: Table) -> list[str]:

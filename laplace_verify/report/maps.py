@@ -17,8 +17,7 @@ from scipy.spatial import cKDTree
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.campaign.record import CaseInfo, PieceInfo
 from laplace_verify.measure.results import ErrorMap
-from laplace_verify.report.style import INK, QUIET, SERIES, drawing, log_axis, new_figure
-from laplace_verify.report.text import number
+from laplace_verify.report.style import INK, QUIET, SERIES, decade, drawing, log_axis, new_figure, round_numbers
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -91,7 +90,7 @@ def _logarithm(errors: Array, floor: float) -> Array:
 
 def _plane_map(figure: Figure, points: Array, errors: Array, pieces: Sequence[PieceInfo]) -> None:
     """Draw the nearest-point map of a plane case inside its outline."""
-    axes = figure.add_axes((0.13, 0.14, 0.66, 0.8))
+    axes = figure.add_axes((0.13, 0.14, 0.62, 0.8))
     outline = [np.asarray(piece.outline, dtype=np.float64) for piece in pieces if len(piece.outline) > 1]
     every = np.vstack([points, *outline]) if outline else points
     lower, upper = every.min(axis=0), every.max(axis=0)
@@ -117,7 +116,7 @@ def _plane_map(figure: Figure, points: Array, errors: Array, pieces: Sequence[Pi
     axes.set_xlabel("x")
     axes.set_ylabel("y")
     axes.locator_params(nbins=5)
-    _label_scale(figure.colorbar(shown, cax=figure.add_axes((0.83, 0.2, 0.03, 0.68))))
+    _label_scale(figure.colorbar(shown, cax=figure.add_axes((0.79, 0.2, 0.03, 0.68))))
 
 
 def _spacing(points: Array) -> float:
@@ -172,19 +171,20 @@ def _three_views(figure: Figure, points: Array, errors: Array) -> None:
 
 def _label_scale(bar: Colorbar) -> None:
     """Label the scale of the shades by the errors themselves."""
-    from matplotlib.ticker import FuncFormatter, MaxNLocator
+    from matplotlib.ticker import FixedLocator, FuncFormatter
 
     bar.set_label("|error|")
     bar.outline.set_visible(False)
-    bar.locator = MaxNLocator(nbins=5, steps=[1, 2, 5, 10])
-    bar.formatter = FuncFormatter(lambda value, _: number(10.0**value, 2))
+    ticks = round_numbers(10.0**bar.vmin, 10.0**bar.vmax)
+    bar.locator = FixedLocator(np.log10(ticks).tolist())
+    bar.formatter = FuncFormatter(lambda value, _: decade(10.0**value))
     bar.update_ticks()
 
 
 def case_figure(info: CaseInfo) -> Figure:
     """Return the shape of a case: its pieces by name, lines by condition, singular points marked."""
     with drawing():
-        figure = new_figure(_WIDTH, _HEIGHT)
+        figure = new_figure(3.3, 3.0)
         solid = info.dim == 3
         axes = figure.add_subplot(projection="3d") if solid else figure.add_subplot()
         seen: set[str] = set()

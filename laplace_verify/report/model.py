@@ -110,7 +110,8 @@ def _summary_of_laws(record: Record) -> str:
         return ""
     kept = sum(check.verdict is Verdict.PASS for check in record.checks)
     broken = sum(check.verdict in (Verdict.FAIL, Verdict.ERROR) for check in record.checks)
-    text = f" {kept} of {count_of(len(record.checks), 'law')} of harmonic functions {'is' if kept == 1 else 'are'} kept"
+    laws = f"{count_of(len(record.checks), 'law')} of harmonic functions"
+    text = f" {kept} of {laws} {'is' if kept == 1 else 'are'} kept"
     return f"{text}, {broken} {'is' if broken == 1 else 'are'} broken." if broken else f"{text}."
 
 

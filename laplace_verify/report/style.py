@@ -6,17 +6,29 @@ own. Nothing touches `matplotlib.pyplot` or leaves a changed setting behind.
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator
 from contextlib import contextmanager
 from typing import TYPE_CHECKING, Any
 
 from laplace_verify.measure.verdict import Verdict
+from laplace_verify.report.text import power_of_ten
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
     from matplotlib.figure import Figure
 
-__all__ = ["INK", "MARKERS", "QUIET", "SERIES", "VERDICT_COLOURS", "drawing", "log_axis", "new_figure"]
+__all__ = [
+    "INK",
+    "MARKERS",
+    "QUIET",
+    "SERIES",
+    "VERDICT_COLOURS",
+    "decade",
+    "drawing",
+    "log_axis",
+    "new_figure",
+]
 
 INK = "#1d2b33"
 QUIET = "#7b878d"
@@ -93,27 +105,46 @@ def new_figure(width: float, height: float, *, fitted: bool = False) -> Figure:
 
 
 def log_axis(axes: Axes, which: str) -> None:
-    """Make the x or y axis logarithmic, with plain superscripts at the ticks and labels that never crowd."""
-    from matplotlib.ticker import FuncFormatter, LogLocator, NullFormatter
-
-    from laplace_verify.report.text import number, power_of_ten
+    """Make the x or y axis logarithmic, with few ticks at round numbers and plain superscripts."""
+    from matplotlib.ticker import FixedLocator, FuncFormatter, NullLocator
 
     getattr(axes, f"set_{which}scale")("log")
     axis = axes.xaxis if which == "x" else axes.yaxis
-    low, high = axis.get_view_interval()
-    narrow = not low > 0 or high / low < 30
-    axis.set_major_locator(LogLocator(subs=(1.0, 2.0, 5.0) if narrow else (1.0,), numticks=7))
-    axis.set_minor_formatter(NullFormatter())
-
-    def label(value: float, _: int) -> str:
-        exponent = round(_log10(value))
-        exact = abs(value / 10.0**exponent - 1) < 1e-9
-        return power_of_ten(exponent) if exact and not -3 < exponent < 3 else number(value, 1)
-
-    axis.set_major_formatter(FuncFormatter(label))
+    low, high = sorted(axis.get_view_interval())
+    axis.set_major_locator(FixedLocator(round_numbers(low, high)))
+    axis.set_minor_locator(NullLocator())
+    axis.set_major_formatter(FuncFormatter(lambda value, _: decade(value)))
 
 
-def _log10(value: float) -> float:
-    import math
+def round_numbers(low: float, high: float) -> list[float]:
+    """Return at most eight, and if it can be at least three, round numbers between two positive limits.
 
-    return math.log10(value) if value > 0 else 0.0
+    >>> round_numbers(0.01, 2.0), round_numbers(0.1, 0.5)
+    ([0.01, 0.1, 1.0], [0.1, 0.2, 0.5])
+    """
+    if not 0 < low < high < math.inf:
+        return []
+    first, last = math.floor(math.log10(low)), math.ceil(math.log10(high))
+    step = max((last - first) // 7, 1)
+    found: list[float] = []
+    for digits in ((1.0,), (1.0, 3.0), (1.0, 2.0, 5.0), (1.0, 1.5, 2.0, 3.0, 4.0, 5.0, 7.0)):
+        every = [digit * 10.0**power for power in range(first, last + 1, step) for digit in digits]
+        found = [tick for tick in every if low <= tick <= high]
+        if len(found) >= 3:
+            break
+    return found
+
+
+def decade(value: float) -> str:
+    """Return the label of a tick: a power of ten as such, others with the digits they need.
+
+    >>> decade(1e-5), decade(0.02), decade(3e-4), decade(1.0)
+    ('10⁻⁵', '0.02', '3·10⁻⁴', '1')
+    """
+    if not value > 0:
+        return "0"
+    exponent = math.floor(math.log10(value) + 1e-9)
+    if -3 < exponent < 4:
+        return f"{value:g}"
+    mantissa = f"{value / 10.0**exponent:.2g}"
+    return power_of_ten(exponent) if mantissa == "1" else f"{mantissa}·{power_of_ten(exponent)}"

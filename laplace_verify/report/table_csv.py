@@ -15,8 +15,9 @@ from laplace_verify.measure.results import Level, Study
 __all__ = ["COLUMNS", "to_csv"]
 
 COLUMNS = (
-    "case", "dim", "shape", "verdict", "level", "size", "h", "unknowns", "seconds", "norm", "absolute", "relative",
-    "judged", "note", "decides", "formal_order", "expected_order", "observed_order", "order_low", "order_high",
+    "case", "dim", "shape", "verdict", "level", "size", "h", "unknowns", "seconds", "norm", "absolute",
+    "relative", "judged", "note", "decides", "formal_order", "expected_order",
+    "observed_order", "order_low", "order_high",
 )  # fmt: skip
 
 
