@@ -1,14 +1,13 @@
 """Triangulation of a polygon, holes and slits allowed, without new points.
 
-A ring is a closed walk with the domain on its left. Holes are joined to the outer ring by the shortest bridge that
-crosses nothing, walked there and back; then ears (corners whose opposite diagonal lies inside) are cut off one by one,
-best shaped first; then diagonals are flipped until each is locally Delaunay. Corners of the walk, not places, are
-compared, so the two lips of a slit stay apart. Cost is cubic in the number of corners: meant for tens of them.
+A ring is a closed walk with the domain on its left. Holes are joined to the outer ring by the shortest bridge
+that crosses nothing, walked there and back; then ears (corners whose opposite diagonal lies inside) are cut
+off one by one, best shaped first; then diagonals are flipped until each is locally Delaunay. Corners of the
+walk, not places, are compared, so the two lips of a slit stay apart. Cost is cubic in the number of corners:
+meant for tens of them.
 
-References
-----------
-G. H. Meisters, Polygons have ears, Amer. Math. Monthly 82 (1975) 648-651; C. L. Lawson, Software for C1 surface
-interpolation, 1977 (flips; both from memory, unchecked).
+References ---------- G. H. Meisters, Polygons have ears, Amer. Math. Monthly 82 (1975) 648-651; C. L. Lawson,
+Software for C1 surface interpolation, 1977 (flips; both from memory, unchecked).
 """
 
 from __future__ import annotations

@@ -1,9 +1,10 @@
 """Triangulations of planar shapes with n cells along every side, for sample solvers and pictures.
 
-Rectangles and L-shapes get right triangles on a grid, polygons the uniform refinement of a constrained Delaunay
-triangulation of their corners, discs, ellipses and sectors fans of about equilateral triangles mapped onto circles,
-annuli a polar grid. Meshes of one shape with n and 2 n cells are nested up to the curvature of the boundary, so h is
-proportional to 1/n. The ends of boundary pieces, those made by ``split`` included, are nodes.
+Rectangles and L-shapes get right triangles on a grid, polygons the uniform refinement of a constrained
+Delaunay triangulation of their corners, discs, ellipses and sectors fans of about equilateral triangles
+mapped onto circles, annuli a polar grid. Meshes of one shape with n and 2 n cells are nested up to the
+curvature of the boundary, so h is proportional to 1/n. The ends of boundary pieces, those made by ``split``
+included, are nodes.
 """
 
 from __future__ import annotations
@@ -24,6 +25,8 @@ from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
 from laplace_verify.geometry.splitting import split_piece
 
 __all__ = ["Mesh", "subdivide", "triangulate"]
+
+SAME = 1e-9  # relative distance at which two places are one
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -54,18 +57,23 @@ class Mesh:
     def areas(self) -> Array:
         """The areas of the triangles, shape (m,), all positive."""
         a, b, c = np.moveaxis(self.points[self.triangles], 1, 0)
-        return 0.5 * ((b - a)[:, 0] * (c - a)[:, 1] - (b - a)[:, 1] * (c - a)[:, 0])
+        areas: Array = 0.5 * ((b - a)[:, 0] * (c - a)[:, 1] - (b - a)[:, 1] * (c - a)[:, 0])
+        return areas
 
 
 def subdivide(breaks: npt.ArrayLike, n: int) -> Array:
     """Return about n + 1 rising coordinates that contain all `breaks`, cells nearly equal.
 
-    Every interval between two breaks gets at least one cell, so there may be more than n.
+    The smallest and the largest break are the ends; equal ones count once. Every interval between two breaks
+    gets at least one cell, so there may be more than n.
 
     >>> subdivide([0.0, 0.3, 1.0], 4).tolist()
     [0.0, 0.3, 0.5333333333333333, 0.7666666666666666, 1.0]
     """
-    stops = np.asarray(breaks, dtype=np.float64)
+    stops = np.unique(np.asarray(breaks, dtype=np.float64))
+    apart = np.diff(stops) > SAME * (stops[-1] - stops[0])
+    stops = np.append(stops[:-1][apart], stops[-1])  # of nearly equal ones the last, but the very first stays
+    stops[0] = np.min(breaks)
     marks = np.rint(n * (stops - stops[0]) / (stops[-1] - stops[0])).astype(int)
     for k in range(1, len(marks)):
         marks[k] = max(marks[k], marks[k - 1] + 1)
@@ -79,8 +87,8 @@ def subdivide(breaks: npt.ArrayLike, n: int) -> Array:
 def triangulate(shape: Shape, n: int) -> Mesh:
     """Return a triangulation of a planar shape with n cells along every side.
 
-    Arcs are cut into n cells per 60 degrees (annuli: 6 n to 12 n cells around). A side that ``split`` cuts keeps its n
-    cells on rectangles; on polygons each part of it gets n.
+    Arcs are cut into n cells per 60 degrees (annuli: 6 n to 12 n cells around). A side that ``split`` cuts
+    keeps its n cells on rectangles; on polygons each part of it gets n.
 
     Raises
     ------
@@ -102,7 +110,7 @@ def triangulate(shape: Shape, n: int) -> Mesh:
     raise GeometryError(f"cannot triangulate a shape of kind {shape.kind!r}; can: {', '.join(_BUILDERS)}")
 
 
-# ---- structured grids ------------------------------------------------------------------------------------------
+# ---- structured grids ----------------------------------------------------------------------------
 
 
 def _from_grid(shape: Shape, n: int) -> Mesh:
@@ -110,7 +118,7 @@ def _from_grid(shape: Shape, n: int) -> Mesh:
     lower, upper = shape.bounding_box
     ends = np.concatenate([lower[None], upper[None], *(piece.ends for piece in shape.pieces)])
     count = 2 * n if shape.is_a("l-shape") else n
-    x, y = (subdivide(np.unique(ends[:, axis]), count) for axis in (0, 1))
+    x, y = (subdivide(ends[:, axis], count) for axis in (0, 1))
     middles = np.stack(np.meshgrid((x[1:] + x[:-1]) / 2, (y[1:] + y[:-1]) / 2), axis=-1).reshape(-1, 2)
     row, column = np.divmod(np.flatnonzero(shape.contains(middles)), len(x) - 1)
     south_west = row * len(x) + column
@@ -148,7 +156,7 @@ def _finished(points: Array, triangles: IntArray, boundary: dict[str, IntArray])
     return Mesh(points=frozen(points), triangles=triangles, boundary=boundary)
 
 
-# ---- fans: disc, ellipse, sector -------------------------------------------------------------------------------
+# ---- fans: disc, ellipse, sector -----------------------------------------------------------------
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -170,7 +178,8 @@ def _fan(wedges: int, n: int, *, closed: bool) -> _Fan:
     first = np.cumsum(counts) - counts
 
     def node(ring: int, step: npt.NDArray[np.int64]) -> IntArray:
-        return first[ring] + (step % counts[ring] if closed else step)
+        place: IntArray = first[ring] + (step % counts[ring] if closed else step)
+        return place
 
     triangles = []
     for i in range(n):
@@ -260,9 +269,6 @@ def _from_annulus(shape: Shape, n: int) -> Mesh:
     return _finished(points, triangles, {piece.name: boundary[piece.name] for piece in shape.pieces})
 
 
-SAME = 1e-9  # relative distance at which two places are one
-
-
 def _unit(angle: Array) -> Array:
     """Return the unit vectors (n, 2) at the given angles."""
     return np.stack([np.cos(angle), np.sin(angle)], axis=-1)
@@ -276,8 +282,7 @@ def _turns(points: Array, centre: Array, axes: Array) -> Array:
 
 def _stretched(share: Array, breaks: Array, cells: int) -> Array:
     """Move positions in [0, 1] so that the nearest of the marks k / cells comes to lie on every break."""
-    inner = np.unique(breaks.round(12))
-    inner = inner[(inner > SAME) & (inner < 1.0 - SAME)]
+    inner = breaks[(breaks > SAME) & (breaks < 1.0 - SAME)]
     marks = subdivide([0.0, *inner, 1.0], cells)
     if len(marks) != cells + 1:
         raise GeometryError(f"n is too small: {len(inner)} ends of pieces do not fit on {cells} cells")
@@ -294,7 +299,7 @@ def _by_piece(pieces: list[Boundary], edges: IntArray, middles: Array) -> dict[s
     return {piece.name: edges[piece.contains(middles)] for piece in pieces}
 
 
-# ---- polygons --------------------------------------------------------------------------------------------------
+# ---- polygons ------------------------------------------------------------------------------------
 
 
 def _from_polygon(shape: Shape, n: int) -> Mesh:
@@ -306,7 +311,7 @@ def _from_polygon(shape: Shape, n: int) -> Mesh:
 
 
 def _walks(shape: Shape) -> tuple[Array, list[list[int]], dict[tuple[int, int], str]]:
-    """Return corners, the closed walks through them and the piece on each side; both lips of a slit have corners."""
+    """Return corners (both lips of a slit have some), closed walks through them, the piece on each side."""
     cuts = dict(shape.splits)
     corners: list[Array] = []
     rings: list[list[int]] = []

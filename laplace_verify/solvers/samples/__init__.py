@@ -1,6 +1,7 @@
-"""Sample solvers: what wiring a solver in looks like, and what a sound one and a faulty one get for a verdict.
+"""Sample solvers: how a solver is wired in, and what a sound one and a faulty one get for a verdict.
 
-`five_point` is the one to read first: `finite_difference` says what it solves, `rectilinear` how the grid works.
+`five_point` is the one to read first: `finite_difference` says what it solves, `rectilinear` how the grid
+works.
 """
 
 from __future__ import annotations

@@ -1,30 +1,26 @@
 """Chebyshev collocation for div(K grad u) = 0 on an interval or a rectangle.
 
-u is a polynomial of degree n in every coordinate, given by its values at the Chebyshev points x_j = cos(j pi / n). At
-inner points the equation itself holds; at boundary points the conditions do. Where several pieces meet, a Dirichlet
-value wins (two of them: the later piece's), and otherwise the sum of the derivative conditions is imposed, each with
-its own normal; both hold in the limit, and neither is preferred. Smooth solutions converge exponentially; rounding
-stops the error near 1e-12 times the size of u.
+u is a polynomial of degree n in every coordinate, given by its values at the Chebyshev points x_j = cos(j pi
+/ n). At inner points the equation itself holds; at boundary points the conditions do. Where several pieces
+meet, a Dirichlet value wins (two of them: the later piece's), and otherwise the sum of the derivative
+conditions is imposed, each with its own normal; both hold in the limit, and neither is preferred. Smooth
+solutions converge exponentially; rounding stops the error near 1e-12 times the size of u.
 
 Between the points u is evaluated by the barycentric formula, which is the polynomial itself, not a fit to it.
 
-References
-----------
-Trefethen, Spectral Methods in MATLAB, 2000, chapters 6 and 13 (differentiation matrix with negative-sum diagonal);
-Berrut & Trefethen, Barycentric Lagrange interpolation, SIAM Review 46 (2004) 501-517, eq. 5.4 (both from memory,
-unchecked).
+References ---------- Trefethen, Spectral Methods in MATLAB, 2000, chapters 6 and 13 (differentiation matrix
+with negative-sum diagonal); Berrut & Trefethen, Barycentric Lagrange interpolation, SIAM Review 46 (2004)
+501-517, eq. 5.4 (both from memory, unchecked).
 """
 
 from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from functools import reduce
 
 import numpy as np
 
-from laplace_verify.arrays import Array, BoolArray, blocks
-from laplace_verify.geometry import Shape
+from laplace_verify.arrays import Array, blocks
 from laplace_verify.problems import Problem
 from laplace_verify.solvers.adapter import adapt
 from laplace_verify.solvers.answer import Answer
@@ -70,27 +66,35 @@ class ChebyshevGrid:
     def along(self, axis: int, matrix: Array) -> Array:
         """Return the operator on all points that applies `matrix` along one axis."""
         factors = [matrix if a == axis else np.eye(self.n + 1) for a in range(self.dim)]
-        return reduce(np.kron, factors)
+        return kron(factors)
 
     def weights(self) -> Array:
         """Return weights at all points that integrate the polynomial (Clenshaw & Curtis 1960)."""
         one = clenshaw_curtis(self.n)
-        return reduce(np.kron, [0.5 * (b - a) * one for a, b in zip(self.lower, self.upper, strict=True)])
+        return kron([0.5 * (b - a) * one for a, b in zip(self.lower, self.upper, strict=True)])
 
     def basis(self, axis: int, x: Array) -> Array:
         """Return the Lagrange polynomials along an axis at x, shape (len(x), n + 1)."""
         gaps = x[:, np.newaxis] - self.nodes(axis)
         rows, columns = np.nonzero(gaps == 0.0)
         gaps[rows] = 1.0
-        terms = barycentric_weights(self.n) / gaps
-        terms /= terms.sum(axis=1, keepdims=True)
+        terms: Array = barycentric_weights(self.n) / gaps
         terms[rows] = np.eye(self.n + 1)[columns]
+        terms /= terms.sum(axis=1, keepdims=True)
         return terms
+
+
+def kron(factors: Sequence[Array]) -> Array:
+    """Return the Kronecker product of all factors, in order."""
+    product = factors[0]
+    for factor in factors[1:]:
+        product = np.kron(product, factor).astype(np.float64)
+    return product
 
 
 def barycentric_weights(n: int) -> Array:
     """Return (-1)^j, halved at both ends: the weights of the Chebyshev points."""
-    w = (-1.0) ** np.arange(n + 1)
+    w = np.where(np.arange(n + 1) % 2, -1.0, 1.0)
     w[[0, -1]] *= 0.5
     return w
 
@@ -102,7 +106,7 @@ def clenshaw_curtis(n: int) -> Array:
     series[:, 0] *= 0.5
     if n % 2 == 0:
         series[:, -1] *= 0.5
-    w = (2.0 / n) * series.sum(axis=1)
+    w: Array = (2.0 / n) * series.sum(axis=1)
     w[[0, -1]] *= 0.5
     return w
 
@@ -125,7 +129,7 @@ def chebyshev(problem: Problem, n: int) -> Answer:
     slopes = [grid.along(axis, grid.slope(axis)) for axis in range(grid.dim)]
     matrix, load = equation_rows(slopes, problem.tensor), np.zeros(len(slopes[0]))
     free = impose_conditions(matrix, load, grid, slopes, problem)
-    values = np.linalg.solve(matrix, load) if not free else balanced(matrix, load, grid)
+    values = balanced(matrix, load, grid) if free else solved(matrix, load)
     if free:
         mean = float(np.average(values, weights=grid.weights()))
         values = values + level_shift(problem, mean, lambda points: evaluated(grid, values, points))
@@ -140,7 +144,8 @@ def chebyshev(problem: Problem, n: int) -> Answer:
 def equation_rows(slopes: Sequence[Array], tensor: Array) -> Array:
     """Return the collocated operator div(K grad u), as sum_a D_a (sum_b K_ab D_b)."""
     fluxes = [sum(tensor[a, b] * slope for b, slope in enumerate(slopes)) for a in range(len(slopes))]
-    return np.sum([slope @ flux for slope, flux in zip(slopes, fluxes, strict=True)], axis=0)
+    operator: Array = np.sum([slope @ flux for slope, flux in zip(slopes, fluxes, strict=True)], axis=0)
+    return operator
 
 
 def impose_conditions(
@@ -172,14 +177,20 @@ def impose_conditions(
     return free
 
 
+def solved(matrix: Array, load: Array) -> Array:
+    """Return the solution of a dense system."""
+    solution: Array = np.linalg.solve(matrix, load)
+    return solution
+
+
 def balanced(matrix: Array, load: Array, grid: ChebyshevGrid) -> Array:
-    """Return the solution of mean zero; what the data lack for balance is spread over the equations inside."""
+    """Return the solution of mean zero; what data lack for balance is spread over the equations inside."""
     inside = np.all(
         [(x > a) & (x < b) for x, a, b in zip(grid.points().T, grid.lower, grid.upper, strict=True)], axis=0
     )
     weights = grid.weights()
     bordered = np.block([[matrix, inside[:, np.newaxis].astype(float)], [weights, np.zeros(1)]])
-    return np.linalg.solve(bordered, np.append(load, 0.0))[:-1]
+    return solved(bordered, np.append(load, 0.0))[:-1]
 
 
 def evaluated(grid: ChebyshevGrid, values: Array, points: Array) -> Array:

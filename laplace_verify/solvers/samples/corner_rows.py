@@ -1,13 +1,13 @@
 """Second order in corners where two derivative conditions meet and the conductivity has a mixed term.
 
-The balance of the quarter cell in a corner at (0, 0), cells of hx x hy to the upper right, replaces the mixed term at
-its face centres (hx/2, hy/4) and (hx/4, hy/2) by differences centred at (hx/2, hy/2), while data and direct terms are
-taken on the sides. Taylor expansion leaves
+The balance of the quarter cell in a corner at (0, 0), cells of hx x hy to the upper right, replaces the mixed
+term at its face centres (hx/2, hy/4) and (hx/4, hy/2) by differences centred at (hx/2, hy/2), while data and
+direct terms are taken on the sides. Taylor expansion leaves
 
     balance - load = -K_xy / 4 (hx^2 u_xx + hy^2 u_yy) + O(h^3),
 
-an error of h^2 log(1/h) at the corner itself. Second differences along the two sides take it away. At a re-entrant
-corner the missing quarter counts with the opposite sign. Derived here.
+an error of h^2 log(1/h) at the corner itself. Second differences along the two sides take it away. At a
+re-entrant corner the missing quarter counts with the opposite sign. Derived here.
 """
 
 from __future__ import annotations
@@ -56,4 +56,5 @@ def second_difference(points: Array) -> Array:
     """Return weights at three points in a row that give h^2 u'', h the first distance."""
     near, far = np.linalg.norm(np.diff(points, axis=0), axis=1)
     scale = 2.0 * near**2 / (near + far)
-    return scale * np.array([1.0 / near, -1.0 / near - 1.0 / far, 1.0 / far])
+    weights: Array = scale * np.array([1.0 / near, -1.0 / near - 1.0 / far, 1.0 / far])
+    return weights

@@ -1,7 +1,7 @@
 """Coding mistakes put into the five-point solver, each a change of one small function.
 
-A verification is worth what it catches. `FAULTS` maps a name to what is wrong and to an adapter that declares itself as
-sound as `five_point` does.
+A verification is worth what it catches. `FAULTS` maps a name to what is wrong and to an adapter that declares
+itself as sound as `five_point` does.
 """
 
 from __future__ import annotations
@@ -37,7 +37,8 @@ class Fault(NamedTuple):
 def one_sided_flux(equations: Equations, side: Side) -> None:
     """Put n . K G u = g, with one-sided differences along the normal, in place of the half-cell balance.
 
-    For K = 1 this is (u_boundary - u_inner) / h = g: order one where the second normal derivative is not zero.
+    For K = 1 this is (u_boundary - u_inner) / h = g: order one where the second normal derivative is not
+    zero.
     """
     grid, patch, count = side.grid, side.patch, len(equations.load)
     nodes, areas = grid.shares(patch)

@@ -1,7 +1,7 @@
 """Finite differences on a rectilinear grid: three, five or seven points, second order up to the boundary.
 
-The unknowns sit on the grid's nodes, boundary included. Derivative conditions close the balance of the half cell
-(quarter cell in a corner) that a boundary node owns, so its equation has the order of the interior ones:
+The unknowns sit on the grid's nodes, boundary included. Derivative conditions close the balance of the half
+cell (quarter cell in a corner) that a boundary node owns, so its equation has the order of the interior ones:
 
     flux through the cell's inner faces  =  area * g                  (Neumann,  n . K grad u = g)
                                          =  area * (g - alpha u)      (Robin,    n . K grad u + alpha u = g)
@@ -75,7 +75,7 @@ class Side:
         return self.piece.name
 
 
-# ---- the parts of the scheme -----------------------------------------------------------------------------------
+# ---- the parts of the scheme ---------------------------------------------------------------------
 
 
 def box_stencil(grid: Grid, tensor: Array) -> sp.csr_array:
@@ -109,7 +109,8 @@ def held_values(equations: Equations, side: Side) -> None:
 def carried_load(equations: Equations, sides: list[Side]) -> Array:  # noqa: ARG001 - a scheme may go side by side
     """Return the load of the unknowns, with the held values carried over."""
     free = ~equations.held
-    return equations.load[free] - equations.matrix[free][:, equations.held] @ equations.values[equations.held]
+    carried: Array = equations.matrix[free][:, equations.held] @ equations.values[equations.held]
+    return equations.load[free] - carried
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -127,7 +128,7 @@ class Scheme:
 SCHEME = Scheme()
 
 
-# ---- putting it together ---------------------------------------------------------------------------------------
+# ---- putting it together -------------------------------------------------------------------------
 
 
 def solve_on_grid(problem: Problem, n: int, scheme: Scheme = SCHEME) -> Answer:
@@ -183,7 +184,7 @@ def solved(equations: Equations, scheme: Scheme, sides: list[Side]) -> tuple[Arr
     return values, float(np.max(np.abs(matrix @ unknown - load), initial=0.0)) / size, iterations
 
 
-# ---- what is handed back ---------------------------------------------------------------------------------------
+# ---- what is handed back -------------------------------------------------------------------------
 
 
 def interpolated(grid: Grid, values: Array, points: Array) -> Array:
@@ -197,8 +198,9 @@ def interpolated(grid: Grid, values: Array, points: Array) -> Array:
 def fluxes(grid: Grid, sides: list[Side], values: Array) -> dict[str, float]:
     """Return the integral of n . K grad u over every piece.
 
-    On Dirichlet pieces it is what the half cells lack for balance, which is as accurate as the nodal values. A corner
-    of two Dirichlet pieces has one balance for two faces; each face then takes the part along its own axis.
+    On Dirichlet pieces it is what the half cells lack for balance, which is as accurate as the nodal values.
+    A corner of two Dirichlet pieces has one balance for two faces; each face then takes the part along its
+    own axis.
     """
     along = [balance @ values for balance in axis_balances(grid, sides[0].tensor)]
     lacking = np.sum(along, axis=0)
@@ -224,7 +226,7 @@ def fluxes(grid: Grid, sides: list[Side], values: Array) -> dict[str, float]:
     return given
 
 
-# ---- the solvers -----------------------------------------------------------------------------------------------
+# ---- the solvers ---------------------------------------------------------------------------------
 
 
 @adapt(
@@ -256,12 +258,13 @@ def five_point(problem: Problem, n: int) -> Answer:
 def seven_point(problem: Problem, n: int) -> Answer:
     """Solve on a box by the seven-point formula and conjugate gradients.
 
-    With mixed derivatives the edges between derivative conditions would lose a logarithm, see `corner_rows`, and the
-    rows that mend it are not symmetric, as conjugate gradients need them to be: such problems are declined.
+    Where faces with derivative conditions meet, mixed derivatives cost a logarithm (see `corner_rows`), and
+    the rows that mend it are not symmetric, as conjugate gradients need them to be: such problems are declined.
     """
-    open_axes = {tuple(piece.normals(piece.point([[0.5, 0.5]]))[0] ** 2) for piece in problem.pieces if piece.kind != "dirichlet"}
-    if np.count_nonzero(problem.tensor) > 3 and len(open_axes) > 1:
-        raise Refused("mixed derivatives with derivative conditions on faces that meet in an edge")
+    derivative = [piece.name for piece in problem.pieces if piece.kind != "dirichlet"]
+    meet = any(set(edge.pieces) <= set(derivative) for edge in problem.shape.junctions)
+    if meet and np.count_nonzero(problem.tensor) > problem.dim:
+        raise Refused("mixed derivatives, with derivative conditions on faces that meet in an edge")
     return solve_on_grid(problem, n)
 
 

@@ -13,7 +13,7 @@ __all__ = ["level_shift"]
 
 
 def level_shift(problem: Problem, mean: float, value_at: Callable[[Array], Array]) -> float:
-    """Return what must be added to a solution with this mean for it to have the level of ``problem.constant``.
+    """Return what to add to a solution with this mean to give it the level of ``problem.constant``.
 
     ("mean", v): mean v over the shape; ("point", x, v): value v at x; None: mean zero.
     """

@@ -1,12 +1,13 @@
 """Linear triangular elements for div(K grad u) = 0 on planar shapes.
 
-On a triangle with corners x_1, x_2, x_3 (counter-clockwise) and area T, the hat function of corner i has the gradient
-g_i = rot(x_k - x_j) / (2 T), rot(a, b) = (-b, a), with (i, j, k) in cyclic order. Hence the element matrix T g_i . K g_j,
-exact because gradients are constant. Boundary integrals of data use the two-point Gauss rule on each edge, with the data
-of the true boundary (`piece.data` moves the points onto it). Corners that lie on a Dirichlet piece are held at its data.
+On a triangle with corners x_1, x_2, x_3 (counter-clockwise) and area T, the hat function of corner i has the
+gradient g_i = rot(x_k - x_j) / (2 T), rot(a, b) = (-b, a), with (i, j, k) in cyclic order. Hence the element
+matrix T g_i . K g_j, exact because gradients are constant. Boundary integrals of data use the two-point Gauss
+rule on each edge, with the data of the true boundary (`piece.data` moves the points onto it). Corners that
+lie on a Dirichlet piece are held at its data.
 
-Errors are O(h^2) in L2 and in the maximum norm (up to a logarithm), O(h) in the H1 seminorm; straight edges under
-curved boundaries cost no more than that.
+Errors are O(h^2) in L2 and in the maximum norm (up to a logarithm), O(h) in the H1 seminorm; straight edges
+under curved boundaries cost no more than that.
 
 References
 ----------
@@ -119,7 +120,7 @@ def boundary_mass(mesh: Mesh, piece: Piece) -> sp.csr_array:
 
 
 def held_values(mesh: Mesh, problem: Problem) -> tuple[BoolArray, Array]:
-    """Return which nodes lie on Dirichlet pieces and their values; at a corner of two pieces the later one's."""
+    """Return which nodes lie on Dirichlet pieces and their values; in a corner the later piece's."""
     held, values = np.zeros(len(mesh.points), np.bool_), np.zeros(len(mesh.points))
     for piece in problem.pieces:
         if piece.kind == "dirichlet":
@@ -130,7 +131,8 @@ def held_values(mesh: Mesh, problem: Problem) -> tuple[BoolArray, Array]:
 
 def masses(mesh: Mesh) -> Array:
     """Return the integrals of the hat functions."""
-    return np.bincount(mesh.triangles.ravel(), np.repeat(mesh.areas / 3.0, 3), minlength=len(mesh.points))
+    thirds = np.repeat(mesh.areas / 3.0, 3)
+    return np.bincount(mesh.triangles.ravel(), thirds, len(mesh.points)).astype(np.float64)
 
 
 def solved(matrix: sp.csr_array, load: Array, held: BoolArray, values: Array, weights: Array | None) -> Array:

@@ -1,8 +1,8 @@
 """Sparse symmetric systems, solved directly or by conjugate gradients.
 
-A problem with derivative conditions only leaves the constant free: the matrix maps constants to zero, and data that
-balance only up to the discretisation error have no solution. With w the measure that each unknown owns, the bordered
-system
+A problem with derivative conditions only leaves the constant free: the matrix maps constants to zero, and
+data that balance only up to the discretisation error have no solution. With w the measure that each unknown
+owns, the bordered system
 
     A u + w m = b,    w' u = 0
 

@@ -2,25 +2,26 @@
 
     u(x) = c + sum_j q_j log|x - s_j|,    sources s_j outside the closed shape,
 
-is harmonic in the shape for any strengths; they are fitted to the boundary conditions by least squares at twice as many
-boundary points. The n sources around the shape lie on the confocal ellipse (circle) that is `DILATION` times as wide in
-the sense of conformal radius; a hole has n more on a circle that much smaller. The charge of the outer sources is zero,
-because a charged curve can make any constant, and c already does; the charge in the hole is free and carries the net
-flux through it.
+is harmonic in the shape for any strengths; they are fitted to the boundary conditions by least squares at
+twice as many boundary points. The n sources around the shape lie on the confocal ellipse (circle) that is
+`DILATION` times as wide in the sense of conformal radius; a hole has n more on a circle that much smaller.
+The charge of the outer sources is zero, because a charged curve can make any constant, and c already does;
+the charge in the hole is free and carries the net flux through it.
 
-Smooth data converge like DILATION^(-n) or the distance of the nearest singularity of u outside allows. The system is
-ill conditioned on purpose; least squares with truncated singular values keeps the error near 1e-12 times the size of u,
-where it stays. Where the solution itself is singular on the boundary the method is slow: it makes no claim there.
+Smooth data converge like DILATION^(-n) or the distance of the nearest singularity of u outside allows. The
+system is ill conditioned on purpose; least squares with truncated singular values keeps the error near 1e-12
+times the size of u, where it stays. Where the solution itself is singular on the boundary the method is slow:
+it makes no claim there.
 
-References
-----------
-Fairweather & Karageorghis, The method of fundamental solutions for elliptic boundary value problems, Adv. Comput. Math.
-9 (1998) 69-95; Barnett & Betcke, J. Comput. Phys. 227 (2008) 7003-7026 (both from memory, unchecked).
+References ---------- Fairweather & Karageorghis, The method of fundamental solutions for elliptic boundary
+value problems, Adv. Comput. Math. 9 (1998) 69-95; Barnett & Betcke, J. Comput. Phys. 227 (2008) 7003-7026
+(both from memory, unchecked).
 """
 
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
 import numpy as np
@@ -116,7 +117,7 @@ def source_curves(shape: Shape, n: int) -> list[Array]:
     raise AdapterError(f"sources can be placed around discs, ellipses and annuli, got {shape!r}")
 
 
-def confocal(centre: Array, semi_axes: tuple[float, float], dilation: float, n: int) -> Array:
+def confocal(centre: Array, semi_axes: Sequence[float], dilation: float, n: int) -> Array:
     """Return n points on the ellipse with the same foci whose a + b is `dilation` times as large."""
     a, b = semi_axes
     mean, difference = 0.5 * (a + b) * dilation, 0.5 * (a - b) / dilation
@@ -167,4 +168,5 @@ def truncated_least_squares(rows: Array, load: Array) -> Array:
     size = np.linalg.norm(rows, axis=0)
     size[size == 0.0] = 1.0
     solution, *_ = np.linalg.lstsq(rows / size, load, rcond=CUT)
-    return solution / size
+    unscaled: Array = solution / size
+    return unscaled
