@@ -88,7 +88,7 @@ class Shape(ABC):
     hand.
     """
 
-    splits: tuple[tuple[str, tuple[float, ...]], ...] = field(default=(), kw_only=True)
+    splits: tuple[tuple[str, Sequence[float]], ...] = field(default=(), kw_only=True)
 
     kind: ClassVar[str]
     dim: ClassVar[int]
@@ -292,7 +292,7 @@ class Shape(ABC):
                 raise GeometryError(
                     f"{name!r} is already split at {list(merged[name])}; give all in one call"
                 )
-            merged[name] = tuple(values)
+            merged[name] = values
         return replace(self, splits=tuple(merged.items()))
 
     def __repr__(self) -> str:

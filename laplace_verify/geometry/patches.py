@@ -174,6 +174,8 @@ def _subdivide(chart: Chart, targets: Array, cell: float | None) -> tuple[Array,
     lower, upper = chart.lower, chart.upper
     box = np.arange(len(lower), dtype=np.int64)
     lengths, centres = _measure(chart, lower, upper, box)
+    if cell is not None and np.maximum(1.0, lengths / cell).prod(axis=1).sum() > 4 * MAX_PATCHES:
+        raise _too_fine(cell)
     extent = float(np.sqrt((lengths**2).sum(axis=1)).max())
     # below `floor` a point of the patch could no longer be told from the singular point in float64
     floor = np.maximum(
@@ -191,13 +193,17 @@ def _subdivide(chart: Chart, targets: Array, cell: float | None) -> tuple[Array,
         done.append((lower[keep], upper[keep], box[keep], near[keep]))
         total += int(keep.sum())
         if total + 2 * int(split.sum()) > MAX_PATCHES:
-            raise GeometryError(f"cell={cell!r} asks for over {MAX_PATCHES} patches; take a larger one")
+            raise _too_fine(cell)
         lower, upper, box = _bisect(lower[split], upper[split], box[split], lengths[split])
         if len(lower):
             lengths, centres = _measure(chart, lower, upper, box)
     parts = zip(*done, strict=True)
     low, high, index, graded = (np.concatenate(part) for part in parts)
     return low, high, index, graded
+
+
+def _too_fine(cell: float | None) -> GeometryError:
+    return GeometryError(f"cell={cell!r} asks for over {MAX_PATCHES} patches; take a larger one")
 
 
 def _bisect(lower: Array, upper: Array, box: IntArray, lengths: Array) -> tuple[Array, Array, IntArray]:

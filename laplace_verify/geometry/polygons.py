@@ -219,6 +219,8 @@ class Polygon(_Polygonal):
             raise GeometryError(
                 "vertices run clockwise, but the outer boundary must run counter-clockwise: reverse the order"
             )
+        if not isinstance(self.holes, Sequence | np.ndarray):
+            raise GeometryError(f"holes must be a list of lists of vertices, got {self.holes!r}")
         holes = tuple(_vertices(hole, f"hole {k}") for k, hole in enumerate(self.holes, start=1))
         for k, hole in enumerate(holes, start=1):
             check_loop(hole, f"hole {k}", hole=True)

@@ -9,8 +9,6 @@ from collections.abc import Mapping
 from dataclasses import fields
 from typing import Any
 
-import numpy as np
-
 from laplace_verify.errors import GeometryError, nearest_names
 from laplace_verify.geometry.base import Shape
 from laplace_verify.geometry.cartesian import Box, Interval, Rectangle
@@ -90,4 +88,4 @@ def shape_from_spec(spec: Mapping[str, Any]) -> Shape:
 
 def _plain(value: Any) -> Any:
     """Return nested tuples as nested lists."""
-    return [_plain(item) for item in value] if np.ndim(value) or isinstance(value, tuple) else value
+    return [_plain(item) for item in value] if isinstance(value, tuple) else value
