@@ -79,7 +79,7 @@ def test_nearest_point_of_an_ellipse_has_its_normal_towards_the_point():
     offset, gradient = points - foot, foot / np.array([a, b]) ** 2
     cross = offset[:, 0] * gradient[:, 1] - offset[:, 1] * gradient[:, 0]
     size = np.linalg.norm(offset, axis=1) * np.linalg.norm(gradient, axis=1)
-    assert np.abs(cross) == pytest.approx(0.0, abs=1e-7 * size.max())
+    assert np.abs(cross) == pytest.approx(0.0, abs=1e-12 * size.max())
 
 
 def test_projection_on_half_an_ellipse_may_have_to_pass_over_the_nearer_half():

@@ -6,6 +6,8 @@ from fractions import Fraction
 import mpmath
 import numpy as np
 import pytest
+from hypothesis import given
+from hypothesis import strategies as st
 from mpmath import mpf
 
 import laplace_verify as lv
@@ -265,6 +267,50 @@ def test_cells_are_no_larger_than_asked_and_keep_the_measure(shape):
     for at in shape.sample(5, seed=3):
         assert radius(points, at).min() < cell
     assert len(points) >= shape.measure / cell**shape.dim
+
+
+def test_cells_of_the_boundary_are_no_larger_than_asked(plane_shape):
+    cell = plane_shape.extent / 7
+    for name, (points, normals, weights) in plane_shape.boundary_quadrature(1, cell=cell).items():
+        piece = plane_shape.pieces[name]
+        assert weights.sum() == pytest.approx(piece.measure, rel=1e-13)
+        assert len(points) == len(normals) >= piece.measure / cell * 0.99
+        for at in piece.point(np.linspace(0.0, 1.0, 20)):
+            assert radius(points, at).min() <= cell
+
+
+@given(
+    inner=st.floats(0.05, 0.9),
+    place=st.floats(0.0, 0.95),
+    angle=st.floats(0.0, 6.3),
+    size=st.floats(1e-3, 1e3),
+)
+def test_any_eccentric_annulus_is_a_disc_less_a_disc(inner, place, angle, size):
+    offset = place * (1.0 - inner)
+    centre = (size * offset * math.cos(angle), size * offset * math.sin(angle))
+    shape = lv.Annulus((0.0, 0.0), size * inner, size, inner_centre=centre)
+    points, weights = shape.quadrature(2)
+    exact = (
+        ball_moment((2, 0), size)
+        - math.pi * (size * inner) ** 2 * centre[0] ** 2
+        - ball_moment((2, 0), size * inner)
+    )
+    assert weights.sum() == pytest.approx(shape.measure, rel=1e-12)
+    assert weights @ points[:, 0] ** 2 == pytest.approx(exact, rel=1e-11)
+    assert (weights > 0.0).all()
+    assert shape.contains(points).all()
+    assert shape.contains(shape.sample(10, seed=2)).all()
+
+
+def test_a_pole_just_outside_is_resolved_without_a_cell():
+    # log |x - p| is harmonic: its mean over a disc is its value at the centre, however near p is to the rim
+    disc = lv.Disc((0, 0), 1.0)
+    for gap in (0.05, 1e-3, 1e-6):
+        at = (1.0 + gap, 0.0)
+        points, weights = disc.quadrature(4, singular=[at])
+        assert weights @ np.log(radius(points, at)) == pytest.approx(math.pi * math.log1p(gap), abs=1e-10)
+        points, _, weights = disc.pieces["rim"].quadrature(4, singular=[at])
+        assert weights @ np.log(radius(points, at)) == pytest.approx(2 * math.pi * math.log1p(gap), abs=1e-10)
 
 
 def test_cells_resolve_a_kink():
