@@ -179,8 +179,7 @@ def impose_conditions(
 
 def solved(matrix: Array, load: Array) -> Array:
     """Return the solution of a dense system."""
-    solution: Array = np.linalg.solve(matrix, load)
-    return solution
+    return np.linalg.solve(matrix, load).astype(np.float64)
 
 
 def balanced(matrix: Array, load: Array, grid: ChebyshevGrid) -> Array:

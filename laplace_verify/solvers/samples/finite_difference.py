@@ -259,7 +259,7 @@ def seven_point(problem: Problem, n: int) -> Answer:
     """Solve on a box by the seven-point formula and conjugate gradients.
 
     Where faces with derivative conditions meet, mixed derivatives cost a logarithm (see `corner_rows`), and
-    the rows that mend it are not symmetric, as conjugate gradients need them to be: such problems are declined.
+    the rows that mend it are not symmetric, as conjugate gradients need: such problems are declined.
     """
     derivative = [piece.name for piece in problem.pieces if piece.kind != "dirichlet"]
     meet = any(set(edge.pieces) <= set(derivative) for edge in problem.shape.junctions)
