@@ -212,8 +212,11 @@ def case(
     is_shape(shape)
     _check_words(id, field)
     if field.dim != shape.dim:
+        hint = (
+            f"; say dim={shape.dim} where the field is made" if field.opaque and field.dim < shape.dim else ""
+        )
         raise ProblemError(
-            f"the field has dimension {field.dim}, the shape {shape!r} has dimension {shape.dim}"
+            f"the field has dimension {field.dim}, the shape {shape!r} has dimension {shape.dim}{hint}"
         )
     k = as_conductivity(conductivity, shape.dim)
     tensor = as_tensor(k, shape.dim)

@@ -57,7 +57,7 @@ def sides_on(field: Field, boundary: Boundary, points: Array, size: float) -> Ar
         return None
     sides = np.zeros(len(points))
     for cut in field.cuts:
-        on = (cut.distance(points) <= AT_POINT * size) & ~near(points, cut.start, size)
+        on = (cut.distance(points) <= AT_POINT * size) & (points != cut.start).any(axis=1)
         if on.any():
             sides[on] = _lips(cut, boundary, points[on], size)
     return sides if sides.any() else None

@@ -36,6 +36,7 @@ Scale: TypeAlias = float | tuple[float, str] | None
 LENGTHS = frozenset({"a", "b", "lower", "upper", "centre", "radius", "semi_axes", "inner", "outer"}) | {
     "inner_centre", "size", "vertices", "holes", "z0", "z1",
 }  # fmt: skip
+EPS = float(np.finfo(np.float64).eps)
 RATIOS = frozenset({"opening", "splits"})  # angles and fractions stay
 
 
@@ -131,7 +132,7 @@ def scaled_quantity(
         quantity,
         value=quantity.value * factor,
         # the factor itself is rounded, and the product once more
-        radius=quantity.radius * factor + 8 * np.finfo(np.float64).eps * abs(quantity.value * factor),
+        radius=quantity.radius * factor + 8 * EPS * abs(quantity.value * factor),
         unit=units.of(quantity.kind, dim),
         where=tuple(c * length for c in where) if isinstance(where, tuple) else where,
     )
