@@ -46,7 +46,7 @@ def test_a_singular_flux_is_integrated_with_an_honest_radius(piece) -> None:
 
 
 def test_a_strong_singularity_off_the_origin_has_an_honest_radius() -> None:
-    # u = r^(1/4) sin(theta/4) about the tip (0.3, 0.1): the flux through the upper lip is -r^(-3/4)/4 a length,
+    # u = r^(1/4) sin(theta/4) about the tip (0.3, 0.1): the flux through the upper lip is -r^(-3/4)/4,
     # its integral over a lip of length 1 is -1
     tip = (0.3, 0.1)
     shape = lv.Polygon([(1.3, 0.1), tip, (1.3, 0.1), (1.3, 1.0), (-1, 1.0), (-1, -1), (1.3, -1)])
