@@ -1,0 +1,164 @@
+"""One solver over many cases and laws: everything that was found, in one record."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterable, Iterator, Sequence
+from concurrent.futures import Executor, as_completed
+from functools import partial
+from typing import Any
+
+from laplace_verify.campaign.gathering import now
+from laplace_verify.campaign.identity import case_info, environment, solver_identity
+from laplace_verify.campaign.isolation import Failure, run_isolated
+from laplace_verify.campaign.record import Record, Settings
+from laplace_verify.cases import catalogue
+from laplace_verify.errors import AdapterError
+from laplace_verify.measure import Study, Verdict, study
+from laplace_verify.measure.levels import check_sizes
+from laplace_verify.principles import LAWS, Check, check_principle
+from laplace_verify.problems import Case
+from laplace_verify.solvers import Adapter, load_solver
+from laplace_verify.version import __version__
+
+__all__ = ["chosen_cases", "verify"]
+
+Progress = Callable[[Study | Check], None]
+
+
+def verify(
+    solver: Adapter | str,
+    cases: Iterable[str | Case] | None = None,
+    principles: bool = True,
+    sizes: Sequence[int] | None = None,
+    executor: Executor | None = None,
+    seed: int = 0,
+    time_limit: float | None = None,
+    *,
+    workers: int = 1,
+    progress: Progress | None = None,
+    command: str = "",
+) -> Record:
+    """Study a solver on every case, check every law, and return the record.
+
+    Parameters
+    ----------
+    solver
+        An adapter, or ``module:object`` or ``path/to/file.py:object``.
+    cases
+        Ids or cases; None: the whole catalogue, of which those beyond the declared capabilities come back as
+        NOT_APPLICABLE.
+    principles
+        Whether the laws of harmonic functions are checked too.
+    sizes
+        Resolution numbers, rising, three or more; None: those of the solver, else the defaults.
+    executor
+        Any concurrent.futures Executor; solver and cases must then be picklable. None: child processes of our
+        own, `workers` at a time, each isolated from all others.
+    seed
+        Of everything random; the same seed gives the same record, times and host apart.
+    time_limit
+        Seconds for one study or check, after which it is an ERROR; not kept with an `executor`.
+    progress
+        Called with every study and check as it ends.
+    command
+        The command that repeats the run, for the report.
+
+    Raises
+    ------
+    AdapterError, UnknownCaseError
+        If there is no such solver or case, or the sizes are not three or more, rising. What a solver does never raises: it is in the record.
+
+    Examples
+    --------
+    >>> record = verify("laplace_verify.solvers.samples:five_point", ["plate-saddle"], principles=False)
+    >>> [str(study.verdict) for study in record.studies]
+    ['PASS']
+    """
+    if workers < 1:
+        raise AdapterError(f"workers must be 1 or more, got {workers}")
+    if sizes is not None:
+        check_sizes(sizes)
+    adapter = load_solver(solver)
+    source = solver if isinstance(solver, str) else ""
+    chosen = chosen_cases(cases)
+    laws = list(LAWS) if principles else []
+    started = now()
+    jobs: list[Callable[[], Study | Check]] = [
+        *(partial(study, adapter, case, sizes=sizes, seed=seed) for case in chosen),
+        *(partial(check_principle, adapter, law, seed=seed) for law in laws),
+    ]
+    results: list[Any] = [None] * len(jobs)
+    ended = _by_executor(jobs, executor) if executor else run_isolated(jobs, workers, time_limit)
+    for index, result in ended:
+        if isinstance(result, Failure):
+            result = (
+                _broken_study(adapter, chosen[index], seed, result)
+                if index < len(chosen)
+                else _broken_check(laws[index - len(chosen)], result)
+            )
+        results[index] = result
+        if progress is not None:
+            progress(result)
+    return Record(
+        package_version=__version__,
+        solver=solver_identity(adapter, source),
+        environment=environment(),
+        settings=Settings(
+            seed=seed,
+            sizes=None if sizes is None else tuple(sizes),
+            cases=None if cases is None else tuple(case.id for case in chosen),
+            principles=principles,
+            time_limit=time_limit,
+        ),
+        command=command,
+        started=started,
+        finished=now(),
+        studies=tuple(results[: len(chosen)]),
+        checks=tuple(results[len(chosen) :]),
+        cases=tuple(case_info(case) for case in chosen),
+    )
+
+
+def chosen_cases(cases: Iterable[str | Case] | None) -> list[Case]:
+    """Return the cases asked for by id or as they are; None: the whole catalogue.
+
+    Raises
+    ------
+    UnknownCaseError
+        If the catalogue has no case of an id; the nearest ids are named.
+    """
+    if cases is None:
+        return list(catalogue.values())
+    if isinstance(cases, str | Case):
+        cases = [cases]
+    return [case if isinstance(case, Case) else catalogue[case] for case in cases]
+
+
+def _by_executor(jobs: Sequence[Callable[[], Any]], executor: Executor) -> Iterator[tuple[int, Any]]:
+    """Run the jobs through an executor of the user's and yield (index, result) as they end."""
+    futures = {executor.submit(job): index for index, job in enumerate(jobs)}
+    for future in as_completed(futures):
+        cause = future.exception()
+        yield (
+            futures[future],
+            Failure(reason=f"{type(cause).__name__}: {cause}") if cause else future.result(),
+        )
+
+
+def _broken_study(solver: Adapter, case: Case, seed: int, failure: Failure) -> Study:
+    """Return the study of a process that gave no result."""
+    return Study(
+        solver=solver.name,
+        case_id=case.id,
+        case_title=case.title,
+        verdict=Verdict.ERROR,
+        sizes=[],
+        seed=seed,
+        reasons=[failure.reason],
+        crash=failure.crash,
+    )
+
+
+def _broken_check(law: str, failure: Failure) -> Check:
+    """Return the check of a process that gave no result."""
+    return Check(law=law, verdict=Verdict.ERROR, reason=failure.reason)
