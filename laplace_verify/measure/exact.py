@@ -1,7 +1,7 @@
 """The exact solution at sample points: evaluated once per point set, NaN where it has no single value.
 
-Points on a branch cut (the lips of a slit), at a jump or pole, or off the shape where the field does not hold,
-carry no error; the norms leave them out and report their share.
+Points on a branch cut (the lips of a slit), at a jump or pole, or off the shape where the field does not
+hold, carry no error; the norms leave them out and report their share.
 """
 
 from __future__ import annotations

@@ -1,24 +1,24 @@
 """The order theory lets us expect: the formal order after the regularity of solution and domain.
 
-Notation: p formal order, k = p - 1 the degree of a finite element, s = regularity.solution (u - smooth ~ r^s at the
-worst singular point, inf if smooth, 0 at a jump of the data), d = regularity.domain (the smallest exponent
-pi/opening, or pi/(2 opening) where Dirichlet meets Neumann or Robin, over all corners). The order decides only
-where a theorem proves it for the norm; elsewhere it is None or shown without deciding.
+Notation: p formal order, k = p - 1 the degree of a finite element, s = regularity.solution (u - smooth ~ r^s
+at the worst singular point, inf if smooth, 0 at a jump of the data), d = regularity.domain (the smallest
+exponent pi/opening, or pi/(2 opening) where Dirichlet meets Neumann or Robin, over all corners). The order
+decides only where a theorem proves it for the norm; elsewhere it is None or shown without deciding.
 
 Derivation for the grid methods with 0 < s < inf: the truncation error h^p r^(s-2-p) leaves a local error
-h^p r^(s-p) for r > h, capped by h^s at the corner, and a pollution h^(s+min(d,p)) r^(-d) carried by the dual corner
-function. Their maximum is O(h^s); integrated over two dimensions (edges in space have codimension two) the squares
-give O(h^min(p, s+min(d,p), s+1)) in L2 and the moduli O(h^min(p, s+min(d,p), s+2)) in L1.
+h^p r^(s-p) for r > h, capped by h^s at the corner, and a pollution h^(s+min(d,p)) r^(-d) carried by the dual
+corner function. Their maximum is O(h^s); integrated over two dimensions (edges in space have codimension two)
+the squares give O(h^min(p, s+min(d,p), s+1)) in L2 and the moduli O(h^min(p, s+min(d,p), s+2)) in L1.
 
 References
 ----------
-Gerschgorin 1930, Z. angew. Math. Mech. 10, 373-382; Forsythe & Wasow 1960 (maximum norm, smooth solution). Laasonen
-1957, "On the degree of convergence of discrete approximations for the solutions of the Dirichlet problem", and
-Bramble, Hubbard & Zlamal 1968, SIAM J. Numer. Anal. 5 (corners: s at the corner, 2 pi/opening inside). Wasow 1957
-and Bramble, Hubbard & Thomee 1969 (discontinuous data). Strang & Fix 1973, Babuska 1970 and Ciarlet 1978 (finite
-elements). Apel, Nicaise & Pfefferer 2016, "Discretization of the Poisson equation with non-smooth data", IMA
-J. Numer. Anal. (jumps: L2 only). Eymard, Gallouet & Herbin 2000, "Finite volume methods". Trefethen 2000,
-"Spectral methods in Matlab". All from memory, unchecked.
+Gerschgorin 1930, Z. angew. Math. Mech. 10, 373-382; Forsythe & Wasow 1960 (maximum norm, smooth solution).
+Laasonen 1957, "On the degree of convergence of discrete approximations for the solutions of the Dirichlet
+problem", and Bramble, Hubbard & Zlamal 1968, SIAM J. Numer. Anal. 5 (corners: s at the corner, 2 pi/opening
+inside). Wasow 1957 and Bramble, Hubbard & Thomee 1969 (discontinuous data). Strang & Fix 1973, Babuska 1970
+and Ciarlet 1978 (finite elements). Apel, Nicaise & Pfefferer 2016, "Discretization of the Poisson equation
+with non-smooth data", IMA J. Numer. Anal. (jumps: L2 only). Eymard, Gallouet & Herbin 2000, "Finite volume
+methods". Trefethen 2000, "Spectral methods in Matlab". All from memory, unchecked.
 """
 
 from __future__ import annotations
@@ -98,8 +98,8 @@ def expected_order(
     Parameters
     ----------
     kind : str
-        "finite difference", "finite volume", "finite element", "spectral", "boundary element", "stochastic" or
-        "other".
+        "finite difference", "finite volume", "finite element", "spectral", "boundary element", "stochastic"
+        or "other".
     norm : str
         A norm of the study, such as "max" or "flux:top".
     formal : callable

@@ -40,14 +40,16 @@ def features(case: Case, exact: Exact) -> dict[str, Feature]:
         "several kinds of condition": len(set(kinds.values())) > 1,
         "tensor conductivity": tensor,
         "conductivity other than 1": not np.allclose(problem.tensor, np.eye(shape.dim), rtol=SMALL, atol=0.0),
-        "off-diagonal conductivity": tensor and bool(np.any(problem.tensor != np.diag(np.diag(problem.tensor)))),
+        "off-diagonal conductivity": tensor
+        and bool(np.any(problem.tensor != np.diag(np.diag(problem.tensor)))),
         "curved boundary": any(piece.curved for piece in problem.pieces),
         "sides off the axes": any(_oblique(piece) for piece in problem.pieces),
         "unequal extents": not np.allclose(upper - lower, (upper - lower)[0], rtol=SMALL, atol=0.0),
         "corner of the box not at the origin": bool(np.any(np.abs(lower) > SMALL * shape.extent)),
         "re-entrant corner": any(j.opening > math.pi + SMALL for j in shape.junctions),
         "change of condition inside a side": any(
-            abs(j.opening - math.pi) < SMALL and kinds[j.pieces[0]] != kinds[j.pieces[1]] for j in shape.junctions
+            abs(j.opening - math.pi) < SMALL and kinds[j.pieces[0]] != kinds[j.pieces[1]]
+            for j in shape.junctions
         ),
         "jump in the boundary data": bool(len(regularity.jumps)),
         "singular solution": not smooth,

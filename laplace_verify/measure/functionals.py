@@ -1,8 +1,8 @@
 """Single numbers and boundary norms of one answer: traces, fluxes, flux densities, quantities, probes.
 
-The flux through a piece is int n . K grad u over it, n outward: what flows in where it is positive. Fluxes and quantities
-are measured only if the solver reports them; probes are read off the answer where it can be evaluated. Signed errors are
-kept, because a functional whose error passes through zero shows any order.
+The flux through a piece is int n . K grad u over it, n outward: what flows in where it is positive. Fluxes
+and quantities are measured only if the solver reports them; probes are read off the answer where it can be
+evaluated. Signed errors are kept, because a functional whose error passes through zero shows any order.
 """
 
 from __future__ import annotations
@@ -76,9 +76,8 @@ def probes(case: Case) -> list[tuple[Array, float]]:
     """Return points (1, d) and exact values of the case's quantities of kind "value", in order."""
     found = []
     for quantity in case.quantities.values():
-        if quantity.kind == "value":
-            point = np.asarray([float(c) for c in np.atleast_1d(quantity.where)], dtype=np.float64)
-            found.append((point[np.newaxis], float(quantity.value)))
+        if quantity.kind == "value" and isinstance(quantity.where, tuple):
+            found.append((np.array([quantity.where], dtype=np.float64), float(quantity.value)))
     return found
 
 
@@ -87,7 +86,8 @@ def measure_functionals(
 ) -> Functionals:
     """Return everything but the interior norms.
 
-    `shift` is taken off a pure Neumann answer first; `scale`, the largest |u|, makes errors of values relative.
+    `shift` is taken off a pure Neumann answer first; `scale`, the largest |u|, makes errors of values
+    relative.
     """
     result = Functionals()
     for piece in case.problem.pieces:

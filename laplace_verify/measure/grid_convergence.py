@@ -1,7 +1,7 @@
 """Grid convergence without an exact value: extrapolation from three grids of any ratio.
 
-With phi_1, phi_2, phi_3 on the fine, medium and coarse grid, r21 = h2/h1, r32 = h3/h2, eps21 = phi_2 - phi_1 and
-eps32 = phi_3 - phi_2, the apparent order p solves
+With phi_1, phi_2, phi_3 on the fine, medium and coarse grid, r21 = h2/h1, r32 = h3/h2, eps21 = phi_2 - phi_1
+and eps32 = phi_3 - phi_2, the apparent order p solves
 
     p = | ln|eps32/eps21| + q(p) | / ln r21,   q(p) = ln[(r21^p - s)/(r32^p - s)],   s = sign(eps32/eps21),
 
@@ -9,9 +9,9 @@ phi_ext = (r21^p phi_1 - phi_2)/(r21^p - 1) and the index is 1.25 |(phi_1 - phi_
 
 References
 ----------
-Celik, Ghia, Roache, Freitas, Coleman & Raad 2008, "Procedure for estimation and reporting of uncertainty due to
-discretization in CFD applications", J. Fluids Eng. 130, 078001. Roache 1994, J. Fluids Eng. 116, 405-413, for the
-safety factor 1.25 with three grids.
+Celik, Ghia, Roache, Freitas, Coleman & Raad 2008, "Procedure for estimation and reporting of uncertainty due
+to discretization in CFD applications", J. Fluids Eng. 130, 078001. Roache 1994, J. Fluids Eng. 116, 405-413,
+for the safety factor 1.25 with three grids.
 """
 
 from __future__ import annotations
@@ -38,8 +38,9 @@ class GridConvergence:
 
     `order`, `extrapolated`, `index` and `extrapolated_error` are None where the three values give none
     (`behaviour` "divergent" or "converged"). `index`, `approximate_error` = |(phi_1 - phi_2)/phi_1| and
-    `extrapolated_error` = |(phi_ext - phi_1)/phi_ext| are fractions, not percent. `coarse_index` is the index of
-    the medium grid; coarse_index / (r21^order index), near 1 in the asymptotic range, is `asymptotic_ratio`.
+    `extrapolated_error` = |(phi_ext - phi_1)/phi_ext| are fractions, not percent. `coarse_index` is the index
+    of the medium grid; coarse_index / (r21^order index), near 1 in the asymptotic range, is
+    `asymptotic_ratio`.
     """
 
     extrapolated: float | None
@@ -65,9 +66,9 @@ def grid_convergence(values: npt.ArrayLike, h: npt.ArrayLike) -> GridConvergence
     Returns
     -------
     GridConvergence
-        `behaviour` is "monotone", "oscillatory" (the differences change sign: the order is an estimate at best),
-        "divergent" (the differences do not shrink with h: no order) or "converged" (the two finest agree to
-        rounding: no order can be seen).
+        `behaviour` is "monotone", "oscillatory" (the differences change sign: the order is an estimate at
+        best), "divergent" (the differences do not shrink with h: no order) or "converged" (the two finest
+        agree to rounding: no order can be seen).
 
     Raises
     ------

@@ -1,15 +1,16 @@
 """The verdict: the observed order of every deciding norm against the expected one, three-valued.
 
-With tol half of the smallest loss of order to be seen and se the standard error of the fit over K >= 4 levels:
+With tol half of the smallest loss of order to be seen and se the standard error of the fit over K >= 4
+levels:
 
     PASS if p >= p_exp - tol + 2 se and the last pair slope >= p_exp - tol - 2 sqrt(2) sigma / ln(ratio),
     FAIL if p <= p_exp - tol - 2 se,
     otherwise INCONCLUSIVE: another level may settle it.
 
-The rule is one-sided: convergence faster than expected passes. Simulated over sequences with noise of 2 to 5 %, next-order
-terms of -50 to 100 % on the coarsest grid and p = 2, sound and one-order-low methods are told apart without an error in
-60000 (below 5e-5 at 95 %); the tests repeat a part of that simulation. An order study cannot see a defect whose
-error is still below the method's own on the finest level.
+The rule is one-sided: convergence faster than expected passes. Simulated over sequences with noise of 2 to 5
+%, next-order terms of -50 to 100 % on the coarsest grid and p = 2, sound and one-order-low methods are told
+apart without an error in 60000 (below 5e-5 at 95 %); the tests repeat a part of that simulation. An order
+study cannot see a defect whose error is still below the method's own on the finest level.
 
 References
 ----------
@@ -64,7 +65,7 @@ def judge(
         series = series_of(norm, levels, error_floor)
         order = judge_norm(series, expectation, noise)
         if mixed_signs and norm in mixed_signs and not series.exact:
-            order = replace(order, decides=False, verdict=None, note=f"{norm}: {mixed_signs[norm]}")
+            order = replace(order, verdict=None, note=f"{norm}: {mixed_signs[norm]}")
         pairs = pair_orders(
             [level.h for level in levels], [level.errors.get(norm, math.nan) for level in levels]
         )
@@ -91,16 +92,17 @@ def judge_norm(series: Series, expectation: Expectation, noise: float) -> Order:
 def combine(orders: Mapping[str, Order]) -> tuple[Verdict, list[str], list[str]]:
     """Return verdict, reasons and remarks: every deciding norm must pass and none may fail.
 
-    A functional (flux, quantity) may fail a study but not leave it open: its signed error can pass through zero.
+    A functional (flux, quantity) may fail a study but not leave it open: its signed error can pass through
+    zero.
     """
     deciding = {norm: order for norm, order in orders.items() if order.decides and order.verdict is not None}
-    remarks = [order.note for norm, order in orders.items() if norm not in deciding and order.note]
-    open_functionals = [
-        norm for norm, order in deciding.items()
-        if is_functional(norm) and order.verdict is Verdict.INCONCLUSIVE
+    remarks = [
+        order.note for norm, order in orders.items()
+        if norm not in deciding and (order.verdict is Verdict.FAIL or (order.decides and order.note))
     ]  # fmt: skip
-    for norm in open_functionals:
-        remarks.append(deciding.pop(norm).note)
+    for norm in [norm for norm in deciding if is_functional(norm)]:
+        if deciding[norm].verdict is Verdict.INCONCLUSIVE:
+            remarks.append(deciding.pop(norm).note)
     if not deciding:
         return Verdict.INCONCLUSIVE, ["theory promises no rate in any norm that could be measured"], remarks
     verdicts = [order.verdict for order in deciding.values()]
@@ -156,7 +158,8 @@ def _algebraic(series: Series, expected: float, fit: OrderFit | None, noise: flo
 def _down_to_floor(series: Series, least: float, noise: float) -> Finding:
     """Return the finding where fewer than four levels lie above the floor.
 
-    The slope into the first level at the floor is a lower bound of the order: the floor only adds to the error.
+    The slope into the first level at the floor is a lower bound of the order: the floor only adds to the
+    error.
     """
     top = series.above
     h, errors = series.h[: top + 1], series.errors[: top + 1]
@@ -182,12 +185,15 @@ def _advice(series: Series) -> str:
     return f"run finer sizes, {2 * series.sizes[-1]}, {4 * series.sizes[-1]}, {8 * series.sizes[-1]}"
 
 
-def _order(
-    series: Series, expectation: Expectation, fit: OrderFit | None, finding: Finding | None
-) -> Order:
+def _order(series: Series, expectation: Expectation, fit: OrderFit | None, finding: Finding | None) -> Order:
     """Assemble an Order and its sentence."""
     expected = expectation.expected
-    if finding and finding.verdict is Verdict.PASS and len(series.sizes) < MINIMUM_LEVELS and not series.exact:
+    if (
+        finding
+        and finding.verdict is Verdict.PASS
+        and len(series.sizes) < MINIMUM_LEVELS
+        and not series.exact
+    ):
         words = f"{finding.words}; {_few(series)}" if finding.words else _few(series)
         finding = Finding(Verdict.INCONCLUSIVE, words, finer=True)
     return Order(
@@ -211,9 +217,7 @@ def _few(series: Series) -> str:
     return f"{len(series.sizes)} levels can be judged, a verdict needs {MINIMUM_LEVELS}; {_advice(series)}"
 
 
-def _sentence(
-    series: Series, expectation: Expectation, fit: OrderFit | None, finding: Finding | None
-) -> str:
+def _sentence(series: Series, expectation: Expectation, fit: OrderFit | None, finding: Finding | None) -> str:
     """Return, say, "max: formal order 2, expected 2, observed 1.02 [0.95, 1.09] over 4 levels: FAIL"."""
     parts = []
     formal, expected = expectation.formal, expectation.expected

@@ -22,7 +22,9 @@ def sign_changes(signed: Sequence[dict[str, float]]) -> dict[str, str]:
     for norm in names:
         values = [level[norm] for level in signed if norm in level]
         if not (all(value > 0 for value in values) or all(value < 0 for value in values)):
-            found[norm] = "the signed error passes through zero, so no order can be read off; it does not decide"
+            found[norm] = (
+                "the signed error passes through zero, so no order can be read off; it does not decide"
+            )
     return found
 
 

@@ -1,8 +1,8 @@
 """The observed order of a sequence of errors, between levels and by a fit with an interval.
 
-Model: ln e_k = ln C + p ln h_k + delta_k, where delta is noise of standard deviation sigma plus next-order terms
-D (h_k/h_0)^q with unknown D ~ N(0, sD^2). In logarithms this is a linear Gaussian model, whose best linear estimate
-is generalised least squares with
+Model: ln e_k = ln C + p ln h_k + delta_k, where delta is noise of standard deviation sigma plus next-order
+terms D (h_k/h_0)^q with unknown D ~ N(0, sD^2). In logarithms this is a linear Gaussian model, whose best
+linear estimate is generalised least squares with
 
     Sigma = sigma^2 I + sD^2 sum_q v_q v_q^T,   v_q = (h_k/h_0)^q,   q = 1, 2 and the expected order,
     (ln C, p) = (X^T Sigma^-1 X)^-1 X^T Sigma^-1 ln e,   X = [1, ln h],
@@ -22,6 +22,7 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 import numpy.typing as npt
@@ -137,8 +138,9 @@ def fit_order(
 def noise_level(kind: str, sizes: Sequence[int], h: Sequence[float]) -> float:
     """Return the scatter to assume for a sequence of grids.
 
-    0.03 if a finite-difference or finite-volume grid is nested (every size a multiple of the one before) and h
-    follows 1/size; 0.1 if h does not follow 1/size within 5 % (unrelated meshes); 0.05 otherwise.
+    0.03 for nested grids (every size a multiple of the one before) of finite differences or volumes, and of
+    any kind if h follows 1/size within 1 %; 0.1 if h does not follow 1/size within 5 % (unrelated meshes);
+    0.05 otherwise.
 
     >>> noise_level("finite difference", [8, 16, 32], [1/8, 1/16, 1/32])
     0.03
@@ -153,8 +155,8 @@ def noise_level(kind: str, sizes: Sequence[int], h: Sequence[float]) -> float:
     slack = 1.5 / n[:-1]
     if np.any(np.abs(followed - 1) > 0.05 + slack):
         return UNRELATED_NOISE
-    nested = all(fine % coarse == 0 for coarse, fine in zip(sizes, sizes[1:], strict=False))
-    structured = kind in ("finite difference", "finite volume")
+    nested = all(fine % coarse == 0 for coarse, fine in pairwise(sizes))
+    structured = kind in ("finite difference", "finite volume") or bool(np.all(np.abs(followed - 1) <= 0.01))
     return NESTED_NOISE if nested and structured else USUAL_NOISE
 
 

@@ -51,7 +51,9 @@ def error_map(size: int, points: Array, signed: Array, generator: np.random.Gene
     return ErrorMap(size=size, points=points[chosen].tolist(), errors=signed[chosen].tolist())
 
 
-def _chosen(count: int, most: int, generator: np.random.Generator) -> np.ndarray[tuple[int], np.dtype[np.int64]]:
+def _chosen(
+    count: int, most: int, generator: np.random.Generator
+) -> np.ndarray[tuple[int], np.dtype[np.int64]]:
     """Return up to `most` of range(count), in order."""
     if count <= most:
         return np.arange(count)

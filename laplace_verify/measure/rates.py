@@ -1,8 +1,8 @@
 """Rates that are no number: geometric convergence, plain decrease, and errors that do not fall at all.
 
-An error C exp(-b n) has the local order ln(e_1/e_2)/ln(n_2/n_1) = b (n_2 - n_1)/ln(n_2/n_1), which grows like n; for
-root-exponential convergence exp(-c sqrt n) it grows like sqrt n; for an algebraic method it stays. A growth of the local
-order by the fourth root of the growth of n therefore tells them apart (derived here).
+An error C exp(-b n) has the local order ln(e_1/e_2)/ln(n_2/n_1) = b (n_2 - n_1)/ln(n_2/n_1), which grows like
+n; for root-exponential convergence exp(-c sqrt n) it grows like sqrt n; for an algebraic method it stays. A
+growth of the local order by the fourth root of the growth of n therefore tells them apart (derived here).
 """
 
 from __future__ import annotations

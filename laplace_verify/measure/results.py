@@ -22,10 +22,10 @@ Feature: TypeAlias = bool | float | str | None
 class Level:
     """One size: its spacing, its cost and its errors.
 
-    `errors` and `relative` map a norm to ||u_h - u|| and ||u_h - u|| / ||u||. With lengths in L and values in U
-    an L2 error is in U L^(d/2), an H1-semi error in U L^(d/2 - 1); relative errors have no unit. A norm that
-    could not be measured is absent. `moves` maps a piece to the largest distance by which data points were
-    moved onto it, `left_out` is the share of the sample points outside the solver's mesh.
+    `errors` and `relative` map a norm to ||u_h - u|| and ||u_h - u|| / ||u||. With lengths in L and values in
+    U an L2 error is in U L^(d/2), an H1-semi error in U L^(d/2 - 1); relative errors have no unit. A norm
+    that could not be measured is absent. `moves` maps a piece to the largest distance by which data points
+    were moved onto it, `left_out` is the share of the sample points outside the solver's mesh.
     """
 
     size: int
@@ -121,7 +121,7 @@ class Study:
             If `fmt` or a norm is unknown.
         """
         if norms is None:
-            usual = [norm for norm in ("max", "L2", "H1-semi") if norm in self.orders]
+            usual: list[str] = [norm for norm in ("max", "L2", "H1-semi") if norm in self.orders]
             norms = list(dict.fromkeys(self.deciding + usual))
         return convergence_table(self.levels, self.orders, norms, fmt)
 

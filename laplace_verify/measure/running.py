@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 import time
 from dataclasses import dataclass, field
+from itertools import pairwise
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -13,7 +14,7 @@ from laplace_verify.errors import AnswerError
 from laplace_verify.measure.criteria import LEVEL
 from laplace_verify.measure.exact import Exact
 from laplace_verify.measure.functionals import ExactFluxes, measure_functionals
-from laplace_verify.measure.norms import Measured, measure_norms, sample_answer
+from laplace_verify.measure.norms import Measured, measure_norms, sample_answer, sharpened
 from laplace_verify.measure.places import error_map, local_errors
 from laplace_verify.measure.results import ErrorMap, Level
 from laplace_verify.measure.sampling import level_generator
@@ -23,7 +24,7 @@ if TYPE_CHECKING:
     from laplace_verify.problems import Case
     from laplace_verify.solvers import Adapter, Answer
 
-__all__ = ["LevelResult", "Runner"]
+__all__ = ["LevelResult", "Runner", "check_falling"]
 
 MOST_POINTS = {1: 20_000, 2: 200_000, 3: 400_000}
 WANTED = 1000  # points offered to a solver that must know beforehand where it will be asked
@@ -70,6 +71,7 @@ class Runner:
         h = self._spacing(answer, size)
         singular = self.case.regularity.singular_points
         sample = sample_answer(answer, self.case.problem, singular, h, generator, most)
+        sample = sharpened(sample, answer, self.exact, self.case.problem, h, generator)
         measured = measure_norms(sample, self.exact, self.case.problem, self.solver.clearance)
         numbers, signed = self._functionals(answer, measured, h)
         note, judged = self._judged(h)
@@ -129,7 +131,7 @@ def check_falling(levels: list[Level]) -> None:
     AnswerError
         Naming the two sizes.
     """
-    for coarse, fine in zip(levels, levels[1:], strict=False):
+    for coarse, fine in pairwise(levels):
         if not fine.h < coarse.h:
             raise AnswerError(
                 f"h must fall from size to size, but it is {coarse.h:.4g} at size {coarse.size} and {fine.h:.4g} at size "

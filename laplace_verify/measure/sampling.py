@@ -1,9 +1,11 @@
 """Where an answer is compared with the exact solution.
 
-Integral norms use composite Gauss quadrature with patches of the size of the solver's cells, graded dyadically to
-singular points. The maximum is taken over these points and over scattered ones, inside, on the boundary and at
-distances h/100 to 2h from singular points. The scattered points are drawn anew on every level: at fixed points the
-error next to a singularity changes with the place of the point relative to the grid, which invents orders.
+Integral norms use composite Gauss quadrature with patches of the size of the solver's cells, graded
+dyadically to singular points. The maximum is taken over these points and over scattered ones, inside, on the
+boundary and at distances h/100 to 2h from singular points, then closer and closer to the places of the
+largest errors, so that the maximum does not hang on luck. The scattered points are drawn anew on every level:
+at fixed points the error next to a singularity changes with the place of the point relative to the grid,
+which invents orders.
 """
 
 from __future__ import annotations
@@ -19,12 +21,13 @@ from laplace_verify.arrays import Array
 if TYPE_CHECKING:
     from laplace_verify.geometry import Boundary, Shape
 
-__all__ = ["level_generator", "piece_points", "quadrature_points", "scattered_points"]
+__all__ = ["around", "level_generator", "piece_points", "quadrature_points", "scattered_points"]
 
 ORDER = 5  # three Gauss points a direction: exact for squares of quadratics
 GAUSS = 3
 SCATTERED = {1: 400, 2: 4000, 3: 8000}  # inside
-ON_PIECE = {1: 1, 2: 200, 3: 400}
+ON_PIECE, MOST_ON_PIECE = 200, 4000
+PER_WIDTH = 4.0  # points a mesh width along a curve
 NEAR_SINGULAR = 200  # around every singular point
 MOST_SINGULAR = 20  # points around which to scatter
 
@@ -53,13 +56,16 @@ def scattered_points(
     """Return seeded points (n, d): inside, on every piece, and within 2 h of singular points."""
     dim = shape.dim
     parts = [shape.sample(min(SCATTERED[dim], max_points), seed=int(generator.integers(2**31)))]
-    parts += [piece_points(piece, min(ON_PIECE[dim], max_points), generator) for piece in shape.pieces]
+    for piece in shape.pieces:
+        wanted = PER_WIDTH ** (dim - 1) * piece.measure / h ** (dim - 1)
+        count = int(min(max(wanted, ON_PIECE), MOST_ON_PIECE, max_points))
+        parts.append(piece_points(piece, count, generator))
     for centre in singular[:MOST_SINGULAR]:
         direction = generator.standard_normal((NEAR_SINGULAR, dim))
         direction /= np.sqrt((direction**2).sum(axis=1, keepdims=True))
         radius = h * 10 ** generator.uniform(-2.0, math.log10(2.0), (NEAR_SINGULAR, 1))
-        around = centre + radius * direction
-        parts.append(around[shape.contains(around)])
+        close = centre + radius * direction
+        parts.append(close[shape.contains(close)])
     return np.concatenate(parts)
 
 
@@ -70,3 +76,11 @@ def piece_points(piece: Boundary, count: int, generator: np.random.Generator) ->
     if piece.dim == 2:
         return piece.point(generator.random(count))
     return piece.point(generator.random((count, 2)))
+
+
+def around(shape: Shape, centres: Array, radius: float, count: int, generator: np.random.Generator) -> Array:
+    """Return random points of the shape in cubes of half side `radius` about each centre, up to `count` each."""
+    offset = radius * generator.uniform(-1.0, 1.0, (len(centres), count, shape.dim))
+    points = (centres[:, np.newaxis] + offset).reshape(-1, shape.dim)
+    inside: Array = points[shape.contains(points)]
+    return inside

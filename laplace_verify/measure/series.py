@@ -20,7 +20,8 @@ class Series:
     """Sizes, spacings, errors and relative errors of the levels that count, coarsest first.
 
     `above` of them lie above ten times the floor (from the first to the last that does), the rest is at the
-    floor. `exact` means that every level measured, judged or not, is at the floor. `left_out` maps sizes to reasons.
+    floor. `exact` means that every level measured, judged or not, is at the floor. `left_out` maps sizes to
+    reasons.
     """
 
     norm: str

@@ -1,7 +1,7 @@
 """A study: one solver on one case at rising sizes, measured against the exact solution and judged.
 
-The criteria are fixed before the solver runs. Whatever a solver does (raise, return NaN or another shape, never
-converge) ends in a verdict; only misuse by the caller raises.
+The criteria are fixed before the solver runs. Whatever a solver does (raise, return NaN or another shape,
+never converge) ends in a verdict; only misuse by the caller raises.
 """
 
 from __future__ import annotations
@@ -46,9 +46,9 @@ def study(
     case : Case
         From the catalogue, or made by `case`.
     sizes : sequence of int, optional
-        Three or more, increasing; four are needed for a PASS. Default: the solver's own, else 8 16 32 64 in one and two
-        dimensions and 6 9 13 19 28 in three. Up to four more are added to the default if the verdict is still open
-        and the work stays bounded.
+        Three or more, increasing; four are needed for a PASS. Default: the solver's own, else 8 16 32 64 in
+        one and two dimensions and 6 9 13 19 28 in three. Up to four more are added to the default if the
+        verdict is still open and the work stays bounded.
     seed : int
         Seed of the sample points and of solvers that take one. Same seed, same numbers.
     max_points : int, optional
@@ -57,7 +57,8 @@ def study(
     Returns
     -------
     Study
-        Levels, orders, verdict, reasons and remarks. Errors are in the units of u (times lengths, see `Level`).
+        Levels, orders, verdict, reasons and remarks. Errors are in the units of u (times lengths, see
+        `Level`).
 
     Raises
     ------
@@ -82,7 +83,9 @@ def study(
     _check_arguments(solver, case, max_points)
     given = check_sizes(sizes) if sizes is not None else solver.sizes
     planned = given if given is not None else default_sizes(case.dim)
-    run = _Run(solver, case, Runner(solver, case, seed, max_points), list(planned), expectations(solver, case))
+    run = _Run(
+        solver, case, Runner(solver, case, seed, max_points), list(planned), expectations(solver, case)
+    )
     reason = solver.refuses(case.problem)
     if reason is not None:
         return run.result(Verdict.NOT_APPLICABLE, [reason], [])
@@ -92,7 +95,7 @@ def study(
     except (Exception, SystemExit) as cause:
         return run.broken(size, cause)
     if given is None:
-        run.refine(started=len(planned))
+        run.refine()
     return run.judged()
 
 
@@ -119,32 +122,42 @@ class _Run:
         check_falling(sorted([*self.levels, result.level], key=lambda level: level.size))
         self.results = sorted([*self.results, result], key=lambda r: r.level.size)
 
-    def refine(self, started: int) -> None:
+    def refine(self) -> None:
         """Add sizes while the verdict is open, a finer level may settle it, and the work stays bounded."""
         added: list[int] = []
+        finer = 0
         while True:
             orders = self.orders()
             verdict, _, _ = combine(orders)
             wanting = any(order.decides and order.finer for order in orders.values())
-            further = further_sizes(self.levels, self.case.dim, started)
+            further = further_sizes(self.levels, self.case.dim, finer)
             if verdict is not Verdict.INCONCLUSIVE or not wanting or not further:
                 break
+            finer += further[0] > self.levels[-1].size
             try:
                 for size in further:
                     self.add(size)
                     added.append(size)
             except (Exception, SystemExit) as cause:
-                self.remarks.append(f"size {size} was tried beyond the default sizes and broke: {_said(cause)}")
+                self.remarks.append(
+                    f"size {size} was tried beyond the default sizes and broke: {_said(cause)}"
+                )
                 break
         if added:
-            self.remarks.append(f"the default sizes left the verdict open; added: {', '.join(map(str, added))}")
+            self.remarks.append(
+                f"the default sizes left the verdict open; added: {', '.join(map(str, added))}"
+            )
         self.sizes = [level.size for level in self.levels]
 
     def orders(self) -> dict[str, Order]:
         """Judge the levels so far."""
         mixed = sign_changes([result.signed for result in self.results if result.level.judged])
         return judge(
-            self.levels, self.criteria, kind=self.solver.kind, error_floor=self.solver.error_floor, mixed_signs=mixed
+            self.levels,
+            self.criteria,
+            kind=self.solver.kind,
+            error_floor=self.solver.error_floor,
+            mixed_signs=mixed,
         )
 
     def judged(self) -> Study:
@@ -207,7 +220,9 @@ def _check_arguments(solver: object, case: object, max_points: int | None) -> No
             'lv.adapt(solve, name="...", kind="finite difference", order=2)'
         )
     if not isinstance(case, Case):
-        raise ProblemError(f"case must be a Case, got {case!r}; take one from lv.catalogue or make one with lv.case")
+        raise ProblemError(
+            f"case must be a Case, got {case!r}; take one from lv.catalogue or make one with lv.case"
+        )
     if max_points is not None and not max_points >= 100:
         raise AdapterError(f"max_points must be at least 100, got {max_points!r}")
 

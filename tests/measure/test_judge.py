@@ -206,10 +206,30 @@ def test_an_open_functional_is_a_remark_and_a_failing_one_fails():
 
 
 def test_a_norm_without_a_rate_never_decides():
-    verdict, reasons, remarks = combine(judge(levels_of(halving(4), halving(4)), expect(None, decides=False)))
+    orders = judge(levels_of(halving(4), halving(4)), expect(None, decides=False))
+    verdict, reasons, _ = combine(orders)
     assert verdict is Verdict.INCONCLUSIVE
     assert "theory promises no rate" in reasons[0]
-    assert "does not decide" in remarks[0]
+    assert "does not decide" in orders["max"].note
+
+
+def test_a_norm_that_does_not_decide_is_remarked_if_it_falls_short():
+    good = judge(levels_of(halving(4), halving(4) ** 2), expect(2.0))
+    short = judge(levels_of(halving(4), halving(4), "L1"), expect(2.0, "L1", decides=False))
+    verdict, _, remarks = combine({**good, **short})
+    assert verdict is Verdict.PASS
+    assert "L1: formal order 2, expected 2, observed 1.00" in remarks[0]
+
+
+def test_a_functional_whose_error_passes_through_zero_is_a_remark():
+    name = "quantity:heat"
+    good = judge(levels_of(halving(4), halving(4) ** 2), expect(2.0))
+    odd = judge(
+        levels_of(halving(4), [0.1, 0.01, 0.02, 0.01], name), expect(2.0, name), mixed_signs={name: "odd"}
+    )
+    verdict, _, remarks = combine({**good, **odd})
+    assert verdict is Verdict.PASS
+    assert remarks == [f"{name}: odd"]
 
 
 def test_nan_never_passes():
