@@ -136,7 +136,7 @@ class BoundaryField:
 def _undefined(singularity: Singularity, derivative: bool) -> bool:
     """Return whether the field has no value (no gradient) at the singular point."""
     if singularity.kind == "power":
-        return derivative and singularity.exponent < 1.0
+        return derivative and singularity.exponent <= 1.0  # r log r has an infinite gradient too
     return True
 
 
