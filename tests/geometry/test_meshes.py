@@ -66,7 +66,9 @@ def test_triangles_fill_a_curved_shape_to_second_order(shape):
         mesh = triangulate(shape, n)
         assert np.all(mesh.areas > 0)
         missing.append([shape.measure - mesh.areas.sum()])
-        missing[-1] += [piece.measure - lengths(mesh, piece.name).sum() for piece in shape.pieces if piece.curved]
+        missing[-1] += [
+            piece.measure - lengths(mesh, piece.name).sum() for piece in shape.pieces if piece.curved
+        ]
     ratio = np.array(missing[0]) / np.array(missing[1])
     # Chords miss h^2 of an arc: a ratio of four; split arcs get cells of slightly different length.
     assert np.all(ratio > 3.5)

@@ -52,11 +52,20 @@ def test_unit_square_with_hot_top_on_four_cells():
 
 
 def test_heated_plate_on_four_cells():
-    # Chapra & Canale, Numerical Methods for Engineers, example 29.1: top 100, left 75, right 50, bottom 0; the
-    # exact solution of its nine equations, in rational arithmetic.
-    sides = {"top": dirichlet(100.0), "left": dirichlet(75.0), "right": dirichlet(50.0), "bottom": dirichlet(0.0)}
+    # Chapra & Canale, Numerical Methods for Engineers, example 29.1: top 100, left 75, right 50, bottom 0;
+    # the exact solution of its nine equations, in rational arithmetic.
+    sides = {
+        "top": dirichlet(100.0),
+        "left": dirichlet(75.0),
+        "right": dirichlet(50.0),
+        "bottom": dirichlet(0.0),
+    }
     answer = five_point.solve(problem(UNIT, sides), 4)
-    exact = [[300 / 7, 3725 / 112, 475 / 14], [7075 / 112, 225 / 4, 5875 / 112], [550 / 7, 8525 / 112, 975 / 14]]
+    exact = [
+        [300 / 7, 3725 / 112, 475 / 14],
+        [7075 / 112, 225 / 4, 5875 / 112],
+        [550 / 7, 8525 / 112, 975 / 14],
+    ]
     for j, row in enumerate(exact):
         for i, value in enumerate(row):
             assert at(answer, (i + 1) / 4, (j + 1) / 4) == pytest.approx(value, rel=1e-14)
@@ -64,7 +73,12 @@ def test_heated_plate_on_four_cells():
 
 def test_plate_with_four_unknowns():
     # Holman, Heat Transfer, chapter 3, example: h = L/3, top 500, other sides 100: 250 above, 150 below.
-    sides = {"top": dirichlet(500.0), "left": dirichlet(100.0), "right": dirichlet(100.0), "bottom": dirichlet(100.0)}
+    sides = {
+        "top": dirichlet(500.0),
+        "left": dirichlet(100.0),
+        "right": dirichlet(100.0),
+        "bottom": dirichlet(100.0),
+    }
     answer = five_point.solve(problem(UNIT, sides), 3)
     for x in (1 / 3, 2 / 3):
         assert at(answer, x, 2 / 3) == pytest.approx(250.0, rel=1e-14)
@@ -72,8 +86,9 @@ def test_plate_with_four_unknowns():
 
 
 def test_discrete_separated_solution_at_the_centre():
-    # Courant, Friedrichs & Lewy 1928; Forsythe & Wasow 1960: with sin(pi x) on one side and 0 elsewhere the discrete
-    # value at the centre is 1/(2 cosh(b/2)), cosh(b h) = 2 - cos(pi h); for 8 cells 0.202915223521828.
+    # Courant, Friedrichs & Lewy 1928; Forsythe & Wasow 1960: with sin(pi x) on one side and 0 elsewhere the
+    # discrete value at the centre is 1/(2 cosh(b/2)), cosh(b h) = 2 - cos(pi h); for 8 cells
+    # 0.202915223521828.
     sides = {"bottom": dirichlet(lambda x, y: np.sin(np.pi * x) + 0 * y), "top": dirichlet(0.0),
              "left": dirichlet(0.0), "right": dirichlet(0.0)}  # fmt: skip
     answer = five_point.solve(problem(UNIT, sides), 8)
@@ -101,8 +116,8 @@ def test_five_point_residuals_of_quartics():
 
 
 def test_seven_point_residuals_of_quartics_and_exact_cubics():
-    # Residuals 4 h^2 for x^4 - 6 x^2 y^2 + y^4 and 6 h^2 for x^4 + y^4 + z^4 - 3 (x^2 y^2 + y^2 z^2 + z^2 x^2); zero
-    # for cubics and xyz (Milne 1953; Collatz 1960).
+    # Residuals 4 h^2 for x^4 - 6 x^2 y^2 + y^4 and 6 h^2 for x^4 + y^4 + z^4 - 3 (x^2 y^2 + y^2 z^2 + z^2
+    # x^2); zero for cubics and xyz (Milne 1953; Collatz 1960).
     n = 5
     h = 1 / n
     grid = grid_on(Box((0, 0, 0), (1, 1, 1)), n)
@@ -165,7 +180,12 @@ def test_a_condition_may_change_within_a_side_off_the_even_grid():
 
 
 def test_linear_solutions_are_exact_in_one_dimension():
-    for conditions in ({}, {"left": "neumann"}, {"right": robin(2.0)}, {"left": "neumann", "right": "neumann"}):
+    for conditions in (
+        {},
+        {"left": "neumann"},
+        {"right": robin(2.0)},
+        {"left": "neumann", "right": "neumann"},
+    ):
         posed = case(Interval(0.5, 2.0), conditions, fields.affine([2.0], 1.0), 3.0)
         errors, _ = observed(five_point, posed, (5, 9))
         assert errors.max() < 1e-13
