@@ -4,7 +4,13 @@ from laplace_verify.problems.case import Case, case
 from laplace_verify.problems.conditions import Condition, dirichlet, neumann, robin
 from laplace_verify.problems.pieces import MoveLog, Piece, Pieces
 from laplace_verify.problems.problem import Problem, Region, problem
-from laplace_verify.problems.quantities import Quantity, energy_of_solution, flux_through, value_at
+from laplace_verify.problems.quantities import (
+    Quantity,
+    QuantitySpec,
+    energy_of_solution,
+    flux_through,
+    value_at,
+)
 from laplace_verify.problems.random_cases import random_case
 from laplace_verify.problems.regularity import Regularity
 from laplace_verify.problems.schema import case_from_json, case_to_json
@@ -19,6 +25,7 @@ __all__ = [
     "Pieces",
     "Problem",
     "Quantity",
+    "QuantitySpec",
     "Region",
     "Regularity",
     "StoredValue",
