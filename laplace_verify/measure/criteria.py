@@ -1,4 +1,4 @@
-"""The acceptance criteria of a study, fixed before the solver runs: norms, expected orders, which of them decide."""
+"""Acceptance criteria, fixed before the solver runs: norms, expected orders, which of them decide."""
 
 from __future__ import annotations
 

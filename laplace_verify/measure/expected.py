@@ -36,7 +36,10 @@ Formal = Callable[[str], float | str | None]
 FUNCTIONALS = ("flux:", "quantity:", "probe:")
 
 SMOOTH_GRID = "order {p:g} for smooth solutions by the discrete maximum principle (Gerschgorin 1930)"
-CORNER_GRID = "min(p, s) = {rate:g} in the maximum norm at a singularity r^{s:.3g} (Laasonen 1957; Bramble, Hubbard & Zlamal 1968)"
+CORNER_GRID = (
+    "min(p, s) = {rate:.3g} in the maximum norm at a singularity r^{s:.3g} (Laasonen 1957; Bramble, "
+    "Hubbard & Zlamal 1968)"
+)
 JUMP_GRID = "no rate in the maximum norm where boundary data jump (Wasow 1957)"
 CEA = "min(k, s) = {rate:g} by best approximation (Cea; Strang & Fix 1973; Babuska 1970)"
 NITSCHE = "{rate:g} = min(k, s) + min(1, d), at most k + 1, by duality (Aubin-Nitsche; Strang & Fix 1973)"
@@ -70,7 +73,7 @@ class Expectation:
 
 
 def is_functional(norm: str) -> bool:
-    """Return whether `norm` is a single number (flux, quantity, probe) whose signed error may pass through zero."""
+    """Return whether `norm` is a single number, whose signed error may pass through zero."""
     return norm.startswith(FUNCTIONALS)
 
 
@@ -205,7 +208,7 @@ def _finite_element(
 
 
 def _declared_only(norm: str, declared: float, s: float) -> tuple[Rate, bool, str]:
-    """Return the author's own order where the solution is smooth: gradients and functionals depend on the recovery."""
+    """Return the author's own order where the solution is smooth: it depends on the recovery."""
     if is_functional(norm) and math.isinf(s):
         return declared, True, f"declared for smooth solutions: {declared:g}"
     return None, False, "depends on how the solver recovers it: shown, does not decide"
@@ -229,7 +232,7 @@ def _exponential(
 def _boundary_element(
     norm: str, declared: float | str | None, _: Formal, regularity: RegularityLike
 ) -> tuple[Rate, bool, str]:
-    """Return the declared order in the interior for smooth solutions; next to the boundary nothing is proven."""
+    """Return the declared order inside for smooth solutions; next to the boundary nothing is proven."""
     if not isinstance(declared, int | float):
         return None, False, NO_DEGREE
     if math.isinf(regularity.solution):

@@ -1,4 +1,4 @@
-"""What is special about a case, in words: diagnosis looks for what failing cases share and passing ones lack."""
+"""What is special about a case, in words, so that failing cases can be compared with passing ones."""
 
 from __future__ import annotations
 
@@ -82,7 +82,7 @@ def _data_features(case: Case, exact: Exact) -> dict[str, Feature]:
 
 
 def _bends(points: Array, normals: Array, exact: Exact, extent: float) -> bool:
-    """Return whether d^2 u/dn^2 differs from zero: a one-sided first-order closure cannot be seen where it is zero."""
+    """Return whether d^2 u/dn^2 differs from zero: where it is zero a one-sided closure cannot be seen."""
     step = STEP * extent
     slopes = [
         (exact.gradients(points - k * step * normals) * normals).sum(axis=1) for k in (1.0, 2.0)

@@ -42,7 +42,7 @@ class Functionals:
 
 
 class ExactFluxes:
-    """The exact flux through each piece and int |n . K grad u| as its scale, computed when first asked for."""
+    """The exact flux through each piece and int |n . K grad u| as its scale, when first asked for."""
 
     def __init__(self, case: Case, exact: Exact) -> None:
         self._case, self._exact = case, exact

@@ -144,9 +144,9 @@ def _algebraic(series: Series, expected: float, fit: OrderFit | None, noise: flo
     stalled = not holds and all(slope is not None and slope >= least for slope in slopes[:-1])
     if stalled or fit.low >= least:
         words = (
-            f"stalled: the error falls as expected up to size {series.sizes[series.above - 2]} but only at order "
-            f"{last:.2f} to size {series.sizes[series.above - 1]}. If a solver tolerance or a reduced precision "
-            f"stops it, declare error_floor; if not, {_advice(series)}"
+            f"stalled: the error falls as expected up to size {series.sizes[series.above - 2]} but only at "
+            f"order {last:.2f} to size {series.sizes[series.above - 1]}. If a solver tolerance or a "
+            f"reduced precision stops it, declare error_floor; if not, {_advice(series)}"
         )
         return Finding(Verdict.INCONCLUSIVE, words, finer=True)
     if fit.high <= least:

@@ -1,4 +1,4 @@
-"""Which sizes a study runs: those asked for, the solver's own, or default ones, with finer ones added if that may help."""
+"""Which sizes a study runs: those asked for, the solver's own, or default ones and finer ones if needed."""
 
 from __future__ import annotations
 

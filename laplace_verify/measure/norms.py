@@ -53,6 +53,7 @@ class Measured:
     errors: dict[str, float]
     relative: dict[str, float]
     shift: float
+    scale: float  # largest |u|
     points: Array
     signed: Array
     left_out: float
@@ -154,7 +155,7 @@ def measure_norms(sample: Sample, exact: Exact, problem: Problem, clearance: flo
 
 
 def _value_norms(error: Array, u: Array, weights: Array) -> tuple[dict[str, float], dict[str, float]]:
-    """Return max, L1, L2 of the error, absolute and relative; the first len(weights) entries carry weights."""
+    """Return max, L1, L2 of the error, absolute and relative; the first len(weights) carry weights."""
     errors, sizes = _three_norms(error, weights), _three_norms(u, weights)
     return errors, {name: errors[name] / (sizes[name] or 1.0) for name in errors}
 
@@ -247,7 +248,7 @@ def _sample_cells(answer: Answer, generator: np.random.Generator) -> Sample:
 
 
 def _middles(corners: Array) -> Array:
-    """Return the points half-way between any two corners of a reference cell: where linear interpolation is worst."""
+    """Return the points half-way between any two corners: where linear interpolation is worst."""
     first, second = np.triu_indices(len(corners), k=1)
     middles: Array = np.unique(0.5 * (corners[first] + corners[second]), axis=0)
     return middles
@@ -268,8 +269,8 @@ def _inside_mesh(points: Array, values: Array, problem: Problem, h: float, name:
     if bad.any():
         where = outside[int(np.flatnonzero(bad)[0])].tolist()
         raise AnswerError(
-            f"{name} must return numbers inside the shape, but {int(bad.sum())} of {len(points)} are NaN; the first "
-            f"at {where}, not within h = {h:.3g} of a curved piece (there NaN means outside the mesh)"
+            f"{name} must return numbers inside the shape, but {int(bad.sum())} of {len(points)} are NaN; "
+            f"the first at {where}, not within h = {h:.3g} of a curved piece (there NaN means outside the mesh)"
         )
     return known
 

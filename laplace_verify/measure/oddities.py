@@ -29,7 +29,7 @@ def sign_changes(signed: Sequence[dict[str, float]]) -> dict[str, str]:
 
 
 def oddities(levels: Sequence[Level]) -> tuple[list[str], list[str]]:
-    """Return faults (each fails the study) and remarks about moved boundary points and left-out sample points."""
+    """Return faults (each fails the study) and remarks on moved boundary and left-out sample points."""
     if len(levels) < 2:
         return [], []
     return _left_out(levels), _moves(levels)
@@ -46,8 +46,8 @@ def _moves(levels: Sequence[Level]) -> list[str]:
         order = math.log(start / move) / math.log(first.h / last.h)
         if order < MOVE_ORDER - MOVE_SLACK:
             remarks.append(
-                f"points handed to piece {piece!r} lie off it by up to {move:.2g}, which shrinks like h^{order:.1f} only: "
-                "the solver's boundary does not follow the curve"
+                f"points handed to piece {piece!r} lie off it by up to {move:.2g}, which shrinks like "
+                f"h^{order:.1f} only: the solver's boundary does not follow the curve"
             )
     return remarks
 

@@ -38,7 +38,7 @@ NESTED_NOISE, USUAL_NOISE, UNRELATED_NOISE = 0.03, 0.05, 0.1
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class OrderFit:
-    """A fitted order p with its standard error; `constant` is C of e = C h^p, `weights` give p = weights . ln e."""
+    """A fitted order p, its standard error, C of e = C h^p, and the weights of p = weights . ln e."""
 
     order: float
     error: float
@@ -58,7 +58,7 @@ class OrderFit:
 
 
 def pair_orders(h: npt.ArrayLike, errors: npt.ArrayLike) -> list[float | None]:
-    """Return ln(e_k/e_{k+1}) / ln(h_k/h_{k+1}) between neighbouring levels, None where an error is 0 or missing.
+    """Return ln(e_k/e_{k+1}) / ln(h_k/h_{k+1}) between neighbours, None where an error is 0 or missing.
 
     Parameters
     ----------
@@ -164,7 +164,8 @@ def _check_sequence(spacing: Array, size: Array) -> None:
     """Refuse a sequence to which no line can be fitted."""
     if spacing.ndim != 1 or spacing.shape != size.shape or len(spacing) < 3:
         raise AnswerError(
-            f"h and errors must be sequences of the same length >= 3, got shapes {spacing.shape} and {size.shape}"
+            f"h and errors must be sequences of the same length >= 3, got shapes {spacing.shape} and "
+            f"{size.shape}"
         )
     if not (np.isfinite(spacing).all() and spacing[-1] > 0 and np.all(np.diff(spacing) < 0)):
         raise AnswerError(f"h must be positive and fall from level to level, got {spacing.tolist()}")

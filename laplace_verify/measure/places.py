@@ -1,4 +1,4 @@
-"""Where the error of one level sits: the largest error near every piece and corner, and a map of signed errors.
+"""Where the error of one level sits: the largest near every piece and corner, and a map of signed errors.
 
 "Near" means within two mesh widths; "interior" is what is further from every piece.
 """

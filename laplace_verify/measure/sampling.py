@@ -79,7 +79,7 @@ def piece_points(piece: Boundary, count: int, generator: np.random.Generator) ->
 
 
 def around(shape: Shape, centres: Array, radius: float, count: int, generator: np.random.Generator) -> Array:
-    """Return random points of the shape in cubes of half side `radius` about each centre, up to `count` each."""
+    """Return random points of the shape within `radius` (a cube) of each centre, up to `count` each."""
     offset = radius * generator.uniform(-1.0, 1.0, (len(centres), count, shape.dim))
     points = (centres[:, np.newaxis] + offset).reshape(-1, shape.dim)
     inside: Array = points[shape.contains(points)]

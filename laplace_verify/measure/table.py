@@ -94,6 +94,8 @@ def _notes(levels: Sequence[Level], orders: Mapping[str, Order], norms: Sequence
 
 def _latex(text: str) -> str:
     """Escape the characters that LaTeX would read as commands."""
-    table = {"\\": r"\textbackslash{}", "_": r"\_", "%": r"\%", "&": r"\&", "#": r"\#", "^": r"\^{}",
-             "$": r"\$", "{": r"\{", "}": r"\}", "~": r"\~{}", "<": r"\textless{}", ">": r"\textgreater{}"}  # fmt: skip
+    table = {
+        "\\": r"\textbackslash{}", "_": r"\_", "%": r"\%", "&": r"\&", "#": r"\#", "^": r"\^{}", "$": r"\$",
+        "{": r"\{", "}": r"\}", "~": r"\~{}", "<": r"\textless{}", ">": r"\textgreater{}",
+    }  # fmt: skip
     return "".join(table.get(character, character) for character in text)

@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-from enum import Enum
+from enum import StrEnum
 
 __all__ = ["Verdict"]
 
 
-class Verdict(str, Enum):
+class Verdict(StrEnum):
     """What was concluded. A check that could not be made (NOT_RUN) is never counted as a pass.
 
     >>> Verdict("PASS").decided, Verdict.INCONCLUSIVE.decided
@@ -25,7 +25,3 @@ class Verdict(str, Enum):
     def decided(self) -> bool:
         """True for PASS and FAIL."""
         return self in (Verdict.PASS, Verdict.FAIL)
-
-    def __str__(self) -> str:
-        """Return the bare word."""
-        return self.value

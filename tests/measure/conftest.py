@@ -47,7 +47,7 @@ def perturbed():
         def values(points, n):
             return case.exact.value(points) + error(n) * ripple(points)
 
-        def solve(problem, n):
+        def solve(_problem, n):
             if form == "callable":
                 answer = lv.Answer(evaluate=lambda points: values(points, n), h=1 / n, unknowns=2 * n * n)
             else:

@@ -19,8 +19,8 @@ def rate(kind, norm, order, s, d):
     return found.expected, found.decides
 
 
-# Five-point scheme: Gerschgorin 1930; corners: Laasonen 1957/58, Bramble, Hubbard & Zlamal 1968; L-shape 2/3 next
-# to the corner and 4/3 inside; jumps: no convergence of the maximum, order 2 inside, Wasow 1957.
+# Five-point scheme: Gerschgorin 1930; corners: Laasonen 1957, Bramble, Hubbard & Zlamal 1968; L-shape 2/3
+# next to the corner and 4/3 inside; jumps: no convergence of the maximum, order 2 inside, Wasow 1957.
 @pytest.mark.parametrize(
     ("norm", "s", "d", "expected", "decides"),
     [

@@ -14,8 +14,9 @@ def spacings(cells: list[int]) -> list[float]:
     return [n**-0.5 for n in cells]
 
 
-# Celik et al. 2008, J. Fluids Eng. 130, 078001, table 1; digits beyond the printed ones recomputed by fixed-point
-# iteration with unrounded ratios. e_ext of the second column is printed as 0.9 %, which evaluates to 0.847 %.
+# Celik et al. 2008, J. Fluids Eng. 130, 078001, table 1; digits beyond the printed ones recomputed by
+# fixed-point iteration with unrounded ratios. e_ext of the second column is printed as 0.9 %, it
+# evaluates to 0.847 %.
 CELIK = [
     pytest.param([18000, 8000, 4500], [6.063, 5.972, 5.863],
                  (1.533969, 6.1684956, 0.015009, 0.017102, 0.02175), "monotone", id="first column"),
@@ -45,8 +46,8 @@ def test_reproduces_the_tutorial_example_with_ratio_two():
 
 @pytest.mark.parametrize(("coarsest", "order"), [(4, 1.9411992), (8, 1.9844128)])
 def test_order_of_exact_five_point_centre_values(coarsest, order):
-    # sin(pi x) sinh(b y) solves the five-point equations if cosh(b h) = 2 - cos(pi h) (Courant, Friedrichs & Lewy
-    # 1928), so the centre value is 1/(2 cosh(b/2)). Orders: derived from it with 20 digits.
+    # sin(pi x) sinh(b y) solves the five-point equations if cosh(b h) = 2 - cos(pi h) (Courant, Friedrichs &
+    # Lewy 1928), so the centre value is 1/(2 cosh(b/2)). Orders: derived from it with 20 digits.
     h = np.array([1 / (4 * coarsest), 1 / (2 * coarsest), 1 / coarsest])
     b = np.arccosh(2 - np.cos(math.pi * h)) / h
     found = grid_convergence(1 / (2 * np.cosh(b / 2)), h)

@@ -50,7 +50,7 @@ def simulate(rng, expected, loss, noise, most):
 @pytest.mark.parametrize(
     ("expected", "loss", "noise", "most", "wrong", "undecided"),
     [
-        # From 60000 simulated sequences of this kind each: no false alarm, no miss, nothing undecided at loss 1.
+        # From 60000 simulated sequences of this kind each: no false alarm, no miss, at loss 1 nothing open.
         # With 400 sequences here, 0 wrong bounds the rate below 0.75 % at 95 %.
         (2.0, 1.0, 0.02, 6, 0, 0),
         (2.0, 1.0, 0.05, 6, 0, 0),
@@ -71,7 +71,7 @@ def test_simulated_error_rates(expected, loss, noise, most, wrong, undecided):
 @pytest.mark.parametrize(
     ("h", "errors", "expected"),
     [
-        # Five-point scheme: e^x cos y on the unit square; L-shape with r^(2/3) (maximum errors, h = 1/8 ... 1/128).
+        # Five-point scheme, maxima, h = 1/8 ... 1/128: e^x cos y on the unit square; L-shape, r^(2/3).
         (halving(5), [2.7635e-4, 7.0711e-5, 1.7749e-5, 4.4418e-6, 1.1108e-6], 2.0),
         (halving(5), [2.011e-2, 1.303e-2, 8.298e-3, 5.249e-3, 3.313e-3], 2 / 3),
     ],

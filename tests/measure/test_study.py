@@ -96,10 +96,10 @@ def test_whatever_a_solver_does_wrong_ends_in_error(fault, words, plate):
 
 
 def test_a_solver_that_exits_or_declines_is_an_error(plate):
-    def leaves(problem, n):
+    def leaves(_problem, _n):
         raise SystemExit(3)
 
-    def declines(problem, n):
+    def declines(_problem, _n):
         raise lv.Refused("not today")
 
     for solve, words in ((leaves, "SystemExit"), (declines, "declined a well-posed problem: not today")):
@@ -176,7 +176,7 @@ def test_tables_show_every_level_and_the_fit(perturbed, plate, power):
 
 
 def test_places_tell_where_a_local_error_sits(plate):
-    def solve(problem, n):
+    def solve(_problem, n):
         def evaluate(points):
             near = points[:, 0] > 2 - 1 / n
             return plate.exact.value(points) + np.where(near, 0.3 / n, 1e-3 / n**2)
@@ -193,11 +193,11 @@ def test_places_tell_where_a_local_error_sits(plate):
     assert max(np.abs(found.error_map.errors)) == pytest.approx(0.3 / 64, rel=1e-6, abs=0)
 
 
-def test_a_pure_neumann_answer_is_aligned_and_its_level_judged_if_claimed(perturbed, power):
+def test_a_pure_neumann_answer_is_aligned_and_its_level_judged_if_claimed():
     pieces = dict.fromkeys(("left", "right", "bottom", "top"), "neumann")
     case = lv.case(lv.Rectangle((0, 0), (2, 1)), pieces, lv.fields.exp_trig(1), id="insulated")
 
-    def solve(problem, n):
+    def solve(_problem, n):
         return lv.Answer(evaluate=lambda x: case.exact.value(x) + 5.0 + 0.1 * np.sin(x[:, 0]) / n**2, h=1 / n)
 
     free = lv.adapt(solve, name="s", kind="finite difference", order=2)
@@ -221,7 +221,7 @@ def test_levels_coarser_than_the_smallest_length_are_shown_and_finer_ones_added(
 
 
 def test_nan_outside_an_inscribed_mesh_is_left_out_and_its_share_reported(rim):
-    def solve(problem, n, shrink=0.5):
+    def solve(_problem, n, shrink=0.5):
         def evaluate(points):
             inside = np.hypot(*points.T) < 1 - shrink / n
             return np.where(inside, rim.exact.value(points) + 0.1 / n**2, np.nan)
@@ -256,13 +256,13 @@ def test_moves_onto_a_curve_that_shrink_too_slowly_are_remarked(rim):
     assert fast.levels[-1].moves["rim"] == pytest.approx(0.3 / 64**2, rel=1e-9, abs=0)
 
 
-def test_reported_fluxes_and_quantities_are_measured_against_exact_ones(power):
+def test_reported_fluxes_and_quantities_are_measured_against_exact_ones():
     case = lv.case(
         lv.Rectangle((0, 0), (2, 1)), {}, lv.fields.affine((0, 3)), 2.0, id="flux",
         quantities={"middle": lv.value_at((1, 0.5)), "heat": lv.flux_through("top")},
     )  # fmt: skip
 
-    def solve(sign, problem, n):
+    def solve(sign, n):
         e = 0.1 / n**2
         return lv.Answer(
             evaluate=lambda x: case.exact.value(x) + e, h=1 / n,
@@ -273,7 +273,7 @@ def test_reported_fluxes_and_quantities_are_measured_against_exact_ones(power):
 
     def judged(sign):
         return study(
-            lv.adapt(lambda p, n: solve(sign, p, n), name="s", kind="finite difference", order=order), case
+            lv.adapt(lambda _, n: solve(sign, n), name="s", kind="finite difference", order=order), case
         )
 
     good, wrong = judged(1.0), judged(-1.0)
