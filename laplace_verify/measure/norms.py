@@ -146,7 +146,7 @@ def measure_norms(sample: Sample, exact: Exact, problem: Problem, clearance: flo
         _add_gradient_norms(errors, relative, sample, exact, problem, clear)
     left_out = sample.left_out + float(sample.weights[~defined].sum() / sample.weights.sum())
     return Measured(
-        errors=errors, relative=relative, shift=shift,
+        errors=errors, relative=relative, shift=shift, scale=float(np.max(np.abs(u[clear]))) or 1.0,
         points=np.concatenate([sample.points[clear], sample.extra[extra_clear]]),
         signed=np.concatenate([error[clear], extra_error[extra_clear]]),
         left_out=left_out,
@@ -269,8 +269,8 @@ def _inside_mesh(points: Array, values: Array, problem: Problem, h: float, name:
     if bad.any():
         where = outside[int(np.flatnonzero(bad)[0])].tolist()
         raise AnswerError(
-            f"{name} must return numbers inside the shape, but {int(bad.sum())} of {len(points)} are NaN; "
-            f"the first at {where}, not within h = {h:.3g} of a curved piece (there NaN means outside the mesh)"
+            f"{name} must return numbers in the shape, but {int(bad.sum())} of {len(points)} are NaN; "
+            f"the first at {where}, not within h = {h:.3g} of a curved piece (there NaN is outside the mesh)"
         )
     return known
 

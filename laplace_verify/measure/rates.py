@@ -48,8 +48,9 @@ def stagnation(series: Series, expected: float = 1.0) -> Finding | None:
         return None
     if max(series.relative) <= TINY:
         words = (
-            f"the error stays near {last:.1e} (relative {series.relative[-1]:.1e}): small, but neither "
-            f"falling nor at round-off. If a solver tolerance or a reduced precision stops it, declare error_floor"
+            f"the error stays near {last:.1e} (relative {series.relative[-1]:.1e}): small, but "
+            f"neither falling nor at round-off. If a solver tolerance or a reduced precision stops it, "
+            "declare error_floor"
         )
         return Finding(Verdict.INCONCLUSIVE, words)
     if last > 2 * first:

@@ -8,7 +8,6 @@ from dataclasses import dataclass, field
 from itertools import pairwise
 from typing import TYPE_CHECKING
 
-
 from laplace_verify.errors import AnswerError
 from laplace_verify.measure.criteria import LEVEL
 from laplace_verify.measure.exact import Exact

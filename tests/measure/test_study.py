@@ -82,7 +82,7 @@ def test_a_nan_in_one_node_is_an_error_that_names_it(perturbed, plate, power):
     [
         (lambda points: 1 / 0, "raised ZeroDivisionError: division by zero"),
         (lambda points: points, "values|evaluate"),
-        (lambda points: np.full(len(points), np.nan), "evaluate must return numbers inside the shape"),
+        (lambda points: np.full(len(points), np.nan), "evaluate must return numbers in the shape"),
     ],
 )
 def test_whatever_a_solver_does_wrong_ends_in_error(fault, words, plate):
