@@ -44,9 +44,7 @@ class Catalogue(Mapping[str, Case]):
         """
         if id_ not in self._built:
             if id_ not in self._builders:
-                raise UnknownCaseError(
-                    f"no case is called {id_!r}; {nearest_names(str(id_), self._builders)}"
-                )
+                raise UnknownCaseError(f"no case is called {id_!r}; {nearest_names(str(id_), self)}")
             self._built[id_] = self._builders[id_]()
         return self._built[id_]
 
@@ -117,6 +115,9 @@ def _words(words: Iterable[str] | None, name: str) -> frozenset[str] | None:
     return frozenset(words)
 
 
-catalogue = Catalogue(
-    {id_: partial(lambda definer, id_: definer().build(id_), definer, id_) for id_, definer in FAMILIES.items()}
-)
+def _build(id_: str) -> Case:
+    """Build a case of the package."""
+    return FAMILIES[id_]().build(id_)
+
+
+catalogue = Catalogue({id_: partial(_build, id_) for id_ in FAMILIES})

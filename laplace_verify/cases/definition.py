@@ -1,7 +1,7 @@
 """What the definition of a case consists of, and how the modules of the families register theirs.
 
-A family is a set of functions without arguments, one a case; the name of the function is the id (``_long_duct``
-defines "long-duct"). Nothing is built before a case is asked for.
+A family is a set of functions without arguments, one a case; the name of the function is the id
+(``_long_duct`` defines "long-duct"). Nothing is built before a case is asked for.
 """
 
 from __future__ import annotations
@@ -13,6 +13,7 @@ from itertools import chain
 
 import numpy.typing as npt
 
+from laplace_verify.cases.statement import statement_of
 from laplace_verify.cases.tags import derived_tags
 from laplace_verify.errors import ProblemError
 from laplace_verify.fields import Field
@@ -31,16 +32,20 @@ class Definition:
 
     Attributes
     ----------
-    title, statement, reading, sources
-        Headline, mathematics, physical reading, literature.
-    shape, field, conditions, conductivity, quantities, constant
+    title, reading, sources
+        Headline, physical reading in a plain sentence, literature.
+    solution, note
+        The solution as a readable formula, and further sentences for the statement, see `statement_of`.
+    shape, field, conditions, conductivity, quantities
         See `problems.case`.
     tags
         Words beyond those that follow from the mathematics, see `derived_tags`.
+    reference_points
+        Points, as decimal strings, whose values are stored with 40 digits in the file of the case.
     """
 
     title: str
-    statement: str
+    solution: str
     reading: str
     shape: Shape
     field: Field
@@ -49,7 +54,8 @@ class Definition:
     quantities: Mapping[str, QuantitySpec] = dataclass_field(default_factory=dict)
     tags: Iterable[str] = ()
     sources: Iterable[str] = (HERE,)
-    constant: tuple[object, ...] | None = None
+    note: str = ""
+    reference_points: Iterable[tuple[str, ...]] = ()
 
     def build(self, id_: str) -> Case:
         """Return the case, checked like any user's own.
@@ -66,13 +72,15 @@ class Definition:
             self.conductivity,
             id=id_,
             title=self.title,
-            statement=self.statement,
             reading=self.reading,
             sources=self.sources,
             quantities=self.quantities,
-            constant=self.constant,
         )
-        return replace(built, tags=frozenset(self.tags) | derived_tags(built))
+        return replace(
+            built,
+            statement=statement_of(built, self.solution, self.note),
+            tags=frozenset(self.tags) | derived_tags(built),
+        )
 
 
 Definer = Callable[[], Definition]

@@ -2,11 +2,35 @@
 
 from __future__ import annotations
 
-from laplace_verify.cases import corners, plates_conditions, plates_smooth, rods, solids
+from laplace_verify.cases import (
+    boxes,
+    corners,
+    discs,
+    plates_flux,
+    plates_mixed,
+    plates_series,
+    plates_smooth,
+    polygons,
+    rings,
+    rods,
+    round_solids,
+    sectors,
+)
 from laplace_verify.cases.definition import joined
 
 __all__ = ["FAMILIES"]
 
 FAMILIES = joined(
-    rods.family, plates_smooth.family, plates_conditions.family, corners.family, solids.family
+    rods.family,
+    plates_smooth.family,
+    plates_flux.family,
+    plates_mixed.family,
+    plates_series.family,
+    corners.family,
+    polygons.family,
+    discs.family,
+    rings.family,
+    sectors.family,
+    boxes.family,
+    round_solids.family,
 )

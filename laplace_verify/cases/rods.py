@@ -1,7 +1,6 @@
-"""Rods: the only harmonic functions of one variable are the affine ones, and every sound scheme is exact on them.
+"""Rods: the only harmonic functions of one variable are affine, and every sound scheme is exact on them.
 
-    u = a + b x,   K u' = q,   so a rod tells a wrong sign, coefficient or half cell at an end at once, by size,
-    not by order.
+With u = a + b x, a rod tells a wrong sign, coefficient or half cell at an end at once, by size, not by order.
 """
 
 from __future__ import annotations
@@ -28,8 +27,8 @@ def _line(slope: str, constant: str) -> Field:
 def _rod_two_temperatures() -> Definition:
     return Definition(
         title="Rod between two temperatures",
-        statement="K u'' = 0 for 0.2 < x < 1.7 with K = 2; u is given at both ends. Solution u = 3 - 2 x.",
-        reading="A steel tie rod through the sluice wall of Marram Bay, held at the pool temperatures of its two ends.",
+        solution="3 - 2 x",
+        reading="A tie rod through the sluice wall of Marram Bay, held at the temperatures of two pools.",
         shape=ROD,
         field=_line("-2", "3"),
         conductivity=2.0,
@@ -46,9 +45,8 @@ def _rod_two_temperatures() -> Definition:
 def _rod_fixed_and_flux() -> Definition:
     return Definition(
         title="Rod with a fixed end and a given flux",
-        statement="K u'' = 0 for 0.2 < x < 1.7 with K = 0.4; u is given on the left, K u' = 0.5 on the right. "
-        "Solution u = 5/4 x - 1/2.",
-        reading="A sensor stem: one end in the pool, the other fed by a constant heater.",
+        solution="5/4 x - 1/2",
+        reading="A sensor stem with one end in the pool, the other fed by a constant heater.",
         shape=ROD,
         field=_line("5/4", "-1/2"),
         conditions={"right": "neumann"},
@@ -63,8 +61,7 @@ def _rod_fixed_and_flux() -> Definition:
 def _rod_fixed_and_convection() -> Definition:
     return Definition(
         title="Rod with a fixed end and convection at the other",
-        statement="K u'' = 0 for 0.2 < x < 1.7 with K = 1.5; u is given on the right, -K u' + 4 u = g on the "
-        "left. Solution u = 1 + 2/3 x.",
+        solution="1 + 2/3 x",
         reading="A pipe wall cooled by the tide on its left and kept at plant temperature on its right.",
         shape=ROD,
         field=_line("2/3", "1"),
@@ -80,9 +77,8 @@ def _rod_fixed_and_convection() -> Definition:
 def _rod_flux_and_convection() -> Definition:
     return Definition(
         title="Rod with a given flux and convection",
-        statement="K u'' = 0 for 0.2 < x < 1.7 with K = 3; -K u' = g on the left, K u' + 0.7 u = g on the right. "
-        "Solution u = 2 - 4/5 x.",
-        reading="The lid of the heat store: heated from below, losing heat to the air above.",
+        solution="2 - 4/5 x",
+        reading="The lid of the heat store, heated from below and losing heat to the air above.",
         shape=ROD,
         field=_line("-4/5", "2"),
         conditions={"left": "neumann", "right": robin(0.7)},
@@ -100,8 +96,7 @@ def _rod_flux_and_convection() -> Definition:
 def _rod_both_convection() -> Definition:
     return Definition(
         title="Rod with convection at both ends",
-        statement="K u'' = 0 for 0.2 < x < 1.7 with K = 0.8; -K u' + 2 u = g on the left, K u' + 0.3 u = g on the "
-        "right. Solution u = 1/2 + 3/2 x.",
+        solution="1/2 + 3/2 x",
         reading="A window of the pump house, with different films of air inside and outside.",
         shape=ROD,
         field=_line("3/2", "1/2"),
@@ -117,9 +112,8 @@ def _rod_both_convection() -> Definition:
 def _rod_pure_flux() -> Definition:
     return Definition(
         title="Rod with a given flux at both ends",
-        statement="K u'' = 0 for 0.2 < x < 1.7 with K = 2.5; K u' = 2 through both ends, mean of u given. "
-        "Solution u = 1 + 4/5 x.",
-        reading="A seepage path between two pumps that deliver and draw the same discharge; the level is fixed by its mean.",
+        solution="1 + 4/5 x",
+        reading="A seepage path between two pumps of equal discharge; its level is known by the mean only.",
         shape=ROD,
         field=_line("4/5", "1"),
         conditions={"left": "neumann", "right": "neumann"},

@@ -20,8 +20,8 @@ def derived_tags(case: Case) -> frozenset[str]:
     """Return the tags that are facts about a case.
 
     "smooth" or "singular", "jump"; "dirichlet" ... for each kind of condition, "mixed" for several,
-    "pure-neumann"; "tensor", "curved", "re-entrant", "condition-change" (inside a smooth piece), "slit", "hole",
-    "near-source", "high-aspect".
+    "pure-neumann"; "tensor", "curved", "re-entrant", "condition-change" (inside a smooth piece), "slit",
+    "hole", "near-source", "high-aspect".
 
     >>> from laplace_verify import fields
     >>> from laplace_verify.geometry import LShape

@@ -1,0 +1,112 @@
+"""Discs and ellipses: curved boundaries under values, fluxes and convection."""
+
+from __future__ import annotations
+
+from laplace_verify import fields
+from laplace_verify.cases.definition import HERE, Definition, Family
+from laplace_verify.fields import Field
+from laplace_verify.geometry import Disc, Ellipse
+from laplace_verify.problems import energy_of_solution, flux_through, robin, value_at
+
+__all__ = ["family"]
+
+family = Family()
+FOURIER = "Fourier series: Churchill & Brown, Complex Variables and Applications (Poisson's formula)"
+SKEW = [[1.5, -0.4], [-0.4, 0.8]]
+
+
+def _fourier(degree: int, part: str) -> Field:
+    """Return Re or Im w^degree, w = (z - z0)/0.8, z0 = 1/5 - i/10: 1 in size on the rim."""
+    return fields.polynomial(degree, part, centre=("1/5", "-1/10"), scale="4/5")  # type: ignore[arg-type]
+
+
+@family
+def _disc_fourier() -> Definition:
+    return Definition(
+        title="Disc with three Fourier modes on its rim",
+        solution="1 + 2 Re w - 1/2 Im w^2 + 1/3 Re w^5, w = (z - z0)/(4/5), z = x + i y, z0 = 1/5 - i/10",
+        reading="A round tidal pool whose rim follows three harmonics of the tide.",
+        shape=Disc((0.2, -0.1), 0.8),
+        field=fields.affine((0, 0), 1)
+        + 2 * _fourier(1, "re")
+        - _fourier(2, "im") * "1/2"
+        + _fourier(5, "re") * "1/3",
+        conductivity=1.7,
+        quantities={"value at the centre": value_at((0.2, -0.1), exact=1)},
+        sources=(FOURIER,),
+        reference_points=(("0.2", "-0.1"), ("0.68", "0.54"), ("0", "0")),
+    )
+
+
+@family
+def _disc_flux() -> Definition:
+    return Definition(
+        title="Disc with a given flux through its rim",
+        solution="3 x^2 y - y^3 + (x^2 - y^2)/2",
+        reading="Ground water under a round tank whose inflow is measured all round.",
+        shape=Disc((0.0, 0.0), 1.1),
+        field=fields.polynomial(3, "im") + fields.polynomial(2) * "1/2",
+        conditions={"rim": "neumann"},
+        conductivity=0.6,
+        quantities={
+            "flux through the rim": flux_through("rim", exact=0),
+            "energy": energy_of_solution(),
+        },
+    )
+
+
+@family
+def _disc_convection() -> Definition:
+    return Definition(
+        title="Disc cooled by convection",
+        solution="cos(2 x + 3/5) e^(2 y)",
+        reading="A cross-section of a cable in a stream of air.",
+        shape=Disc((-0.3, 0.2), 0.7),
+        field=fields.exp_trig(2, "cos", centre=("-3/10", 0)),
+        conditions={"rim": robin(2.0)},
+        conductivity=1.4,
+        quantities={"value at the centre": value_at((-0.3, 0.2))},
+    )
+
+
+@family
+def _disc_source_near() -> Definition:
+    return Definition(
+        title="Disc with a source close to its rim",
+        solution="log |x - p|, p = (0.52, 0.39)",
+        note="The source is 0.05 outside.",
+        reading="A round pool beside a well.",
+        shape=Disc((0.0, 0.0), 0.6),
+        field=fields.log_source(("13/25", "39/100")),
+        quantities={"value at the centre": value_at((0.0, 0.0))},
+        sources=(HERE,),
+        reference_points=(("0", "0"), ("0.48", "0.36"), ("-0.36", "0.2")),
+    )
+
+
+@family
+def _ellipse_saddle() -> Definition:
+    return Definition(
+        title="Ellipse, flux given on its upper half",
+        solution="x^2 - y^2 + x/2",
+        note="The condition changes at the two ends of the long axis, where this solution stays smooth.",
+        reading="An oval basin with a metered upper and a controlled lower shore.",
+        shape=Ellipse((0.1, -0.2), (1.2, 0.7)).split(rim=[0.5]),
+        field=fields.polynomial(2) + fields.affine(("1/2", 0)),
+        conditions={"rim-1": "neumann"},
+        conductivity=0.9,
+        quantities={"value at the centre": value_at((0.1, -0.2), exact="1/50")},
+    )
+
+
+@family
+def _ellipse_tensor() -> Definition:
+    return Definition(
+        title="Ellipse of an anisotropic material",
+        solution="Re (X + i Y)^3, (X, Y) = K^(-1/2) (x, y)",
+        reading="An oval hatch of rolled plate.",
+        shape=Ellipse((0.0, 0.1), (0.6, 1.0)),
+        field=fields.stretched(fields.polynomial(3), SKEW),
+        conductivity=SKEW,
+        quantities={"flux through the rim": flux_through("rim", exact=0)},
+    )

@@ -1,0 +1,94 @@
+"""Annuli: the logarithm, sources in the hole, flow past a pile, an eccentric hole."""
+
+from __future__ import annotations
+
+import math
+
+from laplace_verify import fields
+from laplace_verify.cases.definition import HERE, Definition, Family
+from laplace_verify.geometry import Annulus
+from laplace_verify.problems import energy_of_solution, flux_through, robin, value_at
+
+__all__ = ["family"]
+
+family = Family()
+PIPE = "radial flow: Carslaw & Jaeger 1959, Conduction of Heat in Solids, 2nd ed., ch. VII"
+LAMB = "flow past a cylinder: Lamb 1932, Hydrodynamics, 6th ed., art. 68"
+MIDDLE = ("1/10", "1/5")
+
+
+@family
+def _annulus_logarithm() -> Definition:
+    return Definition(
+        title="Annulus with radial flow",
+        solution="1 - 3 log r about (1/10, 1/5)",
+        reading="Insulation of the seawater main, warm inside and cold outside.",
+        shape=Annulus((0.1, 0.2), 0.4, 1.0),
+        field=fields.log_source(MIDDLE, -3) + fields.affine((0, 0), 1),
+        conductivity=2.0,
+        quantities={
+            "flux through the inner circle": flux_through("inner", exact=12 * math.pi),
+            "energy": energy_of_solution(exact=36 * math.pi * math.log(2.5)),
+        },
+        sources=(PIPE,),
+        reference_points=(("0.5", "0.2"), ("0.1", "0.9"), ("-0.5", "0.2")),
+    )
+
+
+@family
+def _annulus_flux_inside() -> Definition:
+    return Definition(
+        title="Annulus, flux given on the inner circle",
+        solution="2 log r + (x^2 - y^2)/2",
+        reading="A pipe wall heated by a wire mesh on its inside.",
+        shape=Annulus((0.0, 0.0), 0.5, 1.2),
+        field=fields.log_source((0, 0), 2) + fields.polynomial(2) * "1/2",
+        conditions={"inner": "neumann"},
+        conductivity=0.7,
+        quantities={"flux through the outer circle": flux_through("outer", exact=2.8 * math.pi)},
+        sources=(PIPE, HERE),
+    )
+
+
+@family
+def _annulus_convection() -> Definition:
+    return Definition(
+        title="Annulus cooled by convection outside",
+        solution="log r + 3 x^2 y - y^3",
+        reading="A steam pipe in a cross wind.",
+        shape=Annulus((0.0, 0.0), 0.4, 0.9),
+        field=fields.log_source((0, 0)) + fields.polynomial(3, "im"),
+        conditions={"outer": robin(1.5)},
+        conductivity=1.2,
+        quantities={"flux through the inner circle": flux_through("inner", exact=-2.4 * math.pi)},
+        sources=(PIPE, HERE),
+    )
+
+
+@family
+def _annulus_eccentric() -> Definition:
+    return Definition(
+        title="Disc with an eccentric hole",
+        solution="log |x - p| + (x^3 - 3 x y^2)/2, p = (7/20, 1/5)",
+        reading="A cable laid off the axis of its duct.",
+        shape=Annulus((0.0, 0.0), 0.3, 1.0, (0.35, 0.2)),
+        field=fields.log_source(("7/20", "1/5")) + fields.polynomial(3) * "1/2",
+        conductivity=1.3,
+        quantities={"flux through the inner circle": flux_through("inner", exact=-2.6 * math.pi)},
+        sources=(HERE,),
+    )
+
+
+@family
+def _annulus_past_pile() -> Definition:
+    return Definition(
+        title="Flow past a round pile",
+        solution="x + 4/25 x/r^2",
+        note="No flow passes the inner circle of radius 2/5.",
+        reading="Potential of the tidal stream around a pile of the jetty.",
+        shape=Annulus((0.0, 0.0), 0.4, 1.2),
+        field=fields.affine((1, 0)) + fields.dipole((0, 0), (1, 0)) * "4/25",
+        conditions={"inner": "neumann"},
+        quantities={"value at the front of the pile": value_at((-0.4, 0.0), exact="-4/5")},
+        sources=(LAMB,),
+    )

@@ -1,0 +1,164 @@
+"""The statement of a case in words and formulas, made from the case itself so that they cannot disagree."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Mapping, Sequence
+from typing import Any
+
+import numpy as np
+
+from laplace_verify.geometry import Shape
+from laplace_verify.problems import Case, Condition
+
+__all__ = ["conditions_in_words", "conductivity_in_words", "region_in_words", "statement_of"]
+
+AXES = ("x", "y", "z")
+
+
+def statement_of(case: Case, solution: str, note: str = "") -> str:
+    """Return equation, region, conditions, solution and a note in a few sentences.
+
+    Parameters
+    ----------
+    case
+        The case.
+    solution
+        The exact solution as a readable formula.
+    note
+        More sentences.
+
+    Examples
+    --------
+    >>> from laplace_verify import fields
+    >>> from laplace_verify.geometry import Interval
+    >>> from laplace_verify.problems import case
+    >>> rod = case(Interval(0, 2), {}, fields.affine((3,)), 0.5)
+    >>> print(statement_of(rod, "3 x"))
+    div(K grad u) = 0 with K = 0.5 in 0 < x < 2; u given on the whole boundary. Solution u = 3 x.
+    """
+    k = conductivity_in_words(case.problem.conductivity)
+    equation = "div grad u = 0" if k == "1" else f"div(K grad u) = 0 with K = {k}"
+    kinds = {piece.name: case._conditions[piece.name] for piece in case.problem.pieces}
+    parts = [f"{equation} in {region_in_words(case.problem.shape)}", *conditions_in_words(kinds)]
+    if case.problem.constant is not None:
+        parts.append("the mean of u given")
+    return " ".join(filter(None, [f"{'; '.join(parts)}. Solution u = {solution}.", note]))
+
+
+def conductivity_in_words(conductivity: Any) -> str:
+    """Return a number or a matrix in few digits.
+
+    >>> conductivity_in_words(2.5), conductivity_in_words(np.array([[2.0, 0.5], [0.5, 1.0]]))
+    ('2.5', '[[2, 0.5], [0.5, 1]]')
+    """
+    if np.ndim(conductivity) == 0:
+        return _number(float(conductivity))
+    rows = (", ".join(_number(float(k)) for k in row) for row in np.asarray(conductivity))
+    return "[" + ", ".join(f"[{row}]" for row in rows) + "]"
+
+
+def conditions_in_words(conditions: Mapping[str, Condition]) -> list[str]:
+    """Return "u given on ..." and the like, one phrase for all pieces with the same condition.
+
+    >>> from laplace_verify.problems import robin
+    >>> conditions_in_words({"left": Condition(kind="dirichlet"), "right": robin(2)})
+    ['u given on left', 'n . K grad u + 2 u given on right']
+    """
+    phrases: dict[str, list[str]] = {}
+    for name, condition in conditions.items():
+        phrases.setdefault(_given(condition), []).append(name)
+    if len(phrases) == 1 and len(conditions) > 1:
+        return [f"{phrase} on the whole boundary" for phrase in phrases]
+    return [f"{phrase} on {', '.join(names)}" for phrase, names in phrases.items()]
+
+
+def _given(condition: Condition) -> str:
+    """Return which combination of u and its flux is given."""
+    if condition.kind == "dirichlet":
+        return "u given"
+    if condition.kind == "neumann":
+        return "n . K grad u given"
+    alpha = condition.alpha
+    text = _number(alpha) if isinstance(alpha, float) else f"({alpha})" if isinstance(alpha, str) else "alpha"
+    return f"n . K grad u + {text} u given"
+
+
+def region_in_words(shape: Shape) -> str:
+    """Return the region as a reader would write it.
+
+    >>> from laplace_verify.geometry import Disc, Rectangle
+    >>> region_in_words(Disc((0.1, 0), 2))
+    'the disc of radius 2 about (0.1, 0)'
+    >>> region_in_words(Rectangle((0, 0), (2, 1)).split(top=[0.25]))
+    'the rectangle 0 < x < 2, 0 < y < 1 (top cut at 0.25 of its length)'
+    """
+    describe = REGIONS.get(shape.kind)
+    text = describe(shape) if describe else repr(shape)
+    for name, fractions in shape.splits:
+        cuts = " and ".join(_number(fraction) for fraction in fractions)
+        text += f" ({name} cut at {cuts} of its length)"
+    return text
+
+
+def _box(shape: Any) -> str:
+    """Return 0 < x < 2, 0 < y < 1."""
+    lower, upper = shape.bounding_box
+    return ", ".join(
+        f"{_number(a)} < {axis} < {_number(b)}" for axis, a, b in zip(AXES, lower, upper, strict=False)
+    )
+
+
+def _annulus(shape: Any) -> str:
+    """Return the region between two circles."""
+    if shape.inner_centre is None:
+        rings = f"of radius {_number(shape.inner)} and {_number(shape.outer)} about {_point(shape.centre)}"
+        return f"the annulus between the circles {rings}"
+    inner = f"of radius {_number(shape.inner)} about {_point(shape.inner_centre)}"
+    return f"the disc of radius {_number(shape.outer)} about {_point(shape.centre)} without the disc {inner}"
+
+
+def _polygon(shape: Any) -> str:
+    """Return the corners, and those of the holes."""
+    text = f"the polygon with corners {', '.join(_point(vertex) for vertex in shape.vertices)}"
+    for hole in shape.holes:
+        text += f", less the hole with corners {', '.join(_point(vertex) for vertex in hole)}"
+    return text
+
+
+REGIONS: dict[str, Callable[[Any], str]] = {
+    "interval": _box,
+    "rectangle": lambda s: f"the rectangle {_box(s)}",
+    "box": lambda s: f"the box {_box(s)}",
+    "disc": lambda s: f"the disc of radius {_number(s.radius)} about {_point(s.centre)}",
+    "ellipse": lambda s: (
+        f"the ellipse with semi-axes {_number(s.semi_axes[0])} (x) and {_number(s.semi_axes[1])} (y) "
+        f"about {_point(s.centre)}"
+    ),
+    "annulus": _annulus,
+    "sector": lambda s: (
+        f"the sector 0 < r < {_number(s.radius)}, 0 < theta < {_number(math.degrees(s.opening))} degrees"
+    ),
+    "l-shape": lambda s: (
+        f"the L-shape (-{_number(s.size)}, {_number(s.size)})^2 without its quadrant x > 0, y < 0"
+    ),
+    "polygon": _polygon,
+    "ball": lambda s: f"the ball of radius {_number(s.radius)} about {_point(s.centre)}",
+    "spherical-shell": lambda s: (
+        f"the shell between the spheres of radius {_number(s.inner)} and {_number(s.outer)} about "
+        f"{_point(s.centre)}"
+    ),
+    "cylinder": lambda s: (
+        f"the cylinder x^2 + y^2 < {_number(s.radius)}^2, {_number(s.z0)} < z < {_number(s.z1)}"
+    ),
+}
+
+
+def _number(number: float) -> str:
+    """Return a number in at most twelve digits."""
+    return f"{number + 0.0:.12g}"
+
+
+def _point(point: Sequence[float]) -> str:
+    """Return (0.1, 0)."""
+    return f"({', '.join(_number(float(c)) for c in point)})"
