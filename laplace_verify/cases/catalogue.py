@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable, Iterator, Mapping
+from collections.abc import Callable, Collection, Iterable, Iterator, Mapping
 from functools import partial
+from pathlib import Path
 
 from laplace_verify.cases.families import FAMILIES
-from laplace_verify.errors import ProblemError, UnknownCaseError, nearest_names
-from laplace_verify.problems import Case
+from laplace_verify.errors import ProblemError, RecordError, UnknownCaseError, nearest_names
+from laplace_verify.problems import Case, case_from_json, random_case
 
 __all__ = ["Catalogue", "catalogue"]
 
@@ -104,6 +105,64 @@ class Catalogue(Mapping[str, Case]):
             and (can is None or case.conditions <= can)
             and (wanted is None or wanted <= case.tags)
         ]
+
+    @staticmethod
+    def random(
+        seed: int,
+        dim: int = 2,
+        shapes: Collection[str] | None = None,
+        conditions: Collection[str] | None = None,
+        tensor: bool = False,
+    ) -> Case:
+        """Return a random smooth case; see `problems.random_case` for the arguments.
+
+        >>> catalogue.random(3, dim=1).dim
+        1
+        """
+        return random_case(seed, dim, shapes, conditions, tensor)
+
+    def with_folder(self, path: Path | str) -> Catalogue:
+        """Return a catalogue with the cases of a folder added, one JSON file a case.
+
+        Files are read in the order of their names, and checked at once. PROVENANCE.json is passed over.
+
+        Raises
+        ------
+        RecordError
+            If there is no such folder, it holds no case, or a file is no sound case; file and field are named.
+        ProblemError
+            If an id is taken.
+        """
+        folder = Path(path)
+        files = sorted(file for file in folder.glob("*.json") if file.name != "PROVENANCE.json")
+        if not files:
+            missing = "there is no such folder" if not folder.is_dir() else "it holds no file *.json"
+            raise RecordError(f"no cases in {folder}: {missing}; each case is one JSON file")
+        builders = dict(self._builders)
+        origin: dict[str, str] = {}
+        for file in files:
+            case = _read(file)
+            if case.id in builders:
+                taken = origin.get(case.id, "the catalogue")
+                raise ProblemError(
+                    f"{file.name}: the id {case.id!r} is taken by {taken}; every id must be unique, rename it"
+                )
+            builders[case.id], origin[case.id] = partial(_same, case), file.name
+        return Catalogue(builders)
+
+
+def _same(case: Case) -> Case:
+    """Return a case that is built already."""
+    return case
+
+
+def _read(file: Path) -> Case:
+    """Read one case file."""
+    try:
+        content = file.read_bytes()
+    except OSError as cause:
+        raise RecordError(f"{file.name} cannot be read: {cause}") from cause
+    return case_from_json(content, file.name)
 
 
 def _words(words: Iterable[str] | None, name: str) -> frozenset[str] | None:

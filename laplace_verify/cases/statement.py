@@ -11,7 +11,13 @@ import numpy as np
 from laplace_verify.geometry import Shape
 from laplace_verify.problems import Case, Condition
 
-__all__ = ["conditions_in_words", "conductivity_in_words", "region_in_words", "statement_of"]
+__all__ = [
+    "conditions_in_words",
+    "conductivity_in_words",
+    "given_in_words",
+    "region_in_words",
+    "statement_of",
+]
 
 AXES = ("x", "y", "z")
 
@@ -67,14 +73,18 @@ def conditions_in_words(conditions: Mapping[str, Condition]) -> list[str]:
     """
     phrases: dict[str, list[str]] = {}
     for name, condition in conditions.items():
-        phrases.setdefault(_given(condition), []).append(name)
+        phrases.setdefault(given_in_words(condition), []).append(name)
     if len(phrases) == 1 and len(conditions) > 1:
         return [f"{phrase} on the whole boundary" for phrase in phrases]
     return [f"{phrase} on {', '.join(names)}" for phrase, names in phrases.items()]
 
 
-def _given(condition: Condition) -> str:
-    """Return which combination of u and its flux is given."""
+def given_in_words(condition: Condition) -> str:
+    """Return which combination of u and its flux is given.
+
+    >>> given_in_words(Condition(kind="robin", alpha=2.0))
+    'n . K grad u + 2 u given'
+    """
     if condition.kind == "dirichlet":
         return "u given"
     if condition.kind == "neumann":

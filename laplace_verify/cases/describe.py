@@ -1,0 +1,112 @@
+"""A case in plain text: what it states, what is known, where it comes from."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from textwrap import fill
+
+from tabulate import tabulate
+
+from laplace_verify.cases.statement import conductivity_in_words, given_in_words, region_in_words
+from laplace_verify.problems import Case, Quantity
+
+__all__ = ["basis_in_words", "describe", "regularity_in_words"]
+
+WIDTH = 100
+
+
+def describe(case: Case) -> str:
+    """Return title, statement, pieces, regularity, quantities, reading, sources and tags of a case.
+
+    Examples
+    --------
+    >>> from laplace_verify.cases import catalogue
+    >>> print(describe(catalogue["rod-two-temperatures"]).splitlines()[0])
+    Rod between two temperatures (rod-two-temperatures)
+    """
+    problem = case.problem
+    facts = [
+        ("shape", f"{region_in_words(problem.shape)} ({problem.shape.kind}, {case.dim}-D)"),
+        ("conductivity", conductivity_in_words(problem.conductivity)),
+        ("exact solution", case.exact.formula),
+        ("digits", basis_in_words(case)),
+        ("regularity", regularity_in_words(case)),
+    ]
+    if problem.constant is not None:
+        facts.append(("level", f"the {problem.constant[0]} of u is {problem.constant[-1]:.12g}"))
+    parts = [
+        f"{case.title} ({case.id})",
+        fill(case.statement, WIDTH),
+        fill(case.reading, WIDTH),
+        "\n".join(fill(f"{name:16}{text}", WIDTH, subsequent_indent=" " * 16) for name, text in facts),
+        _pieces(case),
+        _quantities(case),
+        "Sources\n" + "\n".join(fill(source, WIDTH, subsequent_indent="  ") for source in case.sources),
+        fill("Tags: " + ", ".join(sorted(case.tags)), WIDTH),
+    ]
+    return "\n\n".join(part for part in parts if part)
+
+
+def regularity_in_words(case: Case) -> str:
+    """Return how smooth solution and domain are, and the smallest length.
+
+    >>> from laplace_verify.cases import catalogue
+    >>> regularity_in_words(catalogue["l-shape-corner"])
+    'u - smooth ~ r^0.6667; domain exponent 0.6667; smallest length 1'
+    """
+    found = case.regularity
+    if math.isinf(found.solution):
+        solution = "u smooth on the closed shape"
+    elif len(found.jumps):
+        solution = "boundary data jump"
+    else:
+        solution = f"u - smooth ~ r^{found.solution:.4g}"
+    domain = "no corner" if math.isinf(found.domain) else f"domain exponent {found.domain:.4g}"
+    return f"{solution}; {domain}; smallest length {found.scale:.4g}"
+
+
+def basis_in_words(case: Case) -> str:
+    """Return why the digits of the exact solution can be believed."""
+    return {
+        "closed form": "closed form",
+        "tail bound": "series with a proven bound of its tail",
+        "uncertified": "a function whose inside is unknown: not certified",
+    }[case.exact.basis]
+
+
+def _pieces(case: Case) -> str:
+    """Return a table of the boundary pieces."""
+    unit = case.units.length
+    size = "size" if not unit else f"size ({unit if case.dim == 2 else f'{unit}^{case.dim - 1}'})"
+    rows = [
+        (piece.name, piece.kind, given_in_words(case._conditions[piece.name]), f"{piece.measure:.6g}")
+        for piece in case.problem.pieces
+    ]
+    return _table(rows, ("piece", "condition", "given", size))
+
+
+def _quantities(case: Case) -> str:
+    """Return a table of the exact quantities."""
+    if not case.quantities:
+        return ""
+    rows = [
+        (name, f"{quantity.value:.15g} {quantity.unit}".rstrip(), f"{quantity.radius:.1e}", _where(quantity))
+        for name, quantity in case.quantities.items()
+    ]
+    return _table(rows, ("quantity", "value", "radius", "is"))
+
+
+def _table(rows: Sequence[tuple[str, ...]], headers: tuple[str, ...]) -> str:
+    """Return a plain table of text."""
+    return tabulate(rows, headers=headers, tablefmt="simple", disable_numparse=True)
+
+
+def _where(quantity: Quantity) -> str:
+    """Return what a quantity is, as a formula."""
+    if quantity.kind == "flux":
+        return f"integral of n . K grad u over {quantity.where}"
+    if quantity.kind == "energy":
+        return "integral of grad u . K grad u"
+    point = ", ".join(f"{c:.12g}" for c in quantity.where or ())
+    return f"u({point})"

@@ -1,0 +1,99 @@
+"""Are the stored digits those of the exact field? They are recomputed, in more digits than are stored."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+
+import mpmath
+
+from laplace_verify.errors import ProblemError
+from laplace_verify.problems import Case, StoredValue
+from laplace_verify.references.stored import StoredReference
+
+__all__ = ["CheckedValue", "check_reference"]
+
+MOST_DIGITS = 250
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class CheckedValue:
+    """One stored value against its recomputation.
+
+    Attributes
+    ----------
+    point
+        Where.
+    difference
+        Largest difference of u and of the components of grad u.
+    radius
+        The stored radius plus that of the recomputation: what the difference may be.
+    agrees
+        Whether it is no more than that; False for NaN.
+    """
+
+    point: tuple[str, ...]
+    difference: mpmath.mpf
+    radius: mpmath.mpf
+    agrees: bool
+
+
+def check_reference(case: Case, stored: StoredReference | Iterable[StoredValue]) -> list[CheckedValue]:
+    """Recompute stored values of a case and compare them within their radii.
+
+    Parameters
+    ----------
+    case
+        The case whose exact field is evaluated.
+    stored
+        What `load_reference` returns, or single values.
+
+    Returns
+    -------
+    list of CheckedValue
+        One for each stored point, in order.
+
+    Raises
+    ------
+    ProblemError
+        If the stored values belong to another case, or a number among them cannot be read.
+
+    Examples
+    --------
+    >>> from laplace_verify import fields
+    >>> from laplace_verify.geometry import Disc
+    >>> from laplace_verify.problems import case
+    >>> pool = case(Disc((0, 0), 1), {}, fields.polynomial(2))
+    >>> wrong = StoredValue(point=("0.5", "0.1"), value="0.2401", gradient=("1", "-0.2"), radius="1e-9",
+    ...                     basis="closed form")
+    >>> check_reference(pool, [wrong])[0].agrees
+    False
+    """
+    if isinstance(stored, StoredReference):
+        if stored.case_id != case.id:
+            raise ProblemError(f"these are the values of {stored.case_id!r}, the case is {case.id!r}")
+        stored = stored.values
+    return [_checked(case, value) for value in stored]
+
+
+def _checked(case: Case, stored: StoredValue) -> CheckedValue:
+    """Compare one stored value."""
+    digits = min(MOST_DIGITS, max(len(text) for text in (stored.value, *stored.gradient)) + 10)
+    value, open_, _ = case.exact.enclosure(stored.point, digits=digits)
+    gradient = case.exact.gradient_at(stored.point, digits=digits)
+    if len(stored.gradient) != len(gradient):
+        raise ProblemError(
+            f"case {case.id!r}: the stored gradient at {stored.point} has {len(stored.gradient)} components, "
+            f"{len(gradient)} are needed"
+        )
+    with mpmath.workdps(digits + 15):
+        try:
+            given = [mpmath.mpf(text) for text in (stored.value, *stored.gradient)]
+            allowed = mpmath.mpf(stored.radius) + 2 * open_
+        except ValueError as cause:
+            raise ProblemError(
+                f"case {case.id!r}: a number stored at {stored.point} is none: {cause}"
+            ) from cause
+        differences = [abs(a - b) for a, b in zip(given, (value, *gradient), strict=True)]
+        agrees = all(bool(difference <= allowed) for difference in differences)
+        return CheckedValue(point=stored.point, difference=max(differences), radius=allowed, agrees=agrees)

@@ -1,0 +1,111 @@
+"""Reference values of a case: u and grad u at chosen points, in many digits.
+
+A number is printed with `digits` significant digits; the radius is what the evaluation leaves open plus half
+a unit in the last printed digit, rounded up. The basis is that of the field: "closed form" (only rounding is
+left, and two working precisions agree) or "tail bound" (a series with a proven bound). A field without such
+a basis has no reference values.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+from dataclasses import dataclass
+from typing import Any
+
+import mpmath
+
+from laplace_verify.errors import ProblemError
+from laplace_verify.problems import Case, StoredValue
+
+__all__ = ["StoredReference", "stored_values"]
+
+GUARD = 10  # digits beyond those printed
+PROVEN = ("closed form", "tail bound")
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class StoredReference:
+    """The reference values of one case.
+
+    Attributes
+    ----------
+    case_id
+        Id of the case they belong to.
+    values
+        Points with u, grad u, radius and basis.
+    """
+
+    case_id: str
+    values: tuple[StoredValue, ...]
+
+
+def stored_values(case: Case, points: Iterable[Sequence[str]], digits: int = 40) -> tuple[StoredValue, ...]:
+    """Return u and grad u of a case at points, as decimal strings of `digits` significant digits.
+
+    Parameters
+    ----------
+    case
+        The case; lengths and values in its own units.
+    points
+        Points of the closed shape, coordinates as decimal strings (exact).
+    digits
+        Significant digits, 1 to 200.
+
+    Raises
+    ------
+    ProblemError
+        If a point lies outside the shape, the basis of the field is no proof, or `digits` is out of range.
+    FieldError
+        If u or its gradient has no value at a point.
+
+    Examples
+    --------
+    >>> from laplace_verify import fields
+    >>> from laplace_verify.geometry import Disc
+    >>> from laplace_verify.problems import case
+    >>> pool = case(Disc((0, 0), 1), {}, fields.polynomial(2))
+    >>> value = stored_values(pool, [("0.5", "0.1")], digits=6)[0]
+    >>> value.value, value.gradient, value.radius
+    ('0.24', ('1.0', '-0.2'), '5.1e-6')
+    """
+    if isinstance(digits, bool) or not isinstance(digits, int) or not 1 <= digits <= 200:
+        raise ProblemError(f"digits must be an integer from 1 to 200, got {digits!r}")
+    if case.exact.basis not in PROVEN:
+        raise ProblemError(
+            f"case {case.id!r}: the digits of {case.exact.formula} rest on nothing proven "
+            f"({case.exact.basis!r}), so they cannot be stored as a reference"
+        )
+    return tuple(_stored_value(case, tuple(point), digits) for point in points)
+
+
+def _stored_value(case: Case, point: tuple[str, ...], digits: int) -> StoredValue:
+    """Return the reference value at one point."""
+    place = [float(mpmath.mpf(c)) for c in point]
+    if len(place) != case.dim or not case.problem.shape.contains([place], tol=1e-15).all():
+        raise ProblemError(f"case {case.id!r}: {point} is no point of {case.problem.shape!r}")
+    value, open_, basis = case.exact.enclosure(point, digits=digits + GUARD)
+    gradient = case.exact.gradient_at(point, digits=digits + GUARD)
+    with mpmath.workdps(digits + 2 * GUARD):
+        largest = max(abs(number) for number in (value, *gradient))
+        radius = 2 * open_ + largest * mpmath.mpf(10) ** (1 - digits) / 2
+        return StoredValue(
+            point=point,
+            value=mpmath.nstr(value, digits),
+            gradient=tuple(mpmath.nstr(part, digits) for part in gradient),
+            radius=_rounded_up(radius),
+            basis=basis,
+        )
+
+
+def _rounded_up(radius: Any) -> str:
+    """Return two significant digits that are not below the radius.
+
+    >>> _rounded_up(mpmath.mpf("1.23e-7")), _rounded_up(mpmath.mpf(0))
+    ('1.3e-7', '0.0')
+    """
+    if not radius:
+        return "0.0"
+    with mpmath.workdps(30):
+        exponent = int(mpmath.floor(mpmath.log10(radius))) - 1
+        steps = mpmath.ceil(radius / mpmath.mpf(10) ** exponent)
+        return str(mpmath.nstr(steps * mpmath.mpf(10) ** exponent, 3))
