@@ -168,8 +168,9 @@ def _table(ctx: Any, data: Continuation, height: Fraction) -> _Table:
         (place, [high.number(jump * length**p) / high.pi ** (p + 1) for p, jump in enumerate(jumps)])
         for place, jumps in images
     ]
-    count = 2 + math.ceil(2 * accuracy(ctx) / NEAR)
-    modes = _modes(high, data, count)
+    deep = math.pi * float(height / length)
+    count = 2 + math.ceil(accuracy(ctx) / min(NEAR, 2 * deep - min(NEAR, deep)))  # far off, or the remainder next to it
+    modes = _modes(high, data, scaled, count)
     base = high.expm1(-2 * high.pi * high.number(height / length))
     divided = []
     for n, mode in enumerate(modes, start=1):
@@ -185,23 +186,22 @@ def _table(ctx: Any, data: Continuation, height: Fraction) -> _Table:
     )  # fmt: skip
 
 
-def _modes(high: Any, data: Continuation, count: int) -> list[Any]:
+def _modes(high: Any, data: Continuation, places: list[tuple[Fraction, list[Any]]], count: int) -> list[Any]:
     """Return the Fourier coefficients A_1 ... A_count of the continuation, 2 Re F_n if even, -2 Im F_n if odd.
 
     With theta = n pi (c - start) / a, F_n = 1/2 sum J a^p / pi^{p+1} e^{-i theta} (i n)^{-(p+1)}.
     """
     start, length = data.breaks[0], data.breaks[-1] - data.breaks[0]
-    images = [image for image in data.images(start - length, start + length) if image[0] > start - length]
     modes = []
     for n in range(1, count + 1):
         total = high.mpf(0)
-        for place, jumps in images:
+        for place, factors in places:
             turns = n * (place - start) / length % 2  # exact reduction of the angle to one period
-            wave = high.expjpi(-high.number(turns))
-            for p, jump in enumerate(jumps):
-                if jump:
-                    size = high.number(jump * length**p) / (n * high.pi) ** (p + 1)
-                    turned = wave * high.mpc(0, -1) ** (p + 1) * size
-                    total += turned.real if data.even else -turned.imag
+            wave, weight = high.expjpi(-high.number(turns)), high.mpf(1)
+            for factor in factors:
+                weight = weight / n
+                wave = high.mpc(wave.imag, -wave.real)  # divided by i
+                if factor:
+                    total += weight * factor * (wave.real if data.even else -wave.imag)
         modes.append(total)
     return modes

@@ -1,0 +1,169 @@
+"""A rectangle with data on one side: the part that does not depend on how the data are given.
+
+A family of data solves the problem as a function of the coordinate along the side with data and of the distances
+d and h = b - d from it and from the opposite side; all distances are exact next to the sides.
+"""
+
+from __future__ import annotations
+
+from abc import abstractmethod
+from collections.abc import Iterable
+from dataclasses import dataclass
+from fractions import Fraction
+from typing import Any
+
+import numpy as np
+
+from laplace_verify.arrays import Array, BoolArray
+from laplace_verify.contexts import Number
+from laplace_verify.errors import FieldError, nearest_names
+from laplace_verify.fields.base import Field
+from laplace_verify.fields.plate_box import Depth
+from laplace_verify.fields.exact import Exact, exact_point, offset, rational, show
+
+__all__ = ["Plate", "side_ends"]
+
+SIDES = {"left": (1, 0), "right": (1, 1), "bottom": (0, 0), "top": (0, 1)}  # axis along the side; low or high
+CONDITIONS = ("zero", "insulated")
+OUTSIDE = 1e-12  # of the longer side: how far outside a point may be put by rounding
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Plate(Field):
+    """Harmonic in the rectangle lower < (x, y) < upper, with data on `side`; see `rectangle_series`."""
+
+    lower: tuple[Exact, ...]
+    upper: tuple[Exact, ...]
+    side: str = "top"
+    neighbours: str = "zero"
+    far: str = "zero"
+
+    def __post_init__(self) -> None:
+        """Make the corners exact and check the words.
+
+        Raises
+        ------
+        FieldError
+            If the corners are not those of a rectangle or a word is unknown.
+        """
+        object.__setattr__(self, "lower", exact_point(self.lower, "lower", (2,)))
+        object.__setattr__(self, "upper", exact_point(self.upper, "upper", (2,)))
+        if not all(rational(a) < rational(b) for a, b in zip(self.lower, self.upper, strict=True)):
+            raise FieldError(
+                f"lower must lie below and left of upper, got {_corner(self.lower)} and {_corner(self.upper)}"
+            )
+        for name, given, known in (
+            ("side", self.side, tuple(SIDES)),
+            ("neighbours", self.neighbours, CONDITIONS),
+            ("far", self.far, CONDITIONS),
+        ):
+            if given not in known:
+                raise FieldError(
+                    f"{name} must be one of {', '.join(known)}, got {given!r}; {_nearest(given, known)}"
+                )
+
+    @property
+    def dim(self) -> int:
+        """2."""
+        return 2
+
+    @property
+    def even(self) -> bool:
+        """Whether the data continue as an even function: insulated neighbours."""
+        return self.neighbours == "insulated"
+
+    @property
+    def ends(self) -> tuple[Fraction, Fraction]:
+        """Coordinates along the side of its two ends."""
+        return side_ends(self.lower, self.upper, self.side)
+
+    @property
+    def depth(self) -> Depth:
+        """Extent across the side, and what is opposite."""
+        axis = 1 - SIDES[self.side][0]
+        return Depth(rational(self.upper[axis]) - rational(self.lower[axis]), self.far == "insulated")
+
+    @property
+    def formula(self) -> str:
+        """The problem in one line."""
+        return (
+            f"[{_corner(self.lower)} to {_corner(self.upper)}: {self._data_text()} on {self.side}, "
+            f"neighbours {self.neighbours}, opposite {self.far}]"
+        )
+
+    def place_on_side(self, coordinate: Fraction) -> tuple[float, float]:
+        """Return the point of the side with the given coordinate along it."""
+        axis, end = SIDES[self.side]
+        hot = (self.lower, self.upper)[end][1 - axis]
+        return (float(coordinate), float(hot)) if axis == 0 else (float(hot), float(coordinate))
+
+    # -- what a family of data provides ----------------------------------------------------------------------
+
+    @abstractmethod
+    def _data_text(self) -> str:
+        """Return the data in words or as a formula."""
+
+    @abstractmethod
+    def _solve(self, ctx: Any, x: Any, d: Any, h: Any) -> Any:
+        """Return u."""
+
+    @abstractmethod
+    def _slopes(self, ctx: Any, x: Any, d: Any, h: Any) -> tuple[Any, Any]:
+        """Return the derivatives of u along the side and with respect to d."""
+
+    # -- the field -------------------------------------------------------------------------------------------
+
+    def _distances(self, ctx: Any, point: tuple[Any, ...]) -> tuple[Any, Any, Any]:
+        """Return the coordinate along the side and the distances from it and from the opposite side."""
+        axis, end = SIDES[self.side]
+        x, y = point[axis], point[1 - axis]
+        low, high = offset(ctx, y, self.lower[1 - axis]), -offset(ctx, y, self.upper[1 - axis])
+        low, high = ctx.where(low > 0, low, 0 * low), ctx.where(high > 0, high, 0 * high)
+        start, stop = ctx.number(self.lower[axis]), ctx.number(self.upper[axis])
+        x = ctx.where(x < start, 0 * x + start, ctx.where(x > stop, 0 * x + stop, x))
+        return (x, high, low) if end else (x, low, high)
+
+    def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:  # noqa: ARG002  # no cut
+        along, d, h = self._distances(ctx, x)
+        u = self._solve(ctx, along, d, h)
+        if self.even:
+            return u
+        axis = SIDES[self.side][0]
+        on_neighbour = (offset(ctx, along, self.lower[axis]) <= 0) | (
+            offset(ctx, along, self.upper[axis]) >= 0
+        )
+        return ctx.where(on_neighbour, 0 * u, u)  # exactly zero, but NaN stays NaN at a corner that jumps
+
+    def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:  # noqa: ARG002
+        along, d, h = self._distances(ctx, x)
+        axis, end = SIDES[self.side]
+        slope, depth = self._slopes(ctx, along, d, h)
+        across = -depth if end else depth  # d falls with y if the data are on the upper side
+        return (slope, across) if axis == 0 else (across, slope)
+
+    def _valid(self, points: Array) -> BoolArray:
+        """Return which points lie in the closed rectangle, to rounding."""
+        low = np.array([float(c) for c in self.lower])
+        high = np.array([float(c) for c in self.upper])
+        slack = OUTSIDE * float((high - low).max())
+        inside: BoolArray = ((points >= low - slack) & (points <= high + slack)).all(axis=1)
+        return inside
+
+
+def side_ends(lower: Iterable[Number], upper: Iterable[Number], side: str) -> tuple[Fraction, Fraction]:
+    """Return the coordinates along a side of the ends of that side."""
+    if side not in SIDES:
+        raise FieldError(f"side must be one of {', '.join(SIDES)}, got {side!r}")
+    axis = SIDES[side][0]
+    low, high = exact_point(lower, "lower", (2,)), exact_point(upper, "upper", (2,))
+    return rational(low[axis]), rational(high[axis])
+
+
+def _corner(point: tuple[Exact, ...]) -> str:
+    """Return (0, 1)."""
+    return "(" + ", ".join(show(c) for c in point) + ")"
+
+
+def _nearest(given: object, known: tuple[str, ...]) -> str:
+    """Return the nearest known words."""
+    return nearest_names(str(given)[:40], known)
