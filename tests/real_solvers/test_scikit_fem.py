@@ -66,8 +66,8 @@ def solve_with(element, curved):
             if piece.kind == "robin":
                 alpha = piece.alpha(points).reshape(shape)
                 matrix += skfem.BilinearForm(lambda u, v, w: w.a * u * v).assemble(side, a=alpha)
-        if fixed:
-            system = skfem.condense(matrix, load, x=u, D=np.concatenate(fixed))
+        if fixed:  # unique: a corner node named twice would be carried to the right-hand side twice
+            system = skfem.condense(matrix, load, x=u, D=np.unique(np.concatenate(fixed)))
         elif problem.constant is None:  # Robin data fix the level
             system = matrix, load
         else:  # pure Neumann: one node is held, the level follows from the mean
