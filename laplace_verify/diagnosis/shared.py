@@ -35,9 +35,12 @@ def feature_names(study: Study) -> frozenset[str]:
     """Return the features a study has, as words: true ones by name, others as "name: value".
 
     >>> from laplace_verify.measure.verdict import Verdict
-    >>> study = Study(solver="s", case_id="c", case_title="", verdict=Verdict.PASS, sizes=[], seed=0,
-    ...               features={"Neumann condition": True, "tensor": False, "dimension": 2.0, "shape":
-    "disc"}) >>> sorted(feature_names(study)) ['Neumann condition', 'dimension: 2', 'shape: disc']
+    >>> features = {"Neumann condition": True, "tensor": False, "dimension": 2.0, "shape": "disc"}
+    >>> study = Study(
+    ...     solver="s", case_id="c", case_title="", verdict=Verdict.PASS, sizes=[], seed=0, features=features
+    ... )
+    >>> sorted(feature_names(study))
+    ['Neumann condition', 'dimension: 2', 'shape: disc']
     """
     names = set()
     for name, value in study.features.items():

@@ -24,6 +24,7 @@ from laplace_verify.report.text import (
     accepted,
     finest_error,
     interval,
+    is_exact,
     joined,
     number,
     order,
@@ -47,7 +48,7 @@ def case_section(record: Record, study: Study) -> Section:
         blocks += _question(info)
     blocks += _conclusion(study)
     if study.orders:
-        blocks.append(_order_table(study))
+        blocks += _order_table(study)
     if study.levels:
         blocks.append(_level_table(study))
         blocks += _left_out(study)
@@ -124,16 +125,26 @@ def _conclusion(study: Study) -> list[Block]:
         blocks += [Paragraph(label="Why.", text=""), Items(entries=tuple(study.reasons))]
     if study.crash:
         blocks += [Paragraph(label="What the solver raised.", text=""), Code(text=study.crash)]
-    if study.remarks:
+    notes = {found.note for found in study.orders.values()}  # the table of orders says these
+    remarks = tuple(remark for remark in study.remarks if remark not in notes)
+    if remarks:
         blocks += [
             Paragraph(label="Remarks.", text="These do not decide the verdict."),
-            Items(entries=tuple(study.remarks)),
+            Items(entries=remarks),
         ]
     return blocks
 
 
-def _order_table(study: Study) -> Table:
-    """Return one row a norm: formal, expected, observed order."""
+def _order_table(study: Study) -> list[Block]:
+    """Return one row a norm that is expected to converge or usually shown; the others in one line below."""
+    shown = {norm for norm, found in study.orders.items() if found.expected is not None} | set(
+        shown_norms(study)
+    )
+    others = [
+        f"{norm}: {interval(found)}, finest error {number(finest_error(study, norm))}"
+        for norm, found in study.orders.items()
+        if norm not in shown
+    ]
     columns = (
         Column(title="Norm"),
         Column(title="Role"),
@@ -158,8 +169,15 @@ def _order_table(study: Study) -> Table:
             Cell(text=found.basis),
         )
         for norm, found in study.orders.items()
+        if norm in shown
     )
-    return Table(caption="Formal, expected and observed order by norm", columns=columns, rows=rows)
+    blocks: list[Block] = [
+        Table(caption="Formal, expected and observed order by norm", columns=columns, rows=rows)
+    ]
+    if others:
+        label = "Observed orders without an expected one."
+        blocks.append(Paragraph(label=label, text=f"{'; '.join(others)}."))
+    return blocks
 
 
 def _level_table(study: Study) -> Table:
@@ -195,7 +213,8 @@ def _level_row(study: Study, place: int, level: Level, norms: list[str]) -> tupl
         found = study.orders.get(norm)
         pairs = found.pairs if found else []
         pair = pairs[place - 1] if 0 < place <= len(pairs) else None
-        texts += [number(level.errors.get(norm)), "" if pair is None else order(pair)]
+        noise = found is not None and is_exact(found)  # ratios of rounding errors
+        texts += [number(level.errors.get(norm)), "" if pair is None or noise else order(pair)]
         if found and str(level.size) in found.left_out:
             out.add(norm)
     judged = (
@@ -235,16 +254,14 @@ def _pictures(study: Study, info: CaseInfo | None) -> tuple[Picture, ...]:
             key=f"errors-{study.case_id}",
             title="Convergence",
             alt=f"Errors against h, both logarithmic, {len(study.levels)} levels. {words}.",
-            caption="Errors against h with the expected slope (dotted). Hollow marks are not in the fit, "
-            "thin lines do not decide.",
+            caption="Errors against h.",
             draw=lambda: convergence_figure(study),
         ),
         Picture(
             key=f"orders-{study.case_id}",
             title="Observed order",
             alt=f"Order between neighbouring levels against h. {words}.",
-            caption="Order between neighbouring levels. Dotted: expected; dashed: lowest accepted; band: "
-            "fitted order of the first norm with 2 standard errors.",
+            caption="Order between neighbouring levels.",
             draw=lambda: order_figure(study),
         ),
     ]

@@ -27,7 +27,7 @@ _RULES = (
     "The tolerance is half of the smallest loss of order that the verdict is built to see. The order is "
     "fitted to at "
     f"least {MINIMUM_LEVELS} levels, with a standard error.",
-    "PASS: expected order less tolerance lies below the whole interval observed -+ 2 standard errors, "
+    "PASS: expected order less tolerance lies below the whole interval observed ± 2 standard errors, "
     "and the last two levels do not contradict it. FAIL: it lies above the whole interval, or the error "
     "does not fall. Otherwise the verdict is INCONCLUSIVE. Faster convergence than expected passes.",
     f"Fewer than {MINIMUM_LEVELS} levels give orders but no PASS, unless the answer is exact to "
@@ -38,16 +38,20 @@ _RULES = (
 
 def criteria_section(record: Record) -> Section:
     """Return the rules and, for every distinct criterion, the cases it applies to."""
-    groups: dict[tuple[str, str, str, str, str], list[str]] = {}
+    by_norm: dict[tuple[str, ...], list[str]] = {}
     for study in record.studies:
         for norm in study.deciding:
             found = study.orders[norm]
             key = (norm, order(found.formal), _rate(found), number(found.tolerance, 2), found.basis)
-            groups.setdefault(key, []).append(study.case_id)
+            by_norm.setdefault(key, []).append(study.case_id)
+    # Norms that share criterion and cases share a row.
+    groups: dict[tuple[tuple[str, ...], tuple[str, ...]], list[str]] = {}
+    for (norm, *criterion), cases in by_norm.items():
+        groups.setdefault((tuple(criterion), tuple(cases)), []).append(norm)
     blocks: list[Block] = [Items(entries=_RULES, ordered=True)]
     if groups:
         columns = (
-            Column(title="Deciding norm"),
+            Column(title="Deciding norms"),
             Column(title="Formal order", align="right"),
             Column(title="Expected order", align="right"),
             Column(title="Tolerance", align="right"),
@@ -56,10 +60,13 @@ def criteria_section(record: Record) -> Section:
         )
         rows = tuple(
             (
-                *(Cell(text=text) for text in key),
+                Cell(text=", ".join(norms)),
+                *(Cell(text=text) for text in criterion),
                 Cell(text=f"{len(cases)}: {', '.join(cases)}"),
             )
-            for key, cases in sorted(groups.items(), key=lambda item: (item[0][0], -len(item[1]), item[0]))
+            for (criterion, cases), norms in sorted(
+                groups.items(), key=lambda item: (-len(item[0][1]), item[0])
+            )
         )
         blocks.append(Table(caption="Criteria and the cases they apply to", columns=columns, rows=rows))
     else:

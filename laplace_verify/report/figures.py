@@ -8,11 +8,11 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from laplace_verify.measure.results import Level, Study
 from laplace_verify.report.style import INK, MARKERS, QUIET, SERIES, drawing, log_axis, new_figure
-from laplace_verify.report.text import order
+from laplace_verify.report.text import is_exact, order
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -52,7 +52,7 @@ def convergence_figure(study: Study) -> Figure:
         for place, norm in enumerate(shown_norms(study)):
             _error_line(axes, study, norm, place, exponential)
             found = study.orders.get(norm)
-            if found and found.decides and isinstance(found.expected, float | int):
+            if found and found.decides and isinstance(found.expected, float | int) and not is_exact(found):
                 anchor = _first_point(study, norm)
                 # One guide a slope, below the lowest curve of that slope.
                 if anchor and (found.expected not in slopes or anchor[1] < slopes[found.expected][1]):
@@ -152,13 +152,14 @@ def order_figure(study: Study) -> Figure:
         drawn: list[float] = []
         for place, norm in enumerate(shown_norms(study)):
             drawn += _order_line(axes, study, norm, place)
-        expected = _expected_lines(axes, study)
+        expected = _expected_lines(axes, study) if drawn else []
         if drawn:
             _frame_orders(axes, drawn + expected)
             log_axis(axes, "x")
             _legend(axes)
         else:
-            _nothing(axes, "fewer than two levels with errors: no order")
+            exact = any(is_exact(found) for found in study.orders.values())
+            _nothing(axes, "errors at round-off: no order" if exact else "fewer than two errors: no order")
         axes.set_xlabel("h  (between two levels)")
         axes.set_ylabel("observed order")
         axes.grid(True, which="major")
@@ -169,7 +170,7 @@ def order_figure(study: Study) -> Figure:
 def _order_line(axes: Axes, study: Study, norm: str, place: int) -> list[float]:
     """Draw the orders of one norm at the geometric mean of each pair of h; return them."""
     found = study.orders.get(norm)
-    if found is None:
+    if found is None or is_exact(found):
         return []
     middles = [math.sqrt(a.h * b.h) for a, b in zip(study.levels, study.levels[1:], strict=False)]
     points = [
@@ -215,9 +216,8 @@ def _frame_orders(axes: Axes, values: Sequence[float]) -> None:
 
 def _legend(axes: Axes) -> None:
     """Put the legend above the axes, where no curve can be."""
-    axes.legend(
-        loc="lower left", bbox_to_anchor=(-0.1, 1.0), ncols=3, handlelength=2.0, columnspacing=1.0, borderaxespad=0.1
-    )  # fmt: skip
+    place: dict[str, Any] = {"loc": "lower left", "bbox_to_anchor": (-0.1, 1.0), "borderaxespad": 0.1}
+    axes.legend(ncols=3, handlelength=2.0, columnspacing=1.0, **place)
 
 
 def _nothing(axes: Axes, reason: str) -> None:

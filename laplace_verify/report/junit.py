@@ -1,8 +1,8 @@
 """The verdicts as JUnit XML, which continuous integration servers read.
 
 One ``testcase`` a study and a law. FAIL and INCONCLUSIVE are failures, ERROR is an error, NOT_APPLICABLE
-and NOT_RUN are skipped; each with its reason. An accepted deviation that deviates as declared is skipped
-too, and says so.
+and NOT_RUN are skipped; each with its reason. A study that deviates as its author declared is skipped too,
+and says so; one that passes against the declaration is a failure, so that the declaration gets removed.
 """
 
 from __future__ import annotations
@@ -13,7 +13,7 @@ from laplace_verify.campaign.record import Record
 from laplace_verify.measure.results import Study
 from laplace_verify.measure.verdict import Verdict
 from laplace_verify.principles.results import Check
-from laplace_verify.report.text import VERDICT_WORDS, number, printable
+from laplace_verify.report.text import VERDICT_WORDS, accepted, number, printable
 
 __all__ = ["to_junit"]
 
@@ -61,12 +61,15 @@ def _study(record: Record, study: Study) -> ElementTree.Element:
     time = sum(level.seconds for level in study.levels)
     element = _element(record, "order", study.case_id, time)
     text = "\n".join([*study.reasons, *(f"remark: {remark}" for remark in study.remarks)])
-    known = record.solver.known.get(study.case_id)
-    if known is not None and study.verdict is Verdict.FAIL:
-        skipped = ElementTree.SubElement(
-            element, "skipped", message=printable(f"accepted deviation: {known}")
+    if accepted(study):
+        message = printable(f"accepted deviation: {study.known}")
+        ElementTree.SubElement(element, "skipped", message=message).text = printable(text)
+        return element
+    if study.known is not None and study.verdict is Verdict.PASS:
+        message = printable(
+            f"passes, but is declared a known deviation ({study.known}): remove the declaration"
         )
-        skipped.text = printable(text)
+        ElementTree.SubElement(element, "failure", message=message, type="PASS").text = printable(text)
         return element
     message = study.reasons[0] if study.reasons else VERDICT_WORDS[study.verdict]
     _outcome(element, study.verdict, message, text)

@@ -48,8 +48,9 @@ _GREEK = (
 )  # fmt: skip
 _COMMANDS = {
     "\\": r"\textbackslash{}", "{": r"\{", "}": r"\}", "$": r"\$", "&": r"\&", "#": r"\#", "%": r"\%",
-    "_": r"\_", "^": r"\textasciicircum{}", "~": r"\textasciitilde{}", "<": r"\textless{}", ">": r"\textgreater{}",
-    "|": r"\textbar{}", '"': r"\textquotedbl{}", "'": r"\textquotesingle{}", "`": r"\textasciigrave{}",
+    "_": r"\_", "^": r"\textasciicircum{}", "~": r"\textasciitilde{}", "<": r"\textless{}",
+    ">": r"\textgreater{}", "|": r"\textbar{}", '"': r"\textquotedbl{}", "'": r"\textquotesingle{}",
+    "`": r"\textasciigrave{}",
     "–": r"\textendash{}", "—": r"\textemdash{}", "…": r"\ldots{}", "“": "``", "”": "''", "‘": "`", "’": "'",
     "·": r"$\cdot$", "×": r"$\times$", "±": r"$\pm$", "−": "$-$", "∞": r"$\infty$",
     "≤": r"$\leq$", "≥": r"$\geq$", "≈": r"$\approx$",

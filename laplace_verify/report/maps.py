@@ -9,7 +9,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from scipy.spatial import cKDTree
@@ -17,7 +17,16 @@ from scipy.spatial import cKDTree
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.campaign.record import CaseInfo, PieceInfo
 from laplace_verify.measure.results import ErrorMap
-from laplace_verify.report.style import INK, QUIET, SERIES, decade, drawing, log_axis, new_figure, round_numbers
+from laplace_verify.report.style import (
+    INK,
+    QUIET,
+    SERIES,
+    decade,
+    drawing,
+    log_axis,
+    new_figure,
+    round_numbers,
+)
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
@@ -116,7 +125,7 @@ def _plane_map(figure: Figure, points: Array, errors: Array, pieces: Sequence[Pi
     axes.set_xlabel("x")
     axes.set_ylabel("y")
     axes.locator_params(nbins=5)
-    _label_scale(figure.colorbar(shown, cax=figure.add_axes((0.79, 0.2, 0.03, 0.68))))
+    _label_scale(figure.colorbar(shown, cax=figure.add_axes((0.79, 0.2, 0.03, 0.68))), low, high)
 
 
 def _spacing(points: Array) -> float:
@@ -166,16 +175,18 @@ def _three_views(figure: Figure, points: Array, errors: Array) -> None:
         axes.locator_params(nbins=3)
         axes.tick_params(labelsize=7)
     if shown is not None:
-        _label_scale(figure.colorbar(shown, ax=list(axes_of), location="bottom", shrink=0.9, pad=0.03))
+        _label_scale(
+            figure.colorbar(shown, ax=list(axes_of), location="bottom", shrink=0.9, pad=0.03), low, high
+        )
 
 
-def _label_scale(bar: Colorbar) -> None:
-    """Label the scale of the shades by the errors themselves."""
+def _label_scale(bar: Colorbar, low: float, high: float) -> None:
+    """Label the scale of the shades, log10 from `low` to `high`, by the errors themselves."""
     from matplotlib.ticker import FixedLocator, FuncFormatter
 
     bar.set_label("|error|")
     bar.outline.set_visible(False)
-    ticks = round_numbers(10.0**bar.vmin, 10.0**bar.vmax)
+    ticks = round_numbers(10.0**low, 10.0**high)
     bar.locator = FixedLocator(np.log10(ticks).tolist())
     bar.formatter = FuncFormatter(lambda value, _: decade(10.0**value))
     bar.update_ticks()
@@ -203,9 +214,8 @@ def case_figure(info: CaseInfo) -> Figure:
             axes.set_aspect("equal")
             axes.margins(0.12)
         if axes.get_legend_handles_labels()[0]:
-            axes.legend(
-                loc="lower left", bbox_to_anchor=(-0.1, 1.0), ncols=3, handlelength=3.0, borderaxespad=0.1
-            )
+            place: dict[str, Any] = {"loc": "lower left", "bbox_to_anchor": (-0.15, 1.0)}
+            axes.legend(ncols=3, handlelength=2.2, columnspacing=0.9, fontsize=7.5, **place)
         return figure
 
 

@@ -31,6 +31,7 @@ from laplace_verify.report.criteria import criteria_section, results_section
 from laplace_verify.report.summary_figures import summary_figure
 from laplace_verify.report.text import (
     CAUTIONS,
+    FIGURE_KEY,
     SCOPE,
     VERDICT_MEANING,
     accepted,
@@ -68,6 +69,7 @@ def build_document(record: Record) -> Document:
                     Paragraph(
                         text=f"{count_of(len(record.studies), 'case')}, in the order of the catalogue."
                     ),
+                    Paragraph(text=FIGURE_KEY),
                 ),
                 sections=tuple(case_section(record, study) for study in record.studies),
             ),

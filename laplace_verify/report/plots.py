@@ -23,7 +23,7 @@ _POINTS = 200  # per piece that is no plane curve
 
 
 def plot(what: Case | Study | Record) -> Figure:
-    """Return a figure: the shape of a case, the convergence of a study, or the shortfall of every case of a record.
+    """Return a figure: the shape of a case, the errors of a study, or how far a record falls short.
 
     The figure is complete and shown nowhere; ``figure.savefig("plate.png")`` writes it.
 

@@ -59,7 +59,7 @@ _SETTINGS: dict[str, Any] = {
     "legend.frameon": False,
     "lines.linewidth": 1.4,
     "lines.markersize": 5.0,
-    "pdf.fonttype": 42,
+    "pdf.fonttype": 3,
     "savefig.facecolor": "none",
     "svg.fonttype": "none",
     "svg.hashsalt": "laplace-verify",

@@ -11,6 +11,7 @@ from laplace_verify.measure.verdict import Verdict
 
 __all__ = [
     "CAUTIONS",
+    "FIGURE_KEY",
     "NEVER_EXERCISED",
     "SCOPE",
     "SYMBOLS",
@@ -21,6 +22,7 @@ __all__ = [
     "count_of",
     "finest_error",
     "interval",
+    "is_exact",
     "joined",
     "number",
     "order",
@@ -93,14 +95,22 @@ CAUTIONS = (
     "changed compiler, library or option asks for a new run.",
 )
 
+FIGURE_KEY = (
+    "In the figures solid lines are norms that decide, thin dashed ones remarks; hollow marks are levels "
+    "that did not enter the fit. In the convergence figure the dotted line has the expected slope. In the "
+    "figure of observed orders the dotted line is the expected order, the dashed one the lowest accepted, "
+    "and the band the fitted order of the first norm with 2 standard errors. In the error map every place "
+    "has the shade of the nearest measured point."
+)
+
 _SUPERSCRIPT = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
 
 
 def number(value: float | str | None, digits: int = 3) -> str:
     """Return `value` with `digits` significant digits; absent numbers and NaN are said in words.
 
-    >>> number(0.00012345), number(2.0), number(None), number(float("nan")), number(float("inf"))
-    ('1.23e-4', '2.00', '–', 'not a number', '∞')
+    >>> number(0.00012345), number(2.0), number(0.0), number(None), number(float("nan")), number(float("inf"))
+    ('1.23e-4', '2.00', '0', '–', 'not a number', '∞')
     """
     if value is None:
         return "–"
@@ -108,14 +118,16 @@ def number(value: float | str | None, digits: int = 3) -> str:
         return value
     if math.isnan(value):
         return "not a number"
+    if value == 0:
+        return "0"
     if math.isinf(value):
         return "∞" if value > 0 else "−∞"
-    if value != 0 and not 1e-3 <= abs(value) < 1e5:
+    if not 1e-3 <= abs(value) < 1e5:
         mantissa, exponent = f"{value:.{digits - 1}e}".split("e")
         return f"{mantissa}e{int(exponent)}"
     if float(value).is_integer() and abs(value) >= 10 ** (digits - 1):
         return str(int(value))
-    places = digits - 1 - (math.floor(math.log10(abs(value))) if value else 0)
+    places = digits - 1 - math.floor(math.log10(abs(value)))
     return f"{value:.{max(places, 0)}f}"
 
 
@@ -242,13 +254,17 @@ def shortfall(found: Order) -> float | None:
 def interval(found: Order) -> str:
     """Return the observed order with its interval; for exponential convergence the rate b of exp(-b n)."""
     if found.observed is None:
-        exact = found.verdict is Verdict.PASS and "exact" in found.note
-        return "exact" if exact else "–"
+        return "exact" if is_exact(found) else "–"
     if found.expected == "exponential":
         return f"exp(−{number(found.observed)} n)"
     if found.low is None or found.high is None:
         return order(found.observed)
     return f"{order(found.observed)} [{order(found.low)}, {order(found.high)}]"
+
+
+def is_exact(found: Order) -> bool:
+    """Return whether the errors are at round-off on every level, so that no order can be observed."""
+    return found.observed is None and found.verdict is Verdict.PASS and "exact" in found.note
 
 
 def finest_error(study: Study, norm: str) -> float | None:

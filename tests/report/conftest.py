@@ -1,6 +1,7 @@
 """A record of the invented Marram Bay works with every verdict in it, built from the dataclasses alone."""
 
 import math
+from itertools import pairwise
 
 import numpy as np
 import pytest
@@ -52,26 +53,46 @@ def levels(constant, order, sizes=SIZES, singular=False):
 def orders(found, expected, observed, verdict, formal=2.0):
     """Return the orders of three norms, two of which decide."""
     pairs = {
-        norm: [math.log2(a.errors[norm] / b.errors[norm]) for a, b in zip(found, found[1:], strict=False)]
+        norm: [math.log2(a.errors[norm] / b.errors[norm]) for a, b in pairwise(found)]
         for norm in found[0].errors
     }
     left_out = {str(level.size): level.note for level in found if not level.judged}
     make = {
-        "formal": formal, "expected": expected, "decides": True, "tolerance": 0.5, "basis": BASIS, "left_out": left_out
-    }  # fmt: skip
+        "formal": formal,
+        "expected": expected,
+        "decides": True,
+        "tolerance": 0.5,
+        "basis": BASIS,
+        "left_out": left_out,
+    }
     return {
         "max": Order(
-            observed=observed, low=observed - 0.1, high=observed + 0.1, verdict=verdict, pairs=pairs["max"], **make
+            observed=observed,
+            low=observed - 0.1,
+            high=observed + 0.1,
+            verdict=verdict,
+            pairs=pairs["max"],
+            **make,
         ),
         "L2": Order(
-            observed=observed + 0.03, low=observed - 0.07, high=observed + 0.13, verdict=verdict, pairs=pairs["L2"],
+            observed=observed + 0.03,
+            low=observed - 0.07,
+            high=observed + 0.13,
+            verdict=verdict,
+            pairs=pairs["L2"],
             **make,
         ),
         "H1-semi": Order(
-            observed=1.0, low=0.95, high=1.05, formal=None, expected=None, decides=False, pairs=pairs["H1-semi"],
+            observed=1.0,
+            low=0.95,
+            high=1.05,
+            formal=None,
+            expected=None,
+            decides=False,
+            pairs=pairs["H1-semi"],
             note="H1-semi: no rate is proven for this norm and this kind of method",
         ),
-    }  # fmt: skip
+    }
 
 
 def square_info(case_id, title, conditions, **more):
@@ -162,7 +183,9 @@ def bad_studies():
             quantities=(QuantityInfo(name="seepage", value=1.25, unit="m2/s", radius=1e-12),),
         ),
         disc_info(),
-        CaseInfo(id="brine-tank", title="Brine tank", dim=3, shape="box", conductivity="[[2, 0.5], [0.5, 1]]"),
+        CaseInfo(
+            id="brine-tank", title="Brine tank", dim=3, shape="box", conductivity="[[2, 0.5], [0.5, 1]]"
+        ),
         CaseInfo(id="duct", title="Duct", dim=1, shape="interval"),
     ]
     undecided = Study(
@@ -183,21 +206,27 @@ def bad_studies():
     )
     make = {"solver": "pool model", "sizes": list(SIZES), "seed": 0}
     broken = Study(
-        case_id="tidal-pool", case_title="Round tidal pool", verdict=Verdict.ERROR,
-        reasons=[f"size 16: the solver raised ValueError: {MARKUP}"], crash=f"Traceback\n  File x\n{MARKUP}", **make,
-    )  # fmt: skip
+        case_id="tidal-pool",
+        case_title="Round tidal pool",
+        verdict=Verdict.ERROR,
+        reasons=[f"size 16: the solver raised ValueError: {MARKUP}"],
+        crash=f"Traceback\n  File x\n{MARKUP}",
+        **make,
+    )
     beyond = Study(
-        case_id="brine-tank", case_title="Brine tank", verdict=Verdict.NOT_APPLICABLE,
-        reasons=["dimension 3 is beyond the declared {2}"], **make,
-    )  # fmt: skip
+        case_id="brine-tank",
+        case_title="Brine tank",
+        verdict=Verdict.NOT_APPLICABLE,
+        reasons=["dimension 3 is beyond the declared {2}"],
+        **make,
+    )
     skipped = Study(
         case_id="duct", case_title="Duct", verdict=Verdict.NOT_RUN, reasons=["time limit reached"], **make
     )
     return [undecided, broken, beyond, skipped], infos
 
 
-@pytest.fixture
-def record():
+def make_record():
     """Six cases on the square (two fail, one deviates as declared), one of each other verdict, three laws."""
     plan = [
         ("hot-plate", False, Verdict.PASS, 2.0, None),
@@ -208,11 +237,14 @@ def record():
         ("repaired-plate", False, Verdict.PASS, 2.01, "was wrong before the repair"),
     ]
     studies = [
-        smooth_study(name, name.replace("-", " "), neumann=neumann, verdict=verdict, observed=p, known=known, seed=k)
+        smooth_study(
+            name, name.replace("-", " "), neumann=neumann, verdict=verdict, observed=p, known=known, seed=k
+        )
         for k, (name, neumann, verdict, p, known) in enumerate(plan)
     ]
     infos = [
-        square_info(name, name.replace("-", " "), {"top": "neumann"} if neumann else {}) for name, neumann, *_ in plan
+        square_info(name, name.replace("-", " "), {"top": "neumann"} if neumann else {})
+        for name, neumann, *_ in plan
     ]
     infos[1] = square_info("cold-plate", MARKUP, {"left": "robin"}, statement=MARKUP, conductivity="2.5")
     others, other_infos = bad_studies()
@@ -234,13 +266,35 @@ def record():
         finished="2031-03-04T05:07:07+00:00",
         studies=(*studies, *others),
         checks=(
-            Check(law="constants are reproduced", verdict=Verdict.PASS, violation=1e-15, tolerance=1e-10, reason="kept"),
             Check(
-                law="maximum principle", verdict=Verdict.FAIL, violation=0.013, tolerance=1e-9,
-                reason="u exceeds its boundary values", example="lv.problem(lv.Rectangle((0, 0), (1, 1)), {})",
+                law="constants are reproduced",
+                verdict=Verdict.PASS,
+                violation=1e-15,
+                tolerance=1e-10,
+                reason="kept",
+            ),
+            Check(
+                law="maximum principle",
+                verdict=Verdict.FAIL,
+                violation=0.013,
+                tolerance=1e-9,
+                reason="u exceeds its boundary values",
+                example="lv.problem(lv.Rectangle((0, 0), (1, 1)), {})",
                 points=((0.5, 0.25), (0.5, 0.75)),
             ),
             Check(law="mean value", verdict=Verdict.NOT_APPLICABLE, reason="no callable answer"),
         ),
         cases=(*infos, *other_infos),
-    )  # fmt: skip
+    )
+
+
+@pytest.fixture
+def record():
+    """Return a record of one's own to change."""
+    return make_record()
+
+
+@pytest.fixture(scope="session")
+def whole_record():
+    """Return the same record, to be left as it is."""
+    return make_record()
