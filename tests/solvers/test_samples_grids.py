@@ -43,8 +43,8 @@ def at(answer, x, y):
 
 def test_unit_square_with_hot_top_on_four_cells():
     # Textbook example in rational arithmetic: five-point scheme, h = 1/4, top 1, other sides 0.
-    answer = five_point.solve(problem(UNIT, {"top": dirichlet(1.0), "left": dirichlet(0.0),
-                                             "right": dirichlet(0.0), "bottom": dirichlet(0.0)}), 4)  # fmt: skip
+    sides = {name: dirichlet(float(name == "top")) for name in ("left", "right", "bottom", "top")}
+    answer = five_point.solve(problem(UNIT, sides), 4)
     rows = {0.25: (1 / 14, 11 / 112, 1 / 14), 0.5: (3 / 16, 1 / 4, 3 / 16), 0.75: (3 / 7, 59 / 112, 3 / 7)}
     for y, row in rows.items():
         for x, value in zip((0.25, 0.5, 0.75), row, strict=True):

@@ -8,6 +8,7 @@ import pytest
 from laplace_verify import fields
 from laplace_verify.geometry import Annulus, Disc, Ellipse, Interval, Rectangle
 from laplace_verify.problems import case, neumann, problem, robin
+from laplace_verify.solvers import Refused
 from laplace_verify.solvers.samples import chebyshev, fundamental_solutions
 from laplace_verify.solvers.samples.chebyshev_collocation import ChebyshevGrid, clenshaw_curtis
 from laplace_verify.solvers.samples.source_points import confocal
@@ -64,6 +65,13 @@ def test_chebyshev_is_exact_for_polynomials_of_its_degree_and_not_below():
 def test_chebyshev_on_an_interval(conditions):
     posed = case(Interval(0.5, 2.0), conditions, fields.affine([2.0], 1.0), 3.0)
     assert errors(chebyshev, posed, (3, 8)).max() < 1e-11
+
+
+def test_chebyshev_declines_a_change_to_dirichlet_within_a_side_and_no_other():
+    with pytest.raises(Refused, match="within a side"):
+        chebyshev.solve(case(PLATE.split(top=[0.4]), {"top-1": "neumann"}, WAVE).problem, 8)
+    mild = case(PLATE.split(top=[0.4]), {"top-1": "neumann", "top-2": robin(1.0)}, fields.polynomial(2, "re"))
+    assert errors(chebyshev, mild, (6,)).max() < 1e-11
 
 
 def test_chebyshev_at_its_own_nodes_is_no_division_by_zero():

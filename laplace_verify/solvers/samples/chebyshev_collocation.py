@@ -15,6 +15,7 @@ with negative-sum diagonal); Berrut & Trefethen, Barycentric Lagrange interpolat
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 
@@ -22,7 +23,7 @@ import numpy as np
 
 from laplace_verify.arrays import Array, blocks
 from laplace_verify.problems import Problem
-from laplace_verify.solvers.adapter import adapt
+from laplace_verify.solvers.adapter import Refused, adapt
 from laplace_verify.solvers.answer import Answer
 from laplace_verify.solvers.samples.levels import level_shift
 
@@ -124,6 +125,7 @@ def clenshaw_curtis(n: int) -> Array:
 )
 def chebyshev(problem: Problem, n: int) -> Answer:
     """Solve with polynomials of degree n in every coordinate."""
+    decline_changes_within_a_side(problem)
     lower, upper = problem.shape.bounding_box
     grid = ChebyshevGrid(lower=lower, upper=upper, n=n)
     slopes = [grid.along(axis, grid.slope(axis)) for axis in range(grid.dim)]
@@ -139,6 +141,14 @@ def chebyshev(problem: Problem, n: int) -> Answer:
         gradient=lambda points: np.stack([evaluated(grid, part, points) for part in gradients], axis=1),
         unknowns=len(values),
     )
+
+
+def decline_changes_within_a_side(problem: Problem) -> None:
+    """Refuse problems that are singular in mid-side: no polynomial follows r^(1/2) there."""
+    for corner in problem.shape.junctions:
+        kinds = {problem.pieces[name].kind for name in corner.pieces}
+        if math.isclose(corner.opening, math.pi) and len(kinds) > 1 and "dirichlet" in kinds:
+            raise Refused(f"Dirichlet gives way to another condition within a side, at {corner.points[0]}")
 
 
 def equation_rows(slopes: Sequence[Array], tensor: Array) -> Array:

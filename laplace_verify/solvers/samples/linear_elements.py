@@ -32,6 +32,7 @@ from laplace_verify.solvers.samples.linear_systems import direct
 
 __all__ = ["p1_element"]
 
+HAIR = 1e-8  # of an edge: far more than rounding, far less than any error of discretisation
 GAUSS = ((0.5 - 3**-0.5 / 2, 0.5), (0.5 + 3**-0.5 / 2, 0.5))  # place along the edge, weight
 
 
@@ -125,8 +126,23 @@ def held_values(mesh: Mesh, problem: Problem) -> tuple[BoolArray, Array]:
     for piece in problem.pieces:
         if piece.kind == "dirichlet":
             nodes = np.unique(mesh.boundary[piece.name])
-            held[nodes], values[nodes] = True, piece.data(mesh.points[nodes])
+            held[nodes], values[nodes] = True, piece.data(asked_at(mesh, piece, nodes))
     return held, values
+
+
+def asked_at(mesh: Mesh, piece: Piece, nodes: IntArray) -> Array:
+    """Return where to ask for data at nodes of a piece: there, but a hair inside at two ends in one place.
+
+    The arc of a sector of 360 degrees ends where it starts; the place alone does not tell which limit to take.
+    """
+    points = mesh.points[nodes].copy()
+    edges = mesh.boundary[piece.name]
+    first, last = edges[0], edges[-1][::-1]
+    gap = np.linalg.norm(mesh.points[first[0]] - mesh.points[last[0]])
+    if first[0] != last[0] and gap < HAIR * piece.measure:
+        for end, neighbour in (first, last):
+            points[nodes == end] += HAIR * (mesh.points[neighbour] - mesh.points[end])
+    return points
 
 
 def masses(mesh: Mesh) -> Array:
