@@ -7,6 +7,8 @@ import numpy as np
 import pytest
 
 import laplace_verify as lv
+from laplace_verify.fields.piecewise import ramp
+from laplace_verify.fields.rectangle_series import rectangle_series
 from laplace_verify.problems import MoveLog, Piece, Pieces
 
 TINY = 1e-12  # data are values of smooth functions of order one: some thousand roundings at most
@@ -182,3 +184,24 @@ def test_a_problem_survives_the_journey_between_processes(square) -> None:
     twin = pickle.loads(pickle.dumps(problem))
     places = np.array([[0.1, 1.0], [0.7, 1.0], [1.0, 1.0]])
     assert twin.pieces["top"].data(places).tolist() == problem.pieces["top"].data(places).tolist()
+
+
+def test_the_hot_side_of_a_plate_keeps_its_own_corner_values(square) -> None:
+    # u = 1 on top and 0 elsewhere: each piece has its own limit in the corners
+    plate = lv.case(square, {}, rectangle_series((0, 0), (1, 1), 1)).problem
+    corner = [[0.0, 1.0]]
+    np.testing.assert_allclose(plate.pieces["top"].data(corner), 1.0, rtol=0, atol=1e-13)
+    np.testing.assert_allclose(plate.pieces["left"].data(corner), 0.0, rtol=0, atol=1e-13)
+
+
+def test_an_insulated_side_has_no_flux_up_to_the_singular_corner(square) -> None:
+    # u = x on top makes u ~ r log r in the corners: the gradient is infinite there, the side's own flux is 0
+    ramp = rectangle_series((0, 0), (1, 1), ramp(0, 1), neighbours="insulated")
+    conditions = {"left": "neumann", "right": "neumann"}
+    case = lv.case(square, conditions, ramp, quantities={"top": lv.flux_through("top")})
+    np.testing.assert_allclose(case.problem.pieces["left"].data([[0.0, 1.0]]), 0.0, rtol=0, atol=1e-12)
+    # by symmetry about the middle the mean of u on any level is y/2: the flux through every level is 1/2
+    assert abs(case.quantities["top"].value - 0.5) <= case.quantities["top"].radius <= 1e-11
+    hot = lv.case(square, {"top": "neumann"} | conditions, ramp).problem.pieces["top"]
+    with pytest.raises(lv.ProblemError, match="no finite limit"):
+        hot.data([[0.0, 1.0]])
