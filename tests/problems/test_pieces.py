@@ -196,12 +196,12 @@ def test_the_hot_side_of_a_plate_keeps_its_own_corner_values(square) -> None:
 
 def test_an_insulated_side_has_no_flux_up_to_the_singular_corner(square) -> None:
     # u = x on top makes u ~ r log r in the corners: the gradient is infinite there, the side's own flux is 0
-    ramp = rectangle_series((0, 0), (1, 1), ramp(0, 1), neighbours="insulated")
+    plate = rectangle_series((0, 0), (1, 1), ramp(0, 1), neighbours="insulated")
     conditions = {"left": "neumann", "right": "neumann"}
-    case = lv.case(square, conditions, ramp, quantities={"top": lv.flux_through("top")})
+    case = lv.case(square, conditions, plate, quantities={"top": lv.flux_through("top")})
     np.testing.assert_allclose(case.problem.pieces["left"].data([[0.0, 1.0]]), 0.0, rtol=0, atol=1e-12)
     # by symmetry about the middle the mean of u on any level is y/2: the flux through every level is 1/2
     assert abs(case.quantities["top"].value - 0.5) <= case.quantities["top"].radius <= 1e-11
-    hot = lv.case(square, {"top": "neumann"} | conditions, ramp).problem.pieces["top"]
+    hot = lv.case(square, {"top": "neumann"} | conditions, plate).problem.pieces["top"]
     with pytest.raises(lv.ProblemError, match="no finite limit"):
         hot.data([[0.0, 1.0]])
