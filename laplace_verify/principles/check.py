@@ -1,0 +1,177 @@
+"""The check of one law on one solver, from the request to the finding in plain words."""
+
+from __future__ import annotations
+
+import numpy as np
+
+from laplace_verify.errors import AdapterError, ProblemError, nearest_names
+from laplace_verify.measure.verdict import Verdict
+from laplace_verify.principles.driving import BrokenLawError, BrokenSolverError, Search
+from laplace_verify.principles.example import example_code
+from laplace_verify.principles.law import Finding, Law, Trial
+from laplace_verify.principles.laws import LAWS
+from laplace_verify.principles.results import Check
+from laplace_verify.solvers import Adapter, Refused
+
+__all__ = ["check_principle"]
+
+REPEATED = 1e-6  # relative; two runs may differ by the order of additions, not by more
+COMPARED = 50  # points at which two functions are compared
+SHOWN = 20  # points kept
+
+
+def check_principle(solver: Adapter, law: str, seed: int = 0) -> Check:
+    """Try a law of harmonic functions on ten problems drawn within a solver's declared capabilities.
+
+    Parameters
+    ----------
+    solver : Adapter
+    law : str
+        A key of `LAWS`: "constants reproduced", "affine fields reproduced", "maximum principle" or "mean
+        value".
+    seed : int
+        Of the problems and of the points looked at; the same seed gives the same check. The solver is
+        called at most 160 times, and twice more before a law counts as broken.
+
+    Returns
+    -------
+    Check
+        FAIL with the simplest problem found and code that shows it; ERROR if the solver raises, returns
+        what cannot be measured, or gives two answers to one question; NOT_APPLICABLE with the reason.
+
+    Raises
+    ------
+    ProblemError
+        If there is no such law; the nearest are named.
+    AdapterError
+        If `solver` is no adapter, or declares a discrete law that does not exist.
+
+    Examples
+    --------
+    >>> from laplace_verify.solvers.samples import five_point
+    >>> check = check_principle(five_point, "constants reproduced")
+    >>> str(check.verdict), check.violation < check.tolerance
+    ('PASS', True)
+    """
+    if not isinstance(law, str) or law not in LAWS:
+        raise ProblemError(f"there is no law {law!r}; {nearest_names(str(law), LAWS)}")
+    if not isinstance(solver, Adapter):
+        raise AdapterError(
+            f"solver must be an adapter, got {type(solver).__name__}; "
+            f"put `@lv.adapt(kind=..., order=...)` above the solve function"
+        )
+    if isinstance(seed, bool) or not isinstance(seed, int | np.integer) or seed < 0:
+        raise ProblemError(f"seed must be a whole number >= 0, got {seed!r}")
+    for declared in sorted(solver.discrete_laws):
+        if declared not in LAWS:
+            raise AdapterError(
+                f"discrete_laws: there is no law {declared!r}; {nearest_names(declared, LAWS)}"
+            )
+    return _checked(LAWS[law], solver, int(seed))
+
+
+def _checked(law: Law, solver: Adapter, seed: int) -> Check:
+    """Return the check of a law that exists on an adapter."""
+    reason = law.inapplicable(solver)
+    if reason is not None:
+        return Check(law=law.name, verdict=Verdict.NOT_APPLICABLE, reason=reason)
+    search = Search(law=law, solver=solver, seed=seed)
+    failure = search.run()
+    if isinstance(failure, BrokenSolverError):
+        return _broke(law, failure)
+    if failure is not None:
+        return _failed(law, failure)
+    if search.worst is None:
+        why = (
+            search.unseen
+            or f"the solver declined all {search.refused} problems drawn, last with: {search.refusal}"
+        )
+        return Check(law=law.name, verdict=Verdict.NOT_APPLICABLE, reason=why)
+    worst = search.worst
+    declined = f"; {search.refused} more were declined by the solver" if search.refused else ""
+    return Check(
+        law=law.name,
+        verdict=Verdict.PASS,
+        violation=worst.violation,
+        tolerance=worst.tolerance,
+        reason=f"kept on {search.tried} problems in {search.calls} solves{declined}; the violation "
+        f"nearest to what is allowed: {worst.violation:.2g} of the largest boundary value, allowed {worst.tolerance:.2g}",
+    )
+
+
+def _failed(law: Law, failure: BrokenLawError) -> Check:
+    """Return the check of a law that was broken, unless the solver gives two answers to one question."""
+    trial, finding = failure.trial, failure.finding
+    difference = _between_runs(trial)
+    if difference is None or not difference <= REPEATED:
+        seen = (
+            "could not be repeated"
+            if difference is None
+            else f"differed by {difference:.2g} of the largest value"
+        )
+        return Check(
+            law=law.name,
+            verdict=Verdict.ERROR,
+            reason=f"the solver is not repeatable: two runs on the same problem {seen}, so no law can be "
+            f"checked. The problem: {trial.posed.words()}",
+            example=example_code(trial, trial.sizes[0], _two_runs(trial)),
+        )
+    history = ", ".join(f"{v:.2g} with n = {n}" for n, v in zip(finding.sizes, finding.history, strict=True))
+    rule = "it must vanish under refinement" if len(finding.sizes) > 1 else "it must be round-off"
+    return Check(
+        law=law.name,
+        verdict=Verdict.FAIL,
+        violation=finding.violation,
+        tolerance=finding.tolerance,
+        reason=f"broken: {finding.words}. Violation, relative to the largest boundary value: {history}; "
+        f"{rule}, at most {finding.tolerance:.2g} is allowed. "
+        f"The simplest problem found: {trial.posed.words()}",
+        example=example_code(trial, finding.sizes[-1], finding.body),
+        points=_rows(finding),
+    )
+
+
+def _broke(law: Law, failure: BrokenSolverError) -> Check:
+    """Return the check of a solver that raised or returned what cannot be measured."""
+    trial, cause = failure.trial, failure.cause
+    size = max(trial.answers, default=None)
+    after = "" if size is None else f" (it had solved n = {size})"
+    return Check(
+        law=law.name,
+        verdict=Verdict.ERROR,
+        reason=f"{type(cause).__name__}: {cause}{after}. The simplest problem on which this happens: "
+        f"{trial.posed.words()}",
+        example=example_code(trial, trial.sizes[0], ("answer",)),
+    )
+
+
+def _between_runs(trial: Trial) -> float | None:
+    """Return the relative difference of two runs at the smallest size; None if there were no comparable values."""
+    size = trial.sizes[0]
+    points = trial.problem.shape.sample(COMPARED, seed=trial.seed)
+    try:
+        runs = [trial.solver.solve(trial.problem, size, points, seed=trial.seed) for _ in range(2)]
+        numbers = [run.values if run.values is not None else run.value_at(points) for run in runs]
+    except Refused:
+        return None
+    except Exception:  # it answered before: that alone is not repeatable
+        return None
+    first, second = numbers
+    if first.shape != second.shape:
+        return None
+    scale = max(float(np.max(np.abs(first), initial=0.0)), np.finfo(float).tiny)
+    return float(np.max(np.abs(first - second), initial=0.0)) / scale
+
+
+def _two_runs(trial: Trial) -> tuple[str, ...]:
+    """Return lines that show the difference of two runs."""
+    again = "again = solver.solve(problem, n)"
+    if trial.answers[trial.sizes[0]].kind != "callable":
+        return again, "abs(again.values - answer.values).max()"
+    points = f"points = problem.shape.sample({COMPARED}, seed={trial.seed})"
+    return again, points, "abs(again.value_at(points) - answer.value_at(points)).max()"
+
+
+def _rows(finding: Finding) -> tuple[tuple[float, ...], ...]:
+    """Return the points as plain numbers."""
+    return tuple(tuple(float(c) for c in point) for point in finding.points[:SHOWN])

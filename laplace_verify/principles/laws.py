@@ -1,0 +1,13 @@
+"""The laws, in the order in which they are reported."""
+
+from __future__ import annotations
+
+from laplace_verify.principles.affine_fields import AFFINE_FIELDS
+from laplace_verify.principles.constants import CONSTANTS
+from laplace_verify.principles.law import Law
+from laplace_verify.principles.maximum_principle import MAXIMUM_PRINCIPLE
+from laplace_verify.principles.mean_value import MEAN_VALUE
+
+__all__ = ["LAWS"]
+
+LAWS: dict[str, Law] = {law.name: law for law in (CONSTANTS, AFFINE_FIELDS, MAXIMUM_PRINCIPLE, MEAN_VALUE)}
