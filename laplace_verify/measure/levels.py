@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from itertools import pairwise
 
@@ -15,7 +16,7 @@ __all__ = ["check_sizes", "default_sizes", "further_sizes"]
 
 PLANE, SPACE = (8, 16, 32, 64), (6, 9, 13, 19, 28)
 SPACE_RATIO = 1.45
-MOST_ADDED, MOST_ADDED_FINE = 2, 3
+MOST_ROUNDS = 2
 # a bound on work that does not depend on the machine, so that results do not either
 MOST_UNKNOWNS = {1: 300_000, 2: 300_000, 3: 100_000}
 
@@ -48,24 +49,21 @@ def check_sizes(sizes: Sequence[int]) -> tuple[int, ...]:
     return tuple(int(n) for n in given)
 
 
-def further_sizes(levels: Sequence[Level], dim: int, added: int) -> list[int]:
-    """Return the sizes worth running next; empty if there are none. `added` finer ones have been run already.
+def further_sizes(levels: Sequence[Level], dim: int, rounds: int, scale: float) -> list[int]:
+    """Return the sizes worth running next; empty if there are none. `rounds` of additions have been run.
 
-    First up to two finer ones, twice the last (1.45 times in space). If then fewer than four levels can be
-    judged, in one and two dimensions sizes half-way between judged ones (3/2 of the coarser), and at last a
-    third finer one.
+    If fewer than four levels can be judged, the first round is a ladder of four that starts at the coarsest
+    size to be judged (a multiple of four with h <= scale/2). Otherwise a round is one finer size: twice the
+    last, 1.45 times in space. Sizes with more than the bounded number of unknowns are left out.
     """
-    judged = [level.size for level in levels if level.judged]
-    steps = [n for n in judged if not (n % 3 == 0 and 2 * n // 3 in judged)]
-    halfway = {3 * n // 2 for n in steps if n % 2 == 0}
-    last = levels[-1]
-    finer = round(SPACE_RATIO * last.size) if dim == 3 else 2 * last.size
-    affordable = last.unknowns * (finer / last.size) ** dim <= MOST_UNKNOWNS[dim]
-    if affordable and added < MOST_ADDED:
-        return [finer]
-    if dim == 3 or len(steps) >= MINIMUM_LEVELS:
+    if rounds >= MOST_ROUNDS:
         return []
-    missing = sorted(n for n in halfway if n not in judged and n < last.size)
-    if missing:
-        return missing
-    return [finer] if affordable and added < MOST_ADDED_FINE else []
+    ratio = SPACE_RATIO if dim == 3 else 2.0
+    last = levels[-1]
+    wanted = [round(ratio * last.size)]
+    if rounds == 0 and sum(level.judged for level in levels) < MINIMUM_LEVELS and math.isfinite(scale):
+        start = 4 * math.ceil(last.size * last.h / (scale / 2) / 4 - 1e-9)
+        wanted = [round(start * ratio**k) for k in range(MINIMUM_LEVELS)]
+    known = {level.size for level in levels}
+    per_cell = (last.unknowns or last.size**dim) / last.size**dim
+    return [n for n in wanted if n not in known and per_cell * n**dim <= MOST_UNKNOWNS[dim]]

@@ -138,9 +138,9 @@ def fit_order(
 def noise_level(kind: str, sizes: Sequence[int], h: Sequence[float]) -> float:
     """Return the scatter to assume for a sequence of grids.
 
-    0.03 for nested grids (every size a multiple of the one before) of finite differences or volumes, and of
-    any kind if h follows 1/size within 1 %; 0.1 if h does not follow 1/size within 5 % (unrelated meshes);
-    0.05 otherwise.
+    0.03 for structured refinement: h follows 1/size within 2.5 %, or grids of finite differences or volumes
+    are nested (every size a multiple of the one before). 0.1 if h does not follow 1/size within 5 % (unrelated
+    meshes). 0.05 otherwise.
 
     >>> noise_level("finite difference", [8, 16, 32], [1/8, 1/16, 1/32])
     0.03
@@ -155,8 +155,10 @@ def noise_level(kind: str, sizes: Sequence[int], h: Sequence[float]) -> float:
     slack = 1.5 / n[:-1]
     if np.any(np.abs(followed - 1) > 0.05 + slack):
         return UNRELATED_NOISE
+    if np.all(np.abs(followed - 1) <= 0.025):
+        return NESTED_NOISE
     nested = all(fine % coarse == 0 for coarse, fine in pairwise(sizes))
-    structured = kind in ("finite difference", "finite volume") or bool(np.all(np.abs(followed - 1) <= 0.01))
+    structured = kind in ("finite difference", "finite volume")
     return NESTED_NOISE if nested and structured else USUAL_NOISE
 
 

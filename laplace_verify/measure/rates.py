@@ -13,7 +13,7 @@ from typing import NamedTuple
 import numpy as np
 
 from laplace_verify.measure.orders import pair_orders
-from laplace_verify.measure.series import Series
+from laplace_verify.measure.series import MINIMUM_LEVELS, Series
 from laplace_verify.measure.verdict import Verdict
 
 __all__ = ["Finding", "judge_decrease", "judge_exponential", "stagnation"]
@@ -23,7 +23,7 @@ FLAT = 0.9  # last error over first: nothing was gained
 TINY = (
     1e-6  # relative errors below it that do not fall look like a tolerance or a precision, not a wrong limit
 )
-HALVED = 0.5
+CLEARLY = 0.7  # last errors over first ones: a fall that is no scatter
 
 
 class Finding(NamedTuple):
@@ -97,18 +97,22 @@ def _geometric(series: Series, n: list[float], errors: list[float], said: str) -
 
 
 def judge_decrease(series: Series) -> Finding:
-    """Return the finding where theory promises convergence without a rate: the error must halve."""
-    stuck = stagnation(series)
-    if stuck is not None:
-        return stuck
+    """Return the finding where theory promises convergence without a rate: the error must clearly fall.
+
+    Such errors may fall unevenly: the last two must lie below the first two, their geometric mean by 30 %. A
+    failure needs every error to stay up.
+    """
     said = "theory claims convergence and no rate"
     if series.at_floor and series.above:
         return Finding(Verdict.PASS, f"falls to the floor; {said}")
-    if len(series.errors) < 3:
-        words = "fewer than three levels can be judged; run finer sizes"
+    if len(series.errors) < MINIMUM_LEVELS:
+        words = "fewer than four levels can be judged; run finer sizes"
         return Finding(Verdict.INCONCLUSIVE, words, finer=True)
-    first, last = series.errors[0], series.errors[-1]
-    if last <= HALVED * first and last <= 1.1 * series.errors[-2]:
-        return Finding(Verdict.PASS, f"falls from {first:.2e} to {last:.2e}; {said}")
-    words = f"falls only from {first:.2e} to {last:.2e}; {said}; run finer sizes"
-    return Finding(Verdict.INCONCLUSIVE, words, finer=True)
+    stuck = stagnation(series)
+    if stuck is not None and min(series.errors) >= FLAT * series.errors[0]:
+        return stuck
+    first, last = (math.sqrt(a * b) for a, b in (series.errors[:2], series.errors[-2:]))
+    if last <= CLEARLY * first and max(series.errors[-2:]) <= min(series.errors[:2]):
+        return Finding(Verdict.PASS, f"falls from {series.errors[0]:.2e} to {series.errors[-1]:.2e}; {said}")
+    words = f"falls too little or unevenly ({series.errors[0]:.2e} to {series.errors[-1]:.2e}); {said}"
+    return Finding(Verdict.INCONCLUSIVE, f"{words}; run finer sizes", finer=True)

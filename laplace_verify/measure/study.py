@@ -47,8 +47,8 @@ def study(
         From the catalogue, or made by `case`.
     sizes : sequence of int, optional
         Three or more, increasing; four are needed for a PASS. Default: the solver's own, else 8 16 32 64 in
-        one and two dimensions and 6 9 13 19 28 in three. Up to four more are added to the default if the
-        verdict is still open and the work stays bounded.
+        one and two dimensions and 6 9 13 19 28 in three. A few more are added to the default
+        if the verdict is still open and the work stays bounded.
     seed : int
         Seed of the sample points and of solvers that take one. Same seed, same numbers.
     max_points : int, optional
@@ -125,15 +125,15 @@ class _Run:
     def refine(self) -> None:
         """Add sizes while the verdict is open, a finer level may settle it, and the work stays bounded."""
         added: list[int] = []
-        finer = 0
+        rounds = 0
         while True:
             orders = self.orders()
             verdict, _, _ = combine(orders)
             wanting = any(order.decides and order.finer for order in orders.values())
-            further = further_sizes(self.levels, self.case.dim, finer)
+            further = further_sizes(self.levels, self.case.dim, rounds, self.case.regularity.scale)
             if verdict is not Verdict.INCONCLUSIVE or not wanting or not further:
                 break
-            finer += further[0] > self.levels[-1].size
+            rounds += 1
             try:
                 for size in further:
                     self.add(size)
@@ -172,8 +172,10 @@ class _Run:
 
     def broken(self, size: int, cause: BaseException) -> Study:
         """Return the study of a solver that broke, with the levels it finished."""
+        if isinstance(cause, Refused) and not self.results:
+            return self.result(Verdict.NOT_APPLICABLE, [f"the solver declined: {cause}"], self.remarks)
         if isinstance(cause, Refused):
-            reason = f"size {size}: the solver declined a well-posed problem: {cause}"
+            reason = f"size {size}: the solver declined a problem that it has solved at other sizes: {cause}"
         else:
             reason = f"size {size}: {_said(cause)}"
         text = "".join(traceback.format_exception(cause))

@@ -184,6 +184,8 @@ def test_a_wrong_limit_under_exponential_fails():
 def test_plain_decrease_passes_and_no_decrease_fails():
     assert verdict_of(halving(4), halving(4) ** 0.6, "decrease")[0] is Verdict.PASS
     assert verdict_of(halving(4), np.full(4, 0.2), "decrease")[0] is Verdict.FAIL
+    uneven = [0.02, 0.03, 0.004, 0.024]
+    assert verdict_of(halving(4), uneven, "decrease")[0] is Verdict.INCONCLUSIVE
 
 
 def test_one_failing_norm_fails_the_study_and_one_open_norm_leaves_it_open():

@@ -95,16 +95,25 @@ def test_whatever_a_solver_does_wrong_ends_in_error(fault, words, plate):
     assert found.crash
 
 
-def test_a_solver_that_exits_or_declines_is_an_error(plate):
+def test_a_solver_that_exits_is_an_error_and_one_that_declines_is_not_applicable(plate):
     def leaves(_problem, _n):
         raise SystemExit(3)
 
     def declines(_problem, _n):
         raise lv.Refused("not today")
 
-    for solve, words in ((leaves, "SystemExit"), (declines, "declined a well-posed problem: not today")):
+    def wavers(_problem, n):
+        if n > 8:
+            raise lv.Refused("too fine")
+        return lv.Answer(evaluate=plate.exact.value, h=1 / n)
+
+    for solve, verdict, words in (
+        (leaves, lv.Verdict.ERROR, "SystemExit"),
+        (declines, lv.Verdict.NOT_APPLICABLE, "the solver declined: not today"),
+        (wavers, lv.Verdict.ERROR, "solved at other sizes: too fine"),
+    ):
         found = study(lv.adapt(solve, name="s", kind="other", order=2), plate)
-        assert found.verdict is lv.Verdict.ERROR
+        assert found.verdict is verdict
         assert words in found.reasons[0]
 
 
@@ -214,7 +223,7 @@ def test_levels_coarser_than_the_smallest_length_are_shown_and_finer_ones_added(
     assert found.verdict is lv.Verdict.PASS, found
     assert [level.judged for level in found.levels][:2] == [False, False]
     assert "too coarse" in found.levels[0].note
-    assert any("added: 128" in remark for remark in found.remarks)
+    assert any("added: 20, 40, 80, 160" in remark for remark in found.remarks)
     held = study(perturbed(case, power(2)), case, sizes=(8, 16, 32, 64))
     assert held.verdict is lv.Verdict.INCONCLUSIVE
     assert [level.size for level in held.levels] == [8, 16, 32, 64]
