@@ -139,8 +139,8 @@ def noise_level(kind: str, sizes: Sequence[int], h: Sequence[float]) -> float:
     """Return the scatter to assume for a sequence of grids.
 
     0.03 for structured refinement: h follows 1/size within 2.5 %, or grids of finite differences or volumes
-    are nested (every size a multiple of the one before). 0.1 if h does not follow 1/size within 5 % (unrelated
-    meshes). 0.05 otherwise.
+    are nested (every size a multiple of the one before). 0.1 if h does not follow 1/size within 5 % (meshes
+    without relation). 0.05 otherwise.
 
     >>> noise_level("finite difference", [8, 16, 32], [1/8, 1/16, 1/32])
     0.03
