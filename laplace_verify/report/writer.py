@@ -20,7 +20,7 @@ from laplace_verify.report.model import build_document
 from laplace_verify.report.style import drawing
 from laplace_verify.report.table_csv import to_csv
 
-__all__ = ["FORMATS", "write_report"]
+__all__ = ["FORMATS", "check_folder", "write_report"]
 
 FORMATS = ("html", "md", "tex", "csv", "json", "junit")
 _NAMES = {
@@ -59,7 +59,7 @@ def write_report(
         if name not in _NAMES:
             raise RecordError(f"no report format {name!r}; {nearest_names(name, FORMATS)}")
     place = Path(folder)
-    _claim(place)
+    check_folder(place)
     document = build_document(record) if {"html", "md", "tex"} & set(wanted) else None
     makers: dict[str, Callable[[], bytes]] = {
         "csv": lambda: to_csv(record).encode(),
@@ -79,8 +79,14 @@ def write_report(
     return paths
 
 
-def _claim(folder: Path) -> None:
-    """Make the folder before any work is done for it."""
+def check_folder(folder: Path) -> None:
+    """Make the folder of a report, before any work is done for it.
+
+    Raises
+    ------
+    RecordError
+        If it cannot be made or written.
+    """
     try:
         folder.mkdir(parents=True, exist_ok=True)
     except OSError as cause:
