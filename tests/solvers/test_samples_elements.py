@@ -101,7 +101,7 @@ def test_pure_flux_problems_get_the_level_they_ask_for(constant):
 
 
 def test_the_arc_of_a_full_turn_takes_the_limits_of_both_its_ends():
-    # r^(1/4) sin(theta/4), -2 pi < theta < 0: -1 where the arc begins on one lip of the slit, 0 where it ends.
+    # r^(1/4) sin(theta/4), -2 pi < theta < 0: -1 where the arc leaves one lip of the slit, 0 at the other.
     posed = case(Sector(1.0, 2 * math.pi), {"end": "neumann"}, fields.wedge(0.25, "sin", cut=0.0))
     answer = p1_element.solve(posed.problem, 8)
     at_meeting = np.linalg.norm(answer.points - np.array([1.0, 0.0]), axis=1) < 1e-9

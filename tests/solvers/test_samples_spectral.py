@@ -8,9 +8,8 @@ import pytest
 from laplace_verify import fields
 from laplace_verify.geometry import Annulus, Disc, Ellipse, Interval, Rectangle
 from laplace_verify.problems import case, neumann, problem, robin
-from laplace_verify.solvers import Refused
 from laplace_verify.solvers.samples import chebyshev, fundamental_solutions
-from laplace_verify.solvers.samples.chebyshev_collocation import ChebyshevGrid, clenshaw_curtis
+from laplace_verify.solvers.samples.chebyshev_lines import Line, clenshaw_curtis
 from laplace_verify.solvers.samples.source_points import confocal
 
 PLATE = Rectangle((0, 0), (1.5, 1))
@@ -67,11 +66,20 @@ def test_chebyshev_on_an_interval(conditions):
     assert errors(chebyshev, posed, (3, 8)).max() < 1e-11
 
 
-def test_chebyshev_declines_a_change_to_dirichlet_within_a_side_and_no_other():
-    with pytest.raises(Refused, match="within a side"):
-        chebyshev.solve(case(PLATE.split(top=[0.4]), {"top-1": "neumann"}, WAVE).problem, 8)
-    mild = case(PLATE.split(top=[0.4]), {"top-1": "neumann", "top-2": robin(1.0)}, fields.polynomial(2, "re"))
-    assert errors(chebyshev, mild, (6,)).max() < 1e-11
+def test_chebyshev_converges_geometrically_across_split_sides_and_slowly_at_singularities():
+    cut = PLATE.split(top=[0.4])
+    smooth = case(cut, {"top-1": "neumann", "left": robin(2.0)}, fields.stretched(WAVE, TENSOR), TENSOR)
+    found = errors(chebyshev, smooth, (4, 8, 12))
+    assert np.all(found[1] < 1e-3 * found[0])
+    assert found[2, 0] < 1e-9
+    # r^(1/2) at a change of conditions: the local error falls like 1/n, since points gather like 1/n^2 there.
+    strong = case(
+        PLATE.split(bottom=[0.4]),
+        {"bottom-1": "neumann"},
+        fields.wedge(0.5, "sin", cut=-1.0).shifted((0.6, 0.0)),
+    )
+    found = errors(chebyshev, strong, (6, 12, 24))
+    assert np.all(found[1:, 0] < 0.7 * found[:-1, 0])
 
 
 def test_chebyshev_at_its_own_nodes_is_no_division_by_zero():
@@ -90,9 +98,21 @@ def test_clenshaw_curtis_integrates_polynomials_of_degree_n(n):
 
 def test_differentiation_matrix_of_two_intervals_is_the_published_one():
     # Trefethen, Spectral Methods in MATLAB, 2000, chapter 6 (from memory): D_2 on x = 1, 0, -1.
-    grid = ChebyshevGrid(lower=np.array([-1.0]), upper=np.array([1.0]), n=2)
-    published = [[1.5, -2.0, 0.5], [0.5, 0.0, -0.5], [-0.5, 2.0, -1.5]]
-    np.testing.assert_allclose(grid.slope(0), published, rtol=0, atol=1e-15)
+    published = np.array([[1.5, -2.0, 0.5], [0.5, 0.0, -0.5], [-0.5, 2.0, -1.5]])
+    rising = Line(stops=np.array([-1.0, 1.0]), n=2).derivative(1)
+    np.testing.assert_allclose(rising[::-1, ::-1], published, rtol=0, atol=1e-15)
+
+
+def test_a_line_of_two_polynomials_knows_slopes_jumps_and_integrals():
+    line = Line(stops=np.array([0.0, 0.5, 2.0]), n=4)
+    x = line.nodes()
+    kinked = np.where(x < 0.5, x**3, 0.125 + 3.0 * (x - 0.5))
+    assert (line.jump() @ kinked)[4] == pytest.approx(3.0 - 0.75, rel=1e-12)
+    assert np.count_nonzero(line.jump() @ kinked) == 1
+    assert line.weights() @ kinked == pytest.approx(0.5**4 / 4 + 1.5 * 0.125 + 1.5 * 1.5**2, rel=1e-13)
+    at = np.array([0.2, 0.5, 1.7])
+    np.testing.assert_allclose(line.basis(at) @ kinked, [0.008, 0.125, 3.725], rtol=1e-13)
+    np.testing.assert_allclose(line.basis(at, slope=True) @ kinked, [0.12, 3.0, 3.0], rtol=1e-12)
 
 
 SPLIT = Disc((0.2, 0.1), 0.5).split(rim=[0.3])

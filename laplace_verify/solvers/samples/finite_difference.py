@@ -24,8 +24,9 @@ import scipy.sparse as sp
 from scipy.interpolate import interpn
 
 from laplace_verify.arrays import Array, BoolArray, IntArray
+from laplace_verify.errors import AnswerError
 from laplace_verify.problems import Piece, Problem
-from laplace_verify.solvers.adapter import Adapter, Refused, adapt
+from laplace_verify.solvers.adapter import Adapter, adapt
 from laplace_verify.solvers.answer import Answer
 from laplace_verify.solvers.samples.corner_rows import corner_rows
 from laplace_verify.solvers.samples.levels import level_shift
@@ -43,6 +44,9 @@ class Equations:
     load: Array
     held: BoolArray
     values: Array
+    lagged: sp.csr_array | None = (
+        None  # a small unsymmetric part of the matrix, taken at the previous iterate
+    )
     level_is_free: bool = True  # no condition fixes the constant
 
     def add_transfer(self, nodes: IntArray, strength: Array) -> None:
@@ -127,6 +131,9 @@ class Scheme:
 
 SCHEME = Scheme()
 
+SWEEPS = 40  # at most, over the lagged rows of edges
+SETTLED = 1e-10  # relative change that ends them
+
 
 # ---- putting it together -------------------------------------------------------------------------
 
@@ -161,9 +168,13 @@ def assemble(grid: Grid, tensor: Array, sides: list[Side], scheme: Scheme) -> Eq
     """Write the balance of every box, then close it piece by piece; Dirichlet comes last and so wins."""
     count, balance = len(grid.points), scheme.stencil(grid, tensor)
     open_patches = [side.patch for side in sides if side.piece.kind != "dirichlet"]
-    if grid.dim == 2:
-        balance = balance + scheme.corners(grid, tensor, open_patches)
-    equations = Equations(balance, np.zeros(count), np.zeros(count, np.bool_), np.zeros(count))
+    corners = scheme.corners(grid, tensor, open_patches)
+    lagged = None
+    if grid.dim == 3 and corners.nnz:
+        lagged = corners  # conjugate gradients need the symmetric part alone
+    else:
+        balance = balance + corners
+    equations = Equations(balance, np.zeros(count), np.zeros(count, np.bool_), np.zeros(count), lagged)
     for kind in ("robin", "neumann", "dirichlet"):
         for side in sides:
             if side.piece.kind == kind:
@@ -175,13 +186,25 @@ def solved(equations: Equations, scheme: Scheme, sides: list[Side]) -> tuple[Arr
     """Return the nodal values, the relative residual, and the number of iterations (None: direct)."""
     free, grid = ~equations.held, sides[0].grid
     matrix, load = equations.matrix[free][:, free].tocsc(), scheme.load(equations, sides)
-    volumes = grid.node_volumes()[free]
+    weights = grid.node_volumes()[free] if equations.level_is_free else None
     solve = conjugate_gradients if grid.dim == 3 else direct
-    unknown, iterations = solve(matrix, load, volumes if equations.level_is_free else None)
     values = equations.values.copy()
-    values[free] = unknown
+    values[free], iterations = solve(matrix, load, weights)
+    if equations.lagged is not None:
+        for _ in range(SWEEPS):
+            before = values[free]
+            shifted = load - (equations.lagged @ values)[free]
+            values[free], more = solve(matrix, shifted, weights)
+            iterations = (iterations or 0) + (more or 0)
+            if np.max(np.abs(values[free] - before)) <= SETTLED * np.max(np.abs(values)):
+                break
+        else:
+            raise AnswerError(
+                f"the rows of edges did not settle in {SWEEPS} sweeps; the conductivity is too skew"
+            )
+        load = shifted
     size = max(float(np.max(np.abs(load), initial=0.0)), np.finfo(float).tiny)
-    return values, float(np.max(np.abs(matrix @ unknown - load), initial=0.0)) / size, iterations
+    return values, float(np.max(np.abs(matrix @ values[free] - load), initial=0.0)) / size, iterations
 
 
 # ---- what is handed back -------------------------------------------------------------------------
@@ -256,15 +279,7 @@ def five_point(problem: Problem, n: int) -> Answer:
     sizes=(6, 9, 13, 19, 28),
 )
 def seven_point(problem: Problem, n: int) -> Answer:
-    """Solve on a box by the seven-point formula and conjugate gradients.
-
-    Where faces with derivative conditions meet, mixed derivatives cost a logarithm (see `corner_rows`), and
-    the rows that mend it are not symmetric, as conjugate gradients need: such problems are declined.
-    """
-    derivative = [piece.name for piece in problem.pieces if piece.kind != "dirichlet"]
-    meet = any(set(edge.pieces) <= set(derivative) for edge in problem.shape.junctions)
-    if meet and np.count_nonzero(problem.tensor) > problem.dim:
-        raise Refused("mixed derivatives, with derivative conditions on faces that meet in an edge")
+    """Solve on a box by the seven-point formula and conjugate gradients."""
     return solve_on_grid(problem, n)
 
 

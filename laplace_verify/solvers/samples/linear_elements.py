@@ -133,7 +133,7 @@ def held_values(mesh: Mesh, problem: Problem) -> tuple[BoolArray, Array]:
 def asked_at(mesh: Mesh, piece: Piece, nodes: IntArray) -> Array:
     """Return where to ask for data at nodes of a piece: there, but a hair inside at two ends in one place.
 
-    The arc of a sector of 360 degrees ends where it starts; the place alone does not tell which limit to take.
+    The arc of a sector of 360 degrees ends where it starts; the place alone does not tell which limit is due.
     """
     points = mesh.points[nodes].copy()
     edges = mesh.boundary[piece.name]
