@@ -5,8 +5,8 @@ Fisher's exact probability (one-sided) of so uneven a split if the feature had n
 
     p = sum_{k >= a} C(a + b, k) C(F + P - a - b, F - k) / C(F + P, F).
 
-Two features together are named only if they separate the groups better than either alone. Features that the
-same cases have cannot be told apart and are named together.
+Two features together are named only if they separate the groups better than every single one. Features that
+the same cases have cannot be told apart and are named together.
 
 References
 ----------
@@ -67,6 +67,7 @@ def shared_features(
         have_bad = frozenset(k for k, study in enumerate(bad) if name in features[id(study)])
         have_good = frozenset(k for k, study in enumerate(good) if name in features[id(study)])
         groups.setdefault((have_bad, have_good), []).append(name)
+    groups = {key: _telling(names) for key, names in groups.items()}
     single = {key: _score(key, len(bad), len(good)) for key in groups}
     found = [
         (single[key], key, names, False) for key, names in groups.items() if single[key] >= _LOWEST_SCORE
@@ -92,17 +93,21 @@ def _score(key: _Key, bad: int, good: int) -> float:
     return len(key[0]) / bad - len(key[1]) / good
 
 
+def _telling(names: list[str]) -> list[str]:
+    """Leave out tags, which repeat features, where a feature says the same."""
+    return [name for name in names if not name.startswith("tag ")] or names
+
+
 def _pairs(groups: dict[_Key, list[str]], single: dict[_Key, float], bad: int, good: int) -> list[_Found]:
-    """Return pairs of features, had by most failing cases, that separate better than either feature."""
+    """Return the two best pairs of features that separate better than every single feature does."""
     common = [key for key in groups if len(key[0]) >= 0.7 * bad and len(key[0]) > 1]
+    least = max(max(single.values(), default=0.0) + _GAIN_OF_A_PAIR, _LOWEST_SCORE)
     best: dict[_Key, _Found] = {}
     for one, two in combinations(common, 2):
         both = (one[0] & two[0], one[1] & two[1])
         score = _score(both, bad, good)
-        if both in groups or score < max(single[one], single[two]) + _GAIN_OF_A_PAIR or score < _LOWEST_SCORE:
-            continue
         names = [groups[one][0], groups[two][0]]
-        if both not in best or names < best[both][2]:
+        if both not in groups and score >= least and (both not in best or names < best[both][2]):
             best[both] = (score, both, names, True)
     return sorted(best.values(), key=lambda entry: (-entry[0], entry[2]))[:2]
 

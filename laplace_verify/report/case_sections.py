@@ -141,7 +141,7 @@ def _order_table(study: Study) -> list[Block]:
         shown_norms(study)
     )
     others = [
-        f"{norm}: {interval(found)}, finest error {number(finest_error(study, norm))}"
+        f"{norm} {interval(found).partition(' [')[0]}"
         for norm, found in study.orders.items()
         if norm not in shown
     ]
@@ -176,7 +176,7 @@ def _order_table(study: Study) -> list[Block]:
     ]
     if others:
         label = "Observed orders without an expected one."
-        blocks.append(Paragraph(label=label, text=f"{'; '.join(others)}."))
+        blocks.append(Paragraph(label=label, text=f"{', '.join(others)}."))
     return blocks
 
 

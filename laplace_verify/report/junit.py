@@ -13,7 +13,7 @@ from laplace_verify.campaign.record import Record
 from laplace_verify.measure.results import Study
 from laplace_verify.measure.verdict import Verdict
 from laplace_verify.principles.results import Check
-from laplace_verify.report.text import VERDICT_WORDS, accepted, number, printable
+from laplace_verify.report.text import VERDICT_WORDS, accepted, main_reason, number, printable
 
 __all__ = ["to_junit"]
 
@@ -71,8 +71,7 @@ def _study(record: Record, study: Study) -> ElementTree.Element:
         )
         ElementTree.SubElement(element, "failure", message=message, type="PASS").text = printable(text)
         return element
-    message = study.reasons[0] if study.reasons else VERDICT_WORDS[study.verdict]
-    _outcome(element, study.verdict, message, text)
+    _outcome(element, study.verdict, main_reason(study), text)
     return element
 
 

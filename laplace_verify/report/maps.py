@@ -125,6 +125,8 @@ def _plane_map(figure: Figure, points: Array, errors: Array, pieces: Sequence[Pi
     axes.set_xlabel("x")
     axes.set_ylabel("y")
     axes.locator_params(nbins=5)
+    if upper[1] - lower[1] < 0.3 * (upper[0] - lower[0]):
+        axes.locator_params(axis="y", nbins=2)
     _label_scale(figure.colorbar(shown, cax=figure.add_axes((0.79, 0.2, 0.03, 0.68))), low, high)
 
 
@@ -195,7 +197,7 @@ def _label_scale(bar: Colorbar, low: float, high: float) -> None:
 def case_figure(info: CaseInfo) -> Figure:
     """Return the shape of a case: its pieces by name, lines by condition, singular points marked."""
     with drawing():
-        figure = new_figure(3.3, 3.0)
+        figure = new_figure(3.3, _height(info))
         solid = info.dim == 3
         axes = figure.add_subplot(projection="3d") if solid else figure.add_subplot()
         seen: set[str] = set()
@@ -213,10 +215,22 @@ def case_figure(info: CaseInfo) -> Figure:
             axes.set_ylabel("y")
             axes.set_aspect("equal")
             axes.margins(0.12)
+            if figure.get_figheight() < 2.0:
+                axes.locator_params(axis="y", nbins=2)
         if axes.get_legend_handles_labels()[0]:
             place: dict[str, Any] = {"loc": "lower left", "bbox_to_anchor": (-0.15, 1.0)}
-            axes.legend(ncols=3, handlelength=2.2, columnspacing=0.9, fontsize=7.5, **place)
+            columns = 3 if len(axes.get_legend_handles_labels()[0]) <= 3 else 2
+            axes.legend(ncols=columns, handlelength=2.2, columnspacing=0.9, fontsize=7, **place)
         return figure
+
+
+def _height(info: CaseInfo) -> float:
+    """Return the height in inches that suits a plane shape drawn 2.6 inches wide."""
+    rows = [row for piece in info.pieces for row in piece.outline]
+    if info.dim != 2 or not rows:
+        return 3.0 if info.dim > 1 else 1.6
+    width, height = np.ptp(np.asarray(rows, dtype=np.float64), axis=0)
+    return float(np.clip(1.05 + 2.6 * height / max(width, 1e-300), 1.7, 3.4))
 
 
 def _draw_piece(axes: Axes, piece: PieceInfo, dim: int, label: str) -> None:
@@ -244,8 +258,8 @@ def _draw_points(axes: Axes, info: CaseInfo) -> None:
     if info.regularity is None:
         return
     for points, marker, label in (
-        (info.regularity.singular_points, "*", "singular point"),
-        (info.regularity.jumps, "x", "jump of the data"),
+        (info.regularity.singular_points, "*", "singular"),
+        (info.regularity.jumps, "x", "jump of data"),
     ):
         if points:
             place = np.asarray(points, dtype=np.float64)

@@ -37,6 +37,7 @@ from laplace_verify.report.text import (
     accepted,
     count_of,
     joined,
+    main_reason,
     number,
     vector,
 )
@@ -142,7 +143,7 @@ def _verdict_section(record: Record, suspects: list[Suspect]) -> Section:
     troubled = [study for study in record.studies if _needs_attention(study)]
     if troubled:
         blocks.append(Paragraph(text="Cases that need attention:"))
-        blocks.append(Items(entries=tuple(f"{study.case_id}: {_first_reason(study)}" for study in troubled)))
+        blocks.append(Items(entries=tuple(f"{study.case_id}: {main_reason(study)}" for study in troubled)))
     if record.studies:
         blocks.append(
             Picture(
@@ -161,10 +162,6 @@ def _verdict_section(record: Record, suspects: list[Suspect]) -> Section:
 def _needs_attention(study: Study) -> bool:
     troubled = (Verdict.FAIL, Verdict.INCONCLUSIVE, Verdict.ERROR)
     return study.verdict in troubled and not accepted(study)
-
-
-def _first_reason(study: Study) -> str:
-    return study.reasons[0] if study.reasons else VERDICT_MEANING[study.verdict]
 
 
 def _known_section(record: Record) -> Section:

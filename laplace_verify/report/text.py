@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import re
 from collections.abc import Iterable
 
 from laplace_verify.campaign.record import CaseInfo
@@ -24,6 +25,7 @@ __all__ = [
     "interval",
     "is_exact",
     "joined",
+    "main_reason",
     "number",
     "order",
     "power_of_ten",
@@ -103,6 +105,8 @@ FIGURE_KEY = (
     "has the shade of the nearest measured point."
 )
 
+# All but the characters of XML 1.0 (section 2.2) without C1 controls; lone surrogates are among them.
+_UNPRINTABLE = re.compile("[^\t\n\x20-\x7e\xa0-\ud7ff\ue000-\ufffd\U00010000-\U0010ffff]")
 _SUPERSCRIPT = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
 
 
@@ -198,13 +202,7 @@ def printable(text: str) -> str:
     >>> printable("step" + chr(7) + " two")
     'step\ufffd two'
     """
-    return "".join(c if c in "\n\t" or _is_printable(c) else "\ufffd" for c in text.replace("\r\n", "\n"))
-
-
-def _is_printable(character: str) -> bool:
-    """Tell whether a character is allowed in XML 1.0 (and is no C1 control or lone surrogate)."""
-    code = ord(character)
-    return 0x20 <= code < 0x7F or 0xA0 <= code < 0xD800 or 0xE000 <= code < 0xFFFE or code >= 0x10000
+    return _UNPRINTABLE.sub("\ufffd", text.replace("\r\n", "\n"))
 
 
 def accepted(study: Study) -> bool:
@@ -242,6 +240,14 @@ def worst_norm(study: Study) -> str | None:
         return ranks.get(found.verdict, 2) if found.verdict else 2, gap if gap is not None else math.inf
 
     return min(study.deciding, key=rank, default=None)
+
+
+def main_reason(study: Study) -> str:
+    """Return, in one sentence, why a study has its verdict: that of its worst norm, else the first reason."""
+    norm = worst_norm(study)
+    if norm is not None and study.orders[norm].verdict is study.verdict and study.orders[norm].note:
+        return study.orders[norm].note
+    return study.reasons[0] if study.reasons else VERDICT_MEANING[study.verdict]
 
 
 def shortfall(found: Order) -> float | None:
