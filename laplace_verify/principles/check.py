@@ -95,7 +95,8 @@ def _checked(law: Law, solver: Adapter, seed: int) -> Check:
         violation=worst.violation,
         tolerance=worst.tolerance,
         reason=f"kept on {search.tried} problems in {search.calls} solves{declined}; the violation "
-        f"nearest to what is allowed: {worst.violation:.2g} of the largest boundary value, allowed {worst.tolerance:.2g}",
+        f"nearest to what is allowed: {worst.violation:.2g} of the largest boundary value, "
+        f"allowed {worst.tolerance:.2g}",
     )
 
 
@@ -146,7 +147,7 @@ def _broke(law: Law, failure: BrokenSolverError) -> Check:
 
 
 def _between_runs(trial: Trial) -> float | None:
-    """Return the relative difference of two runs at the smallest size; None if there were no comparable values."""
+    """Return the relative difference of two runs at the smallest size; None if they cannot be compared."""
     size = trial.sizes[0]
     points = trial.problem.shape.sample(COMPARED, seed=trial.seed)
     try:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import sys
+from importlib.machinery import PathFinder
 
 from laplace_verify.principles.law import Trial
 from laplace_verify.solvers import Adapter
@@ -56,7 +57,9 @@ def example_code(trial: Trial, size: int, body: tuple[str, ...]) -> str:
 def _importable(solver: Adapter) -> tuple[str, str] | None:
     """Return module and name if the adapter can be imported by them."""
     module, name = getattr(solver.function, "__module__", None), getattr(solver.function, "__qualname__", "")
-    home = sys.modules.get(module) if module else None
-    if not module or module == "__main__" or "." in name or getattr(home, name, None) is not solver:
+    if not module or module == "__main__" or "." in name:
         return None
-    return module, name
+    if getattr(sys.modules.get(module), name, None) is not solver:
+        return None
+    # a module made from a file path stands in sys.modules under a name that no import finds
+    return (module, name) if PathFinder.find_spec(module.partition(".")[0]) is not None else None

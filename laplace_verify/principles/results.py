@@ -27,7 +27,7 @@ class Check:
     reason : str
         Why this verdict, in plain words.
     example : str
-        Python for a fresh session: makes the problem and a function ``violation(solver)``; empty if there is none.
+        Python for a fresh session: the problem and a function ``violation(solver)``; empty if there is none.
     points : tuple of tuple of float
         Where the law was broken, one row of d coordinates a point.
     """
