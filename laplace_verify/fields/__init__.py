@@ -2,9 +2,14 @@
 
 from laplace_verify.fields.affine import affine
 from laplace_verify.fields.base import Field
+from laplace_verify.fields.disc_arcs import arcs
 from laplace_verify.fields.exponentials import exp_trig
 from laplace_verify.fields.formula import Formula
+from laplace_verify.fields.piecewise import parabola, piecewise, ramp, step, tent
+from laplace_verify.fields.plate_modes import coefficient_rule, modes
+from laplace_verify.fields.poisson_disc import fourier, poisson_disc
 from laplace_verify.fields.polynomials import polynomial
+from laplace_verify.fields.rectangle_series import rectangle_series
 from laplace_verify.fields.singular import Cut, Enclosure, Singularity
 from laplace_verify.fields.solids import solid
 from laplace_verify.fields.sources import dipole, log_source, point_source
@@ -20,14 +25,25 @@ __all__ = [
     "Formula",
     "Singularity",
     "affine",
+    "arcs",
+    "coefficient_rule",
     "dipole",
     "exp_trig",
     "field",
+    "fourier",
     "from_spec",
     "log_source",
+    "modes",
+    "parabola",
+    "piecewise",
     "point_source",
+    "poisson_disc",
     "polynomial",
+    "ramp",
+    "rectangle_series",
     "solid",
+    "step",
     "stretched",
+    "tent",
     "wedge",
 ]

@@ -1,12 +1,12 @@
-"""Sums of the modes sin or cos(n pi s / a) sinh(n pi h / a) / sinh(n pi b / a) without overflow or cancellation.
+"""Sums of modes sin or cos(n pi s/a) sinh(n pi h/a) / sinh(n pi b/a) without overflow or cancellation.
 
 With d + h = b, p = pi d / a, theta = pi s / a, z = e^{-p + i theta} and y = e^{-2 pi h / a} z,
 
     sum_n A_n trig(n theta) sinh(n pi h/a) / sinh(n pi b/a) = part sum_n G_n (z^n - y^n),
     G_n = A_n / (1 - e^{-2 n pi b / a}),
 
-part = Im for sines, Re for cosines. In a thin rectangle z and y nearly agree and G_n is large; the difference is
-therefore formed once, as (z - y) times the divided difference of the polynomial G, which Horner's scheme
+part = Im for sines, Re for cosines. In a thin rectangle z and y nearly agree and G_n is large; the difference
+is therefore formed once, as (z - y) times the divided difference of the polynomial G, which Horner's scheme
 gives along with G itself. Both factors are accurate to rounding for every a / b.
 
 The number of terms follows from a bound of the coefficients; points are sorted by distance so that only those
@@ -53,8 +53,8 @@ class Decay:
     def tail(self, count: int, p: float, weight: int) -> float:
         """Return a bound of sum_{n > count} n**weight |A_n| rho**(n - 1) / scale with rho = e^{-p} * ratio.
 
-        Dividing by rho keeps the first mode's relative accuracy far from the side. Two bounds are known and the
-        smaller counts: a geometric series of ratio rho (1 + 1/(count + 1))**(weight - power), and, with
+        Dividing by rho keeps the first mode's relative accuracy far from the side. Two bounds are known and
+        the smaller counts: a geometric series of ratio rho (1 + 1/(count + 1))**(weight - power), and, with
         e = power - weight > 1, the integral of x**-e.
         """
         if self.last is not None and count >= self.last:
@@ -74,7 +74,7 @@ def terms_needed(decay: Decay, p: float, weight: int, digits: float) -> int:
     """Return the least count (to 5 %) whose tail bound is below e^{-digits}.
 
     >>> terms_needed(Decay(ratio=0.5), 0.0, 0, 40.0)
-    59
+    61
     >>> terms_needed(Decay(last=3), 0.0, 0, 40.0)
     3
 
@@ -90,8 +90,10 @@ def terms_needed(decay: Decay, p: float, weight: int, digits: float) -> int:
         count = int(count * 1.05) + 1
         if count > MOST_TERMS:
             raise FieldError(
-                f"the series needs more than {MOST_TERMS} terms at distance {p / math.pi:.3g} side lengths from the "
-                "side with data, by the stated decay bound: state a faster decay, keep away from that side, or "
+                f"the series needs more than {MOST_TERMS} terms at distance {p / math.pi:.3g} side lengths "
+                f"from the "
+                "side with data, by the stated decay bound: state a faster decay, keep away from that side, "
+                "or "
                 "give the data as polynomial pieces, which are summed in closed form"
             )
     return count
@@ -104,7 +106,7 @@ def side_angles(ctx: Any, gamma: Any, x: Any, ends: tuple[Exact, Exact]) -> tupl
 
 
 def mode_value(ctx: Any, even: bool, coefficients: Callable[[int], Any], decay: Decay, place: Place) -> Any:
-    """Return part sum G_n (z^n - y^n), see `_difference_sum`; coefficients(N) returns the real G_1 ... G_N."""
+    """Return part sum G_n (z^n - y^n), see `_difference_sum`; coefficients(N) gives G_1 ... G_N."""
     _, modes = _difference_sum(ctx, coefficients, decay, place, 0)
     return modes.real if even else modes.imag
 

@@ -11,6 +11,7 @@ so that the jumps, exact fractions here, are all that the harmonic function need
 
 from __future__ import annotations
 
+import itertools
 import math
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
@@ -31,8 +32,8 @@ Rows = tuple[tuple[Fraction, ...], ...]
 class Piecewise:
     """f(t) = sum_k coefficients[i][k] (t - breaks[i])^k for breaks[i] <= t < breaks[i+1].
 
-    t is the coordinate along the side (x on top and bottom, y on left and right) or, if `fraction`, the fraction
-    of its length, 0 to 1. `piecewise`, `ramp`, `step`, `tent` and `parabola` make them.
+    t is the coordinate along the side (x on top and bottom, y on left and right) or, if `fraction`, the
+    fraction of its length, 0 to 1. `piecewise`, `ramp`, `step`, `tent` and `parabola` make them.
     """
 
     breaks: tuple[Exact, ...]
@@ -55,10 +56,11 @@ class Piecewise:
         )
         if len(breaks) != len(rows) + 1 or not rows:
             raise FieldError(
-                f"{len(rows)} rows of coefficients need {len(rows) + 1} breaks, the two ends of the side among "
+                f"{len(rows)} rows of coefficients need {len(rows) + 1} breaks, the two ends of the side "
+                f"among "
                 f"them, got {len(breaks)}"
             )
-        if not all(rational(a) < rational(b) for a, b in zip(breaks, breaks[1:], strict=False)):
+        if not all(rational(a) < rational(b) for a, b in itertools.pairwise(breaks)):
             raise FieldError(f"breaks must rise, got {', '.join(show(b) for b in breaks)}")
         for i, row in enumerate(rows):
             if not 1 <= len(row) <= HIGHEST_DEGREE + 1:
@@ -85,7 +87,8 @@ class Piecewise:
         if (places[0], places[-1]) != (start, stop):
             raise FieldError(
                 f"breaks must run from {show(start)} to {show(stop)}, the ends of the side, got "
-                f"{show(places[0])} to {show(places[-1])}; write decimals as strings if both must agree exactly"
+                f"{show(places[0])} to {show(places[-1])}; write decimals as strings if both must agree "
+                f"exactly"
             )
         return places, rows
 
@@ -104,7 +107,8 @@ def piecewise(breaks: Sequence[Number], coefficients: Sequence[Sequence[Number]]
 
     >>> from laplace_verify import fields
     >>> data = fields.piecewise((0, "1/2", 1), ((0, 2), (1,)))  # rises to 1 at mid-side, then stays
-    >>> fields.rectangle_series((0, 0), (1, 1), data, neighbours="insulated").value([[0.25, 1], [0.75, 1]]).tolist()
+    >>> u = fields.rectangle_series((0, 0), (1, 1), data, neighbours="insulated")
+    >>> u.value([[0.25, 1], [0.75, 1]]).tolist()
     [0.5, 1.0]
 
     Raises
@@ -161,8 +165,8 @@ def parabola(height: Number = 1) -> Piecewise:
 class Continuation:
     """The even (insulated) or odd (zero) continuation of piecewise polynomial data, period twice the side.
 
-    `places` are coordinates along the side, in [start, stop]; `jumps[j][p]` is the jump of the p-th derivative
-    there, from the left to the right.
+    `places` are coordinates along the side, in [start, stop]; `jumps[j][p]` is the jump of the p-th
+    derivative there, from the left to the right.
     """
 
     breaks: tuple[Fraction, ...]

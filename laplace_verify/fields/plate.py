@@ -1,7 +1,7 @@
 """A rectangle with data on one side: the part that does not depend on how the data are given.
 
-A family of data solves the problem as a function of the coordinate along the side with data and of the distances
-d and h = b - d from it and from the opposite side; all distances are exact next to the sides.
+A family of data solves the problem as a function of the coordinate along the side with data and of the
+distances d and h = b - d from it and from the opposite side; all distances are exact next to the sides.
 """
 
 from __future__ import annotations
@@ -18,8 +18,8 @@ from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.contexts import Number
 from laplace_verify.errors import FieldError, nearest_names
 from laplace_verify.fields.base import Field
-from laplace_verify.fields.plate_box import Depth
 from laplace_verify.fields.exact import Exact, exact_point, offset, rational, show
+from laplace_verify.fields.plate_box import Depth
 
 __all__ = ["Plate", "side_ends"]
 
@@ -134,7 +134,7 @@ class Plate(Field):
         )
         return ctx.where(on_neighbour, 0 * u, u)  # exactly zero, but NaN stays NaN at a corner that jumps
 
-    def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:  # noqa: ARG002
+    def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:  # noqa: ARG002  # no cut
         along, d, h = self._distances(ctx, x)
         axis, end = SIDES[self.side]
         slope, depth = self._slopes(ctx, along, d, h)
@@ -146,8 +146,8 @@ class Plate(Field):
         low = np.array([float(c) for c in self.lower])
         high = np.array([float(c) for c in self.upper])
         slack = OUTSIDE * float((high - low).max())
-        inside: BoolArray = ((points >= low - slack) & (points <= high + slack)).all(axis=1)
-        return inside
+        inside = (points >= low - slack) & (points <= high + slack)
+        return np.asarray(inside.all(axis=1))
 
 
 def side_ends(lower: Iterable[Number], upper: Iterable[Number], side: str) -> tuple[Fraction, Fraction]:

@@ -1,7 +1,8 @@
 """Depth of a rectangle and what stands opposite the data: zero, or a mirror.
 
-An insulated opposite side is the mirror plane of a rectangle twice as deep with the same data on both of its sides:
-u(d) = U(d) + U(2b - d). The part of U that is a polynomial in d is folded by hand, so that nothing cancels.
+An insulated opposite side is the mirror plane of a rectangle twice as deep with the same data on both of its
+sides: u(d) = U(d) + U(2b - d). The part of U that is a polynomial in d is folded by hand, so that nothing
+cancels.
 """
 
 from __future__ import annotations

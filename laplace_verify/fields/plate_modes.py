@@ -1,10 +1,11 @@
 """Rectangle with data on one side given by their Fourier coefficients.
 
     f(s) = sum_{n >= 1} A_n sin(n pi s / a)                 zero neighbours
-    f(s) = A_0 + sum_{n >= 1} A_n cos(n pi s / a)           insulated neighbours,   s from the lower end of the side
+    f(s) = A_0 + sum_{n >= 1} A_n cos(n pi s / a)           insulated neighbours,   s from the lower end of
+    the side
 
-A finite list is summed completely; a rule comes with a bound of its decay, and the number of terms is what the
-bound demands at the distance of the point from the side. A coefficient that breaks the bound is refused.
+A finite list is summed completely; a rule comes with a bound of its decay, and the number of terms is what
+the bound demands at the distance of the point from the side. A coefficient that breaks the bound is refused.
 """
 
 from __future__ import annotations
@@ -33,7 +34,7 @@ FIRST_LOOK = 32  # coefficients that tell the size of the series
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class CoefficientRule:
-    """Fourier coefficients A_n with |A_n| <= bound ratio^n n^-power; `coefficient_rule` and `modes` make them."""
+    """Coefficients |A_n| <= bound ratio^n n^-power; `coefficient_rule` and `modes` make them."""
 
     rule: Rule
     bound: Exact = 1
@@ -52,10 +53,14 @@ class CoefficientRule:
             _parsed(self.rule)
         elif not callable(self.rule):
             if not isinstance(self.rule, Iterable):
-                raise FieldError(f"coefficients must be a list, a formula in n or a function of n, got {self.rule!r}")
+                raise FieldError(
+                    f"coefficients must be a list, a formula in n or a function of n, got {self.rule!r}"
+                )
             listed = tuple(exact(c, f"coefficients[{i}]") for i, c in enumerate(self.rule))
             if not 1 <= len(listed) <= MOST_TERMS:
-                raise FieldError(f"a list of coefficients must have 1 to {MOST_TERMS} entries, got {len(listed)}")
+                raise FieldError(
+                    f"a list of coefficients must have 1 to {MOST_TERMS} entries, got {len(listed)}"
+                )
             object.__setattr__(self, "rule", listed)
         for name in ("bound", "ratio", "power"):
             object.__setattr__(self, name, exact(getattr(self, name), name))
@@ -118,14 +123,18 @@ def modes(coefficients: Iterable[Number]) -> CoefficientRule:
         If a coefficient is no finite number or there is none.
     """
     if isinstance(coefficients, str):
-        raise FieldError(f"modes takes a list of numbers; for a formula use coefficient_rule, got {coefficients!r}")
+        raise FieldError(
+            f"modes takes a list of numbers; for a formula use coefficient_rule, got {coefficients!r}"
+        )
     return CoefficientRule(rule=tuple(coefficients))  # type: ignore[arg-type]  # made exact there
 
 
 class ModeTable:
     """Coefficients of one context and their quotients by 1 - e^{-2kb}, computed as far as somebody asked."""
 
-    def __init__(self, ctx: Any, listing: Callable[[range], Any], decay: Decay, slenderness: Any, mean: Any) -> None:
+    def __init__(
+        self, ctx: Any, listing: Callable[[range], Any], decay: Decay, slenderness: Any, mean: Any
+    ) -> None:
         self.ctx, self.listing, self.slenderness, self.mean = ctx, listing, slenderness, mean
         self.known: dict[int, Any] = {}
         self.length = 0
@@ -148,7 +157,9 @@ class ModeTable:
                 divided = np.asarray(listed, dtype=np.float64) / -np.expm1(-n * self.slenderness)
                 self.known = {0: divided, 1: n * divided}
             else:
-                divided = [-a / self.ctx.expm1(-n * self.slenderness) for n, a in zip(numbers, listed, strict=True)]
+                divided = [
+                    -a / self.ctx.expm1(-n * self.slenderness) for n, a in zip(numbers, listed, strict=True)
+                ]
                 self.known = {0: divided, 1: [n * a for n, a in zip(numbers, divided, strict=True)]}
         return self.known[weight][:count]
 
@@ -162,9 +173,7 @@ def modes_solution(ctx: Any, plate: Plate, table: ModeTable, x: Any, d: Any, h: 
     return total
 
 
-def modes_slopes(
-    ctx: Any, plate: Plate, table: ModeTable, x: Any, d: Any, h: Any
-) -> tuple[Any, Any]:
+def modes_slopes(ctx: Any, plate: Plate, table: ModeTable, x: Any, d: Any, h: Any) -> tuple[Any, Any]:
     """Return the derivatives of `modes_solution` along the side and in d."""
     along, depth = 0 * x, 0 * x
     for near, far, sign in plate.depth.images(ctx, d, h):
@@ -206,13 +215,15 @@ class PlateModes(Plate):
 
     @property
     def basis(self) -> Basis:
-        """ "closed form" for a finite list, else "tail bound"."""
+        """Closed form for a finite list, else tail bound."""
         return "closed form" if isinstance(self.rule, tuple) else "tail bound"
 
     def _data_text(self) -> str:
         kind = "cosine" if self.even else "sine"
         if isinstance(self.rule, tuple):
-            return f"{kind} coefficients {', '.join(show(c) for c in self.rule[:4])}" + ", ..." * (len(self.rule) > 4)
+            return f"{kind} coefficients {', '.join(show(c) for c in self.rule[:4])}" + ", ..." * (
+                len(self.rule) > 4
+            )
         return f"{kind} coefficients {self.rule if isinstance(self.rule, str) else self.rule.__name__}"
 
     def _solve(self, ctx: Any, x: Any, d: Any, h: Any) -> Any:

@@ -1,7 +1,7 @@
 """Rectangle with piecewise polynomial data on one side, in closed form at every aspect ratio.
 
-`plate_strip` sums for rectangles up to as deep as wide, `plate_row` for deeper ones; both are exact in principle and
-agree to rounding.
+`plate_strip` sums for rectangles up to as deep as wide, `plate_row` for deeper ones; both are exact in
+principle and agree to rounding.
 """
 
 from __future__ import annotations
@@ -62,7 +62,7 @@ class PlatePieces(Plate):
 
     @property
     def basis(self) -> Basis:
-        """ "tail bound"; "closed form" if the continuation is one polynomial and no series is left."""
+        """Tail bound; closed form if the continuation is one polynomial and no series is left."""
         return "tail bound" if self.continuation.places else "closed form"
 
     def _data_text(self) -> str:
@@ -93,7 +93,7 @@ def pieces_slopes(ctx: Any, data: Continuation, depth: Depth, x: Any, d: Any, h:
 
 
 def _is_deep(ctx: Any, data: Continuation, depth: Depth) -> bool:
-    """Return whether to sum by rows: in float64 for rectangles deeper than wide, whose far side few modes reach.
+    """Return whether to sum by rows: in float64 if deeper than wide, where few modes reach the far side.
 
     The table for the strip is long at many digits; there the rows are used down to a depth of a quarter.
     """
@@ -105,7 +105,7 @@ def _is_deep(ctx: Any, data: Continuation, depth: Depth) -> bool:
 def _continuation(
     breaks: tuple[Exact, ...],
     coefficients: tuple[tuple[Exact, ...], ...],
-    even: bool,  # noqa: FBT001
+    even: bool,
 ) -> Continuation:
     """Return the continuation of data given in the coordinate along the side."""
     places = tuple(rational(b) for b in breaks)

@@ -1,7 +1,8 @@
 """Piecewise polynomial data on one side of a rectangle that is deeper than wide, in closed form next to it.
 
-With gamma = pi / a, a the length of the side, and jumps J of the p-th derivative at the places c of one period of
-the continuation, the half-strip d > 0 has the solution (sum of the Fourier coefficients of `piecewise`)
+With gamma = pi / a, a the length of the side, and jumps J of the p-th derivative at the places c of one
+period of the continuation, the half-strip d > 0 has the solution (sum of the Fourier coefficients of
+`piecewise`)
 
     F_0 + Re sum_c sum_p i^{-(p+1)} J a^p / pi^{p+1} Li_{p+1}(e^{-gamma (d - i (s - c))}).
 
@@ -9,8 +10,8 @@ In the rectangle of depth b the mode n has e^{-kd} replaced by sinh(k (b - d)) /
 
     e^{-kd} + (e^{-k (2b + d)} - e^{-k (2b - d)}) / (1 - e^{-2kb}),
 
-whose second part converges like e^{-n pi (2b - d) / a}: a few modes. Beyond the reach of the closed form all modes
-are summed directly. (Derived here.)
+whose second part converges like e^{-n pi (2b - d) / a}: a few modes. Beyond the reach of the closed form all
+modes are summed directly. (Derived here.)
 """
 
 from __future__ import annotations
@@ -169,7 +170,9 @@ def _table(ctx: Any, data: Continuation, height: Fraction) -> _Table:
         for place, jumps in images
     ]
     deep = math.pi * float(height / length)
-    count = 2 + math.ceil(accuracy(ctx) / min(NEAR, 2 * deep - min(NEAR, deep)))  # far off, or the remainder next to it
+    count = 2 + math.ceil(
+        accuracy(ctx) / min(NEAR, 2 * deep - min(NEAR, deep))
+    )  # far off, or the remainder next to it
     modes = _modes(high, data, scaled, count)
     base = high.expm1(-2 * high.pi * high.number(height / length))
     divided = []
@@ -179,7 +182,8 @@ def _table(ctx: Any, data: Continuation, height: Fraction) -> _Table:
         )
     weighted = [n * mode for n, mode in enumerate(divided, start=1)]
     return _Table(
-        gamma=ctx.pi / ctx.number(length), length=ctx.number(length), height=ctx.number(height), even=data.even,
+        gamma=ctx.pi / ctx.number(length), length=ctx.number(length), height=ctx.number(height),
+        even=data.even,
         ends=ends, mean=ctx.number(data.mean),
         places=[(place, rounded(ctx, factors)) for place, factors in scaled],
         modes=(rounded(ctx, divided), rounded(ctx, weighted)), decay=Decay(last=count),
@@ -187,7 +191,7 @@ def _table(ctx: Any, data: Continuation, height: Fraction) -> _Table:
 
 
 def _modes(high: Any, data: Continuation, places: list[tuple[Fraction, list[Any]]], count: int) -> list[Any]:
-    """Return the Fourier coefficients A_1 ... A_count of the continuation, 2 Re F_n if even, -2 Im F_n if odd.
+    """Return the Fourier coefficients A_1 ... A_count: 2 Re F_n if even, -2 Im F_n if odd.
 
     With theta = n pi (c - start) / a, F_n = 1/2 sum J a^p / pi^{p+1} e^{-i theta} (i n)^{-(p+1)}.
     """

@@ -1,17 +1,19 @@
 """Rectangle with a smooth function on one side, by polynomial end corrections and a fast Fourier transform.
 
-The odd (zero neighbours) or even (insulated) continuation of a smooth f jumps at the ends of the side in its even
-or odd derivatives, so its Fourier coefficients decay like a small power of 1 / n. Subtracting the polynomial
+The odd (zero neighbours) or even (insulated) continuation of a smooth f jumps at the ends of the side in its
+even or odd derivatives, so its Fourier coefficients decay like a small power of 1 / n. Subtracting the
+polynomial
 
-    p(s) = sum_{k < K} a^{2k} [f^(2k)(start) L_k(1 - s/a) + f^(2k)(stop) L_k(s/a)],   L_0 = x,  L_k'' = L_{k-1},
+    p(s) = sum_{k < K} a^{2k} [f^(2k)(start) L_k(1 - s/a) + f^(2k)(stop) L_k(s/a)],   L_0 = x,  L_k'' =
+    L_{k-1},
                                                                                    L_k(0) = L_k(1) = 0,
 
-which shares these derivatives (of f', integrated once, for insulated neighbours), leaves coefficients that decay
-like n^-(2K+1); p itself is summed in closed form. The split f = p + (f - p) is exact whatever the accuracy of the
-derivatives. K is what needs the fewest coefficients; where p is much
-larger than f, precise numbers get as many more digits and float64 loses at most 1.5. The coefficients of the rest come from the trapezoidal
-rule on 32, 64, ... intervals, doubled until the last quarter of them is lost in rounding; whether f is what its samples
-suggest is not known, hence the basis "uncertified".
+which shares these derivatives (of f', integrated once, for insulated neighbours), leaves coefficients that
+decay like n^-(2K+1); p itself is summed in closed form. The split f = p + (f - p) is exact whatever the
+accuracy of the derivatives. K is what needs the fewest coefficients; where p is much
+larger than f, precise numbers get as many more digits and float64 loses one, up to four if f oscillates much. The coefficients of the
+rest come from the trapezoidal rule on 32, 64, ... intervals, doubled until the last quarter of them is lost
+in rounding; whether f is what its samples suggest is not known, hence the basis "uncertified".
 
 References
 ----------
@@ -20,6 +22,7 @@ Lidstone (1930), Proc. Edinb. Math. Soc. 2, 16-19, for the polynomials L_k (from
 
 from __future__ import annotations
 
+import itertools
 import math
 from collections.abc import Callable
 from dataclasses import dataclass
@@ -34,8 +37,8 @@ from scipy.fft import dct, dst
 from laplace_verify.contexts import FLOAT, Precise
 from laplace_verify.errors import FieldError
 from laplace_verify.fields._precision import working
+from laplace_verify.fields._samples import converged, parsed, sampled
 from laplace_verify.fields.exact import exact, rational
-from laplace_verify.fields.formula import Formula
 from laplace_verify.fields.mode_sums import Decay
 from laplace_verify.fields.piecewise import Continuation
 from laplace_verify.fields.plate import Plate
@@ -44,14 +47,14 @@ from laplace_verify.fields.plate_pieces import pieces_slopes, pieces_solution
 from laplace_verify.fields.polylog import horner
 from laplace_verify.fields.singular import Basis, Singularity
 from laplace_verify.fields.specs import registered
-from laplace_verify.fields.user import UserField
 
-__all__ = ["PlateSmooth", "sampled"]
+__all__ = ["PlateSmooth"]
 
 FLOAT_INTERVALS = 8192
 PRECISE_INTERVALS = 1024
 FLOAT_CORRECTIONS = 6
-FLOAT_DIGITS = 20  # of the end derivatives
+FLOAT_DIGITS = 30  # of the end derivatives
+FEW = 1000.0  # coefficients
 SMALLEST = mpmath.mpf(10) ** -9999
 SMOOTH = 1e-12  # an end derivative below this, relative to f on the scale a / pi, counts as zero
 
@@ -59,7 +62,7 @@ SMOOTH = 1e-12  # an end derivative below this, relative to f on the scale a / p
 @registered("rectangle-smooth")
 @dataclass(frozen=True, slots=True, kw_only=True)
 class PlateSmooth(Plate):
-    """Data by a formula in the coordinate along the side, or a user's function; `rectangle_series` makes one."""
+    """Data by a formula in the coordinate along the side, or by a user's function; see `rectangle_series`."""
 
     data: str | Callable[[Any], Any]
 
@@ -69,7 +72,7 @@ class PlateSmooth(Plate):
         if not isinstance(self.data, str) and not callable(self.data):
             raise FieldError(f"data must be a formula or a function, got {type(self.data).__name__}")
         if isinstance(self.data, str):
-            _parsed(self.data, self.variable)
+            parsed(self.data, self.variable)
         _split(FLOAT, self)
 
     @property
@@ -96,7 +99,7 @@ class PlateSmooth(Plate):
 
     @property
     def basis(self) -> Basis:
-        """ "uncertified": the function is known at its samples only."""
+        """Uncertified: the function is known at its samples only."""
         return "uncertified"
 
     def _data_text(self) -> str:
@@ -122,36 +125,6 @@ class PlateSmooth(Plate):
             return along, depth
         more_along, more_depth = pieces_slopes(ctx, polynomial, self.depth, x, d, h)
         return along + more_along, depth + more_depth
-
-
-def sampled(data: str | Callable[[Any], Any], variable: str, ctx: Any, t: Any) -> Any:
-    """Return the data at t: an array (n,) of float64, or one precise number.
-
-    Raises
-    ------
-    FieldError
-        If the data are not finite there, or raise.
-    """
-    if isinstance(data, str):
-        with np.errstate(all="ignore"):
-            try:
-                values = _parsed(data, variable).value(ctx, {variable: t})
-            except (ZeroDivisionError, ValueError) as cause:
-                raise FieldError(f"data {data!r} have no value at {variable} = {t}: {cause}") from cause
-    else:
-        values = UserField(function=data, slope=None, dim=1)._value(ctx, (t,), None)
-    if ctx is not FLOAT:
-        return ctx.make_mpf(ctx.convert(values)._mpf_)
-    values = np.broadcast_to(np.asarray(values, dtype=np.float64), t.shape)
-    if not np.isfinite(values).all():
-        raise FieldError(f"data must be finite, but at {variable} = {t[~np.isfinite(values)][0]} they are not")
-    return values
-
-
-@lru_cache(maxsize=256)
-def _parsed(text: str, variable: str) -> Formula:
-    """Return the formula of the data, read once."""
-    return Formula.parse(text, names=(variable,))
 
 
 class _Roomy(Precise):
@@ -189,7 +162,8 @@ def _size(plate: PlateSmooth) -> float:
 def _end_derivatives(plate: PlateSmooth, count: int, digits: int) -> tuple[list[Any], list[Any]]:
     """Return at both ends the derivatives of order 0, 2, ... (zero) or 1, 3, ... (insulated), `count` each.
 
-    They are forward differences with steps of 10^-digits into the side, in so many digits that nothing is lost.
+    They are forward differences with steps of 10^-digits into the side, in so many digits that nothing is
+    lost.
     """
     highest = 2 * count - 1
     ctx = working(digits * (highest + 2))
@@ -205,7 +179,7 @@ def _end_derivatives(plate: PlateSmooth, count: int, digits: int) -> tuple[list[
         derivatives = []
         for order in range(highest + 1):
             derivatives.append(rounded.mpf(values[0] / (direction * step) ** order))
-            values = [b - a for a, b in zip(values, values[1:], strict=False)]
+            values = [b - a for a, b in itertools.pairwise(values)]
         result.append(derivatives[1::2] if plate.even else derivatives[::2])
     return result[0], result[1]
 
@@ -214,30 +188,31 @@ def _end_derivatives(plate: PlateSmooth, count: int, digits: int) -> tuple[list[
 def _plan(plate: PlateSmooth, digits: int | None) -> tuple[list[Any], list[Any], int]:
     """Return the end derivatives to correct for, and how many digits their size costs; digits None: float64.
 
-    After K corrections A_n is about size_K / n^(2K + 1 or 2), with size_k the k-th derivative on the scale a / pi:
-    the K that needs the fewest coefficients is taken, within the digits that may be lost.
+    After K corrections A_n is about size_K / n^(2K + 1 or 2), with size_k the k-th derivative on the scale a
+    / pi: the K that needs the fewest coefficients is taken, within the digits that may be lost.
     """
-    wanted, allowed = (16, 1.5) if digits is None else (digits, float(digits))
+    wanted = 16 if digits is None else digits
     most = FLOAT_CORRECTIONS if digits is None else FLOAT_CORRECTIONS + digits // 3
     left, right = _end_derivatives(plate, most, FLOAT_DIGITS if digits is None else 2 * digits)
     start, stop = plate.ends
-    unit, scale, order = float(stop - start) / math.pi, _size(plate), 1 if plate.even else 0
-    best, count, lost, largest = math.inf, 0, 0, 0.0
-    for k in range(most):
-        size = float(mpmath.log10(max(abs(left[k]), abs(right[k]), SMALLEST))) + (2 * k + order) * math.log10(unit)
-        relative = size - math.log10(scale)
-        needed = 10.0 ** min((relative + wanted) / (2 * k + 1 + order), 9.0) + 2 * k
-        if needed < best:
-            best, count, lost = needed, k, math.ceil(largest)
-        largest = max(largest, relative)
-        if not largest <= allowed:
+    unit, order = math.log10(float(stop - start) / math.pi), 1 if plate.even else 0
+    sizes = [
+        float(mpmath.log10(max(abs(a), abs(b), SMALLEST))) + (2 * k + order) * unit - math.log10(_size(plate))
+        for k, (a, b) in enumerate(zip(left, right, strict=True))
+    ]
+    counts = [10.0 ** min((size + wanted) / (2 * k + 1 + order), 9.0) for k, size in enumerate(sizes)]
+    needed = [max(counts[k:]) + 2 * k for k in range(most)]  # by the worst derivative not corrected for
+    lost = [max([0.0, *sizes[:k]]) for k in range(most)]
+    for allowed in (1.0, 2.0, 3.0, 4.0) if digits is None else (float(digits),):
+        best = min((k for k in range(most) if lost[k] <= allowed), key=needed.__getitem__)
+        if needed[best] <= FEW:
             break
-    return left[:count], right[:count], lost
+    return left[:best], right[:best], math.ceil(lost[best])
 
 
 @lru_cache(maxsize=64)
 def _split(ctx: Any, plate: PlateSmooth) -> tuple[Continuation | None, Any]:
-    """Return the polynomial p, and the coefficients of f - p: A_1, ... of sines or A_0, A_1, ... of cosines."""
+    """Return p, and the coefficients of f - p: A_1, ... of sines or A_0, A_1, ... of cosines."""
     left, right, _ = _plan(plate, None if ctx is FLOAT else ctx.wanted)
     start, stop = plate.ends
     row = _correction(left, right, stop - start, plate.even)
@@ -245,7 +220,7 @@ def _split(ctx: Any, plate: PlateSmooth) -> tuple[Continuation | None, Any]:
     return polynomial, _transformed(ctx, plate, [ctx.number(c) for c in row])
 
 
-def _correction(left: list[Any], right: list[Any], length: Fraction, even: bool) -> tuple[Fraction, ...]:  # noqa: FBT001
+def _correction(left: list[Any], right: list[Any], length: Fraction, even: bool) -> tuple[Fraction, ...]:
     """Return p in powers of s, exact fractions."""
     row = [Fraction(0)] * (2 * len(left) + 1)
     lidstone = [Fraction(1)]  # L_k = sum_i lidstone[i] x^(2i+1)
@@ -269,22 +244,14 @@ def _correction(left: list[Any], right: list[Any], length: Fraction, even: bool)
 
 def _transformed(ctx: Any, plate: PlateSmooth, row: list[Any]) -> Any:
     """Return the coefficients of f - p, from as many samples as it takes."""
-    intervals, most = 32, FLOAT_INTERVALS if ctx is FLOAT else PRECISE_INTERVALS
-    while intervals <= most:
-        samples, size = _samples(ctx, plate, row, intervals)
-        coefficients = _transform(ctx, samples, plate.even)
-        tail = coefficients[3 * intervals // 4 :]
-        rounding = size * (2.0**-53 if ctx is FLOAT else ctx.mpf(10) ** -ctx.wanted)
-        if not isinstance(tail, np.ndarray) or tail.size:
-            largest = max(abs(c) for c in tail)
-            if largest <= rounding:
-                kept = [i for i, c in enumerate(coefficients) if abs(c) > rounding / 8]
-                return coefficients[: kept[-1] + 1 if kept else 1]
-        intervals *= 2
-    raise FieldError(
-        f"the coefficients of {plate._data_text()} have not decayed after {most} samples: if the data have a kink or "
-        "jump give them as piecewise polynomials, if they are smooth but steep use a shorter side"
-    )
+
+    def transform(count: int) -> tuple[Any, Any]:
+        samples, size = _samples(ctx, plate, row, count)
+        return _transform(ctx, samples, plate.even), size
+
+    most = FLOAT_INTERVALS if ctx is FLOAT else PRECISE_INTERVALS
+    advice = "data with a kink or jump are given as piecewise polynomials"
+    return converged(ctx, transform, most, plate._data_text(), advice)
 
 
 def _samples(ctx: Any, plate: PlateSmooth, row: list[Any], intervals: int) -> tuple[Any, Any]:
@@ -295,13 +262,16 @@ def _samples(ctx: Any, plate: PlateSmooth, row: list[Any], intervals: int) -> tu
         t = np.array([float(place) for place in places])
         f = sampled(plate.data, plate.variable, ctx, t)
         p = horner(row, t - float(start)) if row else 0 * t
-        return f - p, max(np.abs(f).max(), np.abs(p).max())
+        terms = sum(
+            abs(c) * float(stop - start) ** k for k, c in enumerate(row)
+        )  # of p, whose rounding remains
+        return f - p, max(np.abs(f).max(), terms)
     f = [sampled(plate.data, plate.variable, ctx, ctx.number(place)) for place in places]
     p = [horner(row, ctx.number(place - start)) if row else ctx.mpf(0) for place in places]
     return [a - b for a, b in zip(f, p, strict=True)], max(abs(v) for v in (*f, *p))
 
 
-def _transform(ctx: Any, samples: Any, even: bool) -> Any:  # noqa: FBT001
+def _transform(ctx: Any, samples: Any, even: bool) -> Any:
     """Return the coefficients of the trigonometric polynomial through the samples, trapezoidal rule."""
     intervals = len(samples) - 1
     if ctx is FLOAT:

@@ -1,24 +1,26 @@
 """Piecewise polynomial data on one side of a rectangle that is not deeper than wide, in closed form.
 
-Let f be the periodic continuation of the data, d the distance from the hot side, h = b - d, beta = pi / b. In the
-strip 0 < d < b, zero at d = b, polynomial data f have the polynomial solution
+Let f be the periodic continuation of the data, d the distance from the hot side, h = b - d, beta = pi / b. In
+the strip 0 < d < b, zero at d = b, polynomial data f have the polynomial solution
 
     P = sum_k f^(2k)(s) b^{2k} Q_k(h / b),   Q_0 = x,  Q_k'' = -Q_{k-1},  Q_k(0) = Q_k(1) = 0.
 
-A jump J of the p-th derivative at c adds on either side of c what makes the whole smooth across s = c, a sum of
-sines of d that decays away from c (matched at p = 0, then integrated p times in s; derived here):
+A jump J of the p-th derivative at c adds on either side of c what makes the whole smooth across s = c, a sum
+of sines of d that decays away from c (matched at p = 0, then integrated p times in s; derived here):
 
     s < c:  + J b^p / pi^{p+1} Im Li_{p+1}(e^{-beta (c - s) + i beta d}),
     s > c:  - (-1)^p J b^p / pi^{p+1} Im Li_{p+1}(e^{-beta (s - c) + i beta d}).
 
-If the opposite side is insulated, Q_0 = 1 and Q_k'(0) = 0 in P, b is doubled in the terms with Li, and these are
-taken at d and at 2b - d. u is P of the piece that s lies in plus these terms for all places of the continuation. Places within 1 / beta
-are summed by `polylog`; all farther ones on one side form a single power series in the exponential of the first
-of them. On the hot side every imaginary part is exactly zero and u is exactly f.
+If the opposite side is insulated, Q_0 = 1 and Q_k'(0) = 0 in P, b is doubled in the terms with Li, and these
+are taken at d and at 2b - d. u is P of the piece that s lies in plus these terms for all places of the
+continuation. Places within 1 / beta are summed by `polylog`; all farther ones on one side form a single power
+series in the exponential of the first of them. On the hot side every imaginary part is exactly zero and u is
+exactly f.
 """
 
 from __future__ import annotations
 
+import itertools
 import math
 from bisect import bisect_left, bisect_right
 from dataclasses import dataclass
@@ -62,7 +64,7 @@ def strip_value(ctx: Any, data: Continuation, depth: Depth, x: Any, d: Any, h: A
     """Return u at coordinate x along the side, distances d from it and h from the opposite side."""
     table = _table(ctx, data, depth)
     piece = _piece(ctx, table.breaks, x)
-    total = by_index(piece, lambda i, *at: _polynomial(ctx, table, i, *at), x, d, h)
+    total = by_index(piece, lambda i, *at: _polynomial(ctx, table, i, 0, *at), x, d, h)
     for near, far, _ in depth.images(ctx, d, h):
         left, right = _sums(ctx, table, x, near, far, piece, lowered=0)
         total = total + (left + right).imag
@@ -73,11 +75,14 @@ def strip_gradient(ctx: Any, data: Continuation, depth: Depth, x: Any, d: Any, h
     """Return the derivatives of u along the side and with respect to d."""
     table = _table(ctx, data, depth)
     piece = _piece(ctx, table.breaks, x)
-    along = by_index(piece, lambda i, *at: _polynomial(ctx, table, i, *at, order=1), x, d, h)
+    along = by_index(piece, lambda i, *at: _polynomial(ctx, table, i, 1, *at), x, d, h)
     across = by_index(piece, lambda i, *at: _polynomial_depth(ctx, table, i, *at), x, h)
     for near, far, sign in depth.images(ctx, d, h):
         left, right = _sums(ctx, table, x, near, far, piece, lowered=1)
-        along, across = along + table.beta * (right - left).imag, across + sign * table.beta * (right + left).real
+        along, across = (
+            along + table.beta * (right - left).imag,
+            across + sign * table.beta * (right + left).real,
+        )
     return along, across
 
 
@@ -96,7 +101,7 @@ def _piece(ctx: Any, breaks: tuple[Fraction, ...], x: Any) -> Any:
     return sum(inner)
 
 
-def _polynomial(ctx: Any, table: _Table, i: int, x: Any, d: Any, h: Any, order: int = 0) -> Any:
+def _polynomial(ctx: Any, table: _Table, i: int, order: int, x: Any, d: Any, h: Any) -> Any:
     """Return P, or with order = 1 its derivative along the side, for points of piece i."""
     t, depth, rest = offset(ctx, x, table.breaks[i]), d / table.height, h / table.height
     lowest = 1 if table.mirrored else rest
@@ -192,7 +197,7 @@ def _table(ctx: Any, data: Continuation, depth: Depth) -> _Table:
         scaled = [ctx.number(jump * width**p) / pi ** (p + 1) for p, jump in enumerate(jumps)]
         left.append([-((-1) ** p) * f for p, f in enumerate(scaled)])
         right.append(scaled)
-    gaps = [ctx.exp(-pi * ctx.number((b - a) / width)) for a, b in zip(places, places[1:], strict=False)]
+    gaps = [ctx.exp(-pi * ctx.number((b - a) / width)) for a, b in itertools.pairwise(places)]
     derivatives = [
         [[ctx.number(c * math.perm(k, m)) for k, c in enumerate(row) if k >= m] for m in range(len(row))]
         for row in data.rows
@@ -235,11 +240,11 @@ def _series(ctx: Any, factors: list[list[Any]], gaps: list[Any]) -> list[tuple[l
 
 
 def _profiles(ctx: Any, highest: int, depth: Depth) -> list[tuple[list[Any], list[Any]]]:
-    """Return for k = 0 ... highest b^{2k} times Q_k without its factors, and times Q_k' without its lowest power.
+    """Return for k = 0 ... highest b^{2k} times Q_k less its factors, and Q_k' less its lowest power.
 
-    Zero opposite: Q_k = sum_i c_i x^{2i+1}, with the factors x (1 - x). Mirror opposite: Q_k = sum_i c_i x^{2i},
-    Q_k'(0) = 0 in place of Q_k(0) = 0, with the factor 1 - x. What is left is in powers of x, the derivative in
-    powers of x^2 after x^0 or x^1. (k = 0 has no factor 1 - x; its first entry is not used.)
+    Zero opposite: Q_k = sum_i c_i x^{2i+1}, with the factors x (1 - x). Mirror opposite: Q_k = sum_i c_i
+    x^{2i}, Q_k'(0) = 0 in place of Q_k(0) = 0, with the factor 1 - x. What is left is in powers of x, the
+    derivative in powers of x^2 after x^0 or x^1. (k = 0 has no factor 1 - x; its first entry is not used.)
     """
     lowest = 0 if depth.mirrored else 1
     c = [Fraction(1)]

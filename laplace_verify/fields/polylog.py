@@ -5,14 +5,14 @@ Close to |z| = 1 the series sum z^n / n^s is useless; there, with w = p - i q an
     Li_s(e^{-w})  = sum_{k != s-1} zeta(s-k) (-w)^k / k! + (-w)^{s-1} / (s-1)! (H_{s-1} - log w),  |w| < 2 pi,
     Li_s(-e^{-v}) = - sum_k eta(s-k) (-v)^k / k!,   eta(s) = (1 - 2^{1-s}) zeta(s),                |v| < pi,
 
-are used about the nearer of z = 1 and z = -1: zeta and eta vanish at the negative even numbers, so beyond k = s
-both are series in w^2 with ratios (|w| / 2 pi)^2 and (|v| / pi)^2. Li_1 and Li_0 are elementary. The number of
-terms follows from these ratios, for float64 as for any number of digits.
+are used about the nearer of z = 1 and z = -1: zeta and eta vanish at the negative even numbers, so beyond k =
+s both are series in w^2 with ratios (|w| / 2 pi)^2 and (|v| / pi)^2. Li_1 and Li_0 are elementary. The number
+of terms follows from these ratios, for float64 as for any number of digits.
 
 References
 ----------
-Lewin (1981), Polylogarithms and associated functions, and NIST DLMF, section 25.12 (from memory, checked against
-mpmath); the second expansion is the first of Li_s(z) + Li_s(-z) = 2^{1-s} Li_s(z^2), derived here.
+Lewin (1981), Polylogarithms and associated functions, and NIST DLMF, section 25.12 (from memory, checked
+against mpmath); the second expansion is the first of Li_s(z) + Li_s(-z) = 2^{1-s} Li_s(z^2), derived here.
 """
 
 from __future__ import annotations
@@ -113,7 +113,7 @@ def _direct(ctx: Any, order: int, p: Any, q: Any, r: Any) -> Any:
     return power_series(ctx, _inverse_powers(ctx, order), p, ctx.exp(-p) * unit(ctx, q, r))
 
 
-def _about_plus_one(ctx: Any, order: int, p: Any, q: Any, r: Any) -> Any:  # noqa: ARG001
+def _about_plus_one(ctx: Any, order: int, p: Any, q: Any, r: Any) -> Any:  # noqa: ARG001  # one signature for all zones
     """Return the expansion in w, with its logarithm."""
     head, tail, harmonic, factor = _zeta_coefficients(ctx, order)
     w = _complex(ctx, p, -q)
@@ -126,7 +126,7 @@ def _about_plus_one(ctx: Any, order: int, p: Any, q: Any, r: Any) -> Any:  # noq
     return horner(head, w) + power * (harmonic - logarithm) + w ** (order + 1) * horner(tail, w * w)
 
 
-def _about_minus_one(ctx: Any, order: int, p: Any, q: Any, r: Any) -> Any:  # noqa: ARG001
+def _about_minus_one(ctx: Any, order: int, p: Any, q: Any, r: Any) -> Any:  # noqa: ARG001  # one signature for all zones
     """Return the expansion in v = p + i r, e^{-p + iq} = -e^{-v}."""
     head, tail = _eta_coefficients(ctx, order)
     v = _complex(ctx, p, r)

@@ -1,4 +1,4 @@
-"""Rectangle with data on one side, zero or insulated neighbours: Fourier series that are never summed naively.
+"""Rectangle with data on one side, zero or insulated elsewhere: Fourier series, never summed naively.
 
 Three ways of giving the data f, all with the same boundary value problem
 
@@ -9,8 +9,8 @@ coefficients with a bound of their decay (`plate_modes`), or a smooth function (
 
 References
 ----------
-Carslaw & Jaeger (1959), Conduction of heat in solids, 2nd ed., ch. V, for the series (from memory, unchecked); the
-sums in closed form are derived in the modules named.
+Carslaw & Jaeger (1959), Conduction of heat in solids, 2nd ed., ch. V, for the series (from memory,
+unchecked); the sums in closed form are derived in the modules named.
 """
 
 from __future__ import annotations
@@ -59,16 +59,16 @@ def rectangle_series(
     Returns
     -------
     Field
-        u on the closed rectangle, equal to the data on the side. u scales like the data, the gradient like data
-        per length.
+        u on the closed rectangle, equal to the data on the side. u scales like the data, the gradient like
+        data per length.
 
     Notes
     -----
     Singular points are declared where the odd (zero neighbours) or even (insulated) continuation of the data
-    jumps: exponent 0 and kind "jump" for the data themselves, where u has no value; exponent p and kind "power"
-    for the p-th derivative, where u behaves like r^p log r (p = 1: infinite gradient). For a coefficient rule
-    nothing is declared; with algebraic decay points very near the side may need more terms than the bound allows
-    and are refused.
+    jumps: exponent 0 and kind "jump" for the data themselves, where u has no value; exponent p and kind
+    "power" for the p-th derivative, where u behaves like r^p log r (p = 1: infinite gradient). For a
+    coefficient rule nothing is declared; with algebraic decay points very near the side may need more terms
+    than the bound allows and are refused.
 
     Examples
     --------
