@@ -225,7 +225,7 @@ def _sample_cells(answer: Answer, generator: np.random.Generator) -> Sample:
     mesh, values = answer.mesh, answer.values
     if mesh is None or values is None:
         raise AnswerError("cells: this answer has none")
-    # Two more than 2 p: fewer points would sit where the error of interpolation of degree p vanishes. In bricks
+    # Two more than 2 p: with fewer, points would sit where the error of interpolation vanishes. In bricks
     # the determinant of the map brings those two already.
     degree = max(block.element.degree for block in mesh.blocks)
     solid = mesh.dim == 3 and not any(block.element.simplex for block in mesh.blocks)
