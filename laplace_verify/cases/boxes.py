@@ -40,7 +40,7 @@ def _box_solid() -> Definition:
     return Definition(
         title="Box with solid harmonics",
         solution="H31 + H20/2; H31 = sqrt(6)/4 x (4 z^2 - x^2 - y^2), H20 = z^2 - (x^2 + y^2)/2",
-        note="Seven-point differences are exact on cubics.",
+        note="Seven-point differences are exact at the nodes.",
         reading="Potential of a far-away ring of anodes inside a tank.",
         shape=TANK,
         field=fields.solid(3, 1) + fields.solid(2, 0) * "1/2",
@@ -146,13 +146,13 @@ def _box_tensor_oblique() -> Definition:
 def _box_source_near() -> Definition:
     return Definition(
         title="Box with a source close to its top",
-        solution="1/|x - p|, p = (1/4, 1/5, 1/2)",
+        solution="1/|x - p|, p = (1/5, 3/20, 2/5)",
         note="The source is 0.1 outside.",
         tags=("near-source",),
         reading="A grounding electrode just above a block of conducting clay.",
-        shape=Box((0.0, 0.0, 0.0), (0.6, 0.5, 0.4)),
-        field=fields.point_source(("1/4", "1/5", "1/2")),
-        quantities={"value below the source": value_at((0.25, 0.2, 0.4), exact=10)},
+        shape=Box((0.0, 0.0, 0.0), (0.44, 0.36, 0.3)),
+        field=fields.point_source(("1/5", "3/20", "2/5")),
+        quantities={"value below the source": value_at((0.2, 0.15, 0.3), exact=10)},
         sources=(POINT,),
-        reference_points=(("0.3", "0.25", "0.2"), ("0.25", "0.2", "0.4"), ("0.6", "0.5", "0")),
+        reference_points=(("0.3", "0.25", "0.2"), ("0.2", "0.15", "0.3"), ("0.44", "0.36", "0")),
     )

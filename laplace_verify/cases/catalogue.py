@@ -129,7 +129,7 @@ class Catalogue(Mapping[str, Case]):
         Raises
         ------
         RecordError
-            If there is no such folder, it holds no case, or a file is no sound case; file and field are named.
+            If there is no such folder, it holds no case, or a file is no sound case; it is named.
         ProblemError
             If an id is taken.
         """

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from laplace_verify import fields
 from laplace_verify.cases.definition import HERE, Definition, Family
-from laplace_verify.fields import Field
 from laplace_verify.geometry import Disc, Ellipse
 from laplace_verify.problems import energy_of_solution, flux_through, robin, value_at
 
@@ -15,26 +14,37 @@ FOURIER = "Fourier series: Churchill & Brown, Complex Variables and Applications
 SKEW = [[1.5, -0.4], [-0.4, 0.8]]
 
 
-def _fourier(degree: int, part: str) -> Field:
-    """Return Re or Im w^degree, w = (z - z0)/0.8, z0 = 1/5 - i/10: 1 in size on the rim."""
-    return fields.polynomial(degree, part, centre=("1/5", "-1/10"), scale="4/5")  # type: ignore[arg-type]
-
-
 @family
 def _disc_fourier() -> Definition:
     return Definition(
         title="Disc with three Fourier modes on its rim",
-        solution="1 + 2 Re w - 1/2 Im w^2 + 1/3 Re w^5, w = (z - z0)/(4/5), z = x + i y, z0 = 1/5 - i/10",
+        solution="1 + 2 s cos t - 1/2 s^2 sin 2t + 1/3 s^5 cos 5t, "
+        "s = r/0.8, (r, t) polar coordinates about (1/5, -1/10)",
         reading="A round tidal pool whose rim follows three harmonics of the tide.",
         shape=Disc((0.2, -0.1), 0.8),
-        field=fields.affine((0, 0), 1)
-        + 2 * _fourier(1, "re")
-        - _fourier(2, "im") * "1/2"
-        + _fourier(5, "re") * "1/3",
+        field=fields.poisson_disc(
+            ("1/5", "-1/10"), "4/5", fields.fourier((1, 2, 0, 0, 0, "1/3"), (0, "-1/2"))
+        ),
         conductivity=1.7,
         quantities={"value at the centre": value_at((0.2, -0.1), exact=1)},
         sources=(FOURIER,),
         reference_points=(("0.2", "-0.1"), ("0.68", "0.54"), ("0", "0")),
+    )
+
+
+@family
+def _disc_step() -> Definition:
+    return Definition(
+        title="Disc with two temperatures on its rim",
+        solution="(angle under which the hot arc is seen)/pi - 3/8",
+        note="u = 1 on the arc from 0 to 135 degrees, u = 0 on the rest: the data jump twice.",
+        reading="A round tank with warm water along three eighths of its wall.",
+        shape=Disc((0.0, 0.0), 0.9).split(rim=[0.375]),
+        field=fields.poisson_disc((0, 0), "9/10", fields.arcs((0, "3/8"), (1, 0))),
+        conductivity=1.2,
+        quantities={"value at the centre": value_at((0.0, 0.0), exact="3/8")},
+        sources=("Poisson's integral: Churchill & Brown, Complex Variables and Applications", HERE),
+        reference_points=(("0", "0"), ("0.3", "0.4"), ("0", "-0.89"), ("0.899", "0.001")),
     )
 
 
@@ -73,14 +83,14 @@ def _disc_convection() -> Definition:
 def _disc_source_near() -> Definition:
     return Definition(
         title="Disc with a source close to its rim",
-        solution="log |x - p|, p = (0.52, 0.39)",
+        solution="log |x - p|, p = (0.28, 0.21)",
         note="The source is 0.05 outside.",
         reading="A round pool beside a well.",
-        shape=Disc((0.0, 0.0), 0.6),
-        field=fields.log_source(("13/25", "39/100")),
+        shape=Disc((0.0, 0.0), 0.3),
+        field=fields.log_source(("7/25", "21/100")),
         quantities={"value at the centre": value_at((0.0, 0.0))},
         sources=(HERE,),
-        reference_points=(("0", "0"), ("0.48", "0.36"), ("-0.36", "0.2")),
+        reference_points=(("0", "0"), ("0.24", "0.18"), ("-0.2", "0.1")),
     )
 
 

@@ -93,11 +93,11 @@ def _plate_pure_flux() -> Definition:
 def _plate_source_near_flux() -> Definition:
     return Definition(
         title="Plate with a source close to a side of given flux",
-        solution="log |x - p| / 2, p = (0.3, -0.05)",
+        solution="log |x - p| / 2, p = (0.2, -0.05)",
         note="The source is 0.05 below the side whose flux is given.",
         reading="A leaking pipe just below the apron, whose inflow is measured along the apron's sole.",
-        shape=Rectangle((0.0, 0.0), (0.8, 0.5)),
-        field=fields.log_source(("3/10", "-1/20"), "1/2"),
+        shape=Rectangle((0.0, 0.0), (0.55, 0.35)),
+        field=fields.log_source(("1/5", "-1/20"), "1/2"),
         conditions={"bottom": "neumann"},
         conductivity=1.5,
         quantities={"flux through the bottom": flux_through("bottom")},

@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
+from laplace_verify import fields
 from laplace_verify.cases.definition import HERE, Definition, Family
 from laplace_verify.cases.plates_smooth import PLATE
-from laplace_verify.fields.piecewise import parabola, ramp, step, tent
-from laplace_verify.fields.rectangle_series import rectangle_series
 from laplace_verify.problems import flux_through, value_at
 
 __all__ = ["family"]
@@ -24,7 +23,7 @@ def _plate_hot_side() -> Definition:
         note="The data jump in the two upper corners.",
         reading="A bulkhead with steam behind its upper edge and ice water along the other three.",
         shape=PLATE,
-        field=rectangle_series(LOWER, UPPER, 1),
+        field=fields.rectangle_series(LOWER, UPPER, 1),
         quantities={"value at the sensor": value_at((0.8, 0.45))},
         sources=(SERIES,),
         reference_points=(("0.8", "0.45"), ("0.4", "0.9"), ("1.599999", "0.899999")),
@@ -40,7 +39,7 @@ def _plate_insulated_ramp() -> Definition:
         note="On top u = 2 x/a, whose slope does not fit the insulated sides: u behaves like r log r there.",
         reading="A tidal flat drained at the bottom, with the water table rising along its top.",
         shape=PLATE,
-        field=rectangle_series(LOWER, UPPER, ramp(0, 2), neighbours="insulated"),
+        field=fields.rectangle_series(LOWER, UPPER, fields.ramp(0, 2), neighbours="insulated"),
         conditions=INSULATED,
         conductivity=1.1,
         quantities={"value at the sensor": value_at((0.8, 0.45), exact="1/2")},
@@ -54,15 +53,15 @@ def _plate_insulated_ramp() -> Definition:
 def _plate_insulated_step() -> Definition:
     return Definition(
         title="Plate between insulated sides, a step on top",
-        solution="Fourier cosine series for u = 2 on the left 3/8 of the top, u = 1/2 on the rest",
-        note="The data jump inside the top.",
+        solution="Fourier cosine series for u = 2 on the left quarter of the top, u = 1/2 on the rest",
+        note="The data jump inside the top, where it is cut in two pieces.",
         reading="Ground water under a sheet pile that holds back two levels of water.",
-        shape=PLATE,
-        field=rectangle_series(LOWER, UPPER, step("3/8", 2, "1/2"), neighbours="insulated"),
+        shape=PLATE.split(top=[0.25]),
+        field=fields.rectangle_series(LOWER, UPPER, fields.step("1/4", 2, "1/2"), neighbours="insulated"),
         conditions=INSULATED,
         quantities={"value at the sensor": value_at((0.8, 0.45))},
         sources=(SERIES,),
-        reference_points=(("0.5", "0.45"), ("0.6001", "0.8999"), ("0", "0.1")),
+        reference_points=(("0.5", "0.45"), ("0.4001", "0.8999"), ("0", "0.1")),
     )
 
 
@@ -74,7 +73,7 @@ def _plate_insulated_tent() -> Definition:
         note="At the ridge and in the upper corners u behaves like r log r.",
         reading="A slab with a ridge of warm ground on top.",
         shape=PLATE,
-        field=rectangle_series(LOWER, UPPER, tent("1/4"), neighbours="insulated"),
+        field=fields.rectangle_series(LOWER, UPPER, fields.tent("1/4"), neighbours="insulated"),
         conditions=INSULATED,
         conductivity=0.7,
         quantities={"flux through the bottom": flux_through("bottom", exact="-28/45")},
@@ -91,7 +90,7 @@ def _plate_parabola() -> Definition:
         note="In the corners on the right u behaves like r^2 log r.",
         reading="Velocity potential of a duct fed through its right end by a fully developed stream.",
         shape=PLATE,
-        field=rectangle_series(LOWER, UPPER, parabola(), side="right"),
+        field=fields.rectangle_series(LOWER, UPPER, fields.parabola(), side="right"),
         conductivity=1.9,
         quantities={"flux through the right side": flux_through("right")},
         sources=(SERIES, HERE),

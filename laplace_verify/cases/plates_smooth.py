@@ -41,7 +41,7 @@ def _plate_saddle() -> Definition:
     return Definition(
         title="Plate with the harmonic saddle",
         solution="x^2 - y^2",
-        note="Five-point differences are exact: u_xxxx = u_yyyy = 0.",
+        note="Five-point differences are exact at the nodes: u_xxxx = u_yyyy = 0.",
         reading="Water level in a still basin forced along its rim.",
         shape=PLATE,
         field=fields.polynomial(2),
@@ -60,7 +60,7 @@ def _plate_cubic() -> Definition:
     return Definition(
         title="Plate with a cubic solution",
         solution="3 x^2 y - y^3 + (x^2 - y^2)/2",
-        note="Five-point differences are exact.",
+        note="Five-point differences are exact at the nodes.",
         reading="Level of a harbour basin with a seiche frozen at its largest.",
         shape=PLATE,
         field=fields.polynomial(3, "im") + fields.polynomial(2) * "1/2",
@@ -118,14 +118,14 @@ def _plate_tensor_oblique_fixed() -> Definition:
 def _plate_source_near() -> Definition:
     return Definition(
         title="Plate with a source close to its right side",
-        solution="log |x - p|, p = (0.85, 0.2)",
+        solution="log |x - p|, p = (0.6, 0.1)",
         note="The source is 0.05 outside.",
         reading="Ground-water head beside a well just outside the concrete apron.",
-        shape=Rectangle((0.0, 0.0), (0.8, 0.5)),
-        field=fields.log_source(("17/20", "1/5")),
-        quantities={"value at the sensor": value_at((0.4, 0.2))},
+        shape=Rectangle((0.0, 0.0), (0.55, 0.35)),
+        field=fields.log_source(("3/5", "1/10")),
+        quantities={"value at the sensor": value_at((0.3, 0.1))},
         sources=(SOURCE,),
-        reference_points=(("0.8", "0.2"), ("0.1", "0.3"), ("0.799999", "0.200001")),
+        reference_points=(("0.55", "0.1"), ("0.1", "0.3"), ("0.549999", "0.100001")),
     )
 
 

@@ -49,7 +49,7 @@ def _polygon_with_hole() -> Definition:
         reading="A footing around a duct that draws water from the ground.",
         shape=Polygon(
             [(0.0, 0.0), (1.5, 0.1), (1.4, 1.2), (0.1, 1.0)],
-            holes=[[(0.6, 0.4), (0.9, 0.45), (0.85, 0.75), (0.55, 0.7)]],
+            holes=[[(0.5, 0.35), (1.0, 0.4), (0.95, 0.8), (0.45, 0.75)]],
         ),
         field=fields.log_source(("18/25", "57/100")) + fields.polynomial(2) * "1/2",
         conditions={"side-2": "neumann"},

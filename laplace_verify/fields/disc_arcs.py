@@ -131,7 +131,7 @@ class DiscArcs(DiscField):
             closer = square < nearest
             gap = ctx.where(closer, -2 * (ax * ex + ay * ey) - square, gap)  # 1 - |z|^2
             nearest = ctx.where(closer, square, nearest)
-        gap = ctx.where(gap > 0, gap, 0 * gap)
+        gap = ctx.where(gap > 0, gap, ctx.fabs(0 * gap))  # not -0.0, whose atan2 is -pi
         total: Any = 0
         for i, value in enumerate(self.values):
             if not value:
