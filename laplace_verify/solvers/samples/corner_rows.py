@@ -63,7 +63,7 @@ def steps_along(grid: Grid, patch: Patch, axis: int, nodes: IntArray) -> IntArra
 
 
 def owned_length(grid: Grid, patch: Patch, axis: int, nodes: IntArray, steps: IntArray) -> Array:
-    """Return the length of edge that each node owns (1 in the plane): its area of a patch over half a step."""
+    """Return the length of edge each node owns (1 in the plane): its area of a patch over half a step."""
     found, areas = grid.shares(patch)
     near = np.abs(grid.points[steps[:, 1], axis] - grid.points[nodes, axis])
     length: Array = areas[np.searchsorted(found, nodes)] / (near / 2.0)
