@@ -10,10 +10,11 @@ polynomial
 
 which shares these derivatives (of f', integrated once, for insulated neighbours), leaves coefficients that
 decay like n^-(2K+1); p itself is summed in closed form. The split f = p + (f - p) is exact whatever the
-accuracy of the derivatives. K is what needs the fewest coefficients; where p is much
-larger than f, precise numbers get as many more digits and float64 loses one, up to four if f oscillates much. The coefficients of the
-rest come from the trapezoidal rule on 32, 64, ... intervals, doubled until the last quarter of them is lost
-in rounding; whether f is what its samples suggest is not known, hence the basis "uncertified".
+accuracy of the derivatives. K is what needs the fewest coefficients; where p is much larger than f, precise
+numbers get as many more digits, and float64 loses one digit, up to four if f oscillates much. The
+coefficients of the rest come from the trapezoidal rule on 32, 64, ... intervals, doubled until the last
+quarter of them is lost in rounding; whether f is what its samples suggest is not known, hence the basis
+"uncertified".
 
 References
 ----------
