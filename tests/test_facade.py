@@ -23,6 +23,18 @@ def test_type_checkers_see_the_same_names():
     assert listed == set(lv.__all__) - {"__version__"}
 
 
+def test_no_room_imports_from_the_facade():
+    # A way round the layers: `from laplace_verify import verify` in a lower room would escape import-linter.
+    package = Path(lv.__file__).parent
+    for file in set(package.rglob("*.py")) - {package / "__init__.py"}:
+        for node in ast.walk(ast.parse(file.read_text(encoding="utf-8"))):
+            if isinstance(node, ast.ImportFrom) and node.module == "laplace_verify":
+                rooms = {path.stem for path in package.iterdir()}
+                assert {alias.name for alias in node.names} <= rooms, file.relative_to(package)
+            if isinstance(node, ast.Import):
+                assert all(alias.name != "laplace_verify" for alias in node.names), file.relative_to(package)
+
+
 def test_unknown_names_raise_attribute_error():
     with pytest.raises(AttributeError, match="no attribute 'solve_everything'"):
         _ = lv.solve_everything

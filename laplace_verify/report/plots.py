@@ -2,9 +2,12 @@
 
 from __future__ import annotations
 
+import io
 from dataclasses import replace
+from pathlib import Path
 from typing import TYPE_CHECKING
 
+from laplace_verify.campaign.files import write_atomically
 from laplace_verify.campaign.identity import case_info
 from laplace_verify.campaign.record import CaseInfo, Record
 from laplace_verify.errors import RecordError
@@ -12,12 +15,13 @@ from laplace_verify.measure.results import Study
 from laplace_verify.problems import Case
 from laplace_verify.report.figures import convergence_figure
 from laplace_verify.report.maps import case_figure
+from laplace_verify.report.style import drawing
 from laplace_verify.report.summary_figures import summary_figure
 
 if TYPE_CHECKING:
     from matplotlib.figure import Figure
 
-__all__ = ["plot"]
+__all__ = ["plot", "save_picture"]
 
 _POINTS = 200  # per piece that is no plane curve
 
@@ -45,6 +49,24 @@ def plot(what: Case | Study | Record) -> Figure:
     if isinstance(what, Case):
         return case_figure(_drawn(what))
     raise RecordError(f"only a case, a study or a record can be plotted, got {type(what).__name__}")
+
+
+def save_picture(what: Case | Study | Record, path: Path) -> None:
+    """Write the figure that `plot` gives to a file; the ending of its name says which kind.
+
+    Raises
+    ------
+    RecordError
+        If matplotlib does not know the ending, or the file cannot be written.
+    """
+    figure, kind = plot(what), path.suffix.removeprefix(".").lower()
+    known = sorted(figure.canvas.get_supported_filetypes())
+    if kind not in known:
+        raise RecordError(f"a picture cannot be written as {path.name!r}; known endings: {', '.join(known)}")
+    buffer = io.BytesIO()
+    with drawing():
+        figure.savefig(buffer, format=kind)
+    write_atomically(path, buffer.getvalue())
 
 
 def _drawn(case: Case) -> CaseInfo:
