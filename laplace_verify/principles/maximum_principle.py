@@ -28,7 +28,7 @@ import numpy as np
 from hypothesis import strategies as st
 
 from laplace_verify.principles import strategies
-from laplace_verify.principles._shapes import DRAWN
+from laplace_verify.principles._shapes import shape_of_kind
 from laplace_verify.principles.law import Finding, Law, Trial
 from laplace_verify.principles.limits import Measurement, exactly, in_the_limit, rate_of
 from laplace_verify.principles.posed import Posed
@@ -64,7 +64,7 @@ def _problems(solver: Adapter) -> st.SearchStrategy[Posed]:
 @st.composite
 def _rough(draw: st.DrawFn, found: list[str]) -> Posed:
     """Draw a shape with data that have kinks: m + sum of k_i |x_i - a_i|, a inside the bounding box."""
-    shape = draw(DRAWN[draw(st.sampled_from(found))][1])
+    shape = draw(shape_of_kind(found))
     lower, upper = shape.bounding_box
     constant = draw(st.integers(-3, 3))
     terms = [str(constant)] if constant else []

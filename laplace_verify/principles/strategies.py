@@ -26,7 +26,7 @@ from laplace_verify import fields
 from laplace_verify.errors import nearest_names
 from laplace_verify.fields import Field
 from laplace_verify.geometry import Shape
-from laplace_verify.principles._shapes import DRAWN
+from laplace_verify.principles._shapes import DRAWN, shape_of_kind
 from laplace_verify.principles.posed import Conductivity, Posed
 from laplace_verify.problems import Case, Problem
 from laplace_verify.solvers import Adapter
@@ -56,6 +56,7 @@ TENSORS: dict[int, tuple[tuple[tuple[float, ...], ...], ...]] = {
     ),
 }
 SLOPES = st.integers(-3, 3)
+MOST_PIECES = 6  # of the shapes drawn
 FIRST_SLOPES = st.sampled_from((1, 2, 3, -1, -2))  # never 0: the field is not a constant
 
 
@@ -81,13 +82,14 @@ def shapes(dim: int | None = None, kinds: Iterable[str] | None = None) -> st.Sea
     found = drawable(dims, wanted)
     if not found:
         raise InvalidArgument(f"no {dim}-D shape can be drawn of the kinds {', '.join(sorted(wanted or ()))}")
-    return st.sampled_from(found).flatmap(lambda kind: DRAWN[kind][1])
+    return shape_of_kind(found)
 
 
 def affine_fields(dim: int) -> st.SearchStrategy[Field]:
     """Return a strategy for u = a . x + c with small whole numbers, never a constant."""
-    slopes = st.tuples(FIRST_SLOPES, *([SLOPES] * (_dim(dim) - 1)))
-    return st.builds(fields.affine, slopes, SLOPES)
+    axes = _dim(dim)
+    slopes = st.tuples(FIRST_SLOPES, SLOPES, SLOPES)
+    return st.builds(lambda a, c: fields.affine(a[:axes], c), slopes, SLOPES)
 
 
 def harmonic_fields(dim: int = 2, degree: int = 4, *, waves: bool = True) -> st.SearchStrategy[Field]:
@@ -111,8 +113,8 @@ def harmonic_fields(dim: int = 2, degree: int = 4, *, waves: bool = True) -> st.
     if waves:
         bent = bent | _waves(dim)
     return st.builds(
-        lambda slopes, constant, factor, field: _added(field, factor, slopes, constant),
-        st.tuples(*([SLOPES] * dim)),
+        lambda slopes, constant, factor, field: _added(field, factor, slopes[:dim], constant),
+        st.tuples(SLOPES, SLOPES, SLOPES),
         SLOPES,
         FIRST_SLOPES,
         bent,
@@ -233,7 +235,7 @@ def beyond(solver: Adapter) -> str | None:
 
 @st.composite
 def _posed(draw: st.DrawFn, found: list[str], allowed: list[str], materials: list[str], degree: int) -> Posed:
-    shape = draw(DRAWN[draw(st.sampled_from(found))][1])
+    shape = draw(shape_of_kind(found))
     k = draw(conductivities(shape.dim, materials))
     if degree == 0:
         field: Field = draw(st.builds(lambda c: fields.affine((0,) * shape.dim, c), st.integers(1, 9)))
@@ -247,13 +249,18 @@ def _posed(draw: st.DrawFn, found: list[str], allowed: list[str], materials: lis
 
 @st.composite
 def _conditions(draw: st.DrawFn, names: tuple[str, ...], allowed: list[str]) -> dict[str, str | int]:
-    kinds = {name: draw(st.sampled_from(allowed)) for name in names}
+    # as many choices for every shape (see `_shapes`)
+    drawn = draw(st.lists(st.sampled_from(allowed), min_size=MOST_PIECES, max_size=MOST_PIECES))
+    alphas = draw(st.lists(st.integers(1, 3), min_size=MOST_PIECES, max_size=MOST_PIECES))
+    fixing = draw(st.integers(0, MOST_PIECES - 1)) % len(names)
+    kinds = dict(zip(names, drawn, strict=False))
     if allowed != ["neumann"]:
-        kinds[draw(st.sampled_from(names))] = allowed[0] if allowed[0] != "neumann" else "robin"
+        kinds[names[fixing]] = allowed[0] if allowed[0] != "neumann" else "robin"
+    chosen = zip(names, alphas, strict=False)
     return {
-        name: draw(st.integers(1, 3)) if kind == "robin" else kind
-        for name, kind in kinds.items()
-        if kind != "dirichlet"
+        name: alpha if kinds[name] == "robin" else kinds[name]
+        for name, alpha in chosen
+        if kinds[name] != "dirichlet"
     }
 
 

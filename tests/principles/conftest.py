@@ -85,7 +85,7 @@ def cloud():
 )
 def noisy(problem, n, seed=0):
     """Return the five-point answer with noise that it reports honestly."""
-    answer = five_point(problem, 32)
+    answer = five_point(problem, 12)
     error = 0.05 * np.max(np.abs(answer.values)) / n
     noise = np.random.default_rng([seed, n]).normal(scale=error, size=len(answer.values))
     return Answer(answer.points, answer.values + noise, cells=answer.cells, samples=n, standard_error=error)

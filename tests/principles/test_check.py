@@ -26,7 +26,7 @@ SOUND = {"five": five_point, "p1": p1_element, "chebyshev": chebyshev, "sources"
 
 # which laws catch which fault, and why the others cannot
 CAUGHT = {
-    # zero flux data of a constant and constant flux data of an affine field are both met by one-sided differences
+    # one-sided differences meet the zero flux of a constant and the constant flux of an affine field
     "first-order flux": (),
     "flux sign": ("affine fields reproduced",),  # data of a constant are zero, whatever their sign
     "flux for gradient": ("affine fields reproduced",),
@@ -98,7 +98,7 @@ def test_a_flux_of_the_wrong_sign_breaks_affine_fields_on_the_unit_square():
     check = check_principle(solver, "affine fields reproduced")
     assert check.verdict is Verdict.FAIL
     assert "round-off" in check.reason
-    assert 'lv.Rectangle((0.0, 0.0), (1.0, 1.0))' in check.example or "lv.Interval(0.0, 1.0)" in check.example
+    assert "lv.Rectangle((0.0, 0.0), (1.0, 1.0))" in check.example or "lv.Interval(0.0, 1.0)" in check.example
     assert violation_of(check, solver) == pytest.approx(check.violation, rel=1e-9)  # the same solve again
     assert violation_of(check, five_point) < 1e-9  # direct solver: round-off only
 
@@ -115,8 +115,7 @@ def test_a_lost_dirichlet_side_breaks_constants_with_a_point_inside():
     [
         ("adds a constant", "constants reproduced"),
         ("adds a constant", "affine fields reproduced"),
-        ("adds a constant", "maximum principle"),
-        ("overshoots", "maximum principle"),
+        pytest.param("overshoots", "maximum principle", marks=pytest.mark.slow),
         ("screened", "constants reproduced"),
         ("screened", "mean value"),
     ],
@@ -126,7 +125,9 @@ def test_wrong_twins_break_the_law_and_the_code_shows_it(twins, twin, law):
     assert check.verdict is Verdict.FAIL, check.reason
     assert check.violation > check.tolerance
     assert check.points
-    assert violation_of(check, twins[twin]) == pytest.approx(check.violation, rel=1e-9)  # the same solve again
+    assert violation_of(check, twins[twin]) == pytest.approx(
+        check.violation, rel=1e-9
+    )  # the same solve again
     assert violation_of(check, five_point) < check.tolerance
 
 
@@ -228,7 +229,7 @@ def test_pure_neumann_solvers_are_judged_up_to_a_constant():
     assert violation_of(check, wrong) == pytest.approx(check.violation, rel=1e-9)  # the same solve again
 
 
-def test_a_declared_discrete_law_is_held_to_round_off(twins):
+def test_a_declared_discrete_law_is_held_to_round_off():
     law = "maximum principle"
     assert check_principle(replace(five_point, discrete_laws=frozenset({law})), law).verdict is Verdict.PASS
 
@@ -244,11 +245,11 @@ def test_a_declared_discrete_law_is_held_to_round_off(twins):
 
 
 def test_the_same_seed_gives_the_same_check_and_another_seed_other_problems():
-    solver = FAULTS["robin coefficient"].adapter
-    law = "affine fields reproduced"
+    solver, law = FAULTS["dirichlet side not carried"].adapter, "constants reproduced"
     assert check_principle(solver, law, seed=3) == check_principle(solver, law, seed=3)
-    reasons = {check_principle(five_point, "mean value", seed=seed).reason for seed in (3, 4)}
-    assert len(reasons) == 2
+    first, again, other = (check_principle(chebyshev, "mean value", seed=seed) for seed in (3, 3, 4))
+    assert first == again
+    assert first.violation != other.violation
 
 
 def test_the_number_of_solver_calls_is_bounded(twins):
@@ -260,6 +261,7 @@ def test_the_number_of_solver_calls_is_bounded(twins):
 
     check = check_principle(replace(twins["adds a constant"], function=counted), "maximum principle")
     assert check.verdict is Verdict.FAIL
+    assert "the data lie between" in check.reason
     assert len(calls) <= CALLS + 2  # two more to see whether it repeats itself
 
 
@@ -310,5 +312,5 @@ def test_bad_requests_are_refused_by_name():
     unknown = adapt(
         five_point.function, kind="finite difference", order=2, discrete_laws={"maximum principel"}
     )
-    with pytest.raises(AdapterError, match="discrete_laws.*did you mean 'maximum principle'"):
+    with pytest.raises(AdapterError, match=r"discrete_laws.*did you mean 'maximum principle'"):
         check_principle(unknown, "mean value")
