@@ -14,8 +14,8 @@ from laplace_verify.version import __version__
 if TYPE_CHECKING:
     from laplace_verify import fields as fields
     from laplace_verify.campaign import Record as Record
-    from laplace_verify.campaign import verify as verify
-    from laplace_verify.cases import catalogue as catalogue
+    from laplace_verify.campaign.verify import verify as verify
+    from laplace_verify.cases.catalogue import catalogue as catalogue
     from laplace_verify.diagnosis import diagnose as diagnose
     from laplace_verify.errors import AdapterError as AdapterError
     from laplace_verify.errors import AnswerError as AnswerError
@@ -40,8 +40,8 @@ if TYPE_CHECKING:
     from laplace_verify.geometry import SphericalShell as SphericalShell
     from laplace_verify.measure import Study as Study
     from laplace_verify.measure import Verdict as Verdict
-    from laplace_verify.measure import grid_convergence as grid_convergence
-    from laplace_verify.measure import study as study
+    from laplace_verify.measure.grid_convergence import grid_convergence as grid_convergence
+    from laplace_verify.measure.study import study as study
     from laplace_verify.principles import Check as Check
     from laplace_verify.principles import check_principle as check_principle
     from laplace_verify.principles import strategies as strategies
@@ -49,13 +49,13 @@ if TYPE_CHECKING:
     from laplace_verify.problems import Problem as Problem
     from laplace_verify.problems import Quantity as Quantity
     from laplace_verify.problems import Regularity as Regularity
-    from laplace_verify.problems import case as case
     from laplace_verify.problems import dirichlet as dirichlet
     from laplace_verify.problems import flux_through as flux_through
     from laplace_verify.problems import neumann as neumann
-    from laplace_verify.problems import problem as problem
     from laplace_verify.problems import robin as robin
     from laplace_verify.problems import value_at as value_at
+    from laplace_verify.problems.case import case as case
+    from laplace_verify.problems.problem import problem as problem
     from laplace_verify.pytest_plugin import order_tests as order_tests
     from laplace_verify.pytest_plugin import principle_tests as principle_tests
     from laplace_verify.report import plot as plot

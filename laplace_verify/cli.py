@@ -259,7 +259,7 @@ def _summary(record: Record) -> None:
     ]
     headers = ("case or law", "norm", "expected", "observed", "verdict")
     _say(tabulate(rows, headers=headers, tablefmt="simple", disable_numparse=True))
-    verdicts = [str(item.verdict) for item in (*record.studies, *record.checks)]
+    verdicts = _verdicts(record)
     counts = ", ".join(f"{verdicts.count(name)} {name}" for name in dict.fromkeys(sorted(verdicts)))
     _say(f"\n{counts}")
 
@@ -270,7 +270,7 @@ def _orders(study: Study) -> tuple[str, str, str]:
     margin = float("inf")
     for norm in study.deciding:
         order = study.orders[norm]
-        observed = "" if order.observed is None else f"{order.observed:.2f}"
+        observed = "exact" if order.observed is None else f"{order.observed:.2f}"
         if not isinstance(order.expected, int | float):
             if best[0] == "":
                 best = (norm, str(order.expected or ""), observed)
@@ -281,9 +281,14 @@ def _orders(study: Study) -> tuple[str, str, str]:
     return best
 
 
+def _verdicts(record: Record) -> list[str]:
+    """Return the verdicts of all studies and checks."""
+    return [str(study.verdict) for study in record.studies] + [str(check.verdict) for check in record.checks]
+
+
 def _status(record: Record, inconclusive: str) -> int:
     """Return the exit status of a run."""
-    verdicts = {str(item.verdict) for item in (*record.studies, *record.checks)}
+    verdicts = set(_verdicts(record))
     known = record.solver.known
     judged = {str(study.verdict) for study in record.studies if study.case_id not in known}
     judged |= {str(check.verdict) for check in record.checks}

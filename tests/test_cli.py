@@ -1,4 +1,4 @@
-"""The command line: results on stdout, errors in one line that says how to mend them, exit status as promised."""
+"""The command line: results on stdout, errors in one line with the mend, exit status as promised."""
 
 import json
 import re

@@ -1,4 +1,4 @@
-"""pytest items of a solver: passed, failed, error, skipped and xfailed as promised, also under pytest-xdist."""
+"""pytest items of a solver: passed, failed, error, skipped, xfailed as promised, also under xdist."""
 
 import pytest
 
@@ -20,10 +20,10 @@ sound = lv.order_tests(five_point, ["plate-saddle", "disc-fourier"])
 wrong = lv.order_tests(FAULTS["first-order flux"].adapter, ["plate-flux-top", "plate-saddle"])
 broken = lv.order_tests(lv.adapt(breaks, **DECLARED), ["plate-saddle"])
 short = lv.order_tests(five_point, ["plate-wave"], sizes=(8, 16, 32))
-accepted = lv.order_tests(lv.adapt(breaks, known={"plate-saddle": "pivoting comes later"}, **DECLARED), ["plate-saddle"])
-recovered = lv.order_tests(
-    lv.adapt(five_point.function, name="recovered", known={"plate-saddle": "was wrong once"}, **DECLARED), ["plate-saddle"]
-)
+later = lv.adapt(breaks, known={"plate-saddle": "pivoting comes later"}, **DECLARED)
+accepted = lv.order_tests(later, ["plate-saddle"])
+once = lv.adapt(five_point.function, name="once", known={"plate-saddle": "was wrong once"}, **DECLARED)
+recovered = lv.order_tests(once, ["plate-saddle"])
 """
 
 

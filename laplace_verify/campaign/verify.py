@@ -22,7 +22,7 @@ from laplace_verify.version import __version__
 
 __all__ = ["chosen_cases", "verify"]
 
-Progress = Callable[[Study | Check], None]
+Progress = Callable[[Study | Check], object]
 
 
 def verify(
@@ -66,7 +66,8 @@ def verify(
     Raises
     ------
     AdapterError, UnknownCaseError
-        If there is no such solver or case, or the sizes are not three or more, rising. What a solver does never raises: it is in the record.
+        If there is no such solver or case, or the sizes are not three or more, rising. What a solver does
+        never raises: it is in the record.
 
     Examples
     --------

@@ -31,11 +31,11 @@ INDEX = """\
 Written by `laplace-verify regenerate reports`; they differ from run to run in times, dates and host only.
 
 - [The five-point sample solver](five-point/report.md), sound: [HTML](five-point/report.html),
-  [CSV](five-point/errors.csv), [record](five-point/record.json). Every case passes, the corner of the L-shape at
-  the order 2/3 that theory leaves there.
+  [CSV](five-point/errors.csv), [record](five-point/record.json). Every case passes, the corner of the
+  L-shape at the order 2/3 that theory leaves there.
 - [The same solver with a mistake](five-point-first-order-flux/report.md): {fault}:
-  [HTML](five-point-first-order-flux/report.html). The cases with flux data fail near order 1, the others still pass,
-  and the diagnosis names the flux condition.
+  [HTML](five-point-first-order-flux/report.html). The cases with flux data fail near order 1, the others
+  still pass, and the diagnosis names the flux condition.
 
 Open the HTML files in a browser; they are complete in themselves.
 """
@@ -58,7 +58,7 @@ def regenerate_reports(folder: Path, note: Callable[[str], object] | None = None
     """
     say = note or (lambda _: None)
     fault = FAULTS[FAULT]
-    written = []
+    written: list[Path] = []
     for name, solver in (("five-point", five_point), ("five-point-first-order-flux", fault.adapter)):
         say(f"{solver.name}: {len(CASES)} cases")
         command = f"laplace-verify run laplace_verify.solvers.samples:five_point --cases {' '.join(CASES)}"
