@@ -40,7 +40,7 @@ def sampled(data: str | Callable[[Any], Any], variable: str, ctx: Any, t: Any) -
             except (ZeroDivisionError, ValueError) as cause:
                 if isinstance(cause, FieldError):
                     raise
-                raise FieldError(f"data {data!r} have no value at {variable} = {t}: {cause}") from cause
+                raise FieldError(f"data {data!r} have no value at {variable} = {t}") from cause
     else:
         with np.errstate(all="ignore"):
             values = UserField(function=data, slope=None, dim=1)._value(ctx, (t,), None)

@@ -117,10 +117,10 @@ class Plate(Field):
         """Return the coordinate along the side and the distances from it and from the opposite side."""
         axis, end = SIDES[self.side]
         x, y = point[axis], point[1 - axis]
+        x = _between(ctx, x, self.lower[axis], self.upper[axis])
+        y = _between(ctx, y, self.lower[1 - axis], self.upper[1 - axis])
         low, high = offset(ctx, y, self.lower[1 - axis]), -offset(ctx, y, self.upper[1 - axis])
         low, high = ctx.where(low > 0, low, 0 * low), ctx.where(high > 0, high, 0 * high)
-        start, stop = ctx.number(self.lower[axis]), ctx.number(self.upper[axis])
-        x = ctx.where(x < start, 0 * x + start, ctx.where(x > stop, 0 * x + stop, x))
         return (x, high, low) if end else (x, low, high)
 
     def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:  # noqa: ARG002  # no cut
@@ -157,6 +157,12 @@ def side_ends(lower: Iterable[Number], upper: Iterable[Number], side: str) -> tu
     axis = SIDES[side][0]
     low, high = exact_point(lower, "lower", (2,)), exact_point(upper, "upper", (2,))
     return rational(low[axis]), rational(high[axis])
+
+
+def _between(ctx: Any, x: Any, lower: Exact, upper: Exact) -> Any:
+    """Return x, or the end it lies beyond by rounding."""
+    low, high = ctx.number(lower), ctx.number(upper)
+    return ctx.where(x < low, 0 * x + low, ctx.where(x > high, 0 * x + high, x))
 
 
 def _corner(point: tuple[Exact, ...]) -> str:

@@ -116,5 +116,5 @@ def test_the_tail_bound_bounds_the_tail(decay, p, weight):
 
 
 def test_too_many_terms_are_refused_by_name():
-    with pytest.raises(FieldError, match="needs more than 20000 terms at distance 3.18e-07 side lengths"):
+    with pytest.raises(FieldError, match=r"needs more than 20000 terms at distance 3\.18e-07 side lengths"):
         terms_needed(Decay(power=1), 1e-6, 0, 40.0)
