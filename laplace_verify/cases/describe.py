@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from textwrap import fill
+from textwrap import TextWrapper
 
 from tabulate import tabulate
 
@@ -37,13 +37,13 @@ def describe(case: Case) -> str:
         facts.append(("level", f"the {problem.constant[0]} of u is {problem.constant[-1]:.12g}"))
     parts = [
         f"{case.title} ({case.id})",
-        fill(case.statement, WIDTH),
-        fill(case.reading, WIDTH),
-        "\n".join(fill(f"{name:16}{text}", WIDTH, subsequent_indent=" " * 16) for name, text in facts),
+        _filled(case.statement),
+        _filled(case.reading),
+        "\n".join(_filled(f"{name:16}{text}", 16) for name, text in facts),
         _pieces(case),
         _quantities(case),
-        "Sources\n" + "\n".join(fill(source, WIDTH, subsequent_indent="  ") for source in case.sources),
-        fill("Tags: " + ", ".join(sorted(case.tags)), WIDTH),
+        "Sources\n" + "\n".join(_filled(source, 2) for source in case.sources),
+        _filled("Tags: " + ", ".join(sorted(case.tags))),
     ]
     return "\n\n".join(part for part in parts if part)
 
@@ -73,6 +73,11 @@ def basis_in_words(case: Case) -> str:
         "tail bound": "series with a proven bound of its tail",
         "uncertified": "a function whose inside is unknown: not certified",
     }[case.exact.basis]
+
+
+def _filled(text: str, indent: int = 0) -> str:
+    """Return a paragraph; formulas are not broken at their minus signs."""
+    return TextWrapper(WIDTH, subsequent_indent=" " * indent, break_on_hyphens=False).fill(text)
 
 
 def _pieces(case: Case) -> str:

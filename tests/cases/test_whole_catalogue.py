@@ -1,0 +1,255 @@
+"""What every case of the catalogue must keep, by routes other than those that made it."""
+
+import math
+import re
+from functools import cache
+
+import mpmath
+import numpy as np
+import pytest
+from scipy.integrate import quad
+
+import laplace_verify as lv
+from laplace_verify.fields import Field
+from laplace_verify.problems import case_from_json, case_to_json
+
+IDS = list(lv.catalogue)
+EVERY = pytest.mark.parametrize("id_", IDS)
+DIGITS = 30
+
+
+def interior(case, count, seed=7):
+    """The deepest of a few seeded points."""
+    shape = case.problem.shape
+    points = shape.sample(4 * count, seed=seed)
+    return points[np.argsort(-shape.distance(points), kind="stable")[:count]]
+
+
+def boundary_points(case, piece, count, seed=11):
+    """Seeded points of a piece with their normals, away from singular points."""
+    generator = np.random.default_rng(seed)
+    columns = 1 if case.dim < 3 else 2
+    t = generator.uniform(0.02, 0.98, (4 * count, columns))
+    points = piece.point(t[:, 0] if columns == 1 else t)[: 4 * count]
+    singular = case.regularity.singular_points
+    size = case.problem.shape.extent
+    if len(singular):
+        away = np.sqrt(((points[:, None, :] - singular) ** 2).sum(axis=2)).min(axis=1)
+        points = points[away > 0.02 * size]
+    points = points[:count]
+    return points, piece.normals(points)
+
+
+@cache
+def scale(id_):
+    """Largest |u| at interior points, for tolerances."""
+    case = lv.catalogue[id_]
+    return float(np.abs(case.exact.value(interior(case, 16))).max())
+
+
+def precise_inside(case, point, normal):
+    """u and grad u in 30 digits a hair inside the boundary: no lip of a cut, no rounding off a curve."""
+    with mpmath.workdps(50):
+        depth = mpmath.mpf(10) ** -13 * case.problem.shape.extent
+        place = tuple(
+            mpmath.mpf(float(c)) - depth * mpmath.mpf(float(n)) for c, n in zip(point, normal, strict=True)
+        )
+    gradient = np.array([float(g) for g in case.exact.gradient_at(place, DIGITS)])
+    return float(case.exact.at(place, DIGITS)), gradient
+
+
+@EVERY
+def test_solution_satisfies_the_equation_and_its_gradient_is_the_derivative(id_):
+    """div(K grad u) = 0 by differences of the gradient, grad u by differences of u, in 30 digits."""
+    case = lv.catalogue[id_]
+    tensor, d = case.problem.tensor, case.dim
+    for point in interior(case, 2):
+        with mpmath.workdps(DIGITS + 20):
+            h = mpmath.mpf(10) ** -10 * case.problem.shape.extent
+            place = [mpmath.mpf(float(c)) for c in point]
+            second, first, largest = mpmath.mpf(0), [], mpmath.mpf(0)
+            for axis in range(d):
+                ahead = tuple(c + h * (k == axis) for k, c in enumerate(place))
+                behind = tuple(c - h * (k == axis) for k, c in enumerate(place))
+                front, back = (case.exact.gradient_at(p, DIGITS) for p in (ahead, behind))
+                change = [(a - b) / (2 * h) for a, b in zip(front, back, strict=True)]
+                flow = [mpmath.mpf(float(tensor[axis, k])) * change[k] for k in range(d)]
+                second += sum(flow)
+                largest = max(largest, *(abs(f) for f in flow))
+                first.append((case.exact.at(ahead, DIGITS) - case.exact.at(behind, DIGITS)) / (2 * h))
+            gradient = case.exact.gradient_at(tuple(place), DIGITS)
+            size = max(abs(g) for g in gradient)
+            # a step of 1e-10 leaves about 1e-20 (third derivatives) + 1e-20 (digits / step)
+            assert abs(second) <= mpmath.mpf("1e-15") * (largest + size), point
+            assert all(abs(a - b) <= mpmath.mpf("1e-15") * size for a, b in zip(first, gradient, strict=True))
+
+
+@EVERY
+def test_boundary_data_are_those_of_the_exact_solution(id_):
+    """f, n . K grad u and n . K grad u + alpha u by high precision a hair inside."""
+    case = lv.catalogue[id_]
+    for piece in case.problem.pieces:
+        points, normals = boundary_points(case, piece, 2)
+        data = piece.data(points)
+        alphas = piece.alpha(points) if piece.kind == "robin" else np.zeros(len(points))
+        assert len(points)
+        for point, normal, given, alpha in zip(points, normals, data, alphas, strict=True):
+            value, gradient = precise_inside(case, point, normal)
+            flux = float(normal @ case.problem.tensor @ gradient)
+            expected = value if piece.kind == "dirichlet" else flux + alpha * value
+            steep = float(np.linalg.norm(case.problem.tensor @ gradient)) + abs(value)
+            # 1e-13 of the extent inside: u changes by that times the gradient, the flux by that
+            # times the second derivative, at most 1/0.05 times as large beside a source
+            assert abs(given - expected) <= 1e-10 * (steep + scale(id_)), (piece.name, point)
+
+
+@EVERY
+def test_float64_keeps_its_digits_up_to_the_boundary(id_):
+    """Value and gradient 1e-3, 1e-6, 1e-12 from the boundary, against 30 digits at the same floats."""
+    case = lv.catalogue[id_]
+    exact, shape = case.exact, case.problem.shape
+    for piece in case.problem.pieces:
+        points, normals = boundary_points(case, piece, 1, seed=23)
+        for depth in (1e-3, 1e-6, 1e-12):
+            near = points - depth * shape.extent * normals
+            for place, value, gradient in zip(near, exact.value(near), exact.gradient(near), strict=True):
+                better = float(exact.at(tuple(place), DIGITS))
+                steeper = np.array([float(g) for g in exact.gradient_at(tuple(place), DIGITS)])
+                # 200 eps of the size of u: the sums behind u hold at most a few dozen terms of that size
+                assert abs(value - better) <= 4e-14 * max(scale(id_), abs(better)), (piece.name, depth)
+                size = np.linalg.norm(steeper) + scale(id_) / shape.extent
+                assert np.abs(gradient - steeper).max() <= 1e-12 * size, (piece.name, depth)
+
+
+@EVERY
+def test_values_on_the_boundary_are_the_limits_from_inside(id_):
+    """On the boundary itself, both lips of a slit included, Dirichlet data are u a hair inside."""
+    case = lv.catalogue[id_]
+    for piece in case.problem.pieces:
+        if piece.kind != "dirichlet":
+            continue
+        points, normals = boundary_points(case, piece, 3, seed=29)
+        inside = case.exact.value(points - 1e-9 * case.problem.shape.extent * normals)
+        steep = np.linalg.norm(
+            case.exact.gradient(points - 1e-9 * case.problem.shape.extent * normals), axis=1
+        )
+        moved = 1e-9 * case.problem.shape.extent * steep
+        assert (np.abs(piece.data(points) - inside) <= 2 * moved + 1e-12 * scale(id_)).all()
+
+
+@EVERY
+def test_json_brings_the_case_back(id_):
+    """Same bytes, same exact values, same regularity after a round trip."""
+    case = lv.catalogue[id_]
+    text = case_to_json(case)
+    again = case_from_json(text, f"{id_}.json")
+    assert case_to_json(again) == text
+    points = interior(case, 5)
+    assert (again.exact.value(points) == case.exact.value(points)).all()
+    assert again.conditions == case.conditions
+    assert again.regularity.solution == case.regularity.solution
+    assert again.quantities.keys() == case.quantities.keys()
+
+
+@EVERY
+def test_words_are_there_and_the_id_is_plain(id_):
+    """Title, statement, reading, sources, tags, quantities; an id of words without digits."""
+    case = lv.catalogue[id_]
+    assert case.id == id_
+    assert re.fullmatch(r"[a-z]+(-[a-z]+)+", id_)
+    assert case.title
+    assert case.statement.startswith("div")
+    assert case.statement.endswith(".")
+    assert case.reading.endswith(".")
+    assert case.sources
+    assert all(case.sources)
+    assert {"smooth", "singular"} & case.tags
+    assert case.quantities
+    assert case.exact.basis in ("closed form", "tail bound")
+    assert case.problem.name == id_
+
+
+def flux_density(case, piece, points):
+    """n . K grad u at points of a piece."""
+    return (piece.normals(points) * (case.exact.gradient(points) @ case.problem.tensor)).sum(axis=1)
+
+
+def rule(piece, axis):
+    """Nodes and weights on [0, 1] along one parameter of a surface: trapezium if it closes, else Gauss."""
+    ends = np.full((2, 2), 0.3)
+    ends[:, axis] = 0.0, 1.0
+    first, last = piece.point(ends)
+    if np.allclose(first, last, rtol=0, atol=1e-12):
+        return (np.arange(48) + 0.5) / 48, np.full(48, 1 / 48)
+    nodes, weights = np.polynomial.legendre.leggauss(24)
+    return (nodes + 1) / 2, weights / 2
+
+
+def integral_of_flux(case, piece):
+    """The flux by another quadrature: adaptive on curves, products of simple rules on surfaces."""
+    if case.dim == 1:
+        return float(flux_density(case, piece, piece.point([0.0]))[0])
+    if case.dim == 2:
+
+        def density(s):
+            t = s**4 * (35 - 84 * s + 70 * s**2 - 20 * s**3)  # flat at both ends, where corners are
+            weight = 140 * s**3 * (1 - s) ** 3
+            return weight * float(flux_density(case, piece, piece.point([t]))[0])
+
+        return piece.measure * quad(density, 0.0, 1.0, epsabs=1e-10, epsrel=1e-10, limit=200)[0]
+    (x, a), (y, b) = rule(piece, 0), rule(piece, 1)
+    u, v = np.meshgrid(x, y, indexing="ij")
+    points = piece.point(np.column_stack([u.ravel(), v.ravel()]))
+    return piece.measure * float(np.outer(a, b).ravel() @ flux_density(case, piece, points))
+
+
+@EVERY
+def test_quantities_are_confirmed_by_another_quadrature(id_):
+    """Fluxes by an adaptive rule, energies by the volume integral, values by 40 digits."""
+    case = lv.catalogue[id_]
+    for name, quantity in case.quantities.items():
+        if quantity.kind == "flux":
+            found = integral_of_flux(case, case.problem.pieces[quantity.where])
+            allowed = 1e-7  # what the adaptive rule reaches at a corner r^(1/3)
+        elif quantity.kind == "energy":
+            points, weights = case.problem.shape.quadrature(20)
+            gradients = case.exact.gradient(points)
+            found = float(weights @ ((gradients @ case.problem.tensor) * gradients).sum(axis=1))
+            allowed = 1e-10
+        else:
+            found = float(case.exact.at(tuple(quantity.where), 40))
+            allowed = 1e-15
+        assert abs(found - quantity.value) <= quantity.radius + allowed * (1 + abs(quantity.value)), name
+        assert 0 <= quantity.radius <= 1e-6 * (1 + abs(quantity.value))
+        assert quantity.unit == ""
+
+
+def test_a_wrong_case_does_not_pass(monkeypatch):
+    """The twin: a field that is off by a thousandth breaks the check of boundary data."""
+    case = lv.catalogue["plate-saddle"]
+    wrong = case.exact + lv.fields.affine((0.001, 0))
+    monkeypatch.setattr(Field, "at", lambda _, point, digits: wrong.enclosure(point, digits).value)
+    with pytest.raises(AssertionError):
+        test_boundary_data_are_those_of_the_exact_solution("plate-saddle")
+
+
+def test_catalogue_covers_what_it_promises():
+    """Dimensions, shapes, conditions and difficulties, each by several cases."""
+    cases = list(lv.catalogue.values())
+    assert len(cases) >= 55
+    kinds = {case.problem.shape.kind for case in cases}
+    assert kinds >= {
+        "interval", "rectangle", "box", "disc", "ellipse", "annulus", "sector", "l-shape", "polygon",
+        "ball", "spherical-shell", "cylinder",
+    }  # fmt: skip
+    for tag, least in {
+        "dirichlet": 40, "neumann": 25, "robin": 12, "mixed": 25, "pure-neumann": 5, "tensor": 6,
+        "smooth": 40, "singular": 10, "jump": 3, "curved": 15, "near-source": 4, "re-entrant": 6, "slit": 3,
+        "hole": 6, "condition-change": 2, "high-aspect": 1, "exactness": 8,
+    }.items():  # fmt: skip
+        assert sum(tag in case.tags for case in cases) >= least, tag
+    assert sum(not np.allclose(case.problem.tensor, np.eye(case.dim)) for case in cases) > len(cases) / 2
+    assert {case.dim for case in cases} == {1, 2, 3}
+    finite = (case.regularity.solution for case in cases if math.isfinite(case.regularity.solution))
+    exponents = {round(exponent, 3) for exponent in finite}
+    assert {0.0, 0.25, 0.333, 0.5, 0.667, 1.0, 2.0} <= exponents
