@@ -41,6 +41,7 @@ __all__ = ["MAXIMUM_PRINCIPLE"]
 DEGREE = 3
 COARSE = {1: 1, 2: 481, 3: 33}  # samples a piece; in space a side of a square of them
 ZOOMS = 4
+LEVELS = st.integers(1, 9)  # off zero: values lost from the data then leave their range
 FACTORS = st.integers(-2, 2)
 NOT_ZERO = st.sampled_from((1, -1, 2, -2))
 
@@ -66,8 +67,7 @@ def _rough(draw: st.DrawFn, found: list[str]) -> Posed:
     """Draw a shape with data that have kinks: m + sum of k_i |x_i - a_i|, a inside the bounding box."""
     shape = draw(shape_of_kind(found))
     lower, upper = shape.bounding_box
-    constant = draw(st.integers(-3, 3))
-    terms = [str(constant)] if constant else []
+    terms = [str(draw(LEVELS))]
     for axis, (low, high) in enumerate(zip(lower.tolist(), upper.tolist(), strict=True)):
         factor = draw(FACTORS if axis else NOT_ZERO)
         place = low + draw(st.sampled_from((0.5, 0.25, 0.75))) * (high - low)

