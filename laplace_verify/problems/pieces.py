@@ -99,15 +99,17 @@ class Piece:
     def alpha(self, points: npt.ArrayLike) -> Array:
         """Return Robin's alpha >= 0, shape (n,), at points (n, d), moved onto the piece as in `data`.
 
+        A Neumann piece is a Robin piece with alpha = 0.
+
         Raises
         ------
         ProblemError
-            If the piece is no Robin piece, a point is off the piece, or alpha is negative there.
+            If the piece is a Dirichlet piece, a point is off the piece, or alpha is negative there.
         """
-        if self._alpha is None:
-            raise ProblemError(f"piece {self.name!r} has a {self.kind} condition; alpha belongs to Robin's")
+        if self.kind == "dirichlet":
+            raise ProblemError(f"piece {self.name!r} has a dirichlet condition; alpha belongs to Robin's")
         moved = self._moved(points)
-        return checked_alpha(self._alpha, moved)
+        return np.zeros(len(moved)) if self._alpha is None else checked_alpha(self._alpha, moved)
 
     def contains(
         self, points: npt.ArrayLike, tol: float = 1e-9, normals: npt.ArrayLike | None = None

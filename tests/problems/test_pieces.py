@@ -140,7 +140,9 @@ def test_fluxes_on_the_lips_have_opposite_normals(slit_disc) -> None:
 
 
 def test_alpha_belongs_to_robin_and_is_never_negative(square) -> None:
-    plate = lv.case(square, {"top": lv.robin("x - 0.5")}, lv.fields.affine((1, 1))).problem
+    conditions = {"top": lv.robin("x - 0.5"), "right": "neumann"}
+    plate = lv.case(square, conditions, lv.fields.affine((1, 1))).problem
+    assert plate.pieces["right"].alpha([[1.0, 0.5]]).tolist() == [0.0]
     assert plate.pieces["top"].alpha([[1.0, 1.0]]).tolist() == [0.5]
     with pytest.raises(lv.ProblemError, match=r"alpha of piece 'top' must be >= 0, but it is -0\.4 at"):
         plate.pieces["top"].alpha([[0.1, 1.0], [0.9, 1.0]])
