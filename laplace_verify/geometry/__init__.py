@@ -3,6 +3,7 @@
 from laplace_verify.geometry.base import Boundaries, Junction, Shape
 from laplace_verify.geometry.boundary import Boundary
 from laplace_verify.geometry.cartesian import Box, Interval, Rectangle
+from laplace_verify.geometry.halves import HalfAnnulus, HalfDisc
 from laplace_verify.geometry.polygons import LShape, Polygon
 from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
 from laplace_verify.geometry.solids import Ball, Cylinder, SphericalShell
@@ -17,6 +18,8 @@ __all__ = [
     "Cylinder",
     "Disc",
     "Ellipse",
+    "HalfAnnulus",
+    "HalfDisc",
     "Interval",
     "Junction",
     "LShape",

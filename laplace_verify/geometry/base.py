@@ -22,7 +22,7 @@ from laplace_verify.errors import GeometryError, nearest_names
 from laplace_verify.geometry.boundary import Boundary
 from laplace_verify.geometry.checks import ROUNDING, proportions
 from laplace_verify.geometry.patches import Chart, integrate
-from laplace_verify.geometry.splitting import check_fractions, junction_openings, split_piece
+from laplace_verify.geometry.splitting import check_fractions, check_names, junction_openings, split_piece
 
 __all__ = ["Boundaries", "Boundary", "Junction", "Shape"]
 
@@ -84,11 +84,12 @@ class Junction:
 class Shape(ABC):
     """A closed bounded region with named boundary pieces (abstract).
 
-    `splits` holds the fractions given to `split`, by name of the whole piece; it is no argument to pass by
-    hand.
+    `splits` holds the fractions given to `split`, by name of the whole piece, and `names` what `renamed` was
+    given; they are no arguments to pass by hand.
     """
 
     splits: tuple[tuple[str, Sequence[float]], ...] = field(default=(), kw_only=True)
+    names: tuple[tuple[str, str], ...] = field(default=(), kw_only=True)
 
     kind: ClassVar[str]
     dim: ClassVar[int]
@@ -135,6 +136,7 @@ class Shape(ABC):
         proportions(lower.tolist(), upper.tolist(), self.kind)
         whole = {piece.name: piece for loop in self._loops() for piece in loop}
         object.__setattr__(self, "splits", check_fractions(dict(self.splits), whole))
+        object.__setattr__(self, "names", check_names(dict(self.names), whole))
 
     @property
     def extent(self) -> float:
@@ -162,10 +164,17 @@ class Shape(ABC):
         whole = {piece.name: piece for loop in self._loops() for piece in loop}
         cuts = dict(self.splits)
         return Boundaries(
-            part
+            replace(part, name=self._new_name(part.name))
             for name in self._order(tuple(whole))
             for part in split_piece(whole[name], cuts.get(name, ()))[0]
         )
+
+    def _new_name(self, name: str) -> str:
+        """Return the name of a piece, or of a part of one that was split, after `renamed`."""
+        for old, new in self.names:
+            if name == old or (old in dict(self.splits) and name.startswith(f"{old}-")):
+                return new + name[len(old) :]
+        return name
 
     @cached_property
     def junctions(self) -> tuple[Junction, ...]:
@@ -177,7 +186,8 @@ class Shape(ABC):
         for loop in self._loops():
             travelled = [part for piece in loop for part in split_piece(piece, cuts.get(piece.name, ()))[1]]
             for first, second, point, opening in junction_openings(travelled):
-                found.append(Junction(points=point, opening=opening, pieces=(first, second)))
+                pair = (self._new_name(first), self._new_name(second))
+                found.append(Junction(points=point, opening=opening, pieces=pair))
         return tuple(found)
 
     def contains(self, points: npt.ArrayLike, tol: float = 0.0) -> BoolArray:
@@ -295,10 +305,29 @@ class Shape(ABC):
             merged[name] = values
         return replace(self, splits=tuple(merged.items()))
 
+    def renamed(self, **names: str) -> Self:
+        """Return the same shape with pieces called otherwise; parts of a split piece keep their numbers.
+
+        Raises
+        ------
+        GeometryError
+            If a piece is unknown, or two pieces would bear one name.
+
+        Examples
+        --------
+        >>> from laplace_verify.geometry import Rectangle
+        >>> Rectangle((0, 0), (1, 1)).renamed(left="axis").pieces.names
+        ('axis', 'right', 'bottom', 'top')
+        """
+        return replace(self, names=tuple({**dict(self.names), **names}.items()))
+
     def __repr__(self) -> str:
         """Show the call that makes the shape."""
-        given = ", ".join(repr(getattr(self, f.name)) for f in fields(self) if f.name != "splits")
+        extra = ("splits", "names")
+        given = ", ".join(repr(getattr(self, f.name)) for f in fields(self) if f.name not in extra)
         text = f"{type(self).__name__}({given})"
         if self.splits:
             text += f".split(**{ {name: list(values) for name, values in self.splits}!r})"
+        if self.names:
+            text += f".renamed(**{dict(self.names)!r})"
         return text

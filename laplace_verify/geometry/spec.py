@@ -12,6 +12,7 @@ from typing import Any
 from laplace_verify.errors import GeometryError, nearest_names
 from laplace_verify.geometry.base import Shape
 from laplace_verify.geometry.cartesian import Box, Interval, Rectangle
+from laplace_verify.geometry.halves import HalfAnnulus, HalfDisc
 from laplace_verify.geometry.polygons import LShape, Polygon
 from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
 from laplace_verify.geometry.solids import Ball, Cylinder, SphericalShell
@@ -21,12 +22,14 @@ __all__ = ["SHAPES", "shape_from_spec", "shape_to_spec"]
 SHAPES: dict[str, type[Shape]] = {
     shape.kind: shape
     for shape in (
-        Interval, Rectangle, Box, Disc, Ellipse, Annulus, Sector, LShape, Polygon,
+        Interval, Rectangle, Box, Disc, Ellipse, Annulus, Sector, HalfDisc, HalfAnnulus, LShape,
+        Polygon,
         Ball, SphericalShell, Cylinder,
     )
 }  # fmt: skip
 
 OPTIONAL = {"holes", "inner_centre"}
+EXTRA = {"splits", "names"}  # written as "split" and "names", if there are any
 
 
 def shape_to_spec(shape: Shape) -> dict[str, Any]:
@@ -43,11 +46,13 @@ def shape_to_spec(shape: Shape) -> dict[str, Any]:
     spec: dict[str, Any] = {"kind": shape.kind}
     for field in fields(shape):
         value = getattr(shape, field.name)
-        if field.name == "splits" or (field.name in OPTIONAL and not value):
+        if field.name in EXTRA or (field.name in OPTIONAL and not value):
             continue
         spec[field.name] = _plain(value)
     if shape.splits:
         spec["split"] = {name: list(values) for name, values in shape.splits}
+    if shape.names:
+        spec["names"] = dict(shape.names)
     return spec
 
 
@@ -71,9 +76,9 @@ def shape_from_spec(spec: Mapping[str, Any]) -> Shape:
     kind = given.pop("kind", None)
     if not isinstance(kind, str) or kind not in SHAPES:
         raise GeometryError(f"kind {kind!r} is no shape; {nearest_names(str(kind), SHAPES)}")
-    split = given.pop("split", {})
+    split, names = given.pop("split", {}), given.pop("names", {})
     shape = SHAPES[kind]
-    known = [field.name for field in fields(shape) if field.name != "splits"]
+    known = [field.name for field in fields(shape) if field.name not in EXTRA]
     for name in given:
         if name not in known:
             raise GeometryError(f"a {kind} has no field {name!r}; {nearest_names(str(name), known)}")
@@ -83,7 +88,10 @@ def shape_from_spec(spec: Mapping[str, Any]) -> Shape:
     made = shape(**given)
     if not isinstance(split, Mapping):
         raise GeometryError(f"split must be a table of fractions by piece, got {split!r}")
-    return made.split(**{str(name): values for name, values in split.items()}) if split else made
+    if not isinstance(names, Mapping):
+        raise GeometryError(f"names must be a table of new names by piece, got {names!r}")
+    made = made.split(**{str(name): values for name, values in split.items()}) if split else made
+    return made.renamed(**{str(old): new for old, new in names.items()}) if names else made
 
 
 def _plain(value: Any) -> Any:

@@ -12,7 +12,7 @@ from laplace_verify.arrays import Array
 from laplace_verify.errors import GeometryError, nearest_names
 from laplace_verify.geometry.boundary import Boundary, Curve
 
-__all__ = ["check_fractions", "junction_openings", "split_piece"]
+__all__ = ["check_fractions", "check_names", "junction_openings", "split_piece"]
 
 SHORTEST = 1e-6  # least length of a part, relative to the whole piece
 
@@ -39,6 +39,19 @@ def check_fractions(
             )
         checked.append((name, fractions))
     return tuple(checked)
+
+
+def check_names(names: Mapping[str, str], whole: Mapping[str, Boundary]) -> tuple[tuple[str, str], ...]:
+    """Return the new names of pieces, sorted, refusing unknown pieces and names that are taken."""
+    for old, new in names.items():
+        if old not in whole:
+            raise GeometryError(f"cannot rename {old!r}: no such piece; {nearest_names(old, whole)}")
+        if not isinstance(new, str) or not new:
+            raise GeometryError(f"the new name of {old!r} must be a word, got {new!r}")
+    called = [names.get(name, name) for name in whole]
+    if len(set(called)) < len(called):
+        raise GeometryError(f"two pieces would bear one name: {', '.join(called)}")
+    return tuple(sorted((old, new) for old, new in names.items() if new != old))
 
 
 def split_piece(piece: Boundary, fractions: Sequence[float]) -> tuple[list[Boundary], list[Boundary]]:

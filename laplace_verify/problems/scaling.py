@@ -37,7 +37,7 @@ LENGTHS = frozenset({"a", "b", "lower", "upper", "centre", "radius", "semi_axes"
     "inner_centre", "size", "vertices", "holes", "z0", "z1",
 }  # fmt: skip
 EPS = float(np.finfo(np.float64).eps)
-RATIOS = frozenset({"opening", "splits"})  # angles and fractions stay
+RATIOS = frozenset({"opening", "splits", "names"})  # angles, fractions and words stay
 
 
 def as_scale(given: Any, name: str, unit: str) -> tuple[float, str]:

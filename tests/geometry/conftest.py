@@ -19,6 +19,8 @@ SHAPES = {
     "thin wedge": geo.Sector(2.0, 0.3),
     "three quarters": geo.Sector(1.5, 1.5 * math.pi),
     "slit disc": geo.Sector(1.5, 2.0 * math.pi),
+    "half-disc": geo.HalfDisc((0.5, -1.0), 1.25),
+    "half-annulus": geo.HalfAnnulus((0.5, -1.0), 0.5, 1.25),
     "l-shape": geo.LShape(1.25),
     "triangle": geo.Polygon([(0.0, 0.0), (2.0, 0.5), (0.25, 1.0)]),
     "plate with holes": geo.Polygon(
