@@ -39,7 +39,9 @@ def _chart(centre: Sequence[float], inner: float, outer: float) -> Chart:
     return Chart(lower=lower, upper=upper, place=place, angles=(False, True), extra=(1, 0))
 
 
-def _draw(generator: np.random.Generator, n: int, centre: Sequence[float], inner: float, outer: float) -> Array:
+def _draw(
+    generator: np.random.Generator, n: int, centre: Sequence[float], inner: float, outer: float
+) -> Array:
     """Return n points (n, 2) uniform between two half-circles."""
     share = (inner / outer) ** 2
     s = outer * np.sqrt(share + (1.0 - share) * generator.random(n))
@@ -136,13 +138,13 @@ class HalfAnnulus(Shape):
 
     def _loops(self) -> tuple[tuple[Boundary, ...], ...]:
         (x, y), a, b = self.centre, self.inner, self.outer
-        angles = {"first": -QUARTER, "last": QUARTER}
+        first, last = -QUARTER, QUARTER
         return (
             (
                 Segment(name="lower", start=(x, y - a), stop=(x, y - b)),
-                Arc(name="outer", centre=(x, y), semi_axes=(b, b), **angles),
+                Arc(name="outer", centre=(x, y), semi_axes=(b, b), first=first, last=last),
                 Segment(name="upper", start=(x, y + b), stop=(x, y + a)),
-                Arc(name="inner", centre=(x, y), semi_axes=(a, a), **angles, hole=True),
+                Arc(name="inner", centre=(x, y), semi_axes=(a, a), first=first, last=last, hole=True),
             ),
         )
 
