@@ -32,12 +32,22 @@ if TYPE_CHECKING:
     from laplace_verify.geometry import Cylinder as Cylinder
     from laplace_verify.geometry import Disc as Disc
     from laplace_verify.geometry import Ellipse as Ellipse
+    from laplace_verify.geometry import EllipticRing as EllipticRing
+    from laplace_verify.geometry import Exterior as Exterior
+    from laplace_verify.geometry import HalfAnnulus as HalfAnnulus
+    from laplace_verify.geometry import HalfDisc as HalfDisc
+    from laplace_verify.geometry import HalfSpace as HalfSpace
     from laplace_verify.geometry import Interval as Interval
     from laplace_verify.geometry import LShape as LShape
     from laplace_verify.geometry import Polygon as Polygon
     from laplace_verify.geometry import Rectangle as Rectangle
+    from laplace_verify.geometry import RoundPlate as RoundPlate
+    from laplace_verify.geometry import Screen as Screen
     from laplace_verify.geometry import Sector as Sector
     from laplace_verify.geometry import SphericalShell as SphericalShell
+    from laplace_verify.geometry import Spheroid as Spheroid
+    from laplace_verify.geometry import SpheroidalShell as SpheroidalShell
+    from laplace_verify.geometry import Strip as Strip
     from laplace_verify.measure import Study as Study
     from laplace_verify.measure import Verdict as Verdict
     from laplace_verify.measure.grid_convergence import grid_convergence as grid_convergence
@@ -73,7 +83,9 @@ _ROOMS = {
     "errors": "AdapterError AnswerError FieldError GeometryError LaplaceVerifyError ProblemError RecordError",
     "fields": "Field field",
     "geometry": (
-        "Annulus Ball Box Cylinder Disc Ellipse Interval LShape Polygon Rectangle Sector SphericalShell"
+        "Annulus Ball Box Cylinder Disc Ellipse EllipticRing Exterior HalfAnnulus HalfDisc HalfSpace "
+        "Interval LShape Polygon Rectangle RoundPlate Screen Sector SphericalShell Spheroid "
+        "SpheroidalShell Strip"
     ),
     "measure": "Study Verdict grid_convergence study",
     "principles": "Check check_principle",

@@ -4,10 +4,14 @@ from laplace_verify.geometry.base import Boundaries, Junction, Shape
 from laplace_verify.geometry.boundary import Boundary
 from laplace_verify.geometry.cartesian import Box, Interval, Rectangle
 from laplace_verify.geometry.halves import HalfAnnulus, HalfDisc
+from laplace_verify.geometry.planes import HalfSpace, Strip, within
 from laplace_verify.geometry.polygons import LShape, Polygon
 from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
 from laplace_verify.geometry.solids import Ball, Cylinder, SphericalShell
 from laplace_verify.geometry.spec import shape_from_spec, shape_to_spec
+from laplace_verify.geometry.spheroids import EllipticRing, Spheroid, SpheroidalShell
+from laplace_verify.geometry.thin import RoundPlate, Screen
+from laplace_verify.geometry.unbounded import Exterior
 
 __all__ = [
     "Annulus",
@@ -18,16 +22,25 @@ __all__ = [
     "Cylinder",
     "Disc",
     "Ellipse",
+    "EllipticRing",
+    "Exterior",
     "HalfAnnulus",
     "HalfDisc",
+    "HalfSpace",
     "Interval",
     "Junction",
     "LShape",
     "Polygon",
     "Rectangle",
+    "RoundPlate",
+    "Screen",
     "Sector",
     "Shape",
     "SphericalShell",
+    "Spheroid",
+    "SpheroidalShell",
+    "Strip",
     "shape_from_spec",
     "shape_to_spec",
+    "within",
 ]

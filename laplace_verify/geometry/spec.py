@@ -13,9 +13,13 @@ from laplace_verify.errors import GeometryError, nearest_names
 from laplace_verify.geometry.base import Shape
 from laplace_verify.geometry.cartesian import Box, Interval, Rectangle
 from laplace_verify.geometry.halves import HalfAnnulus, HalfDisc
+from laplace_verify.geometry.planes import HalfSpace, Strip
 from laplace_verify.geometry.polygons import LShape, Polygon
 from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
 from laplace_verify.geometry.solids import Ball, Cylinder, SphericalShell
+from laplace_verify.geometry.spheroids import EllipticRing, Spheroid, SpheroidalShell
+from laplace_verify.geometry.thin import RoundPlate, Screen
+from laplace_verify.geometry.unbounded import Exterior
 
 __all__ = ["SHAPES", "shape_from_spec", "shape_to_spec"]
 
@@ -25,6 +29,7 @@ SHAPES: dict[str, type[Shape]] = {
         Interval, Rectangle, Box, Disc, Ellipse, Annulus, Sector, HalfDisc, HalfAnnulus, LShape,
         Polygon,
         Ball, SphericalShell, Cylinder,
+        EllipticRing, Spheroid, SpheroidalShell, Screen, RoundPlate, Exterior, HalfSpace, Strip,
     )
 }  # fmt: skip
 
@@ -85,6 +90,8 @@ def shape_from_spec(spec: Mapping[str, Any]) -> Shape:
     for name in known:
         if name not in given and name not in OPTIONAL:
             raise GeometryError(f"a {kind} needs the field {name!r}")
+    if "body" in given:  # shapes are nested in an exterior
+        given["body"] = _bodies(given["body"])
     made = shape(**given)
     if not isinstance(split, Mapping):
         raise GeometryError(f"split must be a table of fractions by piece, got {split!r}")
@@ -94,6 +101,17 @@ def shape_from_spec(spec: Mapping[str, Any]) -> Shape:
     return made.renamed(**{str(old): new for old, new in names.items()}) if names else made
 
 
+def _bodies(spec: Any) -> Shape | list[Shape]:
+    """Return the shapes of the bodies of an exterior, which are no exteriors themselves."""
+    specs = spec if isinstance(spec, list) else [spec]
+    if any(isinstance(one, Mapping) and "body" in one for one in specs):
+        raise GeometryError("the body of an exterior must be a bounded shape, got another exterior")
+    shapes = [shape_from_spec(one) for one in specs]
+    return shapes if isinstance(spec, list) else shapes[0]
+
+
 def _plain(value: Any) -> Any:
-    """Return nested tuples as nested lists."""
+    """Return nested tuples as nested lists, shapes as their specifications."""
+    if isinstance(value, Shape):
+        return shape_to_spec(value)
     return [_plain(item) for item in value] if isinstance(value, tuple) else value

@@ -34,10 +34,10 @@ __all__ = [
 Scale: TypeAlias = float | tuple[float, str] | None
 
 LENGTHS = frozenset({"a", "b", "lower", "upper", "centre", "radius", "semi_axes", "inner", "outer"}) | {
-    "inner_centre", "size", "vertices", "holes", "z0", "z1",
+    "inner_centre", "size", "vertices", "holes", "z0", "z1", "start", "stop", "body",
 }  # fmt: skip
 EPS = float(np.finfo(np.float64).eps)
-RATIOS = frozenset({"opening", "splits", "names"})  # angles, fractions and words stay
+RATIOS = frozenset({"opening", "splits", "names", "dim"})  # angles, fractions and words stay
 
 
 def as_scale(given: Any, name: str, unit: str) -> tuple[float, str]:
@@ -80,7 +80,9 @@ def scaled_shape(shape: Shape, length: float) -> Shape:
 
 
 def _times(value: Any, length: float) -> Any:
-    """Return nested tuples of numbers times `length`."""
+    """Return nested tuples of numbers, or shapes, times `length`."""
+    if isinstance(value, Shape):
+        return scaled_shape(value, length)
     if value is None:
         return None
     if isinstance(value, tuple | list):

@@ -50,7 +50,9 @@ KINDS: Final = (
 )  # fmt: skip
 SHAPES: Final = (
     "interval", "rectangle", "box", "disc", "ellipse", "annulus", "sector", "l-shape", "polygon", "ball",
-    "spheroid", "spherical-shell", "cylinder", "exterior", "half-space", "strip",
+    "spheroid", "spherical-shell", "cylinder", "half-space", "strip", "exterior", "exterior-disc",
+    "exterior-ellipse", "exterior-polygon", "exterior-screen", "exterior-ball", "exterior-spheroid",
+    "exterior-round-plate", "elliptic-ring", "spheroidal-shell",
 )  # fmt: skip
 CONDITIONS: Final = ("dirichlet", "neumann", "robin", "periodic")
 CONDUCTIVITIES: Final = ("scalar", "tensor", "regions")
