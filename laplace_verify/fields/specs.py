@@ -15,6 +15,7 @@ from typing import Any, TypeVar
 
 from laplace_verify.errors import FieldError, nearest_names
 from laplace_verify.fields.base import Field
+from laplace_verify.fields.partitions import Partition, partition_from_spec
 from laplace_verify.fields.singular import Singularity
 
 __all__ = ["from_spec", "registered", "to_spec"]
@@ -88,12 +89,14 @@ def _parameter(value: Any, depth: int) -> Any:
         return tuple(_parameter(item, depth + 1) for item in value)
     if isinstance(value, dict) and set(value) == {"point", "exponent", "as"}:
         return Singularity(point=value["point"], exponent=value["exponent"], kind=value["as"])
+    if isinstance(value, dict) and isinstance(value.get("partition"), str):
+        return partition_from_spec(value)
     return _read(value, depth + 1) if isinstance(value, dict) else value
 
 
 def _plain(value: Any) -> Any:
     """Return a parameter as plain data."""
-    if isinstance(value, Field):
+    if isinstance(value, Field | Partition):
         return value.spec()
     if isinstance(value, Fraction):
         return f"{value.numerator}/{value.denominator}"
