@@ -71,6 +71,8 @@ def basis_in_words(case: Case) -> str:
     return {
         "closed form": "closed form",
         "tail bound": "series with a proven bound of its tail",
+        "maximum-principle bound": "corner fit with a bound of its error by the maximum principle",
+        "confirmed": "confirmed by independent routes, not proven",
         "uncertified": "a function whose inside is unknown: not certified",
     }[case.exact.basis]
 

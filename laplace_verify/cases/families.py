@@ -5,6 +5,7 @@ from __future__ import annotations
 from laplace_verify.cases import (
     boxes,
     corners,
+    corners_fitted,
     discs,
     plates_flux,
     plates_mixed,
@@ -15,6 +16,7 @@ from laplace_verify.cases import (
     rods,
     round_solids,
     sectors,
+    wedges,
 )
 from laplace_verify.cases.definition import joined
 
@@ -27,10 +29,12 @@ FAMILIES = joined(
     plates_mixed.family,
     plates_series.family,
     corners.family,
+    corners_fitted.family,
     polygons.family,
     discs.family,
     rings.family,
     sectors.family,
+    wedges.family,
     boxes.family,
     round_solids.family,
 )

@@ -5,23 +5,23 @@ Case files hold no versions, dates or machine, so that the same sources write th
 
 from __future__ import annotations
 
-import os
 import platform
 from collections.abc import Callable, Iterator
 from dataclasses import replace
 from importlib.metadata import version
 from pathlib import Path
-from tempfile import NamedTemporaryFile
 
 import msgspec
 from tabulate import tabulate
 
 from laplace_verify.cases.catalogue import catalogue
+from laplace_verify.cases.corner_fits import make_fit, stale_fits
 from laplace_verify.cases.describe import basis_in_words, regularity_in_words
 from laplace_verify.cases.families import FAMILIES
 from laplace_verify.errors import RecordError
 from laplace_verify.problems import Case, case_to_json
 from laplace_verify.references import stored_values
+from laplace_verify.references.files import write_file
 from laplace_verify.version import __version__
 
 __all__ = ["regenerate_cases"]
@@ -70,12 +70,14 @@ def regenerate_cases(folder: Path | str, note: Callable[[str], object] | None = 
         folder.mkdir(parents=True, exist_ok=True)
     except OSError as cause:
         raise RecordError(f"the folder {folder} cannot be made: {cause}; give another one") from cause
+    for name in stale_fits():
+        make_fit(name, note=say)
     written, cases = [], []
     for case in _complete():
-        written.append(_write(folder / f"{case.id}.json", case_to_json(case)))
+        written.append(write_file(folder / f"{case.id}.json", case_to_json(case)))
         cases.append(case)
-    written.append(_write(folder / "README.md", _index(cases).encode()))
-    written.append(_write(folder / "PROVENANCE.json", _provenance()))
+    written.append(write_file(folder / "README.md", _index(cases).encode()))
+    written.append(write_file(folder / "PROVENANCE.json", _provenance()))
     for path in sorted(folder.glob("*.json")):
         if path not in written:
             say(f"{path.name} is no case of the catalogue; remove it if it is an old one")
@@ -115,15 +117,3 @@ def _provenance() -> bytes:
     made_by = {"laplace-verify": __version__, "python": platform.python_version()}
     made_by |= {name: version(name) for name in MAKERS}
     return msgspec.json.format(msgspec.json.encode({"made_by": made_by}), indent=2) + b"\n"
-
-
-def _write(path: Path, content: bytes) -> Path:
-    """Write a file at once or not at all."""
-    try:
-        with NamedTemporaryFile(dir=path.parent, prefix=".", delete=False) as draft:
-            draft.write(content)
-        os.chmod(draft.name, 0o644)
-        os.replace(draft.name, path)
-    except OSError as cause:
-        raise RecordError(f"{path} cannot be written: {cause}; give another folder") from cause
-    return path

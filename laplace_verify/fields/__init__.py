@@ -2,6 +2,13 @@
 
 from laplace_verify.fields.affine import affine
 from laplace_verify.fields.base import Field
+from laplace_verify.fields.corner_powers import (
+    CornerPowers,
+    CornerSeries,
+    Expansion,
+    PolynomialPart,
+    corner_powers,
+)
 from laplace_verify.fields.disc_arcs import arcs
 from laplace_verify.fields.exponentials import exp_trig
 from laplace_verify.fields.formula import Formula
@@ -19,14 +26,19 @@ from laplace_verify.fields.user import field
 from laplace_verify.fields.wedges import wedge
 
 __all__ = [
+    "CornerPowers",
+    "CornerSeries",
     "Cut",
     "Enclosure",
+    "Expansion",
     "Field",
     "Formula",
+    "PolynomialPart",
     "Singularity",
     "affine",
     "arcs",
     "coefficient_rule",
+    "corner_powers",
     "dipole",
     "exp_trig",
     "field",

@@ -76,6 +76,20 @@ class Field(ABC):
         return "closed form"
 
     @property
+    def fit_error(self) -> mpmath.mpf:
+        """Bound for |u - formula| where the formula was fitted to a solution; 0 for a formula that is exact."""
+        return mpmath.mpf(0)
+
+    @property
+    def most_digits(self) -> int:
+        """How many digits `at` can give."""
+        return MAX_DIGITS
+
+    def gradient_error(self, place: tuple[Any, ...]) -> mpmath.mpf:  # noqa: ARG002  # depends on the point in fits
+        """Return a bound for the error of each component of the formula's gradient at an exact point."""
+        return mpmath.mpf(0) if not self.fit_error else mpmath.inf
+
+    @property
     def opaque(self) -> bool:
         """Whether the field is a user's own function, whose harmonicity and smoothness are unknown."""
         return False
@@ -174,8 +188,24 @@ class Field(ABC):
         """
         return self._settled(point, digits, side, derivative=False)[0][0]
 
-    def gradient_at(
+    def formula_at(
         self, point: Iterable[Number] | Number, digits: int = 30, side: int | None = None
+    ) -> mpmath.mpf:
+        """Return the formula's own value: as `at`, but a fit gives more digits than it has of the solution.
+
+        Raises
+        ------
+        FieldError
+            As `value`; or if `digits` is not a whole number from 1 to 400.
+        """
+        return self._settled(point, digits, side, derivative=False, limited=False)[0][0]
+
+    def gradient_at(
+        self,
+        point: Iterable[Number] | Number,
+        digits: int = 30,
+        side: int | None = None,
+        region: str | None = None,
     ) -> tuple[mpmath.mpf, ...]:
         """Return the d components of grad u at one point with `digits` correct digits each; see `at`.
 
@@ -191,7 +221,8 @@ class Field(ABC):
     ) -> Enclosure:
         """Return u at one point with an error radius and its basis.
 
-        The radius is the difference of evaluations at two working precisions plus 10**-digits of the value.
+        The radius is the difference of evaluations at two working precisions plus 10**-digits of the value,
+        plus the field's own `fit_error`.
 
         >>> from laplace_verify import fields
         >>> value, radius, basis = fields.log_source((0, 0)).enclosure((1, 1), digits=20)
@@ -205,14 +236,25 @@ class Field(ABC):
         """
         (value,), (difference,) = self._settled(point, digits, side, derivative=False)
         with mpmath.workdps(15):
-            radius = abs(difference) + abs(value) * mpmath.mpf(10) ** -digits
+            radius = abs(difference) + abs(value) * mpmath.mpf(10) ** -digits + self.fit_error
         return Enclosure(value, +radius, self.basis)
 
     def _settled(
-        self, point: Iterable[Number] | Number, digits: int, side: int | None, *, derivative: bool
+        self,
+        point: Iterable[Number] | Number,
+        digits: int,
+        side: int | None,
+        *,
+        derivative: bool,
+        limited: bool = True,
     ) -> tuple[tuple[mpmath.mpf, ...], tuple[mpmath.mpf, ...]]:
         """Return components of u or grad u, and their change at the last raise of the working precision."""
         digits = whole(digits, "digits", 1, MAX_DIGITS)
+        if limited and digits > self.most_digits:
+            raise FieldError(
+                f"{digits} digits were asked for, but {self.formula} is a fit whose error bound leaves "
+                f"{self.most_digits}; ask for no more"
+            )
         place = exact_point((point,) if is_number(point) else point, "point", (self.dim,))  # type: ignore[arg-type]
         lip = as_sides(side, 1)
         row = np.array([[float(c) for c in place]])

@@ -59,6 +59,22 @@ class Combination(Field):
         return weakest_basis(*(term.basis for term in self.terms))
 
     @property
+    def fit_error(self) -> mpmath.mpf:
+        """The sum of those of the terms, each times |factor|."""
+        pairs = zip(self.factors, self.terms, strict=True)
+        return mpmath.fsum(abs(mpmath.mpf(float(f))) * term.fit_error for f, term in pairs)
+
+    @property
+    def most_digits(self) -> int:
+        """The fewest of the terms."""
+        return min(term.most_digits for term in self.terms)
+
+    def gradient_error(self, place: tuple[Any, ...]) -> mpmath.mpf:
+        """Return the sum of those of the terms, each times |factor|."""
+        pairs = zip(self.factors, self.terms, strict=True)
+        return mpmath.fsum(abs(mpmath.mpf(float(f))) * term.gradient_error(place) for f, term in pairs)
+
+    @property
     def opaque(self) -> bool:
         """Whether one of the terms is."""
         return any(term.opaque for term in self.terms)

@@ -14,6 +14,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Any
 
+import mpmath
 import numpy as np
 
 from laplace_verify.arrays import Array, BoolArray
@@ -111,6 +112,16 @@ class Inverted(Field):
     def basis(self) -> Basis:
         """As the field that is inverted."""
         return self.field.basis
+
+    @property
+    def fit_error(self) -> mpmath.mpf:
+        """As the field that is inverted, in the plane; not bounded in space, where a factor R/r enters."""
+        return self.field.fit_error if self.dim == 2 or not self.field.fit_error else mpmath.inf
+
+    @property
+    def most_digits(self) -> int:
+        """As the field that is inverted."""
+        return self.field.most_digits
 
     @property
     def opaque(self) -> bool:

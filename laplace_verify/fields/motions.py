@@ -10,6 +10,7 @@ import math
 from dataclasses import dataclass
 from typing import Any
 
+import mpmath
 import numpy as np
 
 from laplace_verify.arrays import Array, BoolArray
@@ -83,6 +84,16 @@ class Moved(Field):
     def basis(self) -> Basis:
         """As the field that is moved."""
         return self.field.basis
+
+    @property
+    def fit_error(self) -> mpmath.mpf:
+        """As the field that is moved."""
+        return self.field.fit_error
+
+    @property
+    def most_digits(self) -> int:
+        """As the field that is moved."""
+        return self.field.most_digits
 
     @property
     def opaque(self) -> bool:

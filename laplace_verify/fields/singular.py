@@ -25,9 +25,11 @@ from laplace_verify.errors import FieldError
 
 __all__ = ["Basis", "Cut", "Enclosure", "Singularity", "weakest_basis"]
 
-Basis: TypeAlias = Literal["closed form", "tail bound", "uncertified"]
+Basis: TypeAlias = Literal["closed form", "tail bound", "maximum-principle bound", "confirmed", "uncertified"]
 KINDS = ("power", "log", "pole", "jump")
-STRENGTH: tuple[Basis, ...] = ("closed form", "tail bound", "uncertified")
+STRENGTH: tuple[Basis, ...] = (
+    "closed form", "tail bound", "maximum-principle bound", "confirmed", "uncertified"
+)  # fmt: skip
 
 ROUNDING = 16 * np.finfo(np.float64).eps  # of a point that was computed to lie on a cut
 
@@ -45,8 +47,9 @@ class Enclosure(NamedTuple):
     """A number with an error radius and the reason to believe it: |u - value| <= radius.
 
     `basis` is "closed form" (only rounding is left, and was compared at two precisions), "tail bound" (a
-    series with a proven bound for what was left out) or "uncertified" (a user's function whose inside is
-    unknown).
+    series with a proven bound for what was left out), "maximum-principle bound" (a fit whose boundary
+    residual bounds its error), "confirmed" (independent routes agree, which is no proof) or "uncertified" (a
+    user's function whose inside is unknown).
     """
 
     value: mpmath.mpf

@@ -178,7 +178,7 @@ def _value(name: str, spec: QuantitySpec, shape: Shape, field: Field) -> tuple[f
         if field.opaque:
             value = float(field.value([point])[0])
             return value, 64 * EPS * abs(value), abs(value) + 1.0
-        enclosure = field.enclosure(point, digits=25)
+        enclosure = field.enclosure(point, digits=min(25, field.most_digits))
     except FieldError as cause:
         raise ProblemError(f"quantity {name!r}: {cause}") from cause
     value = float(enclosure.value)

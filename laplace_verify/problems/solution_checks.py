@@ -99,7 +99,7 @@ def _precise(field: Field, point: Array) -> Evaluate:
 
     def evaluate(t: Any, q: list[float]) -> Any:
         place = tuple(mpmath.mpf(c) + t * mpmath.mpf(e) for c, e in zip(point.tolist(), q, strict=True))
-        return field.at(place, digits=40)
+        return field.formula_at(place, digits=40)
 
     return evaluate
 

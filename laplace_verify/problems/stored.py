@@ -9,7 +9,7 @@ from laplace_verify.errors import ProblemError, nearest_names
 
 __all__ = ["BASES", "StoredValue"]
 
-BASES = ("closed form", "tail bound", "maximum principle", "two routes")
+BASES = ("closed form", "tail bound", "maximum-principle bound", "confirmed")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -25,7 +25,7 @@ class StoredValue:
     radius
         Error radius of the value and of every component of the gradient, >= 0.
     basis
-        "closed form", "tail bound" or "maximum principle" (proven), or "two routes" (confirmed by the
+        "closed form", "tail bound" or "maximum-principle bound" (proven), or "confirmed" (by the
         agreement of two independent computations, not proven).
 
     Raises

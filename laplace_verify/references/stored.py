@@ -2,14 +2,16 @@
 
 A number is printed with `digits` significant digits; the radius is what the evaluation leaves open plus half
 a unit in the last printed digit, rounded up. The basis is that of the field: "closed form" (only rounding is
-left, and two working precisions agree) or "tail bound" (a series with a proven bound). A field without such
-a basis has no reference values.
+left, and two working precisions agree), "tail bound" (a series with a proven bound) or "maximum-principle
+bound" (a fit, whose digits are limited and whose gradient is the better known the farther from the boundary).
+A field without such a basis has no reference values.
 """
 
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
+from fractions import Fraction
 from typing import Any
 
 import mpmath
@@ -20,7 +22,7 @@ from laplace_verify.problems import Case, StoredValue
 __all__ = ["StoredReference", "stored_values"]
 
 GUARD = 10  # digits beyond those printed
-PROVEN = ("closed form", "tail bound")
+PROVEN = ("closed form", "tail bound", "maximum-principle bound")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -83,11 +85,14 @@ def _stored_value(case: Case, point: tuple[str, ...], digits: int) -> StoredValu
     place = [float(mpmath.mpf(c)) for c in point]
     if len(place) != case.dim or not case.problem.shape.contains([place], tol=1e-15).all():
         raise ProblemError(f"case {case.id!r}: {point} is no point of {case.problem.shape!r}")
-    value, open_, basis = case.exact.enclosure(point, digits=digits + GUARD)
-    gradient = case.exact.gradient_at(point, digits=digits + GUARD)
+    asked = min(digits + GUARD, case.exact.most_digits)
+    value, open_, basis = case.exact.enclosure(point, digits=asked)
+    gradient = case.exact.gradient_at(point, digits=asked)
+    sloped = case.exact.gradient_error(tuple(Fraction(c) for c in point))
     with mpmath.workdps(digits + 2 * GUARD):
         largest = max(abs(number) for number in (value, *gradient))
-        radius = 2 * open_ + largest * mpmath.mpf(10) ** (1 - digits) / 2
+        largest_change = largest * mpmath.mpf(10) ** -asked
+        radius = 2 * max(open_, sloped + largest_change) + largest * mpmath.mpf(10) ** (1 - digits) / 2
         return StoredValue(
             point=point,
             value=mpmath.nstr(value, digits),

@@ -27,6 +27,9 @@ INVISIBLE = {
     "plate-affine": "u_nn = 0",
     "plate-insulated-step": "the jump costs as much: order 1 in L2 is all a sound scheme has",
     "l-shape-mixed-corner": "the corner costs more: orders 1/3 and 2/3",
+    "plate-condition-change-smooth-data": "the change of condition costs as much: orders 1/2 and 1",
+    "plate-hot-end-condition-change": "the change of condition costs as much: orders 1/2 and 1",
+    "l-basin-two-levels": "the corner costs more: orders 2/3 and 4/3",
     "plate-condition-change": "the change of condition costs as much: orders 1/2 and 1",
 }
 
