@@ -6,6 +6,8 @@ from dataclasses import dataclass
 from functools import reduce
 from typing import Any
 
+import mpmath
+
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.contexts import Number
 from laplace_verify.errors import FieldError
