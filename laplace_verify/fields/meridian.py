@@ -6,7 +6,8 @@ A field U of space that does not change when turned about the z axis is known fr
 
 and div(K grad U) = 0 becomes (1/r) d/dr(r K u_r) + d/dz(K u_z) = 0. The even continuation to r < 0 is U in
 the opposite half-plane. On the axis u_r = 0. Singular points of U on the axis are singular points of u; a
-circle about the axis along which U jumps is one too. Derived here.
+circle about the axis along which U jumps is one too. Derived here. What depends on r alone, a + b log r, is
+singular along the whole axis.
 """
 
 from __future__ import annotations
@@ -22,10 +23,11 @@ from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.errors import FieldError
 from laplace_verify.fields.base import Field
 from laplace_verify.fields.edges import Ring
+from laplace_verify.fields.radial import Radial
 from laplace_verify.fields.singular import Basis, Singularity
 from laplace_verify.fields.specs import registered
 
-__all__ = ["Meridian", "axisymmetric"]
+__all__ = ["Coaxial", "Meridian", "axisymmetric"]
 
 SEED = 60217
 REACHES = (0.03, 0.2, 1.0, 4.0)  # radii at which the symmetry is looked at, times a random factor up to 1
@@ -125,7 +127,54 @@ class Meridian(Field):
         return self.field._valid(np.stack([points[:, 0], np.zeros(len(points)), points[:, 1]], axis=1))
 
 
-def axisymmetric(field: Field) -> Meridian:
+@registered("coaxial")
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Coaxial(Field):
+    """u(r, z) = radial(r) = a + b log r; `axisymmetric` makes one of a radial field of the cylinder."""
+
+    radial: Field
+
+    def __post_init__(self) -> None:
+        """Refuse all but radial fields of the cylinder."""
+        if not isinstance(self.radial, Radial) or self.radial.about != "cylinder":
+            raise FieldError(
+                "a field of r alone must be radial('cylinder', a, b); in space radial('sphere', a, b) is "
+                "b times point_source((0, 0, 0)) plus a constant"
+            )
+
+    @property
+    def dim(self) -> int:
+        """Two: r and z."""
+        return 2
+
+    @property
+    def formula(self) -> str:
+        """Such as ``3 + 2 log r``."""
+        return self.radial.formula
+
+    @property
+    def degree(self) -> int | None:
+        """Zero for a constant."""
+        return self.radial.degree
+
+    @property
+    def growth(self) -> float:
+        """Logarithmic, or bounded."""
+        return self.radial.growth
+
+    def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:
+        return self.radial._value(ctx, (abs(x[0]),), side)
+
+    def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:
+        return self.radial._gradient(ctx, (x[0],), side)[0], 0 * x[1]
+
+    def _valid(self, points: Array) -> BoolArray:
+        """Everywhere off the axis."""
+        valid: BoolArray = (points[:, 0] != 0.0) | (self.radial.degree == 0)
+        return valid
+
+
+def axisymmetric(field: Field) -> Meridian | Coaxial:
     """Return an axially symmetric field of space as a function of (r, z).
 
     Parameters
@@ -133,7 +182,7 @@ def axisymmetric(field: Field) -> Meridian:
     field
         A field of space that turning about the z axis leaves as it is: solid harmonics (l, 0), point sources
         and dipoles on and along the axis, sums of them. The symmetry is checked at seeded points; singular
-        points must lie on the axis.
+        points must lie on the axis. Or ``radial("cylinder", a, b)``, for a + b log r in hollow cylinders.
 
     Raises
     ------
@@ -147,6 +196,8 @@ def axisymmetric(field: Field) -> Meridian:
     >>> u.value([[2.0, 1.0]]).tolist(), u.gradient([[2.0, 1.0]]).tolist()
     ([-1.0], [[-2.0, 2.0]])
     """
+    if isinstance(field, Radial):
+        return Coaxial(radial=field)
     return Meridian(field=field)
 
 

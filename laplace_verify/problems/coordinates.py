@@ -38,8 +38,8 @@ __all__ = [
     "curvature_terms",
     "in_coordinates",
     "metric",
-    "straightened",
     "space_dim",
+    "straightened",
 ]
 
 Coordinates: TypeAlias = Literal["cartesian", "axisymmetric", "radial-cylinder", "radial-sphere"]
@@ -65,7 +65,8 @@ def in_coordinates(shape: Shape, coordinates: Any) -> Shape:
     ('axis', 'right', 'bottom', 'top')
     """
     if coordinates not in COORDINATES:
-        raise ProblemError(f"unknown coordinates {coordinates!r}; {nearest_names(str(coordinates), COORDINATES)}")
+        known = nearest_names(str(coordinates), COORDINATES)
+        raise ProblemError(f"unknown coordinates {coordinates!r}; {known}")
     if coordinates == "cartesian":
         return shape
     dim = DIMS[coordinates][0]
@@ -94,7 +95,7 @@ def axis_names(shape: Shape, coordinates: Coordinates) -> frozenset[str]:
 
 
 def metric(coordinates: Coordinates, points: Array) -> Array:
-    """Return the measure of space per measure of the shape or of its boundary, shape (n,): 1, 2 pi r, 4 pi r^2.
+    """Return the measure of space per measure of the shape or its boundary, shape (n,): 1, 2 pi r, 4 pi r^2.
 
     >>> metric("axisymmetric", np.array([[0.5, 3.0]])).tolist() == [np.pi]
     True
