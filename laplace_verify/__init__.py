@@ -61,8 +61,11 @@ if TYPE_CHECKING:
     from laplace_verify.problems import Regularity as Regularity
     from laplace_verify.problems import dirichlet as dirichlet
     from laplace_verify.problems import flux_through as flux_through
+    from laplace_verify.problems import inclusion as inclusion
+    from laplace_verify.problems import layers as layers
     from laplace_verify.problems import neumann as neumann
     from laplace_verify.problems import robin as robin
+    from laplace_verify.problems import sectors as sectors
     from laplace_verify.problems import value_at as value_at
     from laplace_verify.problems.case import case as case
     from laplace_verify.problems.problem import problem as problem
@@ -89,7 +92,10 @@ _ROOMS = {
     ),
     "measure": "Study Verdict grid_convergence study",
     "principles": "Check check_principle",
-    "problems": "Case Problem Quantity Regularity case dirichlet flux_through neumann problem robin value_at",
+    "problems": (
+        "Case Problem Quantity Regularity case dirichlet flux_through inclusion layers neumann problem robin "
+        "sectors value_at"
+    ),
     "pytest_plugin": "order_tests principle_tests",
     "report": "plot write_report",
     "solvers": "Adapter Answer Refused adapt",

@@ -20,7 +20,7 @@ from laplace_verify.campaign.record import (
     RegularityInfo,
     SolverIdentity,
 )
-from laplace_verify.problems import Case
+from laplace_verify.problems import Case, Materials
 from laplace_verify.solvers import Adapter
 
 __all__ = ["case_info", "environment", "solver_identity"]
@@ -112,7 +112,10 @@ def _order_text(order: object) -> str:
 
 
 def _conductivity_text(conductivity: object) -> str:
-    """Return a number as it is, a tensor row by row."""
+    """Return a number as it is, a tensor row by row, regions by name."""
+    if isinstance(conductivity, Materials):
+        pairs = zip(conductivity.names, conductivity.conductivities, strict=True)
+        return ", ".join(f"{name} {k:g}" for name, k in pairs)
     array = np.asarray(conductivity)
     return f"{float(array):g}" if array.ndim == 0 else str(array.tolist())
 

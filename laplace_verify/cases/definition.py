@@ -18,7 +18,8 @@ from laplace_verify.cases.tags import derived_tags
 from laplace_verify.errors import ProblemError
 from laplace_verify.fields import Field
 from laplace_verify.geometry import Shape
-from laplace_verify.problems import Case, Condition, case
+from laplace_verify.problems import Case, Condition, Materials, case
+from laplace_verify.problems.coordinates import Coordinates
 from laplace_verify.problems.quantities import QuantitySpec
 
 __all__ = ["HERE", "Definition", "Family", "joined"]
@@ -36,7 +37,7 @@ class Definition:
         Headline, physical reading in a plain sentence, literature.
     solution, note
         The solution as a readable formula, and further sentences for the statement, see `statement_of`.
-    shape, field, conditions, conductivity, quantities
+    shape, field, conditions, conductivity, quantities, coordinates
         See `problems.case`.
     tags
         Words beyond those that follow from the mathematics, see `derived_tags`.
@@ -50,11 +51,12 @@ class Definition:
     shape: Shape
     field: Field
     conditions: Mapping[str, str | Condition] = dataclass_field(default_factory=dict)
-    conductivity: float | npt.ArrayLike = 1.0
+    conductivity: float | npt.ArrayLike | Materials = 1.0
     quantities: Mapping[str, QuantitySpec] = dataclass_field(default_factory=dict)
     tags: Iterable[str] = ()
     sources: Iterable[str] = (HERE,)
     note: str = ""
+    coordinates: Coordinates = "cartesian"
     reference_points: Iterable[tuple[str, ...]] = ()
 
     def build(self, id_: str) -> Case:
@@ -75,6 +77,7 @@ class Definition:
             reading=self.reading,
             sources=self.sources,
             quantities=self.quantities,
+            coordinates=self.coordinates,
         )
         return replace(
             built,

@@ -8,7 +8,7 @@ from textwrap import TextWrapper
 
 from tabulate import tabulate
 
-from laplace_verify.cases.statement import conductivity_in_words, given_in_words, region_in_words
+from laplace_verify.cases.statement import conductivity_in_words, given_in_words, in_symbols, region_in_words
 from laplace_verify.problems import Case, Quantity
 
 __all__ = ["basis_in_words", "describe", "regularity_in_words"]
@@ -26,13 +26,16 @@ def describe(case: Case) -> str:
     Rod between two temperatures (rod-two-temperatures)
     """
     problem = case.problem
+    region = in_symbols(region_in_words(problem.shape), problem.coordinates)
     facts = [
-        ("shape", f"{region_in_words(problem.shape)} ({problem.shape.kind}, {case.dim}-D)"),
+        ("shape", f"{region} ({problem.shape.kind}, {case.dim}-D)"),
         ("conductivity", conductivity_in_words(problem.conductivity)),
         ("exact solution", case.exact.formula),
         ("digits", basis_in_words(case)),
         ("regularity", regularity_in_words(case)),
     ]
+    if problem.coordinates != "cartesian":
+        facts.insert(1, ("coordinates", f"{problem.coordinates}; integrals are those of space"))
     if problem.constant is not None:
         facts.append(("level", f"the {problem.constant[0]} of u is {problem.constant[-1]:.12g}"))
     parts = [
@@ -57,7 +60,7 @@ def regularity_in_words(case: Case) -> str:
     """
     found = case.regularity
     if math.isinf(found.solution):
-        solution = "u smooth on the closed shape"
+        solution = f"u smooth on {'each closed region' if found.interface else 'the closed shape'}"
     elif len(found.jumps):
         solution = "boundary data jump"
     else:
@@ -87,10 +90,15 @@ def _pieces(case: Case) -> str:
     unit = case.units.length
     size = "size" if not unit else f"size ({unit if case.dim == 2 else f'{unit}^{case.dim - 1}'})"
     rows = [
-        (piece.name, piece.kind, given_in_words(case._conditions[piece.name]), f"{piece.measure:.6g}")
+        (piece.name, piece.kind, _given(case, piece.name), f"{piece.measure:.6g}")
         for piece in case.problem.pieces
     ]
     return _table(rows, ("piece", "condition", "given", size))
+
+
+def _given(case: Case, piece: str) -> str:
+    """Return what is given on a piece; nothing on the axis of symmetry."""
+    return given_in_words(case._conditions[piece]) if piece in case._conditions else "nothing"
 
 
 def _quantities(case: Case) -> str:

@@ -7,6 +7,7 @@ from laplace_verify.cases import (
     corners,
     corners_fitted,
     discs,
+    materials,
     plates_flux,
     plates_mixed,
     plates_series,
@@ -37,4 +38,5 @@ FAMILIES = joined(
     wedges.family,
     boxes.family,
     round_solids.family,
+    materials.family,
 )

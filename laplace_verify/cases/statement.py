@@ -3,23 +3,32 @@
 from __future__ import annotations
 
 import math
+import re
 from collections.abc import Callable, Mapping, Sequence
 from typing import Any
 
 import numpy as np
 
+from laplace_verify.fields.partitions import Layers, Sectors, Shells
 from laplace_verify.geometry import Shape
-from laplace_verify.problems import Case, Condition
+from laplace_verify.problems import Case, Condition, Materials
+from laplace_verify.problems.coordinates import Coordinates
 
 __all__ = [
     "conditions_in_words",
     "conductivity_in_words",
     "given_in_words",
+    "in_symbols",
     "region_in_words",
     "statement_of",
 ]
 
 AXES = ("x", "y", "z")
+SYMMETRIC = {  # the equation in coordinates with a symmetry
+    "axisymmetric": "(1/r) d/dr(r K du/dr) + d/dz(K du/dz)",
+    "radial-cylinder": "(1/r) d/dr(r K du/dr)",
+    "radial-sphere": "(1/r^2) d/dr(r^2 K du/dr)",
+}
 
 
 def statement_of(case: Case, solution: str, note: str = "") -> str:
@@ -43,13 +52,29 @@ def statement_of(case: Case, solution: str, note: str = "") -> str:
     >>> print(statement_of(rod, "3 x"))
     div(K grad u) = 0 with K = 0.5 in 0 < x < 2; u given on the whole boundary. Solution u = 3 x.
     """
-    k = conductivity_in_words(case.problem.conductivity)
+    problem = case.problem
+    k = in_symbols(conductivity_in_words(problem.conductivity), problem.coordinates)
     equation = "div grad u = 0" if k == "1" else f"div(K grad u) = 0 with K = {k}"
-    kinds = {piece.name: case._conditions[piece.name] for piece in case.problem.pieces}
-    parts = [f"{equation} in {region_in_words(case.problem.shape)}", *conditions_in_words(kinds)]
+    if problem.coordinates != "cartesian":
+        equation += f", that is {SYMMETRIC[problem.coordinates]} = 0,"
+    kinds = dict(case._conditions)
+    region = in_symbols(region_in_words(problem.shape), problem.coordinates)
+    parts = [f"{equation} in {region}", *conditions_in_words(kinds)]
+    parts += [f"{piece.name} is the axis r = 0" for piece in problem.pieces if piece.kind == "axis"]
     if case.problem.constant is not None:
         parts.append("the mean of u given")
     return " ".join(filter(None, [f"{'; '.join(parts)}. Solution u = {solution}.", note]))
+
+
+def in_symbols(text: str, coordinates: Coordinates) -> str:
+    """Return a text about x and y in the coordinates' own symbols, r and z.
+
+    >>> in_symbols("the rectangle 0 < x < 2, 0 < y < 1", "axisymmetric")
+    'the rectangle 0 < r < 2, 0 < z < 1'
+    """
+    if coordinates == "cartesian":
+        return text
+    return re.sub(r"\by\b", "z", re.sub(r"\bx\b", "r", text))
 
 
 def conductivity_in_words(conductivity: Any) -> str:
@@ -58,10 +83,37 @@ def conductivity_in_words(conductivity: Any) -> str:
     >>> conductivity_in_words(2.5), conductivity_in_words(np.array([[2.0, 0.5], [0.5, 1.0]]))
     ('2.5', '[[2, 0.5], [0.5, 1]]')
     """
+    if isinstance(conductivity, Materials):
+        pairs = zip(conductivity.names, conductivity.conductivities, strict=True)
+        return ", ".join(f"{_number(k)} in {name}" for name, k in pairs) + f" ({places(conductivity)})"
     if np.ndim(conductivity) == 0:
         return _number(float(conductivity))
     rows = (", ".join(_number(float(k)) for k in row) for row in np.asarray(conductivity))
     return "[" + ", ".join(f"[{row}]" for row in rows) + "]"
+
+
+def places(materials: Materials) -> str:
+    """Return where the regions lie.
+
+    >>> from laplace_verify.problems import layers
+    >>> places(layers((0, 1), ["1/4"], [1, 2]))
+    'interfaces y = 0.25'
+    """
+    partition = materials.partition
+    if isinstance(partition, Layers):
+        across = " + ".join(
+            axis if c == 1 else f"{_number(float(c))} {axis}"
+            for c, axis in zip(partition.direction, AXES, strict=False)
+            if c
+        )
+        return f"interfaces {across} = {', '.join(_number(float(p)) for p in partition.positions)}"
+    if isinstance(partition, Shells):
+        radii = ", ".join(_number(float(r)) for r in partition.radii)
+        return f"interfaces |x - {_point([float(c) for c in partition.centre])}| = {radii}"
+    if isinstance(partition, Sectors):
+        rays = ", ".join(_point([float(c) for c in ray]) for ray in partition.rays)
+        return f"sectors about {_point([float(c) for c in partition.apex])} between the rays {rays}"
+    return f"{len(partition.names)} regions"
 
 
 def conditions_in_words(conditions: Mapping[str, Condition]) -> list[str]:
@@ -148,6 +200,14 @@ REGIONS: dict[str, Callable[[Any], str]] = {
     "annulus": _annulus,
     "sector": lambda s: (
         f"the sector 0 < r < {_number(s.radius)}, 0 < theta < {_number(math.degrees(s.opening))} degrees"
+    ),
+    "half-disc": lambda s: (
+        f"the half x > {_number(s.centre[0])} of the disc of radius {_number(s.radius)} about "
+        f"{_point(s.centre)}"
+    ),
+    "half-annulus": lambda s: (
+        f"the half x > {_number(s.centre[0])} of the annulus between the circles of radius "
+        f"{_number(s.inner)} and {_number(s.outer)} about {_point(s.centre)}"
     ),
     "l-shape": lambda s: (
         f"the L-shape (-{_number(s.size)}, {_number(s.size)})^2 without its quadrant x > 0, y < 0"

@@ -20,8 +20,8 @@ def derived_tags(case: Case) -> frozenset[str]:
     """Return the tags that are facts about a case.
 
     "smooth" or "singular", "jump"; "dirichlet" ... for each kind of condition, "mixed" for several,
-    "pure-neumann"; "tensor", "curved", "re-entrant", "condition-change" (inside a smooth piece), "slit",
-    "hole", "near-source", "high-aspect".
+    "pure-neumann"; "axisymmetric" (in r, z), "radial" (in r), "regions", "tensor", "curved", "re-entrant",
+    "condition-change" (inside a smooth piece), "slit", "hole", "near-source", "high-aspect".
 
     >>> from laplace_verify import fields
     >>> from laplace_verify.geometry import LShape
@@ -38,7 +38,10 @@ def derived_tags(case: Case) -> frozenset[str]:
         "jump": len(regularity.jumps) > 0,
         "mixed": len(kinds) > 1,
         "pure-neumann": case.problem.constant is not None,
-        "tensor": np.ndim(case.problem.conductivity) == 2,
+        "axisymmetric": case.problem.coordinates == "axisymmetric",
+        "radial": case.problem.coordinates in ("radial-cylinder", "radial-sphere"),
+        "regions": bool(case.problem.interfaces),
+        "tensor": isinstance(case.problem.conductivity, np.ndarray),
         "curved": any(piece.curved for piece in case.problem.pieces),
         "condition-change": _changes(case),
         "near-source": _near_source(case),

@@ -2,6 +2,7 @@
 
 from laplace_verify.fields.affine import affine
 from laplace_verify.fields.base import Field
+from laplace_verify.fields.checkerboards import checkerboard, checkerboard_ratio
 from laplace_verify.fields.corner_powers import (
     CornerPowers,
     CornerSeries,
@@ -13,9 +14,11 @@ from laplace_verify.fields.disc_arcs import arcs
 from laplace_verify.fields.exponentials import exp_trig
 from laplace_verify.fields.formula import Formula
 from laplace_verify.fields.piecewise import parabola, piecewise, ramp, step, tent
+from laplace_verify.fields.piecewise_regions import by_region
 from laplace_verify.fields.plate_modes import coefficient_rule, modes
 from laplace_verify.fields.poisson_disc import fourier, poisson_disc
 from laplace_verify.fields.polynomials import polynomial
+from laplace_verify.fields.radial import radial
 from laplace_verify.fields.rectangle_series import rectangle_series
 from laplace_verify.fields.singular import Cut, Enclosure, Singularity
 from laplace_verify.fields.solids import solid
@@ -37,11 +40,16 @@ __all__ = [
     "Singularity",
     "affine",
     "arcs",
+    "by_region",
+    "checkerboard",
+    "checkerboard_ratio",
     "coefficient_rule",
     "corner_powers",
     "dipole",
+    "elliptic_multipole",
     "exp_trig",
     "field",
+    "flow_past",
     "fourier",
     "from_spec",
     "log_source",
@@ -51,6 +59,7 @@ __all__ = [
     "point_source",
     "poisson_disc",
     "polynomial",
+    "radial",
     "ramp",
     "rectangle_series",
     "solid",

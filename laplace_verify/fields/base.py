@@ -76,18 +76,18 @@ class Field(ABC):
         return "closed form"
 
     @property
-    def fit_error(self) -> mpmath.mpf:
-        """Bound for |u - formula| where the formula was fitted to a solution; 0 for a formula that is exact."""
-        return mpmath.mpf(0)
+    def fit_error(self) -> float:
+        """Bound for |u - formula| if the formula was fitted to a solution u; 0 if it is exact."""
+        return 0.0
 
     @property
     def most_digits(self) -> int:
         """How many digits `at` can give."""
         return MAX_DIGITS
 
-    def gradient_error(self, place: tuple[Any, ...]) -> mpmath.mpf:  # noqa: ARG002  # depends on the point in fits
+    def gradient_error(self, place: tuple[Any, ...]) -> float:  # noqa: ARG002  # fits ask where
         """Return a bound for the error of each component of the formula's gradient at an exact point."""
-        return mpmath.mpf(0) if not self.fit_error else mpmath.inf
+        return math.inf if self.fit_error else 0.0
 
     @property
     def opaque(self) -> bool:
@@ -98,6 +98,25 @@ class Field(ABC):
     def degree(self) -> int | None:
         """Total degree if the field is a polynomial, else None."""
         return None
+
+    @property
+    def regions(self) -> tuple[str, ...]:
+        """Names of the regions it is pieced together from, see `piecewise_regions`; () if it is not."""
+        return ()
+
+    def restricted(self, region: str) -> Field:
+        """Return the one smooth field that this one is in a region, continued beyond it.
+
+        A field that is not pieced together is itself everywhere.
+
+        Raises
+        ------
+        FieldError
+            If the field is made of regions and none of them bears the name.
+        """
+        if self.regions:
+            raise FieldError(f"{self.formula} cannot be restricted to {region!r}")
+        return self
 
     @property
     def growth(self) -> float:
@@ -118,6 +137,11 @@ class Field(ABC):
     def _valid(self, points: Array) -> BoolArray:
         """Return at which of the points (n, d) the formulas hold, shape (n,)."""
         return np.ones(len(points), dtype=bool)
+
+    def on_interface(self, points: Array, place: tuple[Any, ...] | None = None) -> BoolArray:
+        """Return at which points (n, d) the gradient jumps; one precise `place` may stand for its row."""
+        del place
+        return np.zeros(len(points), dtype=bool)
 
     # -- float64 -------------------------------------------------------------------------------------------
 
@@ -148,14 +172,19 @@ class Field(ABC):
             self._refuse_infinite(part, values[block], first=block.start)
         return values
 
-    def gradient(self, points: npt.ArrayLike, side: Side = None) -> Array:
+    def gradient(self, points: npt.ArrayLike, side: Side = None, region: str | None = None) -> Array:
         """Return grad u, shape (n, d), at points of shape (n, d); parameters as in `value`.
+
+        On an interface between regions the gradient has two values; `region` names the one that is meant.
 
         Raises
         ------
         FieldError
-            As `value`, and at a singular point r**e with e < 1, where the gradient is infinite.
+            As `value`, at a singular point r**e with e < 1, where the gradient is infinite, and on an
+            interface without `region`.
         """
+        if region is not None and self.regions:
+            return self.restricted(region).gradient(points, side)
         points = as_points(points, self.dim, error=FieldError)
         side = as_sides(side, len(points))
         gradients = np.empty(points.shape)
@@ -207,13 +236,17 @@ class Field(ABC):
         side: int | None = None,
         region: str | None = None,
     ) -> tuple[mpmath.mpf, ...]:
-        """Return the d components of grad u at one point with `digits` correct digits each; see `at`.
+        """Return the d components of grad u at one point with `digits` correct digits each.
+
+        See `at`, and `gradient` for `region`.
 
         Raises
         ------
         FieldError
             As `gradient`; or if `digits` is not a whole number from 1 to 400.
         """
+        if region is not None and self.regions:
+            return self.restricted(region).gradient_at(point, digits, side)
         return self._settled(point, digits, side, derivative=True)[0]
 
     def enclosure(
@@ -307,6 +340,13 @@ class Field(ABC):
                 raise FieldError(
                     f"{self.formula} has two values at {name_of(points, hit, first, place)}, on its branch "
                     "cut: say side=+1 (left of the cut's direction) or side=-1"
+                )
+        if derivative and self.regions:
+            hit = self.on_interface(points, place)
+            if hit.any():
+                raise FieldError(
+                    f"the gradient of {self.formula} jumps at {name_of(points, hit, first, place)}, on an "
+                    f"interface: say which region is meant, one of {', '.join(self.regions)}"
                 )
         valid = self._valid(points)
         if not valid.all():

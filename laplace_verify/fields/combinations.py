@@ -2,11 +2,10 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 from functools import reduce
 from typing import Any
-
-import mpmath
 
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.contexts import Number
@@ -18,6 +17,8 @@ from laplace_verify.fields.singular import Basis, Cut, Singularity, weakest_basi
 from laplace_verify.fields.specs import registered
 
 __all__ = ["Combination", "combined"]
+
+ROUNDED_UP = 1.0 + 1e-14  # of sums of error bounds
 
 
 @registered("sum")
@@ -61,20 +62,20 @@ class Combination(Field):
         return weakest_basis(*(term.basis for term in self.terms))
 
     @property
-    def fit_error(self) -> mpmath.mpf:
+    def fit_error(self) -> float:
         """The sum of those of the terms, each times |factor|."""
         pairs = zip(self.factors, self.terms, strict=True)
-        return mpmath.fsum(abs(mpmath.mpf(float(f))) * term.fit_error for f, term in pairs)
+        return ROUNDED_UP * math.fsum(abs(float(f)) * term.fit_error for f, term in pairs)
 
     @property
     def most_digits(self) -> int:
         """The fewest of the terms."""
         return min(term.most_digits for term in self.terms)
 
-    def gradient_error(self, place: tuple[Any, ...]) -> mpmath.mpf:
+    def gradient_error(self, place: tuple[Any, ...]) -> float:
         """Return the sum of those of the terms, each times |factor|."""
         pairs = zip(self.factors, self.terms, strict=True)
-        return mpmath.fsum(abs(mpmath.mpf(float(f))) * term.gradient_error(place) for f, term in pairs)
+        return ROUNDED_UP * math.fsum(abs(float(f)) * term.gradient_error(place) for f, term in pairs if f)
 
     @property
     def opaque(self) -> bool:
@@ -87,6 +88,19 @@ class Combination(Field):
         degrees = [term.degree for term in self.terms]
         known = [d for d in degrees if d is not None]
         return max(known) if len(known) == len(degrees) else None
+
+    @property
+    def regions(self) -> tuple[str, ...]:
+        """Those of all terms, each once."""
+        return tuple(dict.fromkeys(name for term in self.terms for name in term.regions))
+
+    def restricted(self, region: str) -> Field:
+        """Return the sum of the restricted terms."""
+        return Combination(factors=self.factors, terms=tuple(term.restricted(region) for term in self.terms))
+
+    def on_interface(self, points: Array, place: tuple[Any, ...] | None = None) -> BoolArray:
+        """Return where the gradient of a term jumps."""
+        return reduce(lambda a, b: a | b, (term.on_interface(points, place) for term in self.terms))
 
     @property
     def growth(self) -> float:

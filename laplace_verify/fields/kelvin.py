@@ -11,10 +11,10 @@ pole of exponent -e, in 3-D -e - 1.
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 from typing import Any
 
-import mpmath
 import numpy as np
 
 from laplace_verify.arrays import Array, BoolArray
@@ -114,9 +114,9 @@ class Inverted(Field):
         return self.field.basis
 
     @property
-    def fit_error(self) -> mpmath.mpf:
+    def fit_error(self) -> float:
         """As the field that is inverted, in the plane; not bounded in space, where a factor R/r enters."""
-        return self.field.fit_error if self.dim == 2 or not self.field.fit_error else mpmath.inf
+        return self.field.fit_error if self.dim == 2 or not self.field.fit_error else math.inf
 
     @property
     def most_digits(self) -> int:

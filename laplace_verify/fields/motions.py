@@ -10,18 +10,20 @@ import math
 from dataclasses import dataclass
 from typing import Any
 
-import mpmath
 import numpy as np
 
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.contexts import FLOAT
 from laplace_verify.errors import FieldError
+from laplace_verify.fields._precision import working
 from laplace_verify.fields.base import Field
 from laplace_verify.fields.exact import Exact, exact, exact_point, offset, show
 from laplace_verify.fields.singular import Basis, Cut, Singularity
 from laplace_verify.fields.specs import registered
 
 __all__ = ["Moved", "Rotated", "Scaled", "Shifted"]
+
+PLACE_DIGITS = 60  # of a precise point that is moved back
 
 
 class Moved(Field):
@@ -86,7 +88,7 @@ class Moved(Field):
         return self.field.basis
 
     @property
-    def fit_error(self) -> mpmath.mpf:
+    def fit_error(self) -> float:
         """As the field that is moved."""
         return self.field.fit_error
 
@@ -104,6 +106,22 @@ class Moved(Field):
     def degree(self) -> int | None:
         """As the field that is moved."""
         return self.field.degree
+
+    @property
+    def regions(self) -> tuple[str, ...]:
+        """As the field that is moved."""
+        return self.field.regions
+
+    def restricted(self, region: str) -> Field:
+        """Return the restricted field, moved in the same way."""
+        return self._with(self.field.restricted(region))
+
+    def on_interface(self, points: Array, place: tuple[Any, ...] | None = None) -> BoolArray:
+        """Return which points come from an interface."""
+        if place is not None:
+            ctx = working(PLACE_DIGITS)
+            place = self._back(ctx, tuple(ctx.number(c) for c in place))
+        return self.field.on_interface(np.stack(self._back(FLOAT, tuple(points.T)), axis=1), place)
 
     @property
     def growth(self) -> float:

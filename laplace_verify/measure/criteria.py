@@ -5,8 +5,6 @@ from __future__ import annotations
 from dataclasses import replace
 from typing import TYPE_CHECKING
 
-import numpy as np
-
 from laplace_verify.measure.expected import Expectation, expected_order
 from laplace_verify.measure.functionals import probes
 from laplace_verify.solvers.declarations import order_in
@@ -18,6 +16,10 @@ if TYPE_CHECKING:
 __all__ = ["LEVEL", "expectations", "norms_of"]
 
 LEVEL = "quantity:level"
+IN_SPACE = (
+    "as in the plane with norms of space: the axis is no corner, edges of rotation count as plane corners "
+    "(Mercier & Raugel 1982, RAIRO Anal. Numer. 16, 405-461; from memory, unchecked)"
+)
 INTERIOR = ("max", "L1", "L2", "H1-semi", "energy")
 
 
@@ -25,7 +27,7 @@ def norms_of(case: Case) -> list[str]:
     """Return every norm that may be measured on a case."""
     names = list(INTERIOR)
     for head in ("trace", "flux", "fluxdensity"):
-        names += [f"{head}:{piece.name}" for piece in case.problem.pieces]
+        names += [f"{head}:{piece.name}" for piece in case.problem.pieces if piece.kind != "axis"]
     names += [f"quantity:{name}" for name in case.quantities]
     if case.problem.constant is not None:
         names.append(LEVEL)
@@ -43,7 +45,9 @@ def expectations(solver: Adapter, case: Case) -> dict[str, Expectation]:
     for norm in norms_of(case):
         rate = None if claimed is None else order_in(norm, solver.kind, claimed)
         found[norm] = expected_order(solver.kind, norm, solver.formal_order, case.regularity, rate)
-    if found["H1-semi"].decides and np.ndim(case.problem.conductivity) == 0:
+    if case.problem.coordinates != "cartesian":
+        found = {norm: replace(e, basis=f"{e.basis}; {IN_SPACE}") for norm, e in found.items()}
+    if found["H1-semi"].decides and isinstance(case.problem.conductivity, float):
         basis = "a multiple of H1-semi where the conductivity is a number: shown, does not decide"
         found["energy"] = replace(found["energy"], decides=False, basis=basis)
     if LEVEL in found:

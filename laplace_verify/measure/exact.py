@@ -69,7 +69,10 @@ class Exact:
                 offset = points - np.asarray(singularity.point, dtype=np.float64)
                 usable &= np.sqrt((offset**2).sum(axis=1)) > NEAR * self.shape.extent
             usable &= self.shape.contains(points)
-            shape = points.shape if function == self.field.gradient else (len(points),)
+            shape: tuple[int, ...] = (len(points),)
+            if function == self.field.gradient:
+                shape = points.shape
+                usable &= ~self.field.on_interface(points)  # two gradients meet there
             result = np.full(shape, np.nan)
             if usable.any():
                 result[usable] = function(points[usable])

@@ -28,6 +28,7 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Protocol
 
+from laplace_verify.measure.interfaces import at_interface
 from laplace_verify.measure.results import Rate
 
 __all__ = ["Expectation", "RegularityLike", "expected_order", "is_functional", "smallest_loss"]
@@ -124,8 +125,11 @@ def expected_order(
     if norm.startswith("probe:"):
         basis = "read off between nodes, so its error need not fall evenly: shown, does not decide"
         return Expectation(norm=norm, formal=declared, expected=None, decides=False, basis=basis)
+    interface = getattr(regularity, "interface", "")
     rule = _exponential if declared == "exponential" else RULES.get(kind, _other)
     expected, decides, basis = rule(norm, declared, formal, regularity)
+    if interface and expected is not None:
+        expected, decides, basis = at_interface(kind, norm, expected, basis, interface, decides=decides)
     if claimed is not None:
         expected = "exponential" if isinstance(claimed, str) else float(claimed)
         decides, basis = decides or norm == "L2", "claimed for this case by the author of the solver"

@@ -12,12 +12,13 @@ from laplace_verify.measure.results import Feature
 
 if TYPE_CHECKING:
     from laplace_verify.measure.exact import Exact
-    from laplace_verify.problems import Case, Piece
+    from laplace_verify.problems import Case, Piece, Problem
 
 __all__ = ["features"]
 
 SAMPLED = 16  # points of a piece
 SMALL = 1e-9
+LARGE_JUMP = 10.0
 CLOSE = 0.1  # of the shape's extent
 STEP = 1e-3  # of the extent: step of the second derivative along the normal
 
@@ -26,22 +27,29 @@ def features(case: Case, exact: Exact) -> dict[str, Feature]:
     """Return name -> True, False, a number or a word."""
     problem, shape, regularity = case.problem, case.problem.shape, case.regularity
     kinds = {piece.name: piece.kind for piece in problem.pieces}
+    used = set(kinds.values()) - {"axis"}
     smooth = math.isinf(regularity.solution)
     lower, upper = shape.bounding_box
-    tensor = np.ndim(problem.conductivity) == 2
+    tensor = isinstance(problem.conductivity, np.ndarray)
     found: dict[str, Feature] = {
         "dimension": float(shape.dim),
         "shape": shape.kind,
         "Dirichlet condition": "dirichlet" in kinds.values(),
         "Neumann condition": "neumann" in kinds.values(),
         "Robin condition": "robin" in kinds.values(),
-        "only Dirichlet conditions": set(kinds.values()) == {"dirichlet"},
+        "only Dirichlet conditions": used == {"dirichlet"},
         "pure Neumann problem": problem.constant is not None,
-        "several kinds of condition": len(set(kinds.values())) > 1,
+        "several kinds of condition": len(used) > 1,
         "tensor conductivity": tensor,
-        "conductivity other than 1": not np.allclose(problem.tensor, np.eye(shape.dim), rtol=SMALL, atol=0.0),
+        "conductivity other than 1": _other_than_one(problem),
         "off-diagonal conductivity": tensor
         and bool(np.any(problem.tensor != np.diag(np.diag(problem.tensor)))),
+        "interface": bool(problem.interfaces),
+        "coordinates with a symmetry": problem.coordinates != "cartesian",
+        "axis of symmetry": "axis" in kinds.values(),
+        "interface off the axes": regularity.interface in ("oblique", "curved"),
+        "interface that meets the boundary": any(len(piece.parts) > 1 for piece in problem.pieces),
+        "conductivity jump of ten or more": _jump(problem) >= LARGE_JUMP,
         "curved boundary": any(piece.curved for piece in problem.pieces),
         "sides off the axes": any(_oblique(piece) for piece in problem.pieces),
         "unequal extents": not np.allclose(upper - lower, (upper - lower)[0], rtol=SMALL, atol=0.0),
@@ -57,7 +65,7 @@ def features(case: Case, exact: Exact) -> dict[str, Feature]:
         "harmonic polynomial": None if exact.field.degree is None else float(exact.field.degree),
     }
     found |= _data_features(case, exact)
-    found |= {f"{piece.kind} on {piece.name}": True for piece in problem.pieces}
+    found |= {f"{piece.kind} on {piece.name}": True for piece in problem.pieces if piece.kind != "axis"}
     found |= {f"tag {tag}": True for tag in sorted(case.tags)}
     return found
 
@@ -66,7 +74,7 @@ def _data_features(case: Case, exact: Exact) -> dict[str, Feature]:
     """Return what Neumann and Robin data do on their pieces."""
     flowing, bending, scaled = False, False, False
     for piece in case.problem.pieces:
-        if piece.kind == "dirichlet":
+        if piece.kind in ("dirichlet", "axis"):
             continue
         points, normals, _ = piece.sample(SAMPLED)
         if piece.kind == "neumann":
@@ -90,6 +98,19 @@ def _bends(points: Array, normals: Array, exact: Exact, extent: float) -> bool:
     change = np.abs(slopes[1] - slopes[0]) / STEP
     size = float(np.nanmax(np.abs(exact.gradients(points - step * normals)), initial=0.0))
     return bool(np.nanmax(change, initial=0.0) > 1e-6 * size)
+
+
+def _other_than_one(problem: Problem) -> bool:
+    """Return whether the conductivity is anything but 1 everywhere."""
+    if problem.interfaces:
+        return True
+    return not np.allclose(problem.tensor, np.eye(problem.dim), rtol=SMALL, atol=0.0)
+
+
+def _jump(problem: Problem) -> float:
+    """Return the largest over the smallest conductivity of the regions; 1 if there is only one."""
+    values = [float(region.conductivity) for region in problem.regions if np.ndim(region.conductivity) == 0]
+    return max(values) / min(values) if len(values) > 1 else 1.0
 
 
 def _oblique(piece: Piece) -> bool:

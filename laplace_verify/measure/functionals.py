@@ -13,6 +13,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from laplace_verify.arrays import Array
+from laplace_verify.measure.norms import conducted
 
 if TYPE_CHECKING:
     from laplace_verify.measure.exact import Exact
@@ -64,7 +65,8 @@ class ExactFluxes:
         gradient = self._exact.gradients(points)
         if not np.isfinite(gradient).all():
             return None
-        density = ((gradient @ problem.tensor) * normals).sum(axis=1)
+        density = (conducted(problem, points)(gradient) * normals).sum(axis=1)
+        weights = weights * problem.metric(points)
         scale = float(weights @ np.abs(density))
         for quantity in self._case.quantities.values():
             if quantity.kind == "flux" and quantity.where == name:
@@ -91,9 +93,11 @@ def measure_functionals(
     """
     result = Functionals()
     for piece in case.problem.pieces:
+        if piece.kind == "axis":
+            continue  # no boundary of space
         _trace(result, piece, answer, case, exact, h, shift)
     for name, flux in (answer.fluxes or {}).items():
-        known = fluxes.of(name)
+        known = None if case.problem.pieces[name].kind == "axis" else fluxes.of(name)
         if known is not None:
             result.add(f"flux:{name}", flux - known[0], max(abs(known[0]), known[1]))
     for name, value in (answer.quantities or {}).items():
@@ -128,8 +132,9 @@ def _trace(
     if gradients is None:
         return
     exact_gradients = exact.gradients(points)
-    density = ((gradients @ case.problem.tensor) * normals).sum(axis=1)
-    exact_density = ((exact_gradients @ case.problem.tensor) * normals).sum(axis=1)
+    current = conducted(case.problem, points)
+    density = (current(gradients) * normals).sum(axis=1)
+    exact_density = (current(exact_gradients) * normals).sum(axis=1)
     usable = np.isfinite(density) & np.isfinite(exact_density)
     if usable.mean() > 0.5:
         w = weights[usable]
@@ -143,9 +148,12 @@ def _trace_points(piece: Piece, answer: Answer, case: Case, h: float) -> tuple[A
         points = answer.points[piece.contains(answer.points)]
         count = max(len(points), 1)
         normals = piece.normals(points) if len(points) else points
-        return points, normals, np.full(len(points), piece.measure / count)
+        return points, normals, np.full(len(points), piece.measure / count) * case.problem.metric(points)
     if case.problem.dim == 1:
-        return piece.quadrature(TRACE_ORDER)
+        points, normals, weights = piece.quadrature(TRACE_ORDER)
+        return points, normals, weights * case.problem.metric(points)
     surface = case.problem.dim - 1
     coarsest = (piece.measure * 3**surface / TRACE_POINTS) ** (1 / surface)
-    return piece.quadrature(TRACE_ORDER, case.regularity.singular_points, max(h, coarsest))
+    cell = max(h, coarsest)
+    points, normals, weights = piece.quadrature(TRACE_ORDER, case.regularity.singular_points, cell)
+    return points, normals, weights * case.problem.metric(points)

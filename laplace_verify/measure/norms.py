@@ -2,13 +2,15 @@
 
 With e = u_h - u: max |e|, L1 = int |e|, L2 = (int e^2)^(1/2), H1-semi = (int |grad e|^2)^(1/2), energy =
 (int grad e . K grad e)^(1/2), each absolute and divided by the same norm of u over the same points. A
-callable is integrated over the shape, a nodal answer with cells element by element with those cells' own
+callable is integrated over the shape (integrals are those of space: with the weight 2 pi r or 4 pi r^2 in
+coordinates (r, z) or r), a nodal answer with cells element by element with those cells' own
 shape functions, a bare cloud at its own points with its weights, or equal ones. A pure Neumann answer is
 aligned first: the weighted mean of e is taken out, and kept as the error of the level.
 """
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
@@ -23,7 +25,7 @@ if TYPE_CHECKING:
     from laplace_verify.problems import Problem
     from laplace_verify.solvers import Answer
 
-__all__ = ["Measured", "Sample", "measure_norms", "sample_answer", "sharpened"]
+__all__ = ["Measured", "Sample", "conducted", "measure_norms", "sample_answer", "sharpened"]
 
 PEAKS, PER_PEAK = 40, 25
 RADII = (0.5, 0.125)  # of h
@@ -68,21 +70,28 @@ def sample_answer(
     generator: np.random.Generator,
     max_points: int,
 ) -> Sample:
-    """Evaluate an answer where it is to be measured."""
+    """Evaluate an answer where it is to be measured, with weights that are measures of space."""
     if answer.kind == "callable":
-        return _sample_callable(answer, problem, singular, h, generator, max_points)
+        return in_space(_sample_callable(answer, problem, singular, h, generator, max_points), problem)
     if answer.kind == "cells":
-        return _sample_cells(answer, generator)
+        return in_space(_sample_cells(answer, generator), problem)
     points, values = answer.points, answer.values
     if points is None or values is None:
         raise AnswerError("points and values, or evaluate, must be given: this answer has neither")
-    weights = answer.weights
+    weights = answer.weights  # a solver's own are measures of space: in (r, z) the volumes of rings
     if weights is None:
-        weights = np.full(len(points), problem.shape.measure / len(points))
+        weights = np.full(len(points), problem.shape.measure / len(points)) * problem.metric(points)
     return Sample(
         points=points, weights=weights, values=values, gradients=answer.gradient_at(points),
         extra=points[:0], extra_values=values[:0],
     )  # fmt: skip
+
+
+def in_space(sample: Sample, problem: Problem) -> Sample:
+    """Return a sample whose weights, measures of the shape in (r, z) or r, are measures of space."""
+    if problem.coordinates == "cartesian":
+        return sample
+    return replace(sample, weights=sample.weights * problem.metric(sample.points))
 
 
 def sharpened(
@@ -183,14 +192,25 @@ def _add_gradient_norms(
         return
     gradient, weights = gradients[usable], sample.weights[usable]
     error = sample.gradients[usable] - gradient
-    tensor = problem.tensor
+    current = conducted(problem, sample.points[usable])
     # a constant has no gradient to be relative to: values per length take its place
     extent, largest = problem.shape.extent, float(np.max(np.abs(exact.values(sample.points)[clear])))
     per_length = (largest or 1.0) / extent * float(np.sqrt(weights.sum()))
-    for name, form in (("H1-semi", np.eye(problem.dim)), ("energy", tensor)):
-        norms = [float(np.sqrt(weights @ ((g @ form) * g).sum(axis=1))) for g in (error, gradient)]
+    unit = np.full_like(gradient, 1.0 / np.sqrt(problem.dim))
+    for name, through in (("H1-semi", lambda g: g), ("energy", current)):
+        norms = [float(np.sqrt(weights @ (through(g) * g).sum(axis=1))) for g in (error, gradient)]
+        mean = float(np.sqrt(weights @ (through(unit) * unit).sum(axis=1) / weights.sum()))
         errors[name] = norms[0]
-        relative[name] = norms[0] / (norms[1] or per_length * float(np.sqrt(np.trace(form) / problem.dim)))
+        relative[name] = norms[0] / (norms[1] or per_length * mean)
+
+
+def conducted(problem: Problem, points: Array) -> Callable[[Array], Array]:
+    """Return the function that turns gradients (n, d) at the given points into K grad u (n, d)."""
+    if problem.interfaces:
+        k = problem.conductivity_at(points)[:, np.newaxis]
+        return lambda gradients: k * gradients
+    tensor = problem.tensor
+    return lambda gradients: gradients @ tensor
 
 
 def _sample_callable(
@@ -203,7 +223,7 @@ def _sample_callable(
 ) -> Sample:
     """Evaluate a callable at quadrature and scattered points; NaN near curved pieces is outside its mesh."""
     shape = problem.shape
-    points, weights = quadrature_points(shape, singular, h, max_points)
+    points, weights = quadrature_points(shape, singular, h, max_points, problem.quadrature)
     extra = scattered_points(shape, singular, h, generator, max_points)
     values, extra_values = answer.value_at(points), answer.value_at(extra)
     inside = _inside_mesh(points, values, problem, h, "evaluate")

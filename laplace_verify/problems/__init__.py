@@ -2,8 +2,9 @@
 
 from laplace_verify.problems.case import Case, case
 from laplace_verify.problems.conditions import Condition, dirichlet, neumann, robin
+from laplace_verify.problems.materials import Materials, inclusion, layers, sectors
 from laplace_verify.problems.pieces import MoveLog, Piece, Pieces
-from laplace_verify.problems.problem import Problem, Region, problem
+from laplace_verify.problems.problem import Problem, problem
 from laplace_verify.problems.quantities import (
     Quantity,
     QuantitySpec,
@@ -12,14 +13,18 @@ from laplace_verify.problems.quantities import (
     value_at,
 )
 from laplace_verify.problems.random_cases import random_case
+from laplace_verify.problems.regions import Interface, Region
 from laplace_verify.problems.regularity import Regularity
 from laplace_verify.problems.schema import case_from_json, case_to_json
 from laplace_verify.problems.stored import StoredValue
+from laplace_verify.problems.transmission import transmission_exponent
 from laplace_verify.problems.units import Units
 
 __all__ = [
     "Case",
     "Condition",
+    "Interface",
+    "Materials",
     "MoveLog",
     "Piece",
     "Pieces",
@@ -36,9 +41,13 @@ __all__ = [
     "dirichlet",
     "energy_of_solution",
     "flux_through",
+    "inclusion",
+    "layers",
     "neumann",
     "problem",
     "random_case",
     "robin",
+    "sectors",
+    "transmission_exponent",
     "value_at",
 ]

@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
-from typing import Any
+from collections.abc import Collection, Mapping
+from typing import Any, TypeAlias
 
 import numpy as np
 
@@ -11,9 +11,13 @@ from laplace_verify.arrays import Array, frozen
 from laplace_verify.errors import ProblemError, nearest_names
 from laplace_verify.geometry import Shape
 from laplace_verify.problems.conditions import KINDS, Condition
+from laplace_verify.problems.coordinates import Coordinates
 from laplace_verify.problems.data import PointFunction
+from laplace_verify.problems.materials import Materials
 
-__all__ = ["alpha_of", "as_conductivity", "as_tensor", "by_piece", "is_shape"]
+__all__ = ["Conductivity", "alpha_of", "as_conductivity", "as_tensor", "by_piece", "is_shape"]
+
+Conductivity: TypeAlias = float | Array | Materials
 
 SYMMETRY = 1e-12  # relative
 LARGEST_RATIO = 1e12  # of eigenvalues: beyond it K is singular in float64
@@ -34,8 +38,12 @@ def is_shape(shape: Any) -> Shape:
     return shape
 
 
-def as_conductivity(conductivity: Any, dim: int) -> float | Array:
+def as_conductivity(
+    conductivity: Any, dim: int, coordinates: Coordinates = "cartesian"
+) -> Conductivity:
     """Return a positive number as float, a symmetric positive definite (d, d) matrix as a frozen array.
+
+    What `layers`, `inclusion` or `sectors` made is returned as it is.
 
     Raises
     ------
@@ -49,6 +57,18 @@ def as_conductivity(conductivity: Any, dim: int) -> float | Array:
     """
     if isinstance(conductivity, bool | str):
         raise ProblemError(f"conductivity must be a positive number or a matrix, got {conductivity!r}")
+    if isinstance(conductivity, Mapping):
+        raise ProblemError(
+            "a conductivity that differs from region to region is made by layers(...), inclusion(...) or "
+            f"sectors(...), which know where each region lies; got a table {dict(conductivity)!r}"
+        )
+    if isinstance(conductivity, Materials):
+        if conductivity.partition.dim != dim:
+            raise ProblemError(
+                f"the regions are {conductivity.partition.dim}-D, the shape is {dim}-D; give direction, centre "
+                f"or apex {dim} coordinates"
+            )
+        return conductivity
     try:
         array = np.asarray(conductivity, dtype=np.float64)
     except (TypeError, ValueError) as cause:
@@ -72,25 +92,45 @@ def as_conductivity(conductivity: Any, dim: int) -> float | Array:
             f"a conductivity tensor must be positive definite, got {array.tolist()} with eigenvalues "
             f"{eigenvalues.tolist()}"
         )
+    if coordinates != "cartesian" and np.any(array != np.diag(np.diag(array))):
+        raise ProblemError(
+            f"in {coordinates} coordinates a conductivity tensor must be diagonal, diag(K_rr, K_zz): a mixed "
+            f"entry would have no direction on the axis; got {array.tolist()}"
+        )
     return frozen(array)
 
 
-def as_tensor(conductivity: float | Array, dim: int) -> Array:
-    """Return the conductivity as a matrix (d, d)."""
+def as_tensor(conductivity: Conductivity, dim: int) -> Array:
+    """Return the conductivity as a matrix (d, d).
+
+    Raises
+    ------
+    ProblemError
+        If it differs from region to region.
+    """
+    if isinstance(conductivity, Materials):
+        raise ProblemError(
+            f"the conductivity differs between the regions {', '.join(conductivity.names)}, so there is no "
+            "single tensor; ask conductivity_at(points) or the regions"
+        )
     if isinstance(conductivity, float):
         return frozen(conductivity * np.eye(dim))
     return conductivity
 
 
-def by_piece(shape: Shape, conditions: Mapping[str, Any]) -> dict[str, Condition]:
+def by_piece(
+    shape: Shape, conditions: Mapping[str, Any], axis: Collection[str] = ()
+) -> dict[str, Condition]:
     """Return the condition of each piece that `conditions` speaks of, in the order of the shape's pieces.
 
-    The name of a piece that was split stands for all its parts, if none of them is named too.
+    The name of a piece that was split stands for all its parts, if none of them is named too. Pieces of the
+    `axis` take no condition.
 
     Raises
     ------
     ProblemError
-        If a name is unknown, names conflict, or a condition is neither a `Condition` nor the name of a kind.
+        If a name is unknown or that of the axis, names conflict, or a condition is neither a `Condition` nor
+        the name of a kind.
     """
     if not isinstance(conditions, Mapping):
         raise ProblemError(f"conditions must be a dict {{piece: condition}}, got {type(conditions).__name__}")
@@ -104,6 +144,11 @@ def by_piece(shape: Shape, conditions: Mapping[str, Any]) -> dict[str, Condition
             known = nearest_names(str(given), [*names, *parts])
             raise ProblemError(f"conditions name an unknown piece {given!r} of {shape.kind!r}; {known}")
         for target in targets:
+            if target in axis:
+                raise ProblemError(
+                    f"piece {target!r} is the axis r = 0: it is no boundary of the body and takes no "
+                    "condition; leave it out"
+                )
             if target in found:
                 raise ProblemError(
                     f"conflicting conditions on piece {target!r}: it is named by {origin[target]!r} and by "

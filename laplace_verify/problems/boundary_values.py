@@ -12,9 +12,13 @@ from laplace_verify.fields import Field, Singularity
 from laplace_verify.geometry import Boundary
 from laplace_verify.problems.conditions import Kind
 from laplace_verify.problems.data import PointFunction
-from laplace_verify.problems.limits import bounded_limit, near, sides_on
+from laplace_verify.problems.limits import bounded_limit, directions_along, near, sides_on
+from laplace_verify.problems.materials import Materials
 
 __all__ = ["BoundaryField", "ExactData"]
+
+INTERFACE = 1e-12  # of the shape's size: closer than this is on an interface
+BESIDE = 1e-6  # of the shape's size: where the regions on both sides are looked up
 
 
 class BoundaryField:
@@ -25,15 +29,28 @@ class BoundaryField:
     field, boundary
         The field and the piece.
     tensor
-        Conductivity, shape (d, d).
+        Conductivity, shape (d, d), or a number per region.
     size
         Size of the shape, which tolerances refer to.
     """
 
     __slots__ = ("_boundary", "_field", "_size", "_tensor")
 
-    def __init__(self, field: Field, boundary: Boundary, tensor: Array, size: float) -> None:
+    def __init__(self, field: Field, boundary: Boundary, tensor: Array | Materials, size: float) -> None:
         self._field, self._boundary, self._tensor, self._size = field, boundary, tensor, size
+
+    def in_region(self, region: str) -> BoundaryField:
+        """Return the field of one region with its conductivity, seen from the piece.
+
+        Raises
+        ------
+        ProblemError
+            If there are regions and none bears the name.
+        """
+        if not isinstance(self._tensor, Materials):
+            return self
+        k = self._tensor.of(region) * np.eye(self._boundary.dim)
+        return BoundaryField(self._field.restricted(region), self._boundary, k, self._size)
 
     def value(self, points: Array) -> Array:
         """Return u (n,) at points (n, d) on the piece; at a jump the limit along the piece."""
@@ -111,8 +128,29 @@ class BoundaryField:
         return self._field.value(points, side=self._sides(points))
 
     def _current(self, points: Array) -> Array:
-        """Return K grad u (n, d)."""
+        """Return K grad u (n, d); on an interface the mean of its limits along the piece."""
+        if isinstance(self._tensor, Materials):
+            return self._pieced(points, self._tensor)
         return self._field.gradient(points, side=self._sides(points)) @ self._tensor
+
+    def _pieced(self, points: Array, materials: Materials) -> Array:
+        """Return K grad u (n, d) region by region."""
+        numbers = materials.partition.locate(points)
+        current = np.empty(points.shape)
+        close = materials.partition.distance(points) <= INTERFACE * self._size
+        for number, name in enumerate(materials.names):
+            mine = (numbers == number) & ~close
+            if mine.any():
+                current[mine] = self.in_region(name)._current(points[mine])
+        for row in np.flatnonzero(close):
+            place = points[row]
+            ways = directions_along(self._boundary, place, self._size)
+            inward = -self._boundary.normals(place[None])[0]
+            beside = place + BESIDE * self._size * np.array(ways or [inward])
+            names = [materials.names[k] for k in materials.partition.locate(beside)]
+            limits = [self.in_region(name)._current(place[None])[0] for name in names]
+            current[row] = np.mean(limits, axis=0)
+        return current
 
     def _flux(self, points: Array) -> Array:
         flux: Array = (self._boundary.normals(points) * self._current(points)).sum(axis=1)
@@ -125,6 +163,9 @@ class BoundaryField:
 
     def _steepness(self, points: Array) -> Array:
         """Return size |grad u| (n,), the change of u over the shape."""
+        if isinstance(self._tensor, Materials):  # |K grad u| over the least K is no smaller than |grad u|
+            bound: Array = self._size * self._flow(points) / min(self._tensor.conductivities)
+            return bound
         gradients = self._field.gradient(points, side=self._sides(points))
         steepness: Array = self._size * np.sqrt((gradients**2).sum(axis=1))
         return steepness
@@ -147,6 +188,10 @@ class ExactData:
 
     def __init__(self, seen: BoundaryField, kind: Kind, alpha: PointFunction | None) -> None:
         self.__seen, self.__kind, self.__alpha = seen, kind, alpha
+
+    def by_region(self, points: Array, region: str) -> Array:
+        """Return f or g (n,) as the limit from one region."""
+        return ExactData(self.__seen.in_region(region), self.__kind, self.__alpha)(points)
 
     def __call__(self, points: Array) -> Array:
         """Return f or g (n,) at points (n, d) on the piece."""

@@ -15,7 +15,14 @@ from laplace_verify.arrays import Array
 from laplace_verify.errors import ProblemError
 from laplace_verify.fields import Field
 from laplace_verify.geometry import Shape
-from laplace_verify.problems.assembly import alpha_of, as_conductivity, as_tensor, by_piece, is_shape
+from laplace_verify.problems.assembly import (
+    Conductivity,
+    alpha_of,
+    as_conductivity,
+    as_tensor,
+    by_piece,
+    is_shape,
+)
 from laplace_verify.problems.boundary_values import BoundaryField, ExactData
 from laplace_verify.problems.compatibility import (
     Constant,
@@ -24,10 +31,13 @@ from laplace_verify.problems.compatibility import (
     default_constant,
     is_pure_neumann,
 )
-from laplace_verify.problems.conditions import Condition, Kind
+from laplace_verify.problems.conditions import Condition, PieceKind
+from laplace_verify.problems.coordinates import AXIS, Coordinates, axis_names, in_coordinates
+from laplace_verify.problems.materials import Materials
 from laplace_verify.problems.pieces import Piece, Pieces
-from laplace_verify.problems.problem import Problem, no_constant
+from laplace_verify.problems.problem import Problem, axis_piece, no_constant, piece_parts
 from laplace_verify.problems.quantities import Quantity, QuantitySpec, evaluate
+from laplace_verify.problems.region_checks import check_regions
 from laplace_verify.problems.regularity import Regularity, derive
 from laplace_verify.problems.scaling import (
     Scale,
@@ -38,7 +48,7 @@ from laplace_verify.problems.scaling import (
     scaled_regularity,
     scaled_shape,
 )
-from laplace_verify.problems.singular_checks import check_singularities
+from laplace_verify.problems.singular_checks import check_axis, check_singularities
 from laplace_verify.problems.solution_checks import check_equation, check_green
 from laplace_verify.problems.stored import StoredValue
 from laplace_verify.problems.units import Units
@@ -96,8 +106,8 @@ class Case:
 
     @property
     def conditions(self) -> frozenset[str]:
-        """The kinds of condition in use."""
-        return frozenset(piece.kind for piece in self.problem.pieces)
+        """The kinds of condition in use; the axis of symmetry has none."""
+        return frozenset(piece.kind for piece in self.problem.pieces) - {AXIS}
 
     def scaled(self, length: Scale = None, value: Scale = None, conductivity: Scale = None) -> Case:
         """Return the dimensional twin: x = length x', u = value u', K = conductivity K'.
@@ -129,7 +139,7 @@ class Case:
         units = Units(length=length_unit, value=value_unit, conductivity=conductivity_unit)
         shape = scaled_shape(self.problem.shape, big)
         exact = high * self.exact.scaled(big)
-        k = as_conductivity(np.asarray(self.problem.conductivity) * good, self.dim)
+        k = _scaled_conductivity(self.problem.conductivity, big, good)
         conditions = {
             name: scaled_condition(name, condition, self.dim, big, good)
             for name, condition in self._conditions.items()
@@ -139,14 +149,15 @@ class Case:
             problem=Problem(
                 name=self.id,
                 shape=shape,
-                pieces=_pieces(shape, conditions, exact, as_tensor(k, self.dim)),
+                pieces=_pieces(shape, conditions, exact, k),
                 conductivity=k,
                 constant=scaled_constant(self.problem.constant, big, high),
+                coordinates=self.problem.coordinates,
             ),
             exact=exact,
             regularity=scaled_regularity(self.regularity, big),
             quantities={
-                name: scaled_quantity(quantity, self.dim, big, high, good, units)
+                name: scaled_quantity(quantity, self.problem.space_dim, big, high, good, units)
                 for name, quantity in self.quantities.items()
             },
             units=units,
@@ -163,7 +174,7 @@ def case(
     shape: Shape,
     conditions: Mapping[str, str | Condition],
     field: Field,
-    conductivity: float | npt.ArrayLike = 1.0,
+    conductivity: float | npt.ArrayLike | Materials = 1.0,
     *,
     id: str = "case",  # noqa: A002  # the public name of the attribute
     title: str = "",
@@ -173,6 +184,7 @@ def case(
     reading: str = "",
     quantities: Mapping[str, QuantitySpec] | None = None,
     constant: Any = None,
+    coordinates: Coordinates = "cartesian",
 ) -> Case:
     """Return the case whose exact solution is `field`; boundary data are derived from it.
 
@@ -186,13 +198,19 @@ def case(
     field
         The exact solution, with div(K grad field) = 0 in the shape; this is checked.
     conductivity
-        K: a positive number or a symmetric positive definite matrix (d, d).
+        K: a positive number, a symmetric positive definite matrix (d, d), or one number per region: what
+        `layers`, `inclusion` or `sectors` made. Value and normal flux must then be continuous across every
+        interface; this is checked.
     id, title, statement, tags, sources, reading
         Words, see `Case`. The id consists of lower-case words joined by hyphens.
     quantities
         Name -> `flux_through`, `value_at` or `energy_of_solution`, evaluated from the exact field.
     constant
         Pure Neumann only: ("mean", v) or ("point", x, v); by default the mean of the exact field.
+    coordinates
+        "cartesian", "axisymmetric", "radial-cylinder" or "radial-sphere", see `coordinates`. Pieces on r = 0
+        are called "axis" and take no condition; `field` is a function of (r, z) or of r, such as
+        `fields.axisymmetric` or `fields.radial` makes.
 
     Raises
     ------
@@ -209,7 +227,8 @@ def case(
     >>> plate.problem.pieces["left"].kind, plate.regularity.solution
     ('neumann', inf)
     """
-    is_shape(shape)
+    shape = in_coordinates(is_shape(shape), coordinates)
+    axis = axis_names(shape, coordinates)
     _check_words(id, field)
     if field.dim != shape.dim:
         hint = (
@@ -218,15 +237,18 @@ def case(
         raise ProblemError(
             f"the field has dimension {field.dim}, the shape {shape!r} has dimension {shape.dim}{hint}"
         )
-    k = as_conductivity(conductivity, shape.dim)
-    tensor = as_tensor(k, shape.dim)
-    complete = _derived(shape, conditions)
-    _check_solution(shape, field, tensor)
-    kinds: dict[str, Kind] = {name: condition.kind for name, condition in complete.items()}
-    regularity = derive(shape, field, kinds, tensor)
-    pieces = _pieces(shape, complete, field, tensor)
+    k = as_conductivity(conductivity, shape.dim, coordinates)
+    tensor = k if isinstance(k, Materials) else as_tensor(k, shape.dim)
+    complete = _derived(shape, conditions, axis)
+    _check_solution(shape, field, tensor, coordinates)
+    kinds: dict[str, PieceKind] = {name: condition.kind for name, condition in complete.items()}
+    for name in axis:
+        kinds[name] = "axis"
+    regularity = derive(shape, field, kinds, tensor, coordinates)
+    pieces = _pieces(shape, complete, field, k)
     for piece in pieces:  # a field that is not defined on the boundary shows here, by the piece's name
-        piece.data(piece.sample(5)[0])
+        if piece.kind != AXIS:
+            piece.data(piece.sample(5)[0])
     return Case(
         id=id,
         title=title,
@@ -239,11 +261,12 @@ def case(
             shape=shape,
             pieces=pieces,
             conductivity=k,
-            constant=_constant(constant, shape, pieces, field, regularity.singular_points),
+            constant=_constant(constant, shape, pieces, field, regularity.singular_points, coordinates),
+            coordinates=coordinates,
         ),
         exact=field,
         regularity=regularity,
-        quantities=evaluate(quantities or {}, shape, field, tensor, regularity),
+        quantities=evaluate(quantities or {}, shape, field, tensor, regularity, coordinates),
         _conditions=complete,
     )
 
@@ -261,31 +284,63 @@ def _check_words(id_: str, field: Any) -> None:
         )
 
 
-def _derived(shape: Shape, conditions: Mapping[str, str | Condition]) -> dict[str, Condition]:
-    """Return the condition of every piece, refusing data."""
-    given = by_piece(shape, conditions)
+def _derived(
+    shape: Shape, conditions: Mapping[str, str | Condition], axis: frozenset[str]
+) -> dict[str, Condition]:
+    """Return the condition of every piece off the axis, refusing data."""
+    given = by_piece(shape, conditions, axis)
     for name, condition in given.items():
         if condition.data is not None:
             raise ProblemError(
                 f"piece {name!r}: data of a case are derived from its exact field; give the kind alone "
                 f"({'robin(alpha)' if condition.kind == 'robin' else repr(condition.kind)}), or use problem()"
             )
-    return {piece.name: given.get(piece.name, Condition(kind="dirichlet")) for piece in shape.pieces}
+    return {
+        piece.name: given.get(piece.name, Condition(kind="dirichlet"))
+        for piece in shape.pieces
+        if piece.name not in axis
+    }
 
 
-def _check_solution(shape: Shape, field: Field, tensor: Array) -> None:
+def _scaled_conductivity(conductivity: Conductivity, length: float, factor: float) -> Conductivity:
+    """Return the conductivity of a dimensional twin."""
+    if isinstance(conductivity, Materials):
+        return conductivity.scaled(length, factor)
+    array = np.asarray(conductivity)
+    return as_conductivity(array * factor, len(array) if array.ndim else 1)
+
+
+def _check_solution(
+    shape: Shape, field: Field, tensor: Array | Materials, coordinates: Coordinates
+) -> None:
     """Refuse a field that is no solution of div(K grad u) = 0 in the shape."""
+    check_axis(shape, field, axis_names(shape, coordinates))
+    if isinstance(tensor, Materials):
+        check_regions(shape, field, tensor, coordinates)
+        check_singularities(shape, field, tensor.partition.meeting)
+        return
+    if field.regions:
+        raise ProblemError(
+            f"the field is pieced together from the regions {', '.join(field.regions)}; give a conductivity "
+            "with the same regions"
+        )
     check_singularities(shape, field)
-    check_equation(shape, field, tensor)
+    check_equation(shape, field, tensor, coordinates)
     if field.opaque:  # a closed form declares its singular points; of a user's function nothing is known
         singular = np.array([s.point for s in field.singularities]).reshape(-1, shape.dim)
-        check_green(shape, field, tensor, singular)
+        check_green(shape, field, tensor, singular, coordinates)
 
 
-def _pieces(shape: Shape, conditions: Mapping[str, Condition], field: Field, tensor: Array) -> Pieces:
+def _pieces(
+    shape: Shape, conditions: Mapping[str, Condition], field: Field, conductivity: Conductivity
+) -> Pieces:
     """Return the pieces with data derived from the field."""
     pieces = []
+    tensor = conductivity if isinstance(conductivity, Materials) else as_tensor(conductivity, shape.dim)
     for boundary in shape.pieces:
+        if boundary.name not in conditions:
+            pieces.append(axis_piece(shape, boundary.name))
+            continue
         condition = conditions[boundary.name]
         alpha = alpha_of(boundary.name, condition, shape.dim)
         seen = BoundaryField(field, boundary, tensor, shape.size)
@@ -294,6 +349,7 @@ def _pieces(shape: Shape, conditions: Mapping[str, Condition], field: Field, ten
                 boundary=boundary,
                 kind=condition.kind,
                 shape_size=shape.size,
+                parts=piece_parts(shape, boundary.name, conductivity),
                 _data=ExactData(seen, condition.kind, alpha),
                 _alpha=alpha,
             )
@@ -301,13 +357,15 @@ def _pieces(shape: Shape, conditions: Mapping[str, Condition], field: Field, ten
     return Pieces(pieces)
 
 
-def _constant(given: Any, shape: Shape, pieces: Pieces, field: Field, singular: Array) -> Constant | None:
+def _constant(
+    given: Any, shape: Shape, pieces: Pieces, field: Field, singular: Array, coordinates: Coordinates
+) -> Constant | None:
     """Return the constant of a pure Neumann case, by default the mean of the exact field."""
     if not is_pure_neumann(pieces):
         no_constant(given)
         return None
     if given is None:
-        return default_constant(shape, field, singular)
+        return default_constant(shape, field, singular, coordinates)
     constant = as_constant(given, shape)
-    check_constant(constant, shape, field, singular)
+    check_constant(constant, shape, field, singular, coordinates)
     return constant

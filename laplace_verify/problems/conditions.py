@@ -21,10 +21,11 @@ import numpy as np
 from laplace_verify.errors import ProblemError, nearest_names
 from laplace_verify.fields import Field
 
-__all__ = ["KINDS", "Condition", "Data", "Kind", "dirichlet", "neumann", "robin"]
+__all__ = ["KINDS", "Condition", "Data", "Kind", "PieceKind", "dirichlet", "neumann", "robin"]
 
 Data: TypeAlias = float | str | Field | Callable[..., Any]
 Kind: TypeAlias = Literal["dirichlet", "neumann", "robin"]
+PieceKind: TypeAlias = Kind | Literal["axis"]  # the axis r = 0 is no boundary of space
 KINDS: tuple[Kind, ...] = ("dirichlet", "neumann", "robin")
 
 

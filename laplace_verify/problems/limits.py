@@ -21,7 +21,7 @@ from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.fields import Cut, Field, Singularity
 from laplace_verify.geometry import Boundary
 
-__all__ = ["bounded_limit", "directions_along", "near", "sides_on"]
+__all__ = ["bounded_limit", "directions_along", "limits_at_edge", "near", "sides_on"]
 
 AT_POINT = 1e-12  # of the shape's size: closer than this is "at the point"
 OFFSET = 1e-7  # delta

@@ -12,7 +12,7 @@ import numpy.typing as npt
 from laplace_verify.arrays import Array, BoolArray, as_points
 from laplace_verify.errors import ProblemError, nearest_names
 from laplace_verify.geometry import Boundary
-from laplace_verify.problems.conditions import Kind
+from laplace_verify.problems.conditions import PieceKind
 from laplace_verify.problems.data import PointFunction
 
 __all__ = ["MoveLog", "Piece", "Pieces"]
@@ -47,16 +47,20 @@ class Piece:
     boundary
         Its geometry.
     kind
-        "dirichlet" (u = f), "neumann" (n . K grad u = g) or "robin" (n . K grad u + alpha u = g).
+        "dirichlet" (u = f), "neumann" (n . K grad u = g), "robin" (n . K grad u + alpha u = g), or "axis": no
+        boundary of space at all, without condition and data.
     partner, shift
         None; they belong to periodic pieces.
+    parts
+        Its parts between the interfaces of regions that cross it; () if none does.
     """
 
     boundary: Boundary
-    kind: Kind
+    kind: PieceKind
     shape_size: float
     partner: str | None = None
     shift: tuple[float, ...] | None = None
+    parts: tuple[Boundary, ...] = ()
     _data: Callable[[Array], Array] = field(repr=False)
     _alpha: PointFunction | None = field(default=None, repr=False)
     _log: MoveLog | None = field(default=None, repr=False)
@@ -81,12 +85,14 @@ class Piece:
         """End points (2, d) of a curve; (0, d) for closed curves and surfaces."""
         return self.boundary.ends
 
-    def data(self, points: npt.ArrayLike) -> Array:
+    def data(self, points: npt.ArrayLike, *, region: str | None = None) -> Array:
         """Return the boundary data (n,) at points (n, d): u, n . K grad u, or n . K grad u + alpha u.
 
         Points are first moved onto the piece, so that the data are always those of the true boundary: by at
         most 1e-9 of the shape's size on flat pieces and 0.1 of it on curved ones. Where data jump, at an
-        end of the piece, the value is the limit along this piece.
+        end of the piece, the value is the limit along this piece. Where an interface between regions of
+        different conductivity meets the piece, a flux has two limits: `region` names the one that is meant,
+        without it their mean is returned.
 
         Raises
         ------
@@ -94,7 +100,12 @@ class Piece:
             If a point is farther off the piece than that (piece, point and distance are named), or the data
             are infinite there.
         """
-        return self._data(self._moved(points))
+        self._not_the_axis("data")
+        if region is None:
+            return self._data(self._moved(points))
+        by_region = getattr(self._data, "by_region", None)
+        moved = self._moved(points)
+        return self._data(moved) if by_region is None else by_region(moved, region)
 
     def alpha(self, points: npt.ArrayLike) -> Array:
         """Return Robin's alpha >= 0, shape (n,), at points (n, d), moved onto the piece as in `data`.
@@ -106,6 +117,7 @@ class Piece:
         ProblemError
             If the piece is a Dirichlet piece, a point is off the piece, or alpha is negative there.
         """
+        self._not_the_axis("alpha")
         if self.kind == "dirichlet":
             raise ProblemError(f"piece {self.name!r} has a dirichlet condition; alpha belongs to Robin's")
         moved = self._moved(points)
@@ -136,12 +148,27 @@ class Piece:
     def quadrature(
         self, order: int, singular: npt.ArrayLike = (), cell: float | None = None
     ) -> tuple[Array, Array, Array]:
-        """Return points, outward unit normals and weights, see `geometry.Boundary.quadrature`."""
-        return self.boundary.quadrature(order, singular, cell)
+        """Return points, outward unit normals and weights, see `geometry.Boundary.quadrature`.
+
+        Panels end where an interface crosses the piece.
+        """
+        if not self.parts:
+            return self.boundary.quadrature(order, singular, cell)
+        rules = [part.quadrature(order, singular, cell) for part in self.parts]
+        points, normals, weights = (np.concatenate(column) for column in zip(*rules, strict=True))
+        return points, normals, weights
 
     def watched(self, log: MoveLog) -> Piece:
         """Return the same piece, with every move recorded in `log`."""
         return replace(self, _log=log)
+
+    def _not_the_axis(self, what: str) -> None:
+        """Refuse to speak of data on the axis."""
+        if self.kind == "axis":
+            raise ProblemError(
+                f"piece {self.name!r} is the axis r = 0: it is no boundary of the body and has no {what}; "
+                "there du/dr = 0 by symmetry, and r times the flux vanishes. Pass over pieces of kind 'axis'"
+            )
 
     def _moved(self, points: npt.ArrayLike) -> Array:
         """Return the points moved onto the piece."""
@@ -189,6 +216,11 @@ class Pieces(tuple[Piece, ...]):
             if piece.name == key:
                 return piece
         raise ProblemError(f"no piece is named {key!r}; {nearest_names(key, self.names)}")
+
+
+def no_data(points: Array) -> Array:
+    """Stand in for the data of the axis, which has none."""
+    raise ProblemError(f"the axis r = 0 has no data, not at any of {len(points)} points")
 
 
 def checked_alpha(alpha: PointFunction, points: Array) -> Array:

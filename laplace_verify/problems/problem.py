@@ -7,48 +7,37 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
-from typing import Any, Literal
+from typing import Any
 
 import numpy as np
 import numpy.typing as npt
 
-from laplace_verify.arrays import Array, BoolArray, as_points
+from laplace_verify.arrays import Array, as_points
 from laplace_verify.errors import ProblemError, nearest_names
-from laplace_verify.geometry import Shape
-from laplace_verify.problems.assembly import alpha_of, as_conductivity, as_tensor, by_piece, is_shape
+from laplace_verify.geometry import Boundary, Shape
+from laplace_verify.problems.assembly import (
+    Conductivity,
+    alpha_of,
+    as_conductivity,
+    as_tensor,
+    by_piece,
+    is_shape,
+)
 from laplace_verify.problems.compatibility import Constant, as_constant, check_balance, is_pure_neumann
 from laplace_verify.problems.conditions import Condition
+from laplace_verify.problems.coordinates import (
+    Coordinates,
+    axis_names,
+    in_coordinates,
+    metric,
+    space_dim,
+)
 from laplace_verify.problems.data import PointFunction
-from laplace_verify.problems.pieces import MoveLog, Piece, Pieces
+from laplace_verify.problems.materials import Materials
+from laplace_verify.problems.pieces import MoveLog, Piece, Pieces, no_data
+from laplace_verify.problems.regions import Interface, Region, interfaces_of, parts_of, regions_of
 
 __all__ = ["Problem", "Region", "problem"]
-
-
-@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
-class Region:
-    """A part of the shape with its own conductivity; a homogeneous problem has one, the whole shape.
-
-    Attributes
-    ----------
-    name
-        Its name.
-    shape
-        The part.
-    conductivity
-        A positive number, or a symmetric positive definite matrix (d, d).
-    """
-
-    name: str
-    shape: Shape
-    conductivity: float | Array
-
-    def contains(self, points: npt.ArrayLike) -> BoolArray:
-        """Return which points (n, d) lie in the closed region."""
-        return self.shape.contains(points)
-
-    def outline(self, n: int) -> dict[str, Array]:
-        """Return about n points along each piece of the region's boundary: {name: (n, d)}."""
-        return self.shape.outline(n)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False, repr=False)
@@ -64,11 +53,13 @@ class Problem:
     pieces
         The pieces of the boundary with kind and data, by name or position.
     conductivity
-        K: a positive number, or a symmetric positive definite matrix (d, d).
+        K: a positive number, a symmetric positive definite matrix (d, d), or `Materials`: one number per
+        region.
     constant
         For pure Neumann problems ("mean", v) or ("point", x, v), which of the solutions is meant; else None.
     coordinates
-        "cartesian".
+        "cartesian", "axisymmetric" (points are (r, z)), "radial-cylinder" or "radial-sphere" (points are r).
+        Weights of `quadrature` and of pieces are those of the shape; times `metric` they are those of space.
     at_infinity
         None: the shape is bounded.
     """
@@ -76,25 +67,53 @@ class Problem:
     name: str
     shape: Shape
     pieces: Pieces
-    conductivity: float | Array
+    conductivity: Conductivity
     constant: Constant | None = None
-    coordinates: Literal["cartesian"] = "cartesian"
+    coordinates: Coordinates = "cartesian"
     at_infinity: None = None
 
     @property
     def dim(self) -> int:
-        """Number of space dimensions."""
+        """Number of coordinates of a point."""
         return self.shape.dim
 
     @property
+    def space_dim(self) -> int:
+        """Number of dimensions of space: 3 for points (r, z), 2 or 3 for points r."""
+        return space_dim(self.coordinates, self.dim)
+
+    def metric(self, points: npt.ArrayLike) -> Array:
+        """Return the measure of space per measure of the shape at points (n, d): 1, 2 pi r or 4 pi r^2."""
+        return metric(self.coordinates, as_points(points, self.dim, error=ProblemError))
+
+    @property
     def tensor(self) -> Array:
-        """The conductivity as a matrix (d, d), whatever its form."""
+        """The conductivity as a matrix (d, d), number or matrix; ProblemError if it differs by region."""
         return as_tensor(self.conductivity, self.dim)
 
     @property
     def regions(self) -> tuple[Region, ...]:
-        """The regions of constant conductivity: one, called "body"."""
+        """The regions of constant conductivity, which tile the shape: if there is only one, it is "body"."""
+        if isinstance(self.conductivity, Materials):
+            return regions_of(self.shape, self.conductivity)
         return (Region(name="body", shape=self.shape, conductivity=self.conductivity),)
+
+    @property
+    def interfaces(self) -> tuple[Interface, ...]:
+        """Where regions meet; () if the problem is homogeneous."""
+        if isinstance(self.conductivity, Materials):
+            return interfaces_of(self.shape, self.conductivity.partition)
+        return ()
+
+    def quadrature(
+        self, order: int, singular: npt.ArrayLike = (), cell: float | None = None
+    ) -> tuple[Array, Array]:
+        """Return points (n, d) and weights (n,) over the shape, with no patch across an interface.
+
+        Arguments as in `geometry.Shape.quadrature`.
+        """
+        rules = [region.quadrature(order, singular, cell) for region in self.regions]
+        return np.concatenate([points for points, _ in rules]), np.concatenate([w for _, w in rules])
 
     def conductivity_at(self, points: npt.ArrayLike, region: str | None = None) -> Array:
         """Return K at points (n, d): shape (n,) if it is a number, (n, d, d) if it is a matrix.
@@ -104,13 +123,15 @@ class Problem:
         points
             Points of the shape, shape (n, d).
         region
-            Name of the region a point on an interface is meant to belong to.
+            Name of the region a point on an interface is meant to belong to; without it, one of the two.
 
         Raises
         ------
         ProblemError
-            If the region is unknown or the points have the wrong shape.
+            If the region is unknown, a point does not lie in it, or the points have the wrong shape.
         """
+        if isinstance(self.conductivity, Materials):
+            return self.conductivity.at(points, region)
         names = [known.name for known in self.regions]
         if region is not None and region not in names:
             raise ProblemError(f"no region is named {region!r}; {nearest_names(region, names)}")
@@ -127,16 +148,21 @@ class Problem:
     def __repr__(self) -> str:
         """Show name, shape, conditions and conductivity."""
         kinds = {piece.name: piece.kind for piece in self.pieces}
-        k = self.conductivity if isinstance(self.conductivity, float) else self.conductivity.tolist()
+        k: Any = self.conductivity
+        if isinstance(k, Materials):
+            k = dict(zip(k.names, k.conductivities, strict=True))
+        elif not isinstance(k, float):
+            k = k.tolist()
         return f"Problem({self.name!r}, {self.shape!r}, {kinds}, conductivity={k})"
 
 
 def problem(
     shape: Shape,
     conditions: Mapping[str, Condition],
-    conductivity: float | npt.ArrayLike = 1.0,
+    conductivity: float | npt.ArrayLike | Materials = 1.0,
     *,
     constant: Any = None,
+    coordinates: Coordinates = "cartesian",
     name: str = "problem",
 ) -> Problem:
     """Return the problem div(K grad u) = 0 with given data on every piece.
@@ -148,9 +174,13 @@ def problem(
     conditions
         A condition with data for every piece; the name of a split piece stands for its parts.
     conductivity
-        A positive number or a symmetric positive definite matrix (d, d).
+        A positive number, a symmetric positive definite matrix (d, d), or one number per region: what
+        `layers`, `inclusion` or `sectors` made.
     constant
         Pure Neumann only: ("mean", v) or ("point", x, v); the default is ("mean", 0).
+    coordinates
+        "cartesian", "axisymmetric", "radial-cylinder" or "radial-sphere", see `coordinates`. Pieces on r = 0
+        are called "axis" and take no condition.
     name
         A name for messages.
 
@@ -169,20 +199,41 @@ def problem(
     >>> duct.pieces["right"].data([2.0]).tolist()
     [-3.0]
     """
-    is_shape(shape)
-    k = as_conductivity(conductivity, shape.dim)
-    given = by_piece(shape, conditions)
-    missing = [piece.name for piece in shape.pieces if piece.name not in given]
+    shape = in_coordinates(is_shape(shape), coordinates)
+    axis = axis_names(shape, coordinates)
+    k = as_conductivity(conductivity, shape.dim, coordinates)
+    given = by_piece(shape, conditions, axis)
+    missing = [piece.name for piece in shape.pieces if piece.name not in given and piece.name not in axis]
     if missing:
         raise ProblemError(f"every piece needs a condition; missing: {', '.join(missing)}")
-    pieces = Pieces(_piece(shape, name, condition) for name, condition in given.items())
+    pieces = Pieces(
+        axis_piece(shape, name) if name in axis else _piece(shape, name, given[name], k)
+        for name in shape.pieces.names
+    )
+    if isinstance(k, Materials):
+        regions_of(shape, k)  # refuses regions that do not fit
     if is_pure_neumann(pieces):
-        check_balance(shape, pieces)
+        check_balance(shape, pieces, coordinates)
         fixed: Constant | None = as_constant(("mean", 0.0) if constant is None else constant, shape)
     else:
         no_constant(constant)
         fixed = None
-    return Problem(name=name, shape=shape, pieces=pieces, conductivity=k, constant=fixed)
+    return Problem(
+        name=name, shape=shape, pieces=pieces, conductivity=k, constant=fixed, coordinates=coordinates
+    )
+
+
+def axis_piece(shape: Shape, name: str) -> Piece:
+    """Return a piece on r = 0, where space has no boundary."""
+    return Piece(boundary=shape.pieces[name], kind="axis", shape_size=shape.size, _data=no_data)
+
+
+def piece_parts(shape: Shape, name: str, conductivity: Conductivity) -> tuple[Boundary, ...]:
+    """Return the parts of a piece between the interfaces that cross it; () if none does."""
+    if not isinstance(conductivity, Materials):
+        return ()
+    parts = parts_of(shape.pieces[name], conductivity.partition)
+    return tuple(parts) if len(parts) > 1 else ()
 
 
 def no_constant(constant: Any) -> None:
@@ -199,7 +250,7 @@ def no_constant(constant: Any) -> None:
         )
 
 
-def _piece(shape: Shape, name: str, condition: Condition) -> Piece:
+def _piece(shape: Shape, name: str, condition: Condition, conductivity: Conductivity) -> Piece:
     """Return the piece with its given data."""
     if condition.data is None:
         raise ProblemError(
@@ -210,6 +261,7 @@ def _piece(shape: Shape, name: str, condition: Condition) -> Piece:
         boundary=shape.pieces[name],
         kind=condition.kind,
         shape_size=shape.size,
+        parts=piece_parts(shape, name, conductivity),
         _data=PointFunction(condition.data, shape.dim, f"data of piece {name!r}"),
         _alpha=alpha_of(name, condition, shape.dim),
     )

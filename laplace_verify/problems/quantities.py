@@ -4,6 +4,9 @@
     value    u at a point
     energy   integral over the shape of grad u . K grad u dx = integral over the boundary of u n . K grad u ds
 
+With coordinates (r, z) or r the integrals are those of space, with the weight `coordinates.metric`; in
+"radial-cylinder" they are per unit length of the cylinder.
+
 Integrals over the boundary are graded towards singular points and done at two orders; the radius is their
 difference plus rounding plus, at a singular point r**e, what the innermost panel of the grading can hold. A
 value given in closed form is checked against the integral and then replaces it.
@@ -25,7 +28,10 @@ from laplace_verify.errors import FieldError, ProblemError, nearest_names
 from laplace_verify.fields import Field, Singularity
 from laplace_verify.geometry import Boundary, Shape
 from laplace_verify.problems.boundary_values import BoundaryField
+from laplace_verify.problems.coordinates import Coordinates, axis_names, metric
 from laplace_verify.problems.limits import near
+from laplace_verify.problems.materials import Materials
+from laplace_verify.problems.regions import parts_of
 from laplace_verify.problems.regularity import Regularity
 
 __all__ = [
@@ -116,7 +122,12 @@ def energy_of_solution(*, unit: str = "", exact: Exact | None = None) -> Quantit
 
 
 def evaluate(
-    specs: Mapping[str, QuantitySpec], shape: Shape, field: Field, tensor: Array, regularity: Regularity
+    specs: Mapping[str, QuantitySpec],
+    shape: Shape,
+    field: Field,
+    tensor: Array | Materials,
+    regularity: Regularity,
+    coordinates: Coordinates = "cartesian",
 ) -> dict[str, Quantity]:
     """Return the wanted quantities of an exact field.
 
@@ -126,13 +137,19 @@ def evaluate(
         If a piece is unknown, a point lies outside, an integral is infinite, or a closed form disagrees.
     """
     return {
-        str(name): _evaluated(str(name), spec, shape, field, tensor, regularity)
+        str(name): _evaluated(str(name), spec, shape, field, tensor, regularity, coordinates)
         for name, spec in specs.items()
     }
 
 
 def _evaluated(
-    name: str, spec: QuantitySpec, shape: Shape, field: Field, tensor: Array, regularity: Regularity
+    name: str,
+    spec: QuantitySpec,
+    shape: Shape,
+    field: Field,
+    tensor: Array | Materials,
+    regularity: Regularity,
+    coordinates: Coordinates,
 ) -> Quantity:
     """Return one quantity."""
     if not isinstance(spec, QuantitySpec):
@@ -140,7 +157,7 @@ def _evaluated(
     if spec.kind == "value":
         value, radius, scale = _value(name, spec, shape, field)
     else:
-        value, radius, scale = _integral(name, spec, shape, field, tensor, regularity)
+        value, radius, scale = _integral(name, spec, shape, field, tensor, regularity, coordinates)
     if spec.exact is not None:
         exact = _number(name, spec.exact)
         if not abs(exact - value) <= CLOSED_FORM * scale + radius:
@@ -186,7 +203,13 @@ def _value(name: str, spec: QuantitySpec, shape: Shape, field: Field) -> tuple[f
 
 
 def _integral(
-    name: str, spec: QuantitySpec, shape: Shape, field: Field, tensor: Array, regularity: Regularity
+    name: str,
+    spec: QuantitySpec,
+    shape: Shape,
+    field: Field,
+    tensor: Array | Materials,
+    regularity: Regularity,
+    coordinates: Coordinates,
 ) -> tuple[float, float, float]:
     """Return a boundary integral, its radius, and the integral of the absolute value."""
     if spec.kind == "flux":
@@ -195,12 +218,16 @@ def _integral(
             raise ProblemError(f"quantity {name!r}: no piece is named {spec.where!r}; {known}")
         pieces = [shape.pieces[str(spec.where)]]
     else:
-        pieces = list(shape.pieces)
+        pieces = [piece for piece in shape.pieces if piece.name not in axis_names(shape, coordinates)]
+    if isinstance(tensor, Materials):
+        pieces = [part for piece in pieces for part in parts_of(piece, tensor.partition)]
     value = radius = total = 0.0
     for piece in pieces:
         seen = BoundaryField(field, piece, tensor, shape.size)
         radius += _hidden(name, spec.kind, piece, seen, field, shape.size)
-        low, high = (_quadrature(spec.kind, piece, seen, order, regularity, shape) for order in ORDERS)
+        low, high = (
+            _quadrature(spec.kind, piece, seen, order, regularity, shape, coordinates) for order in ORDERS
+        )
         value += high[0]
         total += high[1]
         radius += abs(high[0] - low[0]) + 16 * EPS * high[1]
@@ -208,11 +235,18 @@ def _integral(
 
 
 def _quadrature(
-    kind: str, piece: Boundary, seen: BoundaryField, order: int, regularity: Regularity, shape: Shape
+    kind: str,
+    piece: Boundary,
+    seen: BoundaryField,
+    order: int,
+    regularity: Regularity,
+    shape: Shape,
+    coordinates: Coordinates,
 ) -> tuple[float, float]:
     """Return the integrals of the density and of its absolute value over a piece."""
     cell = min(shape.size / 4.0, max(regularity.scale, shape.size / 64.0))
     points, _, weights = piece.quadrature(order, singular=regularity.singular_points, cell=cell)
+    weights = weights * metric(coordinates, points)
     value, flux = seen.densities(points)
     density = value * flux if kind == "energy" else flux
     return math.fsum(weights * density), math.fsum(weights * np.abs(density))

@@ -29,8 +29,12 @@ from scipy.spatial.distance import cdist, pdist
 from laplace_verify.arrays import Array, frozen
 from laplace_verify.fields import Field
 from laplace_verify.geometry import Boundary, Junction, Shape
-from laplace_verify.problems.conditions import Kind
+from laplace_verify.problems.conditions import PieceKind
+from laplace_verify.problems.coordinates import AXIS, Coordinates, cone_exponent
+from laplace_verify.problems.materials import Materials
+from laplace_verify.problems.regions import InterfaceKind, interface_kind, region_lengths
 from laplace_verify.problems.singular_checks import on_shape
+from laplace_verify.problems.transmission import interface_exponent
 
 __all__ = ["Regularity", "derive"]
 
@@ -54,6 +58,9 @@ class Regularity:
         Smallest length that matters; grids coarser than half of it are not judged.
     jumps
         Those of the singular points where boundary data jump, shape (k, d).
+    interface
+        "" in a homogeneous shape. Else the solution is smooth only region by region (`solution` speaks of
+        the regions), and the interfaces are "aligned" (planes along the axes), "oblique" or "curved".
     """
 
     solution: float
@@ -61,6 +68,7 @@ class Regularity:
     singular_points: Array
     scale: float
     jumps: Array
+    interface: InterfaceKind = ""
 
     def __post_init__(self) -> None:
         """Freeze the arrays."""
@@ -68,7 +76,13 @@ class Regularity:
         object.__setattr__(self, "jumps", frozen(self.jumps))
 
 
-def derive(shape: Shape, field: Field, kinds: Mapping[str, Kind], tensor: Array) -> Regularity:
+def derive(
+    shape: Shape,
+    field: Field,
+    kinds: Mapping[str, PieceKind],
+    tensor: Array | Materials,
+    coordinates: Coordinates = "cartesian",
+) -> Regularity:
     """Return the regularity of an exact solution in a shape with a kind of condition on each piece.
 
     Parameters
@@ -76,26 +90,50 @@ def derive(shape: Shape, field: Field, kinds: Mapping[str, Kind], tensor: Array)
     shape, field
         The shape and the exact solution.
     kinds
-        Piece name -> "dirichlet", "neumann" or "robin".
+        Piece name -> "dirichlet", "neumann", "robin" or "axis".
     tensor
-        Conductivity as a matrix (d, d).
+        Conductivity as a matrix (d, d), or a number per region.
+    coordinates
+        In (r, z) or r the least radius is one of the lengths to be resolved.
     """
     singular = on_shape(shape, field)
     places = list(dict.fromkeys(s.point for s in singular))
     jumps = list(dict.fromkeys(s.point for s in singular if s.kind == "jump"))
+    exponents = [s.exponent for s in singular]
+    scale, beyond = _scale(shape, field, places), math.inf
+    interface: InterfaceKind = ""
+    least = float(shape.bounding_box[0][0])
+    if coordinates != "cartesian" and least > COINCIDENT * shape.size:
+        scale = min(scale, least)
+    if isinstance(tensor, Materials):
+        single, interface = np.eye(shape.dim), interface_kind(tensor.partition)
+        beyond = interface_exponent(shape, tensor, kinds)
+        scale = min([scale, *region_lengths(shape, tensor.partition)])
+    else:
+        single = tensor
+    corners = (
+        junction_exponent(shape, j, kinds, single)
+        for j in shape.junctions
+        if not (isinstance(tensor, Materials) and tensor.partition.on_interface(j.points).any())
+    )
     return Regularity(
-        solution=min((s.exponent for s in singular), default=math.inf),
-        domain=min((junction_exponent(shape, j, kinds, tensor) for j in shape.junctions), default=math.inf),
+        solution=min(exponents, default=math.inf),
+        domain=min(beyond, *corners, math.inf),
         singular_points=np.array(places).reshape(-1, shape.dim),
-        scale=_scale(shape, field, places),
+        scale=scale,
         jumps=np.array(jumps).reshape(-1, shape.dim),
+        interface=interface,
     )
 
 
-def junction_exponent(shape: Shape, junction: Junction, kinds: Mapping[str, Kind], tensor: Array) -> float:
+def junction_exponent(
+    shape: Shape, junction: Junction, kinds: Mapping[str, PieceKind], tensor: Array
+) -> float:
     """Return the exponent of a junction, inf where one smooth piece is merely cut in two."""
     first, second = (kinds[name] for name in junction.pieces)
     opening = seen_opening(shape, junction, tensor)
+    if AXIS in (first, second):
+        return math.inf if first == second else cone_exponent(opening, second if first == AXIS else first)
     if (first == "dirichlet") != (second == "dirichlet"):
         return math.pi / (2.0 * opening)
     if first == second and abs(opening - math.pi) < 1e-9:

@@ -3,7 +3,9 @@
     format, format_version    "laplace-verify case", 1
     id, title, statement, reading, tags, sources
     dim, shape                {"kind": "rectangle", "lower": [0, 0], "upper": [1, 1], "split": {"top": [0.4]}}
-    conductivity              a number or a matrix
+    conductivity              a number, a matrix, or {"regions": partition, "values": region -> number}
+    coordinates               "axisymmetric" (points are (r, z)), "radial-cylinder" or "radial-sphere" (points
+                              are r); left out if Cartesian. Pieces called "axis" carry no condition
     conditions                piece -> {"kind": "robin", "alpha": 3.0}
     constant                  null, or {"kind": "mean" | "point", "point": null | [x, y], "value": v}
     exact                     {"formula": text, "basis": why its digits can be believed, "field": parameters}
@@ -29,9 +31,12 @@ import msgspec
 from laplace_verify.errors import LaplaceVerifyError, RecordError
 from laplace_verify.fields import from_spec
 from laplace_verify.geometry import shape_from_spec, shape_to_spec
+from laplace_verify.problems.assembly import Conductivity
 from laplace_verify.problems.case import Case, case
 from laplace_verify.problems.compatibility import Constant
 from laplace_verify.problems.conditions import Condition, Kind
+from laplace_verify.problems.coordinates import Coordinates
+from laplace_verify.problems.materials import Materials
 from laplace_verify.problems.quantities import CLOSED_FORM, Quantity, QuantityKind, QuantitySpec
 from laplace_verify.problems.regularity import Regularity
 from laplace_verify.problems.stored import StoredValue
@@ -61,12 +66,13 @@ class _Exact(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
     field: dict[str, Any]
 
 
-class _Regularity(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
+class _Regularity(msgspec.Struct, kw_only=True, forbid_unknown_fields=True, omit_defaults=True):
     solution: float | None
     domain: float | None
     singular_points: list[list[float]]
     jumps: list[list[float]]
     scale: float
+    interface: Literal["", "aligned", "oblique", "curved"] = ""
 
 
 class _Quantity(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
@@ -91,7 +97,7 @@ class _Stored(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
     basis: str
 
 
-class _CaseFile(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
+class _CaseFile(msgspec.Struct, kw_only=True, forbid_unknown_fields=True, omit_defaults=True):
     format: str
     format_version: int
     id: str
@@ -102,7 +108,8 @@ class _CaseFile(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
     sources: list[str]
     dim: int
     shape: dict[str, Any]
-    conductivity: float | list[list[float]]
+    conductivity: float | list[list[float]] | dict[str, Any]
+    coordinates: Coordinates = "cartesian"
     conditions: dict[str, _Condition]
     constant: _Constant | None
     exact: _Exact
@@ -144,8 +151,9 @@ def case_to_json(case: Case) -> bytes:
         sources=list(case.sources),
         dim=case.dim,
         shape=shape_to_spec(problem.shape),
-        conductivity=k if isinstance(k, float) else k.tolist(),
-        conditions={piece.name: _condition(case, piece.name) for piece in problem.pieces},
+        conductivity=_conductivity_to_file(k),
+        coordinates=problem.coordinates,
+        conditions={p.name: _condition(case, p.name) for p in problem.pieces if p.kind != "axis"},
         constant=_constant_to_file(problem.constant),
         exact=exact,
         regularity=_regularity_to_file(case.regularity),
@@ -192,7 +200,7 @@ def case_from_json(data: bytes, path: str = "case file") -> Case:
             shape,
             conditions,
             field,
-            content.conductivity,
+            _conductivity_from_file(content.conductivity),
             id=content.id,
             title=content.title,
             statement=content.statement,
@@ -201,6 +209,7 @@ def case_from_json(data: bytes, path: str = "case file") -> Case:
             reading=content.reading,
             quantities=specs,
             constant=_constant_from_file(content.constant),
+            coordinates=content.coordinates,
         )
     _check_regularity(path, content.regularity, made.regularity)
     with _named(path, "stored"):
@@ -261,6 +270,16 @@ def _condition(case: Case, name: str) -> _Condition:
     return _Condition(kind=condition.kind, alpha=alpha)
 
 
+def _conductivity_to_file(conductivity: Conductivity) -> float | list[list[float]] | dict[str, Any]:
+    if isinstance(conductivity, Materials):
+        return conductivity.spec()
+    return conductivity if isinstance(conductivity, float) else conductivity.tolist()
+
+
+def _conductivity_from_file(conductivity: float | list[list[float]] | dict[str, Any]) -> Any:
+    return Materials.from_spec(conductivity) if isinstance(conductivity, dict) else conductivity
+
+
 def _constant_to_file(constant: Constant | None) -> _Constant | None:
     if constant is None:
         return None
@@ -284,6 +303,7 @@ def _regularity_to_file(regularity: Regularity) -> _Regularity:
         singular_points=regularity.singular_points.tolist(),
         jumps=regularity.jumps.tolist(),
         scale=_rounded(regularity.scale),
+        interface=regularity.interface,
     )
 
 
@@ -304,7 +324,7 @@ def _check_regularity(path: str, given: _Regularity, derived: Regularity) -> Non
         a, b = getattr(given, name), getattr(expected, name)
         if (a is None) != (b is None) or (a is not None and not abs(a - b) <= AGREEMENT * abs(b)):
             raise RecordError(f"{path}: regularity.{name} is {a}, but shape and exact field give {b}")
-    for name in ("singular_points", "jumps"):
+    for name in ("singular_points", "jumps", "interface"):
         a, b = getattr(given, name), getattr(expected, name)
         if a != b:
             raise RecordError(f"{path}: regularity.{name} is {a}, but the exact field has {b}")

@@ -8,15 +8,16 @@ intervals are halved until one shows a point strictly inside, or they are as sho
 from __future__ import annotations
 
 import math
+from collections.abc import Collection
 
 import numpy as np
 
 from laplace_verify.arrays import Array
-from laplace_verify.errors import ProblemError
+from laplace_verify.errors import FieldError, ProblemError
 from laplace_verify.fields import Cut, Field, Singularity
 from laplace_verify.geometry import Shape
 
-__all__ = ["check_singularities", "on_shape"]
+__all__ = ["check_axis", "check_singularities", "on_shape"]
 
 ON_BOUNDARY = 1e-9  # of the shape's size
 SHORTEST = 1e-4  # of the shape's size: intervals of a cut that are not halved further
@@ -27,8 +28,10 @@ def on_shape(shape: Shape, field: Field) -> tuple[Singularity, ...]:
     return tuple(s for s in field.singularities if shape.contains(np.array([s.point]), tol=ON_BOUNDARY).all())
 
 
-def check_singularities(shape: Shape, field: Field) -> None:
+def check_singularities(shape: Shape, field: Field, meeting: tuple[float, ...] | None = None) -> None:
     """Refuse a field that is singular strictly inside the shape, or infinite on its boundary.
+
+    Where several regions meet, at `meeting`, the value may be singular as a power of the distance.
 
     Raises
     ------
@@ -37,6 +40,8 @@ def check_singularities(shape: Shape, field: Field) -> None:
         interior.
     """
     for singularity in on_shape(shape, field):
+        if meeting is not None and singularity.kind == "power" and singularity.point == meeting:
+            continue
         inside = bool(shape.distance(np.array([singularity.point]))[0] > ON_BOUNDARY * shape.size)
         if inside or singularity.kind in ("log", "pole"):
             raise ProblemError(
@@ -50,6 +55,35 @@ def check_singularities(shape: Shape, field: Field) -> None:
                 f"{field.formula} is no solution in {shape!r}: its branch cut from {cut.start} along "
                 f"{cut.direction} crosses the interior, for example at {crossing}; turn the cut away"
             )
+
+
+def check_axis(shape: Shape, field: Field, axis: Collection[str]) -> None:
+    """Refuse a field that is singular on the axis inside the body: only its tips belong to the boundary.
+
+    Raises
+    ------
+    ProblemError
+        With the singular point.
+    """
+    for name in axis:
+        piece = shape.pieces[name]
+        for s in on_shape(shape, field):
+            place = np.array([s.point])
+            if not piece.contains(place, ON_BOUNDARY).all():
+                continue
+            tip = np.sqrt(((piece.ends - place) ** 2).sum(axis=1)).min() <= ON_BOUNDARY * shape.size
+            if shape.dim == 1 or not tip:
+                raise ProblemError(
+                    f"{field.formula} is no solution in {shape!r}: it has a singular point ({s.kind}) on the "
+                    f"axis, inside the body, at {s.point}; move it outside or keep away from the axis"
+                )
+        try:
+            field.value(piece.point([0.21, 0.5, 0.79]))  # away from the tips
+        except FieldError as cause:
+            raise ProblemError(
+                f"{field.formula} is no solution in {shape!r}: it has no value on the axis, which is inside "
+                f"the body ({cause}); keep away from the axis"
+            ) from cause
 
 
 def _point_inside(shape: Shape, cut: Cut) -> tuple[float, ...] | None:

@@ -12,7 +12,8 @@ There are two, and they see different things:
 
    With rho^2 = (x-p)' K^{-1} (x-p) and D = sqrt(det K): G = -log(rho) / (2 pi D) in the plane and 1 / (4 pi
    D rho) in space; since K K^{-1} = 1, n . K grad G = -n . (x-p) / (2 pi D rho^2) and -n . (x-p) / (4 pi D
-   rho^3). A pole or a jump inside, however far from p, breaks the identity; the equation at points is blind
+   rho^3). In (r, z) G is integrated over a ring (`rings`), and ds carries the factor r. A pole or a jump
+   inside, however far from p, breaks the identity; the equation at points is blind
    to it.
 
 References: Kellogg 1929, Foundations of Potential Theory, ch. VIII (Green's identities), from memory,
@@ -33,8 +34,10 @@ from laplace_verify.errors import FieldError, ProblemError
 from laplace_verify.fields import Field
 from laplace_verify.geometry import Shape
 from laplace_verify.problems.boundary_values import BoundaryField
+from laplace_verify.problems.coordinates import Coordinates, axis_names, curvature_terms, straightened
+from laplace_verify.problems.rings import ring_source
 
-__all__ = ["check_equation", "check_green"]
+__all__ = ["check_at", "check_equation", "check_green"]
 
 SEED = 20411  # of the interior points
 EQUATION = 1e-8  # largest residual, relative to its own terms
@@ -47,7 +50,9 @@ GREEN_POINTS = 4
 Evaluate: TypeAlias = Callable[[Any, list[float]], Any]
 
 
-def check_equation(shape: Shape, field: Field, tensor: Array) -> None:
+def check_equation(
+    shape: Shape, field: Field, tensor: Array, coordinates: Coordinates = "cartesian"
+) -> None:
     """Refuse a field with div(K grad u) != 0 at one of a few seeded interior points.
 
     Raises
@@ -59,24 +64,42 @@ def check_equation(shape: Shape, field: Field, tensor: Array) -> None:
     lambdas, vectors = np.linalg.eigh(tensor)
     for point in _interior(shape, count):
         try:
-            _check_at(field, point, lambdas, vectors, shape.size)
+            check_at(field, point, lambdas, vectors, shape.size, coordinates)
         except FieldError as cause:
             raise ProblemError(f"{field.formula} cannot be evaluated inside {shape!r}: {cause}") from cause
 
 
-def _check_at(field: Field, point: Array, lambdas: Array, vectors: Array, size: float) -> None:
-    """Check the equation, and a user's gradient, at one point."""
+def check_at(
+    field: Field,
+    point: Array,
+    lambdas: Array,
+    vectors: Array,
+    size: float,
+    coordinates: Coordinates = "cartesian",
+) -> None:
+    """Check the equation, and a user's gradient, at one point; K = sum lambda_i q_i q_i', q_i the columns.
+
+    Raises
+    ------
+    ProblemError
+        With the point, the residual and the size of its terms.
+    """
     digits, tolerance = 40, EQUATION
+    curved = curvature_terms(coordinates)
+    near = min(size, float(point[0])) if curved else size  # steps must stay within r > 0
     try:
-        second, first, value = _differences(_precise(field, point), vectors, 1e-9 * size, digits)
+        second, first, value = _differences(_precise(field, point), vectors, 1e-9 * near, digits)
     except FieldError:
         if not field.opaque:
             raise
         # a user's function that takes floats only: coarse differences in float64, Green's identity does the
         # rest
         tolerance = COARSE
-        second, first, value = _differences(_rough(field, point), vectors, 2.0**-7 * size, 16)
+        second, first, value = _differences(_rough(field, point), vectors, 2.0**-7 * near, 16)
     terms = [float(k) * d for k, d in zip(lambdas, second, strict=True)]
+    if curved:  # (K grad u)_r / r, once in (r, z) and about a line, twice about a point
+        flow = ((vectors * lambdas) @ np.array(first))[0]
+        terms.append(curved * float(flow) / float(point[0]))
     scale = sum(abs(t) for t in terms) + float(lambdas.max()) * abs(value) / size**2
     if not abs(sum(terms)) <= tolerance * scale:
         raise ProblemError(
@@ -125,7 +148,13 @@ def _differences(
     return second, first, float(middle)
 
 
-def check_green(shape: Shape, field: Field, tensor: Array, singular: Array) -> None:
+def check_green(
+    shape: Shape,
+    field: Field,
+    tensor: Array,
+    singular: Array,
+    coordinates: Coordinates = "cartesian",
+) -> None:
     """Refuse a field that breaks Green's third identity at one of a few seeded interior points.
 
     Parameters
@@ -143,16 +172,17 @@ def check_green(shape: Shape, field: Field, tensor: Array, singular: Array) -> N
     points = _deepest(shape, GREEN_POINTS)
     expected = field.value(points)
     if shape.dim == 1:
-        ends = np.concatenate([piece.point([0.0]) for piece in shape.pieces])[:, 0]
-        values = field.value(ends)
-        found = np.interp(points[:, 0], np.sort(ends), values[np.argsort(ends)])
+        ends = np.sort(np.concatenate([piece.point([0.0]) for piece in shape.pieces])[:, 0])
+        values = field.value(ends[:, None])
+        inner, outer = (straightened(coordinates, r) for r in (points[:, 0], ends))
+        found = _between_ends(inner, outer, values)
         scale = float(np.abs(values).max())
         _compare(field, points, expected, found, np.zeros(len(points)), scale)
         return
     cell, previous = shape.size / 4.0, None
     change = np.full(len(points), math.inf)
     for _ in range(REFINEMENTS[shape.dim]):
-        found, scale = _green(shape, field, tensor, points, singular, cell)
+        found, scale = _green(shape, field, tensor, points, singular, cell, coordinates)
         change = change if previous is None else np.abs(found - previous)
         if previous is not None and change.max() <= GREEN / 10.0 * scale:
             break
@@ -166,6 +196,14 @@ def check_green(shape: Shape, field: Field, tensor: Array, singular: Array) -> N
             f"singular points"
         )
     _compare(field, points, expected, found, change, scale)
+
+
+def _between_ends(places: Array, ends: Array, values: Array) -> Array:
+    """Return the affine function of the straightened coordinate; a constant if r = 0 belongs to the body."""
+    if not np.isfinite(ends[0]):
+        return np.full(len(places), values[1])
+    found: Array = np.interp(places, ends, values)
+    return found
 
 
 def _compare(field: Field, points: Array, expected: Array, found: Array, change: Array, scale: float) -> None:
@@ -182,17 +220,31 @@ def _compare(field: Field, points: Array, expected: Array, found: Array, change:
 
 
 def _green(
-    shape: Shape, field: Field, tensor: Array, points: Array, singular: Array, cell: float
+    shape: Shape,
+    field: Field,
+    tensor: Array,
+    points: Array,
+    singular: Array,
+    cell: float,
+    coordinates: Coordinates,
 ) -> tuple[Array, float]:
     """Return the boundary integral for each of the points, and the largest |u| met on the boundary."""
     total, largest = np.zeros(len(points)), 0.0
+    axis = axis_names(shape, coordinates)
     root = math.sqrt(float(np.linalg.det(tensor)))
     inverse = np.linalg.inv(tensor)
     for piece in shape.pieces:
+        if piece.name in axis:
+            continue  # no boundary of space
         x, normals, weights = piece.quadrature(11, singular=singular, cell=cell)
         u, flux = BoundaryField(field, piece, tensor, shape.size).densities(x)
         largest = max(largest, float(np.abs(u).max()))
         for row, point in enumerate(points):
+            if coordinates == "axisymmetric":
+                g, slopes = ring_source(x, point, np.diag(tensor))
+                dg = ((normals @ tensor) * slopes).sum(axis=1)
+                total[row] += float((weights * x[:, 0]) @ (g * flux - u * dg))
+                continue
             offset = x - point
             rho = np.sqrt(((offset @ inverse) * offset).sum(axis=1))
             normal_part = (normals * offset).sum(axis=1)

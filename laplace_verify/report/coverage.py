@@ -27,7 +27,7 @@ _ALWAYS_ASKED = (
     *(("dimension", text) for text in ("1-D", "2-D", "3-D")),
     *(("condition", text) for text in ("dirichlet", "neumann", "robin")),
     *(("solution", text) for text in ("smooth", "singular point", "jump of the data")),
-    *(("conductivity", text) for text in ("1", "other scalar", "tensor")),
+    *(("conductivity", text) for text in ("1", "other scalar", "tensor", "regions")),
 )
 
 
@@ -38,7 +38,8 @@ def traits(info: CaseInfo) -> list[tuple[str, str]]:
         smoothness = "singular point"
     conductivity = info.conductivity
     if conductivity != "1":
-        conductivity = "tensor" if "[" in conductivity or "(" in conductivity else "other scalar"
+        tensor = "[" in conductivity or "(" in conductivity
+        conductivity = "tensor" if tensor else "regions" if "," in conductivity else "other scalar"
     return [
         ("dimension", f"{info.dim}-D"),
         ("shape", info.shape),

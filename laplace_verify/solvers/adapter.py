@@ -287,7 +287,7 @@ def _material(problem: Problem) -> str:
     """Return which kind of conductivity the problem has."""
     if len(problem.regions) > 1:  # a homogeneous problem has one region, the whole shape
         return "regions"
-    return "tensor" if np.ndim(problem.conductivity) == 2 else "scalar"
+    return "tensor" if isinstance(problem.conductivity, np.ndarray) else "scalar"
 
 
 def _keywords(function: SolveFunction) -> set[str]:

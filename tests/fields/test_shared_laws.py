@@ -95,6 +95,15 @@ TABLE = {
     "stretched-2d": plane(fields.stretched(fields.exp_trig(2), SHEAR), K=SHEAR),
     "stretched-3d": space(fields.stretched(fields.solid(3, 2), SPATIAL), K=SPATIAL, ulps=16),
     "stretched-wedge": plane(fields.stretched(fields.wedge("2/3"), [[4, 0], [0, 1]]), K=[[4, 0], [0, 1]]),
+    "regions": plane(
+        fields.by_region(
+            fields.partitions.Layers(direction=(3, 4), positions=(4,), names=("near", "far")),
+            [fields.polynomial(3), 2 * fields.exp_trig(2)],
+        ),
+        ulps=16,
+    ),
+    "checkerboard": plane(fields.checkerboard("1/4"), lower=(-1, -1), upper=(1, 1)),
+    "quarter-wave": plane(fields.checkerboard("3/2", ("1/4", 0)).restricted("second"), lower=(-1, 0.01)),
     "nested": plane(
         (2 * (fields.wedge("2/3") + fields.polynomial(1)).rotated(0.2).shifted((0, "0.1"))).scaled(3) * "1/3",
         near=False,

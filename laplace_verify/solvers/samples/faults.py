@@ -6,23 +6,25 @@ itself as sound as `five_point` does.
 
 from __future__ import annotations
 
-from dataclasses import replace
+from dataclasses import dataclass, fields, replace
 from typing import NamedTuple
 
 import numpy as np
 import scipy.sparse as sp
 
 from laplace_verify.arrays import Array
+from laplace_verify.problems.coordinates import metric
 from laplace_verify.solvers.adapter import Adapter
 from laplace_verify.solvers.samples.finite_difference import (
     SCHEME,
     Equations,
     Scheme,
     Side,
+    box_stencil,
     carried_load,
     five_point_with,
 )
-from laplace_verify.solvers.samples.rectilinear import corners_on
+from laplace_verify.solvers.samples.rectilinear import Grid, corners_on
 
 __all__ = ["FAULTS", "Fault"]
 
@@ -43,11 +45,11 @@ def one_sided_flux(equations: Equations, side: Side) -> None:
     grid, patch, count = side.grid, side.patch, len(equations.load)
     nodes, areas = grid.shares(patch)
     corners = corners_on(grid.dim, patch.axis, patch.side)
-    across = np.delete(grid.widths[patch.cells], patch.axis, axis=1)
-    share = np.prod(across, axis=1) / len(corners) * (1.0 if patch.side else -1.0)
+    sign = 1.0 if patch.side else -1.0
     rows = sp.csr_array((count, count))
     for corner in corners:
         own = grid.corners[patch.cells, corner]
+        share = sign * grid.face(patch, corner)
         to_node = sp.csr_array((share, (own, patch.cells)), shape=(count, len(grid.corners)))
         for axis, gradient in enumerate(grid.gradients(corner)):
             rows = rows + side.tensor[patch.axis, axis] * (to_node @ gradient)
@@ -93,6 +95,38 @@ def load_without_last_side(equations: Equations, sides: list[Side]) -> Array:
     return carried_load(carried, sides)
 
 
+def smeared_stencil(grid: Grid, tensor: Array) -> sp.csr_array:
+    """Take the arithmetic mean of K at nodes and again over each cell: interfaces are smeared.
+
+    Across layers resistances add up, so that the flux through a face belongs to the harmonic mean.
+    """
+    if tensor.ndim == 2:
+        return box_stencil(grid, tensor)
+    corners = grid.corners.shape[1]
+    shares = np.stack([grid.owned(corner) * tensor for corner in range(corners)], axis=1)
+    owned = np.bincount(grid.corners.ravel(), shares.ravel(), len(grid.points))
+    at_nodes = owned / grid.node_volumes()
+    return box_stencil(grid, at_nodes[grid.corners].mean(axis=1))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class _OuterRadius(Grid):
+    """A grid that takes the area of the face between two nodes at the radius of the outer node."""
+
+    def conducting(self, corner: int, axis: int) -> Array:
+        """Return the misplaced area times half the edge length along r; along z what is right."""
+        if axis > 0 or self.coordinates == "cartesian":
+            return Grid.conducting(self, corner, axis)
+        plane: Array = np.prod(self.widths, axis=1) / 2**self.dim
+        return plane * metric(self.coordinates, self.radii(1)[:, np.newaxis])
+
+
+def outer_radius_stencil(grid: Grid, tensor: Array) -> sp.csr_array:
+    """Multiply the flux along r by the r of the outer node instead of that of the face half-way."""
+    values = {f.name: getattr(grid, f.name) for f in fields(grid)}
+    return box_stencil(_OuterRadius(**values), tensor)
+
+
 def _fault(name: str, description: str, scheme: Scheme) -> tuple[str, Fault]:
     """Return an entry of `FAULTS`."""
     return name, Fault(description, five_point_with(scheme, f"five-point finite differences, fault: {name}"))
@@ -123,6 +157,17 @@ FAULTS: dict[str, Fault] = dict(
             "dirichlet side not carried",
             "values of the last Dirichlet side do not reach the right-hand side",
             replace(SCHEME, load=load_without_last_side),
+        ),
+        _fault(
+            "arithmetic mean of conductivities",
+            "arithmetic mean of K across interfaces where the harmonic one belongs; invisible elsewhere",
+            replace(SCHEME, stencil=smeared_stencil),
+        ),
+        _fault(
+            "radius of the outer node",
+            "the metric factor of the flux along r taken at the outer node, not at the face; invisible in "
+            "Cartesian coordinates",
+            replace(SCHEME, stencil=outer_radius_stencil),
         ),
     ]
 )

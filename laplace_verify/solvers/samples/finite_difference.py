@@ -15,8 +15,8 @@ A `Scheme` is the list of these decisions, one small function each, so that a si
 
 from __future__ import annotations
 
-from collections.abc import Callable
-from dataclasses import dataclass, replace
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass, field, replace
 from functools import partial
 
 import numpy as np
@@ -26,7 +26,7 @@ from scipy.interpolate import interpn
 from laplace_verify.arrays import Array, BoolArray, IntArray
 from laplace_verify.errors import AnswerError
 from laplace_verify.problems import Piece, Problem
-from laplace_verify.solvers.adapter import Adapter, adapt
+from laplace_verify.solvers.adapter import Adapter, Refused, adapt
 from laplace_verify.solvers.answer import Answer
 from laplace_verify.solvers.samples.corner_rows import corner_rows
 from laplace_verify.solvers.samples.levels import level_shift
@@ -66,17 +66,31 @@ class Equations:
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Side:
-    """One boundary piece as the grid sees it."""
+    """One boundary piece as the grid sees it; `tensor` as in `axis_balances`, `regions` of the cells."""
 
     grid: Grid
     patch: Patch
     piece: Piece
     tensor: Array
+    regions: Mapping[str, IntArray] = field(default_factory=dict)
 
     @property
     def name(self) -> str:
         """The piece's name."""
         return self.piece.name
+
+    def inflow(self) -> Array:
+        """Return area * g (nodes of the patch,), where an interface ends on the piece from both its sides."""
+        nodes, areas = self.grid.shares(self.patch)
+        if not self.piece.parts:
+            return areas * self.piece.data(self.grid.points[nodes])
+        total = np.zeros(len(self.grid.points))
+        for name, cells in self.regions.items():
+            own = replace(self.patch, cells=np.intersect1d(self.patch.cells, cells))
+            if len(own.cells):
+                near, shares = self.grid.shares(own)
+                total[near] += shares * self.piece.data(self.grid.points[near], region=name)
+        return total[nodes]
 
 
 # ---- the parts of the scheme ---------------------------------------------------------------------
@@ -90,8 +104,8 @@ def box_stencil(grid: Grid, tensor: Array) -> sp.csr_array:
 
 def half_cell_flux(equations: Equations, side: Side) -> None:
     """Let the prescribed flux enter the half cells: load += area * g."""
-    nodes, areas = side.grid.shares(side.patch)
-    equations.load[nodes] += areas * side.piece.data(side.grid.points[nodes])
+    nodes, _ = side.grid.shares(side.patch)
+    equations.load[nodes] += side.inflow()
 
 
 def half_cell_transfer(equations: Equations, side: Side) -> None:
@@ -99,7 +113,7 @@ def half_cell_transfer(equations: Equations, side: Side) -> None:
     nodes, areas = side.grid.shares(side.patch)
     points = side.grid.points[nodes]
     equations.add_transfer(nodes, areas * side.piece.alpha(points))
-    equations.load[nodes] += areas * side.piece.data(points)
+    equations.load[nodes] += side.inflow()
 
 
 def held_values(equations: Equations, side: Side) -> None:
@@ -140,12 +154,14 @@ SETTLED = 1e-10  # relative change that ends them
 
 def solve_on_grid(problem: Problem, n: int, scheme: Scheme = SCHEME) -> Answer:
     """Solve div(K grad u) = 0 on an interval, rectangle, L-shape or box with n cells along every side."""
-    grid = grid_on(problem.shape, n)
+    grid = grid_on(problem.shape, n, interface_lines(problem), problem.coordinates)
+    tensor, regions = material(problem, grid)
     sides = [
-        Side(grid=grid, patch=grid.patch(piece.boundary), piece=piece, tensor=problem.tensor)
+        Side(grid=grid, patch=grid.patch(piece.boundary), piece=piece, tensor=tensor, regions=regions)
         for piece in problem.pieces
+        if piece.kind != "axis"  # its faces have no area: the balance is closed as it is
     ]
-    equations = assemble(grid, problem.tensor, sides, scheme)
+    equations = assemble(grid, tensor, sides, scheme)
     values, residual, iterations = solved(equations, scheme, sides)
     if equations.level_is_free:
         mean = np.average(values, weights=grid.node_volumes())
@@ -164,11 +180,37 @@ def solve_on_grid(problem: Problem, n: int, scheme: Scheme = SCHEME) -> Answer:
     )
 
 
+def interface_lines(problem: Problem) -> list[list[float]]:
+    """Return the coordinates of the interfaces along each axis; Refused if one follows no axis."""
+    lines: list[list[float]] = [[] for _ in range(problem.dim)]
+    for interface in problem.interfaces:
+        points, normals = interface.sample(8)
+        if not len(points):
+            continue
+        axis = int(np.argmax(np.abs(normals[0])))
+        spread = float(np.ptp(points[:, axis]))
+        if not (np.abs(normals[:, axis]) > 1.0 - 1e-9).all() or spread > 1e-9 * problem.shape.extent:
+            raise Refused(
+                f"the interface {interface.name!r} follows no axis, so that no line of the grid can lie on it"
+            )
+        lines[axis].append(float(points[0, axis]))
+    return lines
+
+
+def material(problem: Problem, grid: Grid) -> tuple[Array, dict[str, IntArray]]:
+    """Return K as a matrix (d, d), or a number for every cell, and the cells of each region."""
+    if not problem.interfaces:
+        return problem.tensor, {}
+    middles = grid.centres()
+    cells = {region.name: np.flatnonzero(region.contains(middles)) for region in problem.regions}
+    return problem.conductivity_at(middles), cells
+
+
 def assemble(grid: Grid, tensor: Array, sides: list[Side], scheme: Scheme) -> Equations:
     """Write the balance of every box, then close it piece by piece; Dirichlet comes last and so wins."""
     count, balance = len(grid.points), scheme.stencil(grid, tensor)
     open_patches = [side.patch for side in sides if side.piece.kind != "dirichlet"]
-    corners = scheme.corners(grid, tensor, open_patches)
+    corners = scheme.corners(grid, tensor, open_patches if tensor.ndim == 2 else [])
     lagged = None
     if grid.dim == 3 and corners.nnz:
         lagged = corners  # conjugate gradients need the symmetric part alone
@@ -235,7 +277,7 @@ def fluxes(grid: Grid, sides: list[Side], values: Array) -> dict[str, float]:
             held[side.patch.axis, nodes] += areas
             continue
         points = grid.points[nodes]
-        entering = areas * side.piece.data(points)
+        entering = side.inflow()
         if side.piece.kind == "robin":
             entering -= areas * side.piece.alpha(points) * values[nodes]
         lacking[nodes] -= entering
@@ -259,11 +301,16 @@ def fluxes(grid: Grid, sides: list[Side], values: Array) -> dict[str, float]:
     dims={1, 2},
     shapes={"interval", "rectangle", "l-shape"},
     conditions={"dirichlet", "neumann", "robin"},
-    conductivity={"scalar", "tensor"},
+    conductivity={"scalar", "tensor", "regions"},
+    coordinates={"cartesian", "axisymmetric", "radial-cylinder", "radial-sphere"},
     error_floor=1e-11,
 )
 def five_point(problem: Problem, n: int) -> Answer:
-    """Solve on an interval, a rectangle or an L-shape by the three- or five-point formula and LU factors."""
+    """Solve on an interval, a rectangle or an L-shape by the three- or five-point formula and LU factors.
+
+    Interfaces between regions of different conductivity must follow the axes; grid lines are laid on them. In
+    coordinates (r, z) or r the boxes of the balance are rings and shells.
+    """
     return solve_on_grid(problem, n)
 
 

@@ -10,12 +10,19 @@ five- or seven-point formula inside and the balance of half cells (quarter cells
 a mixed derivative adds the four-corner difference (u_NE - u_NW - u_SE + u_SW) / (4 hx hy). The matrix is
 symmetric and semi-definite for every symmetric positive definite K.
 
+In coordinates (r, z) or r (`problems.coordinates`) every box is a ring or shell, with its exact volume, the
+integral of c r^p over its part of a cell, and exact faces: c r_m^p at the middle r_m of the cell for the flux
+along r, the volume's share for the flux along z (c r^p = 2 pi r or 4 pi r^2). For K = diag(K_r, K_z) the
+balance is exact but for the differences along edges, hence of second order up to the axis, where the face has
+no area.
+
 References ---------- R. S. Varga, Matrix Iterative Analysis, 1962, section 6.3 (box integration; from memory,
 unchecked). The form by cell corners is derived here.
 """
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -24,6 +31,7 @@ import scipy.sparse as sp
 from laplace_verify.arrays import Array, BoolArray, IntArray
 from laplace_verify.geometry import Boundary, Shape
 from laplace_verify.geometry.meshes import subdivide
+from laplace_verify.problems.coordinates import Coordinates, metric
 
 __all__ = ["Grid", "Patch", "axis_balances", "grid_on"]
 
@@ -55,6 +63,7 @@ class Grid:
     place: IntArray  # (nodes, d) position of each node along the axes
     corners: IntArray  # (cells, 2^d) node numbers
     index: IntArray  # (cells, d) position of each cell along the axes
+    coordinates: Coordinates = "cartesian"
 
     @property
     def dim(self) -> int:
@@ -65,6 +74,33 @@ class Grid:
     def widths(self) -> Array:
         """Edge lengths of the cells, shape (cells, d)."""
         return np.stack([np.diff(axis)[self.index[:, a]] for a, axis in enumerate(self.axes)], axis=1)
+
+    def owned(self, corner: int) -> Array:
+        """Return the volume that the node in a corner of each cell owns of it, shape (cells,)."""
+        volumes: Array = np.prod(self.widths, axis=1) / 2**self.dim
+        if self.coordinates == "cartesian":
+            return volumes
+        low, high = self.radii(0), self.radii(1)
+        near, middle = (high if corner & 1 else low), (low + high) / 2.0
+        # the mean of c r^p over the half cell: Simpson's rule is exact for p <= 2
+        ends = self._stretch(near) + self._stretch(middle) + 4.0 * self._stretch((near + middle) / 2.0)
+        return volumes * ends / 6.0
+
+    def conducting(self, corner: int, axis: int) -> Array:
+        """Return face area times half the edge length, for the flux along an axis through a corner's box."""
+        if axis > 0 or self.coordinates == "cartesian":
+            return self.owned(corner)
+        plane: Array = np.prod(self.widths, axis=1) / 2**self.dim
+        return plane * self._stretch((self.radii(0) + self.radii(1)) / 2.0)
+
+    def radii(self, side: int) -> Array:
+        """Return the first coordinate at the low (0) or high (1) end of each cell, shape (cells,)."""
+        ends: Array = self.axes[0][self.index[:, 0] + side]
+        return ends
+
+    def _stretch(self, r: Array) -> Array:
+        """Return 1, 2 pi r or 4 pi r^2."""
+        return metric(self.coordinates, r[:, np.newaxis])
 
     def gradients(self, corner: int) -> list[sp.csr_array]:
         """Return d matrices (cells, nodes): differences along the edges that meet in a corner of a cell."""
@@ -81,8 +117,7 @@ class Grid:
 
     def node_volumes(self) -> Array:
         """Return the measure of the box that every node owns, shape (nodes,)."""
-        share = np.prod(self.widths, axis=1) / 2**self.dim
-        owned = np.repeat(share, 2**self.dim)
+        owned = np.stack([self.owned(corner) for corner in range(2**self.dim)], axis=1).ravel()
         return np.bincount(self.corners.ravel(), owned, len(self.points)).astype(np.float64)
 
     def patch(self, piece: Boundary) -> Patch:
@@ -100,12 +135,25 @@ class Grid:
     def shares(self, patch: Patch) -> tuple[IntArray, Array]:
         """Return the nodes on a patch and the area of the patch that each of them owns."""
         columns = corners_on(self.dim, patch.axis, patch.side)
-        across = np.delete(self.widths[patch.cells], patch.axis, axis=1)
-        share = np.prod(across, axis=1) / len(columns)
+        areas = np.stack([self.face(patch, corner) for corner in columns], axis=1)
         nodes = self.corners[patch.cells][:, columns]
-        area = np.bincount(nodes.ravel(), np.repeat(share, len(columns)), len(self.points)).astype(np.float64)
+        area = np.bincount(nodes.ravel(), areas.ravel(), len(self.points)).astype(np.float64)
         found = np.unique(nodes)
         return found, area[found]
+
+    def face(self, patch: Patch, corner: int) -> Array:
+        """Return the area that a corner of each of a patch's cells owns of its face, shape (cells,)."""
+        if patch.axis == 0 and self.coordinates != "cartesian":
+            across = np.delete(self.widths[patch.cells], 0, axis=1)
+            plane: Array = np.prod(across, axis=1) / 2 ** (self.dim - 1)
+            return plane * self._stretch(self.radii(patch.side)[patch.cells])
+        areas: Array = self.owned(corner)[patch.cells] / (self.widths[patch.cells, patch.axis] / 2.0)
+        return areas
+
+    def centres(self) -> Array:
+        """Return the middle of every cell, shape (cells, d)."""
+        middles: Array = self.points[self.corners].mean(axis=1)
+        return middles
 
     def cells_by_name(self) -> dict[str, IntArray]:
         """Return the cells in the corner order of mesh files (counter-clockwise, bottom before top)."""
@@ -124,21 +172,28 @@ class Grid:
         return alone
 
 
-def grid_on(shape: Shape, n: int) -> Grid:
+def grid_on(
+    shape: Shape,
+    n: int,
+    lines: Sequence[Sequence[float]] = (),
+    coordinates: Coordinates = "cartesian",
+) -> Grid:
     """Return the grid with n cells along every side; ends of boundary pieces lie on grid lines.
 
-    An L-shape is three squares of n x n cells each.
+    An L-shape is three squares of n x n cells each. `lines` are further grid lines wanted, for each axis.
     """
     ends = np.concatenate([*shape.bounding_box, *(piece.ends.ravel() for piece in shape.pieces)])
+    ends = ends.reshape(-1, shape.dim)
     count = 2 * n if shape.is_a("l-shape") else n
-    axes = tuple(subdivide(ends.reshape(-1, shape.dim)[:, a], count) for a in range(shape.dim))
+    wanted = lines or [()] * shape.dim
+    axes = tuple(subdivide([*ends[:, a], *wanted[a]], count) for a in range(shape.dim))
     middles = np.meshgrid(*((axis[1:] + axis[:-1]) / 2 for axis in axes), indexing="ij")
     inside = shape.contains(np.stack([middle.ravel() for middle in middles], axis=1))
     index = np.stack(np.unravel_index(np.flatnonzero(inside), middles[0].shape), axis=1)
-    return _with_nodes(axes, index)
+    return _with_nodes(axes, index, coordinates)
 
 
-def _with_nodes(axes: tuple[Array, ...], index: IntArray) -> Grid:
+def _with_nodes(axes: tuple[Array, ...], index: IntArray, coordinates: Coordinates) -> Grid:
     """Return the grid of the given cells, with the nodes that belong to them."""
     dim, full = len(axes), tuple(len(axis) for axis in axes)
     bits = (np.arange(2**dim)[:, np.newaxis] >> np.arange(dim)) & 1
@@ -146,7 +201,10 @@ def _with_nodes(axes: tuple[Array, ...], index: IntArray) -> Grid:
     used, corners = np.unique(flat, return_inverse=True)
     place = np.stack(np.unravel_index(used, full), axis=1)
     points = np.stack([axis[place[:, a]] for a, axis in enumerate(axes)], axis=1)
-    return Grid(axes=axes, points=points, place=place, corners=corners.reshape(flat.shape), index=index)
+    corners = corners.reshape(flat.shape)
+    return Grid(
+        axes=axes, points=points, place=place, corners=corners, index=index, coordinates=coordinates
+    )
 
 
 def corners_on(dim: int, axis: int, side: int) -> list[int]:
@@ -161,14 +219,24 @@ def corners_on(dim: int, axis: int, side: int) -> list[int]:
 def axis_balances(grid: Grid, tensor: Array) -> list[sp.csr_array]:
     """Return for each axis a matrix: what must enter the box of every node from outside, along that axis.
 
+    `tensor` is K as a matrix (d, d), or a number for every cell: then the flux along an edge is that of the
+    cells around it side by side, and through two cells in a row that of one after the other.
+
     Their sum, the stencil A, is the derivative of the discrete energy: A u is zero at inner nodes and the
     integral of n . K grad u over the owned part of the boundary at the others.
     """
     count = len(grid.points)
-    weight = sp.diags_array(np.prod(grid.widths, axis=1) / 2**grid.dim)
     balances = [sp.csr_array((count, count)) for _ in range(grid.dim)]
     for corner in range(2**grid.dim):
         gradient = grid.gradients(corner)
+        weights = [sp.diags_array(grid.conducting(corner, axis)) for axis in range(grid.dim)]
+        if tensor.ndim == 1:
+            by_cell = sp.diags_array(tensor)
+            balances = [
+                balance + g.T @ (by_cell @ weight) @ g
+                for balance, g, weight in zip(balances, gradient, weights, strict=True)
+            ]
+            continue
         for a, b in zip(*np.nonzero(tensor), strict=True):
-            balances[a] = balances[a] + gradient[a].T @ (weight * tensor[a, b]) @ gradient[b]
+            balances[a] = balances[a] + gradient[a].T @ (weights[a] * tensor[a, b]) @ gradient[b]
     return balances
