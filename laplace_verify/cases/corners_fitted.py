@@ -36,7 +36,7 @@ def _l_basin_smooth_data() -> Definition:
     name = "l-basin-smooth-data"
     return Definition(
         title="L-shaped basin with smooth-looking data",
-        solution="x^2 + y/2 on the boundary, continued into the basin by a corner fit",
+        solution="the harmonic function that is x^2 + y/2 on the boundary, by a corner fit",
         note=f"At the inner corner u - smooth ~ r^(2/3). {LOGS}",
         reading="The level in an L-shaped pool whose rim is held to a gentle curve.",
         shape=Polygon(_vertices(name)),
@@ -56,7 +56,7 @@ def _t_plate_smooth_data() -> Definition:
     name = "t-plate-smooth-data"
     return Definition(
         title="T-shaped plate with smooth-looking data",
-        solution="x^2 - x y + 1 on the boundary, continued into the plate by a corner fit",
+        solution="the harmonic function that is x^2 - x y + 1 on the boundary, by a corner fit",
         note=f"At both inner corners u - smooth ~ r^(2/3). {LOGS}",
         reading="A T-shaped bracket of the heat store whose temperature varies smoothly along its edge.",
         shape=Polygon(_vertices(name)),
@@ -77,7 +77,7 @@ def _slit_plate_smooth_data() -> Definition:
     name = "slit-plate-smooth-data"
     return Definition(
         title="Slit plate with smooth-looking data",
-        solution="(x - 1)^3 + 2 on the boundary and on both lips, continued into the plate by a corner fit",
+        solution="the harmonic function that is (x - 1)^3 + 2 on the boundary and both lips, by a corner fit",
         note="At the tip of the slit u - smooth ~ r^(1/2). Outer right angles bring r^2 log r; "
         "at the mouth of the slit they match to second order.",
         reading="A plate with a cut, held at one smooth temperature profile along its edge and both lips.",
@@ -98,7 +98,7 @@ def _slit_plate_smooth_data() -> Definition:
 def _plate_condition_change_smooth_data() -> Definition:
     return Definition(
         title="Plate insulated along half of its bottom, smooth data elsewhere",
-        solution="x^2 + 1 on the boundary but for the insulated part, continued by a corner fit",
+        solution="the harmonic function that is x^2 + 1 on all but the insulated part, by a corner fit",
         note="Where the insulation ends u - smooth ~ r^(1/2), although the data there are smooth. At three "
         "right angles the data bring r^2 log r.",
         reading="A floor slab that rests on insulation up to a point in the middle of its underside.",

@@ -29,10 +29,10 @@ import dataclasses
 import math
 from collections.abc import Callable
 from dataclasses import dataclass
+from fractions import Fraction
 from functools import lru_cache
 from typing import Any, NamedTuple
 
-import mpmath
 import numpy as np
 
 from laplace_verify.arrays import Array, BoolArray
@@ -50,6 +50,7 @@ __all__ = ["CornerPowers", "CornerSeries", "Expansion", "PolynomialPart", "corne
 
 INSIDE = 1e-9  # of the polygon's size: points this far outside are taken for points of the boundary
 WHOLE = 1e-9  # of an exponent
+SMALLEST_RADIUS = Fraction(1, 10**300)  # float64 holds it
 SIDES = ("dd", "nn", "dn", "nd")
 BASES = ("maximum-principle bound", "confirmed", "closed form", "uncertified")
 
@@ -155,8 +156,9 @@ class CornerPowers(Field):
                 _polygon(vertices)
             except LaplaceVerifyError as cause:
                 raise FieldError(f"vertices must be those of a polygon: {cause}") from cause
-        if not exact(_numeral(self.radius, "radius"), "radius") >= 0:
-            raise FieldError(f"radius must be >= 0, got {self.radius!r}")
+        radius = exact(_numeral(self.radius, "radius"), "radius")
+        if not (radius == 0 or radius >= SMALLEST_RADIUS):
+            raise FieldError(f"radius must be >= 0, and at least 1e-300 if not 0, got {self.radius!r}")
         if self.trust not in BASES:
             raise FieldError(f"trust must be one of {', '.join(BASES)}, got {self.trust!r}")
 
@@ -171,16 +173,16 @@ class CornerPowers(Field):
         return self.trust
 
     @property
-    def fit_error(self) -> mpmath.mpf:
-        """The stored radius."""
-        return mpmath.mpf(self.radius)
+    def fit_error(self) -> float:
+        """The stored radius, rounded up to a float64."""
+        return math.nextafter(float(self.radius), math.inf) if float(self.radius) else 0.0
 
     @property
     def most_digits(self) -> int:
         """Digits behind the decimal point that the stored radius leaves."""
         if not self.fit_error:
             return MAX_DIGITS
-        return max(1, int(mpmath.floor(-mpmath.log10(2 * self.fit_error))))
+        return max(1, math.floor(-math.log10(2 * self.fit_error)))
 
     @property
     def formula(self) -> str:
@@ -246,20 +248,20 @@ class CornerPowers(Field):
             gy = gy + (re if corner.powers.sine else -im)
         return gx, gy
 
-    def gradient_error(self, place: tuple[Any, ...]) -> mpmath.mpf:
+    def gradient_error(self, place: tuple[Any, ...]) -> float:
         """Return 4 radius / (pi d), d the distance from the boundary: infinite on it.
 
         The mean value of the directional derivative over a disc bounds the gradient of a harmonic function
         by 4/(pi d) times its maximum (derived here; the constant is sharp).
         """
         if not self.fit_error:
-            return mpmath.mpf(0)
+            return 0.0
         if not self.vertices:
-            return mpmath.inf
+            return math.inf
         d = float(_polygon(self.vertices).distance(np.array([[float(c) for c in place]]))[0])
         # the distance is computed in float64: 1e-15 of the coordinates are taken off
         d -= 1e-15 * (1 + max(abs(float(c)) for c in place))
-        return 4 * self.fit_error / (mpmath.pi * d) if d > 0 else mpmath.inf
+        return 4 * self.fit_error / (math.pi * d) * (1 + 1e-12) if d > 0 else math.inf
 
     def conjugate(self) -> Field:
         """Return the stream function: the same terms with sine and cosine exchanged.

@@ -9,6 +9,7 @@ A field without such a basis has no reference values.
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from fractions import Fraction
@@ -56,7 +57,8 @@ def stored_values(case: Case, points: Iterable[Sequence[str]], digits: int = 40)
     Raises
     ------
     ProblemError
-        If a point lies outside the shape, the basis of the field is no proof, or `digits` is out of range.
+        If a point lies outside the shape (or on the boundary, if the field is a fit), the basis of
+        the field is no proof, or `digits` is out of range.
     FieldError
         If u or its gradient has no value at a point.
 
@@ -89,6 +91,10 @@ def _stored_value(case: Case, point: tuple[str, ...], digits: int) -> StoredValu
     value, open_, basis = case.exact.enclosure(point, digits=asked)
     gradient = case.exact.gradient_at(point, digits=asked)
     sloped = case.exact.gradient_error(tuple(Fraction(c) for c in point))
+    if not sloped < math.inf:
+        raise ProblemError(
+            f"case {case.id!r}: the gradient at {point} is not bounded there; choose a point off the boundary"
+        )
     with mpmath.workdps(digits + 2 * GUARD):
         largest = max(abs(number) for number in (value, *gradient))
         largest_change = largest * mpmath.mpf(10) ** -asked
