@@ -16,7 +16,6 @@ import math
 from dataclasses import dataclass
 from typing import Any
 
-import mpmath
 import numpy as np
 
 from laplace_verify.arrays import Array, BoolArray
@@ -88,7 +87,7 @@ class Meridian(Field):
         return self.field.basis
 
     @property
-    def fit_error(self) -> mpmath.mpf:
+    def fit_error(self) -> float:
         """As in space."""
         return self.field.fit_error
 
@@ -97,7 +96,7 @@ class Meridian(Field):
         """As in space."""
         return self.field.most_digits
 
-    def gradient_error(self, place: tuple[Any, ...]) -> mpmath.mpf:
+    def gradient_error(self, place: tuple[Any, ...]) -> float:
         """As in space."""
         return self.field.gradient_error((place[0], 0, place[1]))
 
