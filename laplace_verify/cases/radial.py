@@ -1,4 +1,4 @@
-"""Radial flow through the walls of pipes and round tanks: u = a + b log r and u = a + b/r, functions of r alone.
+"""Radial flow through the walls of pipes and round tanks: u = a + b log r and u = a + b/r, of r alone.
 
 The flux through every cylinder or sphere about the axis or centre is the same: 2 pi K b per unit length, and
 -4 pi K b. Unlike on rods, sound schemes are not exact here, so that the metric factor shows in the order.
@@ -9,7 +9,6 @@ from __future__ import annotations
 import math
 from fractions import Fraction
 
-from laplace_verify import fields
 from laplace_verify.cases.definition import HERE, Definition, Family
 from laplace_verify.fields import by_region, radial
 from laplace_verify.geometry import Interval
@@ -149,15 +148,15 @@ def _shaft_at_rest() -> Definition:
 def _tank_wall_two_temperatures() -> Definition:
     return Definition(
         title="Wall of a round tank between two temperatures",
-        solution="12/(5 r) - 2",
+        solution="12/(5 r) - 1",
         reading="The wall of the round hot-water store, from its lining to its cold outside.",
         shape=Interval(0.8, 1.2),
-        field=radial("sphere", -2, "12/5"),
+        field=radial("sphere", -1, "12/5"),
         conductivity=0.5,
         coordinates="radial-sphere",
         quantities={
             "flux through the outside": flux_through("right", exact=-4.8 * math.pi),
-            "value in the middle": value_at((1.0,), exact="2/5"),
+            "value in the middle": value_at((1.0,), exact="7/5"),
         },
         sources=(TANK,),
     )
@@ -185,10 +184,11 @@ def _tank_wall_flux_and_convection() -> Definition:
 @family
 def _tank_lagged() -> Definition:
     wall = layers((1,), ["4/5", "1"], {"steel": 4.0, "felt": 0.25, "planks": 1.0})
-    ks, joint = {"steel": 4, "felt": Fraction(1, 4), "planks": 1}, {}
+    ks = {"steel": Fraction(4), "felt": Fraction(1, 4), "planks": Fraction(1)}
+    joint = {}
     level = Fraction(0)  # u = level - (1/r - 1/start)/K with flux 4 pi outward along rising u
     for name, start, stop in (("steel", "7/10", "4/5"), ("felt", "4/5", "1"), ("planks", "1", "13/10")):
-        a, b, k = Fraction(start), Fraction(stop), Fraction(ks[name])
+        a, b, k = Fraction(start), Fraction(stop), ks[name]
         joint[name] = radial("sphere", level + 1 / (k * a), -1 / k)
         level += (1 / a - 1 / b) / k
     return Definition(

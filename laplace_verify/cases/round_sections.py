@@ -1,7 +1,7 @@
 """Meridian sections of round bodies in coordinates (r, z): cylinders, hollow cylinders, balls and shells.
 
-The same fields as in space, with one dimension less to solve in: sections agree with `round_solids` to the last
-digit wherever both pose the same problem.
+The same fields as in space, with one dimension less to solve in: sections agree with `round_solids` to the
+last digit wherever both pose the same problem.
 """
 
 from __future__ import annotations
@@ -151,7 +151,7 @@ def _ground_section_anisotropic() -> Definition:
         field=axisymmetric(
             fields.stretched(
                 fields.solid(2, 0) + fields.point_source((0, 0, 6)),
-                [["9/4", 0, 0], [0, "9/4", 0], [0, 0, "1/4"]],
+                [[2.25, 0, 0], [0, 2.25, 0], [0, 0, 0.25]],
             )
         ),
         conditions={"right": "neumann", "bottom": robin(0.5)},

@@ -11,7 +11,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 import numpy.typing as npt
@@ -19,8 +19,10 @@ import numpy.typing as npt
 from laplace_verify.arrays import Array, IntArray, frozen
 from laplace_verify.errors import GeometryError
 from laplace_verify.geometry._ear_clipping import clip_ears, flip_to_delaunay, join_holes
+from laplace_verify.geometry._fans import edges_of, fan_of, unit
 from laplace_verify.geometry.base import Shape
 from laplace_verify.geometry.boundary import Boundary
+from laplace_verify.geometry.halves import HalfAnnulus, HalfDisc
 from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
 from laplace_verify.geometry.splitting import split_piece
 
@@ -106,7 +108,10 @@ def triangulate(shape: Shape, n: int) -> Mesh:
         raise GeometryError(f"n, the cells along every side, must be an integer >= 1, got {n!r}")
     for kind, build in _BUILDERS.items():
         if shape.is_a(kind):
-            return build(shape, int(n))
+            mesh = build(replace(shape, names=()), int(n))
+            old = replace(shape, names=()).pieces.names
+            boundary = {new: mesh.boundary[name] for name, new in zip(old, shape.pieces.names, strict=True)}
+            return replace(mesh, boundary=boundary)
     raise GeometryError(f"cannot triangulate a shape of kind {shape.kind!r}; can: {', '.join(_BUILDERS)}")
 
 
@@ -156,50 +161,7 @@ def _finished(points: Array, triangles: IntArray, boundary: dict[str, IntArray])
     return Mesh(points=frozen(points), triangles=triangles, boundary=boundary)
 
 
-# ---- fans: disc, ellipse, sector -----------------------------------------------------------------
-
-
-@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
-class _Fan:
-    """Triangles about a centre: ring i carries wedges * i steps, of which each node is one."""
-
-    ring: IntArray
-    share: Array  # the part of the ring's angle behind each node, 0 to 1
-    triangles: IntArray
-    start: IntArray  # nodes on the first ray, outwards
-    end: IntArray  # nodes on the last ray, inwards
-    rim: IntArray  # nodes on the last ring, the first one repeated if closed
-
-
-def _fan(wedges: int, n: int, *, closed: bool) -> _Fan:
-    """Cut `wedges` triangles that share the centre into n * n each."""
-    rings = np.arange(n + 1)
-    counts = np.maximum(wedges * rings + (0 if closed else 1), 1)
-    first = np.cumsum(counts) - counts
-
-    def node(ring: int, step: npt.NDArray[np.int64]) -> IntArray:
-        place: IntArray = first[ring] + (step % counts[ring] if closed else step)
-        return place
-
-    triangles = []
-    for i in range(n):
-        wedge, t = (
-            index.ravel() for index in np.meshgrid(np.arange(wedges), np.arange(i + 1), indexing="ij")
-        )
-        inner, outer = wedge * i + t, wedge * (i + 1) + t
-        triangles.append(np.stack([node(i, inner), node(i + 1, outer), node(i + 1, outer + 1)], axis=1))
-        inner, outer = inner[t < i], outer[t < i]
-        triangles.append(np.stack([node(i, inner), node(i + 1, outer + 1), node(i, inner + 1)], axis=1))
-    ring = np.repeat(rings, counts)
-    step = np.arange(len(ring)) - first[ring]
-    return _Fan(
-        ring=ring,
-        share=step / np.maximum(wedges * ring, 1),
-        triangles=np.concatenate(triangles),
-        start=first,
-        end=(first + counts - 1)[::-1],
-        rim=node(n, np.arange(wedges * n + 1)),
-    )
+# ---- fans and polar grids: disc, ellipse, sector, annulus, halves --------------------------------
 
 
 def _from_disc(shape: Shape, n: int) -> Mesh:
@@ -208,13 +170,13 @@ def _from_disc(shape: Shape, n: int) -> Mesh:
         centre, axes = np.array(shape.centre), np.full(2, shape.radius)
     elif isinstance(shape, Ellipse):
         centre, axes = np.array(shape.centre), np.array(shape.semi_axes)
-    fan = _fan(6, n, closed=True)
+    fan = fan_of(6, n, closed=True)
     breaks = _turns(np.concatenate([piece.ends for piece in shape.pieces]), centre, axes)
     angle = 2.0 * math.pi * _stretched(fan.share, breaks, 6 * n)
     points = centre + axes * (fan.ring / n * np.array([np.cos(angle), np.sin(angle)])).T
-    rim = _edges(fan.rim)
+    rim = edges_of(fan.rim)
     ends = angle[rim[:, 0]]
-    middles = centre + axes * _unit(ends + 0.5 * ((angle[rim[:, 1]] - ends) % (2.0 * math.pi)))
+    middles = centre + axes * unit(ends + 0.5 * ((angle[rim[:, 1]] - ends) % (2.0 * math.pi)))
     return _finished(points, fan.triangles, _by_piece(list(shape.pieces), rim, middles))
 
 
@@ -223,20 +185,20 @@ def _from_sector(shape: Shape, n: int) -> Mesh:
     if not isinstance(shape, Sector):
         raise GeometryError(f"a sector is needed here, got {shape!r}")
     wedges = max(1, round(shape.opening / (math.pi / 3.0)))
-    fan = _fan(wedges, n, closed=False)
+    fan = fan_of(wedges, n, closed=False)
     ends = np.concatenate([piece.ends for piece in shape.pieces])
     radii = np.linalg.norm(ends, axis=1) / shape.radius
     on_arc = ends[np.abs(radii - 1.0) < SAME]
     breaks = (np.arctan2(on_arc[:, 1], on_arc[:, 0]) % (2.0 * math.pi)) / shape.opening
     angle = shape.opening * _stretched(fan.share, breaks, wedges * n)
     along = shape.radius * _stretched(fan.ring / n, radii, n)
-    rays = {"start": _edges(fan.start), "arc": _edges(fan.rim), "end": _edges(fan.end)}
-    points = along[:, np.newaxis] * _unit(angle)
+    rays = {"start": edges_of(fan.start), "arc": edges_of(fan.rim), "end": edges_of(fan.end)}
+    points = along[:, np.newaxis] * unit(angle)
     boundary: dict[str, IntArray] = {}
     for name, edges in rays.items():
         middles = points[edges].mean(axis=1)
         if name == "arc":
-            middles = shape.radius * _unit(angle[edges].mean(axis=1))
+            middles = shape.radius * unit(angle[edges].mean(axis=1))
         parts = [piece for piece in shape.pieces if piece.name == name or piece.name.startswith(name + "-")]
         boundary |= _by_piece(parts, edges, middles)
     return _finished(points, fan.triangles, {piece.name: boundary[piece.name] for piece in shape.pieces})
@@ -253,7 +215,7 @@ def _from_annulus(shape: Shape, n: int) -> Mesh:
     on_outer = np.concatenate([piece.ends for piece in shape.pieces if piece.name.startswith("outer")])
     breaks = np.concatenate([_turns(on_inner, hole, np.ones(2)), _turns(on_outer, centre, np.ones(2))])
     angle = 2.0 * math.pi * _stretched(np.arange(around) / around, breaks, around)
-    inside, outside = hole + shape.inner * _unit(angle), centre + shape.outer * _unit(angle)
+    inside, outside = hole + shape.inner * unit(angle), centre + shape.outer * unit(angle)
     depth = (np.arange(n + 1) / n)[:, np.newaxis, np.newaxis]
     points = ((1.0 - depth) * inside + depth * outside).reshape(-1, 2)
     ring, step = (index.ravel() for index in np.meshgrid(np.arange(n), np.arange(around), indexing="ij"))
@@ -264,14 +226,52 @@ def _from_annulus(shape: Shape, n: int) -> Mesh:
     loop = np.stack([np.arange(around), (np.arange(around) + 1) % around], axis=1)
     inner = [piece for piece in shape.pieces if piece.name.startswith("inner")]
     outer = [piece for piece in shape.pieces if piece.name.startswith("outer")]
-    boundary = _by_piece(inner, loop[:, ::-1], hole + shape.inner * _unit(half))
-    boundary |= _by_piece(outer, loop + n * around, centre + shape.outer * _unit(half))
+    boundary = _by_piece(inner, loop[:, ::-1], hole + shape.inner * unit(half))
+    boundary |= _by_piece(outer, loop + n * around, centre + shape.outer * unit(half))
     return _finished(points, triangles, {piece.name: boundary[piece.name] for piece in shape.pieces})
 
 
-def _unit(angle: Array) -> Array:
-    """Return the unit vectors (n, 2) at the given angles."""
-    return np.stack([np.cos(angle), np.sin(angle)], axis=-1)
+def _from_half_disc(shape: Shape, n: int) -> Mesh:
+    """Map three triangles onto a half-disc, ring by ring."""
+    if not isinstance(shape, HalfDisc):
+        raise GeometryError(f"a half-disc is needed here, got {shape!r}")
+    fan, centre = fan_of(3, n, closed=False), np.array(shape.centre)
+    ends = np.concatenate([piece.ends for piece in shape.pieces]) - centre
+    radii = np.linalg.norm(ends, axis=1) / shape.radius
+    rim = ends[np.abs(radii - 1.0) < SAME]
+    turns = _stretched(fan.share, np.arctan2(rim[:, 1], rim[:, 0]) / math.pi + 0.5, 3 * n)
+    angle, along = math.pi * (turns - 0.5), shape.radius * _stretched(fan.ring / n, radii, n)
+    points = centre + along[:, np.newaxis] * unit(angle)
+    points[np.concatenate([fan.start, fan.end]), 0] = centre[0]
+    arc, side = edges_of(fan.rim), np.concatenate([edges_of(fan.end), edges_of(fan.start)])
+    middles = [points[side].mean(axis=1), centre + shape.radius * unit(angle[arc].mean(axis=1))]
+    boundary = _by_piece(list(shape.pieces), np.concatenate([side, arc]), np.concatenate(middles))
+    return _finished(points, fan.triangles, boundary)
+
+
+def _from_half_annulus(shape: Shape, n: int) -> Mesh:
+    """Map a grid of n cells across and 3 n to 6 n around between two half-circles and cut it by diagonals."""
+    if not isinstance(shape, HalfAnnulus):
+        raise GeometryError(f"a half-annulus is needed here, got {shape!r}")
+    centre, gap = np.array(shape.centre), shape.outer - shape.inner
+    around = n * min(6, max(3, round(math.pi / 2 * (shape.inner + shape.outer) / gap)))
+    ends = np.concatenate([piece.ends for piece in shape.pieces]) - centre
+    depths = (np.linalg.norm(ends, axis=1) - shape.inner) / gap
+    on_arcs = ends[np.minimum(np.abs(depths), np.abs(depths - 1.0)) < SAME]
+    breaks = np.arctan2(on_arcs[:, 1], on_arcs[:, 0]) / math.pi + 0.5
+    angle = math.pi * (_stretched(np.arange(around + 1) / around, breaks, around) - 0.5)
+    radii = shape.inner + gap * _stretched(np.arange(n + 1) / n, depths, n)
+    points = centre + (radii[:, np.newaxis, np.newaxis] * unit(angle)).reshape(-1, 2)
+    node = np.arange(len(points)).reshape(n + 1, around + 1)
+    points[node[:, [0, -1]].ravel(), 0] = centre[0]
+    a, b, c, d = (part.ravel() for part in (node[:-1, :-1], node[:-1, 1:], node[1:, 1:], node[1:, :-1]))
+    triangles = np.concatenate([np.stack([a, d, c], axis=1), np.stack([a, c, b], axis=1)])
+    sides = np.concatenate([edges_of(node[:, 0]), edges_of(node[::-1, -1])])
+    inner, outer, half = edges_of(node[0, ::-1]), edges_of(node[-1]), (angle[1:] + angle[:-1]) / 2.0
+    middles = [centre + shape.inner * unit(half[::-1]), centre + shape.outer * unit(half)]
+    edges = np.concatenate([sides, inner, outer])
+    places = np.concatenate([points[sides].mean(axis=1), *middles])
+    return _finished(points, triangles, _by_piece(list(shape.pieces), edges, places))
 
 
 def _turns(points: Array, centre: Array, axes: Array) -> Array:
@@ -287,11 +287,6 @@ def _stretched(share: Array, breaks: Array, cells: int) -> Array:
     if len(marks) != cells + 1:
         raise GeometryError(f"n is too small: {len(inner)} ends of pieces do not fit on {cells} cells")
     return np.interp(share, np.arange(cells + 1) / cells, marks)
-
-
-def _edges(nodes: IntArray) -> IntArray:
-    """Return the edges (k, 2) of a chain of nodes."""
-    return np.stack([nodes[:-1], nodes[1:]], axis=1)
 
 
 def _by_piece(pieces: list[Boundary], edges: IntArray, middles: Array) -> dict[str, IntArray]:
@@ -351,7 +346,7 @@ def _refined(
     triangles = [_cut(corners, triangle, n, chain, added) for triangle in coarse]
     boundary: dict[str, list[IntArray]] = {}
     for side, name in sides.items():
-        boundary.setdefault(name, []).append(_edges(chains[side]))
+        boundary.setdefault(name, []).append(edges_of(chains[side]))
     return _finished(
         np.concatenate(points),
         np.concatenate(triangles),
@@ -395,4 +390,6 @@ _BUILDERS: dict[str, Callable[[Shape, int], Mesh]] = {
     "ellipse": _from_disc,
     "sector": _from_sector,
     "annulus": _from_annulus,
+    "half-disc": _from_half_disc,
+    "half-annulus": _from_half_annulus,
 }

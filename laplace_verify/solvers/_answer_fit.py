@@ -88,6 +88,9 @@ def remarks(answer: Answer, problem: Problem) -> tuple[str, ...]:
             found.append("weights are not used: the cells integrate")
     elif answer.weights is not None:
         share = _ratio(float(answer.weights.sum()), problem)
+        if problem.coordinates != "cartesian":  # weights are then measures of space
+            points, weights = problem.shape.quadrature(4)
+            share = float(answer.weights.sum()) / float(weights @ problem.metric(points))
         if not abs(share - 1) <= WEIGHT_REMARK:
             found.append(f"the weights add up to {share:.3g} of the shape's measure")
     return tuple(found)
