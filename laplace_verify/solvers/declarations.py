@@ -52,7 +52,7 @@ SHAPES: Final = (
     "interval", "rectangle", "box", "disc", "ellipse", "annulus", "sector", "l-shape", "polygon", "ball",
     "spheroid", "spherical-shell", "cylinder", "half-space", "strip", "exterior", "exterior-disc",
     "exterior-ellipse", "exterior-polygon", "exterior-screen", "exterior-ball", "exterior-spheroid",
-    "exterior-round-plate", "elliptic-ring", "spheroidal-shell",
+    "exterior-round-plate", "elliptic-ring", "spheroidal-shell", "half-disc", "half-annulus",
 )  # fmt: skip
 CONDITIONS: Final = ("dirichlet", "neumann", "robin", "periodic")
 CONDUCTIVITIES: Final = ("scalar", "tensor", "regions")
