@@ -39,6 +39,7 @@ if TYPE_CHECKING:
     from laplace_verify.geometry import HalfSpace as HalfSpace
     from laplace_verify.geometry import Interval as Interval
     from laplace_verify.geometry import LShape as LShape
+    from laplace_verify.geometry import PairShell as PairShell
     from laplace_verify.geometry import Polygon as Polygon
     from laplace_verify.geometry import Rectangle as Rectangle
     from laplace_verify.geometry import RoundPlate as RoundPlate
@@ -87,7 +88,7 @@ _ROOMS = {
     "fields": "Field field",
     "geometry": (
         "Annulus Ball Box Cylinder Disc Ellipse EllipticRing Exterior HalfAnnulus HalfDisc HalfSpace "
-        "Interval LShape Polygon Rectangle RoundPlate Screen Sector SphericalShell Spheroid "
+        "Interval LShape PairShell Polygon Rectangle RoundPlate Screen Sector SphericalShell Spheroid "
         "SpheroidalShell Strip"
     ),
     "measure": "Study Verdict grid_convergence study",

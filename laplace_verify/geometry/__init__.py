@@ -4,6 +4,7 @@ from laplace_verify.geometry.base import Boundaries, Junction, Shape
 from laplace_verify.geometry.boundary import Boundary
 from laplace_verify.geometry.cartesian import Box, Interval, Rectangle
 from laplace_verify.geometry.halves import HalfAnnulus, HalfDisc
+from laplace_verify.geometry.pairs import PairShell
 from laplace_verify.geometry.planes import HalfSpace, Strip, within
 from laplace_verify.geometry.polygons import LShape, Polygon
 from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
@@ -12,6 +13,7 @@ from laplace_verify.geometry.spec import shape_from_spec, shape_to_spec
 from laplace_verify.geometry.spheroids import EllipticRing, Spheroid, SpheroidalShell
 from laplace_verify.geometry.thin import RoundPlate, Screen
 from laplace_verify.geometry.unbounded import Exterior
+from laplace_verify.geometry.windows import Windowed, check_window, default_window
 
 __all__ = [
     "Annulus",
@@ -30,6 +32,7 @@ __all__ = [
     "Interval",
     "Junction",
     "LShape",
+    "PairShell",
     "Polygon",
     "Rectangle",
     "RoundPlate",
@@ -40,6 +43,9 @@ __all__ = [
     "Spheroid",
     "SpheroidalShell",
     "Strip",
+    "Windowed",
+    "check_window",
+    "default_window",
     "shape_from_spec",
     "shape_to_spec",
     "within",

@@ -13,6 +13,7 @@ from laplace_verify.errors import GeometryError, nearest_names
 from laplace_verify.geometry.base import Shape
 from laplace_verify.geometry.cartesian import Box, Interval, Rectangle
 from laplace_verify.geometry.halves import HalfAnnulus, HalfDisc
+from laplace_verify.geometry.pairs import PairShell
 from laplace_verify.geometry.planes import HalfSpace, Strip
 from laplace_verify.geometry.polygons import LShape, Polygon
 from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
@@ -29,7 +30,7 @@ SHAPES: dict[str, type[Shape]] = {
         Interval, Rectangle, Box, Disc, Ellipse, Annulus, Sector, HalfDisc, HalfAnnulus, LShape,
         Polygon,
         Ball, SphericalShell, Cylinder,
-        EllipticRing, Spheroid, SpheroidalShell, Screen, RoundPlate, Exterior, HalfSpace, Strip,
+        EllipticRing, Spheroid, SpheroidalShell, PairShell, Screen, RoundPlate, Exterior, HalfSpace, Strip,
     )
 }  # fmt: skip
 

@@ -56,7 +56,7 @@ class Thin(Shape):
 class Screen(Thin):
     """An open screen in the plane, the segment from `start` to `stop`; pieces front (on its left) and back.
 
-    >>> from laplace_verify.geometry import Exterior
+    >>> from laplace_verify.geometry import Exterior, Screen
     >>> Exterior(Screen((-1, 0), (1, 0))).pieces.names
     ('front', 'back')
     """
@@ -89,7 +89,7 @@ class Screen(Thin):
 class RoundPlate(Thin):
     """A round plate without thickness, normal to z; pieces top and bottom.
 
-    >>> from laplace_verify.geometry import Exterior
+    >>> from laplace_verify.geometry import Exterior, RoundPlate
     >>> Exterior(RoundPlate((0, 0, 0), 1.5)).junctions[0].opening / 3.141592653589793
     2.0
     """

@@ -19,6 +19,7 @@ import numpy as np
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.errors import AnswerError
 from laplace_verify.measure.sampling import around, quadrature_points, scattered_points
+from laplace_verify.measure.windows import clipped
 
 if TYPE_CHECKING:
     from laplace_verify.measure.exact import Exact
@@ -74,17 +75,18 @@ def sample_answer(
     if answer.kind == "callable":
         return in_space(_sample_callable(answer, problem, singular, h, generator, max_points), problem)
     if answer.kind == "cells":
-        return in_space(_sample_cells(answer, generator), problem)
+        return in_space(clipped(_sample_cells(answer, generator), problem), problem)
     points, values = answer.points, answer.values
     if points is None or values is None:
         raise AnswerError("points and values, or evaluate, must be given: this answer has neither")
     weights = answer.weights  # a solver's own are measures of space: in (r, z) the volumes of rings
     if weights is None:
         weights = np.full(len(points), problem.shape.measure / len(points)) * problem.metric(points)
-    return Sample(
+    sample = Sample(
         points=points, weights=weights, values=values, gradients=answer.gradient_at(points),
         extra=points[:0], extra_values=values[:0],
     )  # fmt: skip
+    return clipped(sample, problem, cloud=True)
 
 
 def in_space(sample: Sample, problem: Problem) -> Sample:

@@ -16,6 +16,7 @@ from laplace_verify.measure.norms import Measured, measure_norms, sample_answer,
 from laplace_verify.measure.places import error_map, local_errors
 from laplace_verify.measure.results import ErrorMap, Level
 from laplace_verify.measure.sampling import level_generator
+from laplace_verify.measure.windows import through_window
 from laplace_verify.solvers.spacing import spacing
 
 if TYPE_CHECKING:
@@ -48,18 +49,20 @@ class Runner:
     case: Case
     seed: int
     max_points: int | None = None
+    seen: Case = field(init=False)  # an unbounded case through its window
     exact: Exact = field(init=False)
     fluxes: ExactFluxes = field(init=False)
 
     def __post_init__(self) -> None:
         """Prepare the exact solution."""
-        self.exact = Exact(self.case)
-        self.fluxes = ExactFluxes(self.case, self.exact)
+        self.seen = through_window(self.case)
+        self.exact = Exact(self.seen)
+        self.fluxes = ExactFluxes(self.seen, self.exact)
 
     def run(self, size: int) -> LevelResult:
         """Solve and measure one size; whatever the solver raises passes through."""
         generator = level_generator(self.seed, self.case.id, size)
-        shape = self.case.problem.shape
+        shape, seen = self.seen.problem.shape, self.seen.problem
         most = self.max_points or MOST_POINTS[shape.dim]
         wanted = shape.sample(min(WANTED, most), seed=int(generator.integers(2**31)))
         problem, log = self.case.problem.watched()
@@ -68,9 +71,9 @@ class Runner:
         seconds = time.perf_counter() - start
         h = self._spacing(answer, size)
         singular = self.case.regularity.singular_points
-        sample = sample_answer(answer, self.case.problem, singular, h, generator, most)
-        sample = sharpened(sample, answer, self.exact, self.case.problem, h, generator)
-        measured = measure_norms(sample, self.exact, self.case.problem, self.solver.clearance)
+        sample = sample_answer(answer, seen, singular, h, generator, most)
+        sample = sharpened(sample, answer, self.exact, seen, h, generator)
+        measured = measure_norms(sample, self.exact, seen, self.solver.clearance)
         numbers, signed = self._functionals(answer, measured, h)
         note, judged = self._judged(h)
         level = Level(
@@ -106,7 +109,7 @@ class Runner:
     ) -> tuple[dict[str, tuple[float, float]], dict[str, float]]:
         """Return norm -> (error, relative error) and signed errors of everything but the interior norms."""
         scale = measured.scale
-        found = measure_functionals(answer, self.case, self.exact, self.fluxes, h, measured.shift, scale)
+        found = measure_functionals(answer, self.seen, self.exact, self.fluxes, h, measured.shift, scale)
         if self.case.problem.constant is not None:
             found.add(LEVEL, measured.shift, scale)
         return {norm: (found.errors[norm], found.relative[norm]) for norm in found.errors}, found.signed

@@ -206,7 +206,7 @@ class _Run:
             orders=orders or {},
             reasons=reasons,
             remarks=remarks,
-            features=features(self.case, self.runner.exact),
+            features=features(self.runner.seen, self.runner.exact),
             local={place: [result.local.get(place) for result in self.results] for place in places},
             error_map=last.error_map if last else None,
             known=known,

@@ -24,17 +24,17 @@ LARGEST_RATIO = 1e12  # of eigenvalues: beyond it K is singular in float64
 
 
 def is_shape(shape: Any) -> Shape:
-    """Return `shape` if it is a bounded shape.
+    """Return `shape` if it is one, bounded or not.
 
     Raises
     ------
     ProblemError
-        If it is not.
+        If it is not, or has no inside.
     """
     if not isinstance(shape, Shape):
         raise ProblemError(f"shape must be a shape such as Rectangle((0, 0), (1, 1)), got {shape!r}")
-    if not shape.bounded:
-        raise ProblemError(f"{shape!r} is unbounded; only problems on bounded shapes can be posed")
+    if not shape.measure > 0.0:
+        raise ProblemError(f"{shape!r} has no inside; a problem around it is posed on Exterior({shape!r})")
     return shape
 
 

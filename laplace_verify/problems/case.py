@@ -14,7 +14,7 @@ import numpy.typing as npt
 from laplace_verify.arrays import Array
 from laplace_verify.errors import ProblemError
 from laplace_verify.fields import Field
-from laplace_verify.geometry import Shape
+from laplace_verify.geometry import Shape, Windowed
 from laplace_verify.problems.assembly import (
     Conductivity,
     alpha_of,
@@ -33,6 +33,17 @@ from laplace_verify.problems.compatibility import (
 )
 from laplace_verify.problems.conditions import Condition, PieceKind
 from laplace_verify.problems.coordinates import AXIS, Coordinates, axis_names, in_coordinates
+from laplace_verify.problems.infinity import (
+    AtInfinity,
+    as_at_infinity,
+    as_window,
+    check_far,
+    check_infinite_quantities,
+    fixes_constant,
+    one_region,
+    point_constant,
+    scaled_at_infinity,
+)
 from laplace_verify.problems.materials import Materials
 from laplace_verify.problems.pieces import Piece, Pieces
 from laplace_verify.problems.problem import Problem, axis_piece, no_constant, piece_parts
@@ -43,6 +54,7 @@ from laplace_verify.problems.scaling import (
     Scale,
     as_scale,
     scaled_condition,
+    scaled_conductivity,
     scaled_constant,
     scaled_quantity,
     scaled_regularity,
@@ -81,7 +93,7 @@ class Case:
     stored
         High-precision reference values, if some are kept in a file.
     window
-        None: norms are taken over the whole shape.
+        Of an unbounded shape the bounded region over which norms are taken; else None: the whole shape.
     """
 
     id: str
@@ -96,7 +108,7 @@ class Case:
     quantities: Mapping[str, Quantity]
     units: Units = dataclass_field(default_factory=Units)
     stored: tuple[StoredValue, ...] = ()
-    window: None = None
+    window: Shape | None = None
     _conditions: Mapping[str, Condition] = dataclass_field(default_factory=dict)
 
     @property
@@ -139,7 +151,7 @@ class Case:
         units = Units(length=length_unit, value=value_unit, conductivity=conductivity_unit)
         shape = scaled_shape(self.problem.shape, big)
         exact = high * self.exact.scaled(big)
-        k = _scaled_conductivity(self.problem.conductivity, big, good)
+        k = scaled_conductivity(self.problem.conductivity, big, good)
         conditions = {
             name: scaled_condition(name, condition, self.dim, big, good)
             for name, condition in self._conditions.items()
@@ -153,7 +165,9 @@ class Case:
                 conductivity=k,
                 constant=scaled_constant(self.problem.constant, big, high),
                 coordinates=self.problem.coordinates,
+                at_infinity=scaled_at_infinity(self.problem.at_infinity, big, high),
             ),
+            window=None if self.window is None else scaled_shape(self.window, big),
             exact=exact,
             regularity=scaled_regularity(self.regularity, big),
             quantities={
@@ -185,6 +199,8 @@ def case(
     quantities: Mapping[str, QuantitySpec] | None = None,
     constant: Any = None,
     coordinates: Coordinates = "cartesian",
+    at_infinity: Any = None,
+    window: Shape | None = None,
 ) -> Case:
     """Return the case whose exact solution is `field`; boundary data are derived from it.
 
@@ -211,6 +227,12 @@ def case(
         "cartesian", "axisymmetric", "radial-cylinder" or "radial-sphere", see `coordinates`. Pieces on r = 0
         are called "axis" and take no condition; `field` is a function of (r, z) or of r, such as
         `fields.axisymmetric` or `fields.radial` makes.
+    at_infinity
+        Unbounded shapes only: "decay", "bounded", ("log", charge) or ("flow", vector, circulation), see
+        `infinity`; that the field behaves so is checked.
+    window
+        Unbounded shapes only: the bounded region over which norms are taken, which begins at the boundary; by
+        default a ring, shell, rectangle or box next to it.
 
     Raises
     ------
@@ -228,6 +250,8 @@ def case(
     ('neumann', inf)
     """
     shape = in_coordinates(is_shape(shape), coordinates)
+    infinity, view = as_at_infinity(at_infinity, shape), as_window(window, shape)
+    seen = shape if view is None else Windowed(shape, view)
     axis = axis_names(shape, coordinates)
     _check_words(id, field)
     if field.dim != shape.dim:
@@ -238,17 +262,21 @@ def case(
             f"the field has dimension {field.dim}, the shape {shape!r} has dimension {shape.dim}{hint}"
         )
     k = as_conductivity(conductivity, shape.dim, coordinates)
+    one_region(shape, k)
     tensor = k if isinstance(k, Materials) else as_tensor(k, shape.dim)
     complete = _derived(shape, conditions, axis)
-    _check_solution(shape, field, tensor, coordinates)
+    _check_solution(seen, field, tensor, coordinates)
+    if isinstance(seen, Windowed):
+        check_far(field, infinity, seen)
+        check_infinite_quantities(quantities or {}, shape, infinity)
     kinds: dict[str, PieceKind] = {name: condition.kind for name, condition in complete.items()}
     for name in axis:
         kinds[name] = "axis"
-    regularity = derive(shape, field, kinds, tensor, coordinates)
-    pieces = _pieces(shape, complete, field, k)
+    regularity = derive(seen, field, kinds, tensor, coordinates)
+    pieces, singular = _pieces(shape, complete, field, k), regularity.singular_points
     for piece in pieces:  # a field that is not defined on the boundary shows here, by the piece's name
         if piece.kind != AXIS:
-            piece.data(piece.sample(5)[0])
+            piece.data(seen.pieces[piece.name].sample(5)[0])
     return Case(
         id=id,
         title=title,
@@ -261,12 +289,14 @@ def case(
             shape=shape,
             pieces=pieces,
             conductivity=k,
-            constant=_constant(constant, shape, pieces, field, regularity.singular_points, coordinates),
+            constant=_constant(constant, seen, pieces, field, singular, coordinates, infinity),
             coordinates=coordinates,
+            at_infinity=infinity,
         ),
         exact=field,
         regularity=regularity,
-        quantities=evaluate(quantities or {}, shape, field, tensor, regularity, coordinates),
+        quantities=evaluate(quantities or {}, seen, field, tensor, regularity, coordinates),
+        window=view,
         _conditions=complete,
     )
 
@@ -302,14 +332,6 @@ def _derived(
     }
 
 
-def _scaled_conductivity(conductivity: Conductivity, length: float, factor: float) -> Conductivity:
-    """Return the conductivity of a dimensional twin."""
-    if isinstance(conductivity, Materials):
-        return conductivity.scaled(length, factor)
-    array = np.asarray(conductivity)
-    return as_conductivity(array * factor, len(array) if array.ndim else 1)
-
-
 def _check_solution(
     shape: Shape, field: Field, tensor: Array | Materials, coordinates: Coordinates
 ) -> None:
@@ -328,7 +350,8 @@ def _check_solution(
     check_equation(shape, field, tensor, coordinates)
     if field.opaque:  # a closed form declares its singular points; of a user's function nothing is known
         singular = np.array([s.point for s in field.singularities]).reshape(-1, shape.dim)
-        check_green(shape, field, tensor, singular, coordinates)
+        closed = shape.window if isinstance(shape, Windowed) else shape
+        check_green(closed, field, tensor, singular, coordinates)
 
 
 def _pieces(
@@ -358,12 +381,18 @@ def _pieces(
 
 
 def _constant(
-    given: Any, shape: Shape, pieces: Pieces, field: Field, singular: Array, coordinates: Coordinates
-) -> Constant | None:
-    """Return the constant of a pure Neumann case, by default the mean of the exact field."""
-    if not is_pure_neumann(pieces):
+    given: Any, shape: Shape, pieces: Pieces, field: Field, singular: Array, coordinates: Coordinates,
+    at_infinity: AtInfinity,
+) -> Constant | None:  # fmt: skip
+    """Return the constant of a pure Neumann case, by default the mean of the exact field.
+
+    An unbounded shape has no mean: the default is the value at a point of its boundary.
+    """
+    if not is_pure_neumann(pieces) or fixes_constant(at_infinity):
         no_constant(given)
         return None
+    if isinstance(shape, Windowed):
+        given = point_constant(given, shape, field)
     if given is None:
         return default_constant(shape, field, singular, coordinates)
     constant = as_constant(given, shape)

@@ -41,7 +41,10 @@ def is_pure_neumann(pieces: Iterable[Piece]) -> bool:
     for piece in pieces:
         if piece.kind == "dirichlet":
             return False
-        if piece.kind == "robin" and (piece.alpha(piece.sample(64)[0]) > 0.0).any():
+        if piece.kind != "robin":
+            continue
+        at = piece.sample(64)[0] if np.isfinite(piece.measure) else piece.boundary.outline(64)
+        if (piece.alpha(at) > 0.0).any():
             return False
     return True
 

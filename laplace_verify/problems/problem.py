@@ -33,6 +33,13 @@ from laplace_verify.problems.coordinates import (
     space_dim,
 )
 from laplace_verify.problems.data import PointFunction
+from laplace_verify.problems.infinity import (
+    AtInfinity,
+    as_at_infinity,
+    check_net_flux,
+    fixes_constant,
+    one_region,
+)
 from laplace_verify.problems.materials import Materials
 from laplace_verify.problems.pieces import MoveLog, Piece, Pieces, no_data
 from laplace_verify.problems.regions import Interface, Region, interfaces_of, parts_of, regions_of
@@ -61,7 +68,8 @@ class Problem:
         "cartesian", "axisymmetric" (points are (r, z)), "radial-cylinder" or "radial-sphere" (points are r).
         Weights of `quadrature` and of pieces are those of the shape; times `metric` they are those of space.
     at_infinity
-        None: the shape is bounded.
+        None on bounded shapes, else "decay", "bounded", ("log", charge) or ("flow", vector, circulation), see
+        `infinity`.
     """
 
     name: str
@@ -70,7 +78,7 @@ class Problem:
     conductivity: Conductivity
     constant: Constant | None = None
     coordinates: Coordinates = "cartesian"
-    at_infinity: None = None
+    at_infinity: AtInfinity = None
 
     @property
     def dim(self) -> int:
@@ -163,6 +171,7 @@ def problem(
     *,
     constant: Any = None,
     coordinates: Coordinates = "cartesian",
+    at_infinity: Any = None,
     name: str = "problem",
 ) -> Problem:
     """Return the problem div(K grad u) = 0 with given data on every piece.
@@ -181,6 +190,9 @@ def problem(
     coordinates
         "cartesian", "axisymmetric", "radial-cylinder" or "radial-sphere", see `coordinates`. Pieces on r = 0
         are called "axis" and take no condition.
+    at_infinity
+        Unbounded shapes only: "decay", "bounded", ("log", charge) or ("flow", vector, circulation), see
+        `Problem`.
     name
         A name for messages.
 
@@ -202,6 +214,7 @@ def problem(
     shape = in_coordinates(is_shape(shape), coordinates)
     axis = axis_names(shape, coordinates)
     k = as_conductivity(conductivity, shape.dim, coordinates)
+    one_region(shape, k)
     given = by_piece(shape, conditions, axis)
     missing = [piece.name for piece in shape.pieces if piece.name not in given and piece.name not in axis]
     if missing:
@@ -212,15 +225,39 @@ def problem(
     )
     if isinstance(k, Materials):
         regions_of(shape, k)  # refuses regions that do not fit
-    if is_pure_neumann(pieces):
-        check_balance(shape, pieces, coordinates)
-        fixed: Constant | None = as_constant(("mean", 0.0) if constant is None else constant, shape)
-    else:
-        no_constant(constant)
-        fixed = None
+    infinity = as_at_infinity(at_infinity, shape)
+    fixed = _fixed(shape, pieces, k, constant, coordinates, infinity)
     return Problem(
-        name=name, shape=shape, pieces=pieces, conductivity=k, constant=fixed, coordinates=coordinates
-    )
+        name=name, shape=shape, pieces=pieces, conductivity=k, constant=fixed, coordinates=coordinates,
+        at_infinity=infinity,
+    )  # fmt: skip
+
+
+def _fixed(
+    shape: Shape,
+    pieces: Pieces,
+    conductivity: Conductivity,
+    constant: Any,
+    coordinates: Coordinates,
+    at_infinity: AtInfinity,
+) -> Constant | None:
+    """Return the constant that flux conditions leave free, after checking that the data balance."""
+    if not is_pure_neumann(pieces):
+        no_constant(constant)
+        return None
+    if shape.bounded:
+        check_balance(shape, pieces, coordinates)
+        return as_constant(("mean", 0.0) if constant is None else constant, shape)
+    check_net_flux(shape, pieces, at_infinity, as_tensor(conductivity, shape.dim))
+    if fixes_constant(at_infinity):
+        no_constant(constant)
+        return None
+    if constant is None or constant[0] == "mean":
+        raise ProblemError(
+            "flux conditions leave a constant free and an unbounded shape has no mean: give "
+            f'constant=("point", x, value), got {constant!r}'
+        )
+    return as_constant(constant, shape)
 
 
 def axis_piece(shape: Shape, name: str) -> Piece:

@@ -14,9 +14,11 @@ import numpy as np
 
 from laplace_verify.errors import ProblemError
 from laplace_verify.geometry import Shape
+from laplace_verify.problems.assembly import Conductivity, as_conductivity
 from laplace_verify.problems.compatibility import Constant
 from laplace_verify.problems.conditions import Condition
 from laplace_verify.problems.data import PointFunction, Rescaled
+from laplace_verify.problems.materials import Materials
 from laplace_verify.problems.quantities import Quantity
 from laplace_verify.problems.regularity import Regularity
 from laplace_verify.problems.units import Units
@@ -25,6 +27,7 @@ __all__ = [
     "Scale",
     "as_scale",
     "scaled_condition",
+    "scaled_conductivity",
     "scaled_constant",
     "scaled_quantity",
     "scaled_regularity",
@@ -34,7 +37,7 @@ __all__ = [
 Scale: TypeAlias = float | tuple[float, str] | None
 
 LENGTHS = frozenset({"a", "b", "lower", "upper", "centre", "radius", "semi_axes", "inner", "outer"}) | {
-    "inner_centre", "size", "vertices", "holes", "z0", "z1", "start", "stop", "body",
+    "inner_centre", "size", "vertices", "holes", "z0", "z1", "start", "stop", "body", "gap",
 }  # fmt: skip
 EPS = float(np.finfo(np.float64).eps)
 RATIOS = frozenset({"opening", "splits", "names", "dim"})  # angles, fractions and words stay
@@ -101,6 +104,14 @@ def scaled_condition(
         return replace(condition, alpha=condition.alpha * factor)
     function = PointFunction(condition.alpha, dim, f"Robin's alpha of piece {name!r}")
     return replace(condition, alpha=Rescaled(function, length=length, factor=factor))
+
+
+def scaled_conductivity(conductivity: Conductivity, length: float, factor: float) -> Conductivity:
+    """Return the conductivity of a dimensional twin, from lengths and conductivity as they are."""
+    if isinstance(conductivity, Materials):
+        return conductivity.scaled(length, factor)
+    array = np.asarray(conductivity)
+    return as_conductivity(array * factor, len(array) if array.ndim else 1)
 
 
 def scaled_constant(constant: Constant | None, length: float, value: float) -> Constant | None:

@@ -13,6 +13,8 @@
     quantities                name -> {"kind", "where", "value", "radius", "unit"}; numbers as decimal strings
     units                     of length, value, conductivity; "" if dimensionless
     stored                    high-precision values as decimal strings with radius and basis
+    at_infinity, window       unbounded shapes only: "decay", "bounded", ["log", charge] or ["flow", vector,
+                              circulation], and the bounded shape over which norms are taken
 
 Reading derives data, regularity and quantities again from the exact field and refuses a file that disagrees
 with them, so a file edited by hand cannot bring a wrong answer into a study.
@@ -36,6 +38,7 @@ from laplace_verify.problems.case import Case, case
 from laplace_verify.problems.compatibility import Constant
 from laplace_verify.problems.conditions import Condition, Kind
 from laplace_verify.problems.coordinates import Coordinates
+from laplace_verify.problems.infinity import AtInfinity
 from laplace_verify.problems.materials import Materials
 from laplace_verify.problems.quantities import CLOSED_FORM, Quantity, QuantityKind, QuantitySpec
 from laplace_verify.problems.regularity import Regularity
@@ -117,6 +120,8 @@ class _CaseFile(msgspec.Struct, kw_only=True, forbid_unknown_fields=True, omit_d
     quantities: dict[str, _Quantity]
     units: _Units
     stored: list[_Stored]
+    at_infinity: str | list[Any] | msgspec.UnsetType = msgspec.UNSET
+    window: dict[str, Any] | msgspec.UnsetType = msgspec.UNSET
 
 
 def case_to_json(case: Case) -> bytes:
@@ -163,6 +168,8 @@ def case_to_json(case: Case) -> bytes:
             _Stored(point=s.point, value=s.value, gradient=s.gradient, radius=s.radius, basis=s.basis)
             for s in case.stored
         ],
+        at_infinity=_infinity_to_file(problem.at_infinity),
+        window=msgspec.UNSET if case.window is None else shape_to_spec(case.window),
     )
     return msgspec.json.format(msgspec.json.encode(content), indent=2) + b"\n"
 
@@ -209,6 +216,8 @@ def case_from_json(data: bytes, path: str = "case file") -> Case:
             reading=content.reading,
             quantities=specs,
             constant=_constant_from_file(content.constant),
+            at_infinity=None if content.at_infinity is msgspec.UNSET else content.at_infinity,
+            window=None if content.window is msgspec.UNSET else shape_from_spec(content.window),
             coordinates=content.coordinates,
         )
     _check_regularity(path, content.regularity, made.regularity)
@@ -294,6 +303,14 @@ def _constant_from_file(constant: _Constant | None) -> Any:
     if constant.kind == "mean":
         return ("mean", constant.value)
     return ("point", constant.point, constant.value)
+
+
+def _infinity_to_file(at_infinity: AtInfinity) -> str | list[Any] | msgspec.UnsetType:
+    if at_infinity is None:
+        return msgspec.UNSET
+    if isinstance(at_infinity, str):
+        return at_infinity
+    return [list(part) if isinstance(part, tuple) else part for part in at_infinity]
 
 
 def _regularity_to_file(regularity: Regularity) -> _Regularity:

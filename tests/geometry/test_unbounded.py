@@ -16,6 +16,8 @@ BOUNDED = {
     "ring around a screen": lv.EllipticRing((0, 1), (1, 0), (2, 1)),
     "shell": lv.SpheroidalShell((0, 0, 1), (1, 0.5), (2, 1)),
     "shell around a plate": lv.SpheroidalShell((0, 0, 1), (1, 0), (2, 1)),
+    "shell around a pair": lv.PairShell((0, 0, 1), 1, 0.5, 4),
+    "shell around a near pair": lv.PairShell((0, 0, 1), 1, 0.01, 2.5),
 }
 OUTSIDE = {
     "disc": lv.Exterior(lv.Disc((0, 1), 2)),
@@ -179,6 +181,7 @@ def test_kinds():
         (lambda: lv.EllipticRing((0, 0), (1, 2), (2, 2)), "every outer semi-axis must exceed"),
         (lambda: lv.EllipticRing((0, 0), (0, 0), (2, 2)), "not all zero"),
         (lambda: lv.SpheroidalShell((0, 0, 0), (0, 1), (2, 2)), "inner equatorial semi-axis"),
+        (lambda: lv.PairShell((0, 0, 0), 1, 1, 2.25), "outer must exceed 2 radius"),
         (lambda: lv.HalfSpace(2).pieces["bottom"].sample(5), "is unbounded; take the part of it in a window"),
         (
             lambda: within(lv.HalfSpace(2).pieces["bottom"], HIGH),

@@ -1,4 +1,4 @@
-"""The method of fundamental solutions on discs, ellipses and annuli.
+"""The method of fundamental solutions on discs, ellipses and annuli, inside and outside.
 
     u(x) = c + sum_j q_j log|x - s_j|,    sources s_j outside the closed shape,
 
@@ -7,6 +7,11 @@ twice as many boundary points. The n sources around the shape lie on the confoca
 `DILATION` times as wide in the sense of conformal radius; a hole has n more on a circle that much smaller.
 The charge of the outer sources is zero, because a charged curve can make any constant, and c already does;
 the charge in the hole is free and carries the net flux through it.
+
+Outside a disc or an ellipse the sources lie inside, on the confocal ellipse half as wide, or half-way to
+the segment between the foci if that is nearer. What grows at infinity is known and taken off first: the
+flow V . x and q log|x - c| with the charge q asked for. The sources then have no net charge, and c is 0 if
+u is to decay.
 
 Smooth data converge like DILATION^(-n) or the distance of the nearest singularity of u outside allows. The
 system is ill conditioned on purpose; least squares with truncated singular values keeps the error near 1e-12
@@ -28,7 +33,7 @@ import numpy as np
 
 from laplace_verify.arrays import Array, blocks
 from laplace_verify.errors import AdapterError
-from laplace_verify.geometry import Annulus, Disc, Ellipse, Shape
+from laplace_verify.geometry import Annulus, Disc, Ellipse, Exterior, Shape
 from laplace_verify.problems import Piece, Problem
 from laplace_verify.solvers.adapter import adapt
 from laplace_verify.solvers.answer import Answer
@@ -47,7 +52,8 @@ FINE = 40  # degree of the quadrature that takes the mean for the level
     kind="boundary element",
     order="exponential",
     dims={2},
-    shapes={"disc", "ellipse", "annulus"},
+    shapes={"disc", "ellipse", "annulus", "exterior-disc", "exterior-ellipse"},
+    unbounded=True,
     conditions={"dirichlet", "neumann", "robin"},
     error_floor=1e-10,
     formulation="indirect",
@@ -55,41 +61,82 @@ FINE = 40  # degree of the quadrature that takes the mean for the level
 )
 def fundamental_solutions(problem: Problem, n: int) -> Answer:
     """Solve with n sources on every enclosing curve."""
-    curves = source_curves(problem.shape, n)
-    pieces = [condition_rows(piece, problem, curves, n) for piece in problem.pieces]
+    curves, far = source_curves(problem.shape, n), FarField.of(problem)
+    pieces = [condition_rows(piece, problem, curves, n, far) for piece in problem.pieces]
     rows, load = (np.concatenate(part) for part in zip(*pieces, strict=True))
+    if problem.at_infinity == "decay":
+        rows[:, -1] = 0.0  # the constant is 0
     unknown = truncated_least_squares(rows, load)
     solution = Sources(
-        points=np.concatenate(curves), strengths=uncharged(unknown[:-1], n), constant=unknown[-1]
+        points=np.concatenate(curves), strengths=uncharged(unknown[:-1], n), constant=unknown[-1], far=far
     )
-    if not np.any(rows[:, -1]):  # no condition sees the constant
-        points, weights = problem.shape.quadrature(FINE)
-        mean = float(np.average(solution.value(points), weights=weights))
+    if not np.any(rows[:, -1]) and problem.at_infinity != "decay":  # no condition sees the constant
+        mean = 0.0
+        if problem.shape.bounded:
+            points, weights = problem.shape.quadrature(FINE)
+            mean = float(np.average(solution.value(points), weights=weights))
         solution = replace(solution, constant=solution.constant + level_shift(problem, mean, solution.value))
     return Answer(evaluate=solution.value, gradient=solution.gradient, unknowns=rows.shape[1])
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
+class FarField:
+    """vector . x + charge log|x - centre|: what grows at infinity, known from the problem."""
+
+    vector: Array
+    charge: float
+    centre: Array
+
+    @classmethod
+    def of(cls, problem: Problem) -> FarField:
+        """Return the far field that a problem asks for; zero in bounded shapes."""
+        known, vector, charge = problem.at_infinity, np.zeros(2), 0.0
+        if isinstance(known, tuple) and known[0] == "log":
+            charge = float(known[1])
+        elif isinstance(known, tuple):
+            vector, charge = np.array(known[1]), -float(known[2]) / (2.0 * math.pi)
+        body = problem.shape.body if isinstance(problem.shape, Exterior) else None
+        centre = body.centre if isinstance(body, Disc | Ellipse) else (0.0, 0.0)
+        return cls(vector=vector, charge=charge, centre=np.array(centre))
+
+    def value(self, points: Array) -> Array:
+        """Return the far field, shape (m,)."""
+        if not self.charge:
+            return points @ self.vector
+        result: Array = points @ self.vector + self.charge * logarithms(points, self.centre[None])[:, 0]
+        return result
+
+    def gradient(self, points: Array) -> Array:
+        """Return its gradient, shape (m, 2)."""
+        if not self.charge:
+            return np.tile(self.vector, (len(points), 1))
+        pull = np.stack([part[:, 0] for part in inverse_distances(points, self.centre[None])], axis=1)
+        result: Array = self.vector + self.charge * pull
+        return result
+
+
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Sources:
-    """u = constant + sum of strengths * log|x - points|."""
+    """u = far field + constant + sum of strengths * log|x - points|."""
 
     points: Array
     strengths: Array
     constant: float
+    far: FarField
 
     def value(self, points: Array) -> Array:
         """Return u, shape (m,)."""
-        result = np.empty(len(points))
+        result = self.far.value(points)
         for block in blocks(len(points), BLOCK):
-            result[block] = self.constant + logarithms(points[block], self.points) @ self.strengths
+            result[block] += self.constant + logarithms(points[block], self.points) @ self.strengths
         return result
 
     def gradient(self, points: Array) -> Array:
         """Return grad u, shape (m, 2)."""
-        result = np.empty((len(points), 2))
+        result = self.far.gradient(points)
         for block in blocks(len(points), BLOCK):
             pull = inverse_distances(points[block], self.points)
-            result[block] = np.stack([part @ self.strengths for part in pull], axis=1)
+            result[block] += np.stack([part @ self.strengths for part in pull], axis=1)
         return result
 
 
@@ -114,7 +161,15 @@ def source_curves(shape: Shape, n: int) -> list[Array]:
         return [confocal(np.array(shape.centre), (shape.outer, shape.outer), DILATION, n), hole]
     if isinstance(shape, Disc | Ellipse):
         return [confocal(np.array(shape.centre), shape.semi_axes, DILATION, n)]
-    raise AdapterError(f"sources can be placed around discs, ellipses and annuli, got {shape!r}")
+    if isinstance(shape, Exterior) and isinstance(shape.body, Disc | Ellipse):
+        a, b = shape.body.semi_axes
+        # the segment between the foci has a + b = sqrt(|a^2 - b^2|)
+        shrunk = max(1.0 / DILATION, (abs(a - b) / (a + b)) ** 0.45)
+        return [confocal(np.array(shape.body.centre), (a, b), shrunk, n)]
+    raise AdapterError(
+        "sources can be placed around discs, ellipses and annuli, and inside discs and ellipses, "
+        f"got {shape!r}"
+    )
 
 
 def confocal(centre: Array, semi_axes: Sequence[float], dilation: float, n: int) -> Array:
@@ -135,7 +190,9 @@ def columns(terms: Array, n: int) -> Array:
     return np.concatenate([terms[:, :n] - terms[:, :n].mean(axis=1, keepdims=True), terms[:, n:]], axis=1)
 
 
-def condition_rows(piece: Piece, problem: Problem, curves: list[Array], n: int) -> tuple[Array, Array]:
+def condition_rows(
+    piece: Piece, problem: Problem, curves: list[Array], n: int, far: FarField
+) -> tuple[Array, Array]:
     """Return the equations of one piece, weighted by the square roots of the lengths they stand for."""
     points, normals, weights = piece.sample(
         max(4, math.ceil(2 * n * piece.measure / loop_length(piece, problem)))
@@ -143,13 +200,17 @@ def condition_rows(piece: Piece, problem: Problem, curves: list[Array], n: int) 
     sources, root = np.concatenate(curves), np.sqrt(weights)[:, np.newaxis]
     value = np.append(columns(logarithms(points, sources), n), np.ones((len(points), 1)), axis=1)
     if piece.kind == "dirichlet":
-        return root * value, root[:, 0] * piece.data(points)
+        return root * value, root[:, 0] * (piece.data(points) - far.value(points))
     x, y = inverse_distances(points, sources)
     slope = columns(normals[:, :1] * x + normals[:, 1:] * y, n)
-    rows = problem.tensor[0, 0] * np.append(slope, np.zeros((len(points), 1)), axis=1)
+    k = problem.tensor[0, 0]
+    rows = k * np.append(slope, np.zeros((len(points), 1)), axis=1)
+    load = piece.data(points) - k * (normals * far.gradient(points)).sum(axis=1)
     if piece.kind == "robin":
-        rows += piece.alpha(points)[:, np.newaxis] * value
-    return root * rows, root[:, 0] * piece.data(points)
+        alpha = piece.alpha(points)
+        rows += alpha[:, np.newaxis] * value
+        load -= alpha * far.value(points)
+    return root * rows, root[:, 0] * load
 
 
 def loop_length(piece: Piece, problem: Problem) -> float:
