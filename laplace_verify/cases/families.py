@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from laplace_verify.cases import (
     boxes,
+    boxes_faces,
     corners,
     corners_fitted,
     discs,
@@ -15,6 +16,7 @@ from laplace_verify.cases import (
     polygons,
     rings,
     rods,
+    round_faces,
     round_solids,
     sectors,
     wedges,
@@ -38,5 +40,7 @@ FAMILIES = joined(
     wedges.family,
     boxes.family,
     round_solids.family,
+    boxes_faces.family,
+    round_faces.family,
     materials.family,
 )

@@ -2,6 +2,8 @@
 
 from laplace_verify.fields.affine import affine
 from laplace_verify.fields.base import Field
+from laplace_verify.fields.box_faces import box_faces
+from laplace_verify.fields.box_modes import box_mode
 from laplace_verify.fields.checkerboards import checkerboard, checkerboard_ratio
 from laplace_verify.fields.corner_powers import (
     CornerPowers,
@@ -10,9 +12,12 @@ from laplace_verify.fields.corner_powers import (
     PolynomialPart,
     corner_powers,
 )
+from laplace_verify.fields.cylinder_faces import cylinder_faces
 from laplace_verify.fields.disc_arcs import arcs
+from laplace_verify.fields.edges import Edge, Ring
 from laplace_verify.fields.exponentials import exp_trig
 from laplace_verify.fields.formula import Formula
+from laplace_verify.fields.hemispheres import hemispheres
 from laplace_verify.fields.piecewise import parabola, piecewise, ramp, step, tent
 from laplace_verify.fields.piecewise_regions import by_region
 from laplace_verify.fields.plate_modes import coefficient_rule, modes
@@ -27,24 +32,31 @@ from laplace_verify.fields.specs import from_spec
 from laplace_verify.fields.stretched import stretched
 from laplace_verify.fields.user import field
 from laplace_verify.fields.wedges import wedge
+from laplace_verify.fields.zonal import ball_zonal, shell_zonal
 
 __all__ = [
     "CornerPowers",
     "CornerSeries",
     "Cut",
+    "Edge",
     "Enclosure",
     "Expansion",
     "Field",
     "Formula",
     "PolynomialPart",
+    "Ring",
     "Singularity",
     "affine",
     "arcs",
+    "ball_zonal",
+    "box_faces",
+    "box_mode",
     "by_region",
     "checkerboard",
     "checkerboard_ratio",
     "coefficient_rule",
     "corner_powers",
+    "cylinder_faces",
     "dipole",
     "elliptic_multipole",
     "exp_trig",
@@ -52,6 +64,7 @@ __all__ = [
     "flow_past",
     "fourier",
     "from_spec",
+    "hemispheres",
     "log_source",
     "modes",
     "parabola",
@@ -62,6 +75,7 @@ __all__ = [
     "radial",
     "ramp",
     "rectangle_series",
+    "shell_zonal",
     "solid",
     "step",
     "stretched",

@@ -22,6 +22,7 @@ from laplace_verify.contexts import FLOAT, MAX_DIGITS, Number, Precise
 from laplace_verify.errors import FieldError
 from laplace_verify.fields._inputs import Side, as_sides, columns, equals, is_number, name_of, text_of
 from laplace_verify.fields._precision import agreeing, real, working
+from laplace_verify.fields.edges import Edge, Ring
 from laplace_verify.fields.exact import exact_point, whole
 from laplace_verify.fields.singular import Basis, Cut, Enclosure, Singularity
 
@@ -68,6 +69,11 @@ class Field(ABC):
     @property
     def cuts(self) -> tuple[Cut, ...]:
         """Branch cuts (plane fields only)."""
+        return ()
+
+    @property
+    def edges(self) -> tuple[Edge | Ring, ...]:
+        """Curves along which the field is not smooth (fields of space only)."""
         return ()
 
     @property
@@ -329,6 +335,15 @@ class Field(ABC):
                     f"the gradient of {self.formula} is infinite at {where}: "
                     f"u ~ r^{singularity.exponent:.4g} there; leave this point out"
                 )
+        for edge in self.edges if place is None else ():  # precise values tell by themselves
+            if edge.exponent > 0 and not (derivative and edge.exponent <= 1):
+                continue  # the value has a limit there
+            hit = edge.meets(points)
+            if hit.any():
+                where = name_of(points, hit, first, place)
+                if edge.exponent > 0:
+                    raise FieldError(f"the gradient of {self.formula} is infinite at {where}, on an edge")
+                raise FieldError(f"{self.formula} jumps at {where}, on an edge: it has no single value there")
         for cut in self.cuts:
             if place is None:
                 hit = cut.meets(points)

@@ -12,6 +12,7 @@ from laplace_verify.contexts import Number
 from laplace_verify.errors import FieldError
 from laplace_verify.fields.affine import join_terms
 from laplace_verify.fields.base import Field
+from laplace_verify.fields.edges import Edge, Ring
 from laplace_verify.fields.exact import Exact, exact, rational
 from laplace_verify.fields.singular import Basis, Cut, Singularity, weakest_basis
 from laplace_verify.fields.specs import registered
@@ -55,6 +56,11 @@ class Combination(Field):
     def cuts(self) -> tuple[Cut, ...]:
         """Those of all terms, each once."""
         return tuple(dict.fromkeys(c for term in self.terms for c in term.cuts))
+
+    @property
+    def edges(self) -> tuple[Edge | Ring, ...]:
+        """Those of all terms, each once."""
+        return tuple(dict.fromkeys(e for term in self.terms for e in term.edges))
 
     @property
     def basis(self) -> Basis:

@@ -55,6 +55,10 @@ class Inverted(Field):
         if not self.radius > 0:
             raise FieldError(f"radius must be positive, got {self.radius}")
         _ = self.cuts  # refuses cuts that would become arcs
+        if self.field.edges:
+            raise FieldError(
+                f"{self.field.formula} jumps along edges, whose images would be arcs; use one without edges"
+            )
 
     @property
     def dim(self) -> int:

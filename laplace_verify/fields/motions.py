@@ -17,6 +17,7 @@ from laplace_verify.contexts import FLOAT
 from laplace_verify.errors import FieldError
 from laplace_verify.fields._precision import working
 from laplace_verify.fields.base import Field
+from laplace_verify.fields.edges import Edge, Ring
 from laplace_verify.fields.exact import Exact, exact, exact_point, offset, show
 from laplace_verify.fields.singular import Basis, Cut, Singularity
 from laplace_verify.fields.specs import registered
@@ -81,6 +82,12 @@ class Moved(Field):
             start_x, start_y = _image(matrix, vector, cut.start)
             moved.append(Cut(start=(start_x, start_y), direction=(dx, dy), length=cut.length * stretch))
         return tuple(moved)
+
+    @property
+    def edges(self) -> tuple[Edge | Ring, ...]:
+        """The moved edges."""
+        matrix, vector = self._map()
+        return tuple(edge.moved(matrix, vector) for edge in self.field.edges)
 
     @property
     def basis(self) -> Basis:

@@ -1,7 +1,7 @@
 """The exact solution at sample points: evaluated once per point set, NaN where it has no single value.
 
-Points on a branch cut (the lips of a slit), at a jump or pole, or off the shape where the field does not
-hold, carry no error; the norms leave them out and report their share.
+Points on a branch cut (the lips of a slit), at a jump or pole, on an edge where data jump, or off the shape
+where the field does not hold, carry no error; the norms leave them out and report their share.
 """
 
 from __future__ import annotations
@@ -68,6 +68,8 @@ class Exact:
             for singularity in self.field.singularities:
                 offset = points - np.asarray(singularity.point, dtype=np.float64)
                 usable &= np.sqrt((offset**2).sum(axis=1)) > NEAR * self.shape.extent
+            for edge in self.field.edges:
+                usable &= edge.distance(points) > NEAR * self.shape.extent
             usable &= self.shape.contains(points)
             shape: tuple[int, ...] = (len(points),)
             if function == self.field.gradient:

@@ -12,7 +12,14 @@ from laplace_verify.fields import Field, Singularity
 from laplace_verify.geometry import Boundary
 from laplace_verify.problems.conditions import Kind
 from laplace_verify.problems.data import PointFunction
-from laplace_verify.problems.limits import bounded_limit, directions_along, near, sides_on
+from laplace_verify.problems.limits import (
+    AT_POINT,
+    bounded_limit,
+    directions_along,
+    limits_at_edge,
+    near,
+    sides_on,
+)
 from laplace_verify.problems.materials import Materials
 
 __all__ = ["BoundaryField", "ExactData"]
@@ -76,6 +83,8 @@ class BoundaryField:
         apart = np.ones(len(points), dtype=bool)
         for singularity in self._field.singularities:
             apart &= (points != np.asarray(singularity.point)).any(axis=1)
+        for edge in self._field.edges:
+            apart &= ~edge.meets(points)
         values[apart] = self._named(self._value, points[apart])
         fluxes[apart] = self._named(self._flux, points[apart])
         return values, fluxes
@@ -113,6 +122,20 @@ class BoundaryField:
                     f"point out"
                 )
             values[hit], ordinary[hit] = limit, False
+        for edge in self._field.edges:
+            if edge.exponent > float(derivative):
+                continue  # the value (the gradient) has a limit
+            hit = ordinary & (edge.distance(points) <= AT_POINT * self._size)
+            if not hit.any():
+                continue
+            if derivative and edge.exponent < 1.0:  # r log r: the flux has a limit on either side
+                row = int(np.flatnonzero(hit)[0])
+                raise ProblemError(
+                    f"the flux n . K grad u on piece {self._boundary.name!r} has no finite limit at point "
+                    f"{row} = {tuple(points[row].tolist())}, on an edge where it is infinite; leave it out"
+                )
+            values[hit] = limits_at_edge(function, self._boundary, edge, points[hit], self._size)
+            ordinary[hit] = False
         if ordinary.any():
             values[ordinary] = self._named(function, points[ordinary])
         return values

@@ -18,7 +18,7 @@ from collections.abc import Callable, Sequence
 import numpy as np
 
 from laplace_verify.arrays import Array, BoolArray
-from laplace_verify.fields import Cut, Field, Singularity
+from laplace_verify.fields import Cut, Edge, Field, Ring, Singularity
 from laplace_verify.geometry import Boundary
 
 __all__ = ["bounded_limit", "directions_along", "limits_at_edge", "near", "sides_on"]
@@ -107,3 +107,33 @@ def bounded_limit(
             return None
         limits.append(2.0 * first - second)
     return sum(limits) / len(limits) if limits else None
+
+
+def limits_at_edge(
+    function: Callable[[Array], Array], boundary: Boundary, edge: Edge | Ring, points: Array, size: float
+) -> Array:
+    """Return the limits (n,) of `function` along a surface piece at points (n, 3) on an edge where u jumps.
+
+    Where the edge bounds the piece, the limit is taken on the way to the piece's middle, which leads off
+    every other edge at a vertex too. Where it runs through the piece (the equator of a sphere), it is the
+    mean of the limits from both sides, which is the limit along the normal.
+    """
+    delta = OFFSET * size
+    across = np.cross(boundary.normals(points), edge.tangents(points))
+    ways = [_on_piece(boundary, points, sign * across, delta) for sign in (1.0, -1.0)]
+    inside = ways[0] & ways[1]
+    middle = boundary.point(np.array([[0.5, 0.5]]))[0] - points
+    middle /= np.sqrt((middle**2).sum(axis=1, keepdims=True))
+    limits = np.zeros(len(points))
+    for sign in (1.0, -1.0):
+        way = np.where(inside[:, None], sign * across, middle)
+        first, second = (function(boundary.project(points + k * delta * way)) for k in (1.0, 2.0))
+        limits += first - second / 2.0
+    return limits
+
+
+def _on_piece(boundary: Boundary, points: Array, ways: Array, delta: float) -> BoolArray:
+    """Return from which points a step along a unit tangent stays on the piece."""
+    steps = boundary.project(points + delta * ways) - points
+    stays: BoolArray = np.sqrt((steps**2).sum(axis=1)) > delta / 2.0
+    return stays

@@ -255,6 +255,14 @@ def _quadrature(
 def _hidden(name: str, kind: str, piece: Boundary, seen: BoundaryField, field: Field, size: float) -> float:
     """Return how much of an integral the innermost panels at singular points may hide."""
     hidden = 0.0
+    for edge in field.edges:
+        along = edge.sample(5)
+        if edge.exponent <= 0.0 and piece.contains(along).any():
+            what = "flux through" if kind == "flux" else "energy at"
+            raise ProblemError(
+                f"quantity {name!r}: the {what} piece {piece.name!r} is infinite, because boundary data "
+                f"jump along its edge through {tuple(along[piece.contains(along)][0].tolist())}"
+            )
     for singularity in field.singularities:
         place = np.array([singularity.point])
         if not near(piece.project(place), singularity.point, size).all():

@@ -1,7 +1,7 @@
 """How smooth solution and shape are: the exponents that limit the order of any method.
 
-*Solution.* Near a singular point on the closed shape u - smooth ~ r**e; the smallest e counts, 0 for a jump
-of boundary data, infinity if there is none.
+*Solution.* Near a singular point or edge on the closed shape u - smooth ~ r**e; the smallest e counts, 0 for
+a jump of boundary data, infinity if there is none.
 
 *Domain.* Where two pieces meet at the interior angle w, solutions with smooth data behave like r**(pi/w) if
 both pieces carry the same type of condition (Dirichlet, or flux: Neumann and Robin) and r**(pi/(2 w)) if
@@ -33,12 +33,13 @@ from laplace_verify.problems.conditions import PieceKind
 from laplace_verify.problems.coordinates import AXIS, Coordinates, cone_exponent
 from laplace_verify.problems.materials import Materials
 from laplace_verify.problems.regions import InterfaceKind, interface_kind, region_lengths
-from laplace_verify.problems.singular_checks import on_shape
+from laplace_verify.problems.singular_checks import edge_points, on_shape
 from laplace_verify.problems.transmission import interface_exponent
 
 __all__ = ["Regularity", "derive"]
 
 SAMPLES = {1: 1, 2: 64, 3: 144}  # points of a piece when gaps between pieces are measured
+ON_EDGE = 5  # points that stand for an edge along which data jump
 COINCIDENT = 1e-9  # of the shape's size: the lips of a slit have no gap
 
 
@@ -57,7 +58,8 @@ class Regularity:
     scale
         Smallest length that matters; grids coarser than half of it are not judged.
     jumps
-        Those of the singular points where boundary data jump, shape (k, d).
+        Those of the singular points where boundary data jump, and a few points of every edge along which
+        they do, shape (k, d).
     interface
         "" in a homogeneous shape. Else the solution is smooth only region by region (`solution` speaks of
         the regions), and the interfaces are "aligned" (planes along the axes), "oblique" or "curved".
@@ -99,7 +101,9 @@ def derive(
     singular = on_shape(shape, field)
     places = list(dict.fromkeys(s.point for s in singular))
     jumps = list(dict.fromkeys(s.point for s in singular if s.kind == "jump"))
-    exponents = [s.exponent for s in singular]
+    edges = [(edge.exponent, edge_points(shape, edge, ON_EDGE)) for edge in field.edges]
+    jumps += dict.fromkeys(tuple(p) for e, points in edges if e <= 0.0 for p in points.tolist())
+    exponents = [s.exponent for s in singular] + [e for e, points in edges if len(points)]
     scale, beyond = _scale(shape, field, places), math.inf
     interface: InterfaceKind = ""
     least = float(shape.bounding_box[0][0])
@@ -161,6 +165,9 @@ def _scale(shape: Shape, field: Field, places: list[tuple[float, ...]]) -> float
     lengths += _gaps(shape)
     if field.singularities:
         away = shape.distance(np.array([s.point for s in field.singularities]))
+        lengths += away[away > COINCIDENT * shape.size].tolist()
+    for edge in field.edges:
+        away = shape.distance(edge.sample(ON_EDGE))
         lengths += away[away > COINCIDENT * shape.size].tolist()
     if len(places) > 1:
         lengths.append(float(pdist(np.array(places)).min()))

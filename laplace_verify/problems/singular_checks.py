@@ -14,18 +14,26 @@ import numpy as np
 
 from laplace_verify.arrays import Array
 from laplace_verify.errors import FieldError, ProblemError
-from laplace_verify.fields import Cut, Field, Singularity
+from laplace_verify.fields import Cut, Edge, Field, Ring, Singularity
 from laplace_verify.geometry import Shape
 
-__all__ = ["check_axis", "check_singularities", "on_shape"]
+__all__ = ["check_axis", "check_singularities", "edge_points", "on_shape"]
 
 ON_BOUNDARY = 1e-9  # of the shape's size
+ALONG = 33  # points at which an edge is looked at
 SHORTEST = 1e-4  # of the shape's size: intervals of a cut that are not halved further
 
 
 def on_shape(shape: Shape, field: Field) -> tuple[Singularity, ...]:
     """Return the field's singular points that lie in the closed shape."""
     return tuple(s for s in field.singularities if shape.contains(np.array([s.point]), tol=ON_BOUNDARY).all())
+
+
+def edge_points(shape: Shape, edge: Edge | Ring, count: int = ALONG) -> Array:
+    """Return those of evenly spaced points (n, 3) of an edge that lie in the closed shape."""
+    points = edge.sample(count)
+    inside: Array = points[shape.contains(points, tol=ON_BOUNDARY)]
+    return inside
 
 
 def check_singularities(shape: Shape, field: Field, meeting: tuple[float, ...] | None = None) -> None:
@@ -36,8 +44,8 @@ def check_singularities(shape: Shape, field: Field, meeting: tuple[float, ...] |
     Raises
     ------
     ProblemError
-        If a declared singular point lies inside, a log or pole on the boundary, or a cut crosses the
-        interior.
+        If a declared singular point lies inside, a log or pole on the boundary, or a cut or an edge
+        crosses the interior.
     """
     for singularity in on_shape(shape, field):
         if meeting is not None and singularity.kind == "power" and singularity.point == meeting:
@@ -47,6 +55,14 @@ def check_singularities(shape: Shape, field: Field, meeting: tuple[float, ...] |
             raise ProblemError(
                 f"{field.formula} is no solution in {shape!r}: it has a singular point ({singularity.kind}) "
                 f"{'inside' if inside else 'on the boundary'} at {singularity.point}; move the point outside"
+            )
+    for edge in field.edges:
+        along = edge_points(shape, edge)
+        within = along[shape.distance(along) > ON_BOUNDARY * shape.size] if len(along) else along
+        if len(within):
+            raise ProblemError(
+                f"{field.formula} is no solution in {shape!r}: it jumps along an edge inside, for example at "
+                f"{tuple(within[0].tolist())}; the edge must lie on the boundary or outside"
             )
     for cut in field.cuts:
         crossing = _point_inside(shape, cut)
