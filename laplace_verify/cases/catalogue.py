@@ -9,6 +9,7 @@ from pathlib import Path
 from laplace_verify.cases.families import FAMILIES
 from laplace_verify.errors import ProblemError, RecordError, UnknownCaseError, nearest_names
 from laplace_verify.problems import Case, case_from_json, random_case
+from laplace_verify.problems.coordinates import COORDINATES
 
 __all__ = ["Catalogue", "catalogue"]
 
@@ -28,7 +29,7 @@ class Catalogue(Mapping[str, Case]):
     >>> catalogue["plate-saddle"].exact.formula
     'Re (x + i y)^2'
     >>> [case.id for case in catalogue.select(dim=1, conditions={"neumann"})]
-    ['rod-pure-flux']
+    ['rod-pure-flux', 'pipe-pure-flux']
     """
 
     def __init__(self, builders: Mapping[str, Builder]) -> None:
@@ -72,6 +73,7 @@ class Catalogue(Mapping[str, Case]):
         shape: str | None = None,
         conditions: Iterable[str] | None = None,
         tags: Iterable[str] | None = None,
+        coordinates: str | None = None,
     ) -> list[Case]:
         """Return the cases that match, in order.
 
@@ -85,17 +87,23 @@ class Catalogue(Mapping[str, Case]):
             What a solver can do: a case matches if all conditions it uses are among them.
         tags
             A case matches if it has all of them.
+        coordinates
+            "cartesian", "axisymmetric", "radial-cylinder" or "radial-sphere"; None: whatever they are.
 
         Raises
         ------
         ProblemError
-            If `conditions` or `tags` is a string instead of a set of them.
+            If `conditions` or `tags` is a string instead of a set of them, or coordinates are unknown.
 
         Examples
         --------
         >>> [case.id for case in catalogue.select(dim=3, shape="box", conditions={"neumann"})]
         ['box-pure-flux']
         """
+        if coordinates is not None and coordinates not in COORDINATES:
+            raise ProblemError(
+                f"unknown coordinates {coordinates!r}; {nearest_names(str(coordinates), COORDINATES)}"
+            )
         can, wanted = _words(conditions, "conditions"), _words(tags, "tags")
         return [
             case
@@ -104,6 +112,7 @@ class Catalogue(Mapping[str, Case]):
             and (shape is None or case.problem.shape.is_a(shape))
             and (can is None or case.conditions <= can)
             and (wanted is None or wanted <= case.tags)
+            and (coordinates is None or coordinates == case.problem.coordinates)
         ]
 
     @staticmethod

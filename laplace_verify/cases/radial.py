@@ -27,18 +27,19 @@ PER_LENGTH = "Fluxes are per unit length of the pipe."
 def _pipe_wall_two_temperatures() -> Definition:
     return Definition(
         title="Pipe wall between two temperatures",
-        solution="3 - 2 log(r/0.4)/log 3",
+        solution="3 - 5/4 log(r/0.4)",
         note=PER_LENGTH,
         reading="The wall of the sea-water intake of Marram Bay, warm water inside and cold sand outside.",
         shape=Interval(0.4, 1.2),
-        field=radial("cylinder", repr(3 + 2 * math.log(0.4) / math.log(3)), repr(-2 / math.log(3))),
+        field=radial("cylinder", 3, "-5/4", radius="2/5"),
         conductivity=1.8,
         coordinates="radial-cylinder",
         quantities={
-            "flux through the outside": flux_through("right", exact=-7.2 * math.pi / math.log(3)),
-            "energy": energy_of_solution(exact=14.4 * math.pi / math.log(3)),
+            "flux through the outside": flux_through("right", exact=-4.5 * math.pi),
+            "energy": energy_of_solution(exact=4.5 * math.pi * 1.25 * math.log(3)),
         },
         sources=(PIPE,),
+        reference_points=(("0.4",), ("0.7",), ("1.2",)),
     )
 
 
@@ -59,6 +60,7 @@ def _pipe_wall_convection() -> Definition:
             "value at the inside": value_at((0.5,), exact=1 + 1.5 * math.log(2)),
         },
         sources=(PIPE, SERIES),
+        reference_points=(("0.5",), ("0.65",), ("0.8",)),
     )
 
 
@@ -79,6 +81,7 @@ def _pipe_thick_wall_flux() -> Definition:
             "value at the borehole": value_at((0.25,), exact=2 - 0.8 * math.log(4)),
         },
         sources=(PIPE,),
+        reference_points=(("0.25",), ("0.251",), ("1",), ("2",)),
     )
 
 
@@ -94,7 +97,7 @@ def _pipe_lagged() -> Definition:
         field=by_region(
             wall,
             {
-                name: radial("cylinder", repr(4 - math.log(0.6) / k), 1 / Fraction(str(k)))
+                name: radial("cylinder", 4, 1 / Fraction(str(k)), radius="3/5")
                 for name, k in zip(wall.names, wall.conductivities, strict=True)
             },
         ),
@@ -103,9 +106,10 @@ def _pipe_lagged() -> Definition:
         coordinates="radial-cylinder",
         quantities={
             "flux through the outside": flux_through("right", exact=2 * math.pi),
-            "value at the joint": value_at((0.6,)),
+            "value at the joint": value_at((0.6,), exact=4),
         },
         sources=(SERIES,),
+        reference_points=(("0.5",), ("0.55",), ("0.7",), ("0.9",)),
     )
 
 
@@ -123,6 +127,7 @@ def _pipe_pure_flux() -> Definition:
         coordinates="radial-cylinder",
         quantities={"flux through the drain": flux_through("right", exact=-5 * math.pi)},
         sources=(PIPE, HERE),
+        reference_points=(("0.3",), ("0.9",), ("1.5",)),
     )
 
 
@@ -141,6 +146,7 @@ def _shaft_at_rest() -> Definition:
         quantities={"flux through the mantle": flux_through("right", exact=0)},
         tags=("exactness",),
         sources=(HERE,),
+        reference_points=(("0",), ("0.35",), ("0.7",)),
     )
 
 
@@ -159,6 +165,7 @@ def _tank_wall_two_temperatures() -> Definition:
             "value in the middle": value_at((1.0,), exact="7/5"),
         },
         sources=(TANK,),
+        reference_points=(("0.8",), ("1",), ("1.2",)),
     )
 
 
@@ -178,6 +185,7 @@ def _tank_wall_flux_and_convection() -> Definition:
             "energy": energy_of_solution(exact=4 * math.pi * 0.8 * 2.25 * (2 - 0.8)),
         },
         sources=(TANK,),
+        reference_points=(("0.5",), ("0.85",), ("1.25",)),
     )
 
 
@@ -205,4 +213,5 @@ def _tank_lagged() -> Definition:
             "value at the outside": value_at((1.3,), exact=level),
         },
         sources=(SERIES,),
+        reference_points=(("0.7",), ("0.75",), ("0.9",), ("1.1",), ("1.3",)),
     )

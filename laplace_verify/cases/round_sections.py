@@ -38,6 +38,7 @@ def _pillar_section() -> Definition:
             "flux through the mantle": flux_through("right", exact=-3 * 1.6 * math.pi * 0.64 * 0.56),
         },
         sources=(SOLID,),
+        reference_points=(("0", "0.2"), ("0.4", "-0.3"), ("0.8", "0.9")),
     )
 
 
@@ -57,6 +58,7 @@ def _pillar_section_mixed() -> Definition:
             "value in the middle of the bottom": value_at((0.0, 0.0), exact="5/2"),
         },
         sources=(POINT, SOLID),
+        reference_points=(("0", "0.5"), ("0.000001", "0.001"), ("0.3", "0.6"), ("0.6", "1.1")),
     )
 
 
@@ -73,6 +75,7 @@ def _pillar_section_pure_flux() -> Definition:
         coordinates="axisymmetric",
         quantities={"energy": energy_of_solution()},
         sources=(SOLID,),
+        reference_points=(("0", "0.1"), ("0.25", "-0.2"), ("0.5", "0.6")),
     )
 
 
@@ -92,6 +95,7 @@ def _sleeve_section_mixed() -> Definition:
             "value at the rim": value_at((1.0, 0.6), exact="93/50"),
         },
         sources=(WELL, SOLID),
+        reference_points=(("0.4", "0.1"), ("0.7", "0.2"), ("1", "0.6")),
     )
 
 
@@ -113,6 +117,7 @@ def _sleeve_section_source_in_the_bore() -> Definition:
             ),
         },
         sources=(POINT,),
+        reference_points=(("0.3", "0"), ("0.6", "0.4"), ("0.9", "-0.5")),
     )
 
 
@@ -138,6 +143,7 @@ def _ground_section_layers() -> Definition:
         coordinates="axisymmetric",
         quantities={"value in the joint": value_at((0.5, 0.0), exact="-3/8")},
         sources=(HERE,),
+        reference_points=(("0", "0.25"), ("0", "-0.2"), ("0.35", "0.1"), ("0.7", "-0.4")),
     )
 
 
@@ -159,6 +165,7 @@ def _ground_section_anisotropic() -> Definition:
         coordinates="axisymmetric",
         quantities={"flux through the mantle": flux_through("right")},
         sources=(SOIL, HERE),
+        reference_points=(("0", "0.4"), ("0.6", "0.2"), ("1.2", "0.8")),
     )
 
 
@@ -177,6 +184,7 @@ def _ball_section() -> Definition:
             "value at the centre": value_at((0.0, 0.2), exact="51/125"),
         },
         sources=(SOLID,),
+        reference_points=(("0", "0.2"), ("0.4", "0.5"), ("0.54", "0.92")),
     )
 
 
@@ -196,6 +204,7 @@ def _ball_section_convection() -> Definition:
             "value at the centre": value_at((0.0, 0.0), exact="-4/9"),
         },
         sources=(POINT, HERE),
+        reference_points=(("0", "0.1"), ("0.3", "-0.4"), ("0.48", "0.64")),
     )
 
 
@@ -212,6 +221,7 @@ def _shell_section_mixed() -> Definition:
         coordinates="axisymmetric",
         quantities={"flux through the outer sphere": flux_through("outer", exact=-3.2 * math.pi)},
         sources=(POINT, SOLID),
+        reference_points=(("0", "0.9"), ("0.5", "0.6"), ("0.66", "-0.88")),
     )
 
 
@@ -227,4 +237,5 @@ def _shell_section_off_centre() -> Definition:
         coordinates="axisymmetric",
         quantities={"flux through the inner sphere": flux_through("inner", exact=12 * math.pi)},
         sources=(POINT,),
+        reference_points=(("0", "-0.7"), ("0.42", "0.56"), ("0.54", "0.72")),
     )

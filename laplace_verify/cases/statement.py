@@ -60,7 +60,8 @@ def statement_of(case: Case, solution: str, note: str = "") -> str:
     kinds = dict(case._conditions)
     region = in_symbols(region_in_words(problem.shape), problem.coordinates)
     parts = [f"{equation} in {region}", *conditions_in_words(kinds)]
-    parts += [f"{piece.name} is the axis r = 0" for piece in problem.pieces if piece.kind == "axis"]
+    if any(piece.kind == "axis" for piece in problem.pieces):
+        parts.append("no condition on the axis r = 0")
     if case.problem.constant is not None:
         parts.append("the mean of u given")
     return " ".join(filter(None, [f"{'; '.join(parts)}. Solution u = {solution}.", note]))

@@ -18,6 +18,7 @@ from laplace_verify.fields.edges import Edge, Ring
 from laplace_verify.fields.exponentials import exp_trig
 from laplace_verify.fields.formula import Formula
 from laplace_verify.fields.hemispheres import hemispheres
+from laplace_verify.fields.meridian import axisymmetric
 from laplace_verify.fields.piecewise import parabola, piecewise, ramp, step, tent
 from laplace_verify.fields.piecewise_regions import by_region
 from laplace_verify.fields.plate_modes import coefficient_rule, modes
@@ -48,6 +49,7 @@ __all__ = [
     "Singularity",
     "affine",
     "arcs",
+    "axisymmetric",
     "ball_zonal",
     "box_faces",
     "box_mode",

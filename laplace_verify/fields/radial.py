@@ -29,11 +29,12 @@ SURFACES = ("cylinder", "sphere")
 @registered("radial")
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Radial(Field):
-    """u = a + b log r about a line, u = a + b/r about a point; `radial` makes one."""
+    """u = a + b log(r/radius) about a line, u = a + b/r about a point; `radial` makes one."""
 
     about: str
     a: Exact
     b: Exact
+    radius: Exact = 1
 
     def __post_init__(self) -> None:
         """Check the surface and make the numbers exact."""
@@ -41,6 +42,11 @@ class Radial(Field):
             raise FieldError(f"radial fields belong to a 'cylinder' or a 'sphere', got {self.about!r}")
         object.__setattr__(self, "a", exact(self.a, "a"))
         object.__setattr__(self, "b", exact(self.b, "b"))
+        object.__setattr__(self, "radius", exact(self.radius, "radius"))
+        if not self.radius > 0:
+            raise FieldError(f"radius must be > 0, got {show(self.radius)}")
+        if self.about == "sphere" and self.radius != 1:
+            raise FieldError("radius belongs to the logarithm of a cylinder; about a point u = a + b/r")
 
     @property
     def dim(self) -> int:
@@ -68,17 +74,25 @@ class Radial(Field):
 
     @property
     def formula(self) -> str:
-        """Such as ``3 + 2 log r`` or ``-1 + 2/r``."""
+        """Such as ``3 + 2 log r``, ``3 + 2 log(r/0.5)`` or ``-1 + 2/r``."""
         if self.b == 0:
             return show(self.a)
-        head = f"{show(self.a)} + " if self.a != 0 else ""
-        return f"{head}{show(self.b)} log r" if self.about == "cylinder" else f"{head}{show(self.b)}/r"
+        factor, minus = show(self.b).removeprefix("-"), show(self.b).startswith("-")
+        head = "-" if minus else ""
+        if self.a != 0:
+            head = f"{show(self.a)} {'-' if minus else '+'} "
+        if self.about == "sphere":
+            return f"{head}({factor})/r" if "/" in factor else f"{head}{factor}/r"
+        below = "log r" if self.radius == 1 else f"log(r/({show(self.radius)}))"
+        return f"{head}{factor} {below}"
 
     def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:  # noqa: ARG002  # no cut
         a, b, (r,) = ctx.number(self.a), ctx.number(self.b), x
         if self.b == 0:
             return a + 0 * r
-        return a + b * ctx.log(r) if self.about == "cylinder" else a + b / r
+        if self.about == "sphere":
+            return a + b / r
+        return a + b * ctx.log(r if self.radius == 1 else r / ctx.number(self.radius))
 
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:  # noqa: ARG002
         b, (r,) = ctx.number(self.b), x
@@ -91,8 +105,8 @@ class Radial(Field):
         return valid
 
 
-def radial(about: str, a: Number, b: Number) -> Radial:
-    """Return the radial field a + b log r ("cylinder") or a + b/r ("sphere") as a function of r alone.
+def radial(about: str, a: Number, b: Number, radius: Number = 1) -> Radial:
+    """Return the radial field a + b log(r/radius) ("cylinder") or a + b/r ("sphere"), a function of r alone.
 
     Parameters
     ----------
@@ -100,11 +114,13 @@ def radial(about: str, a: Number, b: Number) -> Radial:
         "cylinder" for flow between coaxial cylinders, "sphere" for flow between concentric spheres.
     a, b
         Numbers, also as strings such as "2/3".
+    radius
+        Where a cylinder's u is `a`; 1 for a sphere.
 
     Raises
     ------
     FieldError
-        If `about` is neither, or a number cannot be read.
+        If `about` is neither, a number cannot be read, or `radius` is not positive or not 1 for a sphere.
 
     Examples
     --------
@@ -113,4 +129,4 @@ def radial(about: str, a: Number, b: Number) -> Radial:
     >>> radial("cylinder", 0, 3).gradient([1.5]).tolist()
     [[2.0]]
     """
-    return Radial(about=about, a=a, b=b)  # type: ignore[arg-type]  # made exact
+    return Radial(about=about, a=a, b=b, radius=radius)  # type: ignore[arg-type]  # made exact

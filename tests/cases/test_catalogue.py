@@ -68,8 +68,18 @@ def test_conditions_are_those_a_solver_can_do():
 
 
 def test_all_tags_are_wanted():
-    found = [case.id for case in lv.catalogue.select(tags={"tensor", "robin"})]
+    found = [case.id for case in lv.catalogue.select(tags={"tensor", "robin"}, coordinates="cartesian")]
     assert found == ["plate-tensor-diagonal", "plate-tensor-oblique", "box-tensor-diagonal"]
+
+
+def test_cases_of_other_coordinates_can_be_told_apart():
+    wanted = ("cartesian", "axisymmetric", "radial-cylinder", "radial-sphere")
+    parts = [lv.catalogue.select(coordinates=name) for name in wanted]
+    assert sum(map(len, parts)) == len(lv.catalogue)
+    assert all(len(part) >= 3 for part in parts)
+    assert {case.dim for case in parts[1]} == {2}
+    with pytest.raises(lv.ProblemError, match="'radial-sphere'"):
+        lv.catalogue.select(coordinates="radial-spheres")
 
 
 def test_shape_matches_special_cases_too():

@@ -62,6 +62,20 @@ def test_negative_radii_and_unknown_surfaces_are_refused():
         fields.radial("sphere", 2, "one")
 
 
+def test_radius_is_where_the_logarithm_vanishes():
+    u = fields.radial("cylinder", 3, -2, radius="2/5")
+    assert u.at(("2/5",), 40) == 3
+    np.testing.assert_allclose(u.value(R), 3 - 2 * np.log(R / 0.4), rtol=0, atol=1e-14)
+    np.testing.assert_allclose(u.gradient(R)[:, 0], -2 / R, rtol=1e-15)
+    assert fields.from_spec(u.spec()) == u
+    assert u.formula == "3 - 2 log(r/(2/5))"
+    for radius in (0, -1):
+        with pytest.raises(FieldError, match="radius must be > 0"):
+            fields.radial("cylinder", 3, -2, radius=radius)
+    with pytest.raises(FieldError, match="belongs to the logarithm"):
+        fields.radial("sphere", 3, -2, radius=2)
+
+
 def test_spec_round_trip_and_formula():
     u = fields.radial("sphere", "-1/3", 2)
     assert fields.from_spec(u.spec()) == u
