@@ -73,6 +73,8 @@ def in_coordinates(shape: Shape, coordinates: Any) -> Shape:
     if shape.dim != dim:
         what = "(r, z) need a shape of the plane" if dim == 2 else "r needs an Interval"
         raise ProblemError(f"{coordinates} coordinates {what}, got {shape!r}")
+    if not shape.bounded:
+        raise ProblemError(f"{coordinates} problems need a bounded shape, got {shape!r}; pose it in space")
     lowest = float(shape.bounding_box[0][0])
     if lowest < -ON_AXIS * shape.extent:
         raise ProblemError(

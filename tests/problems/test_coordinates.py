@@ -79,6 +79,7 @@ def test_problem_with_given_data_needs_none_on_the_axis():
         (lv.Ball((0, 0, 0), 1.0), "axisymmetric", "shape of the plane"),
         (lv.Rectangle((0, 0), (1, 1)), "axisymetric", "'axisymmetric'"),
         (lv.Interval(1, 2), None, "unknown coordinates"),
+        (lv.HalfSpace(2), "axisymmetric", "need a bounded shape"),
     ],
 )
 def test_shapes_that_do_not_fit_the_coordinates_are_refused(shape, coordinates, message):
