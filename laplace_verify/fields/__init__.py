@@ -18,7 +18,9 @@ from laplace_verify.fields.edges import Edge, Ring
 from laplace_verify.fields.exponentials import exp_trig
 from laplace_verify.fields.formula import Formula
 from laplace_verify.fields.hemispheres import hemispheres
+from laplace_verify.fields.joukowski import elliptic_multipole, flow_past
 from laplace_verify.fields.meridian import axisymmetric
+from laplace_verify.fields.patches_loaded import loaded_disc, loaded_rectangle
 from laplace_verify.fields.piecewise import parabola, piecewise, ramp, step, tent
 from laplace_verify.fields.piecewise_regions import by_region
 from laplace_verify.fields.plate_modes import coefficient_rule, modes
@@ -26,10 +28,13 @@ from laplace_verify.fields.poisson_disc import fourier, poisson_disc
 from laplace_verify.fields.polynomials import polynomial
 from laplace_verify.fields.radial import radial
 from laplace_verify.fields.rectangle_series import rectangle_series
+from laplace_verify.fields.sheets import Sheet
 from laplace_verify.fields.singular import Cut, Enclosure, Singularity
 from laplace_verify.fields.solids import solid
 from laplace_verify.fields.sources import dipole, log_source, point_source
 from laplace_verify.fields.specs import from_spec
+from laplace_verify.fields.sphere_pairs import sphere_pair
+from laplace_verify.fields.spheroidal import spheroid_data, spheroid_flow, spheroid_potential
 from laplace_verify.fields.stretched import stretched
 from laplace_verify.fields.user import field
 from laplace_verify.fields.wedges import wedge
@@ -46,6 +51,7 @@ __all__ = [
     "Formula",
     "PolynomialPart",
     "Ring",
+    "Sheet",
     "Singularity",
     "affine",
     "arcs",
@@ -67,6 +73,8 @@ __all__ = [
     "fourier",
     "from_spec",
     "hemispheres",
+    "loaded_disc",
+    "loaded_rectangle",
     "log_source",
     "modes",
     "parabola",
@@ -79,6 +87,10 @@ __all__ = [
     "rectangle_series",
     "shell_zonal",
     "solid",
+    "sphere_pair",
+    "spheroid_data",
+    "spheroid_flow",
+    "spheroid_potential",
     "step",
     "stretched",
     "tent",

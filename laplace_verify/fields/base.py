@@ -24,6 +24,7 @@ from laplace_verify.fields._inputs import Side, as_sides, columns, equals, is_nu
 from laplace_verify.fields._precision import agreeing, real, working
 from laplace_verify.fields.edges import Edge, Ring
 from laplace_verify.fields.exact import exact_point, whole
+from laplace_verify.fields.sheets import Sheet
 from laplace_verify.fields.singular import Basis, Cut, Enclosure, Singularity
 
 if TYPE_CHECKING:
@@ -74,6 +75,11 @@ class Field(ABC):
     @property
     def edges(self) -> tuple[Edge | Ring, ...]:
         """Curves along which the field is not smooth (fields of space only)."""
+        return ()
+
+    @property
+    def sheets(self) -> tuple[Sheet, ...]:
+        """Discs across which the gradient jumps (fields of space only)."""
         return ()
 
     @property
@@ -344,6 +350,18 @@ class Field(ABC):
                 if edge.exponent > 0:
                     raise FieldError(f"the gradient of {self.formula} is infinite at {where}, on an edge")
                 raise FieldError(f"{self.formula} jumps at {where}, on an edge: it has no single value there")
+        for sheet in self.sheets:
+            if not (derivative or sheet.jump):
+                continue
+            hit = sheet.meets(points)
+            if side is not None:
+                hit &= side == 0
+            if hit.any():
+                what = self.formula if sheet.jump else f"the gradient of {self.formula}"
+                raise FieldError(
+                    f"{what} has two values at {name_of(points, hit, first, place)}: say side=+1 (where the "
+                    f"sheet's normal {sheet.normal} points) or side=-1"
+                )
         for cut in self.cuts:
             if place is None:
                 hit = cut.meets(points)

@@ -14,6 +14,7 @@ from laplace_verify.fields.affine import join_terms
 from laplace_verify.fields.base import Field
 from laplace_verify.fields.edges import Edge, Ring
 from laplace_verify.fields.exact import Exact, exact, rational
+from laplace_verify.fields.sheets import Sheet
 from laplace_verify.fields.singular import Basis, Cut, Singularity, weakest_basis
 from laplace_verify.fields.specs import registered
 
@@ -61,6 +62,11 @@ class Combination(Field):
     def edges(self) -> tuple[Edge | Ring, ...]:
         """Those of all terms, each once."""
         return tuple(dict.fromkeys(e for term in self.terms for e in term.edges))
+
+    @property
+    def sheets(self) -> tuple[Sheet, ...]:
+        """Those of all terms, each once."""
+        return tuple(dict.fromkeys(s for term in self.terms for s in term.sheets))
 
     @property
     def basis(self) -> Basis:

@@ -19,6 +19,7 @@ from laplace_verify.fields._precision import working
 from laplace_verify.fields.base import Field
 from laplace_verify.fields.edges import Edge, Ring
 from laplace_verify.fields.exact import Exact, exact, exact_point, offset, show
+from laplace_verify.fields.sheets import Sheet
 from laplace_verify.fields.singular import Basis, Cut, Singularity
 from laplace_verify.fields.specs import registered
 
@@ -88,6 +89,12 @@ class Moved(Field):
         """The moved edges."""
         matrix, vector = self._map()
         return tuple(edge.moved(matrix, vector) for edge in self.field.edges)
+
+    @property
+    def sheets(self) -> tuple[Sheet, ...]:
+        """The moved sheets."""
+        matrix, vector = self._map()
+        return tuple(sheet.moved(matrix, vector) for sheet in self.field.sheets)
 
     @property
     def basis(self) -> Basis:

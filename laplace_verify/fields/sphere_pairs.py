@@ -23,6 +23,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterable
 from dataclasses import dataclass
+from functools import lru_cache
 from typing import Any
 
 import numpy as np
@@ -94,7 +95,7 @@ class SpherePair(Field):
     def singularities(self) -> tuple[Singularity, ...]:
         """The first images of both spheres."""
         x, y, z = (float(c) for c in self.centre)
-        m, d = self._angle(FLOAT)
+        m, d = angle(FLOAT, self.radius, self.gap)
         heights = [d / math.tanh(n * m) for n in range(1, SHOWN + 1)]
         return tuple(
             Singularity(point=(x, y, z + sign * height), exponent=-1.0, kind="pole")
@@ -102,36 +103,9 @@ class SpherePair(Field):
             for sign in (1.0, -1.0)
         )
 
-    def _angle(self, ctx: Any) -> tuple[Any, Any]:
-        """Return m and d; sinh(m/2) = sqrt(g/(4 R)) keeps small gaps."""
-        radius, gap = ctx.number(self.radius), ctx.number(self.gap)
-        half = ctx.sqrt(gap / (4 * radius))
-        return 2 * ctx.asinh(half), ctx.sqrt(gap * (radius + gap / 4))
-
-    def _count(self, ctx: Any, m: Any) -> int:
-        """Return N so that the tail is below a unit of the working precision, of value and gradient."""
-        digits = 17 if ctx is FLOAT else ctx.dps + 2
-        step = float(m)
-        small = -math.expm1(-step)
-        # 2 sinh m/(1 - e^-m)^3 is what stands before e^{-(N+1) m}; the rest is below 1.2 for N m > 1
-        lead = math.log(2.4) + step - 3.0 * math.log(small)
-        return max(2, math.ceil((digits * math.log(10.0) + lead) / step))
-
-    def _images(self, ctx: Any) -> list[tuple[Any, Any, Any]]:
-        """Return (height, charge for the upper potential, charge for the lower one), smallest first."""
-        m, d = self._angle(ctx)
-        radius = ctx.number(self.radius)
-        above, below = (ctx.number(v) for v in self.potentials)
-        lead = radius * ctx.sinh(m)
-        images = []
-        for n in range(self._count(ctx, m), 0, -1):
-            decay = ctx.exp(-n * m)
-            q = 2 * lead * decay / -ctx.expm1(-2 * n * m)
-            height = d * (1 + decay * decay) / -ctx.expm1(-2 * n * m)
-            odd = n % 2 == 1
-            # of the sphere above: odd images above, even ones below with the other sign; below: mirrored
-            images.append((height, above * q if odd else -below * q, below * q if odd else -above * q))
-        return images
+    def _images(self, ctx: Any) -> tuple[tuple[Any, Any, Any], ...]:
+        """Return the images, see `images`."""
+        return images(ctx, self.radius, self.gap, self.potentials)
 
     def _offsets(self, ctx: Any, x: tuple[Any, ...]) -> tuple[Any, Any, Any, Any]:
         dx, dy, dz = (offset(ctx, c, m) for c, m in zip(x, self.centre, strict=True))
@@ -169,6 +143,44 @@ class SpherePair(Field):
         )
         outside: BoolArray = least >= (1.0 - SURFACE) * radius
         return outside
+
+
+def angle(ctx: Any, radius: Exact, gap: Exact) -> tuple[Any, Any]:
+    """Return m and d; sinh(m/2) = sqrt(g/(4 R)) keeps small gaps."""
+    r, g = ctx.number(radius), ctx.number(gap)
+    return 2 * ctx.asinh(ctx.sqrt(g / (4 * r))), ctx.sqrt(g * (r + g / 4))
+
+
+def enough(ctx: Any, m: Any) -> int:
+    """Return N so that the tail is below a unit of the working precision, of value and gradient."""
+    digits = 17 if ctx is FLOAT else ctx.dps + 2
+    step = float(m)
+    small = -math.expm1(-step)
+    # 2 sinh m/(1 - e^-m)^3 is what stands before e^{-(N+1) m}; the rest is below 1.2 for N m > 1
+    lead = math.log(2.4) + step - 3.0 * math.log(small)
+    return max(2, math.ceil((digits * math.log(10.0) + lead) / step))
+
+
+@lru_cache(maxsize=64)
+def images(
+    ctx: Any, radius: Exact, gap: Exact, potentials: tuple[Exact, ...]
+) -> tuple[tuple[Any, Any, Any], ...]:
+    """Return (height, charge at it, charge at minus the height), smallest first.
+
+    Of the sphere above odd images lie above and even ones below with the other sign; of that below they are
+    mirrored.
+    """
+    m, d = angle(ctx, radius, gap)
+    above, below = (ctx.number(v) for v in potentials)
+    lead = ctx.number(radius) * ctx.sinh(m)
+    found = []
+    for n in range(enough(ctx, m), 0, -1):
+        decay = ctx.exp(-n * m)
+        room = -ctx.expm1(-2 * n * m)
+        q, height = 2 * lead * decay / room, d * (1 + decay * decay) / room
+        odd = n % 2 == 1
+        found.append((height, above * q if odd else -below * q, below * q if odd else -above * q))
+    return tuple(found)
 
 
 def sphere_pair(

@@ -386,7 +386,7 @@ def _constant(
 ) -> Constant | None:  # fmt: skip
     """Return the constant of a pure Neumann case, by default the mean of the exact field.
 
-    An unbounded shape has no mean: the default is the value at a point of its boundary.
+    An unbounded shape has no mean: the default is the value at a point of the window.
     """
     if not is_pure_neumann(pieces) or fixes_constant(at_infinity):
         no_constant(given)

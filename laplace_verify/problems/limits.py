@@ -53,9 +53,12 @@ def sides_on(field: Field, boundary: Boundary, points: Array, size: float) -> Ar
 
     None if no point is on a cut; +1 is the left of a cut's direction, 0 stands for points that are on no cut.
     """
-    if not field.cuts:
+    if not (field.cuts or field.sheets):
         return None
     sides = np.zeros(len(points))
+    for sheet in field.sheets:
+        on = sheet.meets(points)
+        sides[on] = np.where(boundary.normals(points[on]) @ np.array(sheet.normal) < 0.0, 1.0, -1.0)
     for cut in field.cuts:
         on = (cut.distance(points) <= AT_POINT * size) & (points != cut.start).any(axis=1)
         if on.any():
