@@ -82,7 +82,7 @@ def test_eccentric_circles_by_two_sources():
     ("depth", "expected"), [("1", "4.7709841915608975399"), ("3/2", "3.5644279563827382235")]
 )
 def test_buried_cylinder_by_its_mirror_image(depth, expected):
-    # Shape factor 2 pi / arccosh(2 z/D), D = 1: Incropera & DeWitt, table 4.1 case 2 (stored); 19 digits
+    # Shape factor 2 pi / arccosh(2 z/D), D = 1: Incropera & DeWitt, table 4.1 case 2; 19 digits
     # computed.
     with mpmath.workdps(30):
         z = mpmath.mpf(1) * int(depth.split("/")[0]) / int(depth.split("/")[-1] if "/" in depth else 1)
@@ -96,7 +96,7 @@ def test_buried_cylinder_by_its_mirror_image(depth, expected):
 
 
 def test_two_cylinders_are_twice_a_buried_one():
-    # Incropera & DeWitt, table 4.1 case 4 (stored), D = 1, w = 2: half of the buried cylinder's; 19 digits
+    # Incropera & DeWitt, table 4.1 case 4, D = 1, w = 2: half of the buried cylinder's; 19 digits
     # computed.
     a = math.sqrt(3) / 2
     field = lv.fields.log_source((a, 0)) - lv.fields.log_source((-a, 0))
