@@ -1,8 +1,14 @@
 """pytest items of a solver: passed, failed, error, skipped, xfailed as promised, also under xdist."""
 
+from importlib.metadata import entry_points
+
 import pytest
 
 pytest_plugins = ["pytester"]
+
+MODULE = "laplace_verify.pytest_plugin"
+INSTALLED = any(entry.value == MODULE for entry in entry_points(group="pytest11"))
+LOAD = [] if INSTALLED else ["-p", MODULE]  # a checkout that is on the path but not installed
 
 FILE = """
 import numpy as np
@@ -34,9 +40,7 @@ def session(pytester):
 
     def run(name, *options):
         pytester.makepyfile(test_solver=FILE + f"\ntest_orders = {name}\n")
-        return pytester.runpytest_inprocess(
-            "-p", "laplace_verify.pytest_plugin", "-p", "no:cacheprovider", *options
-        )
+        return pytester.runpytest_inprocess(*LOAD, "-p", "no:cacheprovider", *options)
 
     return run
 
@@ -85,7 +89,7 @@ def test_laws_are_items_too(pytester):
         test_laws = lv.principle_tests("laplace_verify.solvers.samples:five_point")
         """
     )
-    result = pytester.runpytest_inprocess("-p", "laplace_verify.pytest_plugin", "-v")
+    result = pytester.runpytest_inprocess(*LOAD, "-v")
     result.assert_outcomes(passed=4)
     result.stdout.fnmatch_lines(["*maximum-principle*PASSED*"])
 
