@@ -12,15 +12,15 @@ from jinja2 import Environment, PackageLoader, StrictUndefined
 from markupsafe import Markup
 
 from laplace_verify.report import content
-from laplace_verify.report.svg import figure_to_svg
 from laplace_verify.report.text import SYMBOLS, VERDICT_WORDS, printable
 
 __all__ = ["to_html"]
 
 
-def to_html(document: content.Document) -> str:
-    """Return the document as a complete HTML page."""
-    text: str = _environment().get_template("report.html.jinja").render(document=document)
+def to_html(document: content.Document, figures: dict[str, str]) -> str:
+    """Return the document as a complete HTML page; `figures` maps keys of pictures to SVG of our making."""
+    safe = {key: Markup(svg) for key, svg in figures.items()}
+    text: str = _environment().get_template("report.html.jinja").render(document=document, figures=safe)
     return printable("\n".join(line.rstrip() for line in text.splitlines() if line.strip()) + "\n")
 
 
@@ -36,11 +36,5 @@ def _environment() -> Environment:
     environment.filters["css"] = lambda verdict: VERDICT_WORDS[verdict].replace(" ", "-")
     environment.filters["symbol"] = lambda verdict: SYMBOLS[verdict]
     environment.filters["words"] = lambda verdict: VERDICT_WORDS[verdict]
-    environment.filters["svg"] = _svg
     environment.tests["instance_of"] = lambda entry, name: isinstance(entry, getattr(content, name))
     return environment
-
-
-def _svg(picture: content.Picture) -> Markup:
-    """Draw a picture; the result is markup of our own making."""
-    return Markup(figure_to_svg(picture.draw(), key=picture.key, title=picture.title, alt=picture.alt))

@@ -71,7 +71,15 @@ def test_every_format_is_written_once_and_nothing_else_is_left(written):
     folder, paths = written
     assert tuple(paths) == FORMATS
     assert all(path.is_file() for path in paths.values())
-    names = {"report.html", "report.md", "report.tex", "errors.csv", "record.json", "junit.xml", "figures"}
+    names = {
+        "report.html",
+        "report.md",
+        "report.tex",
+        "errors.csv",
+        "record.json",
+        "junit.xml",
+        "figures.pdf",
+    }
     assert set(os.listdir(folder)) == names
 
 
@@ -84,10 +92,8 @@ def test_same_record_same_bytes_whatever_the_users_settings(short_record, tmp_pa
         }
     assert first == second
     assert {key: value for key, value in mpl.rcParams.items() if key != "backend"} == before
-    for name in os.listdir(tmp_path / "a" / "figures"):
-        assert (tmp_path / "a" / "figures" / name).read_bytes() == (
-            tmp_path / "b" / "figures" / name
-        ).read_bytes()
+    first_figures, second_figures = (tmp_path / name / "figures.pdf" for name in "ab")
+    assert first_figures.read_bytes() == second_figures.read_bytes()
 
 
 def test_report_can_be_written_again_from_its_json(record, written, tmp_path):
@@ -199,8 +205,11 @@ def test_latex_is_balanced_and_escaped(written):
     assert plain.count("{") == plain.count("}")
     assert plain.count("$") % 2 == 0
     assert not re.search(r"[^\x00-\x7FÀ-ÿ]", text)
-    for name in re.findall(r"\\includegraphics\[[^]]*\]\{([^}]+)\}", text):
-        assert (folder / name).read_bytes().startswith(b"%PDF")
+    pages = [int(page) for page in re.findall(r"\\includegraphics\[page=(\d+),[^]]*\]\{figures.pdf\}", text)]
+    assert pages == list(range(1, len(pages) + 1))
+    pdf = (folder / "figures.pdf").read_bytes()
+    assert pdf.startswith(b"%PDF")
+    assert len(re.findall(rb"/Type /Page\b", pdf)) == len(pages) > 8
 
 
 def test_latex_tables_have_as_many_cells_as_columns(written):
