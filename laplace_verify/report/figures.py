@@ -8,7 +8,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 from laplace_verify.measure.results import Level, Study
 from laplace_verify.report.style import (
@@ -19,6 +19,7 @@ from laplace_verify.report.style import (
     SERIES,
     WIDTH,
     drawing,
+    legend_above,
     log_axis,
     new_figure,
 )
@@ -30,7 +31,6 @@ if TYPE_CHECKING:
 
 __all__ = ["convergence_figure", "is_exponential", "order_figure", "shown_norms"]
 
-_COLUMNS = 4  # of the legend
 _MOST = 6  # more lines than this cannot be told apart
 
 
@@ -142,7 +142,7 @@ def _finish_errors(axes: Axes, study: Study, exponential: bool) -> None:
     axes.set_ylabel("error")
     axes.grid(True)
     if axes.get_legend_handles_labels()[0]:
-        _legend(axes)
+        legend_above(axes)
     else:
         _nothing(
             axes, "no level gave an error that can be drawn" if study.levels else "no level was measured"
@@ -165,7 +165,7 @@ def order_figure(study: Study) -> Figure:
         if drawn:
             _frame_orders(axes, drawn + expected)
             log_axis(axes, "x")
-            _legend(axes)
+            legend_above(axes)
         else:
             exact = any(is_exact(found) for found in study.orders.values())
             _nothing(axes, "errors at round-off: no order" if exact else "fewer than two errors: no order")
@@ -205,8 +205,10 @@ def _expected_lines(axes: Axes, study: Study) -> list[float]:
         if isinstance(found.expected, float | int):
             heights.setdefault(float(found.expected), found.tolerance)
     for expected, tolerance in heights.items():
-        axes.axhline(
-            expected, color=INK, linestyle=(0, (1, 1.5)), linewidth=1.2, label=f"expected {order(expected)}"
+        axes.axhline(expected, color=INK, linestyle=(0, (1, 1.5)), linewidth=1.2)
+        axes.annotate(
+            f"expected {order(expected)}", (1.0, expected), xycoords=("axes fraction", "data"),
+            xytext=(0, 4), textcoords="offset points", ha="right", va="bottom", fontsize=7.5,
         )  # fmt: skip
         if tolerance is not None:
             axes.axhline(expected - tolerance, color=QUIET, linestyle=(0, (5, 3)), linewidth=0.8)
@@ -220,18 +222,6 @@ def _frame_orders(axes: Axes, values: Sequence[float]) -> None:
     bottom, top = max(ranked[0], low - 1.5), min(ranked[-1], high + 1.5)
     margin = max(0.15 * (top - bottom), 0.5)
     axes.set_ylim(bottom - margin, top + margin)
-
-
-def _legend(axes: Axes) -> None:
-    """Put the legend above the axes, where no curve can be, row by row (matplotlib fills columns)."""
-    handles, labels = axes.get_legend_handles_labels()
-    columns = min(len(labels), _COLUMNS)
-    order = [k for column in range(columns) for k in range(column, len(labels), columns)]
-    place: dict[str, Any] = {"loc": "lower left", "bbox_to_anchor": (-0.15, 1.0), "borderaxespad": 0.1}
-    axes.legend(
-        [handles[k] for k in order], [labels[k] for k in order],
-        ncols=columns, handlelength=1.8, columnspacing=0.9, handletextpad=0.5, **place,
-    )  # fmt: skip
 
 
 def _nothing(axes: Axes, reason: str) -> None:

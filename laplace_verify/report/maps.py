@@ -9,7 +9,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 import numpy as np
 from scipy.spatial import cKDTree
@@ -25,6 +25,7 @@ from laplace_verify.report.style import (
     WIDTH,
     decade,
     drawing,
+    legend_above,
     log_axis,
     new_figure,
     round_numbers,
@@ -36,8 +37,9 @@ if TYPE_CHECKING:
 
 __all__ = ["case_figure", "error_figure", "inside_outline"]
 
-_PIXELS = 180
+_PIXELS = 150
 _DECADES = 4.0  # shades span at most this many powers of ten below the largest error
+_NAME_LETTER = 0.025  # width of a letter of a name in parts of a drawn shape
 _LINES = {
     "dirichlet": ("-", SERIES[0]),
     "neumann": ((0, (5, 2)), SERIES[1]),
@@ -98,7 +100,7 @@ def _logarithm(errors: Array, floor: float) -> Array:
 
 def _plane_map(figure: Figure, points: Array, errors: Array, pieces: Sequence[PieceInfo]) -> None:
     """Draw the nearest-point map of a plane case inside its outline."""
-    axes = figure.add_axes((0.14, 0.17, 0.6, 0.78))
+    axes = figure.add_axes((0.17, 0.17, 0.58, 0.78))
     outline = [np.asarray(piece.outline, dtype=np.float64) for piece in pieces if len(piece.outline) > 1]
     every = np.vstack([points, *outline]) if outline else points
     lower, upper = every.min(axis=0), every.max(axis=0)
@@ -156,12 +158,12 @@ def _three_views(figure: Figure, points: Array, errors: Array) -> None:
     low, high = _shades(errors)
     values = _logarithm(errors, low)
     lower, upper = points.min(axis=0), points.max(axis=0)
-    cell = float((upper - lower).max()) / max(math.sqrt(len(points) / 3), 4.0)
+    cell = float((upper - lower).max()) / max(math.sqrt(len(points) / 6), 4.0)
     grid = np.clip(((points - lower) / cell).astype(int), 0, None)
     for left, bottom, across, up, along in (
-        (0.12, 0.6, 0, 1, "z"), (0.62, 0.6, 0, 2, "y"), (0.12, 0.14, 1, 2, "x")
+        (0.17, 0.64, 0, 1, "z"), (0.66, 0.64, 0, 2, "y"), (0.17, 0.14, 1, 2, "x")
     ):  # fmt: skip
-        axes = figure.add_axes((left, bottom, 0.34, 0.32))
+        axes = figure.add_axes((left, bottom, 0.3, 0.27))
         image = np.full((grid[:, up].max() + 1, grid[:, across].max() + 1), -np.inf)
         np.maximum.at(image, (grid[:, up], grid[:, across]), values)
         image[np.isneginf(image)] = np.nan
@@ -176,7 +178,7 @@ def _three_views(figure: Figure, points: Array, errors: Array) -> None:
         axes.set_ylabel("xyz"[up], fontsize=8)
         axes.locator_params(nbins=3)
         axes.tick_params(labelsize=7)
-    _scale(figure.add_axes((0.64, 0.24, 0.3, 0.035)), low, high, across=True)
+    _scale(figure.add_axes((0.62, 0.24, 0.33, 0.035)), low, high, across=True)
 
 
 def _scale(axes: Axes, low: float, high: float, *, across: bool = False) -> None:
@@ -192,7 +194,8 @@ def _scale(axes: Axes, low: float, high: float, *, across: bool = False) -> None
     if not across:
         axes.yaxis.tick_right()
     ticks = round_numbers(10.0**low, 10.0**high)
-    axis.set_major_locator(FixedLocator(np.log10(ticks[:: 2 if across and len(ticks) > 4 else 1]).tolist()))
+    step = -(-len(ticks) // 3) if across else 1  # beside one another there is room for three
+    axis.set_major_locator(FixedLocator(np.log10(ticks[::step]).tolist()))
     axis.set_major_formatter(FuncFormatter(lambda value, _: decade(10.0**value)))
     axes.set_title("|error|", fontsize=8, pad=4)
     other.set_major_locator(FixedLocator([]))
@@ -205,9 +208,13 @@ def case_figure(info: CaseInfo) -> Figure:
     with drawing():
         figure = new_figure(WIDTH, HEIGHT)
         axes = figure.add_subplot(projection="3d" if info.dim == 3 else None)
+        rows = [row for piece in info.pieces for row in piece.outline]
+        sides = np.ptp(np.asarray(rows, dtype=np.float64), axis=0) if rows else np.ones(info.dim)
+        extent = float(sides.max())
         seen: set[str] = set()
         for piece in info.pieces:
-            _draw_piece(axes, piece, info.dim, label="" if piece.condition in seen else piece.condition)
+            label = "" if piece.condition in seen else piece.condition
+            _draw_piece(axes, piece, info.dim, label=label, extent=extent)
             seen.add(piece.condition)
         if info.regularity is not None and info.dim < 3:
             _draw_points(axes, info)
@@ -220,12 +227,9 @@ def case_figure(info: CaseInfo) -> Figure:
             axes.set_ylabel("y")
             axes.set_aspect("equal")
             axes.margins(0.12)
-            rows = [row for piece in info.pieces for row in piece.outline]
-            if info.dim == 2 and rows:
-                _few_ticks(axes, np.ptp(np.asarray(rows, dtype=np.float64), axis=0))
-        if axes.get_legend_handles_labels()[0]:
-            place: dict[str, Any] = {"loc": "lower left", "bbox_to_anchor": (-0.15, 1.0)}
-            axes.legend(ncols=3, handlelength=2.2, columnspacing=0.9, fontsize=7.5, **place)
+            if info.dim == 2:
+                _few_ticks(axes, sides)
+        legend_above(axes)
         return figure
 
 
@@ -236,8 +240,8 @@ def _few_ticks(axes: Axes, extent: Array) -> None:
     axes.locator_params(axis="y", nbins=2 if height < 0.3 * width else 5)
 
 
-def _draw_piece(axes: Axes, piece: PieceInfo, dim: int, label: str) -> None:
-    """Draw one piece and its name."""
+def _draw_piece(axes: Axes, piece: PieceInfo, dim: int, *, label: str, extent: float) -> None:
+    """Draw one piece of a shape of this extent, and its name where the piece is long enough for it."""
     line = np.asarray(piece.outline, dtype=np.float64)
     if not line.size:
         return
@@ -247,6 +251,9 @@ def _draw_piece(axes: Axes, piece: PieceInfo, dim: int, label: str) -> None:
         axes.annotate(piece.name, (line[0, 0], 0.0), xytext=(0, 9), textcoords="offset points", ha="center")
     elif dim == 2:
         axes.plot(line[:, 0], line[:, 1], color=colour, linestyle=style, linewidth=2.0, label=label or None)
+        length = float(np.linalg.norm(np.diff(line, axis=0), axis=1).sum())
+        if len(piece.name) * _NAME_LETTER * extent > length:
+            return
         middle = line[len(line) // 2] if len(line) > 2 else line.mean(axis=0)
         axes.annotate(
             piece.name, (middle[0], middle[1]), ha="center", va="center", fontsize=8,

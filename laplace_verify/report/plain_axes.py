@@ -1,7 +1,7 @@
 """Frames, grids, ticks and labels of a finished figure as plain lines and texts.
 
 matplotlib draws an axis tick by tick, each of several artists, and measures every label to place the next:
-two thirds of the time a report takes. Here one collection holds the grid, one the frame with its ticks, and
+two thirds of the time a report takes. Here one path holds the grid, one the frame with its ticks, and
 labels go where the margins leave room. The look is the same, but the axes no longer follow a change of their
 limits: this is for figures about to be written, not for those handed to a user.
 """
@@ -40,7 +40,8 @@ def plain_axes(figure: Figure) -> None:
 def _lines(axes: Axes) -> None:
     """Draw grid, ticks and frame, all in parts of the axes."""
     import matplotlib
-    from matplotlib.collections import LineCollection
+    from matplotlib.patches import PathPatch
+    from matplotlib.path import Path
 
     width, height = _points(axes)
     x, y = (_ticks(axes, axis)[0] for axis in (axes.xaxis, axes.yaxis))
@@ -59,10 +60,13 @@ def _lines(axes: Axes) -> None:
         (frame, look["axes.edgecolor"], look["axes.linewidth"], 2.5),
     ):
         if lines:
-            made = LineCollection(
-                lines, colors=colour, linewidths=thick, zorder=order, transform=axes.transAxes, clip_on=False
-            )
-            axes.add_collection(made, autolim=False)
+            path = Path(np.concatenate(lines), [Path.MOVETO, Path.LINETO] * len(lines))
+            axes.add_artist(
+                PathPatch(
+                    path, fill=False, edgecolor=colour, linewidth=thick, zorder=order,
+                    transform=axes.transAxes, clip_on=False,
+                )
+            )  # fmt: skip
 
 
 def _labels(axes: Axes) -> None:

@@ -30,6 +30,7 @@ __all__ = [
     "WIDTH",
     "decade",
     "drawing",
+    "legend_above",
     "log_axis",
     "new_figure",
     "round_numbers",
@@ -37,6 +38,7 @@ __all__ = [
 
 WIDTH, HEIGHT = 3.4, 2.7  # inches; two stand beside one another on a printed page
 TICK_LABELS = 8.0  # points
+_LEGEND_COLUMNS = 4
 INK = "#1d2b33"
 QUIET = "#66737a"
 SERIES = ("#14506b", "#d1671b", "#5b9279", "#8c3b63", "#b59a22", "#4a4e9e", "#6f7c80")
@@ -120,6 +122,21 @@ def new_figure(width: float, height: float, *, left: float = 0.62, top: float = 
     )
     FigureCanvasAgg(figure)
     return figure
+
+
+def legend_above(axes: Axes) -> None:
+    """Put the legend above the axes, where no curve can be, row by row (matplotlib fills columns)."""
+    handles, labels = axes.get_legend_handles_labels()
+    figure = axes.get_figure(root=True)
+    if not labels or figure is None:
+        return
+    columns = min(len(labels), _LEGEND_COLUMNS)
+    order = [k for column in range(columns) for k in range(column, len(labels), columns)]
+    axes.legend(
+        [handles[k] for k in order], [labels[k] for k in order], loc="upper left",
+        bbox_to_anchor=(0.02, 1.0), bbox_transform=figure.transFigure, borderaxespad=0.2,
+        ncols=columns, handlelength=1.9, columnspacing=0.9, handletextpad=0.5,
+    )  # fmt: skip
 
 
 def log_axis(axes: Axes, which: str) -> None:

@@ -1,8 +1,8 @@
 """A matplotlib figure as SVG that can stand inside an HTML page beside others.
 
 matplotlib numbers the parts of every figure alike (``figure_1``, ``axes_1``), refers to some by
-``url(#...)`` and sets one style rule for the whole document. Inside a page all ids get the figure's key as
-a prefix, the rule moves to the root element, coordinates are cut to
+``url(#...)`` and sets one style rule for the whole document. Inside a page groups lose their ids, all others
+get the figure's key as a prefix, the rule moves to the root element, coordinates are cut to
 hundredths of a point, and title and description are added for those who listen
 instead of look.
 """
@@ -21,6 +21,7 @@ if TYPE_CHECKING:
 
 __all__ = ["figure_to_svg"]
 
+_GROUP = re.compile(r'<g id="[^"]+"')
 _ID = re.compile(r'\bid="([^"]+)"')
 _REFERENCE = re.compile(r'(url\(#|xlink:href="#)')
 _DROPPED = re.compile(r"<metadata>.*?</metadata>\s*|<style[^>]*>[^<]*</style>\s*|<!--.*?-->\s*", re.DOTALL)
@@ -39,6 +40,7 @@ def figure_to_svg(figure: Figure, *, key: str, title: str, alt: str) -> str:
         figure.savefig(buffer, format="svg", metadata={"Date": None, "Creator": None})
     text = buffer.getvalue()
     text = _DROPPED.sub("", text[text.index("<svg") :])
+    text = _GROUP.sub("<g", text)
     prefix = re.sub(r"[^A-Za-z0-9-]", "-", key)
     text = _TAG.sub(lambda tag: _LONG.sub(_hundredths, tag.group()), text)
     text = _ID.sub(rf'id="{prefix}-\1"', text)
