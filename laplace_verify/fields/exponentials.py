@@ -83,20 +83,22 @@ class ExpTrig(Field):
         """Such as ``exp(2 (y - 1)) cos(2 x)``."""
         pi = "pi " if self.times_pi else ""
         axis = "xyz"[len(self.k)]
+        numbers = ["" if a == 1 else f"{show(a)} " for a in self.k]
         c = (
-            f"{show(self.k[0])} {pi}"
+            f"{numbers[0]}{pi}"
             if len(self.k) == 1
             else f"{pi}sqrt({show(self.k[0])}^2 + {show(self.k[1])}^2) "
         )
         waves = " ".join(
-            f"{part}({show(a)} {pi}{_minus(name, place)})"
-            for part, a, name, place in zip(self.parts, self.k, "xy", self.centre, strict=False)
+            f"{part}({number}{pi}{_minus(name, place)})"
+            for part, number, name, place in zip(self.parts, numbers, "xy", self.centre, strict=False)
         )
         if self.profile in ("exp", "decay"):
             return f"exp({'-' if self.profile == 'decay' else ''}{c}{_minus(axis, self.level)}) {waves}"
         top = f"{self.profile}({c}{_minus(axis, self.centre[-1])})"
-        height = show(exact(rational(self.level) - rational(self.centre[-1]), "level"))
-        return f"{top}/{self.over}({c}{height}) {waves}"
+        height = exact(rational(self.level) - rational(self.centre[-1]), "level")
+        shown = show(height) if height >= 0 else f"({show(height)})"
+        return f"{top}/{self.over}({c}{shown}) {waves}"
 
     def _rate(self, ctx: Any) -> Any:
         """Return c, the rate of the profile."""
@@ -203,7 +205,7 @@ def exp_trig(
     middle = (0,) * (len(waves) + 1) if centre is None else tuple(centre)
     if level is None:
         level = middle[-1] if middle else 0
-    parts = (part,) * len(waves) if isinstance(part, str) else tuple(part)
+    parts = tuple(part) if isinstance(part, tuple | list) else (part,) * len(waves)
     return ExpTrig(k=waves, parts=parts, profile=profile, centre=middle, level=level, times_pi=times_pi)  # type: ignore[arg-type]  # made exact
 
 

@@ -47,7 +47,7 @@ def as_conductivity(conductivity: Any, dim: int) -> float | Array:
     >>> as_conductivity(2, dim=3)
     2.0
     """
-    if isinstance(conductivity, bool | str):
+    if conductivity is None or isinstance(conductivity, bool | str):
         raise ProblemError(f"conductivity must be a positive number or a matrix, got {conductivity!r}")
     try:
         array = np.asarray(conductivity, dtype=np.float64)

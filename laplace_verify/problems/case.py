@@ -226,7 +226,7 @@ def case(
     regularity = derive(shape, field, kinds, tensor)
     pieces = _pieces(shape, complete, field, tensor)
     for piece in pieces:  # a field that is not defined on the boundary shows here, by the piece's name
-        piece.data(piece.sample(5)[0])
+        piece.probe()
     return Case(
         id=id,
         title=title,

@@ -176,6 +176,8 @@ def problem(
     if missing:
         raise ProblemError(f"every piece needs a condition; missing: {', '.join(missing)}")
     pieces = Pieces(_piece(shape, name, condition) for name, condition in given.items())
+    for piece in pieces:
+        piece.probe()
     if is_pure_neumann(pieces):
         check_balance(shape, pieces)
         fixed: Constant | None = as_constant(("mean", 0.0) if constant is None else constant, shape)

@@ -120,7 +120,8 @@ def _scale(shape: Shape, field: Field, places: list[tuple[float, ...]]) -> float
     """Return the smallest length of shape and solution."""
     lower, upper = shape.bounding_box
     lengths = [*(upper - lower).tolist(), *(_extent(piece) for piece in shape.pieces if shape.dim > 1)]
-    lengths += _gaps(shape)
+    if shape.dim > 1:
+        lengths.append(_gap(shape))
     if field.singularities:
         away = shape.distance(np.array([s.point for s in field.singularities]))
         lengths += away[away > COINCIDENT * shape.size].tolist()
@@ -136,20 +137,17 @@ def _extent(piece: Boundary) -> float:
     return piece.measure if len(piece.ends) else piece.measure / math.pi
 
 
-def _gaps(shape: Shape) -> list[float]:
-    """Return distances between pieces that do not meet: necks, holes near the rim, opposite sides."""
-    if shape.dim == 1:
-        return []
+def _gap(shape: Shape) -> float:
+    """Return the least distance between pieces that do not meet: necks, holes near a rim, opposite sides."""
     meeting = {frozenset(junction.pieces) for junction in shape.junctions}
-    samples = {piece.name: piece.sample(SAMPLES[shape.dim])[0] for piece in shape.pieces}
-    gaps = []
-    for first, second in combinations(samples, 2):
-        if frozenset((first, second)) in meeting or _touching(
-            shape.pieces[first], shape.pieces[second], shape.size
-        ):
-            continue
-        gaps.append(float(cdist(samples[first], samples[second]).min()))
-    return gaps
+    samples = [(piece, piece.sample(SAMPLES[shape.dim])[0]) for piece in shape.pieces]
+    least, size = math.inf, shape.size
+    for (first, points), (second, others) in combinations(samples, 2):
+        gap = float(cdist(points, others).min())
+        apart = gap < least and frozenset((first.name, second.name)) not in meeting
+        if apart and not _touching(first, second, size):
+            least = gap
+    return least
 
 
 def _touching(first: Boundary, second: Boundary, size: float) -> bool:

@@ -254,7 +254,7 @@ def test_closed_shape_contains_its_boundary_and_tolerance_widens_it():
     with pytest.raises(lv.GeometryError, match="tol must be >= 0"):
         disc.contains(ring, tol=-1.0)
     for tol in (float("nan"), "wide", None):
-        with pytest.raises(lv.GeometryError, match="tol must be (finite|a number)"):
+        with pytest.raises(lv.GeometryError, match=r"tol must be (finite|a number)"):
             disc.contains(ring, tol=tol)
 
 
