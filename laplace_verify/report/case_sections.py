@@ -22,6 +22,7 @@ from laplace_verify.report.figures import convergence_figure, is_exponential, or
 from laplace_verify.report.maps import case_figure, error_figure
 from laplace_verify.report.text import (
     accepted,
+    expected_order,
     finest_error,
     interval,
     is_exact,
@@ -148,7 +149,7 @@ def _order_table(study: Study) -> list[Block]:
             Cell(text=norm),
             Cell(text="decides" if found.decides else "remark"),
             Cell(text=order(found.formal)),
-            Cell(text="falls, no rate" if found.expected == "decrease" else order(found.expected)),
+            Cell(text=expected_order(found)),
             Cell(text=interval(found)),
             Cell(text=number(found.tolerance, 2)),
             Cell(text=number(finest_error(study, norm))),
@@ -252,7 +253,7 @@ def _left_out(study: Study) -> list[Block]:
 def _pictures(study: Study, info: CaseInfo | None) -> tuple[Picture, ...]:
     """Return the shape, convergence, observed order and error map."""
     words = "; ".join(
-        f"{norm}: observed {interval(found)}, expected {order(found.expected)}"
+        f"{norm}: observed {interval(found)}, expected {expected_order(found)}"
         for norm, found in study.orders.items()
         if found.decides
     )
