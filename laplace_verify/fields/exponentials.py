@@ -84,21 +84,24 @@ class ExpTrig(Field):
         pi = "pi " if self.times_pi else ""
         axis = "xyz"[len(self.k)]
         numbers = ["" if a == 1 else f"{show(a)} " for a in self.k]
-        c = (
-            f"{numbers[0]}{pi}"
-            if len(self.k) == 1
-            else f"{pi}sqrt({show(self.k[0])}^2 + {show(self.k[1])}^2) "
-        )
+        if len(self.k) == 1:
+            rate = numbers[0] + pi
+        else:
+            rate = f"{pi}sqrt({_square(self.k[0])} + {_square(self.k[1])}) "
         waves = " ".join(
-            f"{part}({number}{pi}{_minus(name, place)})"
+            _called(part, number + pi, _minus(name, place))
             for part, number, name, place in zip(self.parts, numbers, "xy", self.centre, strict=False)
         )
         if self.profile in ("exp", "decay"):
-            return f"exp({'-' if self.profile == 'decay' else ''}{c}{_minus(axis, self.level)}) {waves}"
-        top = f"{self.profile}({c}{_minus(axis, self.centre[-1])})"
+            sign = "-" if self.profile == "decay" else ""
+            return f"{_called('exp', sign + rate, _minus(axis, self.level))} {waves}"
+        top = _called(self.profile, rate, _minus(axis, self.centre[-1]))
         height = exact(rational(self.level) - rational(self.centre[-1]), "level")
-        shown = show(height) if height >= 0 else f"({show(height)})"
-        return f"{top}/{self.over}({c}{shown}) {waves}"
+        if not height:  # cosh(0) = 1
+            return f"{top} {waves}"
+        shown = show(height) if height > 0 else f"({show(height)})"
+        bottom = rate.strip() if height == 1 and rate else rate + shown
+        return f"{top}/{self.over}({bottom}) {waves}"
 
     def _rate(self, ctx: Any) -> Any:
         """Return c, the rate of the profile."""
@@ -224,6 +227,19 @@ def sin_cos(ctx: Any, k: Exact, x: Any, times_pi: bool) -> tuple[Any, Any]:
     sign = 1 - 2 * np.mod(whole, 2)
     # cos(pi f) from sin(pi (1/2 - |f|)): exact where the wave is zero
     return sign * np.sin(np.pi * rest), sign * np.sin(np.pi * (0.5 - np.abs(rest)))
+
+
+def _called(function: str, factor: str, argument: str) -> str:
+    """Return ``cos(2 x)``, ``cos(2 (x - 1))`` or ``cos(x - 1)``."""
+    if not factor and argument.startswith("("):
+        return function + argument
+    return f"{function}({factor}{argument})"
+
+
+def _square(number: Exact) -> str:
+    """Return ``2^2`` or ``(2/3)^2``."""
+    text = show(number)
+    return f"({text})^2" if "/" in text else f"{text}^2"
 
 
 def _minus(name: str, place: Exact) -> str:

@@ -32,6 +32,7 @@ __all__ = [
 Constant: TypeAlias = tuple[Literal["mean"], float] | tuple[Literal["point"], tuple[float, ...], float]
 
 BALANCE = 1e-8  # of the total |flux|
+VANISHING = 1e-14  # of the mean of |u|
 AGREEMENT = 1e-8  # of a given constant with the exact field
 
 
@@ -102,9 +103,16 @@ def _net_flux(pieces: list[Piece], cell: float) -> tuple[float, float]:
 
 
 def mean(shape: Shape, field: Field, singular: Array) -> float:
-    """Return the mean of a field over a shape by quadrature graded towards `singular` (m, d)."""
+    """Return the mean of a field over a shape by quadrature graded towards `singular` (m, d).
+
+    A mean that vanishes but for rounding, relative to the mean of |u|, is 0.
+    """
     points, weights = shape.quadrature(12, singular=singular, cell=shape.size / (8 if shape.dim < 3 else 4))
-    return float(weights @ field.value(points) / weights.sum())
+    values = field.value(points)
+    total = float(weights @ values)
+    if abs(total) <= VANISHING * float(weights @ np.abs(values)):
+        return 0.0
+    return total / float(weights.sum())
 
 
 def default_constant(shape: Shape, field: Field, singular: Array) -> Constant:

@@ -59,7 +59,7 @@ def test_steps_shrink_near_singular_points():
 
 @pytest.mark.parametrize(("rate", "error"), [(1.0, 1e-12), (50.0, 1e-11), (1e3, 1e-11), (1e6, 1e-8)])
 def test_steps_adapt_to_the_length_over_which_a_function_varies(rate, error):
-    """Rounding, about eps, is divided by h >= 1/(4096 rate): 1e-12; at rate 1e6 the shortest step is 2^-28."""
+    """Rounding, about eps, is divided by h >= 1/(4096 rate): 1e-12; at rate 1e6 steps end at 2^-28."""
 
     def fast(x, y):
         return np.exp(rate * y) * np.cos(rate * x)

@@ -224,6 +224,14 @@ def test_the_constant_of_a_pure_neumann_case_is_the_mean(square) -> None:
         lv.case(square, kinds, field, constant=("mean", 0))
 
 
+def test_a_mean_that_vanishes_is_zero_and_not_rounding() -> None:
+    """Rounding differs between machines, and files made from a case must not."""
+    flux = {"rim": "neumann"}
+    for shift, mean in ((0, 0.0), (5, 5.0)):
+        field = lv.fields.polynomial(3) + lv.fields.affine((0, 0), shift)
+        assert lv.case(lv.Disc((0, 0), 1), flux, field).problem.constant == ("mean", mean)
+
+
 def test_a_case_with_u_given_somewhere_has_no_constant(square) -> None:
     assert lv.case(square, {"top": "neumann"}, lv.fields.affine((1, 0))).problem.constant is None
     with pytest.raises(lv.ProblemError, match="for pure Neumann problems only"):
