@@ -12,7 +12,7 @@ from laplace_verify.campaign.identity import case_info, environment, solver_iden
 from laplace_verify.campaign.isolation import Failure, run_isolated
 from laplace_verify.campaign.record import Record, Settings
 from laplace_verify.cases import catalogue
-from laplace_verify.errors import AdapterError
+from laplace_verify.errors import AdapterError, told
 from laplace_verify.measure import Study, Verdict, study
 from laplace_verify.measure.levels import check_sizes
 from laplace_verify.principles import LAWS, Check, check_principle
@@ -142,7 +142,7 @@ def _by_executor(jobs: Sequence[Callable[[], Any]], executor: Executor) -> Itera
         cause = future.exception()
         yield (
             futures[future],
-            Failure(reason=f"{type(cause).__name__}: {cause}") if cause else future.result(),
+            Failure(reason=told(cause)) if cause else future.result(),
         )
 
 

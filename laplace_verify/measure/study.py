@@ -6,12 +6,11 @@ never converge) ends in a verdict; only misuse by the caller raises.
 
 from __future__ import annotations
 
-import traceback
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
-from laplace_verify.errors import AdapterError, LaplaceVerifyError, ProblemError
+from laplace_verify.errors import AdapterError, LaplaceVerifyError, ProblemError, history, told
 from laplace_verify.measure.criteria import expectations
 from laplace_verify.measure.expected import Expectation
 from laplace_verify.measure.features import features
@@ -178,8 +177,7 @@ class _Run:
             reason = f"size {size}: the solver declined a problem that it has solved at other sizes: {cause}"
         else:
             reason = f"size {size}: {_said(cause)}"
-        text = "".join(traceback.format_exception(cause))
-        return self.result(Verdict.ERROR, [reason], self.remarks, self.orders(), crash=text)
+        return self.result(Verdict.ERROR, [reason], self.remarks, self.orders(), crash=history(cause))
 
     def result(
         self,
@@ -233,4 +231,4 @@ def _said(cause: BaseException) -> str:
     """Return what an exception says, with its type unless it is one of ours."""
     if isinstance(cause, LaplaceVerifyError):
         return str(cause)
-    return f"the solver raised {type(cause).__name__}: {cause}"
+    return f"the solver raised {told(cause)}"
