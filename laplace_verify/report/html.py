@@ -6,6 +6,7 @@ ourselves and whose text matplotlib escapes, are put in as they are.
 
 from __future__ import annotations
 
+import re
 from functools import cache
 
 from jinja2 import Environment, PackageLoader, StrictUndefined
@@ -16,12 +17,17 @@ from laplace_verify.report.text import SYMBOLS, VERDICT_WORDS, printable
 
 __all__ = ["to_html"]
 
+_CODE = re.compile(r"(<pre>.*?</pre>)", re.DOTALL)
+_BLANK = re.compile(r"\s*\n")  # empty lines, and spaces at the end of a line
+
 
 def to_html(document: content.Document, figures: dict[str, str]) -> str:
     """Return the document as a complete HTML page; `figures` maps keys of pictures to SVG of our making."""
     safe = {key: Markup(svg) for key, svg in figures.items()}
     text: str = _environment().get_template("report.html.jinja").render(document=document, figures=safe)
-    return printable("\n".join(line.rstrip() for line in text.splitlines() if line.strip()) + "\n")
+    parts = _CODE.split(text)  # code, which keeps its blank lines, at the odd places
+    parts[::2] = [_BLANK.sub("\n", part) for part in parts[::2]]
+    return printable("".join(parts))
 
 
 @cache

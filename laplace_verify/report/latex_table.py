@@ -20,6 +20,10 @@ _UPRIGHT, _SIDEWAYS = 480.0, 725.0  # width of the text in points, A4 with margi
 _GAP = 7.0  # points between two columns
 _TYPES = (("footnotesize", 0.85), ("scriptsize", 0.75))  # and widths in parts of those at 10 pt
 _SLACK = 2.0  # points
+_LINE, _EASE = (
+    150.0,
+    1.25,
+)  # a column that needs more is words; columns may ask for so much more than there is
 _CAPTION = 260.0  # narrower captions look like columns
 _SHORT, _WORDY = 12, 80  # rows, and letters in a cell, of a table that stays in one piece
 
@@ -47,7 +51,8 @@ def table_to_latex(table: Table) -> str:
         wide = rf"\multicolumn{{{len(widths)}}}{{@{{}}p{{{whole:.1f}pt}}@{{}}}}"
         parts = [
             rf"\begin{{longtable}}[l]{{{layout}}}", rf"{wide}{{\raggedright{caption}}} \\[2pt]",
-            opening, r"\endfirsthead", opening, r"\endhead", r"\bottomrule", r"\endfoot", *rows,
+            opening, r"\endfirsthead", opening, r"\endhead", r"\bottomrule", r"\endfoot",
+            "\n\\addlinespace[1.5pt]\n".join(rows),
             r"\end{longtable}",
         ]  # fmt: skip
         body = "\n".join(parts)
@@ -67,22 +72,28 @@ def _fitted(table: Table) -> tuple[str, list[float], float]:
     amount = [sum(_width(row[k]) for row in table.rows) for k in range(len(least))]
     gaps = sum(_gaps(table)) + 0.01
     for room in (_UPRIGHT, _SIDEWAYS):
+        fits = []
         for kind, scale in _TYPES:
             low, high = ([scale * width + _SLACK for width in widths] for widths in (least, whole))
             if sum(low) + gaps <= room:
-                return kind, _shared(low, high, amount, room - gaps), room
+                fits.append((kind, _shared(low, high, amount, room - gaps), room))
+                if sum(min(width, _LINE) for width in high) + gaps <= _EASE * room:
+                    return fits[-1]  # the larger type, if most entries have a line to themselves
+        if fits:
+            return fits[-1]
     share = (_SIDEWAYS - gaps) / sum(low)
     return _TYPES[-1][0], [share * width for width in low], _SIDEWAYS
 
 
 def _least(column: Column, cells: list[Cell]) -> float:
-    """Return the width of what must stay on one line: numbers, verdicts, and parts of words."""
+    """Return the width of what must stay on one line: numbers, and words or parts of them."""
     words = [width_of(word, bold=True) for word in column.title.split()]
     for cell in cells:
-        if column.align == "right" or cell.verdict is not None:
+        if column.align == "right":
             words.append(_width(cell))
         else:
-            words += [width_of(part) for word in cell.text.split() for part in pieces_of(word)]
+            bold = cell.verdict is not None
+            words += [width_of(part, bold=bold) for word in _text(cell).split() for part in pieces_of(word)]
     return max(words, default=0.0)
 
 

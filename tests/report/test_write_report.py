@@ -130,6 +130,13 @@ def test_html_escapes_what_the_solver_says(page):
     assert text.count("<script>alert('tide & \"sand\"')</script>") >= 4  # name, title, statement, reason
 
 
+def test_code_keeps_its_blank_lines(short_record, tmp_path):
+    short_record = replace(short_record, command="cd pool\n\n    laplace-verify run pool.py:solve")
+    text = write_report(short_record, tmp_path, ["html"])["html"].read_text(encoding="utf-8")
+    assert "<code>cd pool\n\n    laplace-verify run" in text
+    assert "\n\n" not in re.sub(r"<pre>.*?</pre>", "code", text, flags=re.DOTALL)
+
+
 def test_every_figure_has_a_title_and_words_for_those_who_cannot_see_it(page):
     figures = page.tags.count("svg")
     assert figures >= 8 * 2
