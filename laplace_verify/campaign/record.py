@@ -17,8 +17,8 @@ from typing import Any
 
 import msgspec
 
-from laplace_verify.campaign.files import write_atomically
 from laplace_verify.errors import RecordError
+from laplace_verify.files import write_atomically
 from laplace_verify.measure.results import Study
 from laplace_verify.principles.results import Check
 

@@ -5,13 +5,11 @@ Case files hold no versions, dates or machine, so that the same sources write th
 
 from __future__ import annotations
 
-import os
 import platform
 from collections.abc import Callable, Iterator
 from dataclasses import replace
 from importlib.metadata import version
 from pathlib import Path
-from tempfile import NamedTemporaryFile
 
 import msgspec
 from tabulate import tabulate
@@ -20,6 +18,7 @@ from laplace_verify.cases.catalogue import catalogue
 from laplace_verify.cases.describe import basis_in_words, regularity_in_words
 from laplace_verify.cases.families import FAMILIES
 from laplace_verify.errors import RecordError
+from laplace_verify.files import write_atomically
 from laplace_verify.problems import Case, case_to_json
 from laplace_verify.references import stored_values
 from laplace_verify.version import __version__
@@ -118,12 +117,6 @@ def _provenance() -> bytes:
 
 
 def _write(path: Path, content: bytes) -> Path:
-    """Write a file at once or not at all."""
-    try:
-        with NamedTemporaryFile(dir=path.parent, prefix=".", delete=False) as draft:
-            draft.write(content)
-        os.chmod(draft.name, 0o644)
-        os.replace(draft.name, path)
-    except OSError as cause:
-        raise RecordError(f"{path} cannot be written: {cause}; give another folder") from cause
+    """Write a file at once or not at all, and return it."""
+    write_atomically(path, content)
     return path

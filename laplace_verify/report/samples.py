@@ -7,7 +7,7 @@ from collections.abc import Callable, Sequence
 from pathlib import Path
 
 from laplace_verify.campaign import verify
-from laplace_verify.campaign.files import write_atomically
+from laplace_verify.files import write_atomically
 from laplace_verify.report.writer import write_report
 from laplace_verify.solvers.samples import FAULTS, five_point
 

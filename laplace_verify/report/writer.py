@@ -6,9 +6,9 @@ import os
 from collections.abc import Callable, Sequence
 from pathlib import Path
 
-from laplace_verify.campaign.files import write_atomically
 from laplace_verify.campaign.record import Record, record_to_json
 from laplace_verify.errors import RecordError, nearest_names
+from laplace_verify.files import write_atomically
 from laplace_verify.report.drawn import Drawn, draw_pictures
 from laplace_verify.report.html import to_html
 from laplace_verify.report.junit import to_junit
