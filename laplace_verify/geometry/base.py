@@ -136,7 +136,7 @@ class Shape(ABC):
         whole = {piece.name: piece for loop in self._loops() for piece in loop}
         object.__setattr__(self, "splits", check_fractions(dict(self.splits), whole))
 
-    @property
+    @cached_property
     def extent(self) -> float:
         """Largest extent of the bounding box."""
         lower, upper = self.bounding_box

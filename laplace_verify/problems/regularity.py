@@ -21,7 +21,6 @@ from __future__ import annotations
 import math
 from collections.abc import Mapping
 from dataclasses import dataclass
-from itertools import combinations
 
 import numpy as np
 from scipy.spatial.distance import cdist, pdist
@@ -138,14 +137,28 @@ def _extent(piece: Boundary) -> float:
 
 
 def _gap(shape: Shape) -> float:
-    """Return the least distance between pieces that do not meet: necks, holes near a rim, opposite sides."""
+    """Return the least distance between pieces that do not meet: necks, holes near a rim, opposite sides.
+
+    Pairs are taken in the order of the least distance that balls around the pieces allow, so that of a
+    polygon with very many sides only neighbours are looked at.
+    """
+    pieces = tuple(shape.pieces)
+    samples = [piece.sample(SAMPLES[shape.dim])[0] for piece in pieces]
+    centres = np.array([points.mean(axis=0) for points in samples])
+    radii = np.array(
+        [cdist(points, centre[None, :]).max() for points, centre in zip(samples, centres, strict=True)]
+    )
+    first, second = np.triu_indices(len(pieces), k=1)
+    bounds = np.sqrt(((centres[first] - centres[second]) ** 2).sum(axis=1)) - radii[first] - radii[second]
     meeting = {frozenset(junction.pieces) for junction in shape.junctions}
-    samples = [(piece, piece.sample(SAMPLES[shape.dim])[0]) for piece in shape.pieces]
     least, size = math.inf, shape.size
-    for (first, points), (second, others) in combinations(samples, 2):
-        gap = float(cdist(points, others).min())
-        apart = gap < least and frozenset((first.name, second.name)) not in meeting
-        if apart and not _touching(first, second, size):
+    for pair in np.argsort(bounds, kind="stable").tolist():
+        if not bounds[pair] < least:
+            break
+        a, b = int(first[pair]), int(second[pair])
+        gap = float(cdist(samples[a], samples[b]).min())
+        apart = gap < least and frozenset((pieces[a].name, pieces[b].name)) not in meeting
+        if apart and not _touching(pieces[a], pieces[b], size):
             least = gap
     return least
 

@@ -297,3 +297,13 @@ def test_points_of_the_wrong_kind_are_refused(bad, message):
     for ask in (disc.contains, disc.distance, disc.pieces["rim"].project, disc.pieces["rim"].normals):
         with pytest.raises(lv.GeometryError, match=message):
             ask(bad)
+
+
+def test_a_thin_eccentric_annulus_is_sampled_in_proportion_to_its_width():
+    """The region between the circles is 1.5e-6 wide at angle 0 and 0.5e-6 at angle pi."""
+    ring = lv.Annulus((0, 0), 1 - 1e-6, 1, inner_centre=(-5e-7, 0))
+    points = ring.sample(4000, seed=8)
+    assert ring.contains(points).all()
+    # mean of cos t with density (1 + cos(t)/2)/(2 pi) is 1/4; its standard error is 0.7/sqrt(4000) = 0.011
+    assert points[:, 0].mean() == pytest.approx(0.25, abs=0.04)
+    assert points[:, 1].mean() == pytest.approx(0.0, abs=0.04)
