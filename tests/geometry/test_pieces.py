@@ -70,6 +70,19 @@ def test_projection_on_solid_faces_by_hand():
     assert box.pieces["right"].project([(0.5, -2.0, 0.25)]).tolist() == [[1.0, 0.0, 0.25]]
 
 
+@pytest.mark.parametrize("semi_axes", [(1.0, 1e-3), (1e-3, 1.0), (0.05, 1.0)])
+def test_points_are_moved_to_their_own_side_of_a_thin_ellipse(semi_axes):
+    """The sides are so close that a coarse search along the rim takes the wrong one."""
+    rim = lv.Ellipse((1, 2), semi_axes).pieces["rim"]
+    angle = np.random.default_rng(4).random(500) * 2 * np.pi
+    on = np.stack([np.cos(angle), np.sin(angle)], axis=1) * semi_axes
+    for factor in (0.95, 1.0 + 1e-9, 1.3):
+        moved = rim.project([1, 2] + factor * on) - [1, 2]
+        assert (moved * on >= 0).all()
+        distance = np.hypot(*(moved - factor * on).T)
+        assert (distance <= np.hypot(*((factor - 1) * on).T) * (1 + 1e-9) + 1e-15).all()
+
+
 def test_nearest_point_of_an_ellipse_has_its_normal_towards_the_point():
     # a route of its own: the offset is parallel to the gradient (x/a^2, y/b^2) of the implicit equation
     a, b = 3.0, 0.5
