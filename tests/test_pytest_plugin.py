@@ -90,3 +90,32 @@ def test_a_report_is_written_also_when_workers_share_the_items(run, pytester, wo
     for name, text in reports.items():
         assert "plate-saddle" in text
         assert ("plate-flux-top" in text) == ("fault" in name)
+
+
+TWINS = """
+import laplace_verify as lv
+from laplace_verify.solvers.samples import five_point
+
+DECLARED = dict(kind="finite difference", dims={2}, shapes={"rectangle"}, conditions={"dirichlet"})
+test_one = lv.order_tests(lv.adapt(five_point.function, name="solve", order=2, **DECLARED), ["plate-saddle"])
+test_two = lv.order_tests(lv.adapt(five_point.function, name="solve", order=1, **DECLARED), ["plate-cubic"])
+"""
+
+
+def test_solvers_that_share_a_name_get_reports_of_their_own(run, pytester):
+    run(TWINS, "--verification-report", "report")
+    texts = [(pytester.path / "report" / name / "report.md").read_text() for name in ("solve", "solve-no-2")]
+    assert sorted("plate-saddle" in text for text in texts) == [False, True]
+
+
+def test_a_report_folder_that_cannot_be_written_is_refused_before_anything_runs(run, pytester):
+    (pytester.path / "taken").write_text("a file")
+    result = run(TWINS, "--verification-report", "taken")
+    assert result.ret == pytest.ExitCode.USAGE_ERROR
+    result.stderr.fnmatch_lines(["*--verification-report: cannot make the report folder taken*"])
+
+
+def test_sizes_that_do_not_rise_stop_the_collection(run):
+    result = run(TWINS.replace('["plate-cubic"]', '["plate-cubic"], sizes=(8, 4, 2)'))
+    result.assert_outcomes(errors=1)
+    result.stdout.fnmatch_lines(["*sizes must increase from coarse to fine*"])

@@ -15,7 +15,7 @@ from laplace_verify.measure.criteria import expectations
 from laplace_verify.measure.expected import Expectation
 from laplace_verify.measure.features import features
 from laplace_verify.measure.judge import combine, judge
-from laplace_verify.measure.levels import check_sizes, default_sizes, further_sizes
+from laplace_verify.measure.levels import check_seed, check_sizes, default_sizes, further_sizes
 from laplace_verify.measure.oddities import oddities, sign_changes
 from laplace_verify.measure.results import Level, Order, Study
 from laplace_verify.measure.running import LevelResult, Runner, check_falling
@@ -62,7 +62,7 @@ def study(
     Raises
     ------
     AdapterError
-        If `solver` is no adapter or the sizes are not three or more, increasing.
+        If `solver` is no adapter, the sizes are not three or more, increasing, or the seed is negative.
     ProblemError
         If `case` is no case.
 
@@ -80,6 +80,7 @@ def study(
     ('PASS', 2.0)
     """
     _check_arguments(solver, case, max_points)
+    check_seed(seed)
     given = check_sizes(sizes) if sizes is not None else solver.sizes
     planned = given if given is not None else default_sizes(case.dim)
     run = _Run(
