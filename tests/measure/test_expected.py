@@ -35,7 +35,7 @@ def rate(kind, norm, order, s, d):
         ("L2", 1 / 2, 1 / 2, 1, True),
         ("max", 0, 2, None, False),
         ("L2", 0, 2, 1, True),
-        ("L1", 0, 2, 2, False),  # a logarithm
+        ("L1", 0, 2, 1.75, True),  # a logarithm
         ("H1-semi", INF, 2, None, False),
         ("trace:top", INF, 2, 2, False),
         ("quantity:total", 0.5, 2, None, False),
