@@ -79,8 +79,8 @@ _ROOMS = {
     "measure": "Study Verdict grid_convergence study",
     "principles": "Check check_principle",
     "problems": (
-        "Case Problem Quantity Regularity case dirichlet energy_of_solution flux_through neumann problem robin "
-        "value_at"
+        "Case Problem Quantity Regularity case dirichlet energy_of_solution flux_through neumann problem "
+        "robin value_at"
     ),
     "pytest_plugin": "order_tests principle_tests",
     "report": "plot write_report",

@@ -139,7 +139,8 @@ class Catalogue(Mapping[str, Case]):
         Raises
         ------
         RecordError
-            If `path` is no path, there is no such folder, it holds no case, or a file is no sound case; it is named.
+            If `path` is no path, there is no such folder, it holds no case, or a file is no sound case; it is
+            named.
         ProblemError
             If an id is taken.
         """
