@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
-from laplace_verify.errors import AdapterError, ProblemError, nearest_names
+from laplace_verify.errors import AdapterError, ProblemError, nearest_names, told
 from laplace_verify.measure.verdict import Verdict
 from laplace_verify.principles.driving import BrokenLawError, BrokenSolverError, Search
 from laplace_verify.principles.example import example_code
@@ -146,8 +146,7 @@ def _broke(law: Law, failure: BrokenSolverError) -> Check:
     return Check(
         law=law.name,
         verdict=Verdict.ERROR,
-        reason=f"{type(cause).__name__}: {cause}{after}. The simplest problem on which this happens: "
-        f"{trial.posed.words()}",
+        reason=f"{told(cause)}{after}. The simplest problem on which this happens: {trial.posed.words()}",
         example=example_code(trial, trial.sizes[0], ("answer",)),
     )
 

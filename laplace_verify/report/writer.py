@@ -6,7 +6,7 @@ import os
 from collections.abc import Callable, Sequence
 from pathlib import Path
 
-from laplace_verify.campaign.record import Record, record_to_json
+from laplace_verify.campaign.record import Record, check_record, record_to_json
 from laplace_verify.errors import RecordError, nearest_names
 from laplace_verify.files import write_atomically
 from laplace_verify.report.drawn import Drawn, draw_pictures
@@ -49,8 +49,9 @@ def write_report(
     Raises
     ------
     RecordError
-        If a format is unknown or the folder cannot be written.
+        If `record` is none, a format is unknown or the folder cannot be written.
     """
+    check_record(record)
     wanted = [formats] if isinstance(formats, str) else list(dict.fromkeys(formats))
     for name in wanted:
         if name not in _NAMES:
