@@ -140,7 +140,6 @@ def test_the_mean_value_does_not_see_a_constant_added(twins):
 def test_nan_is_an_error_of_the_solver_not_a_broken_law(twins):
     check = check_principle(twins["nan"], "constants reproduced")
     assert check.verdict is Verdict.ERROR
-    assert "AnswerError" in check.reason
     assert "nan" in check.reason
 
 
