@@ -61,6 +61,7 @@ if TYPE_CHECKING:
     from laplace_verify.problems import Quantity as Quantity
     from laplace_verify.problems import Regularity as Regularity
     from laplace_verify.problems import dirichlet as dirichlet
+    from laplace_verify.problems import energy_of_solution as energy_of_solution
     from laplace_verify.problems import flux_through as flux_through
     from laplace_verify.problems import inclusion as inclusion
     from laplace_verify.problems import layers as layers
@@ -94,8 +95,8 @@ _ROOMS = {
     "measure": "Study Verdict grid_convergence study",
     "principles": "Check check_principle",
     "problems": (
-        "Case Problem Quantity Regularity case dirichlet flux_through inclusion layers neumann problem robin "
-        "sectors value_at"
+        "Case Problem Quantity Regularity case dirichlet energy_of_solution flux_through inclusion layers "
+        "neumann problem robin sectors value_at"
     ),
     "pytest_plugin": "order_tests principle_tests",
     "report": "plot write_report",

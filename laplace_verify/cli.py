@@ -10,11 +10,12 @@ import argparse
 import os
 import shlex
 import sys
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
+from fractions import Fraction
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
-from laplace_verify.errors import LaplaceVerifyError
+from laplace_verify.errors import LaplaceVerifyError, ProblemError, nearest_names
 from laplace_verify.version import __version__
 
 if TYPE_CHECKING:
@@ -25,6 +26,7 @@ __all__ = ["main"]
 
 FORMATS = ("html", "md", "tex", "csv", "json", "junit")
 BAD = ("FAIL", "ERROR")
+CLOSED = 1e-12  # of the shape's size: points on the boundary lie in the shape
 FIRST_STEPS = """\
 laplace-verify checks a solver of Laplace's equation against exact solutions. Three things to do first:
 
@@ -119,7 +121,11 @@ def _cases(options: argparse.Namespace) -> int:
     from tabulate import tabulate
 
     from laplace_verify.cases import catalogue
+    from laplace_verify.solvers.declarations import SHAPES
 
+    shapes = {kind for kind in SHAPES if any(case.problem.shape.is_a(kind) for case in catalogue.values())}
+    _among("shape", [options.shape] if options.shape else [], shapes)
+    _among("tag", options.tag, {tag for case in catalogue.values() for tag in case.tags})
     found = catalogue.select(dim=options.dim, shape=options.shape, tags=set(options.tag))
     wanted = set(options.condition or ())
     rows = [
@@ -130,6 +136,13 @@ def _cases(options: argparse.Namespace) -> int:
     _say(tabulate(rows, headers=("case", "dim", "shape", "conditions", "title"), tablefmt="simple"))
     _note(f"{len(rows)} of {len(catalogue)} cases")
     return 0 if rows else 3
+
+
+def _among(option: str, given: Sequence[str], known: Iterable[str]) -> None:
+    """Refuse names that no case has."""
+    for name in given:
+        if name not in known:
+            raise ProblemError(f"no case has the {option} {name!r}; {nearest_names(name, known)}")
 
 
 def _add_show(commands: Any) -> None:
@@ -174,6 +187,8 @@ def _value(options: argparse.Namespace) -> int:
 
     case = catalogue[options.case]
     found = case.exact.enclosure(options.coordinates, options.digits)
+    if not case.problem.shape.contains([[float(Fraction(text)) for text in options.coordinates]], CLOSED)[0]:
+        _note("note: the point lies outside the shape")
     _say(f"value   {mpmath.nstr(found.value, options.digits)}")
     _say(f"radius  {mpmath.nstr(found.radius, 2)}")
     _say(f"basis   {found.basis}")

@@ -6,6 +6,7 @@ Every class derives from `LaplaceVerifyError` and from the built-in exception th
 
 from __future__ import annotations
 
+import traceback
 from collections.abc import Iterable
 from difflib import get_close_matches
 
@@ -18,7 +19,9 @@ __all__ = [
     "ProblemError",
     "RecordError",
     "UnknownCaseError",
+    "history",
     "nearest_names",
+    "told",
 ]
 
 
@@ -68,3 +71,26 @@ def nearest_names(given: str, known: Iterable[str], count: int = 3) -> str:
         return "did you mean " + " or ".join(repr(name) for name in close) + "?"
     shown = ", ".join(sorted(names)[:12])
     return f"known: {shown}{', ...' if len(names) > 12 else ''}"
+
+
+def told(cause: BaseException) -> str:
+    """Return what an exception of a solver says, with its type unless it is one of ours.
+
+    Safe whatever the solver raises: an exception that cannot print itself, letters that no file can hold.
+
+    >>> told(MemoryError()), told(RuntimeError("pump stopped")), told(AnswerError("h must be positive"))
+    ('MemoryError', 'RuntimeError: pump stopped', 'h must be positive')
+    """
+    if isinstance(cause, LaplaceVerifyError):
+        return str(cause)
+    return _printable("".join(traceback.format_exception_only(cause)).strip())
+
+
+def history(cause: BaseException) -> str:
+    """Return the traceback of an exception as text that every file can hold."""
+    return _printable("".join(traceback.format_exception(cause)))
+
+
+def _printable(text: str) -> str:
+    """Replace what UTF-8 cannot encode (lone surrogates, as in undecodable file names) by its number."""
+    return text.encode("utf-8", "backslashreplace").decode("utf-8")

@@ -23,6 +23,7 @@ from typing import TYPE_CHECKING, Any
 import pytest
 
 if TYPE_CHECKING:
+    from laplace_verify.campaign import Record
     from laplace_verify.measure import Study
     from laplace_verify.principles import Check
     from laplace_verify.problems import Case
@@ -66,16 +67,18 @@ def order_tests(
     Raises
     ------
     AdapterError, UnknownCaseError
-        At collection, if there is no such solver or case.
+        At collection, if there is no such solver or case, or the sizes are not three or more, rising.
 
     Examples
     --------
     >>> test_orders = order_tests("laplace_verify.solvers.samples:five_point", cases=["plate-saddle"])
     """
     from laplace_verify.campaign import chosen_cases
+    from laplace_verify.measure.levels import check_sizes
     from laplace_verify.solvers import load_solver
 
     adapter = load_solver(solver)
+    sizes = None if sizes is None else check_sizes(sizes)
     items = []
     for case in chosen_cases(cases):
         reason = adapter.known.get(case.id)
@@ -179,8 +182,8 @@ def check_message(check: Check) -> str:
 # -- the report of a session; under pytest-xdist the workers hand their results over -----------------
 
 
-# solver name -> records of one study or check each, as JSON texts, which pytest-xdist can send
-_KEY = pytest.StashKey[dict[str, list[str]]]()
+# records of one study or check each, as JSON texts, which pytest-xdist can send
+_KEY = pytest.StashKey[list[str]]()
 
 
 def pytest_addoption(parser: pytest.Parser) -> None:
@@ -191,8 +194,18 @@ def pytest_addoption(parser: pytest.Parser) -> None:
 
 
 def pytest_configure(config: pytest.Config) -> None:
-    """Begin with no results."""
-    config.stash[_KEY] = {}
+    """Begin with no results; refuse a folder for reports that cannot be written before anything runs."""
+    config.stash[_KEY] = []
+    folder = config.getoption(OPTION)
+    if folder is None or hasattr(config, "workerinput"):
+        return
+    from laplace_verify.errors import RecordError
+    from laplace_verify.report import check_folder
+
+    try:
+        check_folder(Path(folder))
+    except RecordError as error:
+        raise pytest.UsageError(f"{OPTION}: {error}") from error
 
 
 def _remember(config: pytest.Config, wanted: _Wanted, result: Study | Check) -> None:
@@ -202,16 +215,14 @@ def _remember(config: pytest.Config, wanted: _Wanted, result: Study | Check) -> 
     from laplace_verify.campaign import partial_record, record_to_json
 
     record = partial_record(wanted.solver, wanted.seed, wanted.case, result)
-    config.stash[_KEY].setdefault(wanted.solver.name, []).append(record_to_json(record).decode())
+    config.stash[_KEY].append(record_to_json(record).decode())
 
 
 @pytest.hookimpl(optionalhook=True)
 def pytest_testnodedown(node: Any, error: object) -> None:
     """Take over the results of a worker of pytest-xdist that has ended."""
     del error
-    sent = getattr(node, "workeroutput", {}).get("laplace_verify", {})
-    for solver, texts in sent.items():
-        node.config.stash[_KEY].setdefault(solver, []).extend(texts)
+    node.config.stash[_KEY] += getattr(node, "workeroutput", {}).get("laplace_verify", [])
 
 
 def pytest_sessionfinish(session: pytest.Session) -> None:
@@ -224,11 +235,28 @@ def pytest_sessionfinish(session: pytest.Session) -> None:
     if hasattr(config, "workeroutput"):
         config.workeroutput["laplace_verify"] = found
         return
-    from laplace_verify.campaign import merged_record, record_from_json
+    from laplace_verify.campaign import record_from_json
     from laplace_verify.report import write_report
 
     command = f"pytest {' '.join(config.invocation_params.args)}"
-    for solver, texts in sorted(found.items()):
-        record = merged_record([record_from_json(text.encode()) for text in texts], command)
-        name = "".join(c if c.isalnum() or c in "-_." else "-" for c in solver)
+    for name, record in _by_solver([record_from_json(text.encode()) for text in found], command).items():
         write_report(record, Path(folder) / name)
+
+
+def _by_solver(parts: Sequence[Record], command: str) -> dict[str, Record]:
+    """Return folder name -> record of one solver; solvers that share a name get a number."""
+    from laplace_verify.campaign import merged_record
+
+    groups: list[list[Record]] = []
+    for part in parts:  # the whole identity counts: solvers in two files may both be called "solve"
+        own = next((group for group in groups if group[0].solver == part.solver), None)
+        if own is None:
+            groups.append([part])
+        else:
+            own.append(part)
+    named: dict[str, Record] = {}
+    for group in sorted(groups, key=lambda group: (group[0].solver.name, group[0].solver.module)):
+        name = "".join(c if c.isalnum() or c in "-_." else "-" for c in group[0].solver.name)
+        twins = sum(folder == name or folder.startswith(f"{name}-no-") for folder in named)
+        named[f"{name}-no-{twins + 1}" if twins else name] = merged_record(group, command)
+    return named

@@ -79,7 +79,7 @@ def test_cases_are_listed_by_dimension_and_condition(capsys):
 
 
 def test_no_case_found_is_status_3(capsys):
-    assert main(["cases", "--tag", "no-such-tag"]) == 3
+    assert main(["cases", "--dim", "3", "--tag", "slit"]) == 3
     assert "0 of" in capsys.readouterr().err
 
 
@@ -186,3 +186,22 @@ def test_a_record_is_rendered_again_to_the_same_bytes(tmp_path):
     )
     for name in ("errors.csv", "report.md"):
         assert (again / name).read_bytes() == (tmp_path / "out" / name).read_bytes()
+
+
+@pytest.mark.parametrize(
+    ("arguments", "message"),
+    [
+        (("cases", "--shape", "polgon"), "no case has the shape 'polgon'; did you mean 'polygon'?"),
+        (("cases", "--tag", "re-entrent"), "no case has the tag 're-entrent'; did you mean 're-entrant'"),
+    ],
+)
+def test_a_filter_that_no_case_can_meet_is_status_2(arguments, message, capsys):
+    assert main(list(arguments)) == 2
+    assert message in capsys.readouterr().err
+
+
+def test_the_value_outside_the_shape_comes_with_a_note(capsys):
+    assert main(["value", "plate-saddle", "50", "0.5"]) == 0
+    assert "outside the shape" in capsys.readouterr().err
+    assert main(["value", "plate-saddle", "1/2", "0.25"]) == 0
+    assert capsys.readouterr().err == ""

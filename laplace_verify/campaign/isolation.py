@@ -12,12 +12,13 @@ import multiprocessing
 import os
 import signal
 import time
-import traceback
 import warnings
 from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass
 from multiprocessing.connection import Connection, wait
 from typing import Any
+
+from laplace_verify.errors import history, told
 
 __all__ = ["Failure", "can_isolate", "run_isolated"]
 
@@ -91,8 +92,7 @@ def _attempt(job: Job) -> Any:
     try:
         return job()
     except (Exception, SystemExit) as cause:
-        reason = f"{type(cause).__name__}: {cause}"
-        return Failure(reason=reason, crash=traceback.format_exc())
+        return Failure(reason=told(cause), crash=history(cause))
 
 
 def _start(index: int, job: Job, time_limit: float | None) -> _Child:
@@ -113,11 +113,14 @@ def _serve(job: Job, pipe: Connection) -> None:
     """Run the job in the child and send its result."""
     os.setsid()
     os.dup2(2, 1)  # what compiled code prints must not mix with the results of the parent
-    result = _attempt(job)
+    try:
+        result = _attempt(job)
+    except BaseException as cause:  # the parent is told what ended its child, whatever it was
+        result = Failure(reason=told(cause), crash=history(cause))
     try:
         pipe.send(result)
     except Exception as cause:
-        pipe.send(Failure(reason=f"the result cannot be sent between processes: {cause}"))
+        pipe.send(Failure(reason=f"the result cannot be sent between processes: {told(cause)}"))
     pipe.close()
 
 
@@ -145,7 +148,7 @@ def _received(child: _Child) -> Any:
         child.process.join()
         return Failure(reason=_how_it_ended(child.process.exitcode))
     except Exception as cause:
-        return Failure(reason=f"the result cannot be read: {type(cause).__name__}: {cause}")
+        return Failure(reason=f"the result cannot be read: {told(cause)}")
 
 
 def _how_it_ended(code: int | None) -> str:

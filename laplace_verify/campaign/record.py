@@ -17,8 +17,8 @@ from typing import Any
 
 import msgspec
 
-from laplace_verify.campaign.files import write_atomically
 from laplace_verify.errors import RecordError
+from laplace_verify.files import write_atomically
 from laplace_verify.measure.results import Study
 from laplace_verify.principles.results import Check
 
@@ -33,6 +33,7 @@ __all__ = [
     "RegularityInfo",
     "Settings",
     "SolverIdentity",
+    "check_record",
     "record_from_json",
     "record_to_json",
 ]
@@ -153,6 +154,18 @@ class Record:
     def case(self, case_id: str) -> CaseInfo | None:
         """Return what is known about the case of this id, None if nothing is."""
         return next((info for info in self.cases if info.id == case_id), None)
+
+
+def check_record(record: Record) -> None:
+    """Refuse what is no record: a study, say, where the whole run is needed.
+
+    Raises
+    ------
+    RecordError
+        Saying what was given.
+    """
+    if not isinstance(record, Record):
+        raise RecordError(f"a Record is needed, as `verify` returns it, got {type(record).__name__}")
 
 
 def record_to_json(record: Record, path: str | os.PathLike[str] | None = None) -> bytes:

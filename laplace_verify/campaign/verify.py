@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Iterator, Sequence
-from concurrent.futures import Executor, as_completed
+from concurrent.futures import Executor, Future, as_completed
 from functools import partial
 from typing import Any
 
@@ -12,9 +12,9 @@ from laplace_verify.campaign.identity import case_info, environment, solver_iden
 from laplace_verify.campaign.isolation import Failure, run_isolated
 from laplace_verify.campaign.record import Record, Settings
 from laplace_verify.cases import catalogue
-from laplace_verify.errors import AdapterError
+from laplace_verify.errors import AdapterError, ProblemError
 from laplace_verify.measure import Study, Verdict, study
-from laplace_verify.measure.levels import check_sizes
+from laplace_verify.measure.levels import check_seed, check_sizes
 from laplace_verify.principles import LAWS, Check, check_principle
 from laplace_verify.problems import Case
 from laplace_verify.solvers import Adapter, load_solver
@@ -52,8 +52,8 @@ def verify(
     sizes
         Resolution numbers, rising, three or more; None: those of the solver, else the defaults.
     executor
-        Any concurrent.futures Executor; solver and cases must then be picklable. None: child processes of our
-        own, `workers` at a time, each isolated from all others.
+        Any concurrent.futures Executor; what cannot travel to its workers runs in a child process here. None:
+        child processes of our own, `workers` at a time, each isolated from all others.
     seed
         Of everything random; the same seed gives the same record, times and host apart.
     time_limit
@@ -66,8 +66,8 @@ def verify(
     Raises
     ------
     AdapterError, UnknownCaseError
-        If there is no such solver or case, or the sizes are not three or more, rising. What a solver does
-        never raises: it is in the record.
+        If there is no such solver or case, the sizes are not three or more, rising, or workers, seed or time
+        limit make no sense. What a solver does never raises: it is in the record.
 
     Examples
     --------
@@ -77,8 +77,14 @@ def verify(
     """
     if workers < 1:
         raise AdapterError(f"workers must be 1 or more, got {workers}")
-    if sizes is not None:
-        check_sizes(sizes)
+    if time_limit is not None and not time_limit > 0:
+        raise AdapterError(f"time_limit must be a positive number of seconds, got {time_limit}")
+    if executor is not None and not hasattr(executor, "submit"):
+        raise AdapterError(
+            f"executor must be one of concurrent.futures, such as ProcessPoolExecutor(4), got {executor!r}"
+        )
+    check_seed(seed)
+    sizes = None if sizes is None else check_sizes(sizes)
     adapter = load_solver(solver)
     source = solver if isinstance(solver, str) else ""
     chosen = chosen_cases(cases)
@@ -89,7 +95,11 @@ def verify(
         *(partial(check_principle, adapter, law, seed=seed) for law in laws),
     ]
     results: list[Any] = [None] * len(jobs)
-    ended = _by_executor(jobs, executor) if executor else run_isolated(jobs, workers, time_limit)
+    ended = (
+        run_isolated(jobs, workers, time_limit)
+        if executor is None
+        else _by_executor(jobs, executor, time_limit)
+    )
     for index, result in ended:
         if isinstance(result, Failure):
             result = (
@@ -106,7 +116,7 @@ def verify(
         environment=environment(),
         settings=Settings(
             seed=seed,
-            sizes=None if sizes is None else tuple(sizes),
+            sizes=sizes,
             cases=None if cases is None else tuple(case.id for case in chosen),
             principles=principles,
             time_limit=time_limit,
@@ -121,29 +131,50 @@ def verify(
 
 
 def chosen_cases(cases: Iterable[str | Case] | None) -> list[Case]:
-    """Return the cases asked for by id or as they are; None: the whole catalogue.
+    """Return the cases asked for by id or as they are, each once; None: the whole catalogue.
 
     Raises
     ------
     UnknownCaseError
         If the catalogue has no case of an id; the nearest ids are named.
+    ProblemError
+        If two different cases bear the same id.
     """
     if cases is None:
         return list(catalogue.values())
     if isinstance(cases, str | Case):
         cases = [cases]
-    return [case if isinstance(case, Case) else catalogue[case] for case in cases]
+    found: dict[str, Case] = {}
+    for given in cases:
+        case = given if isinstance(given, Case) else catalogue[given]
+        if found.setdefault(case.id, case) is not case:
+            raise ProblemError(f"two different cases are called {case.id!r}; give each an id of its own")
+    return list(found.values())
 
 
-def _by_executor(jobs: Sequence[Callable[[], Any]], executor: Executor) -> Iterator[tuple[int, Any]]:
-    """Run the jobs through an executor of the user's and yield (index, result) as they end."""
-    futures = {executor.submit(job): index for index, job in enumerate(jobs)}
+def _by_executor(
+    jobs: Sequence[Callable[[], Any]], executor: Executor, time_limit: float | None
+) -> Iterator[tuple[int, Any]]:
+    """Run the jobs through an executor of the user's and yield (index, result) as they end.
+
+    Jobs that cannot travel to its workers, and those lost with a worker that another job killed, run in child
+    processes of our own afterwards.
+    """
+    futures: dict[Future[Any], int] = {}
+    stranded: list[int] = []
+    for index, job in enumerate(jobs):
+        try:
+            futures[executor.submit(job)] = index
+        except RuntimeError:  # a broken pool takes no more jobs
+            stranded.append(index)
     for future in as_completed(futures):
-        cause = future.exception()
-        yield (
-            futures[future],
-            Failure(reason=f"{type(cause).__name__}: {cause}") if cause else future.result(),
-        )
+        if future.exception() is None:
+            yield futures[future], future.result()
+        else:
+            stranded.append(futures[future])
+    stranded.sort()
+    for place, result in run_isolated([jobs[index] for index in stranded], time_limit=time_limit):
+        yield stranded[place], result
 
 
 def _broken_study(solver: Adapter, case: Case, seed: int, failure: Failure) -> Study:

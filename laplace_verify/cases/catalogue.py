@@ -8,12 +8,15 @@ from pathlib import Path
 
 from laplace_verify.cases.families import FAMILIES
 from laplace_verify.errors import ProblemError, RecordError, UnknownCaseError, nearest_names
+from laplace_verify.geometry.spec import SHAPES
 from laplace_verify.problems import Case, case_from_json, random_case
 from laplace_verify.problems.coordinates import COORDINATES
 
 __all__ = ["Catalogue", "catalogue"]
 
 Builder = Callable[[], Case]
+
+CONDITIONS = ("dirichlet", "neumann", "robin", "periodic", "axis")
 
 
 class Catalogue(Mapping[str, Case]):
@@ -93,7 +96,8 @@ class Catalogue(Mapping[str, Case]):
         Raises
         ------
         ProblemError
-            If `conditions` or `tags` is a string instead of a set of them, or coordinates are unknown.
+            If a shape, condition, tag or kind of coordinates is unknown (the nearest are named), `dim` is not
+            1, 2 or 3, or a string stands where a set of words is needed.
 
         Examples
         --------
@@ -105,6 +109,12 @@ class Catalogue(Mapping[str, Case]):
                 f"unknown coordinates {coordinates!r}; {nearest_names(str(coordinates), COORDINATES)}"
             )
         can, wanted = _words(conditions, "conditions"), _words(tags, "tags")
+        if dim is not None and dim not in (1, 2, 3):
+            raise ProblemError(f"dim must be 1, 2 or 3, got {dim!r}")
+        _check_known(() if shape is None else (shape,), SHAPES, "shape")
+        _check_known(can or (), CONDITIONS, "condition")
+        if wanted:
+            _check_known(wanted, frozenset().union(*(case.tags for case in self.values())), "tag")
         return [
             case
             for case in self.values()
@@ -138,10 +148,13 @@ class Catalogue(Mapping[str, Case]):
         Raises
         ------
         RecordError
-            If there is no such folder, it holds no case, or a file is no sound case; it is named.
+            If `path` is no path, there is no such folder, it holds no case, or a file is no sound case; it is
+            named.
         ProblemError
             If an id is taken.
         """
+        if not isinstance(path, str | Path):
+            raise RecordError(f"a folder is named by a path, got {path!r}")
         folder = Path(path)
         files = sorted(file for file in folder.glob("*.json") if file.name != "PROVENANCE.json")
         if not files:
@@ -172,6 +185,14 @@ def _read(file: Path) -> Case:
     except OSError as cause:
         raise RecordError(f"{file.name} cannot be read: {cause}") from cause
     return case_from_json(content, file.name)
+
+
+def _check_known(words: Iterable[str], known: Iterable[str], name: str) -> None:
+    """Refuse a word that no case can match: a slip of the pen would select nothing without a word."""
+    known = list(known)
+    for word in words:
+        if word not in known:
+            raise ProblemError(f"there is no {name} {word!r}; {nearest_names(str(word), known)}")
 
 
 def _words(words: Iterable[str] | None, name: str) -> frozenset[str] | None:

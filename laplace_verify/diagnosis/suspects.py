@@ -3,13 +3,11 @@
 Three kinds of evidence are weighed on one scale from 0 to 1:
 
 - a *feature* (a condition, a shape, a tensor): the share of the failing cases that have it less the share
-of the
-  passing cases that have it. 1: all failing cases have it and no passing one. `shared` explains it.
+  of the passing cases that have it. 1: all failing cases have it and no passing one. `shared` explains it.
 - a *pattern*: the share of the failing cases that fail in the same manner (a wrong limit, one order lost,
-only the
-  gradient). `patterns` explains it.
+  only the gradient). `patterns` explains it.
 - a *place*: the share of the failing cases whose largest errors crowd in the same place. `places` explains
-it.
+  it.
 
 The score ranks; it is no probability. Where one feature explains as much as another, the cases cannot tell
 them apart and the text names both.
@@ -20,7 +18,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from laplace_verify.campaign.record import Record
+from laplace_verify.campaign.record import Record, check_record
 from laplace_verify.diagnosis.patterns import patterns
 from laplace_verify.diagnosis.places import places
 from laplace_verify.diagnosis.shared import shared_features
@@ -59,7 +57,13 @@ def diagnose(record: Record) -> list[Suspect]:
 
     Known deviations and undecided studies are left out: they say nothing about a mistake. Studies in which
     the solver broke are explained apart from those in which it fell short.
+
+    Raises
+    ------
+    RecordError
+        If `record` is none.
     """
+    check_record(record)
     failing = [study for study in record.studies if study.verdict is Verdict.FAIL and study.known is None]
     passing = [study for study in record.studies if study.verdict is Verdict.PASS]
     broken = [study for study in record.studies if study.verdict is Verdict.ERROR]

@@ -67,4 +67,4 @@ def name_of(points: Array, hit: BoolArray, first: int | None, place: Any) -> str
 
 def text_of(place: tuple[Any, ...]) -> str:
     """Return a precise point in a message."""
-    return "(" + ", ".join(str(c)[:30] for c in place) + ")"
+    return "(" + ", ".join(str(c) if len(str(c)) <= 24 else f"{float(c):.17g}" for c in place) + ")"

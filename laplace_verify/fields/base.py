@@ -429,14 +429,13 @@ class Field(ABC):
         """Return u(x - vector): the picture of u moved by `vector`."""
         from laplace_verify.fields.motions import Shifted
 
-        return Shifted(field=self, vector=tuple(vector))  # type: ignore[arg-type]  # made exact there
+        return Shifted(field=self, vector=vector)  # type: ignore[arg-type]  # made exact there
 
     def rotated(self, angle: Number, axis: Iterable[Number] | None = None) -> Field:
         """Return the picture of u turned by `angle` radians, about the origin or in 3-D about `axis`."""
         from laplace_verify.fields.motions import Rotated
 
-        turned_about: Any = None if axis is None else tuple(axis)  # made exact there
-        return Rotated(field=self, angle=angle, axis=turned_about)  # type: ignore[arg-type]
+        return Rotated(field=self, angle=angle, axis=axis)  # type: ignore[arg-type]  # made exact there
 
     def scaled(self, factor: Number) -> Field:
         """Return u(x / factor): the picture of u enlarged by `factor` > 0."""
@@ -448,7 +447,7 @@ class Field(ABC):
         """Return the Kelvin transform of u in the circle or sphere about `centre`, see `kelvin.Inverted`."""
         from laplace_verify.fields.kelvin import Inverted
 
-        return Inverted(field=self, centre=tuple(centre), radius=radius)  # type: ignore[arg-type]
+        return Inverted(field=self, centre=centre, radius=radius)  # type: ignore[arg-type]  # made exact there
 
     def conjugate(self) -> Field:
         """Return v with u + i v analytic: v_x = -u_y, v_y = u_x (in the plane, where it is single-valued).

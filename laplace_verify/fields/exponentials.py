@@ -83,20 +83,25 @@ class ExpTrig(Field):
         """Such as ``exp(2 (y - 1)) cos(2 x)``."""
         pi = "pi " if self.times_pi else ""
         axis = "xyz"[len(self.k)]
-        c = (
-            f"{show(self.k[0])} {pi}"
-            if len(self.k) == 1
-            else f"{pi}sqrt({show(self.k[0])}^2 + {show(self.k[1])}^2) "
-        )
+        numbers = ["" if a == 1 else f"{show(a)} " for a in self.k]
+        if len(self.k) == 1:
+            rate = numbers[0] + pi
+        else:
+            rate = f"{pi}sqrt({_square(self.k[0])} + {_square(self.k[1])}) "
         waves = " ".join(
-            f"{part}({show(a)} {pi}{_minus(name, place)})"
-            for part, a, name, place in zip(self.parts, self.k, "xy", self.centre, strict=False)
+            _called(part, number + pi, _minus(name, place))
+            for part, number, name, place in zip(self.parts, numbers, "xy", self.centre, strict=False)
         )
         if self.profile in ("exp", "decay"):
-            return f"exp({'-' if self.profile == 'decay' else ''}{c}{_minus(axis, self.level)}) {waves}"
-        top = f"{self.profile}({c}{_minus(axis, self.centre[-1])})"
-        height = show(exact(rational(self.level) - rational(self.centre[-1]), "level"))
-        return f"{top}/{self.over}({c}{height}) {waves}"
+            sign = "-" if self.profile == "decay" else ""
+            return f"{_called('exp', sign + rate, _minus(axis, self.level))} {waves}"
+        top = _called(self.profile, rate, _minus(axis, self.centre[-1]))
+        height = exact(rational(self.level) - rational(self.centre[-1]), "level")
+        if not height:  # cosh(0) = 1
+            return f"{top} {waves}"
+        shown = show(height) if height > 0 else f"({show(height)})"
+        bottom = rate.strip() if height == 1 and rate else rate + shown
+        return f"{top}/{self.over}({bottom}) {waves}"
 
     def _rate(self, ctx: Any) -> Any:
         """Return c, the rate of the profile."""
@@ -203,7 +208,7 @@ def exp_trig(
     middle = (0,) * (len(waves) + 1) if centre is None else tuple(centre)
     if level is None:
         level = middle[-1] if middle else 0
-    parts = (part,) * len(waves) if isinstance(part, str) else tuple(part)
+    parts = tuple(part) if isinstance(part, tuple | list) else (part,) * len(waves)
     return ExpTrig(k=waves, parts=parts, profile=profile, centre=middle, level=level, times_pi=times_pi)  # type: ignore[arg-type]  # made exact
 
 
@@ -222,6 +227,19 @@ def sin_cos(ctx: Any, k: Exact, x: Any, times_pi: bool) -> tuple[Any, Any]:
     sign = 1 - 2 * np.mod(whole, 2)
     # cos(pi f) from sin(pi (1/2 - |f|)): exact where the wave is zero
     return sign * np.sin(np.pi * rest), sign * np.sin(np.pi * (0.5 - np.abs(rest)))
+
+
+def _called(function: str, factor: str, argument: str) -> str:
+    """Return ``cos(2 x)``, ``cos(2 (x - 1))`` or ``cos(x - 1)``."""
+    if not factor and argument.startswith("("):
+        return function + argument
+    return f"{function}({factor}{argument})"
+
+
+def _square(number: Exact) -> str:
+    """Return ``2^2`` or ``(2/3)^2``."""
+    text = show(number)
+    return f"({text})^2" if "/" in text else f"{text}^2"
 
 
 def _minus(name: str, place: Exact) -> str:

@@ -181,8 +181,9 @@ class _Reader:
         if node.id in ("pi", "e"):
             return Symbol(node.id)
         if node.id not in self.names:
-            known = [*self.names, "pi", "e", *Call.FUNCTIONS]
-            raise self.refuse(node, f"unknown name {node.id[:40]!r}; {nearest_names(node.id[:40], known)}")
+            raise self.refuse(
+                node, f"unknown name {node.id[:40]!r}; names are {', '.join((*self.names, 'pi', 'e'))}"
+            )
         self.variables.add(node.id)
         return Symbol(node.id)
 

@@ -196,7 +196,7 @@ def poisson_disc(
         return DiscFourier(**common, cosines=data.cosines, sines=data.sines)
     if callable(data) or (isinstance(data, str) and not NUMERAL.fullmatch(data)):
         return DiscSmooth(**common, data=data)
-    return DiscFourier(**common, cosines=(data,), sines=())  # type: ignore[arg-type]  # made exact there
+    return DiscFourier(**common, cosines=(exact(data, "data"),), sines=())
 
 
 def _value(ctx: Any, coefficients: list[Any], z: tuple[Any, Any]) -> Any:

@@ -20,7 +20,7 @@ from typing import Any
 
 from laplace_verify.contexts import Number
 from laplace_verify.errors import FieldError
-from laplace_verify.fields.exact import NUMERAL
+from laplace_verify.fields.exact import NUMERAL, exact, exact_point
 from laplace_verify.fields.piecewise import Piecewise
 from laplace_verify.fields.plate import Plate, side_ends
 from laplace_verify.fields.plate_modes import CoefficientRule, PlateModes
@@ -85,7 +85,7 @@ def rectangle_series(
     FieldError
         If the corners, the words or the data are not as described.
     """
-    lower, upper = tuple(lower), tuple(upper)
+    lower, upper = exact_point(lower, "lower", (2,)), exact_point(upper, "upper", (2,))
     common: dict[str, Any] = {
         "lower": lower, "upper": upper, "side": side, "neighbours": neighbours, "far": far,
     }  # fmt: skip
@@ -99,5 +99,5 @@ def rectangle_series(
         return PlatePieces(**common, breaks=breaks, coefficients=rows)
     if callable(data) or (isinstance(data, str) and not NUMERAL.fullmatch(data)):
         return PlateSmooth(**common, data=data)
-    level = Piecewise(breaks=(0, 1), coefficients=((data,),), fraction=True)  # type: ignore[arg-type]
+    level = Piecewise(breaks=(0, 1), coefficients=((exact(data, "data"),),), fraction=True)
     return rectangle_series(lower, upper, level, neighbours, side, far)

@@ -5,8 +5,9 @@ derivative of a function given without gradient is a central difference of sixth
 
     f'(x) = [45 (f_1 - f_-1) - 9 (f_2 - f_-2) + (f_3 - f_-3)]/(60 h) + O(h^6),    f_j = f(x + j h),
 
-in float64 with h = 2^-8 (error about 1e-13 of max|f| for functions that vary over lengths of order one), in
-precise numbers with twice the digits and h = 10^(-digits/3).
+in float64 with the longest h of 2^-8, 2^-12, ... that the next one confirms: error about 1e-13 of max|f| for
+functions that vary over lengths of order one, 1e-11 of max|f|/L for those that vary over shorter lengths L.
+In precise numbers with twice the digits and h = 10^(-digits/3).
 """
 
 from __future__ import annotations
@@ -31,6 +32,9 @@ from laplace_verify.fields.specs import registered
 __all__ = ["FormulaField", "UserField", "field"]
 
 STEP = 2.0**-8
+FINER = 16.0  # from one step to the next
+STEPS = 6  # the last is 2^-28: functions that vary over 1e-6
+ROUNDING = 16 * np.finfo(np.float64).eps  # of a function, relative to its size
 WEIGHTS = ((1, 45), (2, -9), (3, 1))  # over 60 h
 MEND = (
     "write it with numpy's functions of single coordinates (np.exp(x) * np.cos(y)), without math.* and array "
@@ -122,8 +126,12 @@ class UserField(Field):
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:
         if self.slope is None:
             return tuple(self._difference(ctx, x, axis, side) for axis in range(self.dim))
-        parts = self._call(self.slope, ctx, x)
         name = f"gradient of {self.formula}"
+        if ctx is FLOAT and len(x[0]) == self.dim > 1:
+            # (n, d) and (d, n) could not be told apart: ask for one point more
+            more = self._gradient(ctx, tuple(np.append(c, c[0]) for c in x), side)
+            return tuple(part[:-1] for part in more)
+        parts = self._call(self.slope, ctx, x)
         if self.dim == 1 and np.ndim(parts) <= (1 if ctx is FLOAT else 0):
             parts = (parts,)
         if isinstance(parts, np.ndarray) and parts.shape == (len(np.atleast_1d(x[0])), self.dim):
@@ -138,16 +146,22 @@ class UserField(Field):
 
     def _difference(self, ctx: Any, x: tuple[Any, ...], axis: int, side: Any) -> Any:
         """Return the central difference of sixth order along one axis."""
-        if ctx is FLOAT:
-            h = self._steps(x)
-        else:
+        if ctx is not FLOAT:
             ctx, x = _doubled(ctx, x)
-            h = ctx.mpf(10) ** -(ctx.digits // 6)
 
-        def moved(steps: int) -> Any:
-            return self._value(ctx, (*x[:axis], x[axis] + steps * h, *x[axis + 1 :]), side)
+        def with_step(h: Any) -> tuple[Any, Any]:
+            """Return the difference and the size of what it is made of."""
 
-        return sum(weight * (moved(j) - moved(-j)) for j, weight in WEIGHTS) / (60 * h)
+            def moved(steps: int) -> Any:
+                return self._value(ctx, (*x[:axis], x[axis] + steps * h, *x[axis + 1 :]), side)
+
+            pairs = [(weight, moved(j), moved(-j)) for j, weight in WEIGHTS]
+            total = sum(weight * (ahead - behind) for weight, ahead, behind in pairs)
+            return total / (60 * h), abs(pairs[0][1]) + abs(pairs[0][2])
+
+        if ctx is FLOAT:
+            return _settled(with_step, self._steps(x))
+        return with_step(ctx.mpf(10) ** -(ctx.digits // 6))[0]
 
     def _steps(self, x: tuple[Any, ...]) -> Array:
         """Return float64 steps: powers of two, at most a twentieth of the distance to a singular point."""
@@ -187,8 +201,9 @@ def field(
         can be put in too (``np.pi`` holds 16 digits only). Or text such as ``"exp(pi*y)*sin(pi*x)"``, where
         decimals, pi and derivatives are exact; see `Formula`.
     gradient : callable, optional
-        ``gradient(x, y)`` returning the partial derivatives. Without it: a sixth-order difference with steps
-        of 1/256, smaller near singular points; about 1e-12 where `f` varies over lengths of order one.
+        ``gradient(x, y)`` returning the partial derivatives, as a tuple or an array (n, d) or (d, n). Without
+        it: a sixth-order difference with steps that adapt to lengths from 1e-6 up, right to about 1e-11 of
+        max|f| per length over which `f` varies.
     singular : sequence of points or Singularity
         Where `f` has no value (plain points are taken as poles) or is not smooth.
     dim : int, optional
@@ -210,19 +225,18 @@ def field(
     """
     if isinstance(f, Field):
         return f
-    points = tuple(singular)
     if isinstance(f, str):
         if gradient is not None:
             raise FieldError("a formula differentiates itself: leave gradient out")
         formula = _parsed(f)
         count = _dim_of(formula) if dim is None else dim
-        return FormulaField(text=formula.text, dim=count, singular=_singular_points(points, count))
+        return FormulaField(text=formula.text, dim=count, singular=_singular_points(singular, count))
     if not callable(f):
         raise FieldError(f"a field is made of a function or a formula string, got {type(f).__name__}")
     if gradient is not None and not callable(gradient):
         raise FieldError(f"gradient must be a function of the coordinates, got {type(gradient).__name__}")
     count = whole(_dim_of_signature(f, dim), "dim", 1, 3)
-    return UserField(function=f, slope=gradient, dim=count, singular=_singular_points(points, count))
+    return UserField(function=f, slope=gradient, dim=count, singular=_singular_points(singular, count))
 
 
 @lru_cache(maxsize=256)
@@ -259,6 +273,8 @@ def _dim_of_signature(f: Callable[..., Any], dim: int | None) -> Any:
 
 def _singular_points(points: Any, dim: int) -> tuple[Singularity, ...]:
     """Return singular points given as such, or as bare coordinates of poles."""
+    if isinstance(points, str) or not isinstance(points, Iterable):
+        raise FieldError(f"singular must be a list of points, got {points!r}")
     found = []
     for i, point in enumerate(points):
         if isinstance(point, Singularity):
@@ -269,6 +285,28 @@ def _singular_points(points: Any, dim: int) -> tuple[Singularity, ...]:
             place = tuple(float(c) for c in exact_point(point, f"singular[{i}]", (dim,)))
             found.append(Singularity(point=place, exponent=-1.0, kind="pole"))
     return tuple(found)
+
+
+def _settled(with_step: Callable[[Array], tuple[Array, Array]], h: Array) -> Array:
+    """Return per point the difference with the longest step that the next finer one confirms.
+
+    It is confirmed if the two agree to the rounding of the finer one, a few eps max|f|/h; differences of a
+    function that varies within the step are far from that. Where none is confirmed, the pair that agrees
+    best counts.
+    """
+    best, _ = coarse, _ = with_step(h)
+    least, unsettled = np.full(len(h), np.inf), np.ones(len(h), dtype=np.bool_)
+    for _ in range(1, STEPS):
+        h = h / FINER
+        fine, size = with_step(h)
+        change = np.abs(fine - coarse)
+        better = unsettled & (change < least)
+        best, least = np.where(better, coarse, best), np.where(better, change, least)
+        unsettled &= ~(change <= ROUNDING * size / h)
+        if not unsettled.any():
+            break
+        coarse = fine
+    return best
 
 
 @lru_cache(maxsize=64)

@@ -1,8 +1,9 @@
 """Curved pieces in the plane: arcs of circles and of ellipses with axes along x and y.
 
-Nearest points on an ellipse: the best of many points on the arc brackets a sign change of the derivative of
-the squared distance, which is then bisected; no case distinction, no divergence, and arcs that are not
-closed are handled like closed ones. Fractions of length go through the elliptic integral ``E(phi | m)``
+Nearest points on an ellipse: by symmetry x, y >= 0, and half the derivative of the squared distance, divided
+by ``sin s cos s``, is ``b^2 - a^2 + a x/cos s - b y/sin s``, which rises from s = 0 to pi/2 (derived here):
+its one sign change is bisected. If that point is not on the arc, the best of many points on the arc brackets
+a local minimum, which is bisected too. Fractions of length go through the elliptic integral ``E(phi | m)``
 (Abramowitz and Stegun 1964, Handbook of Mathematical Functions, section 17.2).
 """
 
@@ -120,32 +121,47 @@ class Arc(Curve):
         off = (np.abs(np.hypot(scaled[:, 0], scaled[:, 1]) - 1.0) > 1e-14) | (angle > self.last)
         rows = np.flatnonzero(off)
         for part in blocks(len(rows), 4096):
-            angle[rows[part]] = self._nearest(points[rows[part]])
+            angle[rows[part]] = self._nearest(points[rows[part]] - np.array(self.centre))
         return angle
 
-    def _nearest(self, points: Array) -> Array:
-        centred = points - np.array(self.centre)
+    def _nearest(self, centred: Array) -> Array:
+        """Return the angle in [first, last] of the point of the arc nearest to points - centre."""
+        quarter = self._bisected(
+            np.abs(centred), np.zeros(len(centred)), np.full(len(centred), math.pi / 2.0)
+        )
+        x, y = np.copysign(np.cos(quarter), centred[:, 0]), np.copysign(np.sin(quarter), centred[:, 1])
+        angle: Array = self.first + np.mod(np.arctan2(y, x) - self.first, TURN)
+        beyond = np.flatnonzero(angle > self.last)
+        if len(beyond):
+            angle[beyond] = self._searched(centred[beyond])
+        return angle
+
+    def _bisected(self, centred: Array, low: Array, high: Array) -> Array:
+        """Return the angle between two at which the distance stops falling."""
+        a, b = self.semi_axes
+        for _ in range(56):
+            middle = (low + high) / 2.0
+            c, s = np.cos(middle), np.sin(middle)
+            slope = (a * c - centred[:, 0]) * -a * s + (b * s - centred[:, 1]) * b * c
+            low, high = np.where(slope > 0.0, low, middle), np.where(slope > 0.0, middle, high)
+        angle: Array = (low + high) / 2.0
+        return angle
+
+    def _searched(self, centred: Array) -> Array:
+        """Return the angle of the nearest point of an open arc, if that of the whole ellipse is not on it."""
         a, b = self.semi_axes
         count = max(9, math.ceil(128 * (self.last - self.first) / TURN))
         trial = np.linspace(self.first, self.last, count)
         x, y = a * np.cos(trial), b * np.sin(trial)
         best = np.argmin((centred[:, :1] - x) ** 2 + (centred[:, 1:] - y) ** 2, axis=1)
         step = trial[1] - trial[0]
-        low, high = trial[best] - step, trial[best] + step
-        if not self.closed:
-            low, high = np.maximum(low, self.first), np.minimum(high, self.last)
-        for _ in range(56):
-            middle = (low + high) / 2.0
-            c, s = np.cos(middle), np.sin(middle)
-            slope = (a * c - centred[:, 0]) * -a * s + (b * s - centred[:, 1]) * b * c
-            low, high = np.where(slope > 0.0, low, middle), np.where(slope > 0.0, middle, high)
-        angle = (low + high) / 2.0
-        if self.closed:
-            angle = self.first + np.mod(angle - self.first, TURN)
-        else:  # bisection stops just short of an end it converges to
-            angle = np.where(high >= self.last, self.last, np.where(low <= self.first, self.first, angle))
-        clipped: Array = np.clip(angle, self.first, self.last)
-        return clipped
+        low = np.maximum(trial[best] - step, self.first)
+        high = np.minimum(trial[best] + step, self.last)
+        angle = self._bisected(centred, low, high)
+        # bisection stops just short of an end it converges to
+        short = 1e-15 * TURN
+        angle = np.where(angle >= self.last - short, self.last, angle)
+        return np.where(angle <= self.first + short, self.first, angle)
 
     def _project(self, points: Array) -> Array:
         return self._on(self._parameter(points))

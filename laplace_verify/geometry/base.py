@@ -20,7 +20,7 @@ import numpy.typing as npt
 from laplace_verify.arrays import Array, BoolArray, as_points, frozen
 from laplace_verify.errors import GeometryError, nearest_names
 from laplace_verify.geometry.boundary import Boundary
-from laplace_verify.geometry.checks import ROUNDING, proportions
+from laplace_verify.geometry.checks import LARGEST, ROUNDING, not_negative, places, proportions, whole
 from laplace_verify.geometry.patches import Chart, integrate
 from laplace_verify.geometry.splitting import check_fractions, check_names, junction_openings, split_piece
 
@@ -138,7 +138,7 @@ class Shape(ABC):
         object.__setattr__(self, "splits", check_fractions(dict(self.splits), whole))
         object.__setattr__(self, "names", check_names(dict(self.names), whole))
 
-    @property
+    @cached_property
     def extent(self) -> float:
         """Largest extent of the bounding box."""
         lower, upper = self.bounding_box
@@ -199,9 +199,9 @@ class Shape(ABC):
         >>> Disc((0, 0), 1.0).contains([(1.0, 0.0), (1.1, 0.0)]).tolist()
         [True, False]
         """
-        if not tol >= 0.0:
-            raise GeometryError(f"tol must be >= 0, got {tol!r}")
-        array = as_points(points, self.dim, error=GeometryError)
+        tol = not_negative(tol, "tol")
+        # nothing reaches that far, and squares of what does would overflow
+        array = np.clip(as_points(points, self.dim, error=GeometryError), -LARGEST, LARGEST)
         inside = self._inside(array)
         outside = np.flatnonzero(~inside)
         if len(outside):
@@ -210,7 +210,7 @@ class Shape(ABC):
 
     def distance(self, points: npt.ArrayLike) -> Array:
         """Return the distance (n,) of points (n, d) to the boundary, >= 0 on either side."""
-        return self._distance(as_points(points, self.dim, error=GeometryError))
+        return self._distance(places(points, self.dim))
 
     def _distance(self, points: Array) -> Array:
         nearest = np.full(len(points), np.inf)
@@ -221,9 +221,8 @@ class Shape(ABC):
 
     def outline(self, n: int) -> dict[str, Array]:
         """Return about n points along each piece, ends included, for drawing: {name: (n, d)}."""
-        if not n >= 2:
-            raise GeometryError(f"outline needs n >= 2 points a piece, got {n!r}")
-        return {piece.name: piece.outline(n) for piece in self.pieces}
+        count = whole(n, "n", 2)
+        return {piece.name: piece.outline(count) for piece in self.pieces}
 
     def sample(self, n: int, seed: int) -> Array:
         """Return n points (n, d), uniformly distributed and strictly inside; same seed, same points.
@@ -233,11 +232,9 @@ class Shape(ABC):
         >>> points.shape, bool((points == Disc((0, 0), 1.0).sample(5, seed=3)).all())
         ((5, 2), True)
         """
-        if not n >= 0:
-            raise GeometryError(f"sample needs n >= 0, got {n!r}")
-        generator = np.random.default_rng(seed)
+        missing = whole(n, "n", 0)
+        generator = np.random.default_rng(whole(seed, "seed", 0))
         found: list[Array] = []
-        missing = int(n)
         while missing > 0:
             points = self._draw(generator, missing + missing // 2 + 8)
             points = points[self._inside(points)]

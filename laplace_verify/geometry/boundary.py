@@ -5,13 +5,13 @@ from __future__ import annotations
 import math
 from abc import ABC, abstractmethod
 from dataclasses import dataclass
-from typing import Any
 
 import numpy as np
 import numpy.typing as npt
 
 from laplace_verify.arrays import Array, BoolArray, as_points, as_values
 from laplace_verify.errors import GeometryError
+from laplace_verify.geometry.checks import LARGEST, not_negative, places, whole
 from laplace_verify.geometry.patches import Chart, broken, integrate, singular_points
 
 __all__ = ["Boundary", "Curve", "Surface"]
@@ -89,11 +89,11 @@ class Boundary(ABC):
 
     def project(self, points: npt.ArrayLike) -> Array:
         """Return the nearest point of the piece, shape (n, d), to each of points (n, d)."""
-        return self._project(as_points(points, self.dim, error=GeometryError))
+        return self._project(places(points, self.dim))
 
     def normals(self, points: npt.ArrayLike) -> Array:
         """Return outward unit normals (n, d) at the projections of points (n, d)."""
-        return self._normals(as_points(points, self.dim, error=GeometryError))
+        return self._normals(places(points, self.dim))
 
     def contains(
         self, points: npt.ArrayLike, tol: float = 1e-9, normals: npt.ArrayLike | None = None
@@ -110,9 +110,8 @@ class Boundary(ABC):
             Outward normals (n, d) at the points, to tell the two lips of a slit apart: a point belongs to the
             piece only if its normal points to the same side.
         """
-        if not tol >= 0.0:
-            raise GeometryError(f"tol must be >= 0, got {tol!r}")
-        array = as_points(points, self.dim, error=GeometryError)
+        tol = not_negative(tol, "tol")
+        array = np.clip(as_points(points, self.dim, error=GeometryError), -LARGEST, LARGEST)
         offset = array - self._project(array)
         on: BoolArray = np.sqrt((offset**2).sum(axis=1)) <= tol * self.size
         if normals is not None:
@@ -169,7 +168,7 @@ class Curve(Boundary):
 
     def sample(self, n: int) -> tuple[Array, Array, Array]:
         """Return n points at the middle of equal lengths, outward unit normals, and equal weights."""
-        _check_count(n)
+        n = whole(n, "n", 1)
         points = self._at((np.arange(n) + 0.5) / n)
         return points, self._normals(points), np.full(n, self.measure / n)
 
@@ -224,8 +223,7 @@ class Surface(Boundary):
 
     def sample(self, n: int) -> tuple[Array, Array, Array]:
         """Return about n points at the middle of equal areas, outward unit normals, and equal weights."""
-        _check_count(n)
-        side = max(1, round(math.sqrt(n)))
+        side = max(1, round(math.sqrt(whole(n, "n", 1))))
         middle = (np.arange(side) + 0.5) / side
         u, v = np.meshgrid(middle, middle, indexing="ij")
         points = self._at(u.ravel(), v.ravel())
@@ -240,8 +238,11 @@ class Surface(Boundary):
 
 
 def _fractions(t: npt.ArrayLike) -> Array:
-    array = np.asarray(t, dtype=np.float64)
-    flat = as_values(array, array.size if array.ndim else 1, error=GeometryError, name="t")
+    try:
+        array = np.asarray(t, dtype=np.float64)
+    except (TypeError, ValueError) as cause:
+        raise GeometryError(f"t must be numbers in [0, 1], got {t!r}") from cause
+    flat = as_values(array, array.size, error=GeometryError, name="t")
     _check_unit(flat)
     return flat
 
@@ -249,8 +250,3 @@ def _fractions(t: npt.ArrayLike) -> Array:
 def _check_unit(t: Array) -> None:
     if not ((t >= 0.0) & (t <= 1.0)).all():
         raise GeometryError("t must lie in [0, 1]: it is a fraction of the piece's length or area")
-
-
-def _check_count(n: Any) -> None:
-    if not (isinstance(n, int | np.integer) and n >= 1):
-        raise GeometryError(f"sample needs a whole number n >= 1, got {n!r}")

@@ -7,10 +7,23 @@ from collections.abc import Sequence
 from typing import Any
 
 import numpy as np
+import numpy.typing as npt
 
+from laplace_verify.arrays import Array, as_points
 from laplace_verify.errors import GeometryError
 
-__all__ = ["ROUNDING", "THINNEST", "coordinates", "number", "positive", "proportions"]
+__all__ = [
+    "LARGEST",
+    "ROUNDING",
+    "THINNEST",
+    "coordinates",
+    "not_negative",
+    "number",
+    "places",
+    "positive",
+    "proportions",
+    "whole",
+]
 
 ROUNDING = 1e-12  # relative to a shape's size: what float64 may lose on the way to a point of the boundary
 THINNEST = 1e-9  # least extent, relative to the largest, of a shape we can still sample and integrate over
@@ -53,6 +66,39 @@ def positive(value: Any, name: str) -> float:
     if not result > 0.0:
         raise GeometryError(f"{name} must be > 0, got {value!r}")
     return result
+
+
+def not_negative(value: Any, name: str) -> float:
+    """Return `value` as a finite float >= 0."""
+    result = number(value, name)
+    if not result >= 0.0:
+        raise GeometryError(f"{name} must be >= 0, got {value!r}")
+    return result
+
+
+def whole(value: Any, name: str, least: int, most: int | None = None) -> int:
+    """Return `value` as an int from `least` to `most` (None: no upper bound).
+
+    >>> whole(3, "n", 1)
+    3
+    """
+    is_whole = isinstance(value, int | np.integer) and not isinstance(value, bool)
+    if not is_whole or value < least or (most is not None and value > most):
+        wanted = f">= {least}" if most is None else f"from {least} to {most}"
+        raise GeometryError(f"{name} must be a whole number {wanted}, got {value!r}")
+    return int(value)
+
+
+def places(points: npt.ArrayLike, dim: int) -> Array:
+    """Return points (n, dim) as float64, refusing any whose squared distance would overflow."""
+    array = as_points(points, dim, error=GeometryError)
+    far = np.abs(array).max(axis=1, initial=0.0) > LARGEST
+    if far.any():
+        row = int(np.flatnonzero(far)[0])
+        raise GeometryError(
+            f"points must have coordinates of at most {LARGEST:g}, but row {row} is {array[row].tolist()}"
+        )
+    return array
 
 
 def proportions(lower: Sequence[float], upper: Sequence[float], shape: str) -> None:

@@ -24,6 +24,7 @@ import numpy.typing as npt
 
 from laplace_verify.arrays import Array, BoolArray, IntArray, as_points
 from laplace_verify.errors import GeometryError
+from laplace_verify.geometry.checks import positive, whole
 
 __all__ = ["Chart", "boxes", "gauss", "integrate"]
 
@@ -112,10 +113,9 @@ def integrate(
     GeometryError
         If `order`, `singular` or `cell` make no sense, or if `cell` asks for over two million patches.
     """
-    if not (isinstance(order, int | np.integer) and 0 <= order <= MAX_ORDER):
-        raise GeometryError(f"order must be a whole number from 0 to {MAX_ORDER}, got {order!r}")
-    if cell is not None and not (cell > 0 and math.isfinite(cell)):
-        raise GeometryError(f"cell must be a length > 0 or None, got {cell!r}")
+    order = whole(order, "order", 0, MAX_ORDER)
+    if cell is not None:
+        positive(cell, "cell")
     dim = chart.place(chart.lower[:1], np.zeros(1, dtype=np.int64))[0].shape[1]
     targets = singular_points(singular, dim)
     lower, upper, box, near = _subdivide(chart, targets, cell)
@@ -131,10 +131,9 @@ def integrate(
 
 def singular_points(singular: npt.ArrayLike, dim: int) -> Array:
     """Return `singular` as an array (m, dim); none given is (0, dim)."""
-    array = np.asarray(singular, dtype=np.float64)
-    if array.size == 0:
+    if isinstance(singular, list | tuple | np.ndarray) and not len(singular):
         return np.zeros((0, dim))
-    return as_points(array, dim, error=GeometryError, name="singular")
+    return as_points(singular, dim, error=GeometryError, name="singular")
 
 
 def _point_counts(chart: Chart, order: int, width: Array, near: BoolArray) -> IntArray:

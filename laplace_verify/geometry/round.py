@@ -211,8 +211,11 @@ class Annulus(Shape):
         return inside
 
     def _draw(self, generator: np.random.Generator, n: int) -> Array:
-        if self.inner_centre is not None:  # uniform over the disc; the hole's share is dropped by the caller
-            return np.array(self.centre) + self.outer * draw_disc(generator, n)
+        if self.inner_centre is not None:  # in the chart, a quarter kept, in proportion to its Jacobian
+            parameters = generator.random((n, 2)) * [1.0, TURN]
+            points, jacobian = self._chart().place(parameters, np.zeros(n, dtype=np.int64))
+            slope = self.outer - self.inner + math.dist(self.centre, self.inner_centre)
+            return points[generator.random(n) * self.outer * slope < jacobian]
         share = (self.inner / self.outer) ** 2
         r = self.outer * np.sqrt(share + (1.0 - share) * generator.random(n))
         t = TURN * generator.random(n)

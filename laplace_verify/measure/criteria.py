@@ -7,7 +7,6 @@ from typing import TYPE_CHECKING
 
 from laplace_verify.measure.expected import Expectation, expected_order
 from laplace_verify.measure.functionals import probes
-from laplace_verify.solvers.declarations import order_in
 
 if TYPE_CHECKING:
     from laplace_verify.problems import Case
@@ -35,21 +34,24 @@ def norms_of(case: Case) -> list[str]:
 
 
 def expectations(solver: Adapter, case: Case) -> dict[str, Expectation]:
-    """Return norm -> Expectation for a solver on a case.
+    """Return norm -> Expectation for a solver on a case: theory's, or what the author claims instead.
 
     The level of a pure Neumann answer decides only if the solver declares that it fixes the constant; its
     order is then that of the L2 error.
     """
-    claimed = solver.expected.get(case.id)
-    found = {}
-    for norm in norms_of(case):
-        rate = None if claimed is None else order_in(norm, solver.kind, claimed)
-        found[norm] = expected_order(solver.kind, norm, solver.formal_order, case.regularity, rate)
+    kind, formal = solver.kind, solver.formal_order
+    found = {norm: expected_order(kind, norm, formal, case.regularity) for norm in norms_of(case)}
     if case.problem.coordinates != "cartesian":
         found = {norm: replace(e, basis=f"{e.basis}; {IN_SPACE}") for norm, e in found.items()}
     if found["H1-semi"].decides and isinstance(case.problem.conductivity, float):
         basis = "a multiple of H1-semi where the conductivity is a number: shown, does not decide"
         found["energy"] = replace(found["energy"], decides=False, basis=basis)
+    for norm in found:
+        claim = solver.expected.get(norm, solver.expected.get(norm.partition(":")[0]))
+        if claim is not None:
+            rate, reason = claim
+            basis = f"claimed by the author of the solver: {reason}"
+            found[norm] = replace(found[norm], expected=rate, decides=True, basis=basis, claimed=True)
     if LEVEL in found:
         found[LEVEL] = _level(found["L2"], fixes=solver.fixes_constant)
     return found
@@ -59,7 +61,7 @@ def _level(volume: Expectation, *, fixes: bool) -> Expectation:
     """Return what is expected of the level of a pure Neumann answer."""
     if not fixes:
         basis = "the solver does not declare that it fixes the constant: shown, does not decide"
-        return replace(volume, norm=LEVEL, expected=None, decides=False, basis=basis)
+        return replace(volume, norm=LEVEL, expected=None, decides=False, basis=basis, claimed=False)
     return replace(
         volume, norm=LEVEL, basis=f"the mean of the error is bounded by its L2 norm: {volume.basis}"
     )

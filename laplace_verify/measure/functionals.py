@@ -13,7 +13,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from laplace_verify.arrays import Array
-from laplace_verify.measure.norms import conducted
+from laplace_verify.measure.norms import conducted, weighted_norm
 
 if TYPE_CHECKING:
     from laplace_verify.measure.exact import Exact
@@ -124,8 +124,8 @@ def _trace(
     if not usable.mean() > 0.5:  # a mesh inside a curved piece has no trace on it
         return
     w = weights[usable]
-    error = float(np.sqrt(w @ (seen[usable] - u[usable]) ** 2))
-    result.add(f"trace:{piece.name}", error, float(np.sqrt(w @ u[usable] ** 2)))
+    error = weighted_norm(w, seen[usable] - u[usable])
+    result.add(f"trace:{piece.name}", error, weighted_norm(w, u[usable]))
     if not answer.has_gradient:
         return
     gradients = answer.gradient_at(points)
@@ -138,8 +138,8 @@ def _trace(
     usable = np.isfinite(density) & np.isfinite(exact_density)
     if usable.mean() > 0.5:
         w = weights[usable]
-        error = float(np.sqrt(w @ (density[usable] - exact_density[usable]) ** 2))
-        result.add(f"fluxdensity:{piece.name}", error, float(np.sqrt(w @ exact_density[usable] ** 2)))
+        error = weighted_norm(w, density[usable] - exact_density[usable])
+        result.add(f"fluxdensity:{piece.name}", error, weighted_norm(w, exact_density[usable]))
 
 
 def _trace_points(piece: Piece, answer: Answer, case: Case, h: float) -> tuple[Array, Array, Array]:

@@ -27,7 +27,7 @@ from laplace_verify.measure.expected import Expectation, is_functional, smallest
 from laplace_verify.measure.orders import OrderFit, fit_order, noise_level, pair_orders
 from laplace_verify.measure.rates import Finding, judge_decrease, judge_exponential, stagnation
 from laplace_verify.measure.results import Level, Order
-from laplace_verify.measure.series import MINIMUM_LEVELS, Series, series_of
+from laplace_verify.measure.series import MINIMUM_LEVELS, TOO_COARSE, Series, series_of
 from laplace_verify.measure.verdict import Verdict
 
 __all__ = ["combine", "judge", "judge_norm"]
@@ -130,7 +130,9 @@ def _algebraic(series: Series, expected: float, fit: OrderFit | None, noise: flo
     if series.at_floor and series.above < MINIMUM_LEVELS:
         return _down_to_floor(series, least, noise)
     if fit is None:
-        words = f"{series.above} levels can be judged, too few for an order; {_advice(series)}"
+        coarse = ", ".join(size for size, why in series.left_out.items() if why.startswith(TOO_COARSE))
+        without = f" (without {coarse}: {TOO_COARSE})" if coarse else ""
+        words = f"{series.above} levels can be judged, too few for an order{without}; {_advice(series)}"
         return Finding(Verdict.INCONCLUSIVE, words, finer=True)
     if series.above < MINIMUM_LEVELS:
         words = f"three levels give an order but no verdict; {_advice(series)}"
@@ -176,13 +178,13 @@ def _down_to_floor(series: Series, least: float, noise: float) -> Finding:
 
 
 def _advice(series: Series) -> str:
-    """Return which size to run next."""
+    """Return which sizes to run next: as many as a verdict lacks, one at least."""
     if not series.sizes:
         return "run finer sizes"
-    if len(series.sizes) > 1:
-        ratio = series.sizes[-1] / series.sizes[-2]
-        return f"run a finer size, {round(series.sizes[-1] * ratio)}"
-    return f"run finer sizes, {2 * series.sizes[-1]}, {4 * series.sizes[-1]}, {8 * series.sizes[-1]}"
+    ratio = series.sizes[-1] / series.sizes[-2] if len(series.sizes) > 1 else 2.0
+    lacking = max(1, MINIMUM_LEVELS - len(series.sizes))
+    sizes = [str(round(series.sizes[-1] * ratio**k)) for k in range(1, lacking + 1)]
+    return f"run {'a finer size' if lacking == 1 else 'finer sizes'}, {', '.join(sizes)}"
 
 
 def _order(series: Series, expectation: Expectation, fit: OrderFit | None, finding: Finding | None) -> Order:
@@ -224,7 +226,8 @@ def _sentence(series: Series, expectation: Expectation, fit: OrderFit | None, fi
     if formal is not None:
         parts.append(f"formal order {formal if isinstance(formal, str) else format(formal, '.3g')}")
     if expected is not None:
-        parts.append(f"expected {expected if isinstance(expected, str) else format(expected, '.3g')}")
+        whose = " (claimed by its author)" if expectation.claimed else ""
+        parts.append(f"expected {expected if isinstance(expected, str) else format(expected, '.3g')}{whose}")
     if fit is not None:
         parts.append(f"observed {fit.order:.2f} [{fit.low:.2f}, {fit.high:.2f}] over {series.above} levels")
     text = f"{series.norm}: {', '.join(parts)}" if parts else f"{series.norm}:"

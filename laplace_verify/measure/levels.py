@@ -12,7 +12,7 @@ from laplace_verify.errors import AdapterError
 from laplace_verify.measure.results import Level
 from laplace_verify.measure.series import MINIMUM_LEVELS
 
-__all__ = ["check_sizes", "default_sizes", "further_sizes"]
+__all__ = ["check_seed", "check_sizes", "default_sizes", "further_sizes"]
 
 PLANE, SPACE = (8, 16, 32, 64), (6, 9, 13, 19, 28)
 SPACE_RATIO = 1.45
@@ -47,6 +47,18 @@ def check_sizes(sizes: Sequence[int]) -> tuple[int, ...]:
     if any(fine <= coarse for coarse, fine in pairwise(given)):
         raise AdapterError(f"sizes must increase from coarse to fine, got {given!r}")
     return tuple(int(n) for n in given)
+
+
+def check_seed(seed: object) -> None:
+    """Refuse what cannot seed a generator.
+
+    Raises
+    ------
+    AdapterError
+        If `seed` is no whole number of at least 0.
+    """
+    if isinstance(seed, bool) or not isinstance(seed, int | np.integer) or not seed >= 0:
+        raise AdapterError(f"seed must be a whole number of at least 0, got {seed!r}")
 
 
 def further_sizes(levels: Sequence[Level], dim: int, rounds: int, scale: float) -> list[int]:

@@ -3,8 +3,9 @@
 With e = u_h - u: max |e|, L1 = int |e|, L2 = (int e^2)^(1/2), H1-semi = (int |grad e|^2)^(1/2), energy =
 (int grad e . K grad e)^(1/2), each absolute and divided by the same norm of u over the same points. A
 callable is integrated over the shape (integrals are those of space: with the weight 2 pi r or 4 pi r^2 in
-coordinates (r, z) or r), a nodal answer with cells element by element with those cells' own
-shape functions, a bare cloud at its own points with its weights, or equal ones. A pure Neumann answer is
+coordinates (r, z) or r), a nodal answer with cells element by element with those cells' own shape
+functions, values of cells against the exact averages over them (a step between cells is no part of a finite
+volume method), a bare cloud at its own points with its weights, or equal ones. A pure Neumann answer is
 aligned first: the weighted mean of e is taken out, and kept as the error of the level.
 """
 
@@ -25,11 +26,21 @@ if TYPE_CHECKING:
     from laplace_verify.measure.exact import Exact
     from laplace_verify.problems import Problem
     from laplace_verify.solvers import Answer
+    from laplace_verify.solvers.cells import Samples
 
-__all__ = ["Measured", "Sample", "conducted", "measure_norms", "sample_answer", "sharpened"]
+__all__ = [
+    "Measured",
+    "Sample",
+    "conducted",
+    "measure_norms",
+    "sample_answer",
+    "sharpened",
+    "weighted_norm",
+]
 
 PEAKS, PER_PEAK = 40, 25
 RADII = (0.5, 0.125)  # of h
+AVERAGE_ORDER = 5  # exact averages over cells, with an error of order 6
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -37,7 +48,8 @@ class Sample:
     """An answer at points: quadrature points with weights, and further points for the maximum only.
 
     `values` and `gradients` are the solver's; `extra` and `extra_values` serve the maximum. `left_out` is the
-    share of the quadrature weight outside the solver's mesh.
+    share of the quadrature weight outside the solver's mesh. Where the values are averages over cells,
+    `points` are the cells' centres and `weights` their volumes.
     """
 
     points: Array
@@ -47,6 +59,7 @@ class Sample:
     extra: Array
     extra_values: Array
     left_out: float = 0.0
+    averaged: Samples | None = None  # the values are averages over cells; these points make them of u
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -75,6 +88,8 @@ def sample_answer(
     if answer.kind == "callable":
         return in_space(_sample_callable(answer, problem, singular, h, generator, max_points), problem)
     if answer.kind == "cells":
+        if answer.location == "cell":
+            return in_space(_sample_averages(answer), problem)
         return in_space(clipped(_sample_cells(answer, generator), problem), problem)
     points, values = answer.points, answer.values
     if points is None or values is None:
@@ -127,7 +142,7 @@ def measure_norms(sample: Sample, exact: Exact, problem: Problem, clearance: flo
     `clearance`, relative to the shape's extent, keeps points near the boundary out of the norms; the largest
     error there is reported apart.
     """
-    u, extra_u = exact.values(sample.points), exact.values(sample.extra)
+    u, extra_u = _exact_values(sample, exact), exact.values(sample.extra)
     defined, extra_defined = np.isfinite(u), np.isfinite(extra_u)
     if not defined.any():
         raise AnswerError("no point of the answer lies where the exact solution has a value")
@@ -165,6 +180,16 @@ def measure_norms(sample: Sample, exact: Exact, problem: Problem, clearance: flo
     )  # fmt: skip
 
 
+def _exact_values(sample: Sample, exact: Exact) -> Array:
+    """Return u at the points of a sample, or its averages over the cells."""
+    if sample.averaged is None:
+        return exact.values(sample.points)
+    fine = sample.averaged
+    totals = np.bincount(fine.cells, fine.weights * exact.values(fine.points))
+    averages: Array = totals / sample.weights
+    return averages
+
+
 def _value_norms(error: Array, u: Array, weights: Array) -> tuple[dict[str, float], dict[str, float]]:
     """Return max, L1, L2 of the error, absolute and relative; the first len(weights) carry weights."""
     errors, sizes = _three_norms(error, weights), _three_norms(u, weights)
@@ -177,8 +202,16 @@ def _three_norms(f: Array, weights: Array) -> dict[str, float]:
     return {
         "max": float(np.max(np.abs(f))),
         "L1": float(weights @ weighted),
-        "L2": float(np.sqrt(weights @ weighted**2)),
+        "L2": weighted_norm(weights, weighted),
     }
+
+
+def weighted_norm(weights: Array, f: Array) -> float:
+    """Return (sum of weights f^2)^(1/2), f of shape (n,), without overflow however far a solver diverged."""
+    largest = float(np.max(np.abs(f), initial=0.0))
+    if not 0.0 < largest < np.inf:
+        return largest
+    return largest * float(np.sqrt(weights @ (f / largest) ** 2))
 
 
 def _add_gradient_norms(
@@ -200,8 +233,8 @@ def _add_gradient_norms(
     per_length = (largest or 1.0) / extent * float(np.sqrt(weights.sum()))
     unit = np.full_like(gradient, 1.0 / np.sqrt(problem.dim))
     for name, through in (("H1-semi", lambda g: g), ("energy", current)):
-        norms = [float(np.sqrt(weights @ (through(g) * g).sum(axis=1))) for g in (error, gradient)]
-        mean = float(np.sqrt(weights @ (through(unit) * unit).sum(axis=1) / weights.sum()))
+        norms = [weighted_norm(weights, _length(g, through)) for g in (error, gradient)]
+        mean = weighted_norm(weights, _length(unit, through)) / float(np.sqrt(weights.sum()))
         errors[name] = norms[0]
         relative[name] = norms[0] / (norms[1] or per_length * mean)
 
@@ -213,6 +246,14 @@ def conducted(problem: Problem, points: Array) -> Callable[[Array], Array]:
         return lambda gradients: k * gradients
     tensor = problem.tensor
     return lambda gradients: gradients @ tensor
+
+
+def _length(gradient: Array, through: Callable[[Array], Array]) -> Array:
+    """Return (g . K g)^(1/2) row by row, without overflow; `through` turns g into K g."""
+    largest = float(np.max(np.abs(gradient), initial=0.0)) or 1.0
+    scaled = gradient / largest
+    length: Array = largest * np.sqrt((through(scaled) * scaled).sum(axis=1))
+    return length
 
 
 def _sample_callable(
@@ -254,14 +295,13 @@ def _sample_cells(answer: Answer, generator: np.random.Generator) -> Sample:
     samples = answer.element_quadrature(2 * degree if solid else 2 * degree + 2)
     scattered = answer.random_points(int(generator.integers(2**31)), per_cell=1)
     extra, extra_values = [scattered.points], [scattered.values]
-    if answer.location == "point":
-        for block in mesh.blocks:
-            at = _middles(block.element.nodes[: block.element.corners])
-            extra.append(block.points(at).reshape(-1, mesh.dim))
-            extra_values.append(block.values(at, values).ravel())
-            used = np.unique(block.nodes)
-            extra.append(mesh.nodes[used])
-            extra_values.append(values[used])
+    for block in mesh.blocks:
+        at = _middles(block.element.nodes[: block.element.corners])
+        extra.append(block.points(at).reshape(-1, mesh.dim))
+        extra_values.append(block.values(at, values).ravel())
+        used = np.unique(block.nodes)
+        extra.append(mesh.nodes[used])
+        extra_values.append(values[used])
     return Sample(
         points=samples.points,
         weights=samples.weights,
@@ -270,6 +310,19 @@ def _sample_cells(answer: Answer, generator: np.random.Generator) -> Sample:
         extra=np.concatenate(extra),
         extra_values=np.concatenate(extra_values),
     )
+
+
+def _sample_averages(answer: Answer) -> Sample:
+    """Return the values of cells, to be compared with the exact averages over them."""
+    mesh, values = answer.mesh, answer.values
+    if mesh is None or values is None:
+        raise AnswerError("cells: this answer has none")
+    centres, fine = mesh.centroids(), answer.element_quadrature(AVERAGE_ORDER)
+    volumes: Array = np.bincount(fine.cells, fine.weights).astype(np.float64)
+    return Sample(
+        points=centres, weights=volumes, values=values, gradients=None,
+        extra=centres[:0], extra_values=values[:0], averaged=fine,
+    )  # fmt: skip
 
 
 def _middles(corners: Array) -> Array:

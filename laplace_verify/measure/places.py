@@ -17,7 +17,8 @@ if TYPE_CHECKING:
 
 __all__ = ["error_map", "local_errors"]
 
-MAPPED = 4000
+MAPPED = 1000  # enough to see where errors sit; a record holds a map for every study
+DIGITS = 6  # of coordinates and errors in a map, which nothing is computed from but shades and shares
 LOCATED = 20000
 WIDTHS = 2.0
 
@@ -43,12 +44,24 @@ def local_errors(
 
 
 def error_map(size: int, points: Array, signed: Array, generator: np.random.Generator) -> ErrorMap:
-    """Return at most 4000 of the points with their signed errors; the largest error is among them."""
+    """Return at most 1000 of the points with their signed errors, to six significant digits.
+
+    The largest error is among them.
+    """
     chosen = _chosen(len(points), MAPPED, generator)
     worst = int(np.argmax(np.abs(signed)))
     if worst not in chosen:
         chosen[-1] = worst
-    return ErrorMap(size=size, points=points[chosen].tolist(), errors=signed[chosen].tolist())
+    return ErrorMap(
+        size=size,
+        points=[[_short(x) for x in point] for point in points[chosen].tolist()],
+        errors=[_short(error) for error in signed[chosen].tolist()],
+    )
+
+
+def _short(value: float) -> float:
+    """Return `value` to `DIGITS` significant digits."""
+    return float(f"{value:.{DIGITS}g}")
 
 
 def _chosen(

@@ -68,7 +68,7 @@ class Order:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class ErrorMap:
-    """Signed errors u_h - u at up to 4000 points of one level: where the error sits."""
+    """Signed errors u_h - u at up to 1000 points of one level, to six digits: where the error sits."""
 
     size: int
     points: list[list[float]]

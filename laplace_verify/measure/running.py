@@ -8,7 +8,7 @@ from dataclasses import dataclass, field
 from itertools import pairwise
 from typing import TYPE_CHECKING
 
-from laplace_verify.errors import AnswerError
+from laplace_verify.errors import AnswerError, nearest_names
 from laplace_verify.measure.criteria import LEVEL
 from laplace_verify.measure.exact import Exact
 from laplace_verify.measure.functionals import ExactFluxes, measure_functionals
@@ -16,6 +16,7 @@ from laplace_verify.measure.norms import Measured, measure_norms, sample_answer,
 from laplace_verify.measure.places import error_map, local_errors
 from laplace_verify.measure.results import ErrorMap, Level
 from laplace_verify.measure.sampling import level_generator
+from laplace_verify.measure.series import TOO_COARSE
 from laplace_verify.measure.windows import through_window
 from laplace_verify.solvers.spacing import spacing
 
@@ -87,13 +88,13 @@ class Runner:
             signed=signed,
             local=local_errors(shape, measured.points, measured.signed, h, generator),
             error_map=error_map(size, measured.points, measured.signed, generator),
-            remarks=tuple(answer.remarks(self.case.problem)) + self._near(measured, size),
+            remarks=answer.remarks(self.case.problem) + self._unknown(answer) + self._near(measured, size),
         )
 
     def _spacing(self, answer: Answer, size: int) -> float:
-        """Return h; for stochastic solvers 1/samples, in which their order is 1/2."""
-        if self.solver.kind == "stochastic" and answer.samples:
-            return 1.0 / answer.samples
+        """Return h; for stochastic solvers 1/samples (n if they report none), in which their order is 1/2."""
+        if self.solver.kind == "stochastic":
+            return 1.0 / (answer.samples or size)
         return float(spacing(answer, self.case.problem, self.solver.kind, size).h)
 
     def _judged(self, h: float) -> tuple[str, bool]:
@@ -102,7 +103,7 @@ class Runner:
         by_n = self.solver.formal_order("L2") == "exponential" or self.solver.kind == "stochastic"
         if by_n or not math.isfinite(scale) or h <= scale / 2 * (1 + ROUNDING):
             return "", True
-        return f"too coarse to be judged: h = {h:.3g} exceeds half the smallest length {scale:.3g}", False
+        return f"{TOO_COARSE}: h = {h:.3g} exceeds half the smallest length {scale:.3g}", False
 
     def _functionals(
         self, answer: Answer, measured: Measured, h: float
@@ -113,6 +114,16 @@ class Runner:
         if self.case.problem.constant is not None:
             found.add(LEVEL, measured.shift, scale)
         return {norm: (found.errors[norm], found.relative[norm]) for norm in found.errors}, found.signed
+
+    def _unknown(self, answer: Answer) -> tuple[str, ...]:
+        """Return a remark on quantities that the case does not have."""
+        known = self.case.quantities
+        return tuple(
+            f"quantities: the case has no {name!r}, so it is not judged; "
+            f"{nearest_names(name, known) if known else 'it has none'}"
+            for name in answer.quantities or {}
+            if name not in known
+        )
 
     def _near(self, measured: Measured, size: int) -> tuple[str, ...]:
         """Return a remark on the points that the declared clearance keeps out of the norms."""

@@ -7,9 +7,10 @@ from dataclasses import dataclass
 
 from laplace_verify.measure.results import Level
 
-__all__ = ["MINIMUM_LEVELS", "ROUND_OFF", "Series", "series_of"]
+__all__ = ["MINIMUM_LEVELS", "ROUND_OFF", "TOO_COARSE", "Series", "differences", "series_of"]
 
 MINIMUM_LEVELS = 4  # with fewer levels the error rates of the verdict are unpublished: no PASS
+TOO_COARSE = "too coarse to be judged"  # how the note of a level above half the smallest length begins
 ROUND_OFF = 1e-12  # relative floor of a direct solution in double precision; a declared floor overrides it
 GRADIENT_FACTOR = 100.0  # differencing loses about 1/h of it
 FLOOR_MARGIN = 10.0  # below ten floors the floor bends the slope
@@ -39,6 +40,11 @@ class Series:
         return len(self.sizes) - self.above
 
 
+def differences(norm: str) -> bool:
+    """Return whether a norm is one of the gradient, in which rounding is divided by h."""
+    return norm in ("H1-semi", "energy") or norm.startswith(("flux:", "fluxdensity:"))
+
+
 def series_of(norm: str, levels: Sequence[Level], error_floor: float | None) -> Series:
     """Return the errors in `norm` of the judged levels.
 
@@ -53,7 +59,7 @@ def series_of(norm: str, levels: Sequence[Level], error_floor: float | None) -> 
         Levels below ten times the floor are at the floor.
     """
     floor = max(error_floor or 0.0, ROUND_OFF)
-    if norm in ("H1-semi", "energy") or norm.startswith(("flux:", "fluxdensity:")):
+    if differences(norm):
         floor *= GRADIENT_FACTOR if not error_floor else 1.0
     threshold = FLOOR_MARGIN * floor
     measured = [level for level in levels if norm in level.errors]

@@ -6,17 +6,16 @@ never converge) ends in a verdict; only misuse by the caller raises.
 
 from __future__ import annotations
 
-import traceback
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
-from laplace_verify.errors import AdapterError, LaplaceVerifyError, ProblemError
+from laplace_verify.errors import AdapterError, LaplaceVerifyError, ProblemError, history, told
 from laplace_verify.measure.criteria import expectations
 from laplace_verify.measure.expected import Expectation
 from laplace_verify.measure.features import features
 from laplace_verify.measure.judge import combine, judge
-from laplace_verify.measure.levels import check_sizes, default_sizes, further_sizes
+from laplace_verify.measure.levels import check_seed, check_sizes, default_sizes, further_sizes
 from laplace_verify.measure.oddities import oddities, sign_changes
 from laplace_verify.measure.results import Level, Order, Study
 from laplace_verify.measure.running import LevelResult, Runner, check_falling
@@ -63,7 +62,7 @@ def study(
     Raises
     ------
     AdapterError
-        If `solver` is no adapter or the sizes are not three or more, increasing.
+        If `solver` is no adapter, the sizes are not three or more, increasing, or the seed is negative.
     ProblemError
         If `case` is no case.
 
@@ -81,6 +80,7 @@ def study(
     ('PASS', 2.0)
     """
     _check_arguments(solver, case, max_points)
+    check_seed(seed)
     given = check_sizes(sizes) if sizes is not None else solver.sizes
     planned = given if given is not None else default_sizes(case.dim)
     run = _Run(
@@ -178,8 +178,7 @@ class _Run:
             reason = f"size {size}: the solver declined a problem that it has solved at other sizes: {cause}"
         else:
             reason = f"size {size}: {_said(cause)}"
-        text = "".join(traceback.format_exception(cause))
-        return self.result(Verdict.ERROR, [reason], self.remarks, self.orders(), crash=text)
+        return self.result(Verdict.ERROR, [reason], self.remarks, self.orders(), crash=history(cause))
 
     def result(
         self,
@@ -233,4 +232,4 @@ def _said(cause: BaseException) -> str:
     """Return what an exception says, with its type unless it is one of ours."""
     if isinstance(cause, LaplaceVerifyError):
         return str(cause)
-    return f"the solver raised {type(cause).__name__}: {cause}"
+    return f"the solver raised {told(cause)}"

@@ -38,9 +38,7 @@ def is_shape(shape: Any) -> Shape:
     return shape
 
 
-def as_conductivity(
-    conductivity: Any, dim: int, coordinates: Coordinates = "cartesian"
-) -> Conductivity:
+def as_conductivity(conductivity: Any, dim: int, coordinates: Coordinates = "cartesian") -> Conductivity:
     """Return a positive number as float, a symmetric positive definite (d, d) matrix as a frozen array.
 
     What `layers`, `inclusion` or `sectors` made is returned as it is.
@@ -55,7 +53,7 @@ def as_conductivity(
     >>> as_conductivity(2, dim=3)
     2.0
     """
-    if isinstance(conductivity, bool | str):
+    if conductivity is None or isinstance(conductivity, bool | str):
         raise ProblemError(f"conductivity must be a positive number or a matrix, got {conductivity!r}")
     if isinstance(conductivity, Mapping):
         raise ProblemError(
@@ -65,8 +63,8 @@ def as_conductivity(
     if isinstance(conductivity, Materials):
         if conductivity.partition.dim != dim:
             raise ProblemError(
-                f"the regions are {conductivity.partition.dim}-D, the shape is {dim}-D; give direction, centre "
-                f"or apex {dim} coordinates"
+                f"the regions are {conductivity.partition.dim}-D, the shape is {dim}-D; give direction, "
+                f"centre or apex {dim} coordinates"
             )
         return conductivity
     try:
@@ -118,9 +116,7 @@ def as_tensor(conductivity: Conductivity, dim: int) -> Array:
     return conductivity
 
 
-def by_piece(
-    shape: Shape, conditions: Mapping[str, Any], axis: Collection[str] = ()
-) -> dict[str, Condition]:
+def by_piece(shape: Shape, conditions: Mapping[str, Any], axis: Collection[str] = ()) -> dict[str, Condition]:
     """Return the condition of each piece that `conditions` speaks of, in the order of the shape's pieces.
 
     The name of a piece that was split stands for all its parts, if none of them is named too. Pieces of the

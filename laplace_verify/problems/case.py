@@ -276,7 +276,7 @@ def case(
     pieces, singular = _pieces(shape, complete, field, k), regularity.singular_points
     for piece in pieces:  # a field that is not defined on the boundary shows here, by the piece's name
         if piece.kind != AXIS:
-            piece.data(seen.pieces[piece.name].sample(5)[0])
+            piece.probe()
     return Case(
         id=id,
         title=title,
@@ -332,9 +332,7 @@ def _derived(
     }
 
 
-def _check_solution(
-    shape: Shape, field: Field, tensor: Array | Materials, coordinates: Coordinates
-) -> None:
+def _check_solution(shape: Shape, field: Field, tensor: Array | Materials, coordinates: Coordinates) -> None:
     """Refuse a field that is no solution of div(K grad u) = 0 in the shape."""
     check_axis(shape, field, axis_names(shape, coordinates))
     if isinstance(tensor, Materials):

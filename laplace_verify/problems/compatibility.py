@@ -33,6 +33,7 @@ __all__ = [
 Constant: TypeAlias = tuple[Literal["mean"], float] | tuple[Literal["point"], tuple[float, ...], float]
 
 BALANCE = 1e-8  # of the total |flux|
+VANISHING = 1e-14  # of the mean of |u|
 AGREEMENT = 1e-8  # of a given constant with the exact field
 
 
@@ -76,9 +77,7 @@ def as_constant(constant: Any, shape: Shape) -> Constant:
     return ("point", tuple(place[0].tolist()), value)
 
 
-def check_balance(
-    shape: Shape, pieces: Iterable[Piece], coordinates: Coordinates = "cartesian"
-) -> None:
+def check_balance(shape: Shape, pieces: Iterable[Piece], coordinates: Coordinates = "cartesian") -> None:
     """Refuse given flux data whose integral over the boundary does not vanish.
 
     Raises
@@ -108,13 +107,18 @@ def _net_flux(pieces: list[Piece], cell: float, coordinates: Coordinates) -> tup
     return net, total
 
 
-def mean(
-    shape: Shape, field: Field, singular: Array, coordinates: Coordinates = "cartesian"
-) -> float:
-    """Return the mean of a field over a shape by quadrature graded towards `singular` (m, d)."""
+def mean(shape: Shape, field: Field, singular: Array, coordinates: Coordinates = "cartesian") -> float:
+    """Return the mean of a field over a shape by quadrature graded towards `singular` (m, d).
+
+    A mean that vanishes but for rounding, relative to the mean of |u|, is 0.
+    """
     points, weights = shape.quadrature(12, singular=singular, cell=shape.size / (8 if shape.dim < 3 else 4))
     weights = weights * metric(coordinates, points)
-    return float(weights @ field.value(points) / weights.sum())
+    values = field.value(points)
+    total = float(weights @ values)
+    if abs(total) <= VANISHING * float(weights @ np.abs(values)):
+        return 0.0
+    return total / float(weights.sum())
 
 
 def default_constant(

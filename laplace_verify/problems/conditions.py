@@ -109,7 +109,8 @@ def robin(alpha: Data, g: Data | None = None) -> Condition:
     Raises
     ------
     ProblemError
-        If alpha is a negative number; a function is checked where it is evaluated.
+        If alpha is a negative number; a function is checked where it is evaluated, first when the problem is
+        posed.
 
     Examples
     --------

@@ -18,6 +18,7 @@ from laplace_verify.problems.data import PointFunction
 __all__ = ["MoveLog", "Piece", "Pieces"]
 
 FLAT_MOVE = 1e-9  # of the shape's size: round-off of a mesh file
+PROBES = 16  # even, in both directions of a face too: the middle, a favourite singular point, is left out
 CURVED_MOVE = 0.1  # of the shape's size: a coarse mesh cuts corners off a curve
 
 
@@ -157,6 +158,19 @@ class Piece:
         rules = [part.quadrature(order, singular, cell) for part in self.parts]
         points, normals, weights = (np.concatenate(column) for column in zip(*rules, strict=True))
         return points, normals, weights
+
+    def probe(self) -> None:
+        """Evaluate data and alpha at a few points, so that bad ones show when a problem is posed.
+
+        Raises
+        ------
+        ProblemError
+            As `data` and `alpha`.
+        """
+        points = self.sample(PROBES)[0]
+        self.data(points)
+        if self.kind == "robin":
+            self.alpha(points)
 
     def watched(self, log: MoveLog) -> Piece:
         """Return the same piece, with every move recorded in `log`."""

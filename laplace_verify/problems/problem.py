@@ -223,6 +223,9 @@ def problem(
         axis_piece(shape, name) if name in axis else _piece(shape, name, given[name], k)
         for name in shape.pieces.names
     )
+    for piece in pieces:
+        if piece.name not in axis:
+            piece.probe()
     if isinstance(k, Materials):
         regions_of(shape, k)  # refuses regions that do not fit
     infinity = as_at_infinity(at_infinity, shape)

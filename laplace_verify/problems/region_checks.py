@@ -83,7 +83,9 @@ def _check_point(
     coordinates: Coordinates,
 ) -> None:
     """Check one point of a region."""
-    check_at(part, point, np.full(len(point), materials.of(name)), np.eye(len(point)), size, coordinates)
+    identity = np.eye(len(point))
+    k = materials.of(name)
+    check_at(part, point, k * identity, (np.full(len(point), k), identity), size, coordinates)
     own, whole = part.value(point[None])[0], field.value(point[None])[0]
     if not abs(own - whole) <= CONTINUITY * (abs(own) + abs(whole)):
         raise ProblemError(

@@ -21,7 +21,6 @@ from __future__ import annotations
 import math
 from collections.abc import Mapping
 from dataclasses import dataclass
-from itertools import combinations
 
 import numpy as np
 from scipy.spatial.distance import cdist, pdist
@@ -162,7 +161,8 @@ def _scale(shape: Shape, field: Field, places: list[tuple[float, ...]]) -> float
     """Return the smallest length of shape and solution."""
     lower, upper = shape.bounding_box
     lengths = [*(upper - lower).tolist(), *(_extent(piece) for piece in shape.pieces if shape.dim > 1)]
-    lengths += _gaps(shape)
+    if shape.dim > 1:
+        lengths.append(_gap(shape))
     if field.singularities:
         away = shape.distance(np.array([s.point for s in field.singularities]))
         lengths += away[away > COINCIDENT * shape.size].tolist()
@@ -181,20 +181,31 @@ def _extent(piece: Boundary) -> float:
     return piece.measure if len(piece.ends) else piece.measure / math.pi
 
 
-def _gaps(shape: Shape) -> list[float]:
-    """Return distances between pieces that do not meet: necks, holes near the rim, opposite sides."""
-    if shape.dim == 1:
-        return []
+def _gap(shape: Shape) -> float:
+    """Return the least distance between pieces that do not meet: necks, holes near a rim, opposite sides.
+
+    Pairs are taken in the order of the least distance that balls around the pieces allow, so that of a
+    polygon with very many sides only neighbours are looked at.
+    """
+    pieces = tuple(shape.pieces)
+    samples = [piece.sample(SAMPLES[shape.dim])[0] for piece in pieces]
+    centres = np.array([points.mean(axis=0) for points in samples])
+    radii = np.array(
+        [cdist(points, centre[None, :]).max() for points, centre in zip(samples, centres, strict=True)]
+    )
+    first, second = np.triu_indices(len(pieces), k=1)
+    bounds = np.sqrt(((centres[first] - centres[second]) ** 2).sum(axis=1)) - radii[first] - radii[second]
     meeting = {frozenset(junction.pieces) for junction in shape.junctions}
-    samples = {piece.name: piece.sample(SAMPLES[shape.dim])[0] for piece in shape.pieces}
-    gaps = []
-    for first, second in combinations(samples, 2):
-        if frozenset((first, second)) in meeting or _touching(
-            shape.pieces[first], shape.pieces[second], shape.size
-        ):
-            continue
-        gaps.append(float(cdist(samples[first], samples[second]).min()))
-    return gaps
+    least, size = math.inf, shape.size
+    for pair in np.argsort(bounds, kind="stable").tolist():
+        if not bounds[pair] < least:
+            break
+        a, b = int(first[pair]), int(second[pair])
+        gap = float(cdist(samples[a], samples[b]).min())
+        apart = gap < least and frozenset((pieces[a].name, pieces[b].name)) not in meeting
+        if apart and not _touching(pieces[a], pieces[b], size):
+            least = gap
+    return least
 
 
 def _touching(first: Boundary, second: Boundary, size: float) -> bool:

@@ -18,10 +18,11 @@ from laplace_verify.report.content import (
     Section,
     Table,
 )
-from laplace_verify.report.figures import convergence_figure, order_figure, shown_norms
+from laplace_verify.report.figures import convergence_figure, is_exponential, order_figure, shown_norms
 from laplace_verify.report.maps import case_figure, error_figure
 from laplace_verify.report.text import (
     accepted,
+    expected_order,
     finest_error,
     interval,
     is_exact,
@@ -50,7 +51,7 @@ def case_section(record: Record, study: Study) -> Section:
     if study.orders:
         blocks += _order_table(study)
     if study.levels:
-        blocks.append(_level_table(study))
+        blocks += [_grid_table(study), _error_table(study)]
         blocks += _left_out(study)
         blocks.append(_pictures(study, info))
     title = info.title if info and info.title else study.case_title or study.case_id
@@ -65,18 +66,6 @@ def case_section(record: Record, study: Study) -> Section:
 def _question(info: CaseInfo) -> list[Block]:
     """Return statement, reading and facts of the case."""
     blocks: list[Block] = []
-    if info.dim == 2 and any(len(piece.outline) > 1 for piece in info.pieces):
-        blocks.append(
-            Picture(
-                key=f"shape-{info.id}",
-                title="The problem",
-                alt=f"The {info.shape} with its boundary pieces: "
-                + joined(f"{piece.name} ({piece.condition})" for piece in info.pieces)
-                + ".",
-                caption="Boundary pieces by name, lines by condition.",
-                draw=lambda: case_figure(info),
-            )
-        )
     blocks += [Paragraph(text=info.statement, tone="lead")] if info.statement else []
     pairs = [
         ("Reading", info.reading),
@@ -154,19 +143,17 @@ def _order_table(study: Study) -> list[Block]:
         Column(title="Tolerance", align="right"),
         Column(title="Finest error", align="right"),
         Column(title="Verdict"),
-        Column(title="Why this order is expected"),
     )
     rows = tuple(
         (
             Cell(text=norm),
             Cell(text="decides" if found.decides else "remark"),
             Cell(text=order(found.formal)),
-            Cell(text="falls, no rate" if found.expected == "decrease" else order(found.expected)),
+            Cell(text=expected_order(found)),
             Cell(text=interval(found)),
             Cell(text=number(found.tolerance, 2)),
             Cell(text=number(finest_error(study, norm))),
             Cell(text="–", verdict=found.verdict if found.decides else None),
-            Cell(text=found.basis),
         )
         for norm, found in study.orders.items()
         if norm in shown
@@ -174,53 +161,74 @@ def _order_table(study: Study) -> list[Block]:
     blocks: list[Block] = [
         Table(caption="Formal, expected and observed order by norm", columns=columns, rows=rows)
     ]
+    bases: dict[str, list[str]] = {}
+    for norm in (norm for norm in study.orders if norm in shown and study.orders[norm].basis):
+        bases.setdefault(study.orders[norm].basis, []).append(norm)
+    if bases:
+        blocks.append(Paragraph(label="Why these orders are expected.", text=""))
+        blocks.append(Items(entries=tuple(f"{joined(norms)}: {basis}" for basis, norms in bases.items())))
     if others:
         label = "Observed orders without an expected one."
         blocks.append(Paragraph(label=label, text=f"{', '.join(others)}."))
     return blocks
 
 
-def _level_table(study: Study) -> Table:
-    """Return the grid table: one row a level, error and order to the level before for every shown norm."""
-    norms = shown_norms(study)
-    columns = [
-        Column(title=title, align="right") for title in ("Level", "n", "h", "Ratio", "Unknowns", "Seconds")
-    ]
-    for norm in norms:
-        columns += [Column(title=norm, align="right"), Column(title="order", align="right")]
+def _grid_table(study: Study) -> Table:
+    """Return one row a level: size, mesh width, unknowns, time, and whether it was judged."""
+    columns = [Column(title=title, align="right") for title in ("n", "h", "Ratio", "Unknowns", "Seconds")]
     columns.append(Column(title="Judged"))
-    rows = tuple(_level_row(study, place, level, norms) for place, level in enumerate(study.levels))
-    caption = (
-        "Grid table: absolute errors and the order from the level before. "
-        "Ratio: h of the level before over h (refinement ratio)"
+    rows = tuple(
+        (
+            *_size_and_h(level),
+            Cell(text=f"{before.h / level.h:.2f}" if before and level.h > 0 else ""),
+            Cell(text=str(level.unknowns)),
+            Cell(text=seconds(level.seconds)),
+            Cell(text=_judged(study, level)),
+        )
+        for before, level in zip([None, *study.levels], study.levels, strict=False)
     )
+    caption = "Levels. Ratio: h of the level before over h (refinement ratio)"
     return Table(caption=caption, columns=tuple(columns), rows=rows)
 
 
-def _level_row(study: Study, place: int, level: Level, norms: list[str]) -> tuple[Cell, ...]:
+def _judged(study: Study, level: Level) -> str:
+    """Return whether a level entered the fits, and in which norms it did not."""
+    out = sorted(
+        norm
+        for norm in shown_norms(study)
+        if norm in study.orders and str(level.size) in study.orders[norm].left_out
+    )
+    if not level.judged:
+        return "no"
+    return f"not in {joined(out)}" if out else "yes"
+
+
+def _error_table(study: Study) -> Table:
+    """Return one row a level: error, and order to the level before, for every shown norm."""
+    norms = shown_norms(study)
+    columns = [Column(title="n", align="right"), Column(title="h", align="right")]
+    for norm in norms:
+        columns += [Column(title=norm, align="right"), Column(title="order", align="right")]
+    rows = tuple(_error_row(study, place, level, norms) for place, level in enumerate(study.levels))
+    caption = "Absolute errors, and the order from the level before"
+    return Table(caption=caption, columns=tuple(columns), rows=rows)
+
+
+def _error_row(study: Study, place: int, level: Level, norms: list[str]) -> tuple[Cell, ...]:
     """Return the cells of one level."""
-    before = study.levels[place - 1].h if place else math.nan
-    texts = [
-        str(place + 1),
-        str(level.size),
-        number(level.h, 4),
-        f"{before / level.h:.2f}" if place and level.h > 0 else "",
-        str(level.unknowns),
-        seconds(level.seconds),
-    ]
-    out = set()
+    cells = list(_size_and_h(level))
     for norm in norms:
         found = study.orders.get(norm)
         pairs = found.pairs if found else []
         pair = pairs[place - 1] if 0 < place <= len(pairs) else None
         noise = found is not None and is_exact(found)  # ratios of rounding errors
-        texts += [number(level.errors.get(norm)), "" if pair is None or noise else order(pair)]
-        if found and str(level.size) in found.left_out:
-            out.add(norm)
-    judged = (
-        "yes" if level.judged and not out else "no" if not level.judged else f"not in {joined(sorted(out))}"
-    )
-    return tuple(Cell(text=text) for text in [*texts, judged])
+        texts = number(level.errors.get(norm)), "" if pair is None or noise else order(pair)
+        cells += [Cell(text=text) for text in texts]
+    return tuple(cells)
+
+
+def _size_and_h(level: Level) -> tuple[Cell, Cell]:
+    return Cell(text=str(level.size)), Cell(text=number(level.h, 4))
 
 
 def _left_out(study: Study) -> list[Block]:
@@ -243,25 +251,27 @@ def _left_out(study: Study) -> list[Block]:
 
 
 def _pictures(study: Study, info: CaseInfo | None) -> tuple[Picture, ...]:
-    """Return convergence, observed order and error map."""
+    """Return the shape, convergence, observed order and error map."""
     words = "; ".join(
-        f"{norm}: observed {interval(found)}, expected {order(found.expected)}"
+        f"{norm}: observed {interval(found)}, expected {expected_order(found)}"
         for norm, found in study.orders.items()
         if found.decides
     )
-    pictures = [
+    abscissa = "n" if is_exponential(study) else "h"
+    pictures = [_shape_picture(info)] if info is not None and _is_drawn(info) else []
+    pictures += [
         Picture(
             key=f"errors-{study.case_id}",
             title="Convergence",
             alt=f"Errors against h, both logarithmic, {len(study.levels)} levels. {words}.",
-            caption="Errors against h.",
+            caption=f"Errors against {abscissa}; solid: decides, dashed: remark.",
             draw=lambda: convergence_figure(study),
         ),
         Picture(
             key=f"orders-{study.case_id}",
             title="Observed order",
             alt=f"Order between neighbouring levels against h. {words}.",
-            caption="Order between neighbouring levels.",
+            caption="Order between neighbouring levels against h, and the expected one.",
             draw=lambda: order_figure(study),
         ),
     ]
@@ -279,3 +289,19 @@ def _pictures(study: Study, info: CaseInfo | None) -> tuple[Picture, ...]:
             )
         )
     return tuple(pictures)
+
+
+def _is_drawn(info: CaseInfo) -> bool:
+    return info.dim == 2 and any(len(piece.outline) > 1 for piece in info.pieces)
+
+
+def _shape_picture(info: CaseInfo) -> Picture:
+    """Return the shape of a case."""
+    pieces = joined(f"{piece.name} ({piece.condition})" for piece in info.pieces)
+    return Picture(
+        key=f"shape-{info.id}",
+        title="The problem",
+        alt=f"The {info.shape} with its boundary pieces: {pieces}.",
+        caption="Boundary pieces by name, lines by condition.",
+        draw=lambda: case_figure(info),
+    )

@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 from laplace_verify.campaign.record import CaseInfo, Record
-from laplace_verify.measure.results import Order, Study
+from laplace_verify.measure.results import Study
 from laplace_verify.measure.series import MINIMUM_LEVELS
 from laplace_verify.report.case_sections import case_anchor
 from laplace_verify.report.content import Block, Cell, Column, Items, Paragraph, Section, Table
 from laplace_verify.report.text import (
     conditions_of,
+    expected_order,
     finest_error,
     interval,
     joined,
@@ -42,7 +43,7 @@ def criteria_section(record: Record) -> Section:
     for study in record.studies:
         for norm in study.deciding:
             found = study.orders[norm]
-            key = (norm, order(found.formal), _rate(found), number(found.tolerance, 2), found.basis)
+            key = (norm, order(found.formal), expected_order(found), number(found.tolerance, 2), found.basis)
             by_norm.setdefault(key, []).append(study.case_id)
     # Norms that share criterion and cases share a row.
     groups: dict[tuple[tuple[str, ...], tuple[str, ...]], list[str]] = {}
@@ -72,10 +73,6 @@ def criteria_section(record: Record) -> Section:
     else:
         blocks.append(Paragraph(text="No study has a norm that decides."))
     return Section(anchor="criteria", title="Acceptance criteria, fixed before the run", blocks=tuple(blocks))
-
-
-def _rate(found: Order) -> str:
-    return "falls, no rate" if found.expected == "decrease" else order(found.expected)
 
 
 def results_section(record: Record) -> Section:
@@ -115,7 +112,7 @@ def _row(study: Study, info: CaseInfo | None) -> tuple[Cell, ...]:
         regularity_class(info) if info else "–",
         norm or "–",
         order(found.formal) if found else "–",
-        _rate(found) if found else "–",
+        expected_order(found) if found else "–",
         interval(found) if found else "–",
         number(finest_error(study, norm)) if norm else "–",
     )

@@ -8,10 +8,21 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 from laplace_verify.measure.results import Level, Study
-from laplace_verify.report.style import INK, MARKERS, QUIET, SERIES, drawing, log_axis, new_figure
+from laplace_verify.report.style import (
+    HEIGHT,
+    INK,
+    MARKERS,
+    QUIET,
+    SERIES,
+    WIDTH,
+    drawing,
+    legend_above,
+    log_axis,
+    new_figure,
+)
 from laplace_verify.report.text import is_exact, order
 
 if TYPE_CHECKING:
@@ -20,7 +31,6 @@ if TYPE_CHECKING:
 
 __all__ = ["convergence_figure", "is_exponential", "order_figure", "shown_norms"]
 
-_WIDTH, _HEIGHT = 4.4, 3.6
 _MOST = 6  # more lines than this cannot be told apart
 
 
@@ -45,7 +55,7 @@ def convergence_figure(study: Study) -> Figure:
     did not enter the fit.
     """
     with drawing():
-        figure = new_figure(_WIDTH, _HEIGHT)
+        figure = new_figure(WIDTH, HEIGHT)
         axes = figure.add_subplot()
         exponential = is_exponential(study)
         slopes: dict[float, tuple[float, float]] = {}
@@ -74,17 +84,17 @@ def _error_line(axes: Axes, study: Study, norm: str, place: int, exponential: bo
     found = study.orders.get(norm)
     decides = found is not None and found.decides
     colour, marker = SERIES[place % len(SERIES)], MARKERS[place % len(MARKERS)]
-    label = norm if decides else f"{norm} (remark)"
     axes.plot(
         x, y, color=colour, linestyle="-" if decides else (0, (4, 2)), linewidth=1.5 if decides else 0.9,
-        marker=marker, label=label,
+        marker=marker, label=norm,
     )  # fmt: skip
     left_out = found.left_out if found else {}
     out = [k for k, (level, _) in enumerate(usable) if not level.judged or str(level.size) in left_out]
-    axes.plot(
-        [x[k] for k in out], [y[k] for k in out], linestyle="none", marker=marker, markerfacecolor="white",
-        markeredgecolor=colour,
-    )  # fmt: skip
+    if out:
+        axes.plot(
+            [x[k] for k in out], [y[k] for k in out], linestyle="none", marker=marker,
+            markerfacecolor="white", markeredgecolor=colour,
+        )  # fmt: skip
 
 
 def _first_point(study: Study, norm: str) -> tuple[float, float] | None:
@@ -130,10 +140,9 @@ def _finish_errors(axes: Axes, study: Study, exponential: bool) -> None:
         log_axis(axes, "x")
         log_axis(axes, "y")
     axes.set_ylabel("error")
-    axes.grid(True, which="major")
-    axes.minorticks_off()
+    axes.grid(True)
     if axes.get_legend_handles_labels()[0]:
-        _legend(axes)
+        legend_above(axes)
     else:
         _nothing(
             axes, "no level gave an error that can be drawn" if study.levels else "no level was measured"
@@ -147,7 +156,7 @@ def order_figure(study: Study) -> Figure:
     that the stated tolerance still accepts.
     """
     with drawing():
-        figure = new_figure(_WIDTH, _HEIGHT)
+        figure = new_figure(WIDTH, HEIGHT)
         axes = figure.add_subplot()
         drawn: list[float] = []
         for place, norm in enumerate(shown_norms(study)):
@@ -156,14 +165,13 @@ def order_figure(study: Study) -> Figure:
         if drawn:
             _frame_orders(axes, drawn + expected)
             log_axis(axes, "x")
-            _legend(axes)
+            legend_above(axes)
         else:
             exact = any(is_exact(found) for found in study.orders.values())
             _nothing(axes, "errors at round-off: no order" if exact else "fewer than two errors: no order")
         axes.set_xlabel("h  (between two levels)")
         axes.set_ylabel("observed order")
-        axes.grid(True, which="major")
-        axes.minorticks_off()
+        axes.grid(True)
         return figure
 
 
@@ -182,7 +190,7 @@ def _order_line(axes: Axes, study: Study, norm: str, place: int) -> list[float]:
     axes.plot(
         [h for h, _ in points], [p for _, p in points], color=colour, marker=marker,
         linestyle="-" if found.decides else (0, (4, 2)), linewidth=1.5 if found.decides else 0.9,
-        label=norm if found.decides else f"{norm} (remark)",
+        label=norm,
     )  # fmt: skip
     if found.decides and found.low is not None and found.high is not None and place == 0:
         axes.axhspan(found.low, found.high, color=colour, alpha=0.13, linewidth=0)
@@ -197,8 +205,10 @@ def _expected_lines(axes: Axes, study: Study) -> list[float]:
         if isinstance(found.expected, float | int):
             heights.setdefault(float(found.expected), found.tolerance)
     for expected, tolerance in heights.items():
-        axes.axhline(
-            expected, color=INK, linestyle=(0, (1, 1.5)), linewidth=1.2, label=f"expected {order(expected)}"
+        axes.axhline(expected, color=INK, linestyle=(0, (1, 1.5)), linewidth=1.2)
+        axes.annotate(
+            f"expected {order(expected)}", (1.0, expected), xycoords=("axes fraction", "data"),
+            xytext=(0, 4), textcoords="offset points", ha="right", va="bottom", fontsize=7.5,
         )  # fmt: skip
         if tolerance is not None:
             axes.axhline(expected - tolerance, color=QUIET, linestyle=(0, (5, 3)), linewidth=0.8)
@@ -212,12 +222,6 @@ def _frame_orders(axes: Axes, values: Sequence[float]) -> None:
     bottom, top = max(ranked[0], low - 1.5), min(ranked[-1], high + 1.5)
     margin = max(0.15 * (top - bottom), 0.5)
     axes.set_ylim(bottom - margin, top + margin)
-
-
-def _legend(axes: Axes) -> None:
-    """Put the legend above the axes, where no curve can be."""
-    place: dict[str, Any] = {"loc": "lower left", "bbox_to_anchor": (-0.1, 1.0), "borderaxespad": 0.1}
-    axes.legend(ncols=3, handlelength=2.0, columnspacing=1.0, **place)
 
 
 def _nothing(axes: Axes, reason: str) -> None:

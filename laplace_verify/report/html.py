@@ -6,22 +6,28 @@ ourselves and whose text matplotlib escapes, are put in as they are.
 
 from __future__ import annotations
 
+import re
 from functools import cache
 
 from jinja2 import Environment, PackageLoader, StrictUndefined
 from markupsafe import Markup
 
 from laplace_verify.report import content
-from laplace_verify.report.svg import figure_to_svg
 from laplace_verify.report.text import SYMBOLS, VERDICT_WORDS, printable
 
 __all__ = ["to_html"]
 
+_CODE = re.compile(r"(<pre>.*?</pre>)", re.DOTALL)
+_BLANK = re.compile(r"\s*\n")  # empty lines, and spaces at the end of a line
 
-def to_html(document: content.Document) -> str:
-    """Return the document as a complete HTML page."""
-    text: str = _environment().get_template("report.html.jinja").render(document=document)
-    return printable("\n".join(line.rstrip() for line in text.splitlines() if line.strip()) + "\n")
+
+def to_html(document: content.Document, figures: dict[str, str]) -> str:
+    """Return the document as a complete HTML page; `figures` maps keys of pictures to SVG of our making."""
+    safe = {key: Markup(svg) for key, svg in figures.items()}
+    text: str = _environment().get_template("report.html.jinja").render(document=document, figures=safe)
+    parts = _CODE.split(text)  # code, which keeps its blank lines, at the odd places
+    parts[::2] = [_BLANK.sub("\n", part) for part in parts[::2]]
+    return printable("".join(parts))
 
 
 @cache
@@ -36,11 +42,5 @@ def _environment() -> Environment:
     environment.filters["css"] = lambda verdict: VERDICT_WORDS[verdict].replace(" ", "-")
     environment.filters["symbol"] = lambda verdict: SYMBOLS[verdict]
     environment.filters["words"] = lambda verdict: VERDICT_WORDS[verdict]
-    environment.filters["svg"] = _svg
     environment.tests["instance_of"] = lambda entry, name: isinstance(entry, getattr(content, name))
     return environment
-
-
-def _svg(picture: content.Picture) -> Markup:
-    """Draw a picture; the result is markup of our own making."""
-    return Markup(figure_to_svg(picture.draw(), key=picture.key, title=picture.title, alt=picture.alt))

@@ -9,7 +9,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING
 
 import numpy as np
 from scipy.spatial import cKDTree
@@ -18,11 +18,14 @@ from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.campaign.record import CaseInfo, PieceInfo
 from laplace_verify.measure.results import ErrorMap
 from laplace_verify.report.style import (
+    HEIGHT,
     INK,
     QUIET,
     SERIES,
+    WIDTH,
     decade,
     drawing,
+    legend_above,
     log_axis,
     new_figure,
     round_numbers,
@@ -30,14 +33,13 @@ from laplace_verify.report.style import (
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
-    from matplotlib.colorbar import Colorbar
     from matplotlib.figure import Figure
 
 __all__ = ["case_figure", "error_figure", "inside_outline"]
 
-_WIDTH, _HEIGHT = 4.4, 3.6
-_PIXELS = 240
+_PIXELS = 150
 _DECADES = 4.0  # shades span at most this many powers of ten below the largest error
+_NAME_LETTER = 0.025  # width of a letter of a name in parts of a drawn shape
 _LINES = {
     "dirichlet": ("-", SERIES[0]),
     "neumann": ((0, (5, 2)), SERIES[1]),
@@ -52,7 +54,7 @@ def error_figure(field: ErrorMap, info: CaseInfo | None) -> Figure:
     points = np.asarray(field.points, dtype=np.float64)
     errors = np.abs(np.asarray(field.errors, dtype=np.float64))
     with drawing():
-        figure = new_figure(_WIDTH, _HEIGHT, fitted=points.ndim == 2 and points.shape[1] == 3)
+        figure = new_figure(WIDTH, HEIGHT)
         if points.ndim != 2 or not len(points):
             figure.text(0.5, 0.5, "no point was measured", ha="center", color=QUIET)
         elif points.shape[1] == 1:
@@ -77,7 +79,6 @@ def _along_line(axes: Axes, x: Array, errors: Array) -> None:
     axes.set_xlabel("x")
     axes.set_ylabel("|error|")
     axes.grid(True)
-    axes.minorticks_off()
 
 
 def _shades(errors: Array) -> tuple[float, float]:
@@ -99,7 +100,7 @@ def _logarithm(errors: Array, floor: float) -> Array:
 
 def _plane_map(figure: Figure, points: Array, errors: Array, pieces: Sequence[PieceInfo]) -> None:
     """Draw the nearest-point map of a plane case inside its outline."""
-    axes = figure.add_axes((0.13, 0.14, 0.62, 0.8))
+    axes = figure.add_axes((0.17, 0.17, 0.58, 0.78))
     outline = [np.asarray(piece.outline, dtype=np.float64) for piece in pieces if len(piece.outline) > 1]
     every = np.vstack([points, *outline]) if outline else points
     lower, upper = every.min(axis=0), every.max(axis=0)
@@ -113,7 +114,7 @@ def _plane_map(figure: Figure, points: Array, errors: Array, pieces: Sequence[Pi
     inside = inside_outline(grid, outline) if outline else distance < 4 * _spacing(points)
     image = np.where(inside, values, np.nan).reshape(counts[1], counts[0])
     extent = (lower[0], lower[0] + counts[0] * cell, lower[1], lower[1] + counts[1] * cell)
-    shown = axes.imshow(
+    axes.imshow(
         image, origin="lower", extent=extent, cmap="cividis", vmin=low, vmax=high, interpolation="nearest"
     )
     for line in outline:
@@ -124,10 +125,8 @@ def _plane_map(figure: Figure, points: Array, errors: Array, pieces: Sequence[Pi
     axes.set_ylim(lower[1] - margin, upper[1] + margin)
     axes.set_xlabel("x")
     axes.set_ylabel("y")
-    axes.locator_params(nbins=5)
-    if upper[1] - lower[1] < 0.3 * (upper[0] - lower[0]):
-        axes.locator_params(axis="y", nbins=2)
-    _label_scale(figure.colorbar(shown, cax=figure.add_axes((0.79, 0.2, 0.03, 0.68))), low, high)
+    _few_ticks(axes, upper - lower)
+    _scale(figure.add_axes((0.79, 0.2, 0.03, 0.66)), low, high)
 
 
 def _spacing(points: Array) -> float:
@@ -159,50 +158,63 @@ def _three_views(figure: Figure, points: Array, errors: Array) -> None:
     low, high = _shades(errors)
     values = _logarithm(errors, low)
     lower, upper = points.min(axis=0), points.max(axis=0)
-    cell = float((upper - lower).max()) / max(math.sqrt(len(points) / 3), 4.0)
+    cell = float((upper - lower).max()) / max(math.sqrt(len(points) / 6), 4.0)
     grid = np.clip(((points - lower) / cell).astype(int), 0, None)
-    axes_of = figure.subplots(1, 3)
-    shown = None
-    for axes, (across, up, along) in zip(axes_of, ((0, 1, "z"), (0, 2, "y"), (1, 2, "x")), strict=True):
+    for left, bottom, across, up, along in (
+        (0.17, 0.64, 0, 1, "z"), (0.66, 0.64, 0, 2, "y"), (0.17, 0.14, 1, 2, "x")
+    ):  # fmt: skip
+        axes = figure.add_axes((left, bottom, 0.3, 0.27))
         image = np.full((grid[:, up].max() + 1, grid[:, across].max() + 1), -np.inf)
         np.maximum.at(image, (grid[:, up], grid[:, across]), values)
         image[np.isneginf(image)] = np.nan
         extent = (
             lower[across], lower[across] + image.shape[1] * cell, lower[up], lower[up] + image.shape[0] * cell
         )  # fmt: skip
-        shown = axes.imshow(image, origin="lower", extent=extent, cmap="cividis", vmin=low, vmax=high)
-        axes.set_title(f"along {along}")
-        axes.set_xlabel("xyz"[across])
-        axes.set_ylabel("xyz"[up], labelpad=1)
+        axes.imshow(
+            image, origin="lower", extent=extent, cmap="cividis", vmin=low, vmax=high, interpolation="nearest"
+        )
+        axes.set_title(f"along {along}", pad=3, fontsize=8)
+        axes.set_xlabel("xyz"[across], fontsize=8)
+        axes.set_ylabel("xyz"[up], fontsize=8)
         axes.locator_params(nbins=3)
         axes.tick_params(labelsize=7)
-    if shown is not None:
-        _label_scale(
-            figure.colorbar(shown, ax=list(axes_of), location="bottom", shrink=0.9, pad=0.03), low, high
-        )
+    _scale(figure.add_axes((0.62, 0.24, 0.33, 0.035)), low, high, across=True)
 
 
-def _label_scale(bar: Colorbar, low: float, high: float) -> None:
-    """Label the scale of the shades, log10 from `low` to `high`, by the errors themselves."""
+def _scale(axes: Axes, low: float, high: float, *, across: bool = False) -> None:
+    """Draw the scale of the shades, log10 from `low` to `high`, labelled by the errors themselves."""
     from matplotlib.ticker import FixedLocator, FuncFormatter
 
-    bar.set_label("|error|")
-    bar.outline.set_visible(False)
+    shades = np.linspace(low, high, 128)
+    axes.imshow(
+        shades[None, :] if across else shades[:, None], aspect="auto", origin="lower", cmap="cividis",
+        extent=(low, high, 0.0, 1.0) if across else (0.0, 1.0, low, high),
+    )  # fmt: skip
+    axis, other = (axes.xaxis, axes.yaxis) if across else (axes.yaxis, axes.xaxis)
+    if not across:
+        axes.yaxis.tick_right()
     ticks = round_numbers(10.0**low, 10.0**high)
-    bar.locator = FixedLocator(np.log10(ticks).tolist())
-    bar.formatter = FuncFormatter(lambda value, _: decade(10.0**value))
-    bar.update_ticks()
+    step = -(-len(ticks) // 3) if across else 1  # beside one another there is room for three
+    axis.set_major_locator(FixedLocator(np.log10(ticks[::step]).tolist()))
+    axis.set_major_formatter(FuncFormatter(lambda value, _: decade(10.0**value)))
+    axes.set_title("|error|", fontsize=8, pad=4)
+    other.set_major_locator(FixedLocator([]))
+    for spine in axes.spines.values():
+        spine.set_visible(False)
 
 
 def case_figure(info: CaseInfo) -> Figure:
     """Return the shape of a case: its pieces by name, lines by condition, singular points marked."""
     with drawing():
-        figure = new_figure(3.3, _height(info))
-        solid = info.dim == 3
-        axes = figure.add_subplot(projection="3d") if solid else figure.add_subplot()
+        figure = new_figure(WIDTH, HEIGHT)
+        axes = figure.add_subplot(projection="3d" if info.dim == 3 else None)
+        rows = [row for piece in info.pieces for row in piece.outline]
+        sides = np.ptp(np.asarray(rows, dtype=np.float64), axis=0) if rows else np.ones(info.dim)
+        extent = float(sides.max())
         seen: set[str] = set()
         for piece in info.pieces:
-            _draw_piece(axes, piece, info.dim, label="" if piece.condition in seen else piece.condition)
+            label = "" if piece.condition in seen else piece.condition
+            _draw_piece(axes, piece, info.dim, label=label, extent=extent)
             seen.add(piece.condition)
         if info.regularity is not None and info.dim < 3:
             _draw_points(axes, info)
@@ -215,26 +227,21 @@ def case_figure(info: CaseInfo) -> Figure:
             axes.set_ylabel("y")
             axes.set_aspect("equal")
             axes.margins(0.12)
-            if figure.get_figheight() < 2.0:
-                axes.locator_params(axis="y", nbins=2)
-        if axes.get_legend_handles_labels()[0]:
-            place: dict[str, Any] = {"loc": "lower left", "bbox_to_anchor": (-0.15, 1.0)}
-            columns = 3 if len(axes.get_legend_handles_labels()[0]) <= 3 else 2
-            axes.legend(ncols=columns, handlelength=2.2, columnspacing=0.9, fontsize=7, **place)
+            if info.dim == 2:
+                _few_ticks(axes, sides)
+        legend_above(axes)
         return figure
 
 
-def _height(info: CaseInfo) -> float:
-    """Return the height in inches that suits a plane shape drawn 2.6 inches wide."""
-    rows = [row for piece in info.pieces for row in piece.outline]
-    if info.dim != 2 or not rows:
-        return 3.0 if info.dim > 1 else 1.6
-    width, height = np.ptp(np.asarray(rows, dtype=np.float64), axis=0)
-    return float(np.clip(1.05 + 2.6 * height / max(width, 1e-300), 1.7, 3.4))
+def _few_ticks(axes: Axes, extent: Array) -> None:
+    """Take as many ticks as a shape of this width and height has room for."""
+    width, height = extent.tolist()
+    axes.locator_params(axis="x", nbins=2 if width < 0.3 * height else 5)
+    axes.locator_params(axis="y", nbins=2 if height < 0.3 * width else 5)
 
 
-def _draw_piece(axes: Axes, piece: PieceInfo, dim: int, label: str) -> None:
-    """Draw one piece and its name."""
+def _draw_piece(axes: Axes, piece: PieceInfo, dim: int, *, label: str, extent: float) -> None:
+    """Draw one piece of a shape of this extent, and its name where the piece is long enough for it."""
     line = np.asarray(piece.outline, dtype=np.float64)
     if not line.size:
         return
@@ -244,6 +251,9 @@ def _draw_piece(axes: Axes, piece: PieceInfo, dim: int, label: str) -> None:
         axes.annotate(piece.name, (line[0, 0], 0.0), xytext=(0, 9), textcoords="offset points", ha="center")
     elif dim == 2:
         axes.plot(line[:, 0], line[:, 1], color=colour, linestyle=style, linewidth=2.0, label=label or None)
+        length = float(np.linalg.norm(np.diff(line, axis=0), axis=1).sum())
+        if len(piece.name) * _NAME_LETTER * extent > length:
+            return
         middle = line[len(line) // 2] if len(line) > 2 else line.mean(axis=0)
         axes.annotate(
             piece.name, (middle[0], middle[1]), ha="center", va="center", fontsize=8,

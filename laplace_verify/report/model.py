@@ -111,11 +111,14 @@ def _summary_of_laws(record: Record) -> str:
     """Return one sentence on the laws, with a space before it; nothing if none was checked."""
     if not record.checks:
         return ""
-    kept = sum(check.verdict is Verdict.PASS for check in record.checks)
-    broken = sum(check.verdict in (Verdict.FAIL, Verdict.ERROR) for check in record.checks)
+    counts = Counter(check.verdict for check in record.checks)
+    kept = counts[Verdict.PASS]
     laws = f"{count_of(len(record.checks), 'law')} of harmonic functions"
-    text = f" {kept} of {laws} {'is' if kept == 1 else 'are'} kept"
-    return f"{text}, {broken} {'is' if broken == 1 else 'are'} broken." if broken else f"{text}."
+    parts = [f"{kept} of {laws} {'is' if kept == 1 else 'are'} kept"]
+    for verdict, words in ((Verdict.FAIL, "broken"), (Verdict.ERROR, "not checked because the solver broke")):
+        if counts[verdict]:
+            parts.append(f"{counts[verdict]} {'is' if counts[verdict] == 1 else 'are'} {words}")
+    return f" {', '.join(parts)}."
 
 
 def _verdict_section(record: Record, suspects: list[Suspect]) -> Section:
@@ -139,7 +142,7 @@ def _verdict_section(record: Record, suspects: list[Suspect]) -> Section:
     )
     blocks: list[Block] = [Table(caption="Verdicts and what they mean", columns=columns, rows=rows)]
     if suspects:
-        blocks.append(Paragraph(label="Where to look first.", text=f"{suspects[0].text}."))
+        blocks.append(Paragraph(label="Where to look first.", text=f"{_capital(suspects[0].text)}."))
     troubled = [study for study in record.studies if _needs_attention(study)]
     if troubled:
         blocks.append(Paragraph(text="Cases that need attention:"))
@@ -157,6 +160,10 @@ def _verdict_section(record: Record, suspects: list[Suspect]) -> Section:
             )
         )
     return Section(anchor="verdict", title="Verdict", blocks=tuple(blocks))
+
+
+def _capital(text: str) -> str:
+    return text[:1].upper() + text[1:]
 
 
 def _needs_attention(study: Study) -> bool:

@@ -7,10 +7,10 @@ from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from laplace_verify.campaign.files import write_atomically
 from laplace_verify.campaign.identity import case_info
 from laplace_verify.campaign.record import CaseInfo, Record
 from laplace_verify.errors import RecordError
+from laplace_verify.files import write_atomically
 from laplace_verify.measure.results import Study
 from laplace_verify.problems import Case
 from laplace_verify.report.figures import convergence_figure

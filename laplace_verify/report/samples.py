@@ -3,11 +3,11 @@
 from __future__ import annotations
 
 import os
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from pathlib import Path
 
 from laplace_verify.campaign import verify
-from laplace_verify.campaign.files import write_atomically
+from laplace_verify.files import write_atomically
 from laplace_verify.report.writer import write_report
 from laplace_verify.solvers.samples import FAULTS, five_point
 
@@ -23,9 +23,9 @@ CASES = (
     "plate-hot-side",
     "l-shape-corner",
 )
-FAULT = "first-order flux"
-FORMATS = ("html", "md", "csv", "json")
-INDEX = """\
+_FAULT = "first-order flux"
+_FORMATS = ("html", "md", "csv", "json")
+_INDEX = """\
 # Sample reports
 
 Written by `laplace-verify regenerate reports`; they differ from run to run in times, dates and host only.
@@ -41,7 +41,9 @@ Open the HTML files in a browser; they are complete in themselves.
 """
 
 
-def regenerate_reports(folder: Path, note: Callable[[str], object] | None = None) -> list[Path]:
+def regenerate_reports(
+    folder: Path, note: Callable[[str], object] | None = None, *, cases: Sequence[str] = CASES
+) -> list[Path]:
     """Write the sample reports and their index into a folder; return the files.
 
     Parameters
@@ -50,6 +52,8 @@ def regenerate_reports(folder: Path, note: Callable[[str], object] | None = None
         Is made if it does not exist.
     note
         Called with a line of text as the work goes on.
+    cases
+        Ids of the cases; the index describes what the default shows.
 
     Raises
     ------
@@ -57,18 +61,18 @@ def regenerate_reports(folder: Path, note: Callable[[str], object] | None = None
         If the folder cannot be written.
     """
     say = note or (lambda _: None)
-    fault = FAULTS[FAULT]
+    fault = FAULTS[_FAULT]
     written: list[Path] = []
     for name, solver in (("five-point", five_point), ("five-point-first-order-flux", fault.adapter)):
-        say(f"{solver.name}: {len(CASES)} cases")
-        command = f"laplace-verify run laplace_verify.solvers.samples:five_point --cases {' '.join(CASES)}"
+        say(f"{solver.name}: {len(cases)} cases")
+        command = f"laplace-verify run laplace_verify.solvers.samples:five_point --cases {' '.join(cases)}"
         record = verify(
             solver,
-            CASES,
+            cases,
             workers=os.cpu_count() or 1,
             command=command if solver is five_point else "laplace-verify regenerate reports",
         )
-        written += write_report(record, folder / name, formats=FORMATS).values()
+        written += write_report(record, folder / name, formats=_FORMATS).values()
     index = folder / "README.md"
-    write_atomically(index, INDEX.format(fault=fault.description).encode())
+    write_atomically(index, _INDEX.format(fault=fault.description).encode())
     return [*written, index]

@@ -9,6 +9,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator
 from contextlib import contextmanager
+from contextvars import ContextVar
 from typing import TYPE_CHECKING, Any
 
 from laplace_verify.measure.verdict import Verdict
@@ -19,19 +20,27 @@ if TYPE_CHECKING:
     from matplotlib.figure import Figure
 
 __all__ = [
+    "HEIGHT",
     "INK",
     "MARKERS",
     "QUIET",
     "SERIES",
+    "TICK_LABELS",
     "VERDICT_COLOURS",
+    "WIDTH",
     "decade",
     "drawing",
+    "legend_above",
     "log_axis",
     "new_figure",
+    "round_numbers",
 ]
 
+WIDTH, HEIGHT = 3.4, 2.7  # inches; two stand beside one another on a printed page
+TICK_LABELS = 8.0  # points
+_LEGEND_COLUMNS = 4
 INK = "#1d2b33"
-QUIET = "#7b878d"
+QUIET = "#66737a"
 SERIES = ("#14506b", "#d1671b", "#5b9279", "#8c3b63", "#b59a22", "#4a4e9e", "#6f7c80")
 MARKERS = ("o", "s", "^", "D", "v", "P", "X")
 VERDICT_COLOURS = {
@@ -66,42 +75,68 @@ _SETTINGS: dict[str, Any] = {
     "text.color": INK,
     "xtick.color": QUIET,
     "xtick.labelcolor": INK,
-    "xtick.labelsize": 8.0,
+    "xtick.labelsize": TICK_LABELS,
     "ytick.color": QUIET,
     "ytick.labelcolor": INK,
-    "ytick.labelsize": 8.0,
+    "ytick.labelsize": TICK_LABELS,
 }
+
+
+_inside: ContextVar[bool] = ContextVar("_inside", default=False)
 
 
 @contextmanager
 def drawing() -> Iterator[None]:
-    """Draw or save with our settings on matplotlib's own defaults, whatever the user has set."""
+    """Draw or save with our settings on matplotlib's own defaults, whatever the user has set.
+
+    Inside another such block nothing is done: changing the settings takes a millisecond.
+    """
+    if _inside.get():
+        yield
+        return
     import matplotlib
 
     defaults: dict[str, Any] = {
         key: value for key, value in matplotlib.rcParamsDefault.items() if not key.startswith("backend")
     }
     settings: Any = defaults | _SETTINGS  # the keys are known to matplotlib only
-    with matplotlib.rc_context(settings):
-        yield
+    token = _inside.set(True)
+    try:
+        with matplotlib.rc_context(settings):
+            yield
+    finally:
+        _inside.reset(token)
 
 
-def new_figure(width: float, height: float, *, fitted: bool = False) -> Figure:
+def new_figure(width: float, height: float, *, left: float = 0.62, top: float = 0.5) -> Figure:
     """Return an empty figure of this size in inches that draws itself with Agg.
 
-    The margins are fixed, with room for two lines of legend above; `fitted` has them computed, which takes
-    as long again as drawing.
+    The margins are fixed, with room for two lines of legend above: computing them takes as long as drawing.
     """
     from matplotlib.backends.backend_agg import FigureCanvasAgg
     from matplotlib.figure import Figure
 
-    figure = Figure(figsize=(width, height), layout="constrained" if fitted else None)
-    if not fitted:
-        figure.subplots_adjust(
-            left=0.62 / width, right=1 - 0.1 / width, bottom=0.5 / height, top=1 - 0.5 / height
-        )
+    figure = Figure(figsize=(width, height))
+    figure.subplots_adjust(
+        left=left / width, right=1 - 0.1 / width, bottom=0.5 / height, top=1 - top / height
+    )
     FigureCanvasAgg(figure)
     return figure
+
+
+def legend_above(axes: Axes) -> None:
+    """Put the legend above the axes, where no curve can be, row by row (matplotlib fills columns)."""
+    handles, labels = axes.get_legend_handles_labels()
+    figure = axes.get_figure(root=True)
+    if not labels or figure is None:
+        return
+    columns = min(len(labels), _LEGEND_COLUMNS)
+    order = [k for column in range(columns) for k in range(column, len(labels), columns)]
+    axes.legend(
+        [handles[k] for k in order], [labels[k] for k in order], loc="upper left",
+        bbox_to_anchor=(0.02, 1.0), bbox_transform=figure.transFigure, borderaxespad=0.2,
+        ncols=columns, handlelength=1.9, columnspacing=0.9, handletextpad=0.5,
+    )  # fmt: skip
 
 
 def log_axis(axes: Axes, which: str) -> None:

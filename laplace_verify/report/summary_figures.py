@@ -18,6 +18,7 @@ if TYPE_CHECKING:
 __all__ = ["summary_figure"]
 
 _MARKS = {Verdict.PASS: "o", Verdict.FAIL: "X", Verdict.INCONCLUSIVE: "D", Verdict.ERROR: "s"}
+_WIDTH = 4.8  # inches
 _REACH = 2.5  # orders; what lies beyond is drawn at the edge
 
 
@@ -29,14 +30,17 @@ def summary_figure(record: Record) -> Figure:
     """
     studies = [s for s in record.studies if s.verdict not in (Verdict.NOT_APPLICABLE, Verdict.NOT_RUN)]
     with drawing():
-        figure = new_figure(6.4, 0.9 + 0.19 * max(len(studies), 3), fitted=True)
+        names = [_cut(study.case_id) for study in studies]
+        left = 0.25 + 0.062 * max(map(len, names), default=0)  # of an inch, a letter
+        figure = new_figure(_WIDTH, 0.9 + 0.17 * max(len(studies), 3), left=left, top=0.35)
         axes = figure.add_subplot()
         seen: set[Verdict] = set()
         for row, study in enumerate(studies):
             if _mark(axes, row, study, label="" if study.verdict in seen else VERDICT_WORDS[study.verdict]):
                 seen.add(study.verdict)
         axes.axvline(0.0, color=INK, linewidth=0.9)
-        axes.set_yticks(range(len(studies)), [_cut(study.case_id) for study in studies], fontsize=7)
+        axes.set_yticks(range(len(studies)), names)
+        axes.tick_params(axis="y", labelsize=7.5)
         axes.set_ylim(len(studies) - 0.4, -0.6)
         axes.set_xlim(-_REACH - 0.1, _REACH + 0.1)
         axes.set_xlabel("observed less expected order")
@@ -44,7 +48,9 @@ def summary_figure(record: Record) -> Figure:
         if not studies:
             axes.text(0.5, 0.5, "no case ran", transform=axes.transAxes, ha="center", color=QUIET)
         elif axes.get_legend_handles_labels()[0]:
-            figure.legend(loc="outside upper right", ncols=4, handlelength=1.2)
+            axes.legend(
+                loc="lower right", bbox_to_anchor=(1.0, 1.0), ncols=4, handlelength=1.2, columnspacing=1.0
+            )
         return figure
 
 
@@ -67,7 +73,7 @@ def _mark(axes: Axes, row: int, study: Study, label: str) -> bool:
         [x], [row], linestyle="none", marker=_MARKS.get(study.verdict, "o"), color=colour, label=label or None
     )  # fmt: skip
     if norm:
-        axes.annotate(norm, (_REACH, row), ha="right", va="center", fontsize=6.5, color=QUIET)
+        axes.annotate(norm, (_REACH, row), ha="right", va="center", fontsize=7, color=QUIET)
     return True
 
 

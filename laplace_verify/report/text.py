@@ -21,6 +21,7 @@ __all__ = [
     "accepted",
     "conditions_of",
     "count_of",
+    "expected_order",
     "finest_error",
     "interval",
     "is_exact",
@@ -144,6 +145,11 @@ def order(value: float | str | None) -> str:
     if isinstance(value, float | int) and math.isfinite(value):
         return f"{value:.2f}"
     return number(value)
+
+
+def expected_order(found: Order) -> str:
+    """Return the expected order of a norm; one that only has to fall has no rate."""
+    return "falls, no rate" if found.expected == "decrease" else order(found.expected)
 
 
 def seconds(value: float | None) -> str:

@@ -2,22 +2,19 @@
 
 from __future__ import annotations
 
-import io
 import os
-import re
 from collections.abc import Callable, Sequence
 from pathlib import Path
 
-from laplace_verify.campaign.files import write_atomically
-from laplace_verify.campaign.record import Record, record_to_json
+from laplace_verify.campaign.record import Record, check_record, record_to_json
 from laplace_verify.errors import RecordError, nearest_names
-from laplace_verify.report.content import Document, Picture, Section
+from laplace_verify.files import write_atomically
+from laplace_verify.report.drawn import Drawn, draw_pictures
 from laplace_verify.report.html import to_html
 from laplace_verify.report.junit import to_junit
-from laplace_verify.report.latex import to_latex
+from laplace_verify.report.latex import FIGURES, to_latex
 from laplace_verify.report.markdown import to_markdown
 from laplace_verify.report.model import build_document
-from laplace_verify.report.style import drawing
 from laplace_verify.report.table_csv import to_csv
 
 __all__ = ["FORMATS", "check_folder", "write_report"]
@@ -46,14 +43,15 @@ def write_report(
         Made if it does not exist. Files of the same name are replaced.
     formats : sequence of str
         Of "html" (report.html, one self-contained file), "md" (report.md, without figures), "tex"
-        (report.tex with its figures in ``figures/``), "csv" (errors.csv, one row a level and norm), "json"
-        (record.json, the record itself) and "junit" (junit.xml).
+        (report.tex, its figures the pages of figures.pdf), "csv" (errors.csv, one row a level and
+        norm), "json" (record.json, the record itself) and "junit" (junit.xml).
 
     Raises
     ------
     RecordError
-        If a format is unknown or the folder cannot be written.
+        If `record` is none, a format is unknown or the folder cannot be written.
     """
+    check_record(record)
     wanted = [formats] if isinstance(formats, str) else list(dict.fromkeys(formats))
     for name in wanted:
         if name not in _NAMES:
@@ -61,6 +59,7 @@ def write_report(
     place = Path(folder)
     check_folder(place)
     document = build_document(record) if {"html", "md", "tex"} & set(wanted) else None
+    drawn = draw_pictures(document, svg="html" in wanted, pdf="tex" in wanted) if document else Drawn()
     makers: dict[str, Callable[[], bytes]] = {
         "csv": lambda: to_csv(record).encode(),
         "json": lambda: record_to_json(record),
@@ -68,14 +67,16 @@ def write_report(
     }
     if document is not None:
         makers |= {
-            "html": lambda: to_html(document).encode(),
+            "html": lambda: to_html(document, drawn.svg).encode(),
             "md": lambda: to_markdown(document).encode(),
-            "tex": lambda: to_latex(document, _write_pictures(document, place)).encode(),
+            "tex": lambda: to_latex(document, drawn.pages).encode(),
         }
     paths = {}
     for name in wanted:
         paths[name] = place / _NAMES[name]
         write_atomically(paths[name], makers[name]())
+    if drawn.pdf:
+        write_atomically(place / FIGURES, drawn.pdf)
     return paths
 
 
@@ -95,31 +96,3 @@ def check_folder(folder: Path) -> None:
         ) from cause
     if not os.access(folder, os.W_OK | os.X_OK):
         raise RecordError(f"cannot write into the report folder {folder}: choose one you may write to")
-
-
-def _write_pictures(document: Document, folder: Path) -> dict[str, str]:
-    """Write every figure as PDF; return key -> path relative to the folder."""
-    paths = {}
-    for picture in _pictures_of(document.sections):
-        name = re.sub(r"[^A-Za-z0-9-]", "-", picture.key)
-        buffer = io.BytesIO()
-        with drawing():
-            picture.draw().savefig(
-                buffer, format="pdf", metadata={"CreationDate": None, "Creator": None, "Producer": None}
-            )
-        paths[picture.key] = f"figures/{name}.pdf"
-        write_atomically(folder / "figures" / f"{name}.pdf", buffer.getvalue())
-    return paths
-
-
-def _pictures_of(sections: Sequence[Section]) -> list[Picture]:
-    """Return all pictures in reading order."""
-    found: list[Picture] = []
-    for section in sections:
-        for block in section.blocks:
-            if isinstance(block, Picture):
-                found.append(block)
-            elif isinstance(block, tuple):
-                found += block
-        found += _pictures_of(section.sections)
-    return found

@@ -14,14 +14,13 @@ import inspect
 import sys
 from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass, replace
-from functools import partial
 from pathlib import Path
 from typing import TYPE_CHECKING, Any, Required, TypedDict, Unpack, overload
 
 import numpy as np
 
 from laplace_verify.arrays import Array
-from laplace_verify.errors import AdapterError, AnswerError, LaplaceVerifyError, nearest_names
+from laplace_verify.errors import AdapterError, AnswerError, LaplaceVerifyError
 from laplace_verify.solvers._imports import module_from_file
 from laplace_verify.solvers.answer import Answer
 from laplace_verify.solvers.declarations import (
@@ -78,10 +77,9 @@ class Adapter:
     clearance: float
     formulation: str | None
     sizes: tuple[int, ...] | None
-    variants: Mapping[str, Mapping[str, Any]]
     claims: tuple[str, ...]
     known: Mapping[str, str]
-    expected: Mapping[str, FormalOrder]
+    expected: Mapping[str, tuple[float | Exponential, str]]
 
     def __call__(self, *arguments: Any, **keywords: Any) -> Any:
         """Call the solve function as it was written."""
@@ -159,13 +157,6 @@ class Adapter:
         except AnswerError as cause:
             raise AnswerError(f"{self.name} on {problem.name}, n = {size}: {cause}") from cause
 
-    def variant(self, name: str) -> Adapter:
-        """Return the adapter that calls the function with the keywords of the variant `name`."""
-        if name not in self.variants:
-            raise AdapterError(f"{self.name} has no variant {name!r}; {nearest_names(name, self.variants)}")
-        bound = partial(self.function, **self.variants[name])
-        return replace(self, function=bound, name=f"{self.name} ({name})", variants={})
-
     def describe(self) -> dict[str, Any]:
         """Return the declaration as plain data that JSON can hold, without the function."""
         result: dict[str, Any] = {}
@@ -194,10 +185,9 @@ class Declaration(TypedDict, total=False):
     clearance: float
     formulation: str | None
     sizes: Sequence[int] | None
-    variants: Mapping[str, Mapping[str, Any]] | None
     claims: Iterable[str]
     known: Mapping[str, str] | None
-    expected: Mapping[str, FormalOrder] | None
+    expected: Mapping[str, tuple[float | Exponential, str]] | None
 
 
 @overload
@@ -230,10 +220,11 @@ def adapt(
     clearance : points nearer to the boundary than this (relative to the shape's size) do not decide
     formulation : "direct" or "indirect", for boundary elements
     sizes : resolution numbers it should be studied at, increasing, three or more
-    variants : keywords for the solve function by name of the variant
     claims : statements about the solver to be shown in its report
     known : case id and the reason why a failure there is known
-    expected : case id and the order to expect there instead
+    expected : norm -> (order, reason): the order to expect in that norm on every case instead of theory's, as
+        in ``{"L2": (2, "mesh graded to the corners")}``; the norm then decides, and the report says whose
+        claim it is
 
     Raises
     ------

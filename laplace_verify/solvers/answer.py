@@ -44,8 +44,8 @@ class Answer:
     values : (n,) u at the points; with `location="cell"` cell averages or values at cell centres
     cells : meshio's cell names and node numbers, such as {"triangle6": (m, 6)}; counted from 0
     weights : (n,) positive weights that turn a sum over the points into an integral (cell volumes)
-    location : "point" or "cell"; with `cells` and "cell" the answer is constant on each cell, one value per
-        cell
+    location : "point" or "cell"; with `cells` and "cell" there is one value per cell, its average, which is
+        judged against the exact average
     evaluate : function of points (n, d) that returns u, shape (n,); NaN means "outside my mesh"
     gradient : function of points (n, d) that returns grad u, shape (n, d)
     h : mesh size; the observed order is taken in it. h_min, h_max : extremes of the mesh

@@ -61,10 +61,11 @@ FORMULATIONS: Final = ("direct", "indirect")
 NORMS: Final = ("max", "L1", "L2", "H1-semi", "energy")
 PREFIXES: Final = ("trace", "flux", "fluxdensity", "quantity", "probe")
 
+OFFERED: Final = ("wanted", "seed")  # keywords that a study passes to every solver that has them
 KEYWORDS: Final = (
     "name", "kind", "order", "dims", "shapes", "conditions", "conductivity", "coordinates", "unbounded",
     "error_floor", "reproduces_degree", "discrete_laws", "fixes_constant", "clearance", "formulation",
-    "sizes", "variants", "claims", "known", "expected",
+    "sizes", "claims", "known", "expected",
 )  # fmt: skip
 
 _VALUE_NORMS = ("max", "L1", "L2")
@@ -107,13 +108,13 @@ def one_of(argument: str, given: object, known: Collection[str]) -> str:
     return given
 
 
-def check_norm(norm: object) -> str:
+def check_norm(norm: object, argument: str = "order") -> str:
     """Return a norm's name after checking it: "max", ..., "flux:top", or "flux" for all pieces."""
     if isinstance(norm, str):
         head, colon, tail = norm.partition(":")
         if norm in NORMS or (head in PREFIXES and (not colon or tail)):
             return norm
-    raise AdapterError(f"order: {norm!r} is no norm; {nearest_names(str(norm), (*NORMS, *PREFIXES))}")
+    raise AdapterError(f"{argument}: {norm!r} is no norm; {nearest_names(str(norm), (*NORMS, *PREFIXES))}")
 
 
 def check_order(given: object) -> FormalOrder:
@@ -162,11 +163,12 @@ def order_in(norm: str, kind: str, order: FormalOrder) -> float | Exponential | 
 
 
 def check_function(function: object) -> None:
-    """Refuse what cannot be called as ``solve(problem, n)``."""
+    """Refuse what cannot be called as ``solve(problem, n)``, with `wanted` and `seed` if it asks for them."""
     if not callable(function):
         raise AdapterError(f"solve must be a function of (problem, n), got {type(function).__name__}")
     try:
-        inspect.signature(function).bind(None, 8)
+        signature = inspect.signature(function)
+        signature.bind(None, 8, **{name: None for name in OFFERED if name in signature.parameters})
     except ValueError:  # compiled functions may have no signature: the first call will tell
         return
     except TypeError as cause:
@@ -204,11 +206,12 @@ def check_declaration(given: Mapping[str, Any]) -> dict[str, Any]:
         "clearance": _number("clearance", get("clearance"), positive=False) or 0.0,
         "formulation": _formulation(get("formulation"), kind),
         "sizes": _sizes(get("sizes")),
-        "variants": _variants(get("variants")),
         "claims": tuple(_texts("claims", get("claims", ()))),
-        "known": {case: _reason(case, why) for case, why in _mapping("known", get("known")).items()},
+        "known": {
+            case: _reason(f"known[{case!r}]", why) for case, why in _mapping("known", get("known")).items()
+        },
         "expected": {
-            case: check_order(order) for case, order in _mapping("expected", get("expected")).items()
+            norm: _claim(norm, claim) for norm, claim in _mapping("expected", get("expected")).items()
         },
     }
 
@@ -279,14 +282,6 @@ def _formulation(given: object, kind: str) -> str | None:
     return one_of("formulation", given, FORMULATIONS)
 
 
-def _variants(given: object) -> dict[str, dict[str, Any]]:
-    """Check the keywords of each variant."""
-    result = {}
-    for name, keywords in _mapping("variants", given).items():
-        result[name] = _mapping(f"variants[{name!r}]", keywords)
-    return result
-
-
 def _mapping(argument: str, given: object) -> dict[str, Any]:
     """Check a dict with names as keys."""
     if given is None:
@@ -296,11 +291,23 @@ def _mapping(argument: str, given: object) -> dict[str, Any]:
     return dict(given)
 
 
-def _reason(case: str, given: object) -> str:
-    """Check the reason of a known deviation."""
+def _reason(argument: str, given: object) -> str:
+    """Check a reason."""
     if not isinstance(given, str) or not given.strip():
-        raise AdapterError(f"known[{case!r}] must be the reason in words, got {given!r}")
+        raise AdapterError(f"{argument} must be the reason in words, got {given!r}")
     return given
+
+
+def _claim(norm: str, given: object) -> tuple[float | Exponential, str]:
+    """Check the order expected in a norm in place of theory's, and the reason for it."""
+    check_norm(norm, "expected")
+    if not isinstance(given, tuple | list) or len(given) != 2:
+        raise AdapterError(
+            f"expected[{norm!r}] must be an order and the reason for it, such as "
+            f'(2, "mesh graded to the corner"), got {given!r}'
+        )
+    order, reason = given
+    return _check_rate(f"expected[{norm!r}]", order), _reason(f"expected[{norm!r}]", reason)
 
 
 def _text(argument: str, given: object) -> str | None:

@@ -6,6 +6,7 @@ import os
 
 import pytest
 
+import laplace_verify as lv
 from laplace_verify.campaign.record import (
     FORMAT_VERSION,
     CaseInfo,
@@ -147,3 +148,9 @@ def test_what_is_no_plain_data_is_refused(record):
     record.solver.capabilities["shapes"] = object()
     with pytest.raises(RecordError, match="not plain data"):
         record_to_json(record)
+
+
+@pytest.mark.parametrize("use", [lv.diagnose, lambda what: lv.write_report(what, "nowhere")])
+def test_what_is_no_record_is_refused_by_name(use):
+    with pytest.raises(lv.RecordError, match="a Record is needed, as `verify` returns it, got int"):
+        use(3)

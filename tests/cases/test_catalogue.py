@@ -172,3 +172,22 @@ def test_ids_are_unique_within_and_across_families():
         family(_warm_plate)
     with pytest.raises(lv.ProblemError, match="two cases are called 'warm-plate'"):
         joined(family, other)
+
+
+@pytest.mark.parametrize(
+    ("wanted", "message"),
+    [
+        ({"shape": "rectangel"}, "there is no shape 'rectangel'; did you mean 'rectangle'"),
+        ({"conditions": {"dirichelt"}}, "there is no condition 'dirichelt'; did you mean 'dirichlet'"),
+        ({"tags": {"smoth"}}, "there is no tag 'smoth'; did you mean 'smooth'"),
+        ({"dim": "2"}, "dim must be 1, 2 or 3, got '2'"),
+    ],
+)
+def test_a_slip_of_the_pen_does_not_select_nothing(wanted, message):
+    with pytest.raises(lv.ProblemError, match=message):
+        lv.catalogue.select(**wanted)
+
+
+def test_a_folder_must_be_a_path():
+    with pytest.raises(lv.RecordError, match="named by a path, got 3"):
+        lv.catalogue.with_folder(3)

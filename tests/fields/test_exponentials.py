@@ -66,6 +66,16 @@ def test_conjugate_of_an_even_profile_without_level():
     assert v.value([[0.3, 0.4]])[0] == pytest.approx(-math.sinh(0.8) * math.sin(0.6), rel=8 * EPS)
 
 
+def test_formulas_cannot_be_misread():
+    low = fields.exp_trig(3, "sin", "cosh", level=-2, times_pi=True)
+    assert low.formula == "cosh(3 pi y)/cosh(3 pi (-2)) sin(3 pi x)"  # not 3 pi - 2
+    assert fields.exp_trig(2, profile="sinh", level=1).formula == "sinh(2 y)/sinh(2) cos(2 x)"
+    assert fields.exp_trig(1, "cos").formula == "exp(y) cos(x)"
+    assert fields.exp_trig(1, centre=(2, "1/4"), profile="cosh").formula == "cosh(y - 1/4) cos(x - 2)"
+    space = fields.exp_trig((1, "3/4"), level=1)
+    assert space.formula == "exp(sqrt(1^2 + (3/4)^2) (z - 1)) cos(x) cos(3/4 y)"
+
+
 @pytest.mark.parametrize(
     ("arguments", "reason"),
     [
@@ -74,6 +84,7 @@ def test_conjugate_of_an_even_profile_without_level():
         ({"k": (0, 0)}, "wavenumbers must be positive"),
         ({"k": (1, 2, 3)}, "k must have 1 or 2"),
         ({"k": 1, "part": "tan"}, "part must be"),
+        ({"k": 1, "part": None}, "part must be"),
         ({"k": (1, 2), "part": ("cos",)}, "part must be"),
         ({"k": 1, "profile": "tanh"}, "profile must be one of exp"),
         ({"k": 1, "profile": "sinh"}, "zero at its centre: give a level"),

@@ -12,7 +12,7 @@ from laplace_verify.contexts import FLOAT, precise
 from laplace_verify.errors import FieldError
 from laplace_verify.fields import Formula
 
-# ruff: noqa: ARG005  # every formula takes x and y
+# every formula takes x and y
 VALUES = [
     # text, value at x = 0.3, y = 0.7 by the math module
     ("2 + 3*x - y/4", lambda x, y: 2 + 3 * x - y / 4),
@@ -125,7 +125,7 @@ def test_missing_coordinates_are_named():
         ("None", "is no plain decimal number"),
         ("...", "is no plain decimal number"),
         ("2x", "column"),
-        ("x + q", "column 5: unknown name 'q'"),
+        ("x + q", "column 5: unknown name 'q'; names are x, y, z, r, theta, pi, e"),
         ("exp", "unknown name 'exp'"),
         ("sine(x)", "unknown function 'sine'; did you mean"),
         ("exp(x, y)", "exp takes 1 argument$"),

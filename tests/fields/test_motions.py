@@ -71,6 +71,10 @@ def test_motions_of_a_shifted_singular_point_keep_offsets_exact():
     ("make", "reason"),
     [
         (lambda u: u.shifted((1, 2, 3)), "vector must have 2 coordinates"),
+        (lambda u: u.shifted(1), "vector must be a tuple of 2 numbers, got 1"),
+        (lambda u: u.shifted(None), "vector must be a tuple of 2 numbers, got None"),
+        (lambda u: u.inverted(0, 1), "centre must be a tuple of 2 numbers, got 0"),
+        (lambda _: fields.solid(1, 0).rotated(1, axis=3), "axis must be a tuple of 3 numbers, got 3"),
         (lambda u: u.scaled(0), "factor must be positive"),
         (lambda u: u.scaled(-1), "factor must be positive"),
         (lambda u: u.rotated("a"), "angle must be a decimal"),

@@ -191,6 +191,8 @@ def test_a_coefficient_above_its_bound_is_refused():
         ("far must be one of zero, insulated", ((0, 0), (1, 1), 1, "zero", "top", "cold")),
         ("breaks must run from 0 to 2", ((0, 0), (2, 1), fields.piecewise((0, 1), [(1,)]))),
         ("unknown name 'y'", ((0, 0), (1, 1), "x*y")),
+        ("lower must be a tuple of 2 numbers, got 0", (0, (1, 1), 1)),
+        ("data must be a real number, got NoneType", ((0, 0), (1, 1), None)),
         ("have no value at x = 0.0", ((0, 0), (1, 1), "1/x")),
         ("have not decayed after 8192 samples", ((0, 0), (1, 1), "sqrt((x-1/3)**2)")),
         ("must be a real number|must be numbers", ((0, 0), (1, 1), None)),

@@ -49,12 +49,38 @@ def test_steps_shrink_near_singular_points():
     def log(x, y):
         return np.log(np.hypot(x, y))
 
-    close = [[1e-6, 0]]
-    assert fields.field(log, singular=[(0, 0)]).gradient(close)[0, 0] == pytest.approx(1e6, rel=1e-6)
-    # the twin: a step of 1/256 straddles a singular point it does not know of
-    assert abs(fields.field(log).gradient(close)[0, 0] / 1e6 - 1) > 0.5
+    close = [[1e-10, 0]]
+    assert fields.field(log, singular=[(0, 0)]).gradient(close)[0, 0] == pytest.approx(1e10, rel=1e-6)
+    # the twin: the shortest step, 2^-28, straddles a singular point it does not know of
+    assert abs(fields.field(log).gradient(close)[0, 0] / 1e10 - 1) > 0.5
     with pytest.raises(FieldError, match="infinite at point 0"):
         fields.field(log, singular=[(0, 0)]).value([[0, 0]])
+
+
+@pytest.mark.parametrize(("rate", "error"), [(1.0, 1e-12), (50.0, 1e-11), (1e3, 1e-11), (1e6, 1e-8)])
+def test_steps_adapt_to_the_length_over_which_a_function_varies(rate, error):
+    """Rounding, about eps, is divided by h >= 1/(4096 rate): 1e-12; at rate 1e6 steps end at 2^-28."""
+
+    def fast(x, y):
+        return np.exp(rate * y) * np.cos(rate * x)
+
+    points = np.random.default_rng(11).random((200, 2)) / rate
+    x, y = rate * points.T
+    exact = np.exp(y) * np.stack([-np.sin(x), np.cos(x)])
+    assert np.abs(fields.field(fast).gradient(points).T / rate - exact).max() < error
+
+
+@pytest.mark.parametrize("count", [1, 2, 3, 5])
+def test_arrays_of_derivatives_mean_the_same_for_any_number_of_points(count):
+    """(d, n) and (n, d) look alike for n = d."""
+    points = np.arange(2.0 * count).reshape(count, 2) + 1.0
+    exact = points * [2.0, -2.0]
+    for slope in (
+        lambda x, y: np.array([2 * x, -2 * y]),
+        lambda x, y: np.array([2 * x, -2 * y]).T,
+        lambda x, y: (2 * x, -2 * y),
+    ):
+        assert (fields.field(lambda x, y: x * x - y * y, slope).gradient(points) == exact).all()
 
 
 def test_gradient_functions_may_return_a_tuple_or_an_array():
@@ -68,7 +94,7 @@ def test_gradient_functions_may_return_a_tuple_or_an_array():
 
 
 def test_constants_spread_over_the_points():
-    u = fields.field(lambda x, y: 2.0, lambda x, y: (0, 0))  # noqa: ARG005
+    u = fields.field(lambda x, y: 2.0, lambda x, y: (0, 0))
     assert u.value([[1, 2], [3, 4], [5, 6]]).tolist() == [2, 2, 2]
     assert u.gradient([[1, 2], [3, 4], [5, 6]]).shape == (3, 2)
     assert u.at((1, 2)) == 2
@@ -90,11 +116,11 @@ def test_functions_that_lose_digits_are_told_how_to_mend_it(function, reason):
 @pytest.mark.parametrize(
     ("function", "reason"),
     [
-        (lambda x, y: x[:1], r"must have shape \(3,\)"),  # noqa: ARG005
+        (lambda x, y: x[:1], r"must have shape \(3,\)"),
         (lambda x, y: x + 1j * y, "must be real"),
         (lambda x, y: np.where(x > 2, np.nan, y), "not a finite float64 at point 1"),
-        (lambda x, y: "high", "must be real numbers"),  # noqa: ARG005
-        (lambda x, y: x.nothing, "raised AttributeError"),  # noqa: ARG005
+        (lambda x, y: "high", "must be real numbers"),
+        (lambda x, y: x.nothing, "raised AttributeError"),
     ],
 )
 def test_bad_results_are_refused(function, reason):
@@ -119,7 +145,8 @@ def test_bad_results_are_refused(function, reason):
             lambda: fields.field(wave, singular=[fields.Singularity(point=(1,), exponent=0, kind="log")]),
             r"singular\[0\] must have 2 coordinates",
         ),
-        (lambda: fields.field(wave, lambda x, y: x).gradient([[1, 2]]), "must return a tuple of 2"),  # noqa: ARG005
+        (lambda: fields.field(wave, singular=5), "singular must be a list of points, got 5"),
+        (lambda: fields.field(wave, lambda x, y: x).gradient([[1, 2]]), "must return a tuple of 2"),
     ],
 )
 def test_bad_requests(make, reason):

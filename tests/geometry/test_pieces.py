@@ -70,6 +70,19 @@ def test_projection_on_solid_faces_by_hand():
     assert box.pieces["right"].project([(0.5, -2.0, 0.25)]).tolist() == [[1.0, 0.0, 0.25]]
 
 
+@pytest.mark.parametrize("semi_axes", [(1.0, 1e-3), (1e-3, 1.0), (0.05, 1.0)])
+def test_points_are_moved_to_their_own_side_of_a_thin_ellipse(semi_axes):
+    """The sides are so close that a coarse search along the rim takes the wrong one."""
+    rim = lv.Ellipse((1, 2), semi_axes).pieces["rim"]
+    angle = np.random.default_rng(4).random(500) * 2 * np.pi
+    on = np.stack([np.cos(angle), np.sin(angle)], axis=1) * semi_axes
+    for factor in (0.95, 1.0 + 1e-9, 1.3):
+        moved = rim.project([1, 2] + factor * on) - [1, 2]
+        assert (moved * on >= 0).all()
+        distance = np.hypot(*(moved - factor * on).T)
+        assert (distance <= np.hypot(*((factor - 1) * on).T) * (1 + 1e-9) + 1e-15).all()
+
+
 def test_nearest_point_of_an_ellipse_has_its_normal_towards_the_point():
     # a route of its own: the offset is parallel to the gradient (x/a^2, y/b^2) of the implicit equation
     a, b = 3.0, 0.5
@@ -145,8 +158,12 @@ def test_points_of_a_surface_keep_ratios_of_area(every_shape):
     [
         (lambda p: p.point([1.5]), r"t must lie in \[0, 1\]"),
         (lambda p: p.point([float("nan")]), r"t must lie in \[0, 1\]"),
-        (lambda p: p.sample(0), "whole number n >= 1, got 0"),
-        (lambda p: p.sample(2.5), "whole number n >= 1, got 2.5"),
+        (lambda p: p.sample(0), "n must be a whole number >= 1, got 0"),
+        (lambda p: p.sample(2.5), "n must be a whole number >= 1, got 2.5"),
+        (lambda p: p.sample(True), "n must be a whole number >= 1, got True"),
+        (lambda p: p.point("a"), r"t must be numbers in \[0, 1\], got 'a'"),
+        (lambda p: p.contains([(1, 0)], tol=None), "tol must be a number, got None"),
+        (lambda p: p.project([(1e300, 0)]), r"coordinates of at most 1e\+100, but row 0 is \[1e\+300"),
     ],
 )
 def test_impossible_requests_to_a_piece_are_refused(call, message):
@@ -160,7 +177,16 @@ def test_faces_cannot_be_cut_in_parts():
 
 
 def test_outlines_and_samples_need_sensible_counts():
-    with pytest.raises(lv.GeometryError, match="outline needs n >= 2"):
-        lv.Disc((0, 0), 1).outline(1)
-    with pytest.raises(lv.GeometryError, match="sample needs n >= 0"):
-        lv.Disc((0, 0), 1).sample(-1, seed=0)
+    disc = lv.Disc((0, 0), 1)
+    for n in (1, 2.5, "4", None):
+        with pytest.raises(lv.GeometryError, match="n must be a whole number >= 2, got"):
+            disc.outline(n)
+    for n in (-1, 2.5, "4"):
+        with pytest.raises(lv.GeometryError, match="n must be a whole number >= 0, got"):
+            disc.sample(n, seed=0)
+
+
+@pytest.mark.parametrize("seed", [None, -1, 1.5, "a", True])
+def test_samples_need_an_explicit_seed(seed):
+    with pytest.raises(lv.GeometryError, match="seed must be a whole number >= 0, got"):
+        lv.Disc((0, 0), 1).sample(3, seed)

@@ -336,8 +336,10 @@ def test_boxes_make_a_grid():
     [
         ({"order": -1}, "order must be a whole number from 0 to 100, got -1"),
         ({"order": 2.5}, "order must be a whole number"),
-        ({"order": 2, "cell": 0.0}, "cell must be a length > 0"),
-        ({"order": 2, "cell": float("nan")}, "cell must be a length > 0"),
+        ({"order": 2, "cell": 0.0}, "cell must be > 0"),
+        ({"order": 2, "cell": float("nan")}, "cell must be finite"),
+        ({"order": 2, "cell": "fine"}, "cell must be a number, got 'fine'"),
+        ({"order": 2, "singular": "origin"}, "singular must be numbers"),
         ({"order": 2, "cell": 1e-6}, "over 2000000 patches; take a larger one"),
         ({"order": 2, "singular": [(1.0, 2.0, 3.0)]}, r"singular must have shape \(n, 2\)"),
         ({"order": 2, "singular": [(1.0, float("inf"))]}, "singular must be finite"),

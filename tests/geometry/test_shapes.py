@@ -253,8 +253,35 @@ def test_closed_shape_contains_its_boundary_and_tolerance_widens_it():
     assert disc.contains([(further, 0.0)], tol=1e-3).all()  # 1e-3 of the extent 4
     with pytest.raises(lv.GeometryError, match="tol must be >= 0"):
         disc.contains(ring, tol=-1.0)
-    with pytest.raises(lv.GeometryError, match="tol must be >= 0"):
-        disc.contains(ring, tol=float("nan"))
+    for tol in (float("nan"), "wide", None):
+        with pytest.raises(lv.GeometryError, match=r"tol must be (finite|a number)"):
+            disc.contains(ring, tol=tol)
+
+
+SHAPES = [
+    lv.Interval(0, 1),
+    lv.Rectangle((0, 0), (1, 1)),
+    lv.LShape(1),
+    lv.Polygon([(0, 0), (1, 0), (0, 1)]),
+    lv.Disc((0, 0), 1),
+    lv.Ellipse((0, 0), (2, 1)),
+    lv.Annulus((0, 0), 1, 2),
+    lv.Sector(1, 2),
+    lv.Box((0, 0, 0), (1, 1, 1)),
+    lv.Ball((0, 0, 0), 1),
+    lv.SphericalShell((0, 0, 0), 1, 2),
+    lv.Cylinder(1, 0, 1),
+]
+
+
+@pytest.mark.parametrize("shape", SHAPES, ids=lambda shape: shape.kind)
+def test_points_beyond_the_range_of_squares_lie_outside(shape):
+    """A diverging solver's points must not end in an overflow warning."""
+    far = [[1e300] * shape.dim, [-1.7e308] * shape.dim, [0.1] * shape.dim]
+    assert not shape.contains(far)[:2].any()
+    assert not shape.pieces[0].contains(far)[:2].any()
+    with pytest.raises(lv.GeometryError, match=r"at most 1e\+100, but row 0 is"):
+        shape.distance(far)
 
 
 @pytest.mark.parametrize(
@@ -270,3 +297,13 @@ def test_points_of_the_wrong_kind_are_refused(bad, message):
     for ask in (disc.contains, disc.distance, disc.pieces["rim"].project, disc.pieces["rim"].normals):
         with pytest.raises(lv.GeometryError, match=message):
             ask(bad)
+
+
+def test_a_thin_eccentric_annulus_is_sampled_in_proportion_to_its_width():
+    """The region between the circles is 1.5e-6 wide at angle 0 and 0.5e-6 at angle pi."""
+    ring = lv.Annulus((0, 0), 1 - 1e-6, 1, inner_centre=(-5e-7, 0))
+    points = ring.sample(4000, seed=8)
+    assert ring.contains(points).all()
+    # mean of cos t with density (1 + cos(t)/2)/(2 pi) is 1/4; its standard error is 0.7/sqrt(4000) = 0.011
+    assert points[:, 0].mean() == pytest.approx(0.25, abs=0.04)
+    assert points[:, 1].mean() == pytest.approx(0.0, abs=0.04)

@@ -109,6 +109,8 @@ def test_a_line_must_be_straight() -> None:
         lv.case(bar, {}, lv.field("x**2"), 2.0)
     with pytest.raises(lv.ProblemError, match="Green's third identity misses"):
         lv.case(bar, {}, lv.field("sqrt((x - 1)**2)"))  # |x - 1|: straight but for a kink
+    with pytest.raises(lv.ProblemError, match="Green's third identity misses"):  # a jump near one end
+        lv.case(bar, {}, lv.field(lambda x: np.where(x < 0.1, x, 2 * x)))
 
 
 def test_a_wrong_gradient_is_found(square) -> None:
@@ -170,6 +172,21 @@ def test_what_is_harmonic_in_the_shape_passes(shape, text) -> None:
     assert lv.case(shape, {}, lv.field(text)).exact.opaque
 
 
+def test_greens_identity_settles_in_thin_shapes() -> None:
+    """No interior point is farther than 5e-4 from the boundary: the kernel peaks there."""
+    thin = lv.Rectangle((0, 0), (1, 1e-3))
+    assert lv.case(thin, {}, lv.field("exp(x)*cos(y)")).dim == 2
+    with pytest.raises(lv.ProblemError, match="Green's third identity misses"):
+        lv.case(thin, {}, lv.field("log((x - 0.5)**2 + (y - 0.0005)**2)"))
+
+
+def test_a_fast_function_needs_no_gradient(square) -> None:
+    def wave(x, y):
+        return np.exp(50 * (y - 1)) * np.cos(50 * x)
+
+    assert lv.case(square, {"top": "neumann"}, lv.field(wave)).dim == 2
+
+
 def test_greens_identity_knows_the_tensor() -> None:
     # log of x' K^{-1} x with K = diag(4, 1): a solution outside the origin
     k = [[4.0, 0.0], [0.0, 1.0]]
@@ -205,6 +222,14 @@ def test_the_constant_of_a_pure_neumann_case_is_the_mean(square) -> None:
         lv.case(square, kinds, field, constant=("point", (1, 0), 4))
     with pytest.raises(lv.ProblemError, match="whose mean value is 3"):
         lv.case(square, kinds, field, constant=("mean", 0))
+
+
+def test_a_mean_that_vanishes_is_zero_and_not_rounding() -> None:
+    """Rounding differs between machines, and files made from a case must not."""
+    flux = {"rim": "neumann"}
+    for shift, mean in ((0, 0.0), (5, 5.0)):
+        field = lv.fields.polynomial(3) + lv.fields.affine((0, 0), shift)
+        assert lv.case(lv.Disc((0, 0), 1), flux, field).problem.constant == ("mean", mean)
 
 
 def test_a_case_with_u_given_somewhere_has_no_constant(square) -> None:

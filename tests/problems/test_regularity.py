@@ -1,6 +1,7 @@
 from __future__ import annotations
 
 import math
+import time
 
 import numpy as np
 import pytest
@@ -149,3 +150,23 @@ def test_the_solution_exponent_is_reproduced_by_the_field_itself() -> None:
     u = np.abs(case.exact.value(np.stack([-r, r], axis=1) / math.sqrt(2)))
     slope = float(np.diff(np.log(u))[0] / np.diff(np.log(r))[0])
     assert slope == pytest.approx(case.regularity.solution, rel=1e-9)
+
+
+def test_a_polygon_with_many_sides_is_looked_at_in_no_time() -> None:
+    """Its smallest length is that of a side, 2 sin(pi/300); 45 000 pairs of sides one by one take seconds."""
+    angles = [2 * math.pi * k / 300 for k in range(300)]
+    many = lv.Polygon([(math.cos(a), math.sin(a)) for a in angles])
+    start = time.perf_counter()
+    scale = lv.case(many, {}, lv.fields.polynomial(2)).regularity.scale
+    assert time.perf_counter() - start < 3.0  # 0.3 s on an idle machine
+    assert scale == pytest.approx(2 * math.sin(math.pi / 300), rel=1e-9)
+
+
+def test_a_neck_between_pieces_that_do_not_meet_is_the_smallest_length() -> None:
+    square = [(0, 0), (1, 0), (1, 1), (0, 1)]
+    holes = [
+        [(0.1, 0.1), (0.4, 0.1), (0.4, 0.9), (0.1, 0.9)],
+        [(0.42, 0.1), (0.9, 0.1), (0.9, 0.9), (0.42, 0.9)],
+    ]
+    neck = lv.case(lv.Polygon(square, holes), {}, lv.fields.polynomial(2)).regularity.scale
+    assert neck == pytest.approx(0.02, rel=1e-9)

@@ -83,10 +83,10 @@ def test_hot_side_by_the_cosine_series_across_the_plate():
 def test_hot_side_near_its_corner_by_images():
     """The method of images: no series in n, so that points next to the corner cost no more than others.
 
-    S(x, d) = (2/pi) atan(sin(pi x/a)/sinh(pi d/a)) is harmonic in the half-strip 0 < x < a, d > 0, with
-    u = 1 on d = 0 and u = 0 on the long sides (Carslaw & Jaeger 1959, ch. V, from memory). With d the distance
-    from the hot side, u = sum over k >= 0 of S(x, d + 2 k b) - S(x, 2 (k + 1) b - d): the terms cancel in pairs
-    at d = b, and at d = 0 all do but the first (derived here).
+    S(x, d) = (2/pi) atan(sin(pi x/a)/sinh(pi d/a)) is harmonic in the half-strip 0 < x < a, d > 0, with S = 1
+    on d = 0 and S = 0 on the long sides (Carslaw & Jaeger 1959, ch. V, from memory). With d the distance
+    from the hot side, u = sum over k >= 0 of S(x, d + 2 k b) - S(x, 2 (k + 1) b - d): the terms cancel in
+    pairs at d = b, and at d = 0 all do but the first (derived here).
     """
     a, b = mpmath.mpf(16) / 10, mpmath.mpf(9) / 10
     for point in [("1.599999", "0.899999"), ("0.8", "0.45")]:

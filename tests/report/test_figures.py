@@ -39,7 +39,7 @@ def test_convergence_shows_every_error_and_the_expected_slope(whole_record):
     np.testing.assert_array_equal(curve.get_ydata(), [level.errors["max"] for level in study.levels])
     np.testing.assert_array_equal(curve.get_xdata(), [level.h for level in study.levels])
     assert "slope 2.00" in texts(figure)
-    assert "H1-semi (remark)" in texts(figure)
+    assert "H1-semi" in texts(figure)
     guide = next(line for line in axes.lines if line.get_color() == "#1d2b33")
     (x0, x1), (y0, y1) = guide.get_xdata(), guide.get_ydata()
     assert math.log(y0 / y1) / math.log(x0 / x1) == pytest.approx(2.0, rel=1e-12, abs=0)

@@ -71,7 +71,15 @@ def test_every_format_is_written_once_and_nothing_else_is_left(written):
     folder, paths = written
     assert tuple(paths) == FORMATS
     assert all(path.is_file() for path in paths.values())
-    names = {"report.html", "report.md", "report.tex", "errors.csv", "record.json", "junit.xml", "figures"}
+    names = {
+        "report.html",
+        "report.md",
+        "report.tex",
+        "errors.csv",
+        "record.json",
+        "junit.xml",
+        "figures.pdf",
+    }
     assert set(os.listdir(folder)) == names
 
 
@@ -84,10 +92,8 @@ def test_same_record_same_bytes_whatever_the_users_settings(short_record, tmp_pa
         }
     assert first == second
     assert {key: value for key, value in mpl.rcParams.items() if key != "backend"} == before
-    for name in os.listdir(tmp_path / "a" / "figures"):
-        assert (tmp_path / "a" / "figures" / name).read_bytes() == (
-            tmp_path / "b" / "figures" / name
-        ).read_bytes()
+    first_figures, second_figures = (tmp_path / name / "figures.pdf" for name in "ab")
+    assert first_figures.read_bytes() == second_figures.read_bytes()
 
 
 def test_report_can_be_written_again_from_its_json(record, written, tmp_path):
@@ -122,6 +128,13 @@ def test_html_is_well_formed_self_contained_and_without_script(page):
 def test_html_escapes_what_the_solver_says(page):
     text = "".join(page.words)
     assert text.count("<script>alert('tide & \"sand\"')</script>") >= 4  # name, title, statement, reason
+
+
+def test_code_keeps_its_blank_lines(short_record, tmp_path):
+    short_record = replace(short_record, command="cd pool\n\n    laplace-verify run pool.py:solve")
+    text = write_report(short_record, tmp_path, ["html"])["html"].read_text(encoding="utf-8")
+    assert "<code>cd pool\n\n    laplace-verify run" in text
+    assert "\n\n" not in re.sub(r"<pre>.*?</pre>", "code", text, flags=re.DOTALL)
 
 
 def test_every_figure_has_a_title_and_words_for_those_who_cannot_see_it(page):
@@ -199,8 +212,11 @@ def test_latex_is_balanced_and_escaped(written):
     assert plain.count("{") == plain.count("}")
     assert plain.count("$") % 2 == 0
     assert not re.search(r"[^\x00-\x7FÀ-ÿ]", text)
-    for name in re.findall(r"\\includegraphics\[[^]]*\]\{([^}]+)\}", text):
-        assert (folder / name).read_bytes().startswith(b"%PDF")
+    pages = [int(page) for page in re.findall(r"\\includegraphics\[page=(\d+),[^]]*\]\{figures.pdf\}", text)]
+    assert pages == list(range(1, len(pages) + 1))
+    pdf = (folder / "figures.pdf").read_bytes()
+    assert pdf.startswith(b"%PDF")
+    assert len(re.findall(rb"/Type /Page\b", pdf)) == len(pages) > 8
 
 
 def test_latex_tables_have_as_many_cells_as_columns(written):

@@ -199,19 +199,9 @@ def test_keywords_reach_the_function_only_if_its_signature_has_them(square):
 
     points = np.full((3, 2), 0.5)
     adapted(stochastic).solve(square, 8, points, tolerance=1e-9, initial=None, seed=11)
+    adapted(lambda _problem, _n, wanted, seed: stochastic(_problem, _n, wanted=wanted, seed=seed)).solve(
+        square, 8, points, seed=11
+    )
     assert seen["seed"] == 11
     assert seen["wanted"] is points
     assert ones.solve(square, 8, points, tolerance=1e-9, seed=11).h == 0.125
-
-
-def test_a_variant_binds_its_keywords(square):
-    def relaxed(_problem, _n, omega=1.0):
-        return lv.Answer(NODES, np.full(5, omega))
-
-    adapter = adapted(relaxed, variants={"over-relaxed": {"omega": 1.5}})
-    variant = adapter.variant("over-relaxed")
-    assert variant.name == "tide gauge (over-relaxed)"
-    assert variant.solve(square, 8).values[0] == 1.5
-    assert adapter.solve(square, 8).values[0] == 1.0
-    with pytest.raises(lv.AdapterError, match=r"tide gauge has no variant 'over'"):
-        adapter.variant("over")

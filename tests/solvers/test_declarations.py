@@ -82,8 +82,11 @@ def test_what_is_left_out_means_any_bounded_cartesian_scalar_problem():
         ({"claims": [1]}, r"claims must hold texts only"),
         ({"known": {"hot plate": ""}}, r"known\['hot plate'\] must be the reason in words"),
         ({"known": ["hot plate"]}, r"known must be a dict with names as keys"),
-        ({"expected": {"hot plate": "fast"}}, r"order must be a positive number"),
-        ({"variants": {"fast": 3}}, r"variants\['fast'\] must be a dict"),
+        ({"expected": {"L2": 2}}, r"expected\['L2'\] must be an order and the reason for it, such as \(2,"),
+        ({"expected": {"L2": ("fast", "graded mesh")}}, r"expected\['L2'\] must be a positive number"),
+        ({"expected": {"L2": (2, "")}}, r"expected\['L2'\] must be the reason in words"),
+        ({"expected": {"hot plate": (2, "graded mesh")}}, r"expected: 'hot plate' is no norm"),
+        ({"variants": {"fast": {}}}, r"adapt has no argument 'variants'"),
         ({"dim": {2}}, r"adapt has no argument 'dim'; did you mean 'dims'"),
     ],
 )

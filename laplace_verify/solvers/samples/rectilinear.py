@@ -202,9 +202,7 @@ def _with_nodes(axes: tuple[Array, ...], index: IntArray, coordinates: Coordinat
     place = np.stack(np.unravel_index(used, full), axis=1)
     points = np.stack([axis[place[:, a]] for a, axis in enumerate(axes)], axis=1)
     corners = corners.reshape(flat.shape)
-    return Grid(
-        axes=axes, points=points, place=place, corners=corners, index=index, coordinates=coordinates
-    )
+    return Grid(axes=axes, points=points, place=place, corners=corners, index=index, coordinates=coordinates)
 
 
 def corners_on(dim: int, axis: int, side: int) -> list[int]:
