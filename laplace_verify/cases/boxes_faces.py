@@ -38,13 +38,13 @@ def _box_hot_top() -> Definition:
 def _box_slab_hot_top() -> Definition:
     return Definition(
         title="Flat box with one hot face",
-        solution="sum over odd m, n of 16/(pi^2 m n) sin(m pi x/2) sin(n pi y/1.5) sinh(g z)/sinh(0.2 g)",
+        solution="sum over odd m, n of 16/(pi^2 m n) sin(m pi x/0.9) sin(n pi y/0.7) sinh(g z)/sinh(0.2 g)",
         note=JUMPS,
         reading="A paving slab over a cold bed, warmed by the sun.",
-        shape=Box((0.0, 0.0, 0.0), (2.0, 1.5, 0.2)),
-        field=fields.box_faces((0, 0, 0), (2, "3/2", "1/5"), top=1),
+        shape=Box((0.0, 0.0, 0.0), (0.9, 0.7, 0.2)),
+        field=fields.box_faces((0, 0, 0), ("9/10", "7/10", "1/5"), top=1),
         conductivity=0.9,
-        quantities={"value in the middle": value_at((1.0, 0.75, 0.1))},
+        quantities={"value in the middle": value_at((0.45, 0.35, 0.1))},
         sources=(SERIES, HERE),
     )
 
