@@ -70,7 +70,7 @@ def _rod_two_layers() -> Definition:
         },
         tags=("exactness",),
         sources=(SERIES,),
-        reference_points=(("1/2",), ("4/5",), ("1.7",)),
+        reference_points=(("0.5",), ("0.75",), ("1.7",)),
     )
 
 
@@ -96,7 +96,7 @@ def _rod_five_layers() -> Definition:
         },
         tags=("exactness",),
         sources=(SERIES,),
-        reference_points=(("1/20",), ("0.28",), ("0.8",)),
+        reference_points=(("0.05",), ("0.28",), ("0.77",)),
     )
 
 
