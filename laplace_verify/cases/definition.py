@@ -20,6 +20,7 @@ from laplace_verify.fields import Field
 from laplace_verify.geometry import Shape
 from laplace_verify.problems import Case, Condition, Materials, case
 from laplace_verify.problems.coordinates import Coordinates
+from laplace_verify.problems.infinity import AtInfinity
 from laplace_verify.problems.quantities import QuantitySpec
 
 __all__ = ["HERE", "Definition", "Family", "joined"]
@@ -37,7 +38,7 @@ class Definition:
         Headline, physical reading in a plain sentence, literature.
     solution, note
         The solution as a readable formula, and further sentences for the statement, see `statement_of`.
-    shape, field, conditions, conductivity, quantities, coordinates
+    shape, field, conditions, conductivity, quantities, coordinates, at_infinity, window
         See `problems.case`.
     tags
         Words beyond those that follow from the mathematics, see `derived_tags`.
@@ -57,6 +58,8 @@ class Definition:
     sources: Iterable[str] = (HERE,)
     note: str = ""
     coordinates: Coordinates = "cartesian"
+    at_infinity: AtInfinity = None
+    window: Shape | None = None
     reference_points: Iterable[tuple[str, ...]] = ()
 
     def build(self, id_: str) -> Case:
@@ -78,6 +81,8 @@ class Definition:
             sources=self.sources,
             quantities=self.quantities,
             coordinates=self.coordinates,
+            at_infinity=self.at_infinity,
+            window=self.window,
         )
         return replace(
             built,

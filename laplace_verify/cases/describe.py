@@ -8,7 +8,13 @@ from textwrap import TextWrapper
 
 from tabulate import tabulate
 
-from laplace_verify.cases.statement import conductivity_in_words, given_in_words, in_symbols, region_in_words
+from laplace_verify.cases.statement import (
+    conductivity_in_words,
+    given_in_words,
+    in_symbols,
+    infinity_in_words,
+    region_in_words,
+)
 from laplace_verify.problems import Case, Quantity
 
 __all__ = ["basis_in_words", "describe", "regularity_in_words"]
@@ -36,6 +42,9 @@ def describe(case: Case) -> str:
     ]
     if problem.coordinates != "cartesian":
         facts.insert(1, ("coordinates", f"{problem.coordinates}; integrals are those of space"))
+    if case.window is not None:
+        facts.insert(1, ("at infinity", infinity_in_words(problem.at_infinity)))
+        facts.insert(2, ("norms over", region_in_words(case.window)))
     if problem.constant is not None:
         facts.append(("level", f"the {problem.constant[0]} of u is {problem.constant[-1]:.12g}"))
     parts = [

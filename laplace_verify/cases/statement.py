@@ -13,12 +13,14 @@ from laplace_verify.fields.partitions import Layers, Sectors, Shells
 from laplace_verify.geometry import Shape
 from laplace_verify.problems import Case, Condition, Materials
 from laplace_verify.problems.coordinates import Coordinates
+from laplace_verify.problems.infinity import AtInfinity
 
 __all__ = [
     "conditions_in_words",
     "conductivity_in_words",
     "given_in_words",
     "in_symbols",
+    "infinity_in_words",
     "region_in_words",
     "statement_of",
 ]
@@ -62,9 +64,28 @@ def statement_of(case: Case, solution: str, note: str = "") -> str:
     parts = [f"{equation} in {region}", *conditions_in_words(kinds)]
     if any(piece.kind == "axis" for piece in problem.pieces):
         parts.append("no condition on the axis r = 0")
-    if case.problem.constant is not None:
-        parts.append("the mean of u given")
-    return " ".join(filter(None, [f"{'; '.join(parts)}. Solution u = {solution}.", note]))
+    if problem.at_infinity is not None:
+        parts.append(infinity_in_words(problem.at_infinity))
+    if problem.constant is not None:
+        parts.append("the mean of u given" if problem.constant[0] == "mean" else "u given at one point")
+    seen = f"Norms are taken over {region_in_words(case.window)}." if case.window is not None else ""
+    return " ".join(filter(None, [f"{'; '.join(parts)}. Solution u = {solution}.", note, seen]))
+
+
+def infinity_in_words(at_infinity: AtInfinity) -> str:
+    """Return what is known of u far away.
+
+    >>> infinity_in_words(("flow", (1.0, 0.5), 0.0))
+    'u - (1, 0.5) . x bounded at infinity'
+    """
+    if at_infinity is None:
+        return "bounded shape"
+    if isinstance(at_infinity, str):
+        return {"decay": "u -> 0 at infinity", "bounded": "u bounded at infinity"}[at_infinity]
+    if at_infinity[0] == "log":
+        return f"u - {_number(at_infinity[1])} log |x| bounded at infinity"
+    turning = f" + {_number(at_infinity[2])}/(2 pi) log |x|" if at_infinity[2] else ""
+    return f"u - {_point(at_infinity[1])} . x{turning} bounded at infinity"
 
 
 def in_symbols(text: str, coordinates: Coordinates) -> str:
@@ -181,6 +202,27 @@ def _annulus(shape: Any) -> str:
     return f"the disc of radius {_number(shape.outer)} about {_point(shape.centre)} without the disc {inner}"
 
 
+def _ring(shape: Any) -> str:
+    """Return the region between concentric ellipses or spheroids."""
+    what = "ellipses" if shape.dim == 2 else "spheroids"
+    axes = f"{_point(shape.inner)} and {_point(shape.outer)}"
+    return f"the region between the {what} with semi-axes {axes} about {_point(shape.centre)}"
+
+
+def _exterior(shape: Any) -> str:
+    """Return the region outside one or several bodies."""
+    return f"the exterior of {' and of '.join(region_in_words(body) for body in shape.bodies)}"
+
+
+def _layer(shape: Any) -> str:
+    """Return the half-space or strip as an inequality for its last coordinate."""
+    axis = AXES[shape.dim - 1]
+    if shape.kind == "half-space":
+        return f"the half-{'plane' if shape.dim == 2 else 'space'} {axis} > 0"
+    what = "strip" if shape.dim == 2 else "layer"
+    return f"the {what} {_number(shape.z0)} < {axis} < {_number(shape.z1)}"
+
+
 def _polygon(shape: Any) -> str:
     """Return the corners, and those of the holes."""
     text = f"the polygon with corners {', '.join(_point(vertex) for vertex in shape.vertices)}"
@@ -219,6 +261,18 @@ REGIONS: dict[str, Callable[[Any], str]] = {
         f"the shell between the spheres of radius {_number(s.inner)} and {_number(s.outer)} about "
         f"{_point(s.centre)}"
     ),
+    "elliptic-ring": _ring,
+    "spheroidal-shell": _ring,
+    "pair-shell": lambda s: (
+        f"the ball of radius {_number(s.outer)} about {_point(s.centre)} without two balls of radius "
+        f"{_number(s.radius)}, {_number(s.gap)} apart along z"
+    ),
+    "spheroid": lambda s: f"the spheroid with semi-axes {_point(s.semi_axes)} about {_point(s.centre)}",
+    "screen": lambda s: f"the screen from {_point(s.start)} to {_point(s.stop)}",
+    "round-plate": lambda s: f"the plate of radius {_number(s.radius)} about {_point(s.centre)}, across z",
+    "exterior": _exterior,
+    "half-space": _layer,
+    "strip": _layer,
     "cylinder": lambda s: (
         f"the cylinder x^2 + y^2 < {_number(s.radius)}^2, {_number(s.z0)} < z < {_number(s.z1)}"
     ),

@@ -21,7 +21,7 @@ def derived_tags(case: Case) -> frozenset[str]:
 
     "smooth" or "singular", "jump"; "dirichlet" ... for each kind of condition, "mixed" for several,
     "pure-neumann"; "axisymmetric" (in r, z), "radial" (in r), "regions", "tensor", "curved", "re-entrant",
-    "condition-change" (inside a smooth piece), "slit", "hole", "near-source", "high-aspect".
+    "condition-change" (inside a smooth piece), "slit", "hole", "near-source", "high-aspect", "unbounded".
 
     >>> from laplace_verify import fields
     >>> from laplace_verify.geometry import LShape
@@ -45,6 +45,7 @@ def derived_tags(case: Case) -> frozenset[str]:
         "curved": any(piece.curved for piece in case.problem.pieces),
         "condition-change": _changes(case),
         "near-source": _near_source(case),
+        "unbounded": not shape.bounded,
     }
     return frozenset(kinds) | shape_tags(shape) | {tag for tag, true in facts.items() if true}
 
@@ -52,13 +53,13 @@ def derived_tags(case: Case) -> frozenset[str]:
 def shape_tags(shape: Shape) -> frozenset[str]:
     """Return the tags that are facts about a shape alone."""
     lower, upper = shape.bounding_box
-    extents = upper - lower
+    extents = upper - lower if shape.bounded else np.ones(shape.dim)
     openings = [junction.opening for junction in shape.junctions]
     facts = {
         "re-entrant": any(opening > math.pi + STRAIGHT for opening in openings),
         "slit": any(opening > 2 * math.pi - STRAIGHT for opening in openings),
         "hole": any(name == "inner" or name.startswith("hole-") for name in shape.pieces.names),
-        "high-aspect": bool(extents.max() > SLENDER * extents.min()),
+        "high-aspect": shape.bounded and bool(extents.max() > SLENDER * extents.min()),
     }
     return frozenset(tag for tag, true in facts.items() if true)
 

@@ -255,7 +255,7 @@ def _quadrature(
 def _spread(piece: Boundary, field: Field) -> float:
     """Return how much the error may exceed the difference of two orders.
 
-    Along an edge where the flux grows like r**(-1/2) Gauss's rule of n points errs like 1/n, with 8 and 12
+    Along an edge where the flux grows like r**(-1/2) Gauss rules of n points err like 1/n: with 8 and 12
     points by twice their difference.
     """
     steep = any(0.0 < e.exponent < 1.0 and piece.contains(e.sample(5)).any() for e in field.edges)
