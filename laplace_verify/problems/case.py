@@ -276,7 +276,7 @@ def case(
     pieces, singular = _pieces(shape, complete, field, k), regularity.singular_points
     for piece in pieces:  # a field that is not defined on the boundary shows here, by the piece's name
         if piece.kind != AXIS:
-            piece.probe()
+            piece.probe(seen.pieces[piece.name])
     return Case(
         id=id,
         title=title,

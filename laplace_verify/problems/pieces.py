@@ -159,15 +159,17 @@ class Piece:
         points, normals, weights = (np.concatenate(column) for column in zip(*rules, strict=True))
         return points, normals, weights
 
-    def probe(self) -> None:
+    def probe(self, part: Boundary | None = None) -> None:
         """Evaluate data and alpha at a few points, so that bad ones show when a problem is posed.
+
+        `part` is the bounded part of the piece to look at; None: the whole of it.
 
         Raises
         ------
         ProblemError
             As `data` and `alpha`.
         """
-        points = self.sample(PROBES)[0]
+        points = (part or self.boundary).sample(PROBES)[0]
         self.data(points)
         if self.kind == "robin":
             self.alpha(points)

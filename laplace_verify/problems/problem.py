@@ -5,6 +5,7 @@ A problem holds no exact solution in reach: data come out of ``piece.data(points
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
 from typing import Any
@@ -224,7 +225,7 @@ def problem(
         for name in shape.pieces.names
     )
     for piece in pieces:
-        if piece.name not in axis:
+        if piece.name not in axis and math.isfinite(piece.measure):
             piece.probe()
     if isinstance(k, Materials):
         regions_of(shape, k)  # refuses regions that do not fit
