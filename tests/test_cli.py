@@ -79,7 +79,7 @@ def test_cases_are_listed_by_dimension_and_condition(capsys):
 
 
 def test_no_case_found_is_status_3(capsys):
-    assert main(["cases", "--dim", "3", "--tag", "slit"]) == 3
+    assert main(["cases", "--dim", "1", "--tag", "slit"]) == 3
     assert "0 of" in capsys.readouterr().err
 
 
@@ -191,7 +191,7 @@ def test_a_record_is_rendered_again_to_the_same_bytes(tmp_path):
 @pytest.mark.parametrize(
     ("arguments", "message"),
     [
-        (("cases", "--shape", "polgon"), "no case has the shape 'polgon'; did you mean 'polygon'?"),
+        (("cases", "--shape", "polgon"), "no case has the shape 'polgon'; did you mean 'polygon'"),
         (("cases", "--tag", "re-entrent"), "no case has the tag 're-entrent'; did you mean 're-entrant'"),
     ],
 )

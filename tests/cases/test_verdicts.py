@@ -25,6 +25,9 @@ INVISIBLE = {
     "rod-flux-and-convection": "u'' = 0",
     "rod-pure-flux": "u'' = 0",
     "plate-affine": "u_nn = 0",
+    "rod-five-layers": "u'' = 0 in every layer",
+    "plate-layers-across": "u_nn = 0 in every layer",
+    "plate-layers-along": "u_nn = 0 in every layer; what is left comes from the nodes on the joints",
     "plate-insulated-step": "the jump costs as much: order 1 in L2 is all a sound scheme has",
     "l-shape-mixed-corner": "the corner costs more: orders 1/3 and 2/3",
     "plate-condition-change-smooth-data": "the change of condition costs as much: orders 1/2 and 1",
@@ -62,8 +65,7 @@ def test_first_order_flux_fails_near_order_one():
 @pytest.mark.parametrize("id_", NEUMANN)
 def test_first_order_flux_is_seen_unless_there_is_a_reason(id_):
     study = lv.study(FIRST_ORDER, lv.catalogue[id_])
-    expected = lv.Verdict.PASS if id_ in INVISIBLE else lv.Verdict.FAIL
-    assert study.verdict is expected, str(study)
+    assert (study.verdict is lv.Verdict.FAIL) == (id_ not in INVISIBLE), str(study)
 
 
 def test_every_smooth_case_with_a_bending_flux_side_can_see_it():

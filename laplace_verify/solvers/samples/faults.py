@@ -36,6 +36,13 @@ class Fault(NamedTuple):
     adapter: Adapter
 
 
+def conductivity_at(side: Side, axis: int) -> Array:
+    """Return K_na in the cells of a side, shape (cells,): how a slope along `axis` drives flux across it."""
+    if side.tensor.ndim == 1:  # a number for every cell
+        return side.tensor[side.patch.cells] * (1.0 if axis == side.patch.axis else 0.0)
+    return np.full(len(side.patch.cells), side.tensor[side.patch.axis, axis])
+
+
 def one_sided_flux(equations: Equations, side: Side) -> None:
     """Put n . K G u = g, with one-sided differences along the normal, in place of the half-cell balance.
 
@@ -50,9 +57,10 @@ def one_sided_flux(equations: Equations, side: Side) -> None:
     for corner in corners:
         own = grid.corners[patch.cells, corner]
         share = sign * grid.face(patch, corner)
-        to_node = sp.csr_array((share, (own, patch.cells)), shape=(count, len(grid.corners)))
         for axis, gradient in enumerate(grid.gradients(corner)):
-            rows = rows + side.tensor[patch.axis, axis] * (to_node @ gradient)
+            driven = share * conductivity_at(side, axis)
+            to_node = sp.csr_array((driven, (own, patch.cells)), shape=(count, len(grid.corners)))
+            rows = rows + to_node @ gradient
     load = np.zeros(count)
     load[nodes] = areas * side.piece.data(grid.points[nodes])
     equations.overwrite(nodes, rows, load)
@@ -66,9 +74,12 @@ def reversed_flux(equations: Equations, side: Side) -> None:
 
 def flux_for_gradient(equations: Equations, side: Side) -> None:
     """Take g for the normal derivative and multiply by the conductivity once more."""
-    nodes, areas = side.grid.shares(side.patch)
-    conductivity = side.tensor[side.patch.axis, side.patch.axis]
-    equations.load[nodes] += areas * conductivity * side.piece.data(side.grid.points[nodes])
+    grid, patch = side.grid, side.patch
+    conductivity = conductivity_at(side, patch.axis)
+    for corner in corners_on(grid.dim, patch.axis, patch.side):
+        own = grid.corners[patch.cells, corner]
+        data = side.piece.data(grid.points[own])
+        np.add.at(equations.load, own, grid.face(patch, corner) * conductivity * data)
 
 
 def whole_cell_flux(equations: Equations, side: Side) -> None:
