@@ -35,38 +35,6 @@ def _box_hot_top() -> Definition:
 
 
 @family
-def _box_slab_hot_top() -> Definition:
-    return Definition(
-        title="Flat box with one hot face",
-        solution="sum over odd m, n of 16/(pi^2 m n) sin(m pi x/0.9) sin(n pi y/0.7) sinh(g z)/sinh(0.2 g)",
-        note=JUMPS,
-        reading="A paving slab over a cold bed, warmed by the sun.",
-        shape=Box((0.0, 0.0, 0.0), (0.9, 0.7, 0.2)),
-        field=fields.box_faces((0, 0, 0), ("9/10", "7/10", "1/5"), top=1),
-        conductivity=0.9,
-        quantities={"value in the middle": value_at((0.45, 0.35, 0.1))},
-        sources=(SERIES, HERE),
-    )
-
-
-@family
-def _box_three_temperatures() -> Definition:
-    return Definition(
-        title="Box with three temperatures on its faces",
-        solution="sum over the faces of value times the solution with that face alone at 1",
-        note="The data jump along eight of the twelve edges; at that of left and top u is smooth.",
-        reading="A block between baths of the heat exchanger.",
-        shape=Box((-0.4, 0.0, 0.1), (0.5, 0.8, 1.1)),
-        field=fields.box_faces(
-            ("-2/5", 0, "1/10"), ("1/2", "4/5", "11/10"),
-            left=1, top=1, back="-1/2",
-        ),
-        quantities={"value at the sensor": value_at((0.0, 0.4, 0.6))},
-        sources=(SERIES, HERE),
-    )  # fmt: skip
-
-
-@family
 def _box_insulated_sides() -> Definition:
     return Definition(
         title="Box with insulated and cold sides",

@@ -65,6 +65,8 @@ def test_first_order_flux_fails_near_order_one():
 @pytest.mark.parametrize("id_", NEUMANN)
 def test_first_order_flux_is_seen_unless_there_is_a_reason(id_):
     study = lv.study(FIRST_ORDER, lv.catalogue[id_])
+    if study.verdict is lv.Verdict.NOT_APPLICABLE:
+        pytest.skip(study.reasons[0])
     assert (study.verdict is lv.Verdict.FAIL) == (id_ not in INVISIBLE), str(study)
 
 
@@ -72,5 +74,6 @@ def test_every_smooth_case_with_a_bending_flux_side_can_see_it():
     """None of the reasons for not seeing the fault is an excuse for a smooth case with u_nn != 0."""
     for id_ in INVISIBLE:
         case = lv.catalogue[id_]
-        assert math.isfinite(case.regularity.solution) or case.exact.degree == 1
+        parts = [case.exact.restricted(region) for region in case.exact.regions] or [case.exact]
+        assert math.isfinite(case.regularity.solution) or {part.degree for part in parts} == {1}
     assert set(INVISIBLE) <= set(NEUMANN)

@@ -323,7 +323,6 @@ def five_point(problem: Problem, n: int) -> Answer:
     conditions={"dirichlet", "neumann", "robin"},
     conductivity={"scalar", "tensor"},
     error_floor=1e-10,
-    sizes=(6, 9, 13, 19, 28),
 )
 def seven_point(problem: Problem, n: int) -> Answer:
     """Solve on a box by the seven-point formula and conjugate gradients."""
