@@ -7,6 +7,7 @@ right, so the sides of a cut keep their meaning.
 from __future__ import annotations
 
 import math
+from abc import abstractmethod
 from dataclasses import dataclass
 from typing import Any
 
@@ -41,21 +42,21 @@ class Moved(Field):
 
     field: Field
 
+    @abstractmethod
     def _back(self, ctx: Any, x: tuple[Any, ...]) -> tuple[Any, ...]:
         """Return M^{-1} x."""
-        raise NotImplementedError
 
+    @abstractmethod
     def _forward(self, ctx: Any, gradient: tuple[Any, ...]) -> tuple[Any, ...]:
         """Return the gradient of u(M^{-1} x) from that of u."""
-        raise NotImplementedError
 
+    @abstractmethod
     def _map(self) -> tuple[Array, Array]:
         """Return the matrix (d, d) and the vector (d,) of M in float64."""
-        raise NotImplementedError
 
+    @abstractmethod
     def _with(self, field: Field) -> Field:
         """Return another field moved in the same way."""
-        raise NotImplementedError
 
     @property
     def dim(self) -> int:

@@ -11,6 +11,7 @@ Incerpi 1984, Triangulation and shape-complexity (from memory, unchecked).
 
 from __future__ import annotations
 
+from abc import abstractmethod
 from collections.abc import Sequence
 from dataclasses import dataclass, field
 from functools import lru_cache
@@ -39,9 +40,9 @@ class _Polygonal(Shape):
 
     dim: ClassVar[int] = 2
 
+    @abstractmethod
     def _rings(self) -> tuple[Vertices, ...]:
         """Outer loop counter-clockwise, then holes clockwise."""
-        raise NotImplementedError
 
     @property
     def measure(self) -> float:
