@@ -57,6 +57,10 @@ def test_the_commands_on_the_catalogue_work(line, tmp_path, monkeypatch, capsys)
     assert capsys.readouterr().out
 
 
+def test_the_number_of_cases_is_right():
+    assert f"\n{len(lv.catalogue)} cases:" in TEXT
+
+
 def test_every_link_within_the_repository_leads_somewhere():
     for target in re.findall(r"\]\((?!http)([^)#]+)\)", TEXT):
         assert (ROOT / target).exists(), target
