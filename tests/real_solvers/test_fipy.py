@@ -11,6 +11,8 @@ import pytest
 import laplace_verify as lv
 
 README = Path(__file__).parents[2] / "README.md"
+# A uniform grid misses the end of the crack by up to half a cell, each size by another part of it.
+OFF_THE_GRID = {"cracked-bar"}
 QUICK = {"plate-wave", "plate-flux-top", "plate-hot-side"}
 
 
@@ -35,7 +37,7 @@ def can_do(case):
 CASES = [
     pytest.param(id_, id=id_, marks=[] if id_ in QUICK else [pytest.mark.slow])
     for id_ in lv.catalogue
-    if can_do(lv.catalogue[id_])
+    if id_ not in OFF_THE_GRID and can_do(lv.catalogue[id_])
 ]
 
 
@@ -43,6 +45,12 @@ CASES = [
 def test_cell_centred_finite_volumes_pass(fipy_solve, case_id):
     study = lv.study(fipy_solve, lv.catalogue[case_id])
     assert study.verdict in (lv.Verdict.PASS, lv.Verdict.NOT_APPLICABLE), f"{study}\n{study.table()}"
+
+
+@pytest.mark.parametrize("case_id", sorted(OFF_THE_GRID))
+def test_a_change_of_condition_off_the_grid_is_no_pass(fipy_solve, case_id):
+    study = lv.study(fipy_solve, lv.catalogue[case_id])
+    assert study.verdict in (lv.Verdict.INCONCLUSIVE, lv.Verdict.FAIL), str(study)
 
 
 def test_cell_values_taken_one_cell_too_far_fail(fipy_solve):

@@ -22,15 +22,26 @@ CAPABILITIES = {
 QUICK = {"plate-wave", "plate-flux-top", "wall-mixed-conditions", "l-shape-corner", "disc-fourier"}
 
 
-def mesh_of(shape, n, curved):
+def mesh_of(problem, n, curved):
     """Return a triangulation with about n cells along every side; the disc's has a power of two."""
+    shape = problem.shape
     if shape.is_a("disc"):
         kind = skfem.MeshTri2 if curved else skfem.MeshTri
         return kind.init_circle(round(np.log2(n))).scaled(shape.radius).translated(shape.centre)
-    lower, upper = shape.bounding_box
-    mesh = skfem.MeshTri.init_tensor(*(np.linspace(a, b, n + 1) for a, b in zip(lower, upper, strict=True)))
+    mesh = skfem.MeshTri.init_tensor(*(lines_along(problem, axis, n) for axis in (0, 1)))
     outside = ~shape.contains(mesh.p[:, mesh.t].mean(axis=1).T)
     return mesh.remove_elements(np.flatnonzero(outside)) if outside.any() else mesh
+
+
+def lines_along(problem, axis, n):
+    """Return about n + 1 grid lines that meet the ends of every piece."""
+    ends = np.concatenate([piece.ends[:, axis] for piece in problem.pieces])
+    breaks = np.unique(np.round(ends, 12))
+    counts = np.ceil(n * np.diff(breaks) / (breaks[-1] - breaks[0])).astype(int)
+    pieces = [
+        np.linspace(a, b, k, endpoint=False) for a, b, k in zip(breaks, breaks[1:], counts, strict=False)
+    ]
+    return np.append(np.concatenate(pieces), breaks[-1])
 
 
 def facets_of_pieces(mesh, pieces):
@@ -44,7 +55,7 @@ def facets_of_pieces(mesh, pieces):
 
 def solve_with(element, curved):
     def solve(problem, n):
-        mesh = mesh_of(problem.shape, n, curved)
+        mesh = mesh_of(problem, n, curved)
         basis = skfem.Basis(mesh, element)
         K = problem.tensor
         matrix = skfem.BilinearForm(
