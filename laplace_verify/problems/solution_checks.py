@@ -63,7 +63,8 @@ def check_equation(shape: Shape, field: Field, tensor: Array, coordinates: Coord
     ProblemError
         With the point, the residual and the size of its terms; or if a user's gradient is not that of u.
     """
-    count = 8 if field.opaque else 2
+    # Families of ours are harmonic by construction: one point tells whether K is the one they were made for.
+    count = 8 if field.opaque else 1
     lambdas, vectors = np.linalg.eigh(tensor)
     for point in _interior(shape, count):
         try:
