@@ -20,8 +20,9 @@ import numpy.typing as npt
 from laplace_verify.arrays import Array, BoolArray, as_points, blocks
 from laplace_verify.contexts import FLOAT, MAX_DIGITS, Number, Precise
 from laplace_verify.errors import FieldError
-from laplace_verify.fields._inputs import Side, as_sides, columns, equals, is_number, name_of, text_of
-from laplace_verify.fields._precision import agreeing, real, working
+from laplace_verify.fields._inputs import Side, as_sides, columns, is_number, text_of
+from laplace_verify.fields._precision import agreeing, real
+from laplace_verify.fields._refusals import Place, refuse, refuse_infinite
 from laplace_verify.fields.edges import Edge, Ring
 from laplace_verify.fields.exact import exact_point, whole
 from laplace_verify.fields.sheets import Sheet
@@ -178,10 +179,11 @@ class Field(ABC):
         values = np.empty(len(points))
         for block in blocks(len(points)):
             part, lip = points[block], None if side is None else side[block]
-            self._refuse(part, lip, derivative=False, first=block.start)
+            place = Place(part, lip, first=block.start)
+            refuse(self, place, derivative=False)
             with np.errstate(all="ignore"):  # whatever is not finite is refused by name below
                 values[block] = self._value(FLOAT, columns(part), lip)
-            self._refuse_infinite(part, values[block], first=block.start)
+            refuse_infinite(self, place, values[block])
         return values
 
     def gradient(self, points: npt.ArrayLike, side: Side = None, region: str | None = None) -> Array:
@@ -202,11 +204,12 @@ class Field(ABC):
         gradients = np.empty(points.shape)
         for block in blocks(len(points)):
             part, lip = points[block], None if side is None else side[block]
-            self._refuse(part, lip, derivative=True, first=block.start)
+            place = Place(part, lip, first=block.start)
+            refuse(self, place, derivative=True)
             with np.errstate(all="ignore"):
                 for axis, derivative in enumerate(self._gradient(FLOAT, columns(part), lip)):
                     gradients[block, axis] = derivative
-            self._refuse_infinite(part, gradients[block], first=block.start)
+            refuse_infinite(self, place, gradients[block])
         return gradients
 
     # -- any number of digits ------------------------------------------------------------------------------
@@ -303,7 +306,7 @@ class Field(ABC):
         place = exact_point((point,) if is_number(point) else point, "point", (self.dim,))  # type: ignore[arg-type]
         lip = as_sides(side, 1)
         row = np.array([[float(c) for c in place]])
-        self._refuse(row, lip, derivative=derivative, first=None, place=place)
+        refuse(self, Place(row, lip, first=None, exact=place), derivative=derivative)
         one_side = None if lip is None else int(lip[0])
 
         def evaluate(ctx: Precise) -> list[Any]:
@@ -320,80 +323,6 @@ class Field(ABC):
         values, changes = agreeing(evaluate, digits, self.formula)
         as_global = mpmath.mp.make_mpf  # a number of the global type that keeps every digit
         return tuple(as_global(v._mpf_) for v in values), tuple(as_global(c._mpf_) for c in changes)
-
-    # -- refusals ------------------------------------------------------------------------------------------
-
-    def _refuse(
-        self, points: Array, side: Array | None, *, derivative: bool, first: int | None, place: Any = None
-    ) -> None:
-        """Raise FieldError at the first point where the field has no value (or no gradient)."""
-        for singularity in self.singularities:
-            hit = equals(points, singularity.point, place)
-            if not hit.any():
-                continue
-            where = name_of(points, hit, first, place)
-            if singularity.kind == "jump":
-                raise FieldError(f"{self.formula} jumps at {where}: it has no single value there")
-            if singularity.kind != "power":
-                raise FieldError(f"{self.formula} is infinite at {where}; leave this point out")
-            if derivative and singularity.exponent < 1:
-                raise FieldError(
-                    f"the gradient of {self.formula} is infinite at {where}: "
-                    f"u ~ r^{singularity.exponent:.4g} there; leave this point out"
-                )
-        for edge in self.edges if place is None else ():  # precise values tell by themselves
-            if edge.exponent > 0 and not (derivative and edge.exponent <= 1):
-                continue  # the value has a limit there
-            hit = edge.meets(points)
-            if hit.any():
-                where = name_of(points, hit, first, place)
-                if edge.exponent > 0:
-                    raise FieldError(f"the gradient of {self.formula} is infinite at {where}, on an edge")
-                raise FieldError(f"{self.formula} jumps at {where}, on an edge: it has no single value there")
-        for sheet in self.sheets:
-            if not (derivative or sheet.jump):
-                continue
-            hit = sheet.meets(points)
-            if side is not None:
-                hit &= side == 0
-            if hit.any():
-                what = self.formula if sheet.jump else f"the gradient of {self.formula}"
-                raise FieldError(
-                    f"{what} has two values at {name_of(points, hit, first, place)}: say side=+1 (where the "
-                    f"sheet's normal {sheet.normal} points) or side=-1"
-                )
-        for cut in self.cuts:
-            if place is None:
-                hit = cut.meets(points)
-            else:
-                hit = np.array([cut.meets_exactly(*(working(60).number(c) for c in place))])
-            if side is not None:
-                hit &= side == 0
-            if hit.any():
-                raise FieldError(
-                    f"{self.formula} has two values at {name_of(points, hit, first, place)}, on its branch "
-                    "cut: say side=+1 (left of the cut's direction) or side=-1"
-                )
-        if derivative and self.regions:
-            hit = self.on_interface(points, place)
-            if hit.any():
-                raise FieldError(
-                    f"the gradient of {self.formula} jumps at {name_of(points, hit, first, place)}, on an "
-                    f"interface: say which region is meant, one of {', '.join(self.regions)}"
-                )
-        valid = self._valid(points)
-        if not valid.all():
-            raise FieldError(f"{self.formula} is not defined at {name_of(points, ~valid, first, place)}")
-
-    def _refuse_infinite(self, points: Array, results: Array, *, first: int) -> None:
-        """Raise FieldError at the first point whose result is not finite."""
-        finite = np.isfinite(results)
-        if not finite.all():
-            bad = np.asarray(~finite.reshape(len(points), -1).all(axis=1))
-            raise FieldError(
-                f"{self.formula} is not a finite float64 at {name_of(points, bad, first, None)}: "
-                "the point is singular or too far out"
-            )
 
     # -- algebra and motions: each builds a field of its own family ----------------------------------------
 

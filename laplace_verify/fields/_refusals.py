@@ -1,0 +1,127 @@
+"""Where a field has no value, or no gradient, it says so by name: no plausible number is returned there."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Any
+
+import numpy as np
+
+from laplace_verify.arrays import Array, BoolArray
+from laplace_verify.errors import FieldError
+from laplace_verify.fields._inputs import equals, name_of
+from laplace_verify.fields._precision import working
+
+if TYPE_CHECKING:
+    from laplace_verify.fields.base import Field
+
+CUT_DIGITS = 60  # of a precise point that may lie on a cut
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Place:
+    """Points (n, d) with their sides, the number of the first one, and the exact point if there is one."""
+
+    points: Array
+    side: Array | None
+    first: int | None
+    exact: Any = None
+
+    def name(self, hit: BoolArray) -> str:
+        """Name the first point that is hit."""
+        return name_of(self.points, hit, self.first, self.exact)
+
+    def undecided(self, hit: BoolArray) -> BoolArray:
+        """Return which of the points hit say no side."""
+        return hit if self.side is None else hit & (self.side == 0)
+
+
+def refuse(field: Field, place: Place, *, derivative: bool) -> None:
+    """Raise FieldError at the first point where the field has no value (or no gradient)."""
+    _at_singular_points(field, place, derivative)
+    _on_edges(field, place, derivative)
+    _on_sheets(field, place, derivative)
+    _on_cuts(field, place)
+    if derivative and field.regions:
+        _on_interfaces(field, place)
+    valid = field._valid(place.points)
+    if not valid.all():
+        raise FieldError(f"{field.formula} is not defined at {place.name(~valid)}")
+
+
+def refuse_infinite(field: Field, place: Place, results: Array) -> None:
+    """Raise FieldError at the first point whose result is not finite."""
+    finite = np.isfinite(results)
+    if not finite.all():
+        bad = np.asarray(~finite.reshape(len(place.points), -1).all(axis=1))
+        raise FieldError(
+            f"{field.formula} is not a finite float64 at {place.name(bad)}: "
+            "the point is singular or too far out"
+        )
+
+
+def _at_singular_points(field: Field, place: Place, derivative: bool) -> None:
+    for singularity in field.singularities:
+        hit = equals(place.points, singularity.point, place.exact)
+        if not hit.any():
+            continue
+        where = place.name(hit)
+        if singularity.kind == "jump":
+            raise FieldError(f"{field.formula} jumps at {where}: it has no single value there")
+        if singularity.kind != "power":
+            raise FieldError(f"{field.formula} is infinite at {where}; leave this point out")
+        if derivative and singularity.exponent < 1:
+            raise FieldError(
+                f"the gradient of {field.formula} is infinite at {where}: "
+                f"u ~ r^{singularity.exponent:.4g} there; leave this point out"
+            )
+
+
+def _on_edges(field: Field, place: Place, derivative: bool) -> None:
+    if place.exact is not None:
+        return  # precise values tell by themselves
+    for edge in field.edges:
+        if edge.exponent > 0 and not (derivative and edge.exponent <= 1):
+            continue  # the value has a limit there
+        hit = edge.meets(place.points)
+        if hit.any():
+            where = place.name(hit)
+            if edge.exponent > 0:
+                raise FieldError(f"the gradient of {field.formula} is infinite at {where}, on an edge")
+            raise FieldError(f"{field.formula} jumps at {where}, on an edge: it has no single value there")
+
+
+def _on_sheets(field: Field, place: Place, derivative: bool) -> None:
+    for sheet in field.sheets:
+        if not (derivative or sheet.jump):
+            continue
+        hit = place.undecided(sheet.meets(place.points))
+        if hit.any():
+            what = field.formula if sheet.jump else f"the gradient of {field.formula}"
+            raise FieldError(
+                f"{what} has two values at {place.name(hit)}: say side=+1 (where the "
+                f"sheet's normal {sheet.normal} points) or side=-1"
+            )
+
+
+def _on_cuts(field: Field, place: Place) -> None:
+    for cut in field.cuts:
+        if place.exact is None:
+            meets = cut.meets(place.points)
+        else:
+            meets = np.array([cut.meets_exactly(*(working(CUT_DIGITS).number(c) for c in place.exact))])
+        hit = place.undecided(meets)
+        if hit.any():
+            raise FieldError(
+                f"{field.formula} has two values at {place.name(hit)}, on its branch "
+                "cut: say side=+1 (left of the cut's direction) or side=-1"
+            )
+
+
+def _on_interfaces(field: Field, place: Place) -> None:
+    hit = field.on_interface(place.points, place.exact)
+    if hit.any():
+        raise FieldError(
+            f"the gradient of {field.formula} jumps at {place.name(hit)}, on an "
+            f"interface: say which region is meant, one of {', '.join(field.regions)}"
+        )
