@@ -26,6 +26,9 @@ SOUND = {"five": five_point, "p1": p1_element, "chebyshev": chebyshev, "sources"
 
 # which laws catch which fault, and why the others cannot
 CAUGHT = {
+    # the problems drawn are of one material, in Cartesian coordinates
+    "arithmetic mean of conductivities": (),
+    "radius of the outer node": (),
     # one-sided differences meet the zero flux of a constant and the constant flux of an affine field
     "first-order flux": (),
     "flux sign": ("affine fields reproduced",),  # data of a constant are zero, whatever their sign
@@ -41,6 +44,10 @@ def violation_of(check, solver):
     space = {}
     exec(check.example, space)  # our own text
     return space["violation"](solver)
+
+
+def test_every_fault_has_its_line():
+    assert set(CAUGHT) == set(FAULTS)
 
 
 def test_laws_come_in_a_fixed_order():
