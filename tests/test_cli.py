@@ -205,3 +205,24 @@ def test_the_value_outside_the_shape_comes_with_a_note(capsys):
     assert "outside the shape" in capsys.readouterr().err
     assert main(["value", "plate-saddle", "1/2", "0.25"]) == 0
     assert capsys.readouterr().err == ""
+
+
+def test_a_grid_study_is_printed_with_its_index(tmp_path, capsys):
+    # Celik et al. 2008, J. Fluids Eng. 130, 078001, table 1, first column: p = 1.53, GCI = 2.2 %.
+    path = tmp_path / "flow.csv"
+    path.write_text("N,discharge\n18000,6.063\n8000,5.972\n4500,5.863\n", encoding="utf-8")
+    assert main(["gci", str(path)]) == 0
+    printed = capsys.readouterr().out
+    assert re.search(r"^p +1\.53", printed, re.M)
+    assert re.search(r"^GCI +2\.175 %", printed, re.M)
+
+
+def test_a_grid_study_that_diverges_is_status_1_and_a_bad_file_status_2(tmp_path, capsys):
+    path = tmp_path / "flow.csv"
+    path.write_text("h,q\n1,1\n2,1.2\n4,1.3\n", encoding="utf-8")
+    assert main(["gci", str(path), "--format", "markdown"]) == 1
+    assert "divergent" in capsys.readouterr().out
+    path.write_text("h,q\n1,1\n2,1.2\n", encoding="utf-8")
+    assert main(["gci", str(path)]) == 2
+    assert "order must be given with two grids" in capsys.readouterr().err
+    assert main(["gci", str(path), "--order", "2"]) == 0
