@@ -7,6 +7,8 @@ from typing import TYPE_CHECKING
 
 from laplace_verify.measure.expected import Expectation, expected_order
 from laplace_verify.measure.functionals import probes
+from laplace_verify.measure.smoothness import Method, Smoothness
+from laplace_verify.problems.regularity import complement_exponent
 
 if TYPE_CHECKING:
     from laplace_verify.problems import Case
@@ -39,8 +41,12 @@ def expectations(solver: Adapter, case: Case) -> dict[str, Expectation]:
     The level of a pure Neumann answer decides only if the solver declares that it fixes the constant; its
     order is then that of the L2 error.
     """
-    kind, formal = solver.kind, solver.formal_order
-    found = {norm: expected_order(kind, norm, formal, case.regularity) for norm in norms_of(case)}
+    method = Method(
+        kind=solver.kind, formal=solver.formal_order, clearance=solver.clearance,
+        formulation=solver.formulation, discretisation=solver.discretisation,
+    )  # fmt: skip
+    smoothness = smoothness_of(case)
+    found = {norm: expected_order(method, norm, smoothness) for norm in norms_of(case)}
     if case.problem.coordinates != "cartesian":
         found = {norm: replace(e, basis=f"{e.basis}; {IN_SPACE}") for norm, e in found.items()}
     if found["H1-semi"].decides and isinstance(case.problem.conductivity, float):
@@ -55,6 +61,17 @@ def expectations(solver: Adapter, case: Case) -> dict[str, Expectation]:
     if LEVEL in found:
         found[LEVEL] = _level(found["L2"], fixes=solver.fixes_constant)
     return found
+
+
+def smoothness_of(case: Case) -> Smoothness:
+    """Return the exponents of a case, those of the other side of its boundary too."""
+    regularity, problem = case.regularity, case.problem
+    return Smoothness(
+        solution=regularity.solution,
+        domain=regularity.domain,
+        complement=complement_exponent(problem.shape, {piece.name: piece.kind for piece in problem.pieces}),
+        interface=regularity.interface,
+    )
 
 
 def _level(volume: Expectation, *, fixes: bool) -> Expectation:

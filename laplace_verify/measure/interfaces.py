@@ -22,7 +22,7 @@ interfaces only what holds without alignment decides.
 
 from __future__ import annotations
 
-from laplace_verify.measure.results import Rate
+from laplace_verify.measure.smoothness import Promise
 
 __all__ = ["at_interface"]
 
@@ -38,34 +38,33 @@ CUT_OTHER = "interface off the axes: the rate hangs on whether the grid follows 
 CUT_RATES = {"L2": 1.0, "H1-semi": 0.5, "energy": 0.5}
 
 
-def at_interface(
-    kind: str, norm: str, expected: Rate, basis: str, interface: str, *, decides: bool
-) -> tuple[Rate, bool, str]:
-    """Return rate, decides, basis with an interface, from what holds without.
+def at_interface(kind: str, norm: str, promise: Promise, interface: str) -> Promise:
+    """Return what is promised with an interface, from what holds without.
 
     Parameters
     ----------
     kind, norm
         Kind of the method, and the norm.
-    expected, decides, basis
+    promise
         What holds for a solution of the same exponents in a homogeneous shape.
     interface
         "aligned", "oblique" or "curved".
 
     Examples
     --------
-    >>> at_interface("finite element", "L2", 2.0, "", "curved", decides=True)[:2]
+    >>> at_interface("finite element", "L2", Promise(2.0, True, ""), "curved")[:2]
     (1.0, True)
-    >>> at_interface("finite difference", "max", 2.0, "", "aligned", decides=True)[:2]
+    >>> at_interface("finite difference", "max", Promise(2.0, True, ""), "aligned")[:2]
     (2.0, True)
     """
+    expected, decides, basis = promise
     if kind == "stochastic":
-        return expected, decides, basis
+        return promise
     if interface == "aligned":
-        return expected, decides, ALIGNED.format(basis=basis)
+        return Promise(expected, decides, ALIGNED.format(basis=basis))
     if kind == "finite element" and norm in CUT_RATES and decides and isinstance(expected, int | float):
         rate = min(float(expected), CUT_RATES[norm])
-        return rate, True, CUT_ELEMENTS.format(rate=rate, norm=norm)
+        return Promise(rate, True, CUT_ELEMENTS.format(rate=rate, norm=norm))
     if norm == "L2" and decides:
-        return "decrease", True, CUT_GRID
-    return None, False, CUT_OTHER
+        return Promise("decrease", True, CUT_GRID)
+    return Promise(None, False, CUT_OTHER)

@@ -23,11 +23,12 @@ import math
 from collections.abc import Mapping, Sequence
 from dataclasses import replace
 
-from laplace_verify.measure.expected import Expectation, is_functional, smallest_loss
+from laplace_verify.measure.expected import Expectation, smallest_loss
 from laplace_verify.measure.orders import OrderFit, fit_order, noise_level, pair_orders
 from laplace_verify.measure.rates import Finding, judge_decrease, judge_exponential, stagnation
 from laplace_verify.measure.results import Level, Order
 from laplace_verify.measure.series import MINIMUM_LEVELS, TOO_COARSE, Series, series_of
+from laplace_verify.measure.smoothness import is_functional
 from laplace_verify.measure.verdict import Verdict
 
 __all__ = ["combine", "judge", "judge_norm"]

@@ -5,8 +5,8 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 
-from laplace_verify.measure.expected import is_functional
 from laplace_verify.measure.results import Level
+from laplace_verify.measure.smoothness import is_functional
 
 __all__ = ["oddities", "sign_changes"]
 

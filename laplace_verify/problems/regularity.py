@@ -35,10 +35,11 @@ from laplace_verify.problems.regions import InterfaceKind, interface_kind, regio
 from laplace_verify.problems.singular_checks import edge_points, on_shape
 from laplace_verify.problems.transmission import interface_exponent
 
-__all__ = ["Regularity", "derive"]
+__all__ = ["Regularity", "complement_exponent", "derive"]
 
 SAMPLES = {1: 1, 2: 64, 3: 144}  # points of a piece when gaps between pieces are measured
 ON_EDGE = 5  # points that stand for an edge along which data jump
+OPEN_LEAST = 1e-9  # an opening of a slit's other side
 COINCIDENT = 1e-9  # of the shape's size: the lips of a slit have no gap
 
 
@@ -142,6 +143,34 @@ def junction_exponent(
     if first == second and abs(opening - math.pi) < 1e-9:
         return math.inf
     return math.pi / opening
+
+
+def complement_exponent(shape: Shape, kinds: Mapping[str, PieceKind]) -> float | None:
+    """Return the smallest exponent of the corners seen from the other side of a plane boundary.
+
+    There the opening is 2 pi less the interior angle. Infinite without corners; None for corners in space and
+    on an axis, for which no theorem is used. The lips of a slit (2 pi) have nothing on their other side.
+
+    >>> from laplace_verify.geometry import Rectangle
+    >>> square = Rectangle((0, 0), (1, 1))
+    >>> complement_exponent(square, dict.fromkeys(("left", "right", "bottom", "top"), "dirichlet"))
+    0.6666666666666666
+    """
+    if shape.dim == 1 or not shape.junctions:
+        return math.inf
+    if shape.dim == 3 or AXIS in kinds.values():
+        return None
+    least = math.inf
+    for junction in shape.junctions:
+        first, second = (kinds[name] for name in junction.pieces)
+        opening = 2 * math.pi - junction.opening
+        if opening < OPEN_LEAST:
+            continue
+        if (first == "dirichlet") != (second == "dirichlet"):
+            least = min(least, math.pi / (2 * opening))
+        elif abs(opening - math.pi) > 1e-9:
+            least = min(least, math.pi / opening)
+    return least
 
 
 def seen_opening(shape: Shape, junction: Junction, tensor: Array) -> float:

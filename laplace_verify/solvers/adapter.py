@@ -76,6 +76,7 @@ class Adapter:
     fixes_constant: bool
     clearance: float
     formulation: str | None
+    discretisation: str | None
     sizes: tuple[int, ...] | None
     claims: tuple[str, ...]
     known: Mapping[str, str]
@@ -184,6 +185,7 @@ class Declaration(TypedDict, total=False):
     fixes_constant: bool
     clearance: float
     formulation: str | None
+    discretisation: str | None
     sizes: Sequence[int] | None
     claims: Iterable[str]
     known: Mapping[str, str] | None
@@ -219,6 +221,7 @@ def adapt(
     fixes_constant : whether pure Neumann answers honour ``problem.constant``, so that their level is judged
     clearance : points nearer to the boundary than this (relative to the shape's size) do not decide
     formulation : "direct" or "indirect", for boundary elements
+    discretisation : "collocation" or "Galerkin", for boundary elements
     sizes : resolution numbers it should be studied at, increasing, three or more
     claims : statements about the solver to be shown in its report
     known : case id and the reason why a failure there is known

@@ -58,6 +58,7 @@ CONDITIONS: Final = ("dirichlet", "neumann", "robin", "periodic")
 CONDUCTIVITIES: Final = ("scalar", "tensor", "regions")
 COORDINATES: Final = ("cartesian", "axisymmetric", "radial-cylinder", "radial-sphere")
 FORMULATIONS: Final = ("direct", "indirect")
+DISCRETISATIONS: Final = ("collocation", "Galerkin")
 NORMS: Final = ("max", "L1", "L2", "H1-semi", "energy")
 PREFIXES: Final = ("trace", "flux", "fluxdensity", "quantity", "probe")
 
@@ -65,7 +66,7 @@ OFFERED: Final = ("wanted", "seed")  # keywords that a study passes to every sol
 KEYWORDS: Final = (
     "name", "kind", "order", "dims", "shapes", "conditions", "conductivity", "coordinates", "unbounded",
     "error_floor", "reproduces_degree", "discrete_laws", "fixes_constant", "clearance", "formulation",
-    "sizes", "claims", "known", "expected",
+    "discretisation", "sizes", "claims", "known", "expected",
 )  # fmt: skip
 
 _VALUE_NORMS = ("max", "L1", "L2")
@@ -204,7 +205,8 @@ def check_declaration(given: Mapping[str, Any]) -> dict[str, Any]:
         "discrete_laws": frozenset(_texts("discrete_laws", get("discrete_laws", ()))),
         "fixes_constant": _flag("fixes_constant", get("fixes_constant", False)),
         "clearance": _number("clearance", get("clearance"), positive=False) or 0.0,
-        "formulation": _formulation(get("formulation"), kind),
+        "formulation": _of_boundary("formulation", get("formulation"), kind, FORMULATIONS),
+        "discretisation": _of_boundary("discretisation", get("discretisation"), kind, DISCRETISATIONS),
         "sizes": _sizes(get("sizes")),
         "claims": tuple(_texts("claims", get("claims", ()))),
         "known": {
@@ -273,13 +275,13 @@ def _whole(argument: str, given: object) -> int | None:
     return int(given)
 
 
-def _formulation(given: object, kind: str) -> str | None:
-    """Check the formulation, which only boundary elements have."""
+def _of_boundary(argument: str, given: object, kind: str, known: Collection[str]) -> str | None:
+    """Check what only boundary elements have."""
     if given is None:
         return None
     if kind != "boundary element":
-        raise AdapterError(f'formulation belongs to kind="boundary element", but kind is {kind!r}')
-    return one_of("formulation", given, FORMULATIONS)
+        raise AdapterError(f'{argument} belongs to kind="boundary element", but kind is {kind!r}')
+    return one_of(argument, given, known)
 
 
 def _mapping(argument: str, given: object) -> dict[str, Any]:

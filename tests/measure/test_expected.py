@@ -1,21 +1,20 @@
 """The expected order against published facts."""
 
 import math
-from types import SimpleNamespace
 
 import pytest
 
+import laplace_verify as lv
+from laplace_verify.measure.criteria import expectations, smoothness_of
 from laplace_verify.measure.expected import expected_order, smallest_loss
+from laplace_verify.measure.smoothness import Method, Smoothness
 
 INF = math.inf
 
 
-def regularity(solution, domain):
-    return SimpleNamespace(solution=solution, domain=domain)
-
-
-def rate(kind, norm, order, s, d):
-    found = expected_order(kind, norm, lambda name: order, regularity(s, d))
+def rate(kind, norm, order, s, d, complement=None, **declared):
+    method = Method(kind=kind, formal=lambda name: order, **declared)
+    found = expected_order(method, norm, Smoothness(solution=s, domain=d, complement=complement))
     return found.expected, found.decides
 
 
@@ -72,6 +71,81 @@ def test_finite_elements(order, norm, s, d, expected, decides):
     assert decisive is decides
 
 
+@pytest.mark.parametrize(("p", "expected"), [(2, 1.75), (4, 1.75), (6, 1.75)])
+def test_a_log_term_at_a_corner_caps_the_maximum_at_two_whatever_the_degree(p, expected):
+    # u = r^2 log r is what smooth-looking data leave at a right angle: s = 2, and a logarithm comes with it.
+    assert rate("finite difference", "max", p, 2, 2) == (expected, True)
+    assert rate("finite element", "max", p, 2, 2) == (expected, False)
+    assert rate("finite difference", "max", p, 2.5, 2)[0] == min(p, 2.5)  # a power has no logarithm
+
+
+# Five-point scheme away from the boundary: twice the corner exponent (Bramble, Hubbard & Zlamal 1968), order
+# 2 beside a jump of the data (Bramble, Hubbard & Thomee 1969).
+@pytest.mark.parametrize(
+    ("kind", "norm", "order", "s", "d", "expected", "decides"),
+    [
+        ("finite difference", "max", 2, 2 / 3, 2 / 3, 4 / 3, True),
+        ("finite difference", "max", 2, 1 / 2, 1 / 2, 1, True),
+        ("finite difference", "max", 2, 0, 2, 2, True),
+        ("finite difference", "L2", 2, 0, 2, 2, True),
+        ("finite volume", "max", 2, 2 / 3, 2 / 3, 4 / 3, False),
+        ("finite element", "L2", 3, 2 / 3, 2 / 3, 4 / 3, True),
+        ("finite element", "L2", 3, 2, 2, 3, True),
+    ],
+)
+def test_points_at_a_fixed_distance_feel_the_pollution_only(kind, norm, order, s, d, expected, decides):
+    found, decisive = rate(kind, norm, order, s, d, clearance=0.1)
+    assert found == pytest.approx(expected, rel=1e-12)
+    assert decisive is decides
+
+
+# Square, smooth solution: the flux is smooth side by side, so a direct method keeps its order; an indirect
+# one sees the outer corners of 270 degrees, exponent 2/3, in density and dual density.
+@pytest.mark.parametrize(
+    ("declared", "norm", "s", "d", "c", "expected", "decides"),
+    [
+        ({}, "L2", INF, INF, INF, 3, True),
+        ({}, "max", INF, INF, INF, 3, False),
+        ({"clearance": 0.1}, "max", INF, INF, INF, 3, True),
+        ({"formulation": "direct"}, "L2", INF, 2, 2 / 3, 3, True),
+        ({"formulation": "indirect"}, "L2", INF, 2, 2 / 3, "decrease", True),
+        ({"formulation": "indirect", "discretisation": "collocation", "clearance": 0.1}, "max", INF, 2, 2 / 3,
+         "decrease", True),
+        ({"formulation": "indirect", "discretisation": "Galerkin", "clearance": 0.1}, "max", INF, 2, 2 / 3,
+         4 / 3, True),
+        ({"formulation": "direct", "discretisation": "Galerkin", "clearance": 0.1}, "L2", 2 / 3, 2 / 3, 2,
+         4 / 3, True),
+        ({"formulation": "direct", "discretisation": "collocation"}, "L2", 2 / 3, 2 / 3, 2, "decrease", True),
+        ({"formulation": "direct", "discretisation": "Galerkin"}, "L2", 2 / 3, 2 / 3, 2, 4 / 3, False),
+        ({"clearance": 0.1}, "trace:top", INF, INF, INF, None, False),
+        ({"formulation": "direct", "discretisation": "Galerkin"}, "L2", 2 / 3, 2 / 3, None, "decrease", True),
+    ],
+)  # fmt: skip
+def test_boundary_elements(declared, norm, s, d, c, expected, decides):
+    found, decisive = rate("boundary element", norm, 3, s, d, c, **declared)
+    assert found == (pytest.approx(expected, rel=1e-12) if isinstance(expected, float | int) else expected)
+    assert decisive is decides
+
+
+def test_the_other_side_of_the_boundary_has_the_complementary_corners():
+    assert smoothness_of(lv.catalogue["plate-saddle"]).complement == pytest.approx(2 / 3, rel=1e-12)
+    assert smoothness_of(lv.catalogue["l-shape-corner"]).complement == pytest.approx(2 / 3, rel=1e-12)
+    assert smoothness_of(lv.catalogue["disc-fourier"]).complement == INF
+    assert smoothness_of(lv.catalogue["box-solid"]).complement is None
+
+
+def test_an_indirect_and_a_direct_method_are_judged_apart_on_the_same_case():
+    def adapter(formulation):
+        return lv.adapt(
+            lambda problem, n: None, name="b", kind="boundary element", order=3, formulation=formulation,
+            discretisation="Galerkin", clearance=0.1,
+        )  # fmt: skip
+
+    plate = lv.catalogue["plate-saddle"]
+    assert expectations(adapter("direct"), plate)["max"].expected == 3
+    assert expectations(adapter("indirect"), plate)["max"].expected == pytest.approx(4 / 3)
+
+
 def test_finite_volumes_decide_in_integral_norms_only():
     assert rate("finite volume", "L2", 2, INF, 2) == (2, True)
     assert rate("finite volume", "max", 2, INF, 2) == (2, False)
@@ -98,7 +172,8 @@ def test_every_rate_names_its_basis():
     ):
         for norm in ("max", "L1", "L2", "H1-semi", "flux:top"):
             for s in (INF, 2 / 3, 0):
-                assert expected_order(kind, norm, lambda name: 2, regularity(s, 2)).basis
+                method = Method(kind=kind, formal=lambda name: 2)
+                assert expected_order(method, norm, Smoothness(solution=s, domain=2)).basis
 
 
 def test_the_smallest_loss_is_half_the_order_between_a_half_and_one():

@@ -1,7 +1,6 @@
 """Norms and expected orders with interfaces."""
 
 import math
-from types import SimpleNamespace
 
 import numpy as np
 import pytest
@@ -9,6 +8,7 @@ import pytest
 import laplace_verify as lv
 from laplace_verify import fields
 from laplace_verify.measure.expected import expected_order
+from laplace_verify.measure.smoothness import Method, Smoothness
 
 PLATE = lv.Rectangle((0, 0), (1.6, 0.9))
 PIPE = lv.inclusion(("7/10", "2/5"), "1/4", {"pipe": 4.5, "soil": 0.5})
@@ -17,7 +17,11 @@ AROUND = fields.by_region(PIPE, {"pipe": fields.affine(("1/5", 0), "14/25"), "so
 
 
 def smooth(interface):
-    return SimpleNamespace(solution=math.inf, domain=1.0, interface=interface)
+    return Smoothness(solution=math.inf, domain=1.0, interface=interface)
+
+
+def second_order(kind):
+    return Method(kind=kind, formal=lambda _: 2)
 
 
 @pytest.mark.parametrize(
@@ -35,13 +39,13 @@ def smooth(interface):
     ],
 )
 def test_what_decides_at_an_interface(kind, norm, interface, expected, decides) -> None:
-    found = expected_order(kind, norm, lambda _: 2, smooth(interface))
+    found = expected_order(second_order(kind), norm, smooth(interface))
     assert (found.expected, found.decides) == (expected, decides)
     assert found.basis
 
 
 def test_without_an_interface_nothing_changes() -> None:
-    assert expected_order("finite element", "L2", lambda _: 2, smooth("")).expected == 2.0
+    assert expected_order(second_order("finite element"), "L2", smooth("")).expected == 2.0
 
 
 def lifted(slope):

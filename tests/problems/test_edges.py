@@ -8,6 +8,7 @@ from laplace_verify import fields
 from laplace_verify.errors import ProblemError
 from laplace_verify.measure.exact import Exact
 from laplace_verify.measure.expected import expected_order
+from laplace_verify.measure.smoothness import Method, Smoothness
 from laplace_verify.problems import flux_through
 
 
@@ -75,7 +76,8 @@ def test_measure_leaves_the_edge_out(halves):
 
 
 def test_no_rate_is_expected_in_the_maximum_norm_and_one_in_l2(lid):
-    formal = {"max": 2.0, "L2": 2.0}.get
-    assert not expected_order("finite difference", "max", formal, lid.regularity).decides
-    found = expected_order("finite difference", "L2", formal, lid.regularity)
+    method = Method(kind="finite difference", formal={"max": 2.0, "L2": 2.0}.get)
+    smoothness = Smoothness(solution=lid.regularity.solution, domain=lid.regularity.domain)
+    assert not expected_order(method, "max", smoothness).decides
+    found = expected_order(method, "L2", smoothness)
     assert (found.expected, found.decides) == (1.0, True)

@@ -72,6 +72,10 @@ def test_what_is_left_out_means_any_bounded_cartesian_scalar_problem():
             {"kind": "boundary element", "formulation": "dirct"},
             r"formulation must be one of .* did you mean 'direct'",
         ),
+        (
+            {"discretisation": "Galerkin"},
+            r'discretisation belongs to kind="boundary element", but kind is \'finite element\'',
+        ),
         ({"sizes": (8, 16)}, r"sizes must be three or more"),
         ({"sizes": (8, 32, 16)}, r"sizes must be increasing whole numbers"),
         ({"sizes": (8, 8, 16)}, r"sizes must be increasing whole numbers"),
