@@ -28,6 +28,7 @@ from laplace_verify.fields.poisson_disc import fourier, poisson_disc
 from laplace_verify.fields.polynomials import polynomial
 from laplace_verify.fields.radial import radial
 from laplace_verify.fields.rectangle_series import rectangle_series
+from laplace_verify.fields.seepage import dam_seepage
 from laplace_verify.fields.sheets import Sheet
 from laplace_verify.fields.singular import Cut, Enclosure, Singularity
 from laplace_verify.fields.solids import solid
@@ -65,6 +66,7 @@ __all__ = [
     "coefficient_rule",
     "corner_powers",
     "cylinder_faces",
+    "dam_seepage",
     "dipole",
     "elliptic_multipole",
     "exp_trig",
