@@ -61,13 +61,16 @@ if TYPE_CHECKING:
     from laplace_verify.problems import Quantity as Quantity
     from laplace_verify.problems import Regularity as Regularity
     from laplace_verify.problems import dirichlet as dirichlet
+    from laplace_verify.problems import discharge_across as discharge_across
     from laplace_verify.problems import energy_of_solution as energy_of_solution
+    from laplace_verify.problems import exit_gradient_at as exit_gradient_at
     from laplace_verify.problems import flux_through as flux_through
     from laplace_verify.problems import inclusion as inclusion
     from laplace_verify.problems import layers as layers
     from laplace_verify.problems import neumann as neumann
     from laplace_verify.problems import robin as robin
     from laplace_verify.problems import sectors as sectors
+    from laplace_verify.problems import uplift_on as uplift_on
     from laplace_verify.problems import value_at as value_at
     from laplace_verify.problems.case import case as case
     from laplace_verify.problems.problem import problem as problem
@@ -95,8 +98,8 @@ _ROOMS = {
     "measure": "Study Verdict grid_convergence study",
     "principles": "Check check_principle",
     "problems": (
-        "Case Problem Quantity Regularity case dirichlet energy_of_solution flux_through inclusion layers "
-        "neumann problem robin sectors value_at"
+        "Case Problem Quantity Regularity case dirichlet discharge_across energy_of_solution "
+        "exit_gradient_at flux_through inclusion layers neumann problem robin sectors uplift_on value_at"
     ),
     "pytest_plugin": "order_tests principle_tests",
     "report": "plot write_report",

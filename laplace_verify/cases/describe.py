@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from textwrap import TextWrapper
+from typing import Any
 
 from tabulate import tabulate
 
@@ -132,5 +133,16 @@ def _where(quantity: Quantity) -> str:
         return f"integral of n . K grad u over {quantity.where}"
     if quantity.kind == "energy":
         return "integral of grad u . K grad u"
-    point = ", ".join(f"{c:.12g}" for c in quantity.where or ())
-    return f"u({point})"
+    if quantity.kind == "uplift":
+        return f"integral of u over {quantity.where}"
+    if quantity.kind == "exit gradient":
+        return f"-n . grad u on {quantity.where} at ({_coordinates(quantity.place)})"
+    if quantity.kind == "discharge" and isinstance(quantity.where, tuple):
+        start, stop = _coordinates(quantity.where[:2]), _coordinates(quantity.where[2:])
+        return f"-K grad u across the section from ({start}) to ({stop}), from left to right"
+    return f"u({_coordinates(quantity.where)})"
+
+
+def _coordinates(point: Any) -> str:
+    """Return 0.1, 2."""
+    return ", ".join(f"{c:.12g}" for c in point or ())

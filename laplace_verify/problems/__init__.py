@@ -16,6 +16,7 @@ from laplace_verify.problems.random_cases import random_case
 from laplace_verify.problems.regions import Interface, Region
 from laplace_verify.problems.regularity import Regularity
 from laplace_verify.problems.schema import case_from_json, case_to_json
+from laplace_verify.problems.seepage_quantities import discharge_across, exit_gradient_at, uplift_on
 from laplace_verify.problems.stored import StoredValue
 from laplace_verify.problems.transmission import transmission_exponent
 from laplace_verify.problems.units import Units
@@ -39,7 +40,9 @@ __all__ = [
     "case_from_json",
     "case_to_json",
     "dirichlet",
+    "discharge_across",
     "energy_of_solution",
+    "exit_gradient_at",
     "flux_through",
     "inclusion",
     "layers",
@@ -49,5 +52,6 @@ __all__ = [
     "robin",
     "sectors",
     "transmission_exponent",
+    "uplift_on",
     "value_at",
 ]

@@ -256,9 +256,9 @@ def check_infinite_quantities(
     infinite = [piece.name for piece in shape.pieces if isinstance(piece, Plane)]
     for name, spec in specs.items():
         kind = getattr(spec, "kind", None)
-        if kind == "flux" and spec.where in infinite:
+        if kind in ("flux", "uplift") and spec.where in infinite:
             raise ProblemError(
-                f"quantity {name!r}: piece {spec.where!r} is unbounded; no flux is taken over it"
+                f"quantity {name!r}: piece {spec.where!r} is unbounded; no {kind} is taken over it"
             )
         bodies_carry = at_infinity == "decay" or (at_infinity == "bounded" and shape.dim == 2)
         if kind == "energy" and (infinite or not bodies_carry):

@@ -4,6 +4,12 @@
     value    u at a point
     energy   integral over the shape of grad u . K grad u dx = integral over the boundary of u n . K grad u ds
 
+and, in the words of seepage, where u is the head (`seepage_quantities` has what asks for them):
+
+    uplift          integral over a piece of u ds: times the unit weight of water the force of the head
+    discharge       - integral of n . K grad u ds over a straight section, n to the right of start -> stop
+    exit gradient   - n . grad u at a point of a piece, positive where water leaves
+
 With coordinates (r, z) or r the integrals are those of space, with the weight `coordinates.metric`; in
 "radial-cylinder" they are per unit length of the cylinder.
 
@@ -33,6 +39,7 @@ from laplace_verify.problems.limits import near
 from laplace_verify.problems.materials import Materials
 from laplace_verify.problems.regions import parts_of
 from laplace_verify.problems.regularity import Regularity
+from laplace_verify.problems.sections import exit_gradient, section
 
 __all__ = [
     "CLOSED_FORM",
@@ -40,13 +47,14 @@ __all__ = [
     "QuantityKind",
     "QuantitySpec",
     "Where",
+    "as_place",
     "energy_of_solution",
     "evaluate",
     "flux_through",
     "value_at",
 ]
 
-QuantityKind: TypeAlias = Literal["flux", "value", "energy"]
+QuantityKind: TypeAlias = Literal["flux", "value", "energy", "uplift", "discharge", "exit gradient"]
 Where: TypeAlias = str | tuple[float, ...] | None
 Exact: TypeAlias = float | int | str | Fraction
 
@@ -66,9 +74,12 @@ class Quantity:
     unit
         "" if dimensionless.
     kind
-        "flux", "value" or "energy", see the table of the module.
+        "flux", "value", "energy", "uplift", "discharge" or "exit gradient", see the tables of the module.
     where
-        The piece of a flux, the point of a value, None for the energy.
+        The piece of a flux, uplift or exit gradient, the point of a value, start and stop of the section of a
+        discharge as (x, y, x, y), None for the energy.
+    place
+        The point of an exit gradient, else None.
     """
 
     value: float
@@ -76,6 +87,7 @@ class Quantity:
     radius: float
     kind: QuantityKind
     where: Where
+    place: tuple[float, ...] | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -86,6 +98,7 @@ class QuantitySpec:
     where: Where
     unit: str = ""
     exact: Exact | None = None
+    place: tuple[float, ...] | None = None
 
 
 def flux_through(piece: str, *, unit: str = "", exact: Exact | None = None) -> QuantitySpec:
@@ -109,11 +122,15 @@ def value_at(point: float | Sequence[float], *, unit: str = "", exact: Exact | N
     >>> value_at((0.5, 0.25)).where
     (0.5, 0.25)
     """
+    return QuantitySpec(kind="value", where=as_place("value_at", point), unit=unit, exact=exact)
+
+
+def as_place(asked: str, point: float | Sequence[float]) -> tuple[float, ...]:
+    """Return the coordinates of a point, as floats."""
     try:
-        where = tuple(float(c) for c in np.atleast_1d(np.asarray(point, dtype=np.float64)))
+        return tuple(float(c) for c in np.atleast_1d(np.asarray(point, dtype=np.float64)))
     except (TypeError, ValueError) as cause:
-        raise ProblemError(f"value_at needs the coordinates of a point, got {point!r}") from cause
-    return QuantitySpec(kind="value", where=where, unit=unit, exact=exact)
+        raise ProblemError(f"{asked} needs the coordinates of a point, got {point!r}") from cause
 
 
 def energy_of_solution(*, unit: str = "", exact: Exact | None = None) -> QuantitySpec:
@@ -156,6 +173,9 @@ def _evaluated(
         raise ProblemError(f"quantity {name!r} must be flux_through(...) or value_at(...), got {spec!r}")
     if spec.kind == "value":
         value, radius, scale = _value(name, spec, shape, field)
+    elif spec.kind == "exit gradient":
+        piece, place = _named_piece(name, spec, shape), spec.place or ()
+        value, radius, scale = exit_gradient(name, piece, place, field, shape.size)
     else:
         value, radius, scale = _integral(name, spec, shape, field, tensor, regularity, coordinates)
     if spec.exact is not None:
@@ -167,7 +187,9 @@ def _evaluated(
         value, radius = exact, 4 * EPS * abs(exact)
     else:
         value, radius = _rounded(value, radius)
-    return Quantity(value=value, unit=spec.unit, radius=radius, kind=spec.kind, where=spec.where)
+    return Quantity(
+        value=value, unit=spec.unit, radius=radius, kind=spec.kind, where=spec.where, place=spec.place
+    )
 
 
 def _rounded(value: float, radius: float) -> tuple[float, float]:
@@ -212,11 +234,10 @@ def _integral(
     coordinates: Coordinates,
 ) -> tuple[float, float, float]:
     """Return a boundary integral, its radius, and the integral of the absolute value."""
-    if spec.kind == "flux":
-        if spec.where not in shape.pieces.names:
-            known = nearest_names(str(spec.where), shape.pieces.names)
-            raise ProblemError(f"quantity {name!r}: no piece is named {spec.where!r}; {known}")
-        pieces = [shape.pieces[str(spec.where)]]
+    if spec.kind in ("flux", "uplift"):
+        pieces = [_named_piece(name, spec, shape)]
+    elif spec.kind == "discharge":
+        pieces = [section(name, spec.where, shape)]
     else:
         pieces = [piece for piece in shape.pieces if piece.name not in axis_names(shape, coordinates)]
     if isinstance(tensor, Materials):
@@ -234,6 +255,14 @@ def _integral(
     return value, radius, total
 
 
+def _named_piece(name: str, spec: QuantitySpec, shape: Shape) -> Boundary:
+    """Return the piece that a quantity belongs to."""
+    if spec.where not in shape.pieces.names:
+        known = nearest_names(str(spec.where), shape.pieces.names)
+        raise ProblemError(f"quantity {name!r}: no piece is named {spec.where!r}; {known}")
+    return shape.pieces[str(spec.where)]
+
+
 def _quadrature(
     kind: str,
     piece: Boundary,
@@ -248,7 +277,7 @@ def _quadrature(
     points, _, weights = piece.quadrature(order, singular=regularity.singular_points, cell=cell)
     weights = weights * metric(coordinates, points)
     value, flux = seen.densities(points)
-    density = value * flux if kind == "energy" else flux
+    density = {"energy": value * flux, "uplift": value, "discharge": -flux}.get(kind, flux)
     return math.fsum(weights * density), math.fsum(weights * np.abs(density))
 
 
@@ -264,11 +293,13 @@ def _spread(piece: Boundary, field: Field) -> float:
 
 def _hidden(name: str, kind: str, piece: Boundary, seen: BoundaryField, field: Field, size: float) -> float:
     """Return how much of an integral the innermost panels at singular points may hide."""
+    if kind == "uplift":
+        return 0.0  # u is bounded, and a panel is 1e-13 of the piece
     hidden = 0.0
     for edge in field.edges:
         along = edge.sample(5)
         if edge.exponent <= 0.0 and piece.contains(along).any():
-            what = "flux through" if kind == "flux" else "energy at"
+            what = "energy at" if kind == "energy" else f"{kind} through"
             raise ProblemError(
                 f"quantity {name!r}: the {what} piece {piece.name!r} is infinite, because boundary data "
                 f"jump along its edge through {tuple(along[piece.contains(along)][0].tolist())}"
@@ -280,7 +311,7 @@ def _hidden(name: str, kind: str, piece: Boundary, seen: BoundaryField, field: F
         if seen.flux_limit(singularity) is not None:
             continue
         if singularity.exponent <= 0.0:
-            what = "flux through" if kind == "flux" else "energy at"
+            what = "energy at" if kind == "energy" else f"{kind} through"
             raise ProblemError(
                 f"quantity {name!r}: the {what} piece {piece.name!r} is infinite, because boundary data "
                 f"jump at "

@@ -1,7 +1,8 @@
 """The dimensional twin of a dimensionless problem.
 
 With lengths in L, values in U and conductivity in k: x = L x', u = U u', K = k K'. Then fluxes n . K grad u
-scale by k U / L, Robin's alpha by k / L, integrals of the flux by k U L^(d-2), the energy by k U^2 L^(d-2).
+scale by k U / L, Robin's alpha by k / L, integrals of the flux by k U L^(d-2), the energy by k U^2 L^(d-2),
+an uplift by U L^(d-1), an exit gradient by U / L.
 """
 
 from __future__ import annotations
@@ -137,10 +138,14 @@ def scaled_quantity(
     quantity: Quantity, dim: int, length: float, value: float, conductivity: float, units: Units
 ) -> Quantity:
     """Return the quantity in the units of the twin."""
-    factor = value
-    if quantity.kind != "value":
-        factor = conductivity * value ** (1 if quantity.kind == "flux" else 2) * length ** (dim - 2)
-    where = quantity.where
+    flow = conductivity * value * length ** (dim - 2)
+    factor = {
+        "value": value,
+        "energy": flow * value,
+        "uplift": value * length ** (dim - 1),
+        "exit gradient": value / length,
+    }.get(quantity.kind, flow)
+    where, place = quantity.where, quantity.place
     return replace(
         quantity,
         value=quantity.value * factor,
@@ -148,4 +153,5 @@ def scaled_quantity(
         radius=quantity.radius * factor + 8 * EPS * abs(quantity.value * factor),
         unit=units.of(quantity.kind, dim),
         where=tuple(c * length for c in where) if isinstance(where, tuple) else where,
+        place=tuple(c * length for c in place) if place else None,
     )

@@ -78,12 +78,13 @@ class _Regularity(msgspec.Struct, kw_only=True, forbid_unknown_fields=True, omit
     interface: Literal["", "aligned", "oblique", "curved"] = ""
 
 
-class _Quantity(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
+class _Quantity(msgspec.Struct, kw_only=True, forbid_unknown_fields=True, omit_defaults=True):
     kind: QuantityKind
     where: str | tuple[float, ...] | None
     value: str
     radius: str
     unit: str
+    place: tuple[float, ...] | None = None
 
 
 class _Units(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
@@ -200,7 +201,8 @@ def case_from_json(data: bytes, path: str = "case file") -> Case:
     with _named(path, "conditions"):
         conditions = {n: Condition(kind=c.kind, alpha=c.alpha) for n, c in content.conditions.items()}
     specs = {
-        name: QuantitySpec(kind=q.kind, where=q.where, unit=q.unit) for name, q in content.quantities.items()
+        name: QuantitySpec(kind=q.kind, where=q.where, unit=q.unit, place=q.place)
+        for name, q in content.quantities.items()
     }
     with _named(path, "problem"):
         made = case(
@@ -354,6 +356,7 @@ def _quantity_to_file(quantity: Quantity) -> _Quantity:
         value=repr(quantity.value),
         radius=repr(quantity.radius),
         unit=quantity.unit,
+        place=quantity.place,
     )
 
 

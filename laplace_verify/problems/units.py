@@ -27,14 +27,19 @@ class Units:
     conductivity: str = ""
 
     def of(self, kind: str, dim: int) -> str:
-        """Return the unit of a quantity: "value", "flux" (K u L^(d-2)) or "energy" (K u^2 L^(d-2)).
+        """Return the unit of a quantity.
+
+        "value" (u), "flux" and "discharge" (K u L^(d-2)), "energy" (K u^2 L^(d-2)), "uplift" (u L^(d-1)),
+        "exit gradient" (u / L).
 
         >>> Units(length="m", value="K", conductivity="W/(m K)").of("flux", 3)
         'W'
         """
         if kind == "value":
             return self.value
-        power = 1 if kind == "flux" else 2
+        if kind in ("uplift", "exit gradient"):
+            return unit_product((self.value, 1), (self.length, dim - 1 if kind == "uplift" else -1))
+        power = 2 if kind == "energy" else 1
         return unit_product((self.conductivity, 1), (self.value, power), (self.length, dim - 2))
 
 
