@@ -24,6 +24,7 @@ from laplace_verify.fields.patches_loaded import loaded_disc, loaded_rectangle
 from laplace_verify.fields.piecewise import parabola, piecewise, ramp, step, tent
 from laplace_verify.fields.piecewise_regions import by_region
 from laplace_verify.fields.plate_modes import coefficient_rule, modes
+from laplace_verify.fields.plate_sides import rectangle_sides
 from laplace_verify.fields.poisson_disc import fourier, poisson_disc
 from laplace_verify.fields.polynomials import polynomial
 from laplace_verify.fields.radial import radial
@@ -87,6 +88,7 @@ __all__ = [
     "radial",
     "ramp",
     "rectangle_series",
+    "rectangle_sides",
     "shell_zonal",
     "solid",
     "sphere_pair",

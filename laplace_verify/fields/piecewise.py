@@ -21,7 +21,7 @@ from laplace_verify.contexts import Number
 from laplace_verify.errors import FieldError
 from laplace_verify.fields.exact import Exact, exact, rational, show
 
-__all__ = ["Continuation", "Piecewise", "parabola", "piecewise", "ramp", "step", "tent"]
+__all__ = ["Continuation", "Piecewise", "level", "parabola", "piecewise", "ramp", "step", "tent"]
 
 HIGHEST_DEGREE = 12
 
@@ -117,6 +117,15 @@ def piecewise(breaks: Sequence[Number], coefficients: Sequence[Sequence[Number]]
         If the breaks do not rise or the rows do not fit them.
     """
     return Piecewise(breaks=tuple(breaks), coefficients=tuple(coefficients))  # type: ignore[arg-type]  # made exact there
+
+
+def level(value: Number, name: str) -> Piecewise:
+    """Return constant data; `name` stands for the number in an error.
+
+    >>> level("1/2", "top").coefficients
+    ((Fraction(1, 2),),)
+    """
+    return Piecewise(breaks=(0, 1), coefficients=((exact(value, name),),), fraction=True)
 
 
 def ramp(start: Number, stop: Number) -> Piecewise:

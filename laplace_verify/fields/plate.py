@@ -21,7 +21,7 @@ from laplace_verify.fields.base import Field
 from laplace_verify.fields.exact import Exact, exact_point, offset, rational, show
 from laplace_verify.fields.plate_box import Depth
 
-__all__ = ["Plate", "side_ends"]
+__all__ = ["SIDES", "Plate", "corner_text", "in_rectangle", "opposite_corners", "side_ends"]
 
 SIDES = {"left": (1, 0), "right": (1, 1), "bottom": (0, 0), "top": (0, 1)}  # axis along the side; low or high
 CONDITIONS = ("zero", "insulated")
@@ -46,12 +46,9 @@ class Plate(Field):
         FieldError
             If the corners are not those of a rectangle or a word is unknown.
         """
-        object.__setattr__(self, "lower", exact_point(self.lower, "lower", (2,)))
-        object.__setattr__(self, "upper", exact_point(self.upper, "upper", (2,)))
-        if not all(rational(a) < rational(b) for a, b in zip(self.lower, self.upper, strict=True)):
-            raise FieldError(
-                f"lower must lie below and left of upper, got {_corner(self.lower)} and {_corner(self.upper)}"
-            )
+        lower, upper = opposite_corners(self.lower, self.upper)
+        object.__setattr__(self, "lower", lower)
+        object.__setattr__(self, "upper", upper)
         for name, given, known in (
             ("side", self.side, tuple(SIDES)),
             ("neighbours", self.neighbours, CONDITIONS),
@@ -87,8 +84,8 @@ class Plate(Field):
     def formula(self) -> str:
         """The problem in one line."""
         return (
-            f"[{_corner(self.lower)} to {_corner(self.upper)}: {self._data_text()} on {self.side}, "
-            f"neighbours {self.neighbours}, opposite {self.far}]"
+            f"[{corner_text(self.lower)} to {corner_text(self.upper)}: {self._data_text()} on {self.side}, "
+            f"neighbours {self.neighbours}, opposite {self._opposite_text()}]"
         )
 
     def place_on_side(self, coordinate: Fraction) -> tuple[float, float]:
@@ -102,6 +99,10 @@ class Plate(Field):
     @abstractmethod
     def _data_text(self) -> str:
         """Return the data in words or as a formula."""
+
+    def _opposite_text(self) -> str:
+        """Return what stands opposite the data, in words."""
+        return self.far
 
     @abstractmethod
     def _solve(self, ctx: Any, x: Any, d: Any, h: Any) -> Any:
@@ -143,11 +144,34 @@ class Plate(Field):
 
     def _valid(self, points: Array) -> BoolArray:
         """Return which points lie in the closed rectangle, to rounding."""
-        low = np.array([float(c) for c in self.lower])
-        high = np.array([float(c) for c in self.upper])
-        slack = OUTSIDE * float((high - low).max())
-        inside = (points >= low - slack) & (points <= high + slack)
-        return np.asarray(inside.all(axis=1))
+        return in_rectangle(self.lower, self.upper, points)
+
+
+def opposite_corners(
+    lower: Iterable[Number], upper: Iterable[Number]
+) -> tuple[tuple[Exact, ...], tuple[Exact, ...]]:
+    """Return two corners of a rectangle as exact points.
+
+    Raises
+    ------
+    FieldError
+        If they are not those of a rectangle.
+    """
+    low, high = exact_point(lower, "lower", (2,)), exact_point(upper, "upper", (2,))
+    if not all(rational(a) < rational(b) for a, b in zip(low, high, strict=True)):
+        raise FieldError(
+            f"lower must lie below and left of upper, got {corner_text(low)} and {corner_text(high)}"
+        )
+    return low, high
+
+
+def in_rectangle(lower: tuple[Exact, ...], upper: tuple[Exact, ...], points: Array) -> BoolArray:
+    """Return which points (n, 2) lie in a closed rectangle, to rounding."""
+    low = np.array([float(c) for c in lower])
+    high = np.array([float(c) for c in upper])
+    slack = OUTSIDE * float((high - low).max())
+    inside = (points >= low - slack) & (points <= high + slack)
+    return np.asarray(inside.all(axis=1))
 
 
 def side_ends(lower: Iterable[Number], upper: Iterable[Number], side: str) -> tuple[Fraction, Fraction]:
@@ -165,7 +189,7 @@ def _between(ctx: Any, x: Any, lower: Exact, upper: Exact) -> Any:
     return ctx.where(x < low, 0 * x + low, ctx.where(x > high, 0 * x + high, x))
 
 
-def _corner(point: tuple[Exact, ...]) -> str:
+def corner_text(point: tuple[Exact, ...]) -> str:
     """Return (0, 1)."""
     return "(" + ", ".join(show(c) for c in point) + ")"
 

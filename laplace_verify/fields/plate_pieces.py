@@ -20,7 +20,7 @@ from laplace_verify.fields.plate_strip import data_on_side, strip_gradient, stri
 from laplace_verify.fields.singular import Basis, Singularity
 from laplace_verify.fields.specs import registered
 
-__all__ = ["PlatePieces", "pieces_slopes", "pieces_solution"]
+__all__ = ["PlatePieces", "pieces_slopes", "pieces_solution", "pieces_text"]
 
 
 @registered("rectangle-pieces")
@@ -66,17 +66,22 @@ class PlatePieces(Plate):
         return "tail bound" if self.continuation.places else "closed form"
 
     def _data_text(self) -> str:
-        if len(self.coefficients) == 1 and len(self.coefficients[0]) == 1:
-            return show(self.coefficients[0][0])
-        highest = max(len(row) for row in self.coefficients) - 1
-        name = {0: "steps", 1: "straight pieces"}.get(highest, f"pieces of degree {highest}")
-        return f"{name} between {', '.join(show(b) for b in self.breaks)}"
+        return pieces_text(self.breaks, self.coefficients)
 
     def _solve(self, ctx: Any, x: Any, d: Any, h: Any) -> Any:
         return pieces_solution(ctx, self.continuation, self.depth, x, d, h)
 
     def _slopes(self, ctx: Any, x: Any, d: Any, h: Any) -> tuple[Any, Any]:
         return pieces_slopes(ctx, self.continuation, self.depth, x, d, h)
+
+
+def pieces_text(breaks: tuple[Exact, ...], coefficients: tuple[tuple[Exact, ...], ...]) -> str:
+    """Return piecewise polynomial data in words."""
+    if len(coefficients) == 1 and len(coefficients[0]) == 1:
+        return show(coefficients[0][0])
+    highest = max(len(row) for row in coefficients) - 1
+    name = {0: "steps", 1: "straight pieces"}.get(highest, f"pieces of degree {highest}")
+    return f"{name} between {', '.join(show(b) for b in breaks)}"
 
 
 def pieces_solution(ctx: Any, data: Continuation, depth: Depth, x: Any, d: Any, h: Any) -> Any:

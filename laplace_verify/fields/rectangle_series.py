@@ -20,8 +20,8 @@ from typing import Any
 
 from laplace_verify.contexts import Number
 from laplace_verify.errors import FieldError
-from laplace_verify.fields.exact import NUMERAL, exact, exact_point
-from laplace_verify.fields.piecewise import Piecewise
+from laplace_verify.fields.exact import NUMERAL, exact_point
+from laplace_verify.fields.piecewise import Piecewise, level
 from laplace_verify.fields.plate import Plate, side_ends
 from laplace_verify.fields.plate_modes import CoefficientRule, PlateModes
 from laplace_verify.fields.plate_pieces import PlatePieces
@@ -99,5 +99,4 @@ def rectangle_series(
         return PlatePieces(**common, breaks=breaks, coefficients=rows)
     if callable(data) or (isinstance(data, str) and not NUMERAL.fullmatch(data)):
         return PlateSmooth(**common, data=data)
-    level = Piecewise(breaks=(0, 1), coefficients=((exact(data, "data"),),), fraction=True)
-    return rectangle_series(lower, upper, level, neighbours, side, far)
+    return rectangle_series(lower, upper, level(data, "data"), neighbours, side, far)
