@@ -23,6 +23,7 @@ from laplace_verify.fields.meridian import axisymmetric
 from laplace_verify.fields.patches_loaded import loaded_disc, loaded_rectangle
 from laplace_verify.fields.piecewise import parabola, piecewise, ramp, step, tent
 from laplace_verify.fields.piecewise_regions import by_region
+from laplace_verify.fields.plate_convection import rectangle_convection
 from laplace_verify.fields.plate_modes import coefficient_rule, modes
 from laplace_verify.fields.plate_sides import rectangle_sides
 from laplace_verify.fields.poisson_disc import fourier, poisson_disc
@@ -87,6 +88,7 @@ __all__ = [
     "polynomial",
     "radial",
     "ramp",
+    "rectangle_convection",
     "rectangle_series",
     "rectangle_sides",
     "shell_zonal",

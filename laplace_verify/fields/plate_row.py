@@ -31,7 +31,7 @@ from laplace_verify.fields.piecewise import Continuation
 from laplace_verify.fields.plate_box import Depth
 from laplace_verify.fields.polylog import NEAR, accuracy, by_index, polylog, rounded, source
 
-__all__ = ["row_gradient", "row_value"]
+__all__ = ["fourier_coefficients", "row_gradient", "row_value"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -164,16 +164,12 @@ def _table(ctx: Any, data: Continuation, height: Fraction) -> _Table:
     ends = (data.breaks[0], data.breaks[-1])
     length = ends[1] - ends[0]
     high = source(ctx)
-    images = [image for image in data.images(ends[0] - length, ends[1]) if image[0] > ends[0] - length]
-    scaled = [
-        (place, [high.number(jump * length**p) / high.pi ** (p + 1) for p, jump in enumerate(jumps)])
-        for place, jumps in images
-    ]
+    scaled = _scaled_jumps(high, data)
     deep = math.pi * float(height / length)
     count = 2 + math.ceil(
         accuracy(ctx) / min(NEAR, 2 * deep - min(NEAR, deep))
     )  # far off, or the remainder next to it
-    modes = _modes(high, data, scaled, count)
+    modes = fourier_coefficients(high, data, count)
     base = high.expm1(-2 * high.pi * high.number(height / length))
     divided = []
     for n, mode in enumerate(modes, start=1):
@@ -190,12 +186,25 @@ def _table(ctx: Any, data: Continuation, height: Fraction) -> _Table:
     )  # fmt: skip
 
 
-def _modes(high: Any, data: Continuation, places: list[tuple[Fraction, list[Any]]], count: int) -> list[Any]:
-    """Return the Fourier coefficients A_1 ... A_count: 2 Re F_n if even, -2 Im F_n if odd.
-
-    With theta = n pi (c - start) / a, F_n = 1/2 sum J a^p / pi^{p+1} e^{-i theta} (i n)^{-(p+1)}.
-    """
+def _scaled_jumps(high: Any, data: Continuation) -> list[tuple[Fraction, list[Any]]]:
+    """Return the places of one period of the continuation with J a^p / pi^{p+1}."""
     start, length = data.breaks[0], data.breaks[-1] - data.breaks[0]
+    images = data.images(start - length, start + length)
+    return [
+        (place, [high.number(jump * length**p) / high.pi ** (p + 1) for p, jump in enumerate(jumps)])
+        for place, jumps in images
+        if place > start - length
+    ]
+
+
+def fourier_coefficients(high: Any, data: Continuation, count: int) -> list[Any]:
+    """Return the coefficients A_1 ... A_count of cosines if even, of sines if odd: 2 Re F_n or -2 Im F_n.
+
+    With theta = n pi (c - start) / a, F_n = 1/2 sum J a^p / pi^{p+1} e^{-i theta} (i n)^{-(p+1)}; `high` is a
+    precise context.
+    """
+    places, start = _scaled_jumps(high, data), data.breaks[0]
+    length = data.breaks[-1] - start
     modes = []
     for n in range(1, count + 1):
         total = high.mpf(0)
