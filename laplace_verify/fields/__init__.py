@@ -24,6 +24,7 @@ from laplace_verify.fields.patches_loaded import loaded_disc, loaded_rectangle
 from laplace_verify.fields.piecewise import parabola, piecewise, ramp, step, tent
 from laplace_verify.fields.piecewise_regions import by_region
 from laplace_verify.fields.plate_convection import rectangle_convection
+from laplace_verify.fields.plate_exponential import exponential
 from laplace_verify.fields.plate_modes import coefficient_rule, modes
 from laplace_verify.fields.plate_sides import rectangle_sides
 from laplace_verify.fields.poisson_disc import fourier, poisson_disc
@@ -72,6 +73,7 @@ __all__ = [
     "dipole",
     "elliptic_multipole",
     "exp_trig",
+    "exponential",
     "field",
     "flow_past",
     "fourier",

@@ -1,11 +1,12 @@
 """Rectangle with data on one side, zero or insulated elsewhere: Fourier series, never summed naively.
 
-Three ways of giving the data f, all with the same boundary value problem
+Four ways of giving the data f, all with the same boundary value problem
 
     f on one side,   u = 0 or d_n u = 0 on both neighbours,   u = 0 or d_n u = 0 on the opposite side:
 
 polynomial pieces (exact sums by polylogarithms, `plate_strip` and `plate_row`), a rule for the Fourier
-coefficients with a bound of their decay (`plate_modes`), or a smooth function (`plate_smooth`).
+coefficients with a bound of their decay (`plate_modes`), an exponential (`plate_exponential`), or a smooth
+function (`plate_smooth`).
 
 References
 ----------
@@ -23,6 +24,7 @@ from laplace_verify.errors import FieldError
 from laplace_verify.fields.exact import NUMERAL, exact_point
 from laplace_verify.fields.piecewise import Piecewise, level
 from laplace_verify.fields.plate import Plate, side_ends
+from laplace_verify.fields.plate_exponential import Exponential, PlateExponential
 from laplace_verify.fields.plate_modes import CoefficientRule, PlateModes
 from laplace_verify.fields.plate_pieces import PlatePieces
 from laplace_verify.fields.plate_smooth import PlateSmooth
@@ -33,7 +35,7 @@ __all__ = ["rectangle_series"]
 def rectangle_series(
     lower: Iterable[Number],
     upper: Iterable[Number],
-    data: Piecewise | CoefficientRule | Number | str | Callable[[Any], Any],
+    data: Piecewise | Exponential | CoefficientRule | Number | str | Callable[[Any], Any],
     neighbours: str = "zero",
     side: str = "top",
     far: str = "zero",
@@ -46,6 +48,7 @@ def rectangle_series(
         Opposite corners; decimals in strings are exact.
     data : data, number, formula string or callable
         Values on `side`: `piecewise`, `ramp`, `step`, `tent`, `parabola` or a number (closed form);
+        `exponential` (a short series with a proven tail);
         `coefficient_rule` or `modes` (Fourier coefficients); a formula string or a function of the coordinate
         along the side, x on top and bottom, y on left and right, smooth on the closed side (coefficients by
         fast Fourier transform, basis "uncertified").
@@ -91,6 +94,8 @@ def rectangle_series(
     }  # fmt: skip
     if isinstance(data, CoefficientRule):
         return PlateModes(**common, rule=data.rule, bound=data.bound, ratio=data.ratio, power=data.power)
+    if isinstance(data, Exponential):
+        return PlateExponential(**common, rate=data.rate, height=data.height)
     if isinstance(data, Piecewise):
         ends = side_ends(lower, upper, side)
         if not ends[0] < ends[1]:
