@@ -40,17 +40,33 @@ def add_regenerate(commands: Any) -> None:
     )
     parser.add_argument("what", choices=("cases", "reports"))
     parser.add_argument("--out", metavar="DIR", type=Path, help="default: the folder in the checkout")
+    parser.add_argument("--workers", metavar="N", type=int, help="processes for cases (default: one a core)")
     parser.set_defaults(run=_regenerate)
 
 
 def _regenerate(options: argparse.Namespace) -> int:
     if options.what == "cases":
-        from laplace_verify.cases import regenerate_cases
-
-        written = regenerate_cases(options.out or Path("reference_cases"), note=note)
+        written = _regenerate_cases(options.out or Path("reference_cases"), options.workers)
     else:
         from laplace_verify.report import regenerate_reports
 
         written = regenerate_reports(options.out or Path("reports"), note=note)
     say(f"{len(written)} files written")
     return 0
+
+
+def _regenerate_cases(folder: Path, workers: int | None) -> list[Path]:
+    """Write the files of all cases and their pictures, with a bar for each."""
+    from tqdm import tqdm
+
+    from laplace_verify.cases import catalogue, regenerate_cases
+    from laplace_verify.report import draw_cases
+
+    notes: list[str] = []
+    with tqdm(total=len(catalogue), unit="case", desc="files") as bar:
+        written = regenerate_cases(folder, notes.append, workers=workers, progress=lambda _: bar.update())
+    with tqdm(total=len(catalogue), unit="case", desc="pictures") as bar:
+        written += draw_cases(folder / "pictures", progress=lambda _: bar.update())
+    for text in notes:
+        note(text)
+    return written

@@ -2,6 +2,6 @@
 
 from laplace_verify.cases.catalogue import Catalogue, catalogue
 from laplace_verify.cases.describe import describe
-from laplace_verify.cases.regenerate import regenerate_cases
+from laplace_verify.cases.regenerate import case_file, regenerate_cases
 
-__all__ = ["Catalogue", "catalogue", "describe", "regenerate_cases"]
+__all__ = ["Catalogue", "case_file", "catalogue", "describe", "regenerate_cases"]

@@ -43,7 +43,7 @@ class Definition:
     tags
         Words beyond those that follow from the mathematics, see `derived_tags`.
     reference_points
-        Points, as decimal strings, whose values are stored with 40 digits in the file of the case.
+        Points, as decimal strings, at which values are stored beside those of `references.probes_of`.
     """
 
     title: str

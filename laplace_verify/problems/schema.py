@@ -1,6 +1,6 @@
 """Cases as JSON: one file a case, readable without Python, the same bytes for the same case.
 
-    format, format_version    "laplace-verify case", 1
+    format, format_version    "laplace-verify case", 2
     id, title, statement, reading, tags, sources
     dim, shape                {"kind": "rectangle", "lower": [0, 0], "upper": [1, 1], "split": {"top": [0.4]}}
     conductivity              a number, a matrix, or {"regions": partition, "values": region -> number}
@@ -12,7 +12,9 @@
     regularity                exponents (null: smooth, no limit), singular points, jumps, smallest length
     quantities                name -> {"kind", "where", "value", "radius", "unit"}; numbers as decimal strings
     units                     of length, value, conductivity; "" if dimensionless
-    stored                    high-precision values as decimal strings with radius and basis
+    stored                    list of {"place": words, "point", "value", "gradient", "radius",
+                              "gradient_radius", "basis"}: u and every component of grad u at an exact point
+                              differ from the truth by no more than the radius; decimal strings
     at_infinity, window       unbounded shapes only: "decay", "bounded", ["log", charge] or ["flow", vector,
                               circulation], and the bounded shape over which norms are taken
 
@@ -29,6 +31,7 @@ from dataclasses import replace
 from typing import Any, Literal
 
 import msgspec
+import numpy as np
 
 from laplace_verify.errors import LaplaceVerifyError, RecordError
 from laplace_verify.fields import from_spec
@@ -48,7 +51,9 @@ from laplace_verify.problems.units import Units
 __all__ = ["FORMAT", "FORMAT_VERSION", "case_from_json", "case_to_json"]
 
 FORMAT = "laplace-verify case"
-FORMAT_VERSION = 1
+FORMAT_VERSION = 2
+READABLE = (1, 2)  # version 1 has neither places nor radii of gradients
+STORED = 1e-8  # of values with the field in float64, whose points are rounded where gradients are large
 AGREEMENT = 1e-9  # of exponents and lengths in a file with those derived
 
 
@@ -94,10 +99,12 @@ class _Units(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
 
 
 class _Stored(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
+    place: str = ""
     point: tuple[str, ...]
     value: str
     gradient: tuple[str, ...]
     radius: str
+    gradient_radius: str = ""
     basis: str
 
 
@@ -166,8 +173,7 @@ def case_to_json(case: Case) -> bytes:
         quantities={name: _quantity_to_file(q) for name, q in case.quantities.items()},
         units=_Units(length=case.units.length, value=case.units.value, conductivity=case.units.conductivity),
         stored=[
-            _Stored(point=s.point, value=s.value, gradient=s.gradient, radius=s.radius, basis=s.basis)
-            for s in case.stored
+            _Stored(**{name: getattr(s, name) for name in _Stored.__struct_fields__}) for s in case.stored
         ],
         at_infinity=_infinity_to_file(problem.at_infinity),
         window=msgspec.UNSET if case.window is None else shape_to_spec(case.window),
@@ -225,9 +231,7 @@ def case_from_json(data: bytes, path: str = "case file") -> Case:
     _check_regularity(path, content.regularity, made.regularity)
     with _named(path, "stored"):
         stored = tuple(StoredValue(**msgspec.structs.asdict(s)) for s in content.stored)
-        for value in stored:
-            if len(value.point) != shape.dim:
-                raise RecordError(f"point {value.point} needs {shape.dim} coordinates")
+        _check_stored(made, stored)
     return replace(
         made,
         quantities={
@@ -237,6 +241,25 @@ def case_from_json(data: bytes, path: str = "case file") -> Case:
         units=Units(**msgspec.structs.asdict(content.units)),
         stored=stored,
     )
+
+
+def _check_stored(made: Case, stored: tuple[StoredValue, ...]) -> None:
+    """Refuse stored values at points outside the shape, or that are not those of the exact field."""
+    for value in stored:
+        if len(value.point) != made.dim:
+            raise RecordError(f"point {value.point} needs {made.dim} coordinates")
+    if not stored:
+        return
+    points = np.array([[float(c) for c in value.point] for value in stored])
+    inside, found = made.problem.shape.contains(points), made.exact.value(points)
+    for value, within, expected in zip(stored, inside.tolist(), found.tolist(), strict=True):
+        if not within:
+            raise RecordError(f"the point {value.point} lies outside the shape")
+        if not abs(float(value.value) - expected) <= float(value.radius) + STORED * (1.0 + abs(expected)):
+            raise RecordError(
+                f"value at {value.point} is {value.value} +- {value.radius}, the exact field gives "
+                f"{expected!r}"
+            )
 
 
 def _decoded(data: bytes, path: str) -> _CaseFile:
@@ -249,9 +272,10 @@ def _decoded(data: bytes, path: str) -> _CaseFile:
         raise RecordError(f"{path}: nested too deeply") from cause
     if not isinstance(head, dict) or head.get("format") != FORMAT:
         raise RecordError(f'{path}: not a case file; it must hold an object with "format": "{FORMAT}"')
-    if head.get("format_version") != FORMAT_VERSION:
+    if head.get("format_version") not in READABLE:
+        known = " and ".join(map(str, READABLE))
         raise RecordError(
-            f"{path}: format_version {head.get('format_version')!r} cannot be read, only {FORMAT_VERSION}"
+            f"{path}: format_version {head.get('format_version')!r} cannot be read, only {known}"
         )
     try:
         return msgspec.convert(head, _CaseFile)

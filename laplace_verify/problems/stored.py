@@ -16,6 +16,8 @@ BASES = ("closed form", "tail bound", "maximum-principle bound", "confirmed")
 class StoredValue:
     """u and grad u at a point, as decimal strings: |true value - value| <= radius.
 
+    The gradient has a radius of its own: near a corner it is large, and so is half a unit in its last digit.
+
     Attributes
     ----------
     point
@@ -23,10 +25,14 @@ class StoredValue:
     value, gradient
         u and the components of grad u.
     radius
-        Error radius of the value and of every component of the gradient, >= 0.
+        Error radius of the value, >= 0.
+    gradient_radius
+        Error radius of every component of the gradient, >= 0; by default `radius`.
     basis
         "closed form", "tail bound" or "maximum-principle bound" (proven), or "confirmed" (by the
         agreement of two independent computations, not proven).
+    place
+        Where the point lies, in words such as "1e-3 of the extent from top".
 
     Raises
     ------
@@ -45,6 +51,8 @@ class StoredValue:
     gradient: tuple[str, ...]
     radius: str
     basis: str
+    gradient_radius: str = ""
+    place: str = ""
 
     def __post_init__(self) -> None:
         """Check every string."""
@@ -55,8 +63,11 @@ class StoredValue:
                 )
             object.__setattr__(self, name, tuple(_decimal(name, text) for text in texts))
         _decimal("value", self.value)
-        if not Decimal(_decimal("radius", self.radius)) >= 0:
-            raise ProblemError(f"radius of a stored value must be >= 0, got {self.radius!r}")
+        if not self.gradient_radius:
+            object.__setattr__(self, "gradient_radius", self.radius)
+        for name in ("radius", "gradient_radius"):
+            if not Decimal(_decimal(name, getattr(self, name))) >= 0:
+                raise ProblemError(f"{name} of a stored value must be >= 0, got {getattr(self, name)!r}")
         if len(self.point) != len(self.gradient):
             raise ProblemError(
                 f"a stored value at {self.point} needs {len(self.point)} derivatives, got "

@@ -24,17 +24,19 @@ class CheckedValue:
     ----------
     point
         Where.
-    difference
-        Largest difference of u and of the components of grad u.
-    radius
-        The stored radius plus that of the recomputation: what the difference may be.
+    difference, gradient_difference
+        Difference of u, and the largest of the components of grad u.
+    radius, gradient_radius
+        The stored radii plus those of the recomputation: what the differences may be.
     agrees
-        Whether it is no more than that; False for NaN.
+        Whether they are no more than that; False for NaN.
     """
 
     point: tuple[str, ...]
     difference: mpmath.mpf
     radius: mpmath.mpf
+    gradient_difference: mpmath.mpf
+    gradient_radius: mpmath.mpf
     agrees: bool
 
 
@@ -83,8 +85,17 @@ def _checked(case: Case, stored: StoredValue) -> CheckedValue:
     value, open_, _ = case.exact.enclosure(stored.point, digits=digits)
     gradient = case.exact.gradient_at(stored.point, digits=digits)
     with mpmath.workdps(digits + 15):
-        given = [mpmath.mpf(text) for text in (stored.value, *stored.gradient)]
-        allowed = mpmath.mpf(stored.radius) + 2 * open_
-        differences = [abs(a - b) for a, b in zip(given, (value, *gradient), strict=True)]
-        agrees = all(bool(difference <= allowed) for difference in differences)
-        return CheckedValue(point=stored.point, difference=max(differences), radius=allowed, agrees=agrees)
+        largest = max(abs(g) for g in gradient)
+        radius = mpmath.mpf(stored.radius) + 2 * open_
+        sloped = mpmath.mpf(stored.gradient_radius) + largest * mpmath.mpf(10) ** -digits
+        off = abs(mpmath.mpf(stored.value) - value)
+        bent = [abs(mpmath.mpf(text) - g) for text, g in zip(stored.gradient, gradient, strict=True)]
+        agrees = bool(off <= radius) and all(bool(b <= sloped) for b in bent)
+        return CheckedValue(
+            point=stored.point,
+            difference=off,
+            radius=radius,
+            gradient_difference=max(bent),
+            gradient_radius=sloped,
+            agrees=agrees,
+        )

@@ -23,7 +23,7 @@ if TYPE_CHECKING:
 
 __all__ = ["plot", "save_picture"]
 
-_POINTS = 200  # per piece that is no plane curve
+_POINTS = 100  # per piece that is no plane curve; each is an element of an SVG file
 
 
 def plot(what: Case | Study | Record) -> Figure:

@@ -29,8 +29,9 @@ def case():
         },
     )
     value = StoredValue(
-        point=("-0.5", "0.5"), value="0.7937", gradient=("0.1", "-2e-3"), radius="1e-4", basis="closed form"
-    )
+        point=("-0.5", "0.5"), value="0.7937", gradient=("0.1", "-2e-3"), radius="1e-4", basis="closed form",
+        gradient_radius="2e-3", place="inside",
+    )  # fmt: skip
     return dataclasses.replace(made, stored=(value,))
 
 
@@ -115,6 +116,13 @@ def test_smooth_exponents_are_null_and_singular_ones_numbers(content) -> None:
     assert smooth["regularity"]["solution"] is None
 
 
+def test_a_file_of_version_one_has_one_radius_for_value_and_gradient(content) -> None:
+    content["format_version"] = 1
+    del content["stored"][0]["gradient_radius"], content["stored"][0]["place"]
+    stored = read(content).stored[0]
+    assert (stored.radius, stored.gradient_radius, stored.place) == ("1e-4", "1e-4", "")
+
+
 def test_quantities_are_decimal_strings_with_a_radius(content) -> None:
     flux = content["quantities"]["flux"]
     assert abs(float(flux["value"]) - -1.0) <= float(flux["radius"]) < 1e-8
@@ -124,7 +132,7 @@ def test_quantities_are_decimal_strings_with_a_radius(content) -> None:
     ("path", "value", "message"),
     [
         (("format",), "other", "not a case file"),
-        (("format_version",), 2, "format_version 2 cannot be read, only 1"),
+        (("format_version",), 3, "format_version 3 cannot be read, only 1 and 2"),
         (("id",), 3, r"Expected `str`, got `int` - at `\$\.id`"),
         (("colour",), "red", "unknown field `colour`"),
         (("dim",), 3, "dim is 3, but the shape has dimension 2"),
@@ -148,6 +156,15 @@ def test_quantities_are_decimal_strings_with_a_radius(content) -> None:
         (("stored", 0, "value"), 0.79, r"Expected `str`, got `float` - at `\$\.stored\[0\]\.value`"),
         (("stored", 0, "value"), "nan", "stored: value of a stored value must be a decimal"),
         (("stored", 0, "radius"), "-1", "stored: radius of a stored value must be >= 0"),
+        (
+            ("stored", 0, "gradient_radius"),
+            "nan",
+            "stored: gradient_radius of a stored value must be a decimal",
+        ),
+        (("stored", 0, "gradient_radius"), "-1", "stored: gradient_radius of a stored value must be >= 0"),
+        (("stored", 0, "value"), "0.7939", "stored: value at .* is 0.7939 .*, the exact field gives 0.7937"),
+        (("stored", 0, "point"), ["-1.5", "0.5"], "stored: the point .* lies outside the shape"),
+        (("stored", 0, "point"), ["0.5"], "stored: .*needs 1 derivatives"),
         (("stored", 0, "gradient"), ["1"], "stored: .* needs 2 derivatives"),
     ],
 )

@@ -1,0 +1,89 @@
+"""By which other route the stored values of a case are confirmed, and how far.
+
+The digits of a case rest on the formula of its field (`Field.basis`). Beside that, tests compute the stored
+values once more by a route that shares no code with the fields: they read the parameters in the file of the
+case and end in a number of their own. Which route applies follows from the kinds of field that a file names; the
+tests ask here which one to run, and the index of the reference cases says so.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+from typing import Any
+
+from laplace_verify.problems import Case
+
+__all__ = ["CONFIRMATIONS", "Confirmation", "confirmation_of", "kinds_in"]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Confirmation:
+    """A route by which stored values are computed once more.
+
+    Attributes
+    ----------
+    route
+        How, in words.
+    source
+        What the route follows.
+    digits
+        To how many significant digits it confirms the values (of a gradient, those of its largest component).
+    kinds
+        Kinds of field it can do; every kind in the file of a case must be among them.
+    """
+
+    route: str
+    source: str
+    digits: int
+    kinds: frozenset[str]
+
+
+BALLS = frozenset({
+    "affine", "axisymmetric", "box-mode", "coaxial", "dipole", "disc-fourier", "elliptic-multipole",
+    "exp-trig", "flow-past", "inverted", "loaded-rectangle", "log-source", "point-source", "polynomial",
+    "quarter-wave", "radial", "regions", "shifted", "solid", "spheroid", "stretched", "sum", "wedge", "zonal",
+})  # fmt: skip
+
+CONFIRMATIONS: dict[str, Confirmation] = {
+    "balls": Confirmation(
+        route="ball arithmetic from the parameters in the file",
+        source="formulas written again for python-flint (Johansson 2017, IEEE Trans. Computers 66, Arb)",
+        digits=48,
+        kinds=BALLS,
+    ),
+}
+
+
+def confirmation_of(case: Case) -> tuple[str, Confirmation] | None:
+    """Return name and description of the route that confirms a case, None if there is none.
+
+    Examples
+    --------
+    >>> from laplace_verify import fields
+    >>> from laplace_verify.geometry import Disc
+    >>> from laplace_verify.problems import case
+    >>> confirmation_of(case(Disc((0, 0), 1), {}, fields.polynomial(2)))[0]
+    'balls'
+    """
+    kinds = frozenset(kinds_in(case.exact.spec()))
+    for name, confirmation in CONFIRMATIONS.items():
+        if kinds <= confirmation.kinds:
+            return name, confirmation
+    return None
+
+
+def kinds_in(spec: Any) -> Iterator[str]:
+    """Yield the kinds of all fields in a specification.
+
+    >>> list(kinds_in({"kind": "sum", "factors": [2], "terms": [{"kind": "affine", "coefficients": [1]}]}))
+    ['sum', 'affine']
+    """
+    if isinstance(spec, dict):
+        if isinstance(spec.get("kind"), str):
+            yield spec["kind"]
+        for part in spec.values():
+            yield from kinds_in(part)
+    elif isinstance(spec, list):
+        for part in spec:
+            yield from kinds_in(part)
