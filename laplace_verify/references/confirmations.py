@@ -2,8 +2,8 @@
 
 The digits of a case rest on the formula of its field (`Field.basis`). Beside that, tests compute the stored
 values once more by a route that shares no code with the fields: they read the parameters in the file of the
-case and end in a number of their own. Which route applies follows from the kinds of field that a file names; the
-tests ask here which one to run, and the index of the reference cases says so.
+case and end in a number of their own. Which route applies follows from the kinds of field that a file names;
+the tests ask here which one to run, and the index of the reference cases says so.
 """
 
 from __future__ import annotations

@@ -162,12 +162,12 @@ def _directions(dim: int) -> Array:
         return np.array([[1.0], [-1.0]])
     turns = np.arange(count) + 0.5
     if dim == 2:
-        angles = 2.0 * math.pi * turns / count + TURN
+        angles: Array = 2.0 * math.pi * turns / count + TURN
         return np.column_stack([np.cos(angles), np.sin(angles)])
     angles = math.pi * (3.0 - math.sqrt(5.0)) * turns + TURN
     height = 1.0 - 2.0 * turns / count
-    radius = np.sqrt(1.0 - height**2)
-    return np.array([radius * np.cos(angles), radius * np.sin(angles), height], dtype=np.float64).T
+    radius: Array = np.sqrt(1.0 - height**2)
+    return np.column_stack([radius * np.cos(angles), radius * np.sin(angles), height])
 
 
 def _decimals(point: Array, extent: float) -> tuple[str, ...]:

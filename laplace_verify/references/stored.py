@@ -3,8 +3,8 @@
 A number is printed with `digits` significant digits, a fit's with two more than its bound leaves; the radius
 is what the evaluation leaves open plus half a unit in the last printed digit, rounded up. The basis is that
 of the field: "closed form" (only rounding is left, and two working precisions agree), "tail bound" (a series
-with a proven bound) or "maximum-principle bound" (a fit, whose digits are limited and whose gradient is the better
-known the farther from the boundary). A field without such a basis has no reference values.
+with a proven bound) or "maximum-principle bound" (a fit, whose digits are limited and whose gradient is the
+better known the farther from the boundary). A field without such a basis has no reference values.
 """
 
 from __future__ import annotations
