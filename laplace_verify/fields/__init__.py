@@ -39,6 +39,7 @@ from laplace_verify.fields.sources import dipole, log_source, point_source
 from laplace_verify.fields.specs import from_spec
 from laplace_verify.fields.sphere_pairs import sphere_pair
 from laplace_verify.fields.spheroidal import spheroid_data, spheroid_flow, spheroid_potential
+from laplace_verify.fields.square_outside import flow_past_square, square_multipole
 from laplace_verify.fields.stretched import stretched
 from laplace_verify.fields.user import field
 from laplace_verify.fields.wedges import wedge
@@ -76,6 +77,7 @@ __all__ = [
     "exponential",
     "field",
     "flow_past",
+    "flow_past_square",
     "fourier",
     "from_spec",
     "hemispheres",
@@ -99,6 +101,7 @@ __all__ = [
     "spheroid_data",
     "spheroid_flow",
     "spheroid_potential",
+    "square_multipole",
     "step",
     "stretched",
     "tent",

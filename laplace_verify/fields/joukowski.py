@@ -1,4 +1,4 @@
-"""Fields outside a disc, an ellipse or a straight screen, by Joukowski's map.
+"""Fields outside a disc, an ellipse or a straight screen, or between confocal ellipses: Joukowski's map.
 
 The exterior of the ellipse with semi-axes a, b is the image of |w| > 1 under
 
@@ -10,12 +10,10 @@ a screen (b = 0) it is the screen itself. The roots are taken of offsets from th
 plane, and mirrored, so nothing cancels near the tips and both sides of a screen are reached. If b > a the
 plane is turned by a quarter. A disc has w = z/a and no cut.
 
-*Multipoles.* Re w^-n, Im w^-n and log |w| are harmonic outside, decay like |z|^-n and grow like
-log(2 |z|/(a + b)): (a + b)/2 is the logarithmic capacity of the ellipse.
-
-*Flow.* F(z) = (a + b)/2 (conj(V) w + V/w) - i G/(2 pi) log w has the velocity conj(dF/dz) -> V far away, the
-circulation G, and Im F = 0 on the body. Re F is the potential (single-valued only if G = 0), Im F the stream
-function.
+Multipoles and flows are those of `outside`; (a + b)/2 is the logarithmic capacity of the ellipse. Between
+two ellipses with the same foci, log |w| is constant on both, and with elliptic coordinates x + i y = c
+cosh(mu + i nu), mu = mu_0 on the ellipse, w = e^(mu - mu_0 + i nu): cosh(n mu) cos(n nu) is half the sum of
+e^(n mu_0) Re w^n and e^(-n mu_0) Re w^-n.
 
 References
 ----------
@@ -30,34 +28,32 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 from fractions import Fraction
 from functools import lru_cache
-from typing import Any
+from typing import Any, Literal
 
 import numpy as np
 
 from laplace_verify.contexts import FLOAT, Number
 from laplace_verify.errors import FieldError
-from laplace_verify.fields.base import Field
-from laplace_verify.fields.combinations import combined
-from laplace_verify.fields.exact import Exact, exact, exact_point, offset, rational, show, whole
+from laplace_verify.fields.exact import Exact, exact_point, offset, rational
 from laplace_verify.fields.motions import show_point
+from laplace_verify.fields.outside import Flow, Mapped, Multipole
 from laplace_verify.fields.singular import Cut, Singularity
 from laplace_verify.fields.specs import registered
 
 __all__ = ["EllipticMultipole", "FlowPast", "elliptic_multipole", "flow_past"]
 
-HIGHEST = 200
 ROUNDING = 16 * float(np.finfo(np.float64).eps)  # of a point that was computed to lie on the cut
 
 
-class _Outside(Field):
-    """What fields outside an ellipse share; a subclass has `semi_axes` and `centre` (abstract)."""
+class _Ellipse(Mapped):
+    """The ellipse that a field lies outside of; a subclass has `semi_axes` and `centre`."""
 
     __slots__ = ()
 
     semi_axes: tuple[Exact, ...]
     centre: tuple[Exact, ...]
 
-    def _body(self) -> None:
+    def _check_body(self) -> None:
         """Make centre and semi-axes exact and check them."""
         object.__setattr__(self, "centre", exact_point(self.centre, "centre", (2,)))
         object.__setattr__(self, "semi_axes", exact_point(self.semi_axes, "semi_axes", (2,)))
@@ -65,9 +61,12 @@ class _Outside(Field):
             raise FieldError(f"semi_axes must be >= 0 and not both zero, got {show_point(self.semi_axes)}")
 
     @property
-    def dim(self) -> int:
-        """Two."""
-        return 2
+    def body(self) -> str:
+        """The ellipse in words."""
+        return f"the ellipse {show_point(self.semi_axes)} about {show_point(self.centre)}"
+
+    def _capacity(self, ctx: Any) -> Any:
+        return (ctx.number(self.semi_axes[0]) + ctx.number(self.semi_axes[1])) / 2
 
     @property
     def upright(self) -> bool:
@@ -88,19 +87,17 @@ class _Outside(Field):
         x, y = (float(p) for p in self.centre)
         return (Cut(start=(x - c * dx, y - c * dy), direction=(dx, dy), length=2.0 * c),)
 
-    def _foci(self, at_centre: Singularity) -> tuple[Singularity, ...]:
-        """Return the singular points: the foci, where u ~ sqrt(r), or the centre of a disc."""
+    def _foci(self, exponent: float, kind: Literal["pole", "log"]) -> tuple[Singularity, ...]:
+        """Return the foci, where u ~ sqrt(r); of a disc its centre, where u ~ r^exponent or log r."""
         (dx, dy), c = self._focal()
-        if c == 0.0:
-            return (at_centre,)
         x, y = (float(p) for p in self.centre)
+        if c == 0.0:
+            at_centre = Singularity(point=(x, y), exponent=exponent, kind=kind)
+            return (at_centre,) if exponent <= 0.0 else ()
         return tuple(
             Singularity(point=(x + sign * c * dx, y + sign * c * dy), exponent=0.5, kind="power")
             for sign in (-1.0, 1.0)
         )
-
-    def _middle(self) -> tuple[float, ...]:
-        return tuple(float(p) for p in self.centre)
 
     def _map(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, Any]:
         """Return w and s = w/(dw/dz), complex."""
@@ -173,7 +170,7 @@ def focus(a: Exact, b: Exact) -> Fraction:
 
 @registered("elliptic-multipole")
 @dataclass(frozen=True, slots=True, kw_only=True)
-class EllipticMultipole(_Outside):
+class EllipticMultipole(_Ellipse, Multipole):
     """Re w^-n, Im w^-n or log |w| (n = 0) outside an ellipse; `elliptic_multipole` makes one."""
 
     n: int
@@ -183,52 +180,19 @@ class EllipticMultipole(_Outside):
 
     def __post_init__(self) -> None:
         """Check degree, part and body."""
-        object.__setattr__(self, "n", whole(self.n, "n", 0, HIGHEST))
-        if self.part not in ("re", "im") or (self.n == 0 and self.part == "im"):
-            raise FieldError(f'part must be "re" or "im" ("re" for n = 0, log |w|), got {self.part!r}')
-        self._body()
-
-    @property
-    def growth(self) -> float:
-        """Decays like |x|^-n; logarithmic for n = 0."""
-        return -float(self.n)
+        self._check_multipole()
+        self._check_body()
 
     @property
     def singularities(self) -> tuple[Singularity, ...]:
         """The foci, or the centre of a disc."""
         kind: Any = "pole" if self.n else "log"
-        return self._foci(Singularity(point=self._middle(), exponent=-float(self.n), kind=kind))
-
-    @property
-    def formula(self) -> str:
-        """Such as ``Re w^-2, w = (z + sqrt(z^2 - 3))/3``."""
-        name = f"{self.part.capitalize()} w^-{self.n}" if self.n else "log |w|"
-        return f"{name} [w outside the ellipse {show_point(self.semi_axes)} about {show_point(self.centre)}]"
-
-    def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:
-        w, _ = self._map(ctx, x, side)
-        if self.n == 0:
-            return ctx.log(ctx.hypot(w.real, w.imag))
-        power = _power(1 / w, self.n)
-        return power.real if self.part == "re" else power.imag
-
-    def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:
-        w, s = self._map(ctx, x, side)
-        slope = 1 / s if self.n == 0 else -self.n * _power(1 / w, self.n) / s
-        return _as_gradient(slope, self.part)
-
-    def conjugate(self) -> Field:
-        """Return the other part: Re goes to Im, Im to -Re."""
-        if self.n == 0:
-            raise FieldError(f"{self.formula} has no conjugate: the angle grows by 2 pi with every turn")
-        other = "im" if self.part == "re" else "re"
-        twin = EllipticMultipole(n=self.n, part=other, semi_axes=self.semi_axes, centre=self.centre)
-        return twin if self.part == "re" else combined((-1, twin))
+        return self._foci(-float(self.n), kind)
 
 
 @registered("flow-past")
 @dataclass(frozen=True, slots=True, kw_only=True)
-class FlowPast(_Outside):
+class FlowPast(_Ellipse, Flow):
     """Re F (potential) or Im F (stream) of the flow past an ellipse; `flow_past` makes one."""
 
     semi_axes: tuple[Exact, ...]
@@ -239,71 +203,13 @@ class FlowPast(_Outside):
 
     def __post_init__(self) -> None:
         """Check body, velocity and part."""
-        self._body()
-        object.__setattr__(self, "velocity", exact_point(self.velocity, "velocity", (2,)))
-        object.__setattr__(self, "circulation", exact(self.circulation, "circulation"))
-        if self.part not in ("potential", "stream"):
-            raise FieldError(f'part must be "potential" or "stream", got {self.part!r}')
-        if self.part == "potential" and self.circulation:
-            raise FieldError(
-                "the potential of a flow with circulation grows with every turn and is no function; take "
-                'part="stream"'
-            )
-
-    @property
-    def growth(self) -> float:
-        """Linear."""
-        return 1.0
+        self._check_body()
+        self._check_flow()
 
     @property
     def singularities(self) -> tuple[Singularity, ...]:
         """The foci, or the centre of a disc."""
-        return self._foci(Singularity(point=self._middle(), exponent=-1.0, kind="pole"))
-
-    @property
-    def formula(self) -> str:
-        """Such as ``potential of the flow (1, 0) past the ellipse (2, 1) about (0, 0)``."""
-        turning = f", circulation {show(self.circulation)}," if self.circulation else ""
-        return (
-            f"[{self.part} of the flow {show_point(self.velocity)}{turning} past the ellipse "
-            f"{show_point(self.semi_axes)} about {show_point(self.centre)}]"
-        )
-
-    def _velocity(self, ctx: Any) -> tuple[Any, Any]:
-        """Return V and conj(V)."""
-        p, q = (ctx.number(v) for v in self.velocity)
-        return (complex(p, q), complex(p, -q)) if ctx is FLOAT else (ctx.mpc(p, q), ctx.mpc(p, -q))
-
-    def _scale(self, ctx: Any) -> Any:
-        return (ctx.number(self.semi_axes[0]) + ctx.number(self.semi_axes[1])) / 2
-
-    def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:
-        w, _ = self._map(ctx, x, side)
-        v, conj = self._velocity(ctx)
-        total = self._scale(ctx) * (conj * w + v / w)
-        if self.part == "potential":
-            return total.real
-        if not self.circulation:
-            return total.imag
-        turn = ctx.number(self.circulation) / (2 * ctx.pi)
-        return total.imag - turn * ctx.log(ctx.hypot(w.real, w.imag))
-
-    def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:
-        w, s = self._map(ctx, x, side)
-        v, conj = self._velocity(ctx)
-        slope = self._scale(ctx) * (conj * w - v / w)
-        if self.circulation:
-            slope = slope - 1j * (ctx.number(self.circulation) / (2 * ctx.pi))
-        return _as_gradient(slope / s, "re" if self.part == "potential" else "im")
-
-    def conjugate(self) -> Field:
-        """Return the stream function of a potential, minus the potential of a stream function."""
-        other = "stream" if self.part == "potential" else "potential"
-        twin = FlowPast(
-            semi_axes=self.semi_axes, velocity=self.velocity, circulation=self.circulation, part=other,
-            centre=self.centre,
-        )  # fmt: skip
-        return twin if self.part == "potential" else combined((-1, twin))
+        return self._foci(-1.0, "pole")
 
 
 def elliptic_multipole(
@@ -314,7 +220,7 @@ def elliptic_multipole(
     Parameters
     ----------
     n
-        0 to 200.
+        -200 to 200; below 0 the field grows like |z|^-n: between ellipses with the same foci.
     part
         "re" or "im".
     semi_axes
@@ -369,20 +275,3 @@ def flow_past(
     """
     given: dict[str, Any] = {"velocity": velocity, "circulation": circulation, "centre": centre}  # made exact
     return FlowPast(semi_axes=semi_axes, part=part, **given)  # type: ignore[arg-type]
-
-
-def _power(base: Any, n: int) -> Any:
-    """Return base^n, n >= 1, by squaring: n roundings at most."""
-    result, square = None, base
-    while n:
-        if n & 1:
-            result = square if result is None else result * square
-        n >>= 1
-        if n:
-            square = square * square
-    return result
-
-
-def _as_gradient(slope: Any, part: str) -> tuple[Any, Any]:
-    """Return the gradient of Re f or Im f from f'."""
-    return (slope.real, -slope.imag) if part == "re" else (slope.imag, slope.real)
