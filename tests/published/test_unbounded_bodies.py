@@ -32,6 +32,28 @@ def test_logarithmic_capacities(axes, value):
     assert abs(found - mpmath.mpf(value)) <= mpmath.mpf(10) ** -20
 
 
+# Landkof 1972, table of capacities; Polya & Szego 1951: Gamma(1/4)^2/(4 pi^(3/2)) for side 1, confirmed to 24
+# digits by the Schwarz-Christoffel integral of the side. Some lists call it the capacity of the unit disc.
+def test_logarithmic_capacity_of_the_square():
+    found = log_capacity(fields.square_multipole(0, side=1))
+    assert abs(found - mpmath.mpf("0.590170299508048113022669")) <= mpmath.mpf("1e-20")
+    assert abs(log_capacity(fields.elliptic_multipole(0, semi_axes=(1, 1))) - 1) <= 1e-20  # that of the disc
+
+
+# Newman 1977, table 4.3: 4.754 rho a^2, side 2 a; 20 digits computed as 2 pi capacity^2 - area. Here the
+# kinetic energy of the fluid, by quadrature over the sides of the square.
+def test_added_mass_of_a_square():
+    flow, total = fields.flow_past_square(2, (1, 0)) - fields.affine((1, 0)), 0.0
+    shape = lv.Exterior(lv.Rectangle((-1, -1), (1, 1)))
+    corners = np.array([s.point for s in flow.singularities])
+    for piece in shape.pieces:
+        points, normals, weights = piece.quadrature(20, singular=corners)
+        inside = weights > 0
+        total += float(weights[inside] @ (flow.value(points[inside]) * -normals[inside, 0]))
+    assert total == pytest.approx(4.7537584609059065553, rel=1e-12)
+    assert total == pytest.approx(4.754, abs=5e-4)
+
+
 # Smythe 1968; Landau & Lifshitz vol. 8; units 4 pi eps0, computed with Carlson's R_F
 @pytest.mark.parametrize(
     ("axes", "value"),
