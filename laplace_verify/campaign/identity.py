@@ -37,6 +37,8 @@ def solver_identity(solver: Adapter, source: str = "") -> SolverIdentity:
         name: ", ".join(str(item) for item in declared[name]) for name in CAPABILITIES if declared.get(name)
     }
     shown.setdefault("shapes", "any bounded shape")
+    if solver.checks_well_posedness:
+        shown["checks"] = "refuses ill-posed problems"
     return SolverIdentity(
         name=solver.name,
         kind=solver.kind,
@@ -70,13 +72,14 @@ def case_info(case: Case) -> CaseInfo:
     """Return what a report tells about a case: words, conditions, regularity, a drawing of the outline."""
     problem, regularity = case.problem, case.regularity
     outline = problem.shape.outline(OUTLINE_POINTS) if case.dim == 2 else {}
+    kinds = {piece.name: piece.kind for piece in problem.pieces}
     pieces = tuple(
         PieceInfo(
             name=piece.name,
-            condition=piece.kind,
+            condition=kinds.get(piece.name, "missing"),
             outline=tuple(tuple(row) for row in outline[piece.name].tolist()) if outline else (),
         )
-        for piece in problem.pieces
+        for piece in problem.shape.pieces
     )
     return CaseInfo(
         id=case.id,
@@ -88,7 +91,10 @@ def case_info(case: Case) -> CaseInfo:
         formula=case.exact.formula,
         conductivity=_conductivity_text(problem.conductivity),
         pieces=pieces,
-        regularity=RegularityInfo(
+        ill_posed=problem.ill_posed or "",
+        regularity=None
+        if problem.ill_posed is not None
+        else RegularityInfo(
             solution=regularity.solution,
             domain=regularity.domain,
             scale=regularity.scale,

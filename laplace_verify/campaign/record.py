@@ -81,7 +81,7 @@ class Settings:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class PieceInfo:
-    """A boundary piece: name, condition and, for drawing, a polyline.
+    """A boundary piece: name, condition ("missing" if an ill-posed problem has none) and a polyline.
 
     `outline` has shape (n, d): the two-dimensional pieces as polylines, others empty or a few points.
     """
@@ -129,6 +129,7 @@ class CaseInfo:
     quantities: tuple[QuantityInfo, ...] = ()
     tags: tuple[str, ...] = ()
     sources: tuple[str, ...] = ()
+    ill_posed: str = ""  # why there is no solution, or no single one; "" if there is
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -16,7 +16,7 @@ from laplace_verify.errors import AdapterError, ProblemError
 from laplace_verify.measure import Study, Verdict, study
 from laplace_verify.measure.levels import check_seed, check_sizes
 from laplace_verify.principles import LAWS, Check, check_principle
-from laplace_verify.problems import Case
+from laplace_verify.problems import Case, Problem, as_case
 from laplace_verify.solvers import Adapter, load_solver
 from laplace_verify.version import __version__
 
@@ -27,7 +27,7 @@ Progress = Callable[[Study | Check], object]
 
 def verify(
     solver: Adapter | str,
-    cases: Iterable[str | Case] | None = None,
+    cases: Iterable[str | Case | Problem] | None = None,
     principles: bool = True,
     sizes: Sequence[int] | None = None,
     executor: Executor | None = None,
@@ -45,8 +45,8 @@ def verify(
     solver
         An adapter, or ``module:object`` or ``path/to/file.py:object``.
     cases
-        Ids or cases; None: the whole catalogue, of which those beyond the declared capabilities come back as
-        NOT_APPLICABLE.
+        Ids, cases or ill-posed problems; None: the whole catalogue, of which those beyond the declared
+        capabilities come back as NOT_APPLICABLE.
     principles
         Whether the laws of harmonic functions are checked too.
     sizes
@@ -130,7 +130,7 @@ def verify(
     )
 
 
-def chosen_cases(cases: Iterable[str | Case] | None) -> list[Case]:
+def chosen_cases(cases: Iterable[str | Case | Problem] | None) -> list[Case]:
     """Return the cases asked for by id or as they are, each once; None: the whole catalogue.
 
     Raises
@@ -138,15 +138,15 @@ def chosen_cases(cases: Iterable[str | Case] | None) -> list[Case]:
     UnknownCaseError
         If the catalogue has no case of an id; the nearest ids are named.
     ProblemError
-        If two different cases bear the same id.
+        If two different cases bear the same id, or something is no case.
     """
     if cases is None:
         return list(catalogue.values())
-    if isinstance(cases, str | Case):
+    if isinstance(cases, str | Case | Problem):
         cases = [cases]
     found: dict[str, Case] = {}
     for given in cases:
-        case = given if isinstance(given, Case) else catalogue[given]
+        case = catalogue[given] if isinstance(given, str) else as_case(given)
         if found.setdefault(case.id, case) is not case:
             raise ProblemError(f"two different cases are called {case.id!r}; give each an id of its own")
     return list(found.values())

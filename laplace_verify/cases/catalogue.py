@@ -31,7 +31,7 @@ class Catalogue(Mapping[str, Case]):
     --------
     >>> catalogue["plate-saddle"].exact.formula
     'Re (x + i y)^2'
-    >>> [case.id for case in catalogue.select(dim=1, conditions={"neumann"})]
+    >>> [case.id for case in catalogue.select(dim=1, conditions={"neumann"}, ill_posed=False)]
     ['rod-pure-flux', 'pipe-pure-flux']
     """
 
@@ -77,6 +77,7 @@ class Catalogue(Mapping[str, Case]):
         conditions: Iterable[str] | None = None,
         tags: Iterable[str] | None = None,
         coordinates: str | None = None,
+        ill_posed: bool | None = None,
     ) -> list[Case]:
         """Return the cases that match, in order.
 
@@ -92,6 +93,8 @@ class Catalogue(Mapping[str, Case]):
             A case matches if it has all of them.
         coordinates
             "cartesian", "axisymmetric", "radial-cylinder" or "radial-sphere"; None: whatever they are.
+        ill_posed
+            True: only problems without a solution or with several; False: only those with one; None: all.
 
         Raises
         ------
@@ -101,7 +104,8 @@ class Catalogue(Mapping[str, Case]):
 
         Examples
         --------
-        >>> [case.id for case in catalogue.select(dim=3, shape="box", conditions={"neumann"})]
+        >>> found = catalogue.select(dim=3, shape="box", conditions={"neumann"}, ill_posed=False)
+        >>> [case.id for case in found]
         ['box-pure-flux']
         """
         if coordinates is not None and coordinates not in COORDINATES:
@@ -123,6 +127,7 @@ class Catalogue(Mapping[str, Case]):
             and (can is None or case.conditions <= can)
             and (wanted is None or wanted <= case.tags)
             and (coordinates is None or coordinates == case.problem.coordinates)
+            and (ill_posed is None or ill_posed == (case.problem.ill_posed is not None))
         ]
 
     @staticmethod

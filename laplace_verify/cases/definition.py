@@ -10,6 +10,7 @@ from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass, replace
 from dataclasses import field as dataclass_field
 from itertools import chain
+from typing import Protocol
 
 import numpy.typing as npt
 
@@ -91,7 +92,15 @@ class Definition:
         )
 
 
-Definer = Callable[[], Definition]
+class Buildable(Protocol):
+    """What a case is built from: a `Definition`, or that of an ill-posed case."""
+
+    def build(self, id_: str) -> Case:
+        """Return the case of this id."""
+        ...
+
+
+Definer = Callable[[], Buildable]
 
 
 class Family(dict[str, Definer]):

@@ -41,6 +41,8 @@ def describe(case: Case) -> str:
         ("digits", basis_in_words(case)),
         ("regularity", regularity_in_words(case)),
     ]
+    if problem.ill_posed is not None:
+        facts = [*facts[:2], ("ill-posed", f"{problem.ill_posed}; a solver that checks refuses it")]
     if problem.coordinates != "cartesian":
         facts.insert(1, ("coordinates", f"{problem.coordinates}; integrals are those of space"))
     if case.window is not None:
@@ -69,6 +71,8 @@ def regularity_in_words(case: Case) -> str:
     'u - smooth ~ r^0.6667; domain exponent 0.6667; smallest length 1'
     """
     found = case.regularity
+    if case.problem.ill_posed is not None:
+        return "no solution, or several"
     if math.isinf(found.solution):
         solution = f"u smooth on {'each closed region' if found.interface else 'the closed shape'}"
     elif len(found.jumps):
@@ -99,15 +103,16 @@ def _pieces(case: Case) -> str:
     """Return a table of the boundary pieces."""
     unit = case.units.length
     size = "size" if not unit else f"size ({unit if case.dim == 2 else f'{unit}^{case.dim - 1}'})"
+    kinds = {piece.name: piece.kind for piece in case.problem.pieces}
     rows = [
-        (piece.name, piece.kind, _given(case, piece.name), f"{piece.measure:.6g}")
-        for piece in case.problem.pieces
+        (piece.name, kinds.get(piece.name, "missing"), _given(case, piece.name), f"{piece.measure:.6g}")
+        for piece in case.problem.shape.pieces
     ]
     return _table(rows, ("piece", "condition", "given", size))
 
 
 def _given(case: Case, piece: str) -> str:
-    """Return what is given on a piece; nothing on the axis of symmetry."""
+    """Return what is given on a piece; nothing on the axis of symmetry, or where a condition is missing."""
     return given_in_words(case._conditions[piece]) if piece in case._conditions else "nothing"
 
 

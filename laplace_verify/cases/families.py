@@ -10,6 +10,7 @@ from laplace_verify.cases import (
     discs,
     exteriors,
     exteriors_space,
+    ill_posed,
     materials,
     plates_flux,
     plates_mixed,
@@ -51,4 +52,5 @@ FAMILIES = joined(
     radial.family,
     round_sections.family,
     materials.family,
+    ill_posed.family,
 )

@@ -20,6 +20,7 @@ from tabulate import tabulate
 
 from laplace_verify.cases.catalogue import catalogue
 from laplace_verify.cases.corner_fits import make_fit, stale_fits
+from laplace_verify.cases.definition import Definition
 from laplace_verify.cases.describe import basis_in_words, regularity_in_words
 from laplace_verify.cases.families import FAMILIES
 from laplace_verify.errors import RecordError
@@ -34,7 +35,8 @@ MAKERS = ("numpy", "scipy", "mpmath", "msgspec")
 INDEX = """\
 # Reference cases
 
-{count} boundary value problems div(K grad u) = 0 with exact solutions, one JSON file a case. Written by
+{count} boundary value problems div(K grad u) = 0 with exact solutions, and {ill_posed} without, which a
+solver that checks its input refuses; one JSON file a case. Written by
 `laplace-verify regenerate cases`; edit the sources in `laplace_verify/cases`, not these files.
 
 A file states the shape, the condition on every boundary piece, the conductivity, the exact solution (as a
@@ -144,8 +146,10 @@ def _made(id_: str) -> _Made:
 
 def _complete(id_: str) -> Case:
     """Return a case of the package with its reference values."""
-    case = catalogue[id_]
-    chosen = (Probe(point=tuple(point), place="chosen") for point in FAMILIES[id_]().reference_points)
+    case, definition = catalogue[id_], FAMILIES[id_]()
+    if not isinstance(definition, Definition):  # an ill-posed case has no solution to evaluate
+        return case
+    chosen = (Probe(point=tuple(point), place="chosen") for point in definition.reference_points)
     return replace(case, stored=stored_values(case, (*chosen, *probes_of(case)), DIGITS))
 
 
@@ -160,7 +164,7 @@ def _row(case: Case) -> tuple[str, ...]:
         ", ".join(sorted(case.conditions)),
         regularity_in_words(case),
         str(len(case.stored)),
-        basis_in_words(case),
+        "-" if case.problem.ill_posed is not None else basis_in_words(case),
         "-" if found is None else found[1].route,
     )
 
@@ -171,9 +175,10 @@ def _index(files: Sequence[_Made]) -> str:
         "picture", "case", "dim", "shape", "conditions", "regularity", "points", "digits rest on",
         "confirmed by",
     )  # fmt: skip
-    points = [made.points for made in files]
+    points = [made.points for made in files if made.points]  # ill-posed cases have none
     return INDEX.format(
-        count=len(files),
+        count=len(points),
+        ill_posed=len(files) - len(points),
         fewest=min(points),
         stored=sum(points),
         digits=DIGITS,

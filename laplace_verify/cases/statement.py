@@ -12,6 +12,7 @@ import numpy as np
 from laplace_verify.fields.partitions import Layers, Sectors, Shells
 from laplace_verify.geometry import Shape
 from laplace_verify.problems import Case, Condition, Materials
+from laplace_verify.problems.conditions import Data
 from laplace_verify.problems.coordinates import Coordinates
 from laplace_verify.problems.infinity import AtInfinity
 
@@ -21,6 +22,7 @@ __all__ = [
     "given_in_words",
     "in_symbols",
     "infinity_in_words",
+    "posed_in_words",
     "region_in_words",
     "statement_of",
 ]
@@ -54,6 +56,12 @@ def statement_of(case: Case, solution: str, note: str = "") -> str:
     >>> print(statement_of(rod, "3 x"))
     div(K grad u) = 0 with K = 0.5 in 0 < x < 2; u given on the whole boundary. Solution u = 3 x.
     """
+    seen = f"Norms are taken over {region_in_words(case.window)}." if case.window is not None else ""
+    return " ".join(filter(None, [f"{posed_in_words(case)}. Solution u = {solution}.", note, seen]))
+
+
+def posed_in_words(case: Case) -> str:
+    """Return equation, region and conditions."""
     problem = case.problem
     k = in_symbols(conductivity_in_words(problem.conductivity), problem.coordinates)
     equation = "div grad u = 0" if k == "1" else f"div(K grad u) = 0 with K = {k}"
@@ -66,10 +74,12 @@ def statement_of(case: Case, solution: str, note: str = "") -> str:
         parts.append("no condition on the axis r = 0")
     if problem.at_infinity is not None:
         parts.append(infinity_in_words(problem.at_infinity))
+    missing = [name for name in problem.shape.pieces.names if name not in problem.pieces.names]
+    if missing:
+        parts.append(f"no condition on {', '.join(missing)}")
     if problem.constant is not None:
         parts.append("the mean of u given" if problem.constant[0] == "mean" else "u given at one point")
-    seen = f"Norms are taken over {region_in_words(case.window)}." if case.window is not None else ""
-    return " ".join(filter(None, [f"{'; '.join(parts)}. Solution u = {solution}.", note, seen]))
+    return "; ".join(parts)
 
 
 def infinity_in_words(at_infinity: AtInfinity) -> str:
@@ -154,18 +164,30 @@ def conditions_in_words(conditions: Mapping[str, Condition]) -> list[str]:
 
 
 def given_in_words(condition: Condition) -> str:
-    """Return which combination of u and its flux is given.
+    """Return which combination of u and its flux is given; what it equals if the condition says so.
 
-    >>> given_in_words(Condition(kind="robin", alpha=2.0))
+    >>> from laplace_verify.problems import robin
+    >>> given_in_words(robin(2))
     'n . K grad u + 2 u given'
+    >>> given_in_words(robin(-0.5, "x - y"))
+    'n . K grad u - 0.5 u = x - y'
     """
+    data, alpha = condition.data, condition.alpha
+    given = " given" if data is None else f" = {_right_side(data)}"
     if condition.kind == "dirichlet":
-        return "u given"
+        return f"u{given}"
     if condition.kind == "neumann":
-        return "n . K grad u given"
-    alpha = condition.alpha
-    text = _number(alpha) if isinstance(alpha, float) else f"({alpha})" if isinstance(alpha, str) else "alpha"
-    return f"n . K grad u + {text} u given"
+        return f"n . K grad u{given}"
+    if isinstance(alpha, float):
+        return f"n . K grad u {'-' if alpha < 0.0 else '+'} {_number(abs(alpha))} u{given}"
+    return f"n . K grad u + {f'({alpha})' if isinstance(alpha, str) else 'alpha'} u{given}"
+
+
+def _right_side(data: Data) -> str:
+    """Return what data equal: a number or a formula, or that they are a function."""
+    if isinstance(data, float):
+        return _number(data)
+    return data if isinstance(data, str) else "a function"
 
 
 def region_in_words(shape: Shape) -> str:

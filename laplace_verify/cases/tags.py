@@ -21,7 +21,8 @@ def derived_tags(case: Case) -> frozenset[str]:
 
     "smooth" or "singular", "jump"; "dirichlet" ... for each kind of condition, "mixed" for several,
     "pure-neumann"; "axisymmetric" (in r, z), "radial" (in r), "regions", "tensor", "curved", "re-entrant",
-    "condition-change" (inside a smooth piece), "slit", "hole", "near-source", "high-aspect", "unbounded".
+    "condition-change" (inside a smooth piece), "slit", "hole", "near-source", "high-aspect", "unbounded". An
+    "ill-posed" case has the tags of its shape and conditions only.
 
     >>> from laplace_verify import fields
     >>> from laplace_verify.geometry import LShape
@@ -31,6 +32,8 @@ def derived_tags(case: Case) -> frozenset[str]:
     """
     regularity, kinds = case.regularity, case.conditions
     shape = case.problem.shape
+    if case.problem.ill_posed is not None:
+        return frozenset(kinds) | shape_tags(shape) | {"ill-posed"}
     smooth = math.isinf(regularity.solution)
     facts = {
         "smooth": smooth,

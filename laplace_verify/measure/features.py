@@ -14,7 +14,7 @@ if TYPE_CHECKING:
     from laplace_verify.measure.exact import Exact
     from laplace_verify.problems import Case, Piece, Problem
 
-__all__ = ["features"]
+__all__ = ["features", "ill_posed_features"]
 
 SAMPLED = 16  # points of a piece
 SMALL = 1e-9
@@ -68,6 +68,21 @@ def features(case: Case, exact: Exact) -> dict[str, Feature]:
     found |= {f"{piece.kind} on {piece.name}": True for piece in problem.pieces if piece.kind != "axis"}
     found |= {f"tag {tag}": True for tag in sorted(case.tags)}
     return found
+
+
+def ill_posed_features(case: Case) -> dict[str, Feature]:
+    """Return what can be said of a case without a solution."""
+    problem = case.problem
+    kinds = {piece.kind for piece in problem.pieces}
+    return {
+        "dimension": float(problem.dim),
+        "shape": problem.shape.kind,
+        "ill-posed problem": True,
+        "Dirichlet condition": "dirichlet" in kinds,
+        "Neumann condition": "neumann" in kinds,
+        "Robin condition": "robin" in kinds,
+        "piece without a condition": len(problem.pieces) < len(problem.shape.pieces),
+    }
 
 
 def _data_features(case: Case, exact: Exact) -> dict[str, Feature]:

@@ -10,17 +10,18 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
-from laplace_verify.errors import AdapterError, LaplaceVerifyError, ProblemError, history, told
+from laplace_verify.errors import AdapterError, history
 from laplace_verify.measure.criteria import expectations
 from laplace_verify.measure.expected import Expectation
 from laplace_verify.measure.features import features
 from laplace_verify.measure.judge import combine, judge
 from laplace_verify.measure.levels import check_seed, check_sizes, default_sizes, further_sizes
 from laplace_verify.measure.oddities import oddities, sign_changes
+from laplace_verify.measure.refusal import refusal_study, said
 from laplace_verify.measure.results import Level, Order, Study
 from laplace_verify.measure.running import LevelResult, Runner, check_falling
 from laplace_verify.measure.verdict import Verdict
-from laplace_verify.problems import Case
+from laplace_verify.problems import Case, Problem, as_case
 from laplace_verify.solvers import Adapter, Refused
 
 if TYPE_CHECKING:
@@ -31,7 +32,7 @@ __all__ = ["study"]
 
 def study(
     solver: Adapter,
-    case: Case,
+    case: Case | Problem,
     sizes: Sequence[int] | None = None,
     seed: int = 0,
     max_points: int | None = None,
@@ -43,7 +44,8 @@ def study(
     solver : Adapter
         What `adapt` returns.
     case : Case
-        From the catalogue, or made by `case`.
+        From the catalogue, or made by `case`. An ill-posed one, or an ill-posed `problem`, has no order to
+        observe: PASS if the solver raises `Refused` at every size, FAIL if it answers.
     sizes : sequence of int, optional
         Three or more, increasing; four are needed for a PASS. Default: the solver's own, else 8 16 32 64 in
         one and two dimensions and 6 9 13 19 28 in three. A few more are added to the default
@@ -64,7 +66,7 @@ def study(
     AdapterError
         If `solver` is no adapter, the sizes are not three or more, increasing, or the seed is negative.
     ProblemError
-        If `case` is no case.
+        If `case` is neither a case nor an ill-posed problem.
 
     Examples
     --------
@@ -79,10 +81,13 @@ def study(
     >>> str(found.verdict), round(found.orders["max"].observed, 2)
     ('PASS', 2.0)
     """
-    _check_arguments(solver, case, max_points)
+    _check_arguments(solver, max_points)
+    case = as_case(case)
     check_seed(seed)
     given = check_sizes(sizes) if sizes is not None else solver.sizes
     planned = given if given is not None else default_sizes(case.dim)
+    if case.problem.ill_posed is not None:
+        return refusal_study(solver, case, planned, seed)
     run = _Run(
         solver, case, Runner(solver, case, seed, max_points), list(planned), expectations(solver, case)
     )
@@ -140,7 +145,7 @@ class _Run:
                     added.append(size)
             except (Exception, SystemExit) as cause:
                 self.remarks.append(
-                    f"size {size} was tried beyond the default sizes and broke: {_said(cause)}"
+                    f"size {size} was tried beyond the default sizes and broke: {said(cause)}"
                 )
                 break
         if added:
@@ -173,12 +178,27 @@ class _Run:
     def broken(self, size: int, cause: BaseException) -> Study:
         """Return the study of a solver that broke, with the levels it finished."""
         if isinstance(cause, Refused) and not self.results:
-            return self.result(Verdict.NOT_APPLICABLE, [f"the solver declined: {cause}"], self.remarks)
+            return self.declined(cause)
         if isinstance(cause, Refused):
             reason = f"size {size}: the solver declined a problem that it has solved at other sizes: {cause}"
         else:
-            reason = f"size {size}: {_said(cause)}"
+            reason = f"size {size}: {said(cause)}"
         return self.result(Verdict.ERROR, [reason], self.remarks, self.orders(), crash=history(cause))
+
+    def declined(self, cause: Refused) -> Study:
+        """Return the study of a solver that refused this well-posed problem from the start.
+
+        A solver that claims to tell ill-posed problems from others and takes a sound one for ill-posed is
+        wrong; else one that refuses everything would pass as a solver that checks.
+        """
+        if cause.beyond or not self.solver.checks_well_posedness:
+            return self.result(Verdict.NOT_APPLICABLE, [f"the solver declined: {cause}"], self.remarks)
+        reason = (
+            "the solver declares that it checks whether problems are well posed, and refused this one, which "
+            f"has a solution: {cause} (if the problem is merely beyond the solver: raise "
+            "lv.Refused(reason, beyond=True))"
+        )
+        return self.result(Verdict.FAIL, [reason], self.remarks)
 
     def result(
         self,
@@ -213,23 +233,12 @@ class _Run:
         )
 
 
-def _check_arguments(solver: object, case: object, max_points: int | None) -> None:
-    """Refuse what is no adapter, no case, or no number of points."""
+def _check_arguments(solver: object, max_points: int | None) -> None:
+    """Refuse what is no adapter, or no number of points."""
     if not isinstance(solver, Adapter):
         raise AdapterError(
             f"solver must be an adapter, got {type(solver).__name__}; wrap the function first: "
             'lv.adapt(solve, name="...", kind="finite difference", order=2)'
         )
-    if not isinstance(case, Case):
-        raise ProblemError(
-            f"case must be a Case, got {case!r}; take one from lv.catalogue or make one with lv.case"
-        )
     if max_points is not None and not max_points >= 100:
         raise AdapterError(f"max_points must be at least 100, got {max_points!r}")
-
-
-def _said(cause: BaseException) -> str:
-    """Return what an exception says, with its type unless it is one of ours."""
-    if isinstance(cause, LaplaceVerifyError):
-        return str(cause)
-    return f"the solver raised {told(cause)}"

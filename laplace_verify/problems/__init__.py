@@ -2,6 +2,7 @@
 
 from laplace_verify.problems.case import Case, case
 from laplace_verify.problems.conditions import Condition, dirichlet, neumann, robin
+from laplace_verify.problems.ill_posed import NoSolution, as_case, ill_posed_case
 from laplace_verify.problems.materials import Materials, inclusion, layers, sectors
 from laplace_verify.problems.pieces import MoveLog, Piece, Pieces
 from laplace_verify.problems.problem import Problem, problem
@@ -27,6 +28,7 @@ __all__ = [
     "Interface",
     "Materials",
     "MoveLog",
+    "NoSolution",
     "Piece",
     "Pieces",
     "Problem",
@@ -36,6 +38,7 @@ __all__ = [
     "Regularity",
     "StoredValue",
     "Units",
+    "as_case",
     "case",
     "case_from_json",
     "case_to_json",
@@ -44,6 +47,7 @@ __all__ = [
     "energy_of_solution",
     "exit_gradient_at",
     "flux_through",
+    "ill_posed_case",
     "inclusion",
     "layers",
     "neumann",

@@ -65,7 +65,7 @@ from laplace_verify.problems.solution_checks import check_equation, check_green
 from laplace_verify.problems.stored import StoredValue
 from laplace_verify.problems.units import Units
 
-__all__ = ["Case", "case"]
+__all__ = ["Case", "case", "check_id"]
 
 ID = re.compile(r"[a-z0-9]+(-[a-z0-9]+)*")
 
@@ -83,7 +83,7 @@ class Case:
     problem
         What a solver is handed; it holds no exact solution in reach.
     exact
-        The exact field.
+        The exact field; of an ill-posed case one that says on every evaluation that there is none.
     regularity
         Exponents, singular points, smallest length.
     quantities
@@ -132,7 +132,8 @@ class Case:
         Raises
         ------
         ProblemError
-            If a number is not positive or a unit cannot be read.
+            If a number is not positive, a unit cannot be read, or the case is ill-posed: there is no value to
+            scale.
 
         Examples
         --------
@@ -145,6 +146,8 @@ class Case:
         >>> twin.quantities["heat in through the top"].value, twin.quantities["heat in through the top"].unit
         (25.0, 'W/m')
         """
+        if self.problem.ill_posed is not None:
+            raise ProblemError(f"case {self.id!r} is ill-posed; pose the dimensional problem itself instead")
         big, length_unit = as_scale(length, "length", self.units.length)
         high, value_unit = as_scale(value, "value", self.units.value)
         good, conductivity_unit = as_scale(conductivity, "conductivity", self.units.conductivity)
@@ -253,7 +256,12 @@ def case(
     infinity, view = as_at_infinity(at_infinity, shape), as_window(window, shape)
     seen = shape if view is None else Windowed(shape, view)
     axis = axis_names(shape, coordinates)
-    _check_words(id, field)
+    check_id(id)
+    if not isinstance(field, Field):
+        raise ProblemError(
+            f"the exact solution must be a field, got {type(field).__name__}; "
+            "wrap a function or a formula with laplace_verify.field"
+        )
     if field.dim != shape.dim:
         hint = (
             f"; say dim={shape.dim} where the field is made" if field.opaque and field.dim < shape.dim else ""
@@ -301,16 +309,17 @@ def case(
     )
 
 
-def _check_words(id_: str, field: Any) -> None:
-    """Refuse an id that is no plain name, and a solution that is no field."""
+def check_id(id_: str) -> None:
+    """Refuse an id that is no plain name.
+
+    Raises
+    ------
+    ProblemError
+        Showing what was given.
+    """
     if not isinstance(id_, str) or not ID.fullmatch(id_):
         raise ProblemError(
             f"id must be lower-case words joined by hyphens, such as 'warm-plate', got {id_!r}"
-        )
-    if not isinstance(field, Field):
-        raise ProblemError(
-            f"the exact solution must be a field, got {type(field).__name__}; "
-            "wrap a function or a formula with laplace_verify.field"
         )
 
 

@@ -45,7 +45,7 @@ def is_pure_neumann(pieces: Iterable[Piece]) -> bool:
         if piece.kind != "robin":
             continue
         at = piece.sample(64)[0] if np.isfinite(piece.measure) else piece.boundary.outline(64)
-        if (piece.alpha(at) > 0.0).any():
+        if (piece.alpha(at) != 0.0).any():
             return False
     return True
 

@@ -40,12 +40,14 @@ class Condition:
     data
         f or g: a number, a formula string, a field or a function; None if derived from an exact field.
     alpha
-        Coefficient >= 0 of a Robin condition: a number, a formula string or a function; None for other kinds.
+        Coefficient of a Robin condition: a number, a formula string or a function; None for other kinds. It
+        must be >= 0, unless `data` are given with it for a problem that is said to be ill-posed.
 
     Raises
     ------
     ProblemError
-        If the kind is unknown, a number is not finite, or alpha is missing, misplaced or negative.
+        If the kind is unknown, a number is not finite, or alpha is missing, misplaced, or negative without
+        data. (With data, `problem` checks alpha, for it is told whether the problem is ill-posed.)
     """
 
     kind: Kind
@@ -62,7 +64,7 @@ class Condition:
             raise ProblemError(f"a {self.kind} condition {need}, got alpha={self.alpha!r}")
         for name in ("data", "alpha"):
             object.__setattr__(self, name, _checked(getattr(self, name), name))
-        if isinstance(self.alpha, float) and not self.alpha >= 0.0:
+        if self.data is None and isinstance(self.alpha, float) and not self.alpha >= 0.0:
             raise ProblemError(
                 f"Robin's alpha must be >= 0, got {self.alpha!r}: with n . K grad u + alpha u = g and "
                 f"the outward "
@@ -109,8 +111,7 @@ def robin(alpha: Data, g: Data | None = None) -> Condition:
     Raises
     ------
     ProblemError
-        If alpha is a negative number; a function is checked where it is evaluated, first when the problem is
-        posed.
+        If alpha is a negative number and g is left out; otherwise alpha is checked when the problem is posed.
 
     Examples
     --------

@@ -64,6 +64,7 @@ class Piece:
     parts: tuple[Boundary, ...] = ()
     _data: Callable[[Array], Array] = field(repr=False)
     _alpha: PointFunction | None = field(default=None, repr=False)
+    _alpha_may_be_negative: bool = field(default=False, repr=False)  # in ill-posed problems
     _log: MoveLog | None = field(default=None, repr=False)
 
     @property
@@ -109,9 +110,9 @@ class Piece:
         return self._data(moved) if by_region is None else by_region(moved, region)
 
     def alpha(self, points: npt.ArrayLike) -> Array:
-        """Return Robin's alpha >= 0, shape (n,), at points (n, d), moved onto the piece as in `data`.
+        """Return Robin's alpha, shape (n,), at points (n, d), moved onto the piece as in `data`.
 
-        A Neumann piece is a Robin piece with alpha = 0.
+        It is >= 0 but in ill-posed problems. A Neumann piece is a Robin piece with alpha = 0.
 
         Raises
         ------
@@ -122,7 +123,9 @@ class Piece:
         if self.kind == "dirichlet":
             raise ProblemError(f"piece {self.name!r} has a dirichlet condition; alpha belongs to Robin's")
         moved = self._moved(points)
-        return np.zeros(len(moved)) if self._alpha is None else checked_alpha(self._alpha, moved)
+        if self._alpha is None:
+            return np.zeros(len(moved))
+        return self._alpha(moved) if self._alpha_may_be_negative else checked_alpha(self._alpha, moved)
 
     def contains(
         self, points: npt.ArrayLike, tol: float = 1e-9, normals: npt.ArrayLike | None = None

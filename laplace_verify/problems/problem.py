@@ -34,6 +34,7 @@ from laplace_verify.problems.coordinates import (
     space_dim,
 )
 from laplace_verify.problems.data import PointFunction
+from laplace_verify.problems.flaws import check_flaw
 from laplace_verify.problems.infinity import (
     AtInfinity,
     as_at_infinity,
@@ -71,6 +72,9 @@ class Problem:
     at_infinity
         None on bounded shapes, else "decay", "bounded", ("log", charge) or ("flow", vector, circulation), see
         `infinity`.
+    ill_posed
+        Why the problem has no solution or several, see `ill_posed`; None if it has exactly one (but for the
+        constant).
     """
 
     name: str
@@ -80,6 +84,7 @@ class Problem:
     constant: Constant | None = None
     coordinates: Coordinates = "cartesian"
     at_infinity: AtInfinity = None
+    ill_posed: str | None = None
 
     @property
     def dim(self) -> int:
@@ -174,6 +179,7 @@ def problem(
     coordinates: Coordinates = "cartesian",
     at_infinity: Any = None,
     name: str = "problem",
+    ill_posed: str | None = None,
 ) -> Problem:
     """Return the problem div(K grad u) = 0 with given data on every piece.
 
@@ -196,13 +202,17 @@ def problem(
         `Problem`.
     name
         A name for messages.
+    ill_posed
+        Why the problem has no solution or several. It lets pass one of the flaws that are refused otherwise:
+        flux data that do not balance, a Robin coefficient below 0, a piece without a condition; see
+        `ill_posed`.
 
     Raises
     ------
     ProblemError
         If a piece has no condition or no data, names are unknown or conflict, the conductivity is not
-        positive definite, pure Neumann data do not balance, or `constant` is given where u is fixed by the
-        conditions.
+        positive definite, pure Neumann data do not balance, `constant` is given where u is fixed by the
+        conditions, or a problem is said to be ill-posed that has none of the flaws above.
 
     Examples
     --------
@@ -218,11 +228,12 @@ def problem(
     one_region(shape, k)
     given = by_piece(shape, conditions, axis)
     missing = [piece.name for piece in shape.pieces if piece.name not in given and piece.name not in axis]
-    if missing:
+    if missing and ill_posed is None:
         raise ProblemError(f"every piece needs a condition; missing: {', '.join(missing)}")
     pieces = Pieces(
-        axis_piece(shape, name) if name in axis else _piece(shape, name, given[name], k)
+        axis_piece(shape, name) if name in axis else _piece(shape, name, given[name], k, ill_posed)
         for name in shape.pieces.names
+        if name not in missing
     )
     for piece in pieces:
         if piece.name not in axis and math.isfinite(piece.measure):
@@ -230,10 +241,14 @@ def problem(
     if isinstance(k, Materials):
         regions_of(shape, k)  # refuses regions that do not fit
     infinity = as_at_infinity(at_infinity, shape)
-    fixed = _fixed(shape, pieces, k, constant, coordinates, infinity)
+    if ill_posed is not None:
+        check_flaw(shape, pieces, coordinates, ill_posed)
+    elif is_pure_neumann(pieces) and shape.bounded:
+        check_balance(shape, pieces, coordinates)
+    fixed = _fixed(shape, pieces, k, constant, infinity)
     return Problem(
         name=name, shape=shape, pieces=pieces, conductivity=k, constant=fixed, coordinates=coordinates,
-        at_infinity=infinity,
+        at_infinity=infinity, ill_posed=ill_posed,
     )  # fmt: skip
 
 
@@ -242,15 +257,13 @@ def _fixed(
     pieces: Pieces,
     conductivity: Conductivity,
     constant: Any,
-    coordinates: Coordinates,
     at_infinity: AtInfinity,
 ) -> Constant | None:
-    """Return the constant that flux conditions leave free, after checking that the data balance."""
+    """Return the constant that flux conditions leave free, after checking the flux of unbounded shapes."""
     if not is_pure_neumann(pieces):
         no_constant(constant)
         return None
     if shape.bounded:
-        check_balance(shape, pieces, coordinates)
         return as_constant(("mean", 0.0) if constant is None else constant, shape)
     check_net_flux(shape, pieces, at_infinity, as_tensor(conductivity, shape.dim))
     if fixes_constant(at_infinity):
@@ -291,7 +304,9 @@ def no_constant(constant: Any) -> None:
         )
 
 
-def _piece(shape: Shape, name: str, condition: Condition, conductivity: Conductivity) -> Piece:
+def _piece(
+    shape: Shape, name: str, condition: Condition, conductivity: Conductivity, ill_posed: str | None
+) -> Piece:
     """Return the piece with its given data."""
     if condition.data is None:
         raise ProblemError(
@@ -305,4 +320,5 @@ def _piece(shape: Shape, name: str, condition: Condition, conductivity: Conducti
         parts=piece_parts(shape, name, conductivity),
         _data=PointFunction(condition.data, shape.dim, f"data of piece {name!r}"),
         _alpha=alpha_of(name, condition, shape.dim),
+        _alpha_may_be_negative=ill_posed is not None,
     )

@@ -6,7 +6,7 @@
     conductivity              a number, a matrix, or {"regions": partition, "values": region -> number}
     coordinates               "axisymmetric" (points are (r, z)), "radial-cylinder" or "radial-sphere" (points
                               are r); left out if Cartesian. Pieces called "axis" carry no condition
-    conditions                piece -> {"kind": "robin", "alpha": 3.0}
+    conditions                piece -> {"kind": "robin", "alpha": 3.0}; "data" too in ill-posed problems
     constant                  null, or {"kind": "mean" | "point", "point": null | [x, y], "value": v}
     exact                     {"formula": text, "basis": why its digits can be believed, "field": parameters}
     regularity                exponents (null: smooth, no limit), singular points, jumps, smallest length
@@ -15,6 +15,8 @@
     stored                    list of {"place": words, "point", "value", "gradient", "radius",
                               "gradient_radius", "basis"}: u and every component of grad u at an exact point
                               differ from the truth by no more than the radius; decimal strings
+    ill_posed                 why the problem has no solution or several; left out if it has one. The data are
+                              then given, and exact and regularity are null
     at_infinity, window       unbounded shapes only: "decay", "bounded", ["log", charge] or ["flow", vector,
                               circulation], and the bounded shape over which norms are taken
 
@@ -35,14 +37,16 @@ import numpy as np
 
 from laplace_verify.errors import LaplaceVerifyError, RecordError
 from laplace_verify.fields import from_spec
-from laplace_verify.geometry import shape_from_spec, shape_to_spec
+from laplace_verify.geometry import Shape, shape_from_spec, shape_to_spec
 from laplace_verify.problems.assembly import Conductivity
 from laplace_verify.problems.case import Case, case
 from laplace_verify.problems.compatibility import Constant
 from laplace_verify.problems.conditions import Condition, Kind
 from laplace_verify.problems.coordinates import Coordinates
+from laplace_verify.problems.ill_posed import ill_posed_case
 from laplace_verify.problems.infinity import AtInfinity
 from laplace_verify.problems.materials import Materials
+from laplace_verify.problems.problem import problem
 from laplace_verify.problems.quantities import CLOSED_FORM, Quantity, QuantityKind, QuantitySpec
 from laplace_verify.problems.regularity import Regularity
 from laplace_verify.problems.stored import StoredValue
@@ -60,6 +64,7 @@ AGREEMENT = 1e-9  # of exponents and lengths in a file with those derived
 class _Condition(msgspec.Struct, kw_only=True, forbid_unknown_fields=True, omit_defaults=True):
     kind: Kind
     alpha: float | str | None = None
+    data: float | str | None = None
 
 
 class _Constant(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
@@ -123,13 +128,14 @@ class _CaseFile(msgspec.Struct, kw_only=True, forbid_unknown_fields=True, omit_d
     coordinates: Coordinates = "cartesian"
     conditions: dict[str, _Condition]
     constant: _Constant | None
-    exact: _Exact
-    regularity: _Regularity
+    exact: _Exact | None
+    regularity: _Regularity | None
     quantities: dict[str, _Quantity]
     units: _Units
     stored: list[_Stored]
     at_infinity: str | list[Any] | msgspec.UnsetType = msgspec.UNSET
     window: dict[str, Any] | msgspec.UnsetType = msgspec.UNSET
+    ill_posed: str | msgspec.UnsetType = msgspec.UNSET
 
 
 def case_to_json(case: Case) -> bytes:
@@ -149,10 +155,9 @@ def case_to_json(case: Case) -> bytes:
     >>> text == case_to_json(case_from_json(text))
     True
     """
-    problem = case.problem
-    k = problem.conductivity
-    with _named(f"case {case.id!r}", "exact"):
-        exact = _Exact(formula=case.exact.formula, basis=case.exact.basis, field=case.exact.spec())
+    posed = case.problem
+    k = posed.conductivity
+    solved = posed.ill_posed is None
     content = _CaseFile(
         format=FORMAT,
         format_version=FORMAT_VERSION,
@@ -163,20 +168,21 @@ def case_to_json(case: Case) -> bytes:
         tags=sorted(case.tags),
         sources=list(case.sources),
         dim=case.dim,
-        shape=shape_to_spec(problem.shape),
+        shape=shape_to_spec(posed.shape),
         conductivity=_conductivity_to_file(k),
-        coordinates=problem.coordinates,
-        conditions={p.name: _condition(case, p.name) for p in problem.pieces if p.kind != "axis"},
-        constant=_constant_to_file(problem.constant),
-        exact=exact,
-        regularity=_regularity_to_file(case.regularity),
+        coordinates=posed.coordinates,
+        conditions={p.name: _condition(case, p.name) for p in posed.pieces if p.kind != "axis"},
+        constant=_constant_to_file(posed.constant),
+        exact=_exact_to_file(case) if solved else None,
+        regularity=_regularity_to_file(case.regularity) if solved else None,
         quantities={name: _quantity_to_file(q) for name, q in case.quantities.items()},
         units=_Units(length=case.units.length, value=case.units.value, conductivity=case.units.conductivity),
         stored=[
             _Stored(**{name: getattr(s, name) for name in _Stored.__struct_fields__}) for s in case.stored
         ],
-        at_infinity=_infinity_to_file(problem.at_infinity),
+        at_infinity=_infinity_to_file(posed.at_infinity),
         window=msgspec.UNSET if case.window is None else shape_to_spec(case.window),
+        ill_posed=msgspec.UNSET if posed.ill_posed is None else posed.ill_posed,
     )
     return msgspec.json.format(msgspec.json.encode(content), indent=2) + b"\n"
 
@@ -202,10 +208,17 @@ def case_from_json(data: bytes, path: str = "case file") -> Case:
         shape = shape_from_spec(content.shape)
     if shape.dim != content.dim:
         raise RecordError(f"{path}: dim is {content.dim}, but the shape has dimension {shape.dim}")
+    with _named(path, "conditions"):
+        conditions = {
+            n: Condition(kind=c.kind, alpha=c.alpha, data=c.data) for n, c in content.conditions.items()
+        }
+    if content.ill_posed is not msgspec.UNSET:
+        return _ill_posed(content, path, shape, conditions, content.ill_posed)
+    if content.exact is None or content.regularity is None:
+        missing = "exact" if content.exact is None else "regularity"
+        raise RecordError(f"{path}: {missing} is null, which it may be in ill-posed problems only")
     with _named(path, "exact.field"):
         field = from_spec(content.exact.field)
-    with _named(path, "conditions"):
-        conditions = {n: Condition(kind=c.kind, alpha=c.alpha) for n, c in content.conditions.items()}
     specs = {
         name: QuantitySpec(kind=q.kind, where=q.where, unit=q.unit, place=q.place)
         for name, q in content.quantities.items()
@@ -262,6 +275,35 @@ def _check_stored(made: Case, stored: tuple[StoredValue, ...]) -> None:
             )
 
 
+def _ill_posed(
+    content: _CaseFile, path: str, shape: Shape, conditions: dict[str, Condition], why: str
+) -> Case:
+    """Return the ill-posed case of a file."""
+    for name in ("exact", "regularity", "quantities", "stored"):
+        if getattr(content, name):
+            raise RecordError(
+                f"{path}: {name} must be null or empty, for the problem is said to be ill-posed"
+            )
+    with _named(path, "problem"):
+        posed = problem(
+            shape,
+            conditions,
+            _conductivity_from_file(content.conductivity),
+            constant=_constant_from_file(content.constant),
+            coordinates=content.coordinates,
+            name=content.id,
+            ill_posed=why,
+        )
+        return ill_posed_case(
+            posed,
+            title=content.title,
+            statement=content.statement,
+            reading=content.reading,
+            tags=content.tags,
+            sources=content.sources,
+        )
+
+
 def _decoded(data: bytes, path: str) -> _CaseFile:
     """Return the typed content of a file."""
     try:
@@ -302,7 +344,18 @@ def _condition(case: Case, name: str) -> _Condition:
             f"to a file; "
             "give a number or a formula string"
         )
-    return _Condition(kind=condition.kind, alpha=alpha)
+    data = condition.data
+    if data is not None and not isinstance(data, float | str):
+        raise RecordError(
+            f"case {case.id!r}: the data of piece {name!r} are a function, which cannot be written to a "
+            "file; give a number or a formula string"
+        )
+    return _Condition(kind=condition.kind, alpha=alpha, data=data)
+
+
+def _exact_to_file(case: Case) -> _Exact:
+    with _named(f"case {case.id!r}", "exact"):
+        return _Exact(formula=case.exact.formula, basis=case.exact.basis, field=case.exact.spec())
 
 
 def _conductivity_to_file(conductivity: Conductivity) -> float | list[list[float]] | dict[str, Any]:

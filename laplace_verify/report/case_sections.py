@@ -73,6 +73,7 @@ def _question(info: CaseInfo) -> list[Block]:
         ("Conditions", ", ".join(f"{piece.name}: {piece.condition}" for piece in info.pieces)),
         ("Conductivity", info.conductivity),
         ("Exact solution", info.formula),
+        ("Ill-posed", info.ill_posed),
         ("Regularity", _regularity(info)),
         ("Quantities", "; ".join(f"{q.name} = {q.value!r} {q.unit}".strip() for q in info.quantities)),
         ("Tags", ", ".join(info.tags)),

@@ -13,6 +13,7 @@ from laplace_verify.report.case_sections import case_anchor
 from laplace_verify.report.content import Block, Cell, Column, Items, Paragraph, Section, Table
 from laplace_verify.report.text import (
     NEVER_EXERCISED,
+    NO_SOLUTION,
     VERDICT_WORDS,
     accepted,
     conditions_of,
@@ -26,7 +27,7 @@ _MEASURED = (Verdict.PASS, Verdict.FAIL, Verdict.INCONCLUSIVE)
 _ALWAYS_ASKED = (
     *(("dimension", text) for text in ("1-D", "2-D", "3-D")),
     *(("condition", text) for text in ("dirichlet", "neumann", "robin")),
-    *(("solution", text) for text in ("smooth", "singular point", "jump of the data")),
+    *(("solution", text) for text in ("smooth", "singular point", "jump of the data", NO_SOLUTION)),
     *(("conductivity", text) for text in ("1", "other scalar", "tensor", "regions")),
 )
 
@@ -34,7 +35,7 @@ _ALWAYS_ASKED = (
 def traits(info: CaseInfo) -> list[tuple[str, str]]:
     """Return what a case exercises, as (aspect, value)."""
     smoothness = regularity_class(info)
-    if smoothness not in ("smooth", "jump of the data", "not stated"):
+    if smoothness not in ("smooth", "jump of the data", "not stated", NO_SOLUTION):
         smoothness = "singular point"
     conductivity = info.conductivity
     if conductivity != "1":

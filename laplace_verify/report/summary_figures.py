@@ -82,6 +82,8 @@ def _why_no_number(study: Study, norm: str | None) -> str:
     if study.verdict is Verdict.ERROR:
         return "error"
     found = study.orders.get(norm) if norm else None
+    if found is None and not study.orders:
+        return f"{VERDICT_WORDS[study.verdict]}, no order to observe"
     if found is None:
         return f"{VERDICT_WORDS[study.verdict]}, no norm decides"
     if isinstance(found.expected, str):

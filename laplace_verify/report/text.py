@@ -14,6 +14,7 @@ __all__ = [
     "CAUTIONS",
     "FIGURE_KEY",
     "NEVER_EXERCISED",
+    "NO_SOLUTION",
     "SCOPE",
     "SYMBOLS",
     "VERDICT_MEANING",
@@ -56,13 +57,17 @@ SYMBOLS = {
     Verdict.NOT_RUN: "–",
 }
 VERDICT_MEANING = {
-    Verdict.PASS: "the observed order agrees with the expected one in every deciding norm",
-    Verdict.FAIL: "the observed order falls short significantly, or an exact check fails",
+    Verdict.PASS: "the observed order agrees with the expected one in every deciding norm, or an ill-posed "
+    "problem is refused",
+    Verdict.FAIL: "the observed order falls short significantly, an exact check fails, or an ill-posed "
+    "problem is answered",
     Verdict.INCONCLUSIVE: "the levels do not decide; the reason says what to do next",
     Verdict.ERROR: "the solver broke or gave back something that cannot be measured",
     Verdict.NOT_APPLICABLE: "the case asks for more than the solver declares",
     Verdict.NOT_RUN: "left out by the selection or by the budget",
 }
+
+NO_SOLUTION = "none, ill-posed"  # the smoothness of a solution that does not exist
 
 SCOPE = (
     "This is a code verification: the solver is given boundary value problems of div(K grad u) = 0 whose "
@@ -224,6 +229,8 @@ def conditions_of(info: CaseInfo) -> list[str]:
 def regularity_class(info: CaseInfo) -> str:
     """Return the regularity of the exact solution in two or three words."""
     regularity = info.regularity
+    if info.ill_posed:
+        return NO_SOLUTION
     if regularity is None:
         return "not stated"
     if regularity.jumps or regularity.solution == 0:

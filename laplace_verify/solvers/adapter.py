@@ -42,15 +42,19 @@ SolveFunction = Callable[..., Answer]
 class Refused(LaplaceVerifyError, RuntimeError):  # noqa: N818  # raised as `raise Refused(reason)`
     """What a solver raises when it declines a problem, such as an ill-posed one.
 
+    From a solver that declares `checks_well_posedness` it means that the problem is ill-posed, unless
+    `beyond` says that the problem is sound but more than the solver can do.
+
     >>> raise Refused("pure flux data do not balance")
     Traceback (most recent call last):
     ...
     laplace_verify.solvers.adapter.Refused: pure flux data do not balance
     """
 
-    def __init__(self, reason: str) -> None:
+    def __init__(self, reason: str, beyond: bool = False) -> None:
         super().__init__(reason)
         self.reason = str(reason)
+        self.beyond = beyond
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -74,6 +78,7 @@ class Adapter:
     reproduces_degree: int | None
     discrete_laws: frozenset[str]
     fixes_constant: bool
+    checks_well_posedness: bool
     clearance: float
     formulation: str | None
     discretisation: str | None
@@ -125,6 +130,11 @@ class Adapter:
             if not fits:
                 scope = f"{what} {_listed(declared)}".rstrip()
                 return f"{self.name} is declared for {scope}; the problem has {_listed(met)}"
+        if problem.ill_posed is not None and not self.checks_well_posedness:
+            return (
+                f"the problem is ill-posed ({problem.ill_posed}), and {self.name} does not declare that it "
+                "checks whether problems are well posed (checks_well_posedness)"
+            )
         return None
 
     def solve(
@@ -183,6 +193,7 @@ class Declaration(TypedDict, total=False):
     reproduces_degree: int | None
     discrete_laws: Iterable[str]
     fixes_constant: bool
+    checks_well_posedness: bool
     clearance: float
     formulation: str | None
     discretisation: str | None
@@ -219,6 +230,9 @@ def adapt(
     reproduces_degree : harmonic polynomials up to this degree come out exact to round-off
     discrete_laws : names of laws that hold exactly for its values
     fixes_constant : whether pure Neumann answers honour ``problem.constant``, so that their level is judged
+    checks_well_posedness : whether it raises `Refused` on ill-posed problems: flux data that do not balance,
+        a Robin coefficient below 0, a piece without a condition. It is then given some, and an answer fails;
+        so does refusing a well-posed problem, unless as ``Refused(reason, beyond=True)``
     clearance : points nearer to the boundary than this (relative to the shape's size) do not decide
     formulation : "direct" or "indirect", for boundary elements
     discretisation : "collocation" or "Galerkin", for boundary elements

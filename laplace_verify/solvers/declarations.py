@@ -65,8 +65,8 @@ PREFIXES: Final = ("trace", "flux", "fluxdensity", "quantity", "probe")
 OFFERED: Final = ("wanted", "seed")  # keywords that a study passes to every solver that has them
 KEYWORDS: Final = (
     "name", "kind", "order", "dims", "shapes", "conditions", "conductivity", "coordinates", "unbounded",
-    "error_floor", "reproduces_degree", "discrete_laws", "fixes_constant", "clearance", "formulation",
-    "discretisation", "sizes", "claims", "known", "expected",
+    "error_floor", "reproduces_degree", "discrete_laws", "fixes_constant", "checks_well_posedness",
+    "clearance", "formulation", "discretisation", "sizes", "claims", "known", "expected",
 )  # fmt: skip
 
 _VALUE_NORMS = ("max", "L1", "L2")
@@ -204,6 +204,7 @@ def check_declaration(given: Mapping[str, Any]) -> dict[str, Any]:
         "reproduces_degree": _whole("reproduces_degree", get("reproduces_degree")),
         "discrete_laws": frozenset(_texts("discrete_laws", get("discrete_laws", ()))),
         "fixes_constant": _flag("fixes_constant", get("fixes_constant", False)),
+        "checks_well_posedness": _flag("checks_well_posedness", get("checks_well_posedness", False)),
         "clearance": _number("clearance", get("clearance"), positive=False) or 0.0,
         "formulation": _of_boundary("formulation", get("formulation"), kind, FORMULATIONS),
         "discretisation": _of_boundary("discretisation", get("discretisation"), kind, DISCRETISATIONS),

@@ -17,7 +17,9 @@ FIRST_ORDER = FAULTS["first-order flux"].adapter
 NEUMANN = [
     id_
     for id_, case in lv.catalogue.items()
-    if FIRST_ORDER.refuses(case.problem) is None and "neumann" in case.conditions
+    if FIRST_ORDER.refuses(case.problem) is None
+    and "neumann" in case.conditions
+    and case.problem.ill_posed is None
 ]
 # Cases with Neumann data on which a first-order closure leaves no trace in the deciding norms.
 INVISIBLE = {

@@ -14,7 +14,7 @@ from laplace_verify.fields import Field
 from laplace_verify.measure.windows import through_window
 from laplace_verify.problems import case_from_json, case_to_json
 
-IDS = list(lv.catalogue)
+IDS = [case.id for case in lv.catalogue.select(ill_posed=False)]
 EVERY = pytest.mark.parametrize("id_", IDS)
 DIGITS = 30
 # Cases whose float64 values lose more digits than others, by these factors: the two inner corners of the T
@@ -293,7 +293,7 @@ def test_a_wrong_case_does_not_pass(monkeypatch):
 
 def test_catalogue_covers_what_it_promises():
     """Dimensions, shapes, conditions and difficulties, each by several cases."""
-    cases = list(lv.catalogue.values())
+    cases = [lv.catalogue[id_] for id_ in IDS]
     assert len(cases) >= 55
     kinds = {case.problem.shape.kind for case in cases}
     assert kinds >= {

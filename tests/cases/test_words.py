@@ -12,7 +12,7 @@ from laplace_verify.cases.tags import derived_tags
 from laplace_verify.problems import Condition, robin
 
 
-@pytest.mark.parametrize("id_", lv.catalogue)
+@pytest.mark.parametrize("id_", [case.id for case in lv.catalogue.select(ill_posed=False)])
 def test_description_holds_everything_a_reader_needs(id_):
     case = lv.catalogue[id_]
     text = " ".join(describe(case).split())
@@ -64,7 +64,7 @@ def test_function_as_coefficient_is_called_alpha():
 def test_solutions_written_in_words_are_the_exact_fields():
     """Formulas of the statements in plain arithmetic, evaluated, against the fields they describe."""
     checked = 0
-    for case in lv.catalogue.values():
+    for case in lv.catalogue.select(ill_posed=False):
         formula = case.statement.partition("Solution u = ")[2].partition(". ")[0].rstrip(".")
         if case.problem.coordinates != "cartesian":  # r and z are the first and second coordinate
             formula = re.sub(r"\bz\b", "y", re.sub(r"\br\b", "x", formula))

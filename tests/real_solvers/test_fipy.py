@@ -29,6 +29,7 @@ def fipy_solve():
 def can_do(case):
     return (
         case.problem.shape.kind == "rectangle"
+        and case.problem.ill_posed is None
         and case.conditions <= {"dirichlet", "neumann"}
         and "tensor" not in case.tags
     )

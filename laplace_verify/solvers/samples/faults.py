@@ -13,6 +13,7 @@ import numpy as np
 import scipy.sparse as sp
 
 from laplace_verify.arrays import Array
+from laplace_verify.problems import Problem
 from laplace_verify.problems.coordinates import metric
 from laplace_verify.solvers.adapter import Adapter
 from laplace_verify.solvers.samples.finite_difference import (
@@ -138,6 +139,11 @@ def outer_radius_stencil(grid: Grid, tensor: Array) -> sp.csr_array:
     return box_stencil(_OuterRadius(**values), tensor)
 
 
+def accept_everything(problem: Problem) -> None:
+    """Take whatever comes."""
+    del problem
+
+
 def _fault(name: str, description: str, scheme: Scheme) -> tuple[str, Fault]:
     """Return an entry of `FAULTS`."""
     return name, Fault(description, five_point_with(scheme, f"five-point finite differences, fault: {name}"))
@@ -173,6 +179,11 @@ FAULTS: dict[str, Fault] = dict(
             "arithmetic mean of conductivities",
             "arithmetic mean of K across interfaces where the harmonic one belongs; invisible elsewhere",
             replace(SCHEME, stencil=smeared_stencil),
+        ),
+        _fault(
+            "ill-posed input accepted",
+            "ill-posed problems are answered, for the checks of the input are left out; invisible elsewhere",
+            replace(SCHEME, accept=accept_everything),
         ),
         _fault(
             "radius of the outer node",

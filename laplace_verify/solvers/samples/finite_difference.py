@@ -29,6 +29,7 @@ from laplace_verify.problems import Piece, Problem
 from laplace_verify.solvers.adapter import Adapter, Refused, adapt
 from laplace_verify.solvers.answer import Answer
 from laplace_verify.solvers.samples.corner_rows import corner_rows
+from laplace_verify.solvers.samples.input_checks import refuse_ill_posed
 from laplace_verify.solvers.samples.levels import level_shift
 from laplace_verify.solvers.samples.linear_systems import conjugate_gradients, direct
 from laplace_verify.solvers.samples.rectilinear import Grid, Patch, axis_balances, grid_on
@@ -135,6 +136,7 @@ def carried_load(equations: Equations, sides: list[Side]) -> Array:  # noqa: ARG
 class Scheme:
     """The decisions that make a finite-difference solver."""
 
+    accept: Callable[[Problem], None] = refuse_ill_posed
     stencil: Callable[[Grid, Array], sp.csr_array] = box_stencil
     corners: Callable[[Grid, Array, list[Patch]], sp.csr_array] = corner_rows
     robin: Callable[[Equations, Side], None] = half_cell_transfer
@@ -154,6 +156,7 @@ SETTLED = 1e-10  # relative change that ends them
 
 def solve_on_grid(problem: Problem, n: int, scheme: Scheme = SCHEME) -> Answer:
     """Solve div(K grad u) = 0 on an interval, rectangle, L-shape or box with n cells along every side."""
+    scheme.accept(problem)
     grid = grid_on(problem.shape, n, interface_lines(problem), problem.coordinates)
     tensor, regions = material(problem, grid)
     sides = [
@@ -191,7 +194,8 @@ def interface_lines(problem: Problem) -> list[list[float]]:
         spread = float(np.ptp(points[:, axis]))
         if not (np.abs(normals[:, axis]) > 1.0 - 1e-9).all() or spread > 1e-9 * problem.shape.extent:
             raise Refused(
-                f"the interface {interface.name!r} follows no axis, so that no line of the grid can lie on it"
+                f"the interface {interface.name!r} follows no axis, so no line of the grid can lie on it",
+                beyond=True,
             )
         lines[axis].append(float(points[0, axis]))
     return lines
@@ -304,6 +308,7 @@ def fluxes(grid: Grid, sides: list[Side], values: Array) -> dict[str, float]:
     conductivity={"scalar", "tensor", "regions"},
     coordinates={"cartesian", "axisymmetric", "radial-cylinder", "radial-sphere"},
     error_floor=1e-11,
+    checks_well_posedness=True,
 )
 def five_point(problem: Problem, n: int) -> Answer:
     """Solve on an interval, a rectangle or an L-shape by the three- or five-point formula and LU factors.
@@ -323,6 +328,7 @@ def five_point(problem: Problem, n: int) -> Answer:
     conditions={"dirichlet", "neumann", "robin"},
     conductivity={"scalar", "tensor"},
     error_floor=1e-10,
+    checks_well_posedness=True,
 )
 def seven_point(problem: Problem, n: int) -> Answer:
     """Solve on a box by the seven-point formula and conjugate gradients."""
