@@ -5,13 +5,8 @@ from laplace_verify.fields.base import Field
 from laplace_verify.fields.box_faces import box_faces
 from laplace_verify.fields.box_modes import box_mode
 from laplace_verify.fields.checkerboards import checkerboard, checkerboard_ratio
-from laplace_verify.fields.corner_powers import (
-    CornerPowers,
-    CornerSeries,
-    Expansion,
-    PolynomialPart,
-    corner_powers,
-)
+from laplace_verify.fields.corner_powers import CornerPowers, corner_powers
+from laplace_verify.fields.corner_series import CornerSeries, Expansion, LocalSum, PolynomialPart
 from laplace_verify.fields.cylinder_faces import cylinder_faces
 from laplace_verify.fields.disc_arcs import arcs
 from laplace_verify.fields.edges import Edge, Ring
@@ -54,6 +49,7 @@ __all__ = [
     "Expansion",
     "Field",
     "Formula",
+    "LocalSum",
     "PolynomialPart",
     "Ring",
     "Sheet",

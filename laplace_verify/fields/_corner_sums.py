@@ -10,12 +10,22 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from laplace_verify.contexts import FLOAT
+from laplace_verify.fields._precision import working
 from laplace_verify.fields.exact import Exact, offset
 
 if TYPE_CHECKING:
-    from laplace_verify.fields.corner_powers import CornerSeries, PolynomialPart
+    from laplace_verify.fields.corner_series import CornerSeries, Expansion, PolynomialPart
 
-__all__ = ["LocalPoint", "Powers", "angle_of", "horner", "local", "polynomial_sum", "turned"]
+__all__ = [
+    "LocalPoint",
+    "Powers",
+    "angle_of",
+    "expansion_gradient",
+    "expansion_value",
+    "local",
+    "on_lip",
+    "turned",
+]
 
 # A point meant to lie on a lip may be off by the rounding of its coordinates, or by this angle.
 LIP_ANGLE = 1e-9
@@ -80,14 +90,40 @@ def local(ctx: Any, x: tuple[Any, ...], side: Any, corner: CornerSeries) -> Loca
     floor = np.floor if ctx is FLOAT else ctx.floor
     turns = floor((end - angle) / (2 * ctx.pi))
     if side is not None:
-        ex, ey = corner.bisector
-        size = abs(dx) + abs(dy)
-        rounding = LIP_ROUNDING * (size + sum(abs(float(c)) for c in corner.apex))
-        lip = (abs(ex * dy - ey * dx) <= LIP_ANGLE * size + rounding) & (ex * dx + ey * dy >= 0) & (side != 0)
+        lip = on_lip(dx, dy, side, corner)
         meant = ctx.where(side > 0, end - 2 * ctx.pi, end)
         turns = ctx.where(lip, floor((meant - angle) / (2 * ctx.pi) + 0.5), turns)
     r = ctx.hypot(dx, dy) / ctx.number(corner.scale)
     return LocalPoint(along=along, across=across, r=r, angle=angle + 2 * ctx.pi * turns)
+
+
+def on_lip(dx: Any, dy: Any, side: Any, corner: CornerSeries) -> Any:
+    """Return whether offsets from a corner lie on its cut, to rounding, and a side is named there."""
+    ex, ey = corner.bisector
+    size = abs(dx) + abs(dy)
+    rounding = LIP_ROUNDING * (size + sum(abs(float(c)) for c in corner.apex))
+    return (abs(ex * dy - ey * dx) <= LIP_ANGLE * size + rounding) & (ex * dx + ey * dy >= 0) & (side != 0)
+
+
+def expansion_value(ctx: Any, x: tuple[Any, ...], side: Any, terms: Expansion) -> Any:
+    """Return u: the polynomial and the parts of the corners."""
+    total = polynomial_sum(ctx, x, terms.polynomial, derivative=False)[0]
+    for corner in terms.corners:
+        z = local(ctx, x, side, corner)
+        re, im = horner(ctx, z, corner, derivative=False)
+        total = total + (im if corner.powers.sine else re)
+    return total
+
+
+def expansion_gradient(ctx: Any, x: tuple[Any, ...], side: Any, terms: Expansion) -> tuple[Any, Any]:
+    """Return the parts of f': u_x = Re f', u_y = -Im f' for u = Re f; Im f', Re f' for u = Im f."""
+    gx, gy = polynomial_sum(ctx, x, terms.polynomial, derivative=True)
+    for corner in terms.corners:
+        z = local(ctx, x, side, corner)
+        re, im = horner(ctx, z, corner, derivative=True)
+        gx = gx + (im if corner.powers.sine else re)
+        gy = gy + (re if corner.powers.sine else -im)
+    return gx, gy
 
 
 def horner(ctx: Any, z: LocalPoint, corner: CornerSeries, *, derivative: bool) -> tuple[Any, Any]:
@@ -95,26 +131,48 @@ def horner(ctx: Any, z: LocalPoint, corner: CornerSeries, *, derivative: bool) -
 
     The derivative is with respect to x + i y. It is formed as z f' / z, with the sum of λ_j c_j z^{λ_j}.
     """
-    step = ctx.pi / angle_of(ctx, corner.start, corner.stop)
-    powers = corner.powers
     zero = z.r == 0
     safe = ctx.where(zero, ctx.number(1), z.r)
-    size = ctx.where(zero, ctx.number(0), safe**step)
-    p, q = size * ctx.cos(step * z.angle), size * ctx.sin(step * z.angle)
-    weights = [powers.multiple(j) for j in range(1, len(corner.coefficients) + 1)] if derivative else None
-    re, im = _sum(ctx, p, q, corner.coefficients, weights)
-    half = step / 2 if powers.mixed else step
-    root = ctx.where(zero, ctx.number(0), safe**half)
-    turn = half * z.angle
-    c, s = root * ctx.cos(turn), root * ctx.sin(turn)
-    re, im = re * c - im * s, re * s + im * c  # the sum starts with z^{λ_1}
-    if derivative:
-        re, im = re * step, im * step
+    re, im = 0 * z.r, 0 * z.r
+    if corner.coefficients:
+        re, im = _powers(ctx, z, safe, zero, corner, derivative)
     for n, text in corner.logs:
         a, b = _logarithm(ctx, z, safe, zero, n, derivative)
         number = ctx.number(text)
         re, im = re + number * a, im + number * b
     return _per_length(ctx, z, zero, corner, re, im) if derivative else (re, im)
+
+
+def _powers(
+    ctx: Any, z: LocalPoint, safe: Any, zero: Any, corner: CornerSeries, derivative: bool
+) -> tuple[Any, Any]:
+    """Return the parts of sum c_j z^{λ_j}, or of z times its derivative, sum λ_j c_j z^{λ_j}."""
+    step, rest = _step(ctx, corner.start, corner.stop)
+    powers = corner.powers
+    size = ctx.where(zero, ctx.number(0), safe**step)
+    p, q = size * ctx.cos(step * z.angle), size * ctx.sin(step * z.angle)
+    weights = [powers.multiple(j) for j in range(1, len(corner.coefficients) + 1)] if derivative else None
+    re, im = _sum(ctx, p, q, corner.coefficients, weights)
+    c, s = p, q
+    if powers.mixed:
+        root, turn = ctx.where(zero, ctx.number(0), safe ** (step / 2)), step / 2 * z.angle
+        c, s = root * ctx.cos(turn), root * ctx.sin(turn)
+    re, im = re * c - im * s, re * s + im * c  # the sum starts with z^{λ_1}
+    if not derivative:
+        return re, im
+    # beside the apex only λ_1 counts, and the rounding of its exponent
+    factor = step * (1 + powers.multiple(1) * rest * ctx.log(safe))
+    return re * factor, im * factor
+
+
+@lru_cache(maxsize=64)
+def _step(ctx: Any, start: tuple[Exact, ...], stop: tuple[Exact, ...]) -> tuple[Any, Any]:
+    """Return π/ω and, in float64, what it lacks."""
+    if ctx is not FLOAT:
+        return ctx.pi / angle_of(ctx, start, stop), ctx.number(0)
+    better = working(30)
+    exact = better.pi / angle_of(better, start, stop)
+    return float(exact), float(exact - better.mpf(float(exact)))
 
 
 def _logarithm(ctx: Any, z: LocalPoint, safe: Any, zero: Any, n: int, derivative: bool) -> tuple[Any, Any]:

@@ -19,8 +19,8 @@ Moler 1967; from memory, unchecked). Sums are done by Horner's rule in z^{π/ω}
 offsets, so that r^(2/3) keeps its digits at any distance from its corner.
 
 A fit (`references.corner_fit`) stores its coefficients as decimal strings together with a radius that bounds
-the distance of u from the solution of a boundary value problem. In float64 a second, shorter expansion with
-small coefficients can serve (`swift`): the long one may need more digits than float64 has.
+the distance of u from the solution of a boundary value problem. Its terms may be far larger than u and
+cancel, which float64 cannot bear; there sums about many points can serve, each near its own (`local_sums`).
 """
 
 from __future__ import annotations
@@ -31,91 +31,38 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from fractions import Fraction
 from functools import lru_cache
-from typing import Any, NamedTuple
+from typing import Any
 
 import numpy as np
 
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.contexts import FLOAT, MAX_DIGITS, Number
 from laplace_verify.errors import FieldError, LaplaceVerifyError
-from laplace_verify.fields._corner_sums import Powers, angle_of, horner, local, polynomial_sum, turned
+from laplace_verify.fields._corner_sums import expansion_gradient, expansion_value
 from laplace_verify.fields.base import Field
+from laplace_verify.fields.corner_series import (
+    NOTHING,
+    CornerSeries,
+    Expansion,
+    LocalSum,
+    PolynomialPart,
+    checked_expansion,
+    checked_local_sum,
+    numeral,
+)
 from laplace_verify.fields.exact import Exact, exact, exact_point
+from laplace_verify.fields.local_sums import gradient_by_parts, value_by_parts
 from laplace_verify.fields.motions import show_point
 from laplace_verify.fields.singular import Basis, Cut, Singularity
 from laplace_verify.fields.specs import registered
 from laplace_verify.geometry import Polygon
 
-__all__ = ["CornerPowers", "CornerSeries", "Expansion", "PolynomialPart", "corner_powers"]
+__all__ = ["CornerPowers", "corner_powers"]
 
 INSIDE = 1e-9  # of the polygon's size: points this far outside are taken for points of the boundary
 WHOLE = 1e-9  # of an exponent
 SMALLEST_RADIUS = Fraction(1, 10**300)  # float64 holds it
-SIDES = ("dd", "nn", "dn", "nd")
 BASES = ("maximum-principle bound", "confirmed", "closed form", "uncertified")
-
-
-class CornerSeries(NamedTuple):
-    """The terms of one corner.
-
-    Attributes
-    ----------
-    apex
-        The corner w.
-    start, stop
-        Directions from w along its two sides; the region lies counter-clockwise from `start`. Equal
-        directions make a slit, with ω = 2 pi.
-    sides
-        "dd", "nn", "dn" or "nd": the types of condition on the two sides, start first.
-    scale
-        Length that makes z dimensionless, > 0.
-    coefficients
-        c_1, c_2, ... as decimal strings.
-    logs
-        Pairs (n, l_n) of a whole number and a decimal string.
-    """
-
-    apex: tuple[Exact, ...]
-    start: tuple[Exact, ...]
-    stop: tuple[Exact, ...]
-    sides: str
-    scale: Exact = 1
-    coefficients: tuple[str, ...] = ()
-    logs: tuple[tuple[int, str], ...] = ()
-
-    @property
-    def opening(self) -> float:
-        """The angle ω in radians."""
-        return float(angle_of(FLOAT, self.start, self.stop))
-
-    @property
-    def powers(self) -> Powers:
-        """Which multiples of π/ω the exponents are, and which part is taken."""
-        return Powers(mixed=self.sides[0] != self.sides[1], sine=self.sides[0] == "d")
-
-    @property
-    def bisector(self) -> tuple[float, float]:
-        """Unit vector along the cut."""
-        return turned(self.start, self.opening / 2 + math.pi)
-
-
-class PolynomialPart(NamedTuple):
-    """a_0, a_1, ... of Re t^n and b_0, b_1, ... of Im t^n (decimal strings); t = (x + i y - centre)/scale."""
-
-    re: tuple[str, ...] = ()
-    im: tuple[str, ...] = ()
-    centre: tuple[Exact, ...] = (0, 0)
-    scale: Exact = 1
-
-
-NOTHING = PolynomialPart()
-
-
-class Expansion(NamedTuple):
-    """Corners and polynomial of one sum."""
-
-    corners: tuple[CornerSeries, ...] = ()
-    polynomial: PolynomialPart = NOTHING
 
 
 @registered("corner-powers")
@@ -128,7 +75,7 @@ class CornerPowers(Field):
     precise
         The expansion that defines the field.
     swift
-        The expansion used in float64, or None for the same.
+        The sums used in float64, each where it is nearest; () for the same expansion.
     vertices
         Corners of the polygon outside of which the field is not defined; () for the whole plane.
     radius
@@ -139,16 +86,16 @@ class CornerPowers(Field):
     """
 
     precise: Expansion
-    swift: Expansion | None = None
+    swift: tuple[LocalSum, ...] = ()
     vertices: tuple[tuple[Exact, ...], ...] = ()
     radius: str = "0"
     trust: Basis = "closed form"
 
     def __post_init__(self) -> None:
         """Check every parameter."""
-        object.__setattr__(self, "precise", _expansion(self.precise, "precise"))
-        if self.swift is not None:
-            object.__setattr__(self, "swift", _expansion(self.swift, "swift"))
+        object.__setattr__(self, "precise", checked_expansion(self.precise, "precise"))
+        swift = tuple(checked_local_sum(part, f"swift[{i}]") for i, part in enumerate(self.swift))
+        object.__setattr__(self, "swift", swift)
         vertices = tuple(exact_point(v, f"vertices[{i}]", (2,)) for i, v in enumerate(self.vertices))
         object.__setattr__(self, "vertices", vertices)
         if vertices:
@@ -156,7 +103,7 @@ class CornerPowers(Field):
                 _polygon(vertices)
             except LaplaceVerifyError as cause:
                 raise FieldError(f"vertices must be those of a polygon: {cause}") from cause
-        radius = exact(_numeral(self.radius, "radius"), "radius")
+        radius = exact(numeral(self.radius, "radius"), "radius")
         if not (radius == 0 or radius >= SMALLEST_RADIUS):
             raise FieldError(f"radius must be >= 0, and at least 1e-300 if not 0, got {self.radius!r}")
         if self.trust not in BASES:
@@ -224,29 +171,15 @@ class CornerPowers(Field):
             return np.ones(len(points), dtype=bool)
         return _polygon(self.vertices).contains(points, tol=INSIDE)
 
-    def _terms(self, ctx: Any) -> Expansion:
-        """Return the expansion for a context."""
-        return self.swift if ctx is FLOAT and self.swift is not None else self.precise
-
     def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:
-        terms = self._terms(ctx)
-        total = polynomial_sum(ctx, x, terms.polynomial, derivative=False)[0]
-        for corner in terms.corners:
-            z = local(ctx, x, side, corner)
-            re, im = horner(ctx, z, corner, derivative=False)
-            total = total + (im if corner.powers.sine else re)
-        return total
+        if ctx is FLOAT and self.swift:
+            return value_by_parts(self.swift, self.precise.corners, x, side)
+        return expansion_value(ctx, x, side, self.precise)
 
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:
-        """Return the parts of f': u_x = Re f', u_y = -Im f' for u = Re f; Im f', Re f' for u = Im f."""
-        terms = self._terms(ctx)
-        gx, gy = polynomial_sum(ctx, x, terms.polynomial, derivative=True)
-        for corner in terms.corners:
-            z = local(ctx, x, side, corner)
-            re, im = horner(ctx, z, corner, derivative=True)
-            gx = gx + (im if corner.powers.sine else re)
-            gy = gy + (re if corner.powers.sine else -im)
-        return gx, gy
+        if ctx is FLOAT and self.swift:
+            return gradient_by_parts(self.swift, self.precise.corners, x, side)
+        return expansion_gradient(ctx, x, side, self.precise)
 
     def gradient_error(self, place: tuple[Any, ...]) -> float:
         """Return 4 radius / (pi d), d the distance from the boundary: infinite on it.
@@ -270,7 +203,7 @@ class CornerPowers(Field):
         bound the conjugate of an error, so that a fitted field's conjugate is "uncertified".
         """
         trust: Basis = self.trust if not self.fit_error else "uncertified"
-        swift = None if self.swift is None else _conjugate(self.swift)
+        swift = tuple(part._replace(series=_conjugate(part.series)) for part in self.swift)
         return dataclasses.replace(self, precise=_conjugate(self.precise), swift=swift, trust=trust)
 
 
@@ -281,7 +214,7 @@ def corner_powers(
     vertices: tuple[tuple[Number, Number], ...] = (),
     radius: str = "0",
     trust: Basis = "closed form",
-    swift: Expansion | None = None,
+    swift: tuple[LocalSum, ...] = (),
 ) -> CornerPowers:
     """Return a sum of corner powers and a polynomial; see `CornerSeries`, `PolynomialPart`, `CornerPowers`.
 
@@ -351,69 +284,3 @@ def _conjugate(expansion: Expansion) -> Expansion:
 def _minus(text: str) -> str:
     """Return minus a decimal string."""
     return text[1:] if text.startswith("-") else f"-{text.removeprefix('+')}"
-
-
-def _expansion(given: Any, name: str) -> Expansion:
-    """Return an expansion, checked; a specification gives plain tuples."""
-    try:
-        corners, polynomial = given
-        made = Expansion(
-            tuple(_corner(c, f"{name}.corners[{i}]") for i, c in enumerate(corners)),
-            _polynomial_part(polynomial, f"{name}.polynomial"),
-        )
-    except FieldError:
-        raise
-    except (TypeError, ValueError) as cause:
-        raise FieldError(f"{name} must be an Expansion of corners and a polynomial: {cause}") from cause
-    return made
-
-
-def _corner(given: Any, name: str) -> CornerSeries:
-    """Return the series of a corner, checked."""
-    corner = CornerSeries(*given)
-    apex = exact_point(corner.apex, f"{name}.apex", (2,))
-    start = exact_point(corner.start, f"{name}.start", (2,))
-    stop = exact_point(corner.stop, f"{name}.stop", (2,))
-    if not any(start) or not any(stop):
-        raise FieldError(f"start and stop of {name} must be directions, not (0, 0)")
-    if corner.sides not in SIDES:
-        raise FieldError(f"sides of {name} must be one of {', '.join(SIDES)}, got {corner.sides!r}")
-    logs = tuple((_order(n, name), _numeral(c, f"{name}.logs")) for n, c in corner.logs)
-    coefficients = tuple(_numeral(c, f"{name}.coefficients") for c in corner.coefficients)
-    return CornerSeries(
-        apex, start, stop, corner.sides, _positive(corner.scale, f"{name}.scale"), coefficients, logs
-    )
-
-
-def _polynomial_part(given: Any, name: str) -> PolynomialPart:
-    """Return the polynomial, checked."""
-    part = PolynomialPart(*given)
-    return PolynomialPart(
-        tuple(_numeral(c, f"{name}.re") for c in part.re),
-        tuple(_numeral(c, f"{name}.im") for c in part.im),
-        exact_point(part.centre, f"{name}.centre", (2,)),
-        _positive(part.scale, f"{name}.scale"),
-    )
-
-
-def _numeral(text: Any, name: str) -> str:
-    """Return a decimal string, checked."""
-    if not isinstance(text, str) or "/" in text:
-        raise FieldError(f'{name} must be decimal strings such as "0.25", got {str(text)[:60]!r}')
-    exact(text, name)
-    return text
-
-
-def _order(n: Any, name: str) -> int:
-    """Return the power of a logarithmic term, checked."""
-    if isinstance(n, bool) or not isinstance(n, int) or not 1 <= n <= 100:
-        raise FieldError(f"the power of a logarithmic term of {name} must be from 1 to 100, got {n!r}")
-    return n
-
-
-def _positive(number: Any, name: str) -> Exact:
-    """Return a positive number, checked."""
-    value = exact(number, name)
-    if not value > 0:
-        raise FieldError(f"{name} must be positive, got {number}")
-    return value

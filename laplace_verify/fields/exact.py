@@ -18,7 +18,7 @@ import mpmath
 from laplace_verify.contexts import FLOAT, Number
 from laplace_verify.errors import FieldError
 
-__all__ = ["Exact", "exact", "exact_point", "offset", "rational", "show"]
+__all__ = ["Exact", "exact", "exact_point", "offset", "power", "rational", "show"]
 
 Exact: TypeAlias = int | float | Fraction
 
@@ -102,6 +102,20 @@ def offset(ctx: Any, x: Any, place: Exact) -> Any:
     high = float(place)
     low = 0.0 if isinstance(place, float) else float(Fraction(place) - Fraction(high))
     return (x - high) - low if low else x - high
+
+
+def power(ctx: Any, base: Any, exponent: Exact) -> Any:
+    """Return base ** exponent, base >= 0, without losing the part of the exponent that a float64 cannot hold.
+
+    That part is multiplied by log(base): near 0 it would cost several units in the last place.
+    """
+    if ctx is not FLOAT:
+        return base ** ctx.number(exponent)
+    high = float(exponent)
+    low = 0.0 if isinstance(exponent, float) else float(Fraction(exponent) - Fraction(high))
+    if not low:
+        return base**high
+    return base**high * (1 + low * FLOAT.log(FLOAT.where(base > 0, base, 1.0)))
 
 
 def show(number: Exact) -> str:

@@ -20,7 +20,7 @@ from laplace_verify.contexts import FLOAT, Number
 from laplace_verify.errors import FieldError
 from laplace_verify.fields.base import Field
 from laplace_verify.fields.combinations import combined
-from laplace_verify.fields.exact import Exact, exact, exact_point, offset, rational, show
+from laplace_verify.fields.exact import Exact, exact, exact_point, offset, power, rational, show
 from laplace_verify.fields.motions import show_point
 from laplace_verify.fields.singular import Cut, Singularity
 from laplace_verify.fields.specs import registered
@@ -165,9 +165,10 @@ class Wedge(Field):
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:
         """Return the parts of f' = alpha z^{alpha - 1}: u_x = Re f', u_y = -Im f' for u = Re f."""
         r, theta = self._polar(ctx, x, side)
-        alpha = ctx.number(self.alpha)
-        size = alpha * r ** (alpha - 1)
-        re, im = size * ctx.cos((alpha - 1) * theta), size * ctx.sin((alpha - 1) * theta)
+        less = rational(self.alpha) - 1
+        size = ctx.number(self.alpha) * power(ctx, r, less)
+        turn = ctx.number(less) * theta
+        re, im = size * ctx.cos(turn), size * ctx.sin(turn)
         return (im, re) if self.part == "sin" else (re, -im)
 
     def conjugate(self) -> Field:

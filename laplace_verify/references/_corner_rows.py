@@ -38,10 +38,8 @@ class Terms:
     corners: tuple[CornerSeries, ...]
     places: tuple[int, ...]
     orders: tuple[tuple[int, ...], ...]
-    swift_orders: tuple[int, ...]
     logs: tuple[tuple[int, ...], ...]
     degree: int
-    swift_degree: int
     polynomial: PolynomialPart
 
     @property
@@ -49,19 +47,6 @@ class Terms:
         """Number of columns."""
         powers = sum(len(orders) + len(logs) for orders, logs in zip(self.orders, self.logs, strict=True))
         return powers + max(0, 2 * self.degree + 1)
-
-    @property
-    def swift_columns(self) -> list[int]:
-        """Columns of the float64 expansion."""
-        chosen, column = [], 0
-        for orders, most, logs in zip(self.orders, self.swift_orders, self.logs, strict=True):
-            for j in orders:
-                if j <= most:
-                    chosen.append(column)
-                column += 1
-            chosen += range(column, column + len(logs))
-            column += len(logs)
-        return chosen + list(range(column, column + max(0, 2 * self.swift_degree + 1)))
 
     def expansion(self, texts: dict[int, str]) -> Expansion:
         """Return an expansion from the coefficients of some columns."""

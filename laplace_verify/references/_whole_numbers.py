@@ -60,16 +60,15 @@ def _product(rows: list[list[int]]) -> Any:
     return result
 
 
-def least_squares(products: Products, columns: list[int], delta: int, bits: int) -> list[int]:
-    """Return the c that minimises |A c - b|^2 + 4^-delta |c|^2 over some columns of A, at 2^bits.
+def least_squares(products: Products, delta: int, bits: int) -> list[int]:
+    """Return the c that minimises |A c - b|^2 + 4^-delta |c|^2, at 2^bits.
 
     >>> least_squares(Products(matrix=np.array([[32]], dtype=object), right=np.array([16], dtype=object)),
-    ...               [0], 10, 4)
+    ...               10, 4)
     [8]
     """
-    s = products.matrix[np.ix_(columns, columns)].copy()
-    x = products.right[columns].copy()
-    n = len(columns)
+    s, x = products.matrix.copy(), products.right.copy()
+    n = len(x)
     extra = 1 << max(bits - 2 * delta, 0) if bits >= 2 * delta else 0
     for i in range(n):
         s[i, i] += extra

@@ -10,8 +10,10 @@ memory, unchecked).
 
 The coefficients minimise |A c - b|^2 + δ^2 |c|^2 over Chebyshev points of all sides. The second term keeps
 them small where the terms are nearly dependent (Adcock and Huybrechs 2019, SIAM Review 61, 443-473; from
-memory, unchecked). All of it is done in whole numbers, so that every machine finds the same digits. A second,
-shorter set of coefficients with δ of the size of a float64 rounding serves float64 evaluation.
+memory, unchecked). All of it is done in whole numbers, so that every machine finds the same digits.
+
+Terms of a close fit may be 1e14 times as large as u and cancel, so that float64 evaluates sums about many
+points instead (`local_fit`). Those of a coarse fit are small enough for float64 as they are.
 
 The error bound does not depend on how the coefficients were found: see `corner_bound`.
 """
@@ -23,18 +25,17 @@ from dataclasses import dataclass
 from fractions import Fraction
 from typing import Literal
 
-import numpy as np
-
 from laplace_verify.errors import FieldError, ProblemError
 from laplace_verify.fields import CornerPowers, CornerSeries, Formula, PolynomialPart
 from laplace_verify.fields.exact import Exact, exact_point
 from laplace_verify.references._corner_rows import Rows, Terms, chebyshev
 from laplace_verify.references._whole_numbers import gram, least_squares
 from laplace_verify.references.corner_bound import error_bound
+from laplace_verify.references.local_fit import local_sums
 
 __all__ = ["CornerFit", "CornerTerms", "SideData", "fit_corners"]
 
-SWIFT_DELTA = 54  # bits: a rounding of float64
+CLOSE = 1e-9  # a fit with a smaller error bound has local sums for float64
 SPARE = 120  # bits beyond those that the normal equations lose
 
 
@@ -62,8 +63,8 @@ class CornerTerms:
     ----------
     vertex
         Its number, from 0.
-    powers, swift
-        Highest j of the precise and of the float64 expansion.
+    powers
+        Highest j.
     every
         2 keeps j = 1, 3, 5, ... only, for solutions symmetric about the bisector.
     logs
@@ -73,7 +74,6 @@ class CornerTerms:
 
     vertex: int
     powers: int = 0
-    swift: int = 0
     every: int = 1
     logs: tuple[int, ...] = ()
 
@@ -90,8 +90,8 @@ class CornerFit:
         One for each side, side k from vertex k to vertex k + 1.
     corners
         Terms at some of the vertices.
-    degree, swift_degree
-        Of the polynomial in the precise and the float64 expansion; -1 for none.
+    degree
+        Of the polynomial; -1 for none.
     centre
         Of the polynomial.
     digits
@@ -104,7 +104,6 @@ class CornerFit:
     sides: tuple[SideData, ...]
     corners: tuple[CornerTerms, ...]
     degree: int = -1
-    swift_degree: int = -1
     centre: tuple[str, str] = ("0", "0")
     digits: int = 52
     density: int = 100
@@ -146,7 +145,7 @@ def fit_corners(fit: CornerFit) -> CornerPowers:
     >>> l_shape = CornerFit(
     ...     vertices=(("0", "0"), ("1", "0"), ("1", "1"), ("-1", "1"), ("-1", "-1"), ("0", "-1")),
     ...     sides=(SideData(), insulated, one, one, insulated, SideData()),
-    ...     corners=(CornerTerms(vertex=0, powers=79, swift=60, every=2),),
+    ...     corners=(CornerTerms(vertex=0, powers=79, every=2),),
     ...     digits=8, density=20,
     ... )
     >>> u = fit_corners(l_shape)
@@ -166,15 +165,13 @@ def fit_corners(fit: CornerFit) -> CornerPowers:
         right += rows.data(side, points)
     products = gram(matrix, right, bits)
     delta = round((fit.digits + 4) / math.log10(2))
-    precise = least_squares(products, list(range(terms.count)), delta, bits)
-    swift = least_squares(products, terms.swift_columns, SWIFT_DELTA, bits)
+    precise = least_squares(products, delta, bits)
     texts = _texts(precise, bits, fit.digits + 16)
     expansion = terms.expansion(dict(enumerate(texts)))
-    chosen = dict(zip(terms.swift_columns, (repr(math.ldexp(c, -bits)) for c in _floats(swift)), strict=True))
     bound = error_bound(rows, terms, texts, 10.0**-fit.digits)
     return CornerPowers(
         precise=expansion,
-        swift=terms.expansion(chosen),
+        swift=local_sums(terms, expansion) if float(bound.radius) < CLOSE else (),
         vertices=terms.vertices,
         radius=bound.radius,
         trust=bound.basis,
@@ -211,10 +208,8 @@ def _terms(fit: CornerFit) -> Terms:
         corners=tuple(corners),
         places=tuple(corner.vertex for corner in fit.corners),
         orders=tuple(orders),
-        swift_orders=tuple(corner.swift for corner in fit.corners),
         logs=tuple(corner.logs for corner in fit.corners),
         degree=fit.degree,
-        swift_degree=fit.swift_degree,
         polynomial=PolynomialPart(centre=centre, scale=_reach(vertices, centre)),
     )
 
@@ -276,8 +271,3 @@ def _texts(coefficients: list[int], bits: int, places: int) -> list[str]:
         negligible = abs(scaled) < 10**9  # 1e-7 of the target
         texts.append("0" if negligible else f"-{text}" if scaled < 0 else text)
     return texts
-
-
-def _floats(coefficients: list[int]) -> list[float]:
-    """Return whole numbers as floats; they have far fewer than 1024 bits."""
-    return [float(c) for c in np.array(coefficients, dtype=object)]

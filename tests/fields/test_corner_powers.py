@@ -9,7 +9,7 @@ import pytest
 
 from laplace_verify import fields
 from laplace_verify.errors import FieldError
-from laplace_verify.fields import CornerSeries, Expansion, PolynomialPart, corner_powers
+from laplace_verify.fields import CornerSeries, Expansion, LocalSum, PolynomialPart, corner_powers
 
 EPS = np.finfo(np.float64).eps
 L_CORNER = CornerSeries(
@@ -227,17 +227,59 @@ def test_points_outside_the_polygon_are_refused():
         fit().value([[0.5, 0.5], [1.5, 0.5]])
 
 
-def test_swift_expansion_serves_float64_only():
-    swift = Expansion((), PolynomialPart(re=("7",)))
+def constant(number):
+    return Expansion((), PolynomialPart(re=(number,)))
+
+
+def test_local_sums_serve_float64_only_each_where_it_is_nearest():
+    whole, right, up = ((1, 0), (1, 0)), ((0, -1), (0, 1)), ((1, 0), (-1, 0))
+    swift = (
+        LocalSum((0, 0), 1, *whole, constant("7")),
+        LocalSum((1, 0), "1/2", *right, constant("8")),
+        LocalSum((1, 0), "1/2", *up, constant("9")),
+    )
     field = corner_powers((), PolynomialPart(re=("3",)), swift=swift)
-    assert field.value([[0.1, 0.2]])[0] == 7
+    assert field.value([[0.1, 0.2], [1.4, -0.2], [0.9, 0.3], [0.9, -0.1]]).tolist() == [7, 8, 9, 7]
     assert field.at((0, 0), 20) == 3
+    assert fields.from_spec(field.spec()) == field
+
+
+def test_local_sums_tell_the_lips_of_a_slit_apart():
+    slit = CornerSeries(apex=(0, 0), start=(1, 0), stop=(1, 0), sides="dd", coefficients=("1",))
+    upper, lower = ((1, 0), (-1, 0)), ((-1, 0), (1, 0))
+    swift = (
+        LocalSum((0, 0), "1/4", (1, 0), (1, 0), Expansion((slit,))),
+        LocalSum((1, 0), "1/2", *lower, constant("-1")),
+        LocalSum((1, 0), "1/2", *upper, constant("1")),
+    )
+    field = corner_powers((slit,), swift=swift)
+    assert field.value([[1.0, 0.0], [1.0, 0.0]], side=[1, -1]).tolist() == [1, -1]
+    assert field.value([[1.0, 1e-13], [1.0, -1e-13]]).tolist() == [1, -1]
+    assert field.gradient([[0.04, 0.0], [0.04, 0.0]], side=[1, -1])[:, 1].round(12).tolist() == [2.5, -2.5]
+    with pytest.raises(FieldError, match="two values"):
+        field.value([[1.0, 0.0]])
 
 
 @pytest.mark.parametrize(
     ("change", "message"),
     [
-        ({"start": (0, 0)}, "must be directions"),
+        ({"reach": 0}, "reach must be positive"),
+        ({"start": (0, 0)}, r"swift\[0\].start must be a direction"),
+        ({"series": 3}, r"swift\[0\].series must be an Expansion"),
+    ],
+)
+def test_bad_local_sums_are_refused(change, message):
+    part = LocalSum((0, 0), 1, (1, 0), (1, 0), constant("1"))
+    with pytest.raises(FieldError, match=message):
+        corner_powers((), swift=(part._replace(**change),))
+    with pytest.raises(FieldError, match="must be a LocalSum"):
+        corner_powers((), swift=(3,))
+
+
+@pytest.mark.parametrize(
+    ("change", "message"),
+    [
+        ({"start": (0, 0)}, "must be a direction"),
         ({"sides": "dx"}, "must be one of dd, nn, dn, nd"),
         ({"scale": 0}, "scale must be positive"),
         ({"coefficients": (1.5,)}, "must be decimal strings"),

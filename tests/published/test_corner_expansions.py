@@ -50,9 +50,8 @@ def challenge():
         CornerFit(
             vertices=(("0", "0"), ("2", "0"), ("2", "1"), ("1", "1"), ("1", "2"), ("0", "2")),
             sides=(SideData(data="x**2"),) * 6,
-            corners=(CornerTerms(vertex=3, powers=56, swift=30, logs=(2,)), *corners),
+            corners=(CornerTerms(vertex=3, powers=56, logs=(2,)), *corners),
             degree=90,
-            swift_degree=50,
             centre=("0.75", "0.75"),
             digits=26,
             density=140,
@@ -105,7 +104,7 @@ def motz():
         CornerFit(
             vertices=(("-1", "0"), ("0", "0"), ("1", "0"), ("1", "1"), ("-1", "1")),
             sides=(COLD, INSULATED, SideData(data="500"), INSULATED, INSULATED),
-            corners=(CornerTerms(vertex=1, powers=210, swift=100),),
+            corners=(CornerTerms(vertex=1, powers=210),),
             digits=28,
             density=170,
         )
@@ -146,7 +145,7 @@ def beam():
         CornerFit(
             vertices=(("-0.5", "0"), ("0", "0"), ("0.5", "0"), ("0.5", "0.5"), ("-0.5", "0.5")),
             sides=(COLD, INSULATED, INSULATED, SideData(data="1/8"), INSULATED),
-            corners=(CornerTerms(vertex=1, powers=190, swift=100),),
+            corners=(CornerTerms(vertex=1, powers=190),),
             digits=28,
             density=150,
         )
@@ -182,7 +181,7 @@ def l_shape():
         CornerFit(
             vertices=(("0", "0"), ("1", "0"), ("1", "1"), ("-1", "1"), ("-1", "-1"), ("0", "-1")),
             sides=(COLD, INSULATED, one, one, INSULATED, COLD),
-            corners=(CornerTerms(vertex=0, powers=279, swift=151, every=2),),
+            corners=(CornerTerms(vertex=0, powers=279, every=2),),
             digits=28,
             density=140,
         )
