@@ -6,7 +6,9 @@ off one by one, best shaped first; then diagonals are flipped until each is loca
 walk, not places, are compared, so the two lips of a slit stay apart. Cost is cubic in the number of corners:
 meant for tens of them.
 
-References ---------- G. H. Meisters, Polygons have ears, Amer. Math. Monthly 82 (1975) 648-651; C. L. Lawson,
+References
+----------
+G. H. Meisters, Polygons have ears, Amer. Math. Monthly 82 (1975) 648-651; C. L. Lawson,
 Software for C1 surface interpolation, 1977 (flips; both from memory, unchecked).
 """
 

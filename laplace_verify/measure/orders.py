@@ -140,13 +140,15 @@ def noise_level(kind: str, sizes: Sequence[int], h: Sequence[float]) -> float:
 
     0.03 for structured refinement: h follows 1/size within 2.5 %, or grids of finite differences or volumes
     are nested (every size a multiple of the one before). 0.1 if h does not follow 1/size within 5 % (meshes
-    without relation). 0.05 otherwise.
+    without relation), and for stochastic methods, whose errors are random themselves. 0.05 otherwise.
 
     >>> noise_level("finite difference", [8, 16, 32], [1/8, 1/16, 1/32])
     0.03
     >>> noise_level("finite element", [8, 16, 32], [0.13, 0.05, 0.03])
     0.1
     """
+    if kind == "stochastic":
+        return UNRELATED_NOISE
     if len(sizes) < 2:
         return USUAL_NOISE
     n, spacing = np.asarray(sizes, dtype=np.float64), np.asarray(h, dtype=np.float64)

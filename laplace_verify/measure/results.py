@@ -12,10 +12,22 @@ from typing import Literal, TypeAlias
 from laplace_verify.measure.table import Format, convergence_table
 from laplace_verify.measure.verdict import Verdict
 
-__all__ = ["ErrorMap", "Feature", "Level", "Order", "Rate", "Study"]
+__all__ = ["Coverage", "ErrorMap", "Feature", "Level", "Order", "Rate", "Study"]
 
 Rate: TypeAlias = float | Literal["exponential", "decrease"] | None
 Feature: TypeAlias = bool | float | str | None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Coverage:
+    """Errors against the standard errors a stochastic answer states, at `points` points.
+
+    `ratio` is sum e^2 / sum se^2, `covered` the share of points with |e| <= 2 se (95.4 % of normal errors).
+    """
+
+    points: int
+    ratio: float
+    covered: float
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -25,7 +37,8 @@ class Level:
     `errors` and `relative` map a norm to ||u_h - u|| and ||u_h - u|| / ||u||. With lengths in L and values in
     U an L2 error is in U L^(d/2), an H1-semi error in U L^(d/2 - 1); relative errors have no unit. A norm
     that could not be measured is absent. `moves` maps a piece to the largest distance by which data points
-    were moved onto it, `left_out` is the share of the sample points outside the solver's mesh.
+    were moved onto it, `left_out` is the share of the sample points outside the solver's mesh, `coverage` is
+    there where the answer states standard errors.
     """
 
     size: int
@@ -38,6 +51,7 @@ class Level:
     note: str = ""
     moves: dict[str, float] = field(default_factory=dict)
     left_out: float = 0.0
+    coverage: Coverage | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

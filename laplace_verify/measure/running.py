@@ -9,6 +9,7 @@ from itertools import pairwise
 from typing import TYPE_CHECKING
 
 from laplace_verify.errors import AnswerError, nearest_names
+from laplace_verify.measure.coverage import coverage_of
 from laplace_verify.measure.criteria import LEVEL
 from laplace_verify.measure.exact import Exact
 from laplace_verify.measure.functionals import ExactFluxes, measure_functionals
@@ -82,6 +83,7 @@ class Runner:
             errors=measured.errors | {norm: pair[0] for norm, pair in numbers.items()},
             relative=measured.relative | {norm: pair[1] for norm, pair in numbers.items()},
             judged=judged, note=note, moves=dict(log.largest), left_out=measured.left_out,
+            coverage=coverage_of(answer, self.exact, measured),
         )  # fmt: skip
         return LevelResult(
             level=level,

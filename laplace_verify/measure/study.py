@@ -11,6 +11,7 @@ from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
 from laplace_verify.errors import AdapterError, history
+from laplace_verify.measure.coverage import judge_coverage
 from laplace_verify.measure.criteria import expectations
 from laplace_verify.measure.expected import Expectation
 from laplace_verify.measure.features import features
@@ -169,7 +170,7 @@ class _Run:
         """Return the study with its verdict."""
         orders = self.orders()
         verdict, reasons, remarks = combine(orders)
-        faults, odd = oddities(self.levels)
+        faults, odd = (a + b for a, b in zip(oddities(self.levels), judge_coverage(self.levels), strict=True))
         if faults:
             verdict, reasons = Verdict.FAIL, [*reasons, *faults]
         remarks += [*odd, *dict.fromkeys(remark for result in self.results for remark in result.remarks)]

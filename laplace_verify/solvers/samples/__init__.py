@@ -11,6 +11,7 @@ from laplace_verify.solvers.samples.faults import FAULTS, Fault
 from laplace_verify.solvers.samples.finite_difference import five_point, seven_point
 from laplace_verify.solvers.samples.linear_elements import p1_element
 from laplace_verify.solvers.samples.source_points import fundamental_solutions
+from laplace_verify.solvers.samples.walk_on_spheres import walk_on_spheres
 
 __all__ = [
     "ALL",
@@ -21,6 +22,7 @@ __all__ = [
     "fundamental_solutions",
     "p1_element",
     "seven_point",
+    "walk_on_spheres",
 ]
 
-ALL = (five_point, seven_point, p1_element, chebyshev, fundamental_solutions)
+ALL = (five_point, seven_point, p1_element, chebyshev, fundamental_solutions, walk_on_spheres)

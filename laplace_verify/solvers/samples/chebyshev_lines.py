@@ -3,7 +3,9 @@
 Between two stops lie n + 1 points, x_j = (a + b)/2 - (b - a)/2 cos(j pi / n); neighbours share their stop.
 Values at other points come from the barycentric formula, which is the polynomial itself, not a fit to it.
 
-References ---------- Trefethen, Spectral Methods in MATLAB, 2000, chapters 6 and 12 (differentiation,
+References
+----------
+Trefethen, Spectral Methods in MATLAB, 2000, chapters 6 and 12 (differentiation,
 Clenshaw-Curtis weights); Berrut & Trefethen, Barycentric Lagrange interpolation, SIAM Review 46 (2004)
 501-517, eq. 5.4 (from memory, unchecked).
 """

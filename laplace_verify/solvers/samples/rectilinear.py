@@ -16,7 +16,9 @@ along r, the volume's share for the flux along z (c r^p = 2 pi r or 4 pi r^2). F
 balance is exact but for the differences along edges, hence of second order up to the axis, where the face has
 no area.
 
-References ---------- R. S. Varga, Matrix Iterative Analysis, 1962, section 6.3 (box integration; from memory,
+References
+----------
+R. S. Varga, Matrix Iterative Analysis, 1962, section 6.3 (box integration; from memory,
 unchecked). The form by cell corners is derived here.
 """
 

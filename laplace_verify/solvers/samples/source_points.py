@@ -18,9 +18,11 @@ system is ill conditioned on purpose; least squares with truncated singular valu
 times the size of u, where it stays. Where the solution itself is singular on the boundary the method is slow:
 it makes no claim there.
 
-References ---------- Fairweather & Karageorghis, The method of fundamental solutions for elliptic boundary
-value problems, Adv. Comput. Math. 9 (1998) 69-95; Barnett & Betcke, J. Comput. Phys. 227 (2008) 7003-7026
-(both from memory, unchecked).
+References
+----------
+Fairweather & Karageorghis, The method of fundamental solutions for elliptic boundary value problems, Adv.
+Comput. Math. 9 (1998) 69-95; Barnett & Betcke, J. Comput. Phys. 227 (2008) 7003-7026 (both from memory,
+unchecked).
 """
 
 from __future__ import annotations

@@ -1,0 +1,76 @@
+"""Errors of stochastic answers against the standard errors that come with them."""
+
+import numpy as np
+import pytest
+
+import laplace_verify as lv
+from laplace_verify.measure import Level, Verdict
+from laplace_verify.measure.coverage import judge_coverage
+from laplace_verify.measure.results import Coverage
+from laplace_verify.solvers.samples import walk_on_spheres
+
+CASE = lv.catalogue["plate-saddle"]
+SIZES = (100, 400, 1600, 6400)
+
+
+def sampler(bias=0.0, stated=1.0, shared=False):
+    """A solver with normal errors of size 1/sqrt(n) that states them `stated` times as large."""
+
+    def solve(_, n, wanted, seed):
+        points = wanted[:100]
+        draw = np.random.default_rng([seed, n]).standard_normal(1 if shared else len(points))
+        values = CASE.exact.value(points) + draw / np.sqrt(n) + bias
+        return lv.Answer(points, values, samples=n, standard_error=stated / np.sqrt(n))
+
+    return lv.adapt(solve, name="sampler", kind="stochastic", order=0.5, sizes=SIZES)
+
+
+@pytest.mark.parametrize("seed", range(5))
+def test_an_unbiased_answer_passes(seed):
+    found = lv.study(sampler(), CASE, seed=seed)
+    assert found.verdict is Verdict.PASS, found.reasons
+    assert not found.remarks
+    assert all(0.85 <= level.coverage.covered <= 1.0 for level in found.levels)
+
+
+def test_standard_errors_that_are_too_small_fail():
+    found = lv.study(sampler(stated=0.2), CASE)
+    assert found.verdict is Verdict.FAIL
+    assert "standard errors are too small, at a confidence of 99.9%" in " ".join(found.reasons)
+
+
+def test_a_bias_above_the_statistical_error_fails():
+    # 0.06 is 4.8 standard errors at n = 6400
+    found = lv.study(sampler(bias=0.06), CASE)
+    assert found.verdict is Verdict.FAIL
+    assert "size 6400: squared errors are" in " ".join(found.reasons)
+
+
+def test_standard_errors_that_are_too_large_are_remarked():
+    found = lv.study(sampler(stated=5.0), CASE)
+    assert found.verdict is Verdict.PASS
+    assert any("standard errors are too large" in remark for remark in found.remarks)
+
+
+def level(ratio, points=100):
+    return Level(size=64, h=0.1, unknowns=1, seconds=0.0, errors={}, relative={},
+                 coverage=Coverage(points=points, ratio=ratio, covered=0.9))  # fmt: skip
+
+
+def test_points_that_share_their_samples_get_a_remark_before_a_fault():
+    # 0.999 quantiles of chi^2: 149.4/100 with 100 degrees of freedom, 10.83 with one (Abramowitz & Stegun
+    # 1964, table 26.8).
+    assert judge_coverage([level(1.49)]) == ([], [])
+    faults, remarks = judge_coverage([level(1.50)])
+    assert not faults
+    assert "unless the points share their samples" in remarks[0]
+    assert judge_coverage([level(10.82)])[0] == []
+    assert len(judge_coverage([level(10.84)])[0]) == 1
+    assert len(judge_coverage([level(np.nan)])[0]) == 1
+
+
+@pytest.mark.slow
+@pytest.mark.parametrize("case_id", ["plate-saddle", "disc-step", "l-shape-corner", "ball-legendre"])
+def test_walks_on_spheres_pass(case_id):
+    found = lv.study(walk_on_spheres, lv.catalogue[case_id])
+    assert found.verdict is Verdict.PASS, found.reasons
