@@ -24,6 +24,7 @@ from laplace_verify.cases import (
     round_sections,
     round_solids,
     sectors,
+    seepage,
     wedges,
 )
 from laplace_verify.cases.definition import joined
@@ -43,6 +44,7 @@ FAMILIES = joined(
     rings.family,
     sectors.family,
     wedges.family,
+    seepage.family,
     exteriors.family,
     boxes.family,
     round_solids.family,

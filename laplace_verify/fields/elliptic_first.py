@@ -34,12 +34,12 @@ def first_kind(ctx: Any, a: Any, b: Any, c: Any) -> Any:
     [1.570796326795, 1.159119022502]
     """
     for _ in range(MOST_STEPS):
-        mean = (a * a + b * b + c * c) / 3
+        p, q, r = ctx.sqrt(a + b), ctx.sqrt(a + c), ctx.sqrt(b + c)
+        a, b, c = p * q / 2, p * r / 2, q * r / 2
+        mean = (a * a + b * b + c * c) / 3  # 0 before the first step for i, 0, 1, not after it
         x, y = 1 - a * a / mean, 1 - b * b / mean
         if _close(ctx, x, y):
             break
-        p, q, r = ctx.sqrt(a + b), ctx.sqrt(a + c), ctx.sqrt(b + c)
-        a, b, c = p * q / 2, p * r / 2, q * r / 2
     z = -x - y
     second, third = x * y - z * z, x * y * z
     series = 1 - second / 10 + third / 14 + second * second / 24 - 3 * second * third / 44

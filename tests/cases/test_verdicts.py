@@ -36,6 +36,8 @@ INVISIBLE = {
     "plate-hot-end-condition-change": "the change of condition costs as much: orders 1/2 and 1",
     "l-basin-two-levels": "the corner costs more: orders 2/3 and 4/3",
     "plate-condition-change": "the change of condition costs as much: orders 1/2 and 1",
+    "dam-on-permeable-layer": "heel and toe cost as much: orders 1/2 and 1",
+    "half-of-a-dam": "the toe costs as much: orders 1/2 and 1",
 }
 
 

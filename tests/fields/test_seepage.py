@@ -140,6 +140,11 @@ def test_on_a_deep_layer_the_base_feels_an_arc_cosine():
     assert np.abs(fields.dam_seepage(2, 2).value(np.column_stack([x, 0 * x])) - found).max() > 1e-3
 
 
+def test_below_a_pile_to_the_middle_the_squares_have_mean_zero():
+    """cn^2, dn^2 and 1 are -1, 0 and 1 at the bottom below the tip."""
+    assert abs(fields.dam_seepage(0, 1, "1/2", part="stream").at((0, -1), 40) - mpmath.mpf("0.5")) < 1e-39
+
+
 def test_far_away_the_head_is_that_of_the_bed():
     u = fields.dam_seepage(2, 1)
     assert np.allclose(
