@@ -210,11 +210,14 @@ def fourier_coefficients(high: Any, data: Continuation, count: int) -> list[Any]
         total = high.mpf(0)
         for place, factors in places:
             turns = n * (place - start) / length % 2  # exact reduction of the angle to one period
-            wave, weight = high.expjpi(-high.number(turns)), high.mpf(1)
-            for factor in factors:
+            wave = high.expjpi(-high.number(turns))
+            # Re or -Im of wave / i^p for p = 0, 1, 2, 3
+            first, second = (wave.real, wave.imag) if data.even else (-wave.imag, wave.real)
+            parts = (first, second, -first, -second)
+            weight = high.mpf(1)
+            for p, factor in enumerate(factors, start=1):
                 weight = weight / n
-                wave = high.mpc(wave.imag, -wave.real)  # divided by i
                 if factor:
-                    total += weight * factor * (wave.real if data.even else -wave.imag)
+                    total += weight * factor * parts[p % 4]
         modes.append(total)
     return modes
