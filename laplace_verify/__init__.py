@@ -60,16 +60,23 @@ if TYPE_CHECKING:
     from laplace_verify.problems import Problem as Problem
     from laplace_verify.problems import Quantity as Quantity
     from laplace_verify.problems import Regularity as Regularity
+    from laplace_verify.problems import added_mass as added_mass
+    from laplace_verify.problems import capacitance_coefficient as capacitance_coefficient
+    from laplace_verify.problems import conductance_between as conductance_between
     from laplace_verify.problems import dirichlet as dirichlet
     from laplace_verify.problems import discharge_across as discharge_across
     from laplace_verify.problems import energy_of_solution as energy_of_solution
     from laplace_verify.problems import exit_gradient_at as exit_gradient_at
+    from laplace_verify.problems import flux_density_at as flux_density_at
     from laplace_verify.problems import flux_through as flux_through
     from laplace_verify.problems import inclusion as inclusion
     from laplace_verify.problems import layers as layers
     from laplace_verify.problems import neumann as neumann
+    from laplace_verify.problems import resistance_between as resistance_between
     from laplace_verify.problems import robin as robin
     from laplace_verify.problems import sectors as sectors
+    from laplace_verify.problems import shape_factor_between as shape_factor_between
+    from laplace_verify.problems import torsion_constant as torsion_constant
     from laplace_verify.problems import uplift_on as uplift_on
     from laplace_verify.problems import value_at as value_at
     from laplace_verify.problems.case import case as case
@@ -98,8 +105,10 @@ _ROOMS = {
     "measure": "Study Verdict grid_convergence study",
     "principles": "Check check_principle",
     "problems": (
-        "Case Problem Quantity Regularity case dirichlet discharge_across energy_of_solution "
-        "exit_gradient_at flux_through inclusion layers neumann problem robin sectors uplift_on value_at"
+        "Case Problem Quantity Regularity added_mass capacitance_coefficient case conductance_between "
+        "dirichlet discharge_across energy_of_solution exit_gradient_at flux_density_at flux_through "
+        "inclusion layers neumann problem resistance_between robin sectors shape_factor_between "
+        "torsion_constant uplift_on value_at"
     ),
     "pytest_plugin": "order_tests principle_tests",
     "report": "plot write_report",

@@ -134,18 +134,27 @@ def _table(rows: Sequence[tuple[str, ...]], headers: tuple[str, ...]) -> str:
 
 def _where(quantity: Quantity) -> str:
     """Return what a quantity is, as a formula."""
-    if quantity.kind == "flux":
-        return f"integral of n . K grad u over {quantity.where}"
-    if quantity.kind == "energy":
-        return "integral of grad u . K grad u"
-    if quantity.kind == "uplift":
-        return f"integral of u over {quantity.where}"
-    if quantity.kind == "exit gradient":
-        return f"-n . grad u on {quantity.where} at ({_coordinates(quantity.place)})"
-    if quantity.kind == "discharge" and isinstance(quantity.where, tuple):
-        start, stop = _coordinates(quantity.where[:2]), _coordinates(quantity.where[2:])
+    kind, where = quantity.kind, quantity.where
+    formulas = {
+        "flux": f"integral of n . K grad u over {where}",
+        "energy": "integral of grad u . K grad u",
+        "uplift": f"integral of u over {where}",
+        "exit gradient": f"-n . grad u on {where} at ({_coordinates(quantity.place)})",
+        "torsion constant": "torsion constant of the section",
+        "added mass": "added mass of the bodies",
+    }
+    if kind in formulas:
+        return formulas[kind]
+    if kind == "discharge" and isinstance(where, tuple):
+        start, stop = _coordinates(where[:2]), _coordinates(where[2:])
         return f"-K grad u across the section from ({start}) to ({stop}), from left to right"
-    return f"u({_coordinates(quantity.where)})"
+    if kind == "flux density":
+        return f"e . K grad u at ({_coordinates(where)}), e = ({_coordinates(quantity.direction)})"
+    if isinstance(where, tuple) and isinstance(where[0], str):
+        if kind == "capacitance":
+            return f"flux through {where[0]} over the level of {where[1]}, the others at 0"
+        return f"{kind} between {where[0]} and {where[1]}"
+    return f"u({_coordinates(where)})"
 
 
 def _coordinates(point: Any) -> str:

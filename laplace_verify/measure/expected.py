@@ -21,6 +21,7 @@ from laplace_verify.measure.theory_other import exponential, other, stochastic
 __all__ = ["Expectation", "expected_order", "smallest_loss"]
 
 NO_DEGREE = "no formal order is declared for this norm"
+QUANTITY = "no rate is proven for this quantity, but it is finite and converges with the solution"
 PROBE = "read off between nodes, so its error need not fall evenly: shown, does not decide"
 
 GRIDLIKE: dict[str, Callable[[str, float, Method, Smoothness], Promise]] = {
@@ -84,6 +85,8 @@ def expected_order(method: Method, norm: str, smoothness: Smoothness) -> Expecta
     promise = _promise(method, norm, declared, smoothness)
     if smoothness.interface and promise.expected is not None:
         promise = at_interface(method.kind, norm, promise, smoothness.interface)
+    if norm.startswith("quantity:") and not promise.decides and method.kind != "stochastic":
+        promise = Promise("decrease", True, QUANTITY)
     return Expectation(
         norm=norm, formal=declared, expected=promise.expected, decides=promise.decides, basis=promise.basis
     )

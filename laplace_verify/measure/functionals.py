@@ -1,8 +1,9 @@
 """Single numbers and boundary norms of one answer: traces, fluxes, flux densities, quantities, probes.
 
 The flux through a piece is int n . K grad u over it, n outward: what flows in where it is positive. Fluxes
-and quantities are measured only if the solver reports them; probes are read off the answer where it can be
-evaluated. Signed errors are kept, because a functional whose error passes through zero shows any order.
+are measured only if the solver reports them, quantities as it reports them or else as computed from its
+answer (`answer_quantities`); probes are read off the answer where it can be evaluated. Signed errors are
+kept, because a functional whose error passes through zero shows any order.
 """
 
 from __future__ import annotations
@@ -13,10 +14,12 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from laplace_verify.arrays import Array
+from laplace_verify.measure.answer_quantities import computed_quantity
 from laplace_verify.measure.norms import conducted, weighted_norm
 
 if TYPE_CHECKING:
     from laplace_verify.measure.exact import Exact
+    from laplace_verify.measure.norms import Measured, Sample
     from laplace_verify.problems import Case, Piece
     from laplace_verify.solvers import Answer
 
@@ -29,11 +32,12 @@ PARTS = 8  # patches along a piece for the exact flux
 
 @dataclass(slots=True)
 class Functionals:
-    """Errors, relative errors and signed errors by norm."""
+    """Errors, relative and signed errors by norm; `computed` are the norms not reported but computed here."""
 
     errors: dict[str, float] = field(default_factory=dict)
     relative: dict[str, float] = field(default_factory=dict)
     signed: dict[str, float] = field(default_factory=dict)
+    computed: set[str] = field(default_factory=set)
 
     def add(self, norm: str, error: float, scale: float) -> None:
         """Keep one number."""
@@ -84,13 +88,20 @@ def probes(case: Case) -> list[tuple[Array, float]]:
 
 
 def measure_functionals(
-    answer: Answer, case: Case, exact: Exact, fluxes: ExactFluxes, h: float, shift: float, scale: float
+    answer: Answer,
+    case: Case,
+    exact: Exact,
+    fluxes: ExactFluxes,
+    h: float,
+    measured: Measured,
+    sample: Sample,
 ) -> Functionals:
     """Return everything but the interior norms.
 
-    `shift` is taken off a pure Neumann answer first; `scale`, the largest |u|, makes errors of values
-    relative.
+    `measured.shift` is taken off a pure Neumann answer first; `measured.scale`, the largest |u|, makes errors
+    of values relative.
     """
+    shift, scale = measured.shift, measured.scale
     result = Functionals()
     for piece in case.problem.pieces:
         if piece.kind == "axis":
@@ -100,9 +111,13 @@ def measure_functionals(
         known = None if case.problem.pieces[name].kind == "axis" else fluxes.of(name)
         if known is not None:
             result.add(f"flux:{name}", flux - known[0], max(abs(known[0]), known[1]))
-    for name, value in (answer.quantities or {}).items():
-        quantity = case.quantities.get(name)
-        if quantity is not None:
+    reported = answer.quantities or {}
+    for name, quantity in case.quantities.items():
+        value = reported.get(name)
+        if value is None:
+            value = computed_quantity(quantity, answer, case, sample, h, shift)
+            result.computed.add(f"quantity:{name}")
+        if value is not None:
             result.add(f"quantity:{name}", value - float(quantity.value), float(quantity.value) or scale)
     for k, (point, value) in enumerate(probes(case)):
         seen = float(answer.value_at(point)[0])

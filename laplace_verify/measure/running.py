@@ -12,8 +12,8 @@ from laplace_verify.errors import AnswerError, nearest_names
 from laplace_verify.measure.coverage import coverage_of
 from laplace_verify.measure.criteria import LEVEL
 from laplace_verify.measure.exact import Exact
-from laplace_verify.measure.functionals import ExactFluxes, measure_functionals
-from laplace_verify.measure.norms import Measured, measure_norms, sample_answer, sharpened
+from laplace_verify.measure.functionals import ExactFluxes, Functionals, measure_functionals
+from laplace_verify.measure.norms import Measured, Sample, measure_norms, sample_answer, sharpened
 from laplace_verify.measure.places import error_map, local_errors
 from laplace_verify.measure.results import ErrorMap, Level
 from laplace_verify.measure.sampling import level_generator
@@ -34,10 +34,11 @@ ROUNDING = 1e-9
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class LevelResult:
-    """A level with what only the study needs: signed functionals, places, map, remarks."""
+    """A level with what only the study needs: signed functionals, which of them are computed here, places."""
 
     level: Level
     signed: dict[str, float]
+    computed: frozenset[str]
     local: dict[str, float | None]
     error_map: ErrorMap
     remarks: tuple[str, ...]
@@ -76,18 +77,18 @@ class Runner:
         sample = sample_answer(answer, seen, singular, h, generator, most)
         sample = sharpened(sample, answer, self.exact, seen, h, generator)
         measured = measure_norms(sample, self.exact, seen, self.solver.clearance)
-        numbers, signed = self._functionals(answer, measured, h)
+        found = self._functionals(answer, measured, sample, h)
         note, judged = self._judged(h)
         level = Level(
             size=size, h=h, unknowns=answer.degrees_of_freedom or 0, seconds=seconds,
-            errors=measured.errors | {norm: pair[0] for norm, pair in numbers.items()},
-            relative=measured.relative | {norm: pair[1] for norm, pair in numbers.items()},
+            errors=measured.errors | found.errors, relative=measured.relative | found.relative,
             judged=judged, note=note, moves=dict(log.largest), left_out=measured.left_out,
             coverage=coverage_of(answer, self.exact, measured),
         )  # fmt: skip
         return LevelResult(
             level=level,
-            signed=signed,
+            signed=found.signed,
+            computed=frozenset(found.computed),
             local=local_errors(shape, measured.points, measured.signed, h, generator),
             error_map=error_map(size, measured.points, measured.signed, generator),
             remarks=answer.remarks(self.case.problem) + self._unknown(answer) + self._near(measured, size),
@@ -107,15 +108,12 @@ class Runner:
             return "", True
         return f"{TOO_COARSE}: h = {h:.3g} exceeds half the smallest length {scale:.3g}", False
 
-    def _functionals(
-        self, answer: Answer, measured: Measured, h: float
-    ) -> tuple[dict[str, tuple[float, float]], dict[str, float]]:
-        """Return norm -> (error, relative error) and signed errors of everything but the interior norms."""
-        scale = measured.scale
-        found = measure_functionals(answer, self.seen, self.exact, self.fluxes, h, measured.shift, scale)
+    def _functionals(self, answer: Answer, measured: Measured, sample: Sample, h: float) -> Functionals:
+        """Return errors, relative and signed ones, of everything but the interior norms."""
+        found = measure_functionals(answer, self.seen, self.exact, self.fluxes, h, measured, sample)
         if self.case.problem.constant is not None:
-            found.add(LEVEL, measured.shift, scale)
-        return {norm: (found.errors[norm], found.relative[norm]) for norm in found.errors}, found.signed
+            found.add(LEVEL, measured.shift, measured.scale)
+        return found
 
     def _unknown(self, answer: Answer) -> tuple[str, ...]:
         """Return a remark on quantities that the case does not have."""

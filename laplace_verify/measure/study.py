@@ -12,7 +12,7 @@ from typing import TYPE_CHECKING
 
 from laplace_verify.errors import AdapterError, history
 from laplace_verify.measure.coverage import judge_coverage
-from laplace_verify.measure.criteria import expectations
+from laplace_verify.measure.criteria import expectations, for_computed
 from laplace_verify.measure.expected import Expectation
 from laplace_verify.measure.features import features
 from laplace_verify.measure.judge import combine, judge
@@ -158,9 +158,10 @@ class _Run:
     def orders(self) -> dict[str, Order]:
         """Judge the levels so far."""
         mixed = sign_changes([result.signed for result in self.results if result.level.judged])
+        computed = {norm for result in self.results for norm in result.computed}
         return judge(
             self.levels,
-            self.criteria,
+            for_computed(self.criteria, computed),
             kind=self.solver.kind,
             error_floor=self.solver.error_floor,
             mixed_signs=mixed,

@@ -9,8 +9,15 @@ from laplace_verify.problems.problem import Problem, problem
 from laplace_verify.problems.quantities import (
     Quantity,
     QuantitySpec,
+    added_mass,
+    capacitance_coefficient,
+    conductance_between,
     energy_of_solution,
+    flux_density_at,
     flux_through,
+    resistance_between,
+    shape_factor_between,
+    torsion_constant,
     value_at,
 )
 from laplace_verify.problems.random_cases import random_case
@@ -18,7 +25,7 @@ from laplace_verify.problems.regions import Interface, Region
 from laplace_verify.problems.regularity import Regularity
 from laplace_verify.problems.schema import case_from_json, case_to_json
 from laplace_verify.problems.seepage_quantities import discharge_across, exit_gradient_at, uplift_on
-from laplace_verify.problems.stored import StoredValue
+from laplace_verify.problems.stored import StoredNumber, StoredValue
 from laplace_verify.problems.transmission import transmission_exponent
 from laplace_verify.problems.units import Units
 
@@ -36,16 +43,21 @@ __all__ = [
     "QuantitySpec",
     "Region",
     "Regularity",
+    "StoredNumber",
     "StoredValue",
     "Units",
+    "added_mass",
     "as_case",
+    "capacitance_coefficient",
     "case",
     "case_from_json",
     "case_to_json",
+    "conductance_between",
     "dirichlet",
     "discharge_across",
     "energy_of_solution",
     "exit_gradient_at",
+    "flux_density_at",
     "flux_through",
     "ill_posed_case",
     "inclusion",
@@ -53,8 +65,11 @@ __all__ = [
     "neumann",
     "problem",
     "random_case",
+    "resistance_between",
     "robin",
     "sectors",
+    "shape_factor_between",
+    "torsion_constant",
     "transmission_exponent",
     "uplift_on",
     "value_at",

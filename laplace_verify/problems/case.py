@@ -33,6 +33,7 @@ from laplace_verify.problems.compatibility import (
 )
 from laplace_verify.problems.conditions import Condition, PieceKind
 from laplace_verify.problems.coordinates import AXIS, Coordinates, axis_names, in_coordinates
+from laplace_verify.problems.driving import Setting
 from laplace_verify.problems.infinity import (
     AtInfinity,
     as_at_infinity,
@@ -47,7 +48,8 @@ from laplace_verify.problems.infinity import (
 from laplace_verify.problems.materials import Materials
 from laplace_verify.problems.pieces import Piece, Pieces
 from laplace_verify.problems.problem import Problem, axis_piece, no_constant, piece_parts
-from laplace_verify.problems.quantities import Quantity, QuantitySpec, evaluate
+from laplace_verify.problems.quantities import Quantity, QuantitySpec
+from laplace_verify.problems.quantity_values import evaluate
 from laplace_verify.problems.region_checks import check_regions
 from laplace_verify.problems.regularity import Regularity, derive
 from laplace_verify.problems.scaling import (
@@ -223,7 +225,8 @@ def case(
     id, title, statement, tags, sources, reading
         Words, see `Case`. The id consists of lower-case words joined by hyphens.
     quantities
-        Name -> `flux_through`, `value_at` or `energy_of_solution`, evaluated from the exact field.
+        Name -> `flux_through`, `value_at`, `conductance_between` or another of `quantities`, evaluated from
+        the exact field.
     constant
         Pure Neumann only: ("mean", v) or ("point", x, v); by default the mean of the exact field.
     coordinates
@@ -285,6 +288,10 @@ def case(
     for piece in pieces:  # a field that is not defined on the boundary shows here, by the piece's name
         if piece.kind != AXIS:
             piece.probe(seen.pieces[piece.name])
+    setting = Setting(
+        shape=seen, field=field, tensor=tensor, regularity=regularity, coordinates=coordinates,
+        at_infinity=infinity,
+    )  # fmt: skip
     return Case(
         id=id,
         title=title,
@@ -303,7 +310,7 @@ def case(
         ),
         exact=field,
         regularity=regularity,
-        quantities=evaluate(quantities or {}, seen, field, tensor, regularity, coordinates),
+        quantities=evaluate(quantities or {}, setting),
         window=view,
         _conditions=complete,
     )

@@ -255,11 +255,12 @@ def check_infinite_quantities(
     """
     infinite = [piece.name for piece in shape.pieces if isinstance(piece, Plane)]
     for name, spec in specs.items():
-        kind = getattr(spec, "kind", None)
-        if kind in ("flux", "uplift") and spec.where in infinite:
-            raise ProblemError(
-                f"quantity {name!r}: piece {spec.where!r} is unbounded; no {kind} is taken over it"
-            )
+        kind, where = getattr(spec, "kind", None), getattr(spec, "where", None)
+        piece = where[0] if isinstance(where, tuple) and where else where
+        if kind != "exit gradient" and piece in infinite:
+            raise ProblemError(f"quantity {name!r}: piece {piece!r} is unbounded; no {kind} is taken over it")
+        if kind == "added mass" and infinite:
+            raise ProblemError(f"quantity {name!r}: an added mass belongs to bodies in unbounded fluid")
         bodies_carry = at_infinity == "decay" or (at_infinity == "bounded" and shape.dim == 2)
         if kind == "energy" and (infinite or not bodies_carry):
             raise ProblemError(

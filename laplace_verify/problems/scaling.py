@@ -1,8 +1,8 @@
 """The dimensional twin of a dimensionless problem.
 
 With lengths in L, values in U and conductivity in k: x = L x', u = U u', K = k K'. Then fluxes n . K grad u
-scale by k U / L, Robin's alpha by k / L, integrals of the flux by k U L^(d-2), the energy by k U^2 L^(d-2),
-an uplift by U L^(d-1), an exit gradient by U / L.
+scale by k U / L, Robin's alpha by k / L, integrals of the flux by k U L^(d-2), the energy by k U^2 L^(d-2);
+other quantities as `units.exponents` says. The twin's quantities keep no more digits than float64 has.
 """
 
 from __future__ import annotations
@@ -22,7 +22,7 @@ from laplace_verify.problems.data import PointFunction, Rescaled
 from laplace_verify.problems.materials import Materials
 from laplace_verify.problems.quantities import Quantity
 from laplace_verify.problems.regularity import Regularity
-from laplace_verify.problems.units import Units
+from laplace_verify.problems.units import Units, exponents
 
 __all__ = [
     "Scale",
@@ -41,6 +41,7 @@ LENGTHS = frozenset({"a", "b", "lower", "upper", "centre", "radius", "semi_axes"
     "inner_centre", "size", "vertices", "holes", "z0", "z1", "start", "stop", "body", "gap",
 }  # fmt: skip
 EPS = float(np.finfo(np.float64).eps)
+DRIVES = {"torsion constant": -2, "added mass": -1}  # power of length of twist and motion, others are values
 RATIOS = frozenset({"opening", "splits", "names", "dim"})  # angles, fractions and words stay
 
 
@@ -138,20 +139,22 @@ def scaled_quantity(
     quantity: Quantity, dim: int, length: float, value: float, conductivity: float, units: Units
 ) -> Quantity:
     """Return the quantity in the units of the twin."""
-    flow = conductivity * value * length ** (dim - 2)
-    factor = {
-        "value": value,
-        "energy": flow * value,
-        "uplift": value * length ** (dim - 1),
-        "exit gradient": value / length,
-    }.get(quantity.kind, flow)
-    where, place = quantity.where, quantity.place
+
+    def of(kind: str) -> float:
+        good, high, big = exponents(kind, dim)
+        return conductivity**good * value**high * length**big
+
+    factor, where = of(quantity.kind), quantity.where
+    pieces = isinstance(where, str) or (isinstance(where, tuple) and isinstance(where[0], str))
+    drive = value * length ** DRIVES.get(quantity.kind, 0)
     return replace(
         quantity,
         value=quantity.value * factor,
         # the factor itself is rounded, and the product once more
         radius=quantity.radius * factor + 8 * EPS * abs(quantity.value * factor),
         unit=units.of(quantity.kind, dim),
-        where=tuple(c * length for c in where) if isinstance(where, tuple) else where,
-        place=tuple(c * length for c in place) if place else None,
+        where=where if pieces else _times(where, length),
+        place=_times(quantity.place, length),
+        drive=tuple(d * drive for d in quantity.drive),
+        digits=None,
     )

@@ -10,7 +10,9 @@
     constant                  null, or {"kind": "mean" | "point", "point": null | [x, y], "value": v}
     exact                     {"formula": text, "basis": why its digits can be believed, "field": parameters}
     regularity                exponents (null: smooth, no limit), singular points, jumps, smallest length
-    quantities                name -> {"kind", "where", "value", "radius", "unit"}; numbers as decimal strings
+    quantities                name -> {"kind", "where", "value", "radius", "basis", "unit"}, "place" of an
+                              exit gradient, "direction" of a flux density; numbers as decimal strings,
+                              "confirmed" by quadrature at two orders where no basis is given
     units                     of length, value, conductivity; "" if dimensionless
     stored                    list of {"place": words, "point", "value", "gradient", "radius",
                               "gradient_radius", "basis"}: u and every component of grad u at an exact point
@@ -27,6 +29,7 @@ with them, so a file edited by hand cannot bring a wrong answer into a study.
 from __future__ import annotations
 
 import math
+import sys
 from collections.abc import Iterator
 from contextlib import contextmanager
 from dataclasses import replace
@@ -47,9 +50,10 @@ from laplace_verify.problems.ill_posed import ill_posed_case
 from laplace_verify.problems.infinity import AtInfinity
 from laplace_verify.problems.materials import Materials
 from laplace_verify.problems.problem import problem
-from laplace_verify.problems.quantities import CLOSED_FORM, Quantity, QuantityKind, QuantitySpec
+from laplace_verify.problems.quantities import Quantity, QuantityKind, QuantitySpec, Where
+from laplace_verify.problems.quantity_values import CLOSED_FORM
 from laplace_verify.problems.regularity import Regularity
-from laplace_verify.problems.stored import StoredValue
+from laplace_verify.problems.stored import StoredNumber, StoredValue
 from laplace_verify.problems.units import Units
 
 __all__ = ["FORMAT", "FORMAT_VERSION", "case_from_json", "case_to_json"]
@@ -58,6 +62,7 @@ FORMAT = "laplace-verify case"
 FORMAT_VERSION = 2
 READABLE = (1, 2)  # version 1 has neither places nor radii of gradients
 STORED = 1e-8  # of values with the field in float64, whose points are rounded where gradients are large
+EPS = sys.float_info.epsilon
 AGREEMENT = 1e-9  # of exponents and lengths in a file with those derived
 
 
@@ -90,10 +95,12 @@ class _Regularity(msgspec.Struct, kw_only=True, forbid_unknown_fields=True, omit
 
 class _Quantity(msgspec.Struct, kw_only=True, forbid_unknown_fields=True, omit_defaults=True):
     kind: QuantityKind
-    where: str | tuple[float, ...] | None
+    where: str | list[float | str] | None
     value: str
     radius: str
+    basis: str = ""
     unit: str
+    direction: tuple[float, ...] = ()
     place: tuple[float, ...] | None = None
 
 
@@ -220,7 +227,9 @@ def case_from_json(data: bytes, path: str = "case file") -> Case:
     with _named(path, "exact.field"):
         field = from_spec(content.exact.field)
     specs = {
-        name: QuantitySpec(kind=q.kind, where=q.where, unit=q.unit, place=q.place)
+        name: QuantitySpec(
+            kind=q.kind, where=_where(q.where), unit=q.unit, direction=q.direction, place=q.place
+        )
         for name, q in content.quantities.items()
     }
     with _named(path, "problem"):
@@ -427,14 +436,23 @@ def _check_regularity(path: str, given: _Regularity, derived: Regularity) -> Non
 
 
 def _quantity_to_file(quantity: Quantity) -> _Quantity:
+    digits = quantity.digits
+    where = quantity.where
     return _Quantity(
         kind=quantity.kind,
-        where=quantity.where,
-        value=repr(quantity.value),
-        radius=repr(quantity.radius),
+        where=list(where) if isinstance(where, tuple) else where,
+        direction=quantity.direction,
+        value=repr(quantity.value) if digits is None else digits.value,
+        radius=repr(quantity.radius) if digits is None else digits.radius,
+        basis="" if digits is None else digits.basis,
         unit=quantity.unit,
         place=quantity.place,
     )
+
+
+def _where(given: str | list[float | str] | None) -> Where:
+    """Return where a quantity of a file belongs; `case` refuses what does not fit its kind."""
+    return tuple(given) if isinstance(given, list) else given  # type: ignore[arg-type]
 
 
 def _quantity_from_file(path: str, name: str, given: _Quantity, derived: Quantity) -> Quantity:
@@ -449,4 +467,8 @@ def _quantity_from_file(path: str, name: str, given: _Quantity, derived: Quantit
             f"{path}: quantities.{name}: value is {given.value} +- {given.radius}, the exact field gives "
             f"{derived.value!r} +- {derived.radius:.2g}"
         )
-    return replace(derived, value=value, radius=radius)
+    if not given.basis:
+        return replace(derived, value=value, radius=radius)
+    with _named(path, f"quantities.{name}"):
+        digits = StoredNumber(value=given.value, radius=given.radius, basis=given.basis)
+    return replace(derived, value=value, radius=radius + EPS * abs(value), digits=digits)

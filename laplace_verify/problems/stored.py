@@ -7,7 +7,7 @@ from decimal import Decimal, InvalidOperation
 
 from laplace_verify.errors import ProblemError, nearest_names
 
-__all__ = ["BASES", "StoredValue"]
+__all__ = ["BASES", "StoredNumber", "StoredValue"]
 
 BASES = ("closed form", "tail bound", "maximum-principle bound", "confirmed")
 
@@ -66,17 +66,58 @@ class StoredValue:
         if not self.gradient_radius:
             object.__setattr__(self, "gradient_radius", self.radius)
         for name in ("radius", "gradient_radius"):
-            if not Decimal(_decimal(name, getattr(self, name))) >= 0:
-                raise ProblemError(f"{name} of a stored value must be >= 0, got {getattr(self, name)!r}")
+            _check_radius(name, getattr(self, name))
         if len(self.point) != len(self.gradient):
             raise ProblemError(
                 f"a stored value at {self.point} needs {len(self.point)} derivatives, got "
                 f"{len(self.gradient)}"
             )
-        if self.basis not in BASES:
-            raise ProblemError(
-                f"unknown basis {self.basis!r} of a stored value; {nearest_names(self.basis, BASES)}"
-            )
+        _check_basis(self.basis)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class StoredNumber:
+    """A single number as a decimal string: |true number - value| <= radius.
+
+    Attributes
+    ----------
+    value, radius
+        The number and its error radius, >= 0.
+    basis
+        As of `StoredValue`.
+
+    Raises
+    ------
+    ProblemError
+        If a string is no decimal number or the basis is unknown.
+
+    Examples
+    --------
+    >>> StoredNumber(value="0.69314718", radius="1e-8", basis="closed form").radius
+    '1e-8'
+    """
+
+    value: str
+    radius: str
+    basis: str
+
+    def __post_init__(self) -> None:
+        """Check every string."""
+        _decimal("value", self.value)
+        _check_radius("radius", self.radius)
+        _check_basis(self.basis)
+
+
+def _check_radius(name: str, text: str) -> None:
+    """Refuse what is no decimal >= 0."""
+    if not Decimal(_decimal(name, text)) >= 0:
+        raise ProblemError(f"{name} of a stored value must be >= 0, got {text!r}")
+
+
+def _check_basis(basis: str) -> None:
+    """Refuse a basis that is none of `BASES`."""
+    if basis not in BASES:
+        raise ProblemError(f"unknown basis {basis!r} of a stored value; {nearest_names(basis, BASES)}")
 
 
 def _decimal(name: str, text: str) -> str:

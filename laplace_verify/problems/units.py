@@ -7,7 +7,7 @@ from dataclasses import dataclass
 
 from laplace_verify.errors import ProblemError
 
-__all__ = ["Units", "unit_product"]
+__all__ = ["Units", "exponents", "unit_product"]
 
 FACTOR = re.compile(r"([^\s*/·^()0-9.,+-]+)(?:\^?(-?\d+))?")
 
@@ -27,20 +27,37 @@ class Units:
     conductivity: str = ""
 
     def of(self, kind: str, dim: int) -> str:
-        """Return the unit of a quantity.
+        """Return the unit of a kind of quantity, see `exponents`.
 
-        "value" (u), "flux" and "discharge" (K u L^(d-2)), "energy" (K u^2 L^(d-2)), "uplift" (u L^(d-1)),
-        "exit gradient" (u / L).
-
-        >>> Units(length="m", value="K", conductivity="W/(m K)").of("flux", 3)
-        'W'
+        >>> metric = Units(length="m", value="K", conductivity="W/(m K)")
+        >>> metric.of("flux", 3), metric.of("resistance", 3), metric.of("torsion constant", 2)
+        ('W', 'K/W', 'm^4')
         """
-        if kind == "value":
-            return self.value
-        if kind in ("uplift", "exit gradient"):
-            return unit_product((self.value, 1), (self.length, dim - 1 if kind == "uplift" else -1))
-        power = 2 if kind == "energy" else 1
-        return unit_product((self.conductivity, 1), (self.value, power), (self.length, dim - 2))
+        conductivity, value, length = exponents(kind, dim)
+        return unit_product((self.conductivity, conductivity), (self.value, value), (self.length, length))
+
+
+def exponents(kind: str, dim: int) -> tuple[int, int, int]:
+    """Return how a kind of quantity scales with conductivity, value and length in `dim` dimensions of space.
+
+    >>> exponents("energy", 3), exponents("capacitance", 2)
+    ((1, 2, 1), (1, 0, 0))
+    """
+    return {
+        "value": (0, 1, 0),
+        "flux": (1, 1, dim - 2),
+        "flux density": (1, 1, -1),
+        "energy": (1, 2, dim - 2),
+        "conductance": (1, 0, dim - 2),
+        "capacitance": (1, 0, dim - 2),
+        "resistance": (-1, 0, 2 - dim),
+        "shape factor": (0, 0, dim - 2),
+        "torsion constant": (0, 0, 4),
+        "added mass": (1, 0, dim),
+        "uplift": (0, 1, dim - 1),
+        "discharge": (1, 1, dim - 2),
+        "exit gradient": (0, 1, -1),
+    }[kind]
 
 
 def unit_product(*factors: tuple[str, int]) -> str:
