@@ -40,6 +40,9 @@ def add_run(commands: Any) -> None:
     parser.add_argument("--out", metavar="DIR", type=Path, default=Path("verification-report"))
     parser.add_argument("--format", nargs="+", choices=FORMATS, default=list(FORMATS), help="default: all")
     parser.add_argument("--time-limit", type=float, metavar="S", help="seconds for one study or law")
+    parser.add_argument(
+        "--budget", type=float, metavar="S", help="seconds a study may add finer sizes for while undecided"
+    )
     parser.add_argument("--workers", type=int, default=os.cpu_count() or 1, help="default: one a core")
     parser.add_argument("--seed", type=int, default=0, help="of everything random (default 0)")
     parser.add_argument(
@@ -71,6 +74,7 @@ def _run(options: argparse.Namespace) -> int:
             sizes=options.sizes,
             seed=options.seed,
             time_limit=options.time_limit,
+            budget=options.budget,
             workers=options.workers,
             progress=lambda _: bar.update(),
             command=shlex.join(["laplace-verify", *options.given]),

@@ -77,6 +77,7 @@ class Settings:
     cases: tuple[str, ...] | None = None
     principles: bool = True
     time_limit: float | None = None  # seconds per study
+    budget: float | None = None  # seconds per study for sizes beyond the planned ones
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

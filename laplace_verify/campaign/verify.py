@@ -14,7 +14,7 @@ from laplace_verify.campaign.record import Record, Settings
 from laplace_verify.cases import catalogue
 from laplace_verify.errors import AdapterError, ProblemError
 from laplace_verify.measure import Study, Verdict, study
-from laplace_verify.measure.levels import check_seed, check_sizes
+from laplace_verify.measure.levels import check_budget, check_seed, check_sizes
 from laplace_verify.principles import LAWS, Check, check_principle
 from laplace_verify.problems import Case, Problem, as_case
 from laplace_verify.solvers import Adapter, load_solver
@@ -35,6 +35,7 @@ def verify(
     time_limit: float | None = None,
     *,
     workers: int = 1,
+    budget: float | None = None,
     progress: Progress | None = None,
     command: str = "",
 ) -> Record:
@@ -58,6 +59,9 @@ def verify(
         Of everything random; the same seed gives the same record, times and host apart.
     time_limit
         Seconds for one study or check, after which it is an ERROR; not kept with an `executor`.
+    budget
+        Seconds that a study may spend on sizes beyond the planned ones while its verdict is open; None: a
+        bounded number of unknowns, which does not depend on the machine.
     progress
         Called with every study and check as it ends.
     command
@@ -66,8 +70,8 @@ def verify(
     Raises
     ------
     AdapterError, UnknownCaseError
-        If there is no such solver or case, the sizes are not three or more, rising, or workers, seed or time
-        limit make no sense. What a solver does never raises: it is in the record.
+        If there is no such solver or case, the sizes are not three or more, rising, or workers, seed, budget
+        or time limit make no sense. What a solver does never raises: it is in the record.
 
     Examples
     --------
@@ -84,6 +88,7 @@ def verify(
             f"executor must be one of concurrent.futures, such as ProcessPoolExecutor(4), got {executor!r}"
         )
     check_seed(seed)
+    check_budget(budget)
     sizes = None if sizes is None else check_sizes(sizes)
     adapter = load_solver(solver)
     source = solver if isinstance(solver, str) else ""
@@ -91,7 +96,7 @@ def verify(
     laws = list(LAWS) if principles else []
     started = now()
     jobs: list[Callable[[], Study | Check]] = [
-        *(partial(study, adapter, case, sizes=sizes, seed=seed) for case in chosen),
+        *(partial(study, adapter, case, sizes=sizes, seed=seed, budget=budget) for case in chosen),
         *(partial(check_principle, adapter, law, seed=seed) for law in laws),
     ]
     results: list[Any] = [None] * len(jobs)
@@ -120,6 +125,7 @@ def verify(
             cases=None if cases is None else tuple(case.id for case in chosen),
             principles=principles,
             time_limit=time_limit,
+            budget=budget,
         ),
         command=command,
         started=started,

@@ -4,7 +4,7 @@ With tol half of the smallest loss of order to be seen and se the standard error
 levels:
 
     PASS if p >= p_exp - tol + 2 se and the last pair slope >= p_exp - tol - 2 sqrt(2) sigma / ln(ratio),
-    FAIL if p <= p_exp - tol - 2 se,
+    FAIL if p <= p_exp - tol - 2 se and the last pair slope < p_exp - tol,
     otherwise INCONCLUSIVE: another level may settle it.
 
 The rule is one-sided: convergence faster than expected passes. Simulated over sequences with noise of 2 to 5
@@ -22,8 +22,10 @@ from __future__ import annotations
 import math
 from collections.abc import Mapping, Sequence
 from dataclasses import replace
+from itertools import pairwise
 
 from laplace_verify.measure.expected import Expectation, smallest_loss
+from laplace_verify.measure.floors import named_floor, rises
 from laplace_verify.measure.orders import OrderFit, fit_order, noise_level, pair_orders
 from laplace_verify.measure.rates import Finding, judge_decrease, judge_exponential, stagnation
 from laplace_verify.measure.results import Level, Order
@@ -146,16 +148,29 @@ def _algebraic(series: Series, expected: float, fit: OrderFit | None, noise: flo
         return Finding(Verdict.PASS)
     stalled = not holds and all(slope is not None and slope >= least for slope in slopes[:-1])
     if stalled or fit.low >= least:
+        relative = series.relative[series.above - 1]
         words = (
             f"stalled: the error falls as expected up to size {series.sizes[series.above - 2]} but only at "
-            f"order {last:.2f} to size {series.sizes[series.above - 1]}. If a solver tolerance or a "
-            f"reduced precision stops it, declare error_floor; if not, {_advice(series)}"
+            f"order {last:.2f} to size {series.sizes[series.above - 1]}, at a relative error of "
+            f"{relative:.1e}: {named_floor(relative)}. If a solver tolerance or a reduced precision stops it, "
+            f"declare error_floor; if not, {_advice(series)}"
         )
         return Finding(Verdict.INCONCLUSIVE, words, finer=True)
-    if fit.high <= least:
-        return Finding(Verdict.FAIL)
-    words = f"too few or too rough levels to tell; {_advice(series)}"
+    if fit.high <= least and last is not None and last < least:
+        return Finding(Verdict.FAIL, rises(series))
+    if last is not None and last >= least and _rising(slopes):
+        words = (
+            f"not in the asymptotic range yet: the order between levels rises from {slopes[0]:.2f} to "
+            f"{last:.2f}; {_advice(series)}"
+        )
+        return Finding(Verdict.INCONCLUSIVE, words, finer=True)
+    words = f"{rises(series) or 'too few or too rough levels to tell'}; {_advice(series)}"
     return Finding(Verdict.INCONCLUSIVE, words, finer=True)
+
+
+def _rising(slopes: Sequence[float | None]) -> bool:
+    """Return whether the order between levels rises from level to level."""
+    return all(a is not None and b is not None and b > a for a, b in pairwise(slopes))
 
 
 def _down_to_floor(series: Series, least: float, noise: float) -> Finding:

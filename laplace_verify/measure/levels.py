@@ -12,11 +12,14 @@ from laplace_verify.errors import AdapterError
 from laplace_verify.measure.results import Level
 from laplace_verify.measure.series import MINIMUM_LEVELS
 
-__all__ = ["check_seed", "check_sizes", "default_sizes", "further_sizes"]
+__all__ = [
+    "check_budget", "check_seed", "check_sizes", "default_sizes", "further_sizes", "predicted_seconds",
+]  # fmt: skip
 
 PLANE, SPACE = (8, 16, 32, 64), (6, 9, 13, 19, 28)
 SPACE_RATIO = 1.45
 MOST_ROUNDS = 2
+MOST_PAID_ROUNDS = 4
 # a bound on work that does not depend on the machine, so that results do not either
 MOST_UNKNOWNS = {1: 300_000, 2: 300_000, 3: 100_000}
 
@@ -49,6 +52,21 @@ def check_sizes(sizes: Sequence[int]) -> tuple[int, ...]:
     return tuple(int(n) for n in given)
 
 
+def check_budget(budget: object) -> None:
+    """Refuse what is no number of seconds.
+
+    Raises
+    ------
+    AdapterError
+        If `budget` is neither None nor a number of at least 0.
+    """
+    if budget is None:
+        return
+    number = isinstance(budget, int | float | np.integer | np.floating) and not isinstance(budget, bool)
+    if not (number and 0 <= float(budget) < math.inf):  # type: ignore[arg-type]  # checked to be a number
+        raise AdapterError(f"budget must be a number of seconds of at least 0, got {budget!r}")
+
+
 def check_seed(seed: object) -> None:
     """Refuse what cannot seed a generator.
 
@@ -61,14 +79,18 @@ def check_seed(seed: object) -> None:
         raise AdapterError(f"seed must be a whole number of at least 0, got {seed!r}")
 
 
-def further_sizes(levels: Sequence[Level], dim: int, rounds: int, scale: float) -> list[int]:
+def further_sizes(
+    levels: Sequence[Level], dim: int, rounds: int, scale: float, budget: float | None = None
+) -> list[int]:
     """Return the sizes worth running next; empty if there are none. `rounds` of additions have been run.
 
     If fewer than four levels can be judged, the first round is a ladder of four that starts at the coarsest
     size to be judged (a multiple of four with h <= scale/2). Otherwise a round is one finer size: twice the
-    last, 1.45 times in space. Sizes with more than the bounded number of unknowns are left out.
+    last, 1.45 times in space. Sizes with more than the bounded number of unknowns are left out, so that what
+    is run does not depend on the machine; with a `budget` in seconds it does: then sizes are left out whose
+    time, predicted to grow like unknowns^(3/2), exceeds what is left.
     """
-    if rounds >= MOST_ROUNDS:
+    if rounds >= (MOST_ROUNDS if budget is None else MOST_PAID_ROUNDS):
         return []
     ratio = SPACE_RATIO if dim == 3 else 2.0
     last = levels[-1]
@@ -77,5 +99,19 @@ def further_sizes(levels: Sequence[Level], dim: int, rounds: int, scale: float) 
         start = 4 * math.ceil(last.size * last.h / (scale / 2) / 4 - 1e-9)
         wanted = [round(start * ratio**k) for k in range(MINIMUM_LEVELS)]
     known = {level.size for level in levels}
-    per_cell = (last.unknowns or last.size**dim) / last.size**dim
-    return [n for n in wanted if n not in known and per_cell * n**dim <= MOST_UNKNOWNS[dim]]
+    wanted = [n for n in wanted if n not in known]
+    if budget is None:
+        per_cell = (last.unknowns or last.size**dim) / last.size**dim
+        return [n for n in wanted if per_cell * n**dim <= MOST_UNKNOWNS[dim]]
+    chosen: list[int] = []
+    for n in wanted:
+        budget -= predicted_seconds(last, n, dim)
+        if budget < 0:
+            break
+        chosen.append(n)
+    return chosen
+
+
+def predicted_seconds(last: Level, size: int, dim: int) -> float:
+    """Return the time a size should take: like unknowns^(3/2), as sparse elimination in the plane does."""
+    return float(last.seconds * (size / last.size) ** (1.5 * dim))

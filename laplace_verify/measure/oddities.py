@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
+from itertools import pairwise
 
 from laplace_verify.measure.results import Level
 from laplace_verify.measure.smoothness import is_functional
@@ -13,6 +14,8 @@ __all__ = ["oddities", "sign_changes"]
 MOVE_ORDER, MOVE_SLACK = 1.5, 0.2
 NO_MOVE = 1e-9
 LEFT_OUT_SLACK = 2.0
+UNEVEN, NODES = 0.1, 2.0
+WELL_BELOW = 0.1
 
 
 def sign_changes(signed: Sequence[dict[str, float]]) -> dict[str, str]:
@@ -28,11 +31,47 @@ def sign_changes(signed: Sequence[dict[str, float]]) -> dict[str, str]:
     return found
 
 
-def oddities(levels: Sequence[Level]) -> tuple[list[str], list[str]]:
-    """Return faults (each fails the study) and remarks on moved boundary and left-out sample points."""
+def oddities(levels: Sequence[Level], dim: int = 2, kind: str = "other") -> tuple[list[str], list[str]]:
+    """Return faults (each fails the study) and remarks.
+
+    A fault is a share of sample points outside the mesh that does not shrink. Remarked are points moved onto
+    the boundary by distances that do not shrink, a refinement whose ratio from h differs from that of the
+    unknowns, and residuals that are not well below the error.
+    """
     if len(levels) < 2:
         return [], []
-    return _left_out(levels), _moves(levels)
+    return _left_out(levels), [*_moves(levels), *_uneven(levels, dim, kind), *_unsolved(levels)]
+
+
+def _uneven(levels: Sequence[Level], dim: int, kind: str) -> list[str]:
+    """Remark refinement ratios from h and from the unknowns that differ by more than node counts explain."""
+    if kind == "stochastic":
+        return []
+    powers = dim - 1 if kind == "boundary element" and dim > 1 else dim
+    for coarse, fine in pairwise(levels):
+        if not (coarse.unknowns > 0 and fine.unknowns > coarse.unknowns):
+            continue
+        from_h = coarse.h / fine.h
+        from_unknowns = (fine.unknowns / coarse.unknowns) ** (1 / powers)
+        slack = UNEVEN + NODES / coarse.unknowns ** (1 / powers)  # (n + 1)^d nodes against n^d cells
+        if abs(math.log(from_h / from_unknowns)) > slack:
+            return [
+                f"the refinement is not uniform: from size {coarse.size} to {fine.size} h falls by "
+                f"{from_h:.3g}, the unknowns say {from_unknowns:.3g}; orders are taken in h"
+            ]
+    return []
+
+
+def _unsolved(levels: Sequence[Level]) -> list[str]:
+    """Remark reported residuals that are not well below the relative error."""
+    for level in levels:
+        error = level.relative.get("L2", level.relative.get("max"))
+        if level.residual is not None and error is not None and level.residual > WELL_BELOW * error > 0:
+            return [
+                f"size {level.size}: the reported residual {level.residual:.1e} is not well below the "
+                f"relative error {error:.1e}: part of the error may be the iteration's"
+            ]
+    return []
 
 
 def _moves(levels: Sequence[Level]) -> list[str]:

@@ -12,6 +12,7 @@ from typing import NamedTuple
 
 import numpy as np
 
+from laplace_verify.measure.floors import named_floor
 from laplace_verify.measure.orders import pair_orders
 from laplace_verify.measure.series import MINIMUM_LEVELS, Series, differences
 from laplace_verify.measure.verdict import Verdict
@@ -49,8 +50,8 @@ def stagnation(series: Series, expected: float = 1.0) -> Finding | None:
     if max(series.relative) <= (TINY_GRADIENT if differences(series.norm) else TINY):
         words = (
             f"the error stays near {last:.1e} (relative {series.relative[-1]:.1e}): small, but "
-            f"neither falling nor at round-off. If a solver tolerance or a reduced precision stops it, "
-            "declare error_floor"
+            f"neither falling nor at round-off: {named_floor(series.relative[-1])}. If a solver tolerance or "
+            "a reduced precision stops it, declare error_floor"
         )
         return Finding(Verdict.INCONCLUSIVE, words)
     if last > 2 * first:

@@ -38,7 +38,7 @@ class Level:
     U an L2 error is in U L^(d/2), an H1-semi error in U L^(d/2 - 1); relative errors have no unit. A norm
     that could not be measured is absent. `moves` maps a piece to the largest distance by which data points
     were moved onto it, `left_out` is the share of the sample points outside the solver's mesh, `coverage` is
-    there where the answer states standard errors.
+    there where the answer states standard errors, `residual` is the final residual the solver reports.
     """
 
     size: int
@@ -52,6 +52,7 @@ class Level:
     moves: dict[str, float] = field(default_factory=dict)
     left_out: float = 0.0
     coverage: Coverage | None = None
+    residual: float | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -96,6 +97,7 @@ class Study:
     `local` maps a place (a piece's name, "corner NAME/NAME", "interior") to the largest error there at every
     level, None where no point was sampled. `features` describes case and solver in plain words for diagnosis.
     `crash` is the traceback if the verdict is ERROR. `known` is the author's reason for a known deviation.
+    `journal` says which sizes were added, when and why.
     """
 
     solver: str
@@ -113,6 +115,7 @@ class Study:
     error_map: ErrorMap | None = None
     known: str | None = None
     crash: str = ""
+    journal: list[str] = field(default_factory=list)
 
     @property
     def deciding(self) -> list[str]:

@@ -62,15 +62,18 @@ class Runner:
         self.exact = Exact(self.seen)
         self.fluxes = ExactFluxes(self.seen, self.exact)
 
-    def run(self, size: int) -> LevelResult:
-        """Solve and measure one size; whatever the solver raises passes through."""
+    def run(self, size: int, tolerance: float | None = None) -> LevelResult:
+        """Solve and measure one size; whatever the solver raises passes through.
+
+        `tolerance` reaches solvers that take one; by default they keep their own.
+        """
         generator = level_generator(self.seed, self.case.id, size)
         shape, seen = self.seen.problem.shape, self.seen.problem
         most = self.max_points or MOST_POINTS[shape.dim]
         wanted = shape.sample(min(WANTED, most), seed=int(generator.integers(2**31)))
         problem, log = self.case.problem.watched()
         start = time.perf_counter()
-        answer = self.solver.solve(problem, size, wanted, seed=self.seed)
+        answer = self.solver.solve(problem, size, wanted, seed=self.seed, tolerance=tolerance)
         seconds = time.perf_counter() - start
         h = self._spacing(answer, size)
         singular = self.case.regularity.singular_points
@@ -84,6 +87,7 @@ class Runner:
             errors=measured.errors | found.errors, relative=measured.relative | found.relative,
             judged=judged, note=note, moves=dict(log.largest), left_out=measured.left_out,
             coverage=coverage_of(answer, self.exact, measured),
+            residual=answer.residual,
         )  # fmt: skip
         return LevelResult(
             level=level,

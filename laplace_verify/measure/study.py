@@ -16,11 +16,12 @@ from laplace_verify.measure.criteria import expectations, for_computed
 from laplace_verify.measure.expected import Expectation
 from laplace_verify.measure.features import features
 from laplace_verify.measure.judge import combine, judge
-from laplace_verify.measure.levels import check_seed, check_sizes, default_sizes, further_sizes
+from laplace_verify.measure.levels import check_budget, check_seed, check_sizes, default_sizes, further_sizes
 from laplace_verify.measure.oddities import oddities, sign_changes
 from laplace_verify.measure.refusal import refusal_study, said
 from laplace_verify.measure.results import Level, Order, Study
 from laplace_verify.measure.running import LevelResult, Runner, check_falling
+from laplace_verify.measure.tightening import iteration_remarks
 from laplace_verify.measure.verdict import Verdict
 from laplace_verify.problems import Case, Problem, as_case
 from laplace_verify.solvers import Adapter, Refused
@@ -37,6 +38,7 @@ def study(
     sizes: Sequence[int] | None = None,
     seed: int = 0,
     max_points: int | None = None,
+    budget: float | None = None,
 ) -> Study:
     """Run `solver` on `case` at several sizes and judge the observed order of its errors.
 
@@ -50,11 +52,14 @@ def study(
     sizes : sequence of int, optional
         Three or more, increasing; four are needed for a PASS. Default: the solver's own, else 8 16 32 64 in
         one and two dimensions and 6 9 13 19 28 in three. A few more are added to the default
-        if the verdict is still open and the work stays bounded.
+        if the verdict is still open and the work stays bounded; the journal tells which.
     seed : int
         Seed of the sample points and of solvers that take one. Same seed, same numbers.
     max_points : int, optional
         Cap on the sample points of a level; default 20 000, 200 000, 400 000 in one, two, three dimensions.
+    budget : float, optional
+        Seconds that sizes added while the verdict is open may take. Without it one or two are added to
+        default sizes only, bounded by their unknowns, so that what is run does not depend on the machine.
 
     Returns
     -------
@@ -83,6 +88,7 @@ def study(
     ('PASS', 2.0)
     """
     _check_arguments(solver, max_points)
+    check_budget(budget)
     case = as_case(case)
     check_seed(seed)
     given = check_sizes(sizes) if sizes is not None else solver.sizes
@@ -100,8 +106,9 @@ def study(
             run.add(size)
     except (Exception, SystemExit) as cause:
         return run.broken(size, cause)
-    if given is None:
-        run.refine()
+    if given is None or budget is not None:
+        run.refine(budget)
+    run.remarks += iteration_remarks(run.runner, run.levels)
     return run.judged()
 
 
@@ -116,6 +123,7 @@ class _Run:
     criteria: Mapping[str, Expectation]
     results: list[LevelResult] = field(default_factory=list)
     remarks: list[str] = field(default_factory=list)
+    journal: list[str] = field(default_factory=list)
 
     @property
     def levels(self) -> list[Level]:
@@ -128,31 +136,36 @@ class _Run:
         check_falling(sorted([*self.levels, result.level], key=lambda level: level.size))
         self.results = sorted([*self.results, result], key=lambda r: r.level.size)
 
-    def refine(self) -> None:
-        """Add sizes while the verdict is open, a finer level may settle it, and the work stays bounded."""
-        added: list[int] = []
-        rounds = 0
+    def refine(self, budget: float | None = None) -> None:
+        """Add sizes while the verdict is open, a finer level may settle it, and the work stays bounded.
+
+        Every decision is taken once and goes into the journal.
+        """
+        rounds, spent = 0, 0.0
         while True:
-            orders = self.orders()
-            verdict, _, _ = combine(orders)
-            wanting = any(order.decides and order.finer for order in orders.values())
-            further = further_sizes(self.levels, self.case.dim, rounds, self.case.regularity.scale)
-            if verdict is not Verdict.INCONCLUSIVE or not wanting or not further:
+            verdict, _, _ = combine(orders := self.orders())
+            open_norms = [norm for norm, order in orders.items() if order.decides and order.finer]
+            left = None if budget is None else budget - spent
+            further = further_sizes(self.levels, self.case.dim, rounds, self.case.regularity.scale, left)
+            if verdict is not Verdict.INCONCLUSIVE or not open_norms or not further:
                 break
             rounds += 1
+            ran, means = [level.size for level in self.levels], "" if left is None else f", {left:.3g} s left"
+            self.journal.append(
+                f"after sizes {_listed(ran)} open in {', '.join(open_norms)}{means}: {_listed(further)} added"
+            )
             try:
                 for size in further:
                     self.add(size)
-                    added.append(size)
+                    spent += next(level.seconds for level in self.levels if level.size == size)
             except (Exception, SystemExit) as cause:
                 self.remarks.append(
-                    f"size {size} was tried beyond the default sizes and broke: {said(cause)}"
+                    f"size {size} was tried beyond the planned sizes and broke: {said(cause)}"
                 )
                 break
+        added = [level.size for level in self.levels if level.size not in self.sizes]
         if added:
-            self.remarks.append(
-                f"the default sizes left the verdict open; added: {', '.join(map(str, added))}"
-            )
+            self.remarks.append(f"the planned sizes left the verdict open; added: {_listed(added)}")
         self.sizes = [level.size for level in self.levels]
 
     def orders(self) -> dict[str, Order]:
@@ -171,7 +184,8 @@ class _Run:
         """Return the study with its verdict."""
         orders = self.orders()
         verdict, reasons, remarks = combine(orders)
-        faults, odd = (a + b for a, b in zip(oddities(self.levels), judge_coverage(self.levels), strict=True))
+        found = oddities(self.levels, self.case.dim, self.solver.kind), judge_coverage(self.levels)
+        faults, odd = (a + b for a, b in zip(*found, strict=True))
         if faults:
             verdict, reasons = Verdict.FAIL, [*reasons, *faults]
         remarks += [*odd, *dict.fromkeys(remark for result in self.results for remark in result.remarks)]
@@ -232,6 +246,7 @@ class _Run:
             error_map=last.error_map if last else None,
             known=known,
             crash=crash,
+            journal=self.journal,
         )
 
 
@@ -244,3 +259,8 @@ def _check_arguments(solver: object, max_points: int | None) -> None:
         )
     if max_points is not None and not max_points >= 100:
         raise AdapterError(f"max_points must be at least 100, got {max_points!r}")
+
+
+def _listed(sizes: Sequence[int]) -> str:
+    """Return sizes as words."""
+    return ", ".join(map(str, sizes))

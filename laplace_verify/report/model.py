@@ -293,6 +293,7 @@ def _environment_section(record: Record) -> Section:
         ("Cases asked for", ", ".join(asked.cases) if asked.cases is not None else "whole catalogue"),
         ("Laws checked", "yes" if asked.principles else "no"),
         ("Time limit", f"{asked.time_limit:g} s a study" if asked.time_limit else "none"),
+        ("Budget for further sizes", f"{asked.budget:g} s a study" if asked.budget else "none"),
         ("Started", record.started or "not recorded"),
         ("Finished", record.finished or "not recorded"),
     ]

@@ -237,3 +237,48 @@ def test_a_functional_whose_error_passes_through_zero_is_a_remark():
 def test_nan_never_passes():
     with pytest.raises(Exception, match="positive and finite"):
         verdict_of(halving(4), [0.1, math.nan, 0.01, 0.001])
+
+
+def test_a_sequence_that_is_not_asymptotic_yet_is_neither_passed_nor_failed():
+    # local orders 0.5, 0.9, 1.3, 1.7: a sound method whose coarse grids do not resolve the solution
+    slopes = np.array([0.5, 0.9, 1.3, 1.7])
+    errors = 0.1 * 2.0 ** -np.concatenate([[0.0], np.cumsum(slopes)])
+    verdict, reason = verdict_of(halving(5), errors)
+    assert verdict is Verdict.INCONCLUSIVE
+    assert "not in the asymptotic range yet: the order between levels rises from 0.50 to 1.70" in reason
+    verdict, reason = verdict_of(halving(5), errors[:1] * 2.0 ** -np.array([0, 0.5, 1.1, 1.8, 2.6]))
+    assert verdict is Verdict.FAIL  # rising too, but still an order short
+
+
+def test_errors_that_go_up_and_down_are_named():
+    verdict, reason = verdict_of(halving(5), [1e-2, 2e-3, 3e-3, 4e-4, 1.2e-4])
+    assert verdict is Verdict.INCONCLUSIVE
+    assert "does not fall steadily: it rises from size 16 to 32" in reason
+
+
+@pytest.mark.parametrize(
+    ("level", "name"),
+    [(3e-7, "single precision"), (2e-6, "single precision"), (3e-9, "loose tolerance"), (5e-11, "round-off")],
+)
+def test_floors_are_named_by_their_size(level, name):
+    _, reason = verdict_of(halving(4), np.full(4, level))
+    assert name in reason
+
+
+def test_a_solver_at_its_rounding_floor_with_negative_orders_passes():
+    errors = [2e-14, 3e-14, 7e-14, 2e-13]
+    assert verdict_of(halving(4), errors)[0] is Verdict.PASS
+
+
+def test_falling_short_by_a_third_in_norms_without_a_theorem_fails_nobody():
+    # Five norms of a sound run, the maximum with a logarithm and the nodes superconvergent: if any shortfall
+    # of 0.3 failed, this run would.
+    h = halving(5)
+    orders = {}
+    for norm, errors, decides in [
+        ("L2", h**2, True), ("H1-semi", h, True), ("max", h**1.6, False), ("L1", h**1.65, False),
+        ("trace:top", h**3, False),
+    ]:  # fmt: skip
+        expected = 1.0 if norm == "H1-semi" else 2.0
+        orders |= judge(levels_of(h, errors, norm), expect(expected, norm, decides=decides))
+    assert combine(orders)[0] is Verdict.PASS
