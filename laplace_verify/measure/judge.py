@@ -152,8 +152,8 @@ def _algebraic(series: Series, expected: float, fit: OrderFit | None, noise: flo
         words = (
             f"stalled: the error falls as expected up to size {series.sizes[series.above - 2]} but only at "
             f"order {last:.2f} to size {series.sizes[series.above - 1]}, at a relative error of "
-            f"{relative:.1e}: {named_floor(relative)}. If a solver tolerance or a reduced precision stops it, "
-            f"declare error_floor; if not, {_advice(series)}"
+            f"{relative:.1e}: {named_floor(relative)}. If a solver tolerance or a reduced precision stops "
+            f"it, declare error_floor; if not, {_advice(series)}"
         )
         return Finding(Verdict.INCONCLUSIVE, words, finer=True)
     if fit.high <= least and last is not None and last < least:
