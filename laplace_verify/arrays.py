@@ -22,6 +22,15 @@ IntArray: TypeAlias = npt.NDArray[np.int64]
 BLOCK = 8192  # points per block: the temporaries of one block stay in cache
 
 
+def shown(given: object) -> str:
+    """Return what came in, short enough for a message.
+
+    >>> shown([[1j, 2]]), shown("text")
+    ('list [[1j, 2]]', "str 'text'")
+    """
+    return f"{type(given).__name__} {repr(given)[:60]}"
+
+
 def as_points(
     points: npt.ArrayLike, dim: int, *, error: type[LaplaceVerifyError], name: str = "points"
 ) -> Array:
@@ -35,7 +44,7 @@ def as_points(
     try:
         array = np.ascontiguousarray(points, dtype=np.float64)
     except (TypeError, ValueError) as cause:
-        raise error(f"{name} must be numbers of shape (n, {dim}), got {type(points).__name__}") from cause
+        raise error(f"{name} must be numbers of shape (n, {dim}), got {shown(points)}") from cause
     if dim == 1 and array.ndim == 1:
         array = array[:, np.newaxis]
     if array.ndim != 2 or array.shape[1] != dim:

@@ -24,7 +24,7 @@ __all__ = ["FLOAT", "FloatContext", "Number", "Precise", "precise"]
 
 Number: TypeAlias = int | float | str | Fraction | mpmath.mpf
 
-MAX_DIGITS = 400
+MAX_DIGITS = 200
 GUARD_DIGITS = 15
 
 UFUNCS = {
@@ -93,7 +93,7 @@ def precise(digits: int) -> Precise:
     Raises
     ------
     FieldError
-        If `digits` is not an integer between 1 and 400.
+        If `digits` is not an integer between 1 and 200.
     """
     if isinstance(digits, bool) or not isinstance(digits, int) or not 1 <= digits <= MAX_DIGITS:
         raise FieldError(f"digits must be an integer from 1 to {MAX_DIGITS}, got {digits!r}")

@@ -1,14 +1,40 @@
-"""Write a file so that no reader ever sees half of it."""
+"""Files: no reader ever sees half of one that we write; broken JSON is named by file."""
 
 from __future__ import annotations
 
 import contextlib
 import os
 from pathlib import Path
+from typing import Any
+
+import msgspec
 
 from laplace_verify.errors import RecordError
 
-__all__ = ["write_atomically"]
+__all__ = ["json_content", "write_atomically"]
+
+
+def json_content(data: bytes, name: str) -> Any:
+    """Return what the JSON in `data` says, as dicts, lists, texts and numbers.
+
+    Raises
+    ------
+    RecordError
+        If it is truncated, malformed, or nested too deeply; `name` says which file it is.
+
+    Examples
+    --------
+    >>> json_content(b'{"a": [1', "plate.json")
+    Traceback (most recent call last):
+    ...
+    laplace_verify.errors.RecordError: plate.json: not valid JSON: Input data was truncated
+    """
+    try:
+        return msgspec.json.decode(data)
+    except (msgspec.DecodeError, UnicodeDecodeError) as cause:
+        raise RecordError(f"{name}: not valid JSON: {cause}") from cause
+    except RecursionError as cause:
+        raise RecordError(f"{name}: nested too deeply") from cause
 
 
 def write_atomically(path: Path, data: bytes) -> None:

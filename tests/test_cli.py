@@ -200,9 +200,11 @@ def test_a_filter_that_no_case_can_meet_is_status_2(arguments, message, capsys):
     assert message in capsys.readouterr().err
 
 
-def test_the_value_outside_the_shape_comes_with_a_note(capsys):
-    assert main(["value", "plate-saddle", "50", "0.5"]) == 0
-    assert "outside the shape" in capsys.readouterr().err
+def test_a_value_outside_the_shape_is_refused(capsys):
+    assert main(["value", "plate-saddle", "50", "0.5"]) == 2
+    shown = capsys.readouterr()
+    assert "the point (50, 0.5) lies outside the rectangle" in shown.err
+    assert shown.out == ""
     assert main(["value", "plate-saddle", "1/2", "0.25"]) == 0
     assert capsys.readouterr().err == ""
 

@@ -34,5 +34,5 @@ def test_precise_contexts_leave_the_global_precision_alone():
 
 @pytest.mark.parametrize("digits", [0, -3, 401, 2.5, True])
 def test_digits_out_of_range_are_refused(digits):
-    with pytest.raises(FieldError, match="digits must be an integer from 1 to 400"):
+    with pytest.raises(FieldError, match="digits must be an integer from 1 to 200"):
         precise(digits)

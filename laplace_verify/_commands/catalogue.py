@@ -3,15 +3,13 @@
 from __future__ import annotations
 
 import argparse
-from fractions import Fraction
 from pathlib import Path
 from typing import Any
 
 from laplace_verify._commands.common import among, described, note, say
+from laplace_verify.errors import ProblemError
 
 __all__ = ["add_cases", "add_show", "add_value"]
-
-CLOSED = 1e-12  # of the shape's size: points on the boundary lie in the shape
 
 
 def add_cases(commands: Any) -> None:
@@ -93,11 +91,17 @@ def _value(options: argparse.Namespace) -> int:
     import mpmath
 
     from laplace_verify.cases import catalogue
+    from laplace_verify.cases.statement import region_in_words
+    from laplace_verify.fields.exact import exact_point
 
     case = catalogue[options.case]
     found = case.exact.enclosure(options.coordinates, options.digits)
-    if not case.problem.shape.contains([[float(Fraction(text)) for text in options.coordinates]], CLOSED)[0]:
-        note("note: the point lies outside the shape")
+    place = [float(c) for c in exact_point(options.coordinates, "point", (case.dim,))]
+    if not case.problem.shape.contains([place])[0]:
+        raise ProblemError(
+            f"the point ({', '.join(options.coordinates)}) lies outside "
+            f"{region_in_words(case.problem.shape)}, where case {case.id!r} is posed"
+        )
     say(f"value   {mpmath.nstr(found.value, options.digits)}")
     say(f"radius  {mpmath.nstr(found.radius, 2)}")
     say(f"basis   {found.basis}")

@@ -18,7 +18,7 @@ from typing import Any
 import msgspec
 
 from laplace_verify.errors import RecordError
-from laplace_verify.files import write_atomically
+from laplace_verify.files import json_content, write_atomically
 from laplace_verify.measure.results import Study
 from laplace_verify.principles.results import Check
 
@@ -197,11 +197,10 @@ def record_from_json(source: str | os.PathLike[str] | bytes) -> Record:
         If the file cannot be read, is no JSON, is no record, has a newer version, or a field has the wrong
         type; the message names file and field.
     """
+    if not isinstance(source, bytes | str | os.PathLike):
+        raise RecordError(f"a record is read from a path or from bytes, got {type(source).__name__}")
     name, data = ("record", source) if isinstance(source, bytes) else (os.fspath(source), _read(source))
-    try:
-        plain = msgspec.json.decode(data)
-    except (msgspec.DecodeError, UnicodeDecodeError) as cause:
-        raise RecordError(f"{name}: not valid JSON: {cause}") from cause
+    plain = json_content(data, name)
     if not isinstance(plain, dict) or plain.pop("format", None) != FORMAT:
         raise RecordError(f"{name}: not a record: the field 'format' must be {FORMAT!r}")
     version = plain.get("format_version")

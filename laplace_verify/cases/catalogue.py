@@ -47,6 +47,10 @@ class Catalogue(Mapping[str, Case]):
         UnknownCaseError
             If there is none; the nearest ids are named.
         """
+        if not isinstance(id_, str):
+            raise UnknownCaseError(
+                f"a case is asked for by its id, a text such as 'plate-saddle', got {id_!r}"
+            )
         if id_ not in self._built:
             if id_ not in self._builders:
                 raise UnknownCaseError(f"no case is called {id_!r}; {nearest_names(str(id_), self)}")
@@ -115,6 +119,8 @@ class Catalogue(Mapping[str, Case]):
         can, wanted = _words(conditions, "conditions"), _words(tags, "tags")
         if dim is not None and dim not in (1, 2, 3):
             raise ProblemError(f"dim must be 1, 2 or 3, got {dim!r}")
+        if ill_posed not in (None, True, False):
+            raise ProblemError(f"ill_posed must be True, False or None, got {ill_posed!r}")
         _check_known(() if shape is None else (shape,), SHAPES, "shape")
         _check_known(can or (), CONDITIONS, "condition")
         if wanted:

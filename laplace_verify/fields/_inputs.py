@@ -11,9 +11,10 @@ import numpy.typing as npt
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.errors import FieldError
 
-__all__ = ["Side", "as_sides", "columns", "equals", "is_number", "name_of", "text_of"]
+__all__ = ["Side", "as_sides", "columns", "equals", "is_number", "name_of", "shortened", "text_of"]
 
 Side: TypeAlias = npt.ArrayLike | None
+LONGEST = 120  # letters of a formula in a message; fits have hundreds
 
 
 def columns(points: Array) -> tuple[Array, ...]:
@@ -63,6 +64,15 @@ def name_of(points: Array, hit: BoolArray, first: int | None, place: Any) -> str
         return f"point {text_of(place)}"
     row = int(np.flatnonzero(hit)[0])
     return f"point {row + (first or 0)} = {tuple(points[row].tolist())}"
+
+
+def shortened(formula: str) -> str:
+    """Return a formula short enough for a message.
+
+    >>> shortened("x" * 200)[-5:]
+    'x ...'
+    """
+    return formula if len(formula) <= LONGEST else f"{formula[:LONGEST]} ..."
 
 
 def text_of(place: tuple[Any, ...]) -> str:

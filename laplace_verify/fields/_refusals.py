@@ -9,7 +9,7 @@ import numpy as np
 
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.errors import FieldError
-from laplace_verify.fields._inputs import equals, name_of
+from laplace_verify.fields._inputs import equals, name_of, shortened
 from laplace_verify.fields._precision import working
 
 if TYPE_CHECKING:
@@ -46,7 +46,7 @@ def refuse(field: Field, place: Place, *, derivative: bool) -> None:
         _on_interfaces(field, place)
     valid = field._valid(place.points)
     if not valid.all():
-        raise FieldError(f"{field.formula} is not defined at {place.name(~valid)}")
+        raise FieldError(f"{shortened(field.formula)} is not defined at {place.name(~valid)}")
 
 
 def refuse_infinite(field: Field, place: Place, results: Array) -> None:
@@ -55,7 +55,7 @@ def refuse_infinite(field: Field, place: Place, results: Array) -> None:
     if not finite.all():
         bad = np.asarray(~finite.reshape(len(place.points), -1).all(axis=1))
         raise FieldError(
-            f"{field.formula} is not a finite float64 at {place.name(bad)}: "
+            f"{shortened(field.formula)} is not a finite float64 at {place.name(bad)}: "
             "the point is singular or too far out"
         )
 
@@ -67,12 +67,12 @@ def _at_singular_points(field: Field, place: Place, derivative: bool) -> None:
             continue
         where = place.name(hit)
         if singularity.kind == "jump":
-            raise FieldError(f"{field.formula} jumps at {where}: it has no single value there")
+            raise FieldError(f"{shortened(field.formula)} jumps at {where}: it has no single value there")
         if singularity.kind != "power":
-            raise FieldError(f"{field.formula} is infinite at {where}; leave this point out")
+            raise FieldError(f"{shortened(field.formula)} is infinite at {where}; leave this point out")
         if derivative and singularity.exponent < 1:
             raise FieldError(
-                f"the gradient of {field.formula} is infinite at {where}: "
+                f"the gradient of {shortened(field.formula)} is infinite at {where}: "
                 f"u ~ r^{singularity.exponent:.4g} there; leave this point out"
             )
 
@@ -87,8 +87,12 @@ def _on_edges(field: Field, place: Place, derivative: bool) -> None:
         if hit.any():
             where = place.name(hit)
             if edge.exponent > 0:
-                raise FieldError(f"the gradient of {field.formula} is infinite at {where}, on an edge")
-            raise FieldError(f"{field.formula} jumps at {where}, on an edge: it has no single value there")
+                raise FieldError(
+                    f"the gradient of {shortened(field.formula)} is infinite at {where}, on an edge"
+                )
+            raise FieldError(
+                f"{shortened(field.formula)} jumps at {where}, on an edge: it has no single value there"
+            )
 
 
 def _on_sheets(field: Field, place: Place, derivative: bool) -> None:
@@ -97,7 +101,7 @@ def _on_sheets(field: Field, place: Place, derivative: bool) -> None:
             continue
         hit = place.undecided(sheet.meets(place.points))
         if hit.any():
-            what = field.formula if sheet.jump else f"the gradient of {field.formula}"
+            what = shortened(field.formula) if sheet.jump else f"the gradient of {shortened(field.formula)}"
             raise FieldError(
                 f"{what} has two values at {place.name(hit)}: say side=+1 (where the "
                 f"sheet's normal {sheet.normal} points) or side=-1"
@@ -113,7 +117,7 @@ def _on_cuts(field: Field, place: Place) -> None:
         hit = place.undecided(meets)
         if hit.any():
             raise FieldError(
-                f"{field.formula} has two values at {place.name(hit)}, on its branch "
+                f"{shortened(field.formula)} has two values at {place.name(hit)}, on its branch "
                 "cut: say side=+1 (left of the cut's direction) or side=-1"
             )
 
@@ -122,6 +126,6 @@ def _on_interfaces(field: Field, place: Place) -> None:
     hit = field.on_interface(place.points, place.exact)
     if hit.any():
         raise FieldError(
-            f"the gradient of {field.formula} jumps at {place.name(hit)}, on an "
+            f"the gradient of {shortened(field.formula)} jumps at {place.name(hit)}, on an "
             f"interface: say which region is meant, one of {', '.join(field.regions)}"
         )

@@ -20,7 +20,7 @@ import numpy.typing as npt
 from laplace_verify.arrays import Array, BoolArray, as_points, blocks
 from laplace_verify.contexts import FLOAT, MAX_DIGITS, Number, Precise
 from laplace_verify.errors import FieldError
-from laplace_verify.fields._inputs import Side, as_sides, columns, is_number, text_of
+from laplace_verify.fields._inputs import Side, as_sides, columns, is_number, shortened, text_of
 from laplace_verify.fields._precision import agreeing, real
 from laplace_verify.fields._refusals import Place, refuse, refuse_infinite
 from laplace_verify.fields.edges import Edge, Ring
@@ -228,7 +228,7 @@ class Field(ABC):
         Raises
         ------
         FieldError
-            As `value`; or if `digits` is not a whole number from 1 to 400.
+            As `value`; or if `digits` is not a whole number from 1 to 200.
         """
         return self._settled(point, digits, side, derivative=False)[0][0]
 
@@ -240,7 +240,7 @@ class Field(ABC):
         Raises
         ------
         FieldError
-            As `value`; or if `digits` is not a whole number from 1 to 400.
+            As `value`; or if `digits` is not a whole number from 1 to 200.
         """
         return self._settled(point, digits, side, derivative=False, limited=False)[0][0]
 
@@ -258,7 +258,7 @@ class Field(ABC):
         Raises
         ------
         FieldError
-            As `gradient`; or if `digits` is not a whole number from 1 to 400.
+            As `gradient`; or if `digits` is not a whole number from 1 to 200.
         """
         if region is not None and self.regions:
             return self.restricted(region).gradient_at(point, digits, side)
@@ -300,8 +300,8 @@ class Field(ABC):
         digits = whole(digits, "digits", 1, MAX_DIGITS)
         if limited and digits > self.most_digits:
             raise FieldError(
-                f"{digits} digits were asked for, but {self.formula} is a fit whose error bound leaves "
-                f"{self.most_digits}; ask for no more"
+                f"{digits} digits were asked for, but the field is a fit whose error bound leaves "
+                f"{self.most_digits}; ask for no more. It is {shortened(self.formula)}"
             )
         place = exact_point((point,) if is_number(point) else point, "point", (self.dim,))  # type: ignore[arg-type]
         lip = as_sides(side, 1)

@@ -162,4 +162,5 @@ def whole(number: Any, name: str, lowest: int, highest: int) -> int:
         result = int(number)
         if lowest <= result <= highest:
             return result
-    raise FieldError(f"{name} must be a whole number from {lowest} to {highest}, got {str(number)[:60]}")
+    given = repr(number) if isinstance(number, str) else str(number)
+    raise FieldError(f"{name} must be a whole number from {lowest} to {highest}, got {given[:60]}")

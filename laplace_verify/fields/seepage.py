@@ -217,7 +217,7 @@ def form_factor(field: DamSeepage, digits: int = 30) -> mpmath.mpf:
     Raises
     ------
     FieldError
-        If `digits` is not a whole number from 1 to 400.
+        If `digits` is not a whole number from 1 to 200.
     """
 
     def evaluate(ctx: Precise) -> list[Any]:

@@ -40,6 +40,7 @@ import numpy as np
 
 from laplace_verify.errors import LaplaceVerifyError, RecordError
 from laplace_verify.fields import from_spec
+from laplace_verify.files import json_content
 from laplace_verify.geometry import Shape, shape_from_spec, shape_to_spec
 from laplace_verify.problems.assembly import Conductivity
 from laplace_verify.problems.case import Case, case
@@ -315,12 +316,7 @@ def _ill_posed(
 
 def _decoded(data: bytes, path: str) -> _CaseFile:
     """Return the typed content of a file."""
-    try:
-        head = msgspec.json.decode(data)
-    except msgspec.DecodeError as cause:
-        raise RecordError(f"{path}: not JSON: {cause}") from cause
-    except RecursionError as cause:
-        raise RecordError(f"{path}: nested too deeply") from cause
+    head = json_content(data, path)
     if not isinstance(head, dict) or head.get("format") != FORMAT:
         raise RecordError(f'{path}: not a case file; it must hold an object with "format": "{FORMAT}"')
     if head.get("format_version") not in READABLE:

@@ -13,8 +13,6 @@ from laplace_verify.references.stored import StoredReference
 
 __all__ = ["CheckedValue", "check_reference"]
 
-MOST_DIGITS = 250
-
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class CheckedValue:
@@ -80,7 +78,7 @@ def check_reference(case: Case, stored: StoredReference | Iterable[StoredValue])
 
 def _checked(case: Case, stored: StoredValue) -> CheckedValue:
     """Compare one stored value."""
-    digits = min(MOST_DIGITS, max(len(text) for text in (stored.value, *stored.gradient)) + 10)
+    digits = max(len(text) for text in (stored.value, *stored.gradient)) + 10
     digits = min(digits, case.exact.most_digits)
     value, open_, _ = case.exact.enclosure(stored.point, digits=digits)
     gradient = case.exact.gradient_at(stored.point, digits=digits)

@@ -149,7 +149,7 @@ def test_corrupted_file_is_named_with_its_field(folder, change, said):
 def test_half_a_file_is_no_json(folder):
     text = (folder / "mine.json").read_bytes()
     (folder / "mine.json").write_bytes(text[: len(text) // 2])
-    with pytest.raises(lv.RecordError, match=r"mine.json: not JSON"):
+    with pytest.raises(lv.RecordError, match=r"mine.json: not valid JSON"):
         lv.catalogue.with_folder(folder)
 
 

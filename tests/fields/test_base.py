@@ -75,10 +75,10 @@ def test_a_value_that_is_zero_by_cancellation_settles():
     assert abs(fields.field("sin(pi*x)").at(1, digits=30)) < mpmath.mpf(10) ** -60
 
 
-def test_four_hundred_digits():
-    with mpmath.workdps(420):
-        value = fields.exp_trig(1).at((0, 1), digits=400)
-        assert abs(value - mpmath.e) < mpmath.mpf(10) ** -399
+def test_two_hundred_digits():
+    with mpmath.workdps(220):
+        value = fields.exp_trig(1).at((0, 1), digits=200)
+        assert abs(value - mpmath.e) < mpmath.mpf(10) ** -199
 
 
 @pytest.mark.parametrize("point", [(float("nan"), 0), (float("inf"), 0), ("one", 0), (None, 0), "12", 3])

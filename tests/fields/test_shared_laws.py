@@ -321,5 +321,5 @@ def test_bad_points_are_refused(row):
     with pytest.raises(FieldError, match="coordinates"):
         row.field.at((0.5,) * (d + 1), 20)
     for digits in (0, 401, 2.5, True):
-        with pytest.raises(FieldError, match="digits must be a whole number from 1 to 400"):
+        with pytest.raises(FieldError, match="digits must be a whole number from 1 to 200"):
             row.field.at((0.5,) * d, digits)
