@@ -29,6 +29,7 @@ if TYPE_CHECKING:
     from laplace_verify.geometry import Annulus as Annulus
     from laplace_verify.geometry import Ball as Ball
     from laplace_verify.geometry import Box as Box
+    from laplace_verify.geometry import ConfocalParabolas as ConfocalParabolas
     from laplace_verify.geometry import Cylinder as Cylinder
     from laplace_verify.geometry import Disc as Disc
     from laplace_verify.geometry import Ellipse as Ellipse
@@ -98,9 +99,9 @@ _ROOMS = {
     "errors": "AdapterError AnswerError FieldError GeometryError LaplaceVerifyError ProblemError RecordError",
     "fields": "Field field",
     "geometry": (
-        "Annulus Ball Box Cylinder Disc Ellipse EllipticRing Exterior HalfAnnulus HalfDisc HalfSpace "
-        "Interval LShape PairShell Polygon Rectangle RoundPlate Screen Sector SphericalShell Spheroid "
-        "SpheroidalShell Strip"
+        "Annulus Ball Box ConfocalParabolas Cylinder Disc Ellipse EllipticRing Exterior HalfAnnulus HalfDisc "
+        "HalfSpace Interval LShape PairShell Polygon Rectangle RoundPlate Screen Sector SphericalShell "
+        "Spheroid SpheroidalShell Strip"
     ),
     "measure": "Study Verdict grid_convergence study",
     "principles": "Check check_principle",

@@ -29,6 +29,7 @@ from laplace_verify.cases import (
     round_solids,
     sectors,
     seepage,
+    seepage_drains,
     wedges,
 )
 from laplace_verify.cases.definition import joined
@@ -53,6 +54,7 @@ FAMILIES = joined(
     sectors.family,
     wedges.family,
     seepage.family,
+    seepage_drains.family,
     exteriors.family,
     boxes.family,
     round_solids.family,

@@ -274,6 +274,10 @@ REGIONS: dict[str, Callable[[Any], str]] = {
         f"the half x > {_number(s.centre[0])} of the annulus between the circles of radius "
         f"{_number(s.inner)} and {_number(s.outer)} about {_point(s.centre)}"
     ),
+    "confocal-parabolas": lambda s: (
+        f"the region above the axis of the parabolas about the focus {_point(s.focus)} whose vertices lie "
+        f"{_number(s.right)} to its right and {_number(s.left)} to its left"
+    ),
     "l-shape": lambda s: (
         f"the L-shape (-{_number(s.size)}, {_number(s.size)})^2 without its quadrant x > 0, y < 0"
     ),

@@ -5,6 +5,7 @@ from laplace_verify.geometry.boundary import Boundary
 from laplace_verify.geometry.cartesian import Box, Interval, Rectangle
 from laplace_verify.geometry.halves import HalfAnnulus, HalfDisc
 from laplace_verify.geometry.pairs import PairShell
+from laplace_verify.geometry.parabolas import ConfocalParabolas
 from laplace_verify.geometry.planes import HalfSpace, Strip, within
 from laplace_verify.geometry.polygons import LShape, Polygon
 from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
@@ -21,6 +22,7 @@ __all__ = [
     "Boundaries",
     "Boundary",
     "Box",
+    "ConfocalParabolas",
     "Cylinder",
     "Disc",
     "Ellipse",

@@ -1,8 +1,8 @@
 """Triangulations of planar shapes with n cells along every side, for sample solvers and pictures.
 
 Rectangles and L-shapes get right triangles on a grid, polygons the uniform refinement of a constrained
-Delaunay triangulation of their corners, discs, ellipses and sectors fans of about equilateral triangles
-mapped onto circles, annuli a polar grid. Meshes of one shape with n and 2 n cells are nested up to the
+Delaunay triangulation of their corners, discs, ellipses, sectors and parabolas fans of about equilateral
+triangles mapped onto them, annuli a polar grid. Meshes of one shape with n and 2 n cells are nested up to the
 curvature of the boundary, so h is proportional to 1/n. The ends of boundary pieces, those made by ``split``
 included, are nodes.
 """
@@ -14,21 +14,20 @@ from collections.abc import Callable
 from dataclasses import dataclass, replace
 
 import numpy as np
-import numpy.typing as npt
 
 from laplace_verify.arrays import Array, IntArray, frozen
 from laplace_verify.errors import GeometryError
 from laplace_verify.geometry._ear_clipping import clip_ears, flip_to_delaunay, join_holes
 from laplace_verify.geometry._fans import edges_of, fan_of, unit
+from laplace_verify.geometry._marks import SAME, stretched, subdivide
 from laplace_verify.geometry.base import Shape
 from laplace_verify.geometry.boundary import Boundary
 from laplace_verify.geometry.halves import HalfAnnulus, HalfDisc
+from laplace_verify.geometry.parabolas import ConfocalParabolas
 from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
 from laplace_verify.geometry.splitting import split_piece
 
 __all__ = ["Mesh", "subdivide", "triangulate"]
-
-SAME = 1e-9  # relative distance at which two places are one
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -61,29 +60,6 @@ class Mesh:
         a, b, c = np.moveaxis(self.points[self.triangles], 1, 0)
         areas: Array = 0.5 * ((b - a)[:, 0] * (c - a)[:, 1] - (b - a)[:, 1] * (c - a)[:, 0])
         return areas
-
-
-def subdivide(breaks: npt.ArrayLike, n: int) -> Array:
-    """Return about n + 1 rising coordinates that contain all `breaks`, cells nearly equal.
-
-    The smallest and the largest break are the ends; equal ones count once. Every interval between two breaks
-    gets at least one cell, so there may be more than n.
-
-    >>> subdivide([0.0, 0.3, 1.0], 4).tolist()
-    [0.0, 0.3, 0.5333333333333333, 0.7666666666666666, 1.0]
-    """
-    stops = np.unique(np.asarray(breaks, dtype=np.float64))
-    apart = np.diff(stops) > SAME * (stops[-1] - stops[0])
-    stops = np.append(stops[:-1][apart], stops[-1])  # of nearly equal ones the last, but the very first stays
-    stops[0] = np.min(breaks)
-    marks = np.rint(n * (stops - stops[0]) / (stops[-1] - stops[0])).astype(int)
-    for k in range(1, len(marks)):
-        marks[k] = max(marks[k], marks[k - 1] + 1)
-    parts = [
-        np.linspace(stops[k], stops[k + 1], marks[k + 1] - marks[k], endpoint=False)
-        for k in range(len(marks) - 1)
-    ]
-    return np.concatenate([*parts, stops[-1:]])
 
 
 def triangulate(shape: Shape, n: int) -> Mesh:
@@ -172,7 +148,7 @@ def _from_disc(shape: Shape, n: int) -> Mesh:
         centre, axes = np.array(shape.centre), np.array(shape.semi_axes)
     fan = fan_of(6, n, closed=True)
     breaks = _turns(np.concatenate([piece.ends for piece in shape.pieces]), centre, axes)
-    angle = 2.0 * math.pi * _stretched(fan.share, breaks, 6 * n)
+    angle = 2.0 * math.pi * stretched(fan.share, breaks, 6 * n)
     points = centre + axes * (fan.ring / n * np.array([np.cos(angle), np.sin(angle)])).T
     rim = edges_of(fan.rim)
     ends = angle[rim[:, 0]]
@@ -190,8 +166,8 @@ def _from_sector(shape: Shape, n: int) -> Mesh:
     radii = np.linalg.norm(ends, axis=1) / shape.radius
     on_arc = ends[np.abs(radii - 1.0) < SAME]
     breaks = (np.arctan2(on_arc[:, 1], on_arc[:, 0]) % (2.0 * math.pi)) / shape.opening
-    angle = shape.opening * _stretched(fan.share, breaks, wedges * n)
-    along = shape.radius * _stretched(fan.ring / n, radii, n)
+    angle = shape.opening * stretched(fan.share, breaks, wedges * n)
+    along = shape.radius * stretched(fan.ring / n, radii, n)
     rays = {"start": edges_of(fan.start), "arc": edges_of(fan.rim), "end": edges_of(fan.end)}
     points = along[:, np.newaxis] * unit(angle)
     boundary: dict[str, IntArray] = {}
@@ -214,7 +190,7 @@ def _from_annulus(shape: Shape, n: int) -> Mesh:
     on_inner = np.concatenate([piece.ends for piece in shape.pieces if piece.name.startswith("inner")])
     on_outer = np.concatenate([piece.ends for piece in shape.pieces if piece.name.startswith("outer")])
     breaks = np.concatenate([_turns(on_inner, hole, np.ones(2)), _turns(on_outer, centre, np.ones(2))])
-    angle = 2.0 * math.pi * _stretched(np.arange(around) / around, breaks, around)
+    angle = 2.0 * math.pi * stretched(np.arange(around) / around, breaks, around)
     inside, outside = hole + shape.inner * unit(angle), centre + shape.outer * unit(angle)
     depth = (np.arange(n + 1) / n)[:, np.newaxis, np.newaxis]
     points = ((1.0 - depth) * inside + depth * outside).reshape(-1, 2)
@@ -235,16 +211,33 @@ def _from_half_disc(shape: Shape, n: int) -> Mesh:
     """Map three triangles onto a half-disc, ring by ring."""
     if not isinstance(shape, HalfDisc):
         raise GeometryError(f"a half-disc is needed here, got {shape!r}")
-    fan, centre = fan_of(3, n, closed=False), np.array(shape.centre)
+    return _half_fan(shape, n, np.array(shape.centre), 0, lambda angle: np.full(len(angle), shape.radius))
+
+
+def _from_parabolas(shape: Shape, n: int) -> Mesh:
+    """Map three triangles about the focus onto the region, ring by ring."""
+    if not isinstance(shape, ConfocalParabolas):
+        raise GeometryError(f"confocal parabolas are needed here, got {shape!r}")
+    return _half_fan(shape, n, np.array(shape.focus), 1, shape.reach)
+
+
+def _half_fan(shape: Shape, n: int, centre: Array, axis: int, reach: Callable[[Array], Array]) -> Mesh:
+    """Map three triangles onto a shape that reaches so far from a centre on its straight side.
+
+    The side is normal to `axis`; angles run over the half turn that begins at -pi/2 (axis 0) or 0 (axis 1).
+    """
+    fan, first = fan_of(3, n, closed=False), -math.pi / 2.0 * (1 - axis)
     ends = np.concatenate([piece.ends for piece in shape.pieces]) - centre
-    radii = np.linalg.norm(ends, axis=1) / shape.radius
-    rim = ends[np.abs(radii - 1.0) < SAME]
-    turns = _stretched(fan.share, np.arctan2(rim[:, 1], rim[:, 0]) / math.pi + 0.5, 3 * n)
-    angle, along = math.pi * (turns - 0.5), shape.radius * _stretched(fan.ring / n, radii, n)
+    angles = np.arctan2(ends[:, 1], ends[:, 0])
+    radii = np.linalg.norm(ends, axis=1) / reach(angles)
+    rim = angles[np.abs(radii - 1.0) < SAME]
+    angle = first + math.pi * stretched(fan.share, (rim - first) / math.pi, 3 * n)
+    along = stretched(fan.ring / n, radii, n) * reach(angle)
     points = centre + along[:, np.newaxis] * unit(angle)
-    points[np.concatenate([fan.start, fan.end]), 0] = centre[0]
+    points[np.concatenate([fan.start, fan.end]), axis] = centre[axis]
     arc, side = edges_of(fan.rim), np.concatenate([edges_of(fan.end), edges_of(fan.start)])
-    middles = [points[side].mean(axis=1), centre + shape.radius * unit(angle[arc].mean(axis=1))]
+    half = angle[arc].mean(axis=1)
+    middles = [points[side].mean(axis=1), centre + reach(half)[:, np.newaxis] * unit(half)]
     boundary = _by_piece(list(shape.pieces), np.concatenate([side, arc]), np.concatenate(middles))
     return _finished(points, fan.triangles, boundary)
 
@@ -259,8 +252,8 @@ def _from_half_annulus(shape: Shape, n: int) -> Mesh:
     depths = (np.linalg.norm(ends, axis=1) - shape.inner) / gap
     on_arcs = ends[np.minimum(np.abs(depths), np.abs(depths - 1.0)) < SAME]
     breaks = np.arctan2(on_arcs[:, 1], on_arcs[:, 0]) / math.pi + 0.5
-    angle = math.pi * (_stretched(np.arange(around + 1) / around, breaks, around) - 0.5)
-    radii = shape.inner + gap * _stretched(np.arange(n + 1) / n, depths, n)
+    angle = math.pi * (stretched(np.arange(around + 1) / around, breaks, around) - 0.5)
+    radii = shape.inner + gap * stretched(np.arange(n + 1) / n, depths, n)
     points = centre + (radii[:, np.newaxis, np.newaxis] * unit(angle)).reshape(-1, 2)
     node = np.arange(len(points)).reshape(n + 1, around + 1)
     points[node[:, [0, -1]].ravel(), 0] = centre[0]
@@ -278,15 +271,6 @@ def _turns(points: Array, centre: Array, axes: Array) -> Array:
     """Return the eccentric angles of points on an ellipse as parts of a full turn, in [0, 1)."""
     offset = (points - centre) / axes
     return (np.arctan2(offset[:, 1], offset[:, 0]) / (2.0 * math.pi)) % 1.0
-
-
-def _stretched(share: Array, breaks: Array, cells: int) -> Array:
-    """Move positions in [0, 1] so that the nearest of the marks k / cells comes to lie on every break."""
-    inner = breaks[(breaks > SAME) & (breaks < 1.0 - SAME)]
-    marks = subdivide([0.0, *inner, 1.0], cells)
-    if len(marks) != cells + 1:
-        raise GeometryError(f"n is too small: {len(inner)} ends of pieces do not fit on {cells} cells")
-    return np.interp(share, np.arange(cells + 1) / cells, marks)
 
 
 def _by_piece(pieces: list[Boundary], edges: IntArray, middles: Array) -> dict[str, IntArray]:
@@ -392,4 +376,5 @@ _BUILDERS: dict[str, Callable[[Shape, int], Mesh]] = {
     "annulus": _from_annulus,
     "half-disc": _from_half_disc,
     "half-annulus": _from_half_annulus,
+    "confocal-parabolas": _from_parabolas,
 }

@@ -49,6 +49,8 @@ class Chart:
         For each direction, whether it is an angle (polynomials become trigonometric there).
     extra
         For each direction, the degree that map and Jacobian add to a polynomial.
+    power
+        Degree of the map, by which that of a polynomial is multiplied where the direction is no angle.
     """
 
     lower: Array
@@ -56,6 +58,7 @@ class Chart:
     place: Callable[[Array, IntArray], tuple[Array, Array]]
     angles: tuple[bool, ...]
     extra: tuple[int, ...]
+    power: int = 1
 
 
 def boxes(*edges: npt.ArrayLike) -> tuple[Array, Array]:
@@ -142,7 +145,7 @@ def _point_counts(chart: Chart, order: int, width: Array, near: BoolArray) -> In
     counts = np.empty(width.shape, dtype=np.int64)
     for axis, (angle, extra) in enumerate(zip(chart.angles, chart.extra, strict=True)):
         if not angle:
-            counts[:, axis] = (order + extra) // 2 + 1
+            counts[:, axis] = (chart.power * order + extra) // 2 + 1
             continue
         # half widths are rounded up to powers of two, so that few different rules occur
         classes = np.ceil(np.log2(width[:, axis] / 2.0) - 1e-9)

@@ -14,6 +14,7 @@ from laplace_verify.geometry.base import Shape
 from laplace_verify.geometry.cartesian import Box, Interval, Rectangle
 from laplace_verify.geometry.halves import HalfAnnulus, HalfDisc
 from laplace_verify.geometry.pairs import PairShell
+from laplace_verify.geometry.parabolas import ConfocalParabolas
 from laplace_verify.geometry.planes import HalfSpace, Strip
 from laplace_verify.geometry.polygons import LShape, Polygon
 from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
@@ -28,7 +29,7 @@ SHAPES: dict[str, type[Shape]] = {
     shape.kind: shape
     for shape in (
         Interval, Rectangle, Box, Disc, Ellipse, Annulus, Sector, HalfDisc, HalfAnnulus, LShape,
-        Polygon,
+        Polygon, ConfocalParabolas,
         Ball, SphericalShell, Cylinder,
         EllipticRing, Spheroid, SpheroidalShell, PairShell, Screen, RoundPlate, Exterior, HalfSpace, Strip,
     )

@@ -38,7 +38,8 @@ __all__ = [
 Scale: TypeAlias = float | tuple[float, str] | None
 
 LENGTHS = frozenset({"a", "b", "lower", "upper", "centre", "radius", "semi_axes", "inner", "outer"}) | {
-    "inner_centre", "size", "vertices", "holes", "z0", "z1", "start", "stop", "body", "gap",
+    "inner_centre", "size", "vertices", "holes", "z0", "z1", "start", "stop", "body", "gap", "focus", "right",
+    "left",
 }  # fmt: skip
 EPS = float(np.finfo(np.float64).eps)
 DRIVES = {"torsion constant": -2, "added mass": -1}  # power of length of twist and motion, others are values

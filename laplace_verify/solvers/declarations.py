@@ -53,6 +53,7 @@ SHAPES: Final = (
     "spheroid", "spherical-shell", "cylinder", "half-space", "strip", "exterior", "exterior-disc",
     "exterior-ellipse", "exterior-polygon", "exterior-screen", "exterior-ball", "exterior-spheroid",
     "exterior-round-plate", "elliptic-ring", "spheroidal-shell", "half-disc", "half-annulus",
+    "confocal-parabolas",
 )  # fmt: skip
 CONDITIONS: Final = ("dirichlet", "neumann", "robin", "periodic")
 CONDUCTIVITIES: Final = ("scalar", "tensor", "regions")

@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 
 import laplace_verify as lv
-from laplace_verify.cases import seepage
+from laplace_verify.cases import seepage, seepage_drains
 from laplace_verify.solvers.samples import five_point, p1_element
 
 DAM, DEPTH, DROP, PERMEABILITY = "dam-on-permeable-layer", 12.0, 6.0, 2e-5
@@ -44,7 +44,7 @@ def test_twin_is_solved_at_the_rate_of_the_dam(twin):
         assert large.orders[norm].observed == pytest.approx(small.orders[norm].observed, abs=1e-6)
 
 
-@pytest.mark.parametrize("id_", list(seepage.family))
+@pytest.mark.parametrize("id_", [*seepage.family, *seepage_drains.family])
 def test_words_of_caution_and_of_the_trade(id_):
     case = lv.catalogue[id_]
     assert "licensed practice" in case.statement
@@ -62,3 +62,36 @@ def test_pile_halves_the_way_and_the_uplift_behind_it():
     flat = lv.fields.dam_seepage(2, "3/2")
     x = np.linspace(0.005, 0.995, 100)
     assert front < flat.value(np.column_stack([x, 0 * x])).mean()
+
+
+def assert_head_is_elevation(case):
+    surface = case.problem.pieces["free-surface"]
+    points, _, _ = surface.sample(50)
+    assert np.abs(case.exact.value(points) - points[:, 1]).max() <= 2e-15
+    if surface.kind == "dirichlet":
+        assert np.abs(surface.data(points) - points[:, 1]).max() <= 2e-15
+    else:
+        assert np.abs(surface.data(points)).max() <= 1e-15
+
+
+@pytest.mark.parametrize("id_", list(seepage_drains.family))
+def test_head_is_elevation_on_the_free_surface(id_):
+    assert_head_is_elevation(lv.catalogue[id_])
+
+
+def test_a_surface_that_is_not_free_is_seen():
+    """The twin: the same water above a parabola a hundredth further out."""
+    shape = lv.ConfocalParabolas((0.0, 0.0), 0.3636, 1.21).renamed(right="free-surface")
+    case = lv.case(shape, {"axis-left": "neumann"}, lv.fields.wedge("1/2") * "6/5")
+    with pytest.raises(AssertionError):
+        assert_head_is_elevation(case)
+
+
+def test_discharge_to_a_drain_in_metres():
+    """Kozeny: q = k (sqrt(d^2 + h^2) - d), h the head at the distance d before the drain (from memory)."""
+    twin = lv.catalogue["free-surface-without-flux"].scaled(
+        length=(10, "m"), value=(10, "m"), conductivity=1e-5
+    )
+    height, distance = 14.4, 10 * (0.81 - 0.64)  # where the line of equal head meets the free surface
+    found = twin.quantities["discharge"]
+    assert found.value == pytest.approx(1.25e-5 * (math.hypot(distance, height) - distance), rel=1e-13)

@@ -21,6 +21,8 @@ SHAPES = {
     "slit disc": geo.Sector(1.5, 2.0 * math.pi),
     "half-disc": geo.HalfDisc((0.5, -1.0), 1.25),
     "half-annulus": geo.HalfAnnulus((0.5, -1.0), 0.5, 1.25),
+    "parabolas": geo.ConfocalParabolas((0.5, -1.0), 0.4, 1.1),
+    "split parabolas": geo.ConfocalParabolas((0.0, 0.5), 1.5, 0.25).split(right=[0.25, 0.6], left=[0.5]),
     "l-shape": geo.LShape(1.25),
     "triangle": geo.Polygon([(0.0, 0.0), (2.0, 0.5), (0.25, 1.0)]),
     "plate with holes": geo.Polygon(

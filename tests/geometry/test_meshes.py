@@ -8,7 +8,17 @@ import numpy as np
 import pytest
 
 from laplace_verify.errors import GeometryError
-from laplace_verify.geometry import Annulus, Box, Disc, Ellipse, LShape, Polygon, Rectangle, Sector
+from laplace_verify.geometry import (
+    Annulus,
+    Box,
+    ConfocalParabolas,
+    Disc,
+    Ellipse,
+    LShape,
+    Polygon,
+    Rectangle,
+    Sector,
+)
 from laplace_verify.geometry.meshes import Mesh, subdivide, triangulate
 
 SQUARE = ((0, 0), (4, 0), (4, 4), (0, 4))
@@ -33,6 +43,8 @@ CURVED = [
     pytest.param(Sector(1.0, math.pi / 2), id="quarter disc"),
     pytest.param(Sector(1.0, 1.5 * math.pi).split(arc=[0.3], start=[0.6]), id="sector split"),
     pytest.param(Sector(2.0, 2 * math.pi), id="slit disc"),
+    pytest.param(ConfocalParabolas((0.2, -0.1), 0.4, 1.1), id="parabolas"),
+    pytest.param(ConfocalParabolas((0, 0), 1, 1).split(right=[0.371]), id="parabolas split"),
 ]
 
 
