@@ -16,7 +16,7 @@ what is left of A_n is (-1)^K (r / m)^{2K} times as large, known without cancell
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import Any
+from typing import Any, ClassVar
 
 import numpy as np
 
@@ -81,6 +81,8 @@ def exponential(rate: Number, height: Number = 1) -> Exponential:
 @dataclass(frozen=True, slots=True, kw_only=True)
 class PlateExponential(PlateSplit):
     """Data height e^{rate t}, t the fraction of the side; `rectangle_series` makes one."""
+
+    correction_cost: ClassVar[int] = 20  # coefficients are cheap, polylogarithms dear
 
     rate: Exact
     height: Exact = 1

@@ -25,7 +25,7 @@ from abc import abstractmethod
 from dataclasses import dataclass
 from fractions import Fraction
 from functools import lru_cache
-from typing import Any
+from typing import Any, ClassVar
 
 import mpmath
 
@@ -62,6 +62,8 @@ class PlateSplit(Plate):
     """A plate with smooth data f = p + (f - p) on its side (abstract)."""
 
     __slots__ = ()
+
+    correction_cost: ClassVar[int]  # of one more correction, in coefficients that it must save
 
     # -- what a family of smooth data provides ---------------------------------------------------------------
 
@@ -167,11 +169,12 @@ def _plan(plate: PlateSplit, digits: int | None) -> tuple[list[Any], list[Any], 
         for k, (a, b) in enumerate(zip(left, right, strict=True))
     ]
     counts = [10.0 ** min((size + wanted) / (2 * k + 1 + order), 9.0) for k, size in enumerate(sizes)]
-    needed = [max(counts[k:]) + 2 * k for k in range(most)]  # by the worst derivative not corrected for
+    counts = [max(counts[k:]) for k in range(most)]  # by the worst derivative not corrected for
+    needed = [count + plate.correction_cost * k for k, count in enumerate(counts)]
     lost = [max([0.0, *sizes[:k]]) for k in range(most)]
     for allowed in (1.0, 2.0, 3.0, 4.0) if digits is None else (float(digits),):
         best = min((k for k in range(most) if lost[k] <= allowed), key=needed.__getitem__)
-        if needed[best] <= FEW:
+        if counts[best] <= FEW:
             break
     return left[:best], right[:best], math.ceil(lost[best])
 
