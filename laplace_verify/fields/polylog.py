@@ -49,7 +49,7 @@ def by_index(index: Any, function: Callable[..., Any], *arguments: Any) -> Any:
     if low == high and index.size:
         return function(low, *arguments)
     result: Any = None
-    for k in np.unique(index):
+    for k in np.flatnonzero(np.bincount(index - low)) + low:
         here = np.flatnonzero(index == k)
         part = function(int(k), *(a[here] for a in arguments))
         if result is None:

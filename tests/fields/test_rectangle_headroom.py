@@ -51,14 +51,16 @@ def source(upper):
     return fields.log_source((0, -Fraction(upper[1]) / 100), "1/10")
 
 
-# name: maker, and degree or wavenumber kappa: max(8, 2 + kappa/2) roundings of max |u| are allowed
+# name: maker, and kappa = degree, or wavenumber times width: max(8, 2 + kappa/2) roundings of max |u| are
+# allowed, because the rounding of x alone costs kappa/2
+WAVES = 200 * np.pi
 FAMILIES = {
-    **{f"insulated-{name}": (insulated(name), 200 if name == "wave-200" else 1) for name in DATA},
+    **{f"insulated-{name}": (insulated(name), WAVES if name == "wave-200" else 1) for name in DATA},
     "hot-side": (lambda upper: fields.rectangle_series((0, 0), upper, 1), 1),
     "four-sides": (four_sides, 1),
     "windy": (windy, 1),
     "polynomial-200": (power, 200),
-    "exp-trig-200": (wave, 200),
+    "exp-trig-200": (wave, WAVES),
     "source": (source, 1),
 }
 

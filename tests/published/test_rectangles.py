@@ -104,6 +104,16 @@ def test_two_to_one_rectangle_with_one_hot_side():
         assert abs(2 * (long_side + short_side) - 1) < mpmath.mpf("1e-28")
 
 
+def test_square_with_all_sides_hot():
+    # The same symmetry with all four sides in one field: u = 1, and the mean of the data in the centre.
+    with mpmath.workdps(40):
+        hot = lv.fields.rectangle_sides((0, 0), (1, 1), left=1, right=1, bottom=1, top=1)
+        assert hot.at(("1/3", "1/7"), digits=30) == 1
+        three = lv.fields.rectangle_sides((0, 0), (1, 1), left=1, right=1, bottom=1)
+        for (x, y), cold in HOT_SIDE_OF_A_SQUARE.items():
+            assert abs(three.at((x, y), digits=30) - (1 - mpmath.mpf(cold))) < mpmath.mpf("1e-24")
+
+
 def test_single_sine_mode_on_the_square():
     # Liu & Belytschko 1984, Int. J. Numer. Meth. Engng 20, 931-948 (problem); 24 digits computed.
     u = lv.fields.exp_trig(1, "sin", "sinh", centre=(0, 1), level=0, times_pi=True)
@@ -138,6 +148,37 @@ def test_semi_infinite_strip_with_a_hot_end():
     with mpmath.workdps(40):
         found = u.at(("1/2", "1/2"), digits=30)
         assert abs(found - mpmath.mpf("0.26096377285431270164")) < mpmath.mpf("1e-20")
+
+
+def test_semi_infinite_strip_by_its_closed_form():
+    # The same problem and source; the formula itself.
+    u = lv.fields.field("2/pi*atan(sin(pi*x)/sinh(pi*y))")
+    with mpmath.workdps(40):
+        found = u.at(("1/2", "1/2"), digits=30)
+        assert abs(found - mpmath.mpf("0.26096377285431270164")) < mpmath.mpf("1e-20")
+
+
+@pytest.mark.parametrize(
+    ("formula", "point", "expected"),
+    [
+        # u = 1 for x < 0 and 0 for x > 0 on y = 0; u = 1 on |x| < 1 only: Poisson's integral, any text on
+        # complex variables, from memory; both values exact
+        ("atan2(y, x)/pi", (1, 1), "0.25"),
+        ("(atan((x + 1)/y) - atan((x - 1)/y))/pi", (0, 1), "0.5"),
+    ],
+)
+def test_half_plane_with_a_step_and_with_a_strip(formula, point, expected):
+    u = lv.fields.field(formula)
+    with mpmath.workdps(40):
+        assert abs(u.at(point, digits=30) - mpmath.mpf(expected)) < mpmath.mpf("1e-30")
+    # the half-plane as the inside of a very large rectangle, by its series: data differ beyond x = +-2000
+    step = lv.fields.rectangle_series(
+        (-2000, 0), (2000, 2000), lv.fields.step(), side="bottom", neighbours="insulated"
+    )
+    strip = lv.fields.piecewise((-2000, -1, 1, 2000), ((0,), (1,), (0,)))
+    hot = lv.fields.rectangle_series((-2000, 0), (2000, 2000), strip, side="bottom")
+    other = step if "atan2" in formula else hot
+    assert other.value([[float(c) for c in point]])[0] == pytest.approx(float(expected), abs=2e-3)  # 1/1000
 
 
 # -- plate with convection on two sides (NAFEMS) -----------------------------------------------------------
