@@ -30,7 +30,7 @@ import numpy.typing as npt
 from laplace_verify.arrays import Array
 from laplace_verify.errors import AnswerError
 
-__all__ = ["OrderFit", "fit_order", "noise_level", "pair_orders"]
+__all__ = ["OrderFit", "fit_order", "line_order", "noise_level", "pair_orders"]
 
 SATURATION = 0.5  # sD: relative size of the next-order terms on the coarsest level
 NESTED_NOISE, USUAL_NOISE, UNRELATED_NOISE = 0.03, 0.05, 0.1
@@ -82,6 +82,21 @@ def pair_orders(h: npt.ArrayLike, errors: npt.ArrayLike) -> list[float | None]:
             math.log(size[k] / size[k + 1]) / math.log(spacing[k] / spacing[k + 1]) if usable else None
         )
     return found
+
+
+def line_order(h: Sequence[float], errors: Sequence[float | None], levels: int = 3) -> float | None:
+    """Return the slope of the least-squares line of ln e over ln h through the last levels that have both.
+
+    None with fewer than two such levels, or where one of the errors is 0.
+
+    >>> round(line_order([1.0, 0.5, 0.25, 0.125], [9.0, 0.4, 0.1, 0.025]), 12)
+    2.0
+    """
+    known = [(x, e) for x, e in zip(h, errors, strict=True) if e is not None and math.isfinite(x)][-levels:]
+    if len(known) < 2 or not all(x > 0 and e > 0 for x, e in known):
+        return None
+    x, y = np.log(np.array(known)).T
+    return float((x - x.mean()) @ y / ((x - x.mean()) @ (x - x.mean())))
 
 
 def fit_order(

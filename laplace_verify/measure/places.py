@@ -1,6 +1,8 @@
-"""Where the error of one level sits: the largest near every piece and corner, and a map of signed errors.
+"""Where the error of one level sits: the largest near every piece, corner and interface, and a map.
 
-"Near" means within two mesh widths; "interior" is what is further from every piece.
+"Near" means within two mesh widths; "interior" is what is further from every piece and interface. The order
+of these errors from level to level tells a mistake in a boundary closure, whose error is largest and falls
+slowest next to its piece, from one in the equation inside.
 """
 
 from __future__ import annotations
@@ -13,7 +15,7 @@ from laplace_verify.arrays import Array
 from laplace_verify.measure.results import ErrorMap
 
 if TYPE_CHECKING:
-    from laplace_verify.geometry import Shape
+    from laplace_verify.problems import Problem
 
 __all__ = ["error_map", "local_errors"]
 
@@ -24,9 +26,14 @@ WIDTHS = 2.0
 
 
 def local_errors(
-    shape: Shape, points: Array, signed: Array, h: float, generator: np.random.Generator
+    problem: Problem, points: Array, signed: Array, h: float, generator: np.random.Generator
 ) -> dict[str, float | None]:
-    """Return place -> max |e| there, None where no point lies, from at most 20000 of the points."""
+    """Return place -> max |e| there, None where no point lies, from at most 20000 of the points.
+
+    Places are the pieces by name (the axis of symmetry among them), in the plane "corner NAME/NAME",
+    "interface NAME/NAME", and "interior".
+    """
+    shape = problem.shape
     chosen = _chosen(len(points), LOCATED, generator)
     points, size = points[chosen], np.abs(signed[chosen])
     found: dict[str, float | None] = {}
@@ -39,6 +46,10 @@ def local_errors(
         for junction in shape.junctions:
             near = _distance(points, junction.points[:1]) <= WIDTHS * h
             found[f"corner {'/'.join(junction.pieces)}"] = _largest(size[near])
+    for interface in problem.interfaces:
+        near = _distance(points, interface.wall.project(points)) <= WIDTHS * h
+        inside &= ~near
+        found[f"interface {interface.name}"] = _largest(size[near])
     found["interior"] = _largest(size[inside])
     return found
 

@@ -6,9 +6,11 @@ verdict can be recomputed from it.
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass, field
 from typing import Literal, TypeAlias
 
+from laplace_verify.measure.orders import line_order
 from laplace_verify.measure.table import Format, convergence_table
 from laplace_verify.measure.verdict import Verdict
 
@@ -121,6 +123,15 @@ class Study:
     def deciding(self) -> list[str]:
         """The norms that decide the verdict."""
         return [norm for norm, order in self.orders.items() if order.decides]
+
+    @property
+    def local_orders(self) -> dict[str, float | None]:
+        """The order of the largest error near every place over the last three judged levels it has.
+
+        From the line through ln e against ln h; None with fewer than two, or where an error is zero.
+        """
+        spacing = [level.h if level.judged else math.nan for level in self.levels]
+        return {place: line_order(spacing, errors) for place, errors in self.local.items()}
 
     def table(self, fmt: Format = "text", norms: list[str] | None = None) -> str:
         """Return errors and orders by level as "text", "markdown" or "latex".

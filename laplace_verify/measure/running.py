@@ -93,7 +93,7 @@ class Runner:
             level=level,
             signed=found.signed,
             computed=frozenset(found.computed),
-            local=local_errors(shape, measured.points, measured.signed, h, generator),
+            local=local_errors(seen, measured.points, measured.signed, h, generator),
             error_map=error_map(size, measured.points, measured.signed, generator),
             remarks=answer.remarks(self.case.problem) + self._unknown(answer) + self._near(measured, size),
         )

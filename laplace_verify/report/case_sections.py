@@ -53,6 +53,7 @@ def case_section(record: Record, study: Study) -> Section:
     if study.levels:
         blocks += [_grid_table(study), _error_table(study)]
         blocks += _left_out(study)
+        blocks += _place_table(study)
         blocks.append(_pictures(study, info))
     title = info.title if info and info.title else study.case_title or study.case_id
     return Section(
@@ -226,6 +227,28 @@ def _error_row(study: Study, place: int, level: Level, norms: list[str]) -> tupl
         texts = number(level.errors.get(norm)), "" if pair is None or noise else order(pair)
         cells += [Cell(text=text) for text in texts]
     return tuple(cells)
+
+
+def _place_table(study: Study) -> list[Block]:
+    """Return the largest error near every piece, corner and interface, and its order, largest first."""
+    finest = {place: errors[-1] for place, errors in study.local.items() if errors and errors[-1] is not None}
+    if not finest or all(is_exact(found) for found in study.orders.values() if found.decides):
+        return []
+    orders = study.local_orders
+    columns = (
+        Column(title="Place"),
+        Column(title="Largest error", align="right"),
+        Column(title="Order there", align="right"),
+    )
+    rows = tuple(
+        (Cell(text=place), Cell(text=number(error)), Cell(text=order(orders[place])))
+        for place, error in sorted(finest.items(), key=lambda entry: -(entry[1] or 0.0))
+    )
+    caption = (
+        "Where the error sits: largest within 2h of each piece, corner and interface on the finest level, "
+        "and its order over the last three levels"
+    )
+    return [Table(caption=caption, columns=columns, rows=rows)]
 
 
 def _size_and_h(level: Level) -> tuple[Cell, Cell]:
