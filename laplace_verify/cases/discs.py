@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import math
+
 from laplace_verify import fields
 from laplace_verify.cases.definition import HERE, Definition, Family
 from laplace_verify.geometry import Disc, Ellipse
@@ -119,4 +121,36 @@ def _ellipse_tensor() -> Definition:
         field=fields.stretched(fields.polynomial(3), SKEW),
         conductivity=SKEW,
         quantities={"flux through the rim": flux_through("rim", exact=0)},
+    )
+
+
+@family
+def _ellipse_convection() -> Definition:
+    return Definition(
+        title="Ellipse cooled by convection",
+        solution="cos(3/2 x) e^(3/2 y)",
+        note="The film is thinner on the upper side: alpha = 2 + y.",
+        reading="An oval pressure vessel in a cross wind.",
+        shape=Ellipse((0.2, 0.1), (1.0, 0.6)),
+        field=fields.exp_trig("3/2", "cos"),
+        conditions={"rim": robin("2 + y")},
+        conductivity=1.6,
+        quantities={"flux through the rim": flux_through("rim", exact=0)},
+    )
+
+
+@family
+def _ellipse_between_wells() -> Definition:
+    return Definition(
+        title="Ellipse between two sources of unequal strength",
+        solution="log |x - p| + 1/2 log |x - q|, p = (6/5, 0), q = (0, -3/4)",
+        note="Both sources are 0.3 outside: beyond the tip and below the lower side.",
+        reading="An oval pond between two wells.",
+        shape=Ellipse((0.0, 0.0), (0.9, 0.45)).split(rim=[0.5]),
+        field=fields.log_source(("6/5", 0)) + fields.log_source((0, "-3/4"), "1/2"),
+        conditions={"rim-1": robin(0.7)},
+        conductivity=0.5,
+        quantities={"value at the centre": value_at((0.0, 0.0), exact=math.log(1.2) + math.log(0.75) / 2)},
+        sources=(HERE,),
+        reference_points=(("0", "0"), ("0.85", "0"), ("0", "-0.4")),
     )

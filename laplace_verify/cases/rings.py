@@ -92,3 +92,58 @@ def _annulus_past_pile() -> Definition:
         quantities={"value at the front of the pile": value_at((-0.4, 0.0), exact="-4/5")},
         sources=(LAMB,),
     )
+
+
+@family
+def _annulus_two_temperatures_outside() -> Definition:
+    return Definition(
+        title="Annulus, its outer circle at two temperatures",
+        solution="(angle under which the hot arc is seen)/pi - 1/4 + 1/2 log(r/1.2)",
+        note="u = 1 on the arc from 0 to 90 degrees, u = 0 on the rest of it: the data jump twice.",
+        reading="A round shaft with a film inside, warm water along a quarter of its lining.",
+        shape=Annulus((0.0, 0.0), 0.45, 1.2).split(outer=[0.25]),
+        field=fields.poisson_disc((0, 0), "6/5", fields.arcs((0, "1/4"), (1, 0)))
+        + fields.elliptic_multipole(0, semi_axes=("6/5", "6/5")) * "1/2",
+        conditions={"inner": robin(1.6)},
+        conductivity=1.3,
+        quantities={"flux through the inner circle": flux_through("inner", exact=-1.3 * math.pi)},
+        sources=("Poisson's integral: Churchill & Brown, Complex Variables and Applications", HERE),
+        reference_points=(("0.5", "0"), ("0.8", "0.8"), ("-1.1", "0.1")),
+    )
+
+
+@family
+def _annulus_film_on_both_sides() -> Definition:
+    return Definition(
+        title="Annulus between two films",
+        solution="2 + log r + x/r^2 + (x^2 - y^2)/2 about (1/10, 1/5)",
+        reading="A pipe wall between hot water and moving air.",
+        shape=Annulus((0.1, 0.2), 0.5, 1.1),
+        field=fields.affine((0, 0), 2)
+        + fields.log_source(MIDDLE)
+        + fields.dipole(MIDDLE, (1, 0))
+        + fields.polynomial(2, centre=MIDDLE) * "1/2",
+        conditions={"inner": robin(2.5), "outer": robin("3/2 + x")},
+        conductivity=0.9,
+        quantities={"flux through the outer circle": flux_through("outer", exact=1.8 * math.pi)},
+        sources=(PIPE, HERE),
+    )
+
+
+@family
+def _eccentric_circles_two_temperatures() -> Definition:
+    return Definition(
+        title="Eccentric circles at two temperatures",
+        solution="3/2 log(|x - p|/|x - q|), p = (1/2, 0), q = (2, 0)",
+        note="Both circles are level lines: |x - p|/|x - q| is 1/4 on the inner and 1/2 on the outer one.",
+        reading="A cable off the axis of its duct, both at a temperature of their own.",
+        shape=Annulus((0.0, 0.0), 0.4, 1.0, (0.4, 0.0)),
+        field=(fields.log_source(("1/2", 0)) - fields.log_source((2, 0))) * "3/2",
+        conductivity=0.8,
+        quantities={
+            "flux through the inner circle": flux_through("inner", exact=-2.4 * math.pi),
+            "energy": energy_of_solution(exact=3.6 * math.pi * math.log(2)),
+        },
+        sources=("eccentric cylinders: Smythe 1968, Static and Dynamic Electricity, 3rd ed., section 4.13",),
+        reference_points=(("0.9", "0"), ("0", "0.5"), ("-0.9", "0.1")),
+    )

@@ -73,3 +73,34 @@ def _sector_slit_mixed() -> Definition:
         quantities={"value at the sensor": value_at((-0.5, 0.0))},
         sources=(CORNER,),
     )
+
+
+@family
+def _sector_hot_arc() -> Definition:
+    return Definition(
+        title="Quarter disc with a hot arc between cold sides",
+        solution="the sum of (-1)^k (angle under which the k-th quarter of the circle is seen)/pi",
+        note="u = 1 on the arc, u = 0 on the sides; continued oddly across the sides u fills the disc.",
+        reading="A quarter-round duct between two cold walls.",
+        shape=Sector(1.2, math.pi / 2),
+        field=fields.poisson_disc((0, 0), "6/5", fields.arcs((0, "1/4", "1/2", "3/4"), (1, -1, 1, -1))),
+        conductivity=0.7,
+        quantities={"value at the sensor": value_at((0.5, 0.5))},
+        sources=("Poisson's integral: Churchill & Brown, Complex Variables and Applications", HERE),
+        reference_points=(("0.5", "0.5"), ("0.01", "0.01"), ("0.84", "0.84")),
+    )
+
+
+@family
+def _sector_source_behind_apex() -> Definition:
+    return Definition(
+        title="Narrow sector with a source behind its apex",
+        solution="log |x - p|, p = (-3/10, -1/5)",
+        reading="A tapering bank beside a well.",
+        shape=Sector(1.1, math.pi / 5),
+        field=fields.log_source(("-3/10", "-1/5")),
+        conditions={"start": robin(1.4), "end": "neumann"},
+        conductivity=1.2,
+        quantities={"flux through the arc": flux_through("arc")},
+        sources=(HERE,),
+    )

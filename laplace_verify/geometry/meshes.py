@@ -2,9 +2,9 @@
 
 Rectangles and L-shapes get right triangles on a grid, polygons the uniform refinement of a constrained
 Delaunay triangulation of their corners, discs, ellipses, sectors and parabolas fans of about equilateral
-triangles mapped onto them, annuli a polar grid. Meshes of one shape with n and 2 n cells are nested up to the
-curvature of the boundary, so h is proportional to 1/n. The ends of boundary pieces, those made by ``split``
-included, are nodes.
+triangles mapped onto them, annuli and elliptic rings a polar grid. Meshes of one shape with n and 2 n cells
+are nested up to the curvature of the boundary, so h is proportional to 1/n. The ends of boundary pieces,
+those made by ``split`` included, are nodes.
 """
 
 from __future__ import annotations
@@ -25,6 +25,7 @@ from laplace_verify.geometry.boundary import Boundary
 from laplace_verify.geometry.halves import HalfAnnulus, HalfDisc
 from laplace_verify.geometry.parabolas import ConfocalParabolas
 from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
+from laplace_verify.geometry.spheroids import EllipticRing
 from laplace_verify.geometry.splitting import split_piece
 
 __all__ = ["Mesh", "subdivide", "triangulate"]
@@ -65,7 +66,7 @@ class Mesh:
 def triangulate(shape: Shape, n: int) -> Mesh:
     """Return a triangulation of a planar shape with n cells along every side.
 
-    Arcs are cut into n cells per 60 degrees (annuli: 6 n to 12 n cells around). A side that ``split`` cuts
+    Arcs are cut into n cells per 60 degrees (rings: 6 n to 12 n cells around). A side that ``split`` cuts
     keeps its n cells on rectangles; on polygons each part of it gets n.
 
     Raises
@@ -137,7 +138,7 @@ def _finished(points: Array, triangles: IntArray, boundary: dict[str, IntArray])
     return Mesh(points=frozen(points), triangles=triangles, boundary=boundary)
 
 
-# ---- fans and polar grids: disc, ellipse, sector, annulus, halves --------------------------------
+# ---- fans and polar grids: disc, ellipse, sector, rings, halves ----------------------------------
 
 
 def _from_disc(shape: Shape, n: int) -> Mesh:
@@ -180,18 +181,22 @@ def _from_sector(shape: Shape, n: int) -> Mesh:
     return _finished(points, fan.triangles, {piece.name: boundary[piece.name] for piece in shape.pieces})
 
 
-def _from_annulus(shape: Shape, n: int) -> Mesh:
-    """Map a grid of n cells across and 6 n to 12 n around between two circles and cut it by diagonals."""
-    if not isinstance(shape, Annulus):
-        raise GeometryError(f"an annulus is needed here, got {shape!r}")
-    centre = np.array(shape.centre)
-    hole = centre if shape.inner_centre is None else np.array(shape.inner_centre)
-    around = n * min(12, max(6, round(math.pi * (shape.inner + shape.outer) / (shape.outer - shape.inner))))
-    on_inner = np.concatenate([piece.ends for piece in shape.pieces if piece.name.startswith("inner")])
-    on_outer = np.concatenate([piece.ends for piece in shape.pieces if piece.name.startswith("outer")])
-    breaks = np.concatenate([_turns(on_inner, hole, np.ones(2)), _turns(on_outer, centre, np.ones(2))])
-    angle = 2.0 * math.pi * stretched(np.arange(around) / around, breaks, around)
-    inside, outside = hole + shape.inner * unit(angle), centre + shape.outer * unit(angle)
+def _from_ring(shape: Shape, n: int) -> Mesh:
+    """Map a grid of n cells across and 6 n to 12 n around between circles or ellipses, cut by diagonals."""
+    if isinstance(shape, Annulus):
+        hole, centre = np.array(shape.hole_centre), np.array(shape.centre)
+        least, most = np.full(2, shape.inner), np.full(2, shape.outer)
+    elif isinstance(shape, EllipticRing) and min(shape.inner) > 0.0:
+        hole = centre = np.array(shape.centre)
+        least, most = np.array(shape.inner), np.array(shape.outer)
+    else:
+        raise GeometryError(f"cannot triangulate {shape!r}: the inner semi-axes must be > 0")
+    around = n * min(12, max(6, round(math.pi * (least + most).sum() / (most - least).sum())))
+    inner, outer = ([p for p in shape.pieces if p.name.startswith(name)] for name in ("inner", "outer"))
+    rims = ((inner, hole, least), (outer, centre, most))
+    breaks = [_turns(piece.ends, middle, axes) for pieces, middle, axes in rims for piece in pieces]
+    angle = 2.0 * math.pi * stretched(np.arange(around) / around, np.concatenate(breaks), around)
+    inside, outside = hole + least * unit(angle), centre + most * unit(angle)
     depth = (np.arange(n + 1) / n)[:, np.newaxis, np.newaxis]
     points = ((1.0 - depth) * inside + depth * outside).reshape(-1, 2)
     ring, step = (index.ravel() for index in np.meshgrid(np.arange(n), np.arange(around), indexing="ij"))
@@ -200,10 +205,8 @@ def _from_annulus(shape: Shape, n: int) -> Mesh:
     triangles = np.concatenate([np.stack([a, d, c], axis=1), np.stack([a, c, b], axis=1)])
     half = angle + 0.5 * (np.roll(angle, -1) - angle) % math.pi
     loop = np.stack([np.arange(around), (np.arange(around) + 1) % around], axis=1)
-    inner = [piece for piece in shape.pieces if piece.name.startswith("inner")]
-    outer = [piece for piece in shape.pieces if piece.name.startswith("outer")]
-    boundary = _by_piece(inner, loop[:, ::-1], hole + shape.inner * unit(half))
-    boundary |= _by_piece(outer, loop + n * around, centre + shape.outer * unit(half))
+    boundary = _by_piece(inner, loop[:, ::-1], hole + least * unit(half))
+    boundary |= _by_piece(outer, loop + n * around, centre + most * unit(half))
     return _finished(points, triangles, {piece.name: boundary[piece.name] for piece in shape.pieces})
 
 
@@ -373,7 +376,8 @@ _BUILDERS: dict[str, Callable[[Shape, int], Mesh]] = {
     "polygon": _from_polygon,
     "ellipse": _from_disc,
     "sector": _from_sector,
-    "annulus": _from_annulus,
+    "annulus": _from_ring,
+    "elliptic-ring": _from_ring,
     "half-disc": _from_half_disc,
     "half-annulus": _from_half_annulus,
     "confocal-parabolas": _from_parabolas,

@@ -15,7 +15,7 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import Any, ClassVar
+from typing import Any, ClassVar, Self
 
 import numpy as np
 
@@ -24,7 +24,7 @@ from laplace_verify.errors import GeometryError
 from laplace_verify.geometry.arcs import TURN, Arc
 from laplace_verify.geometry.base import Shape
 from laplace_verify.geometry.boundary import Boundary, Surface
-from laplace_verify.geometry.checks import coordinates
+from laplace_verify.geometry.checks import coordinates, positive
 from laplace_verify.geometry.patches import Chart, boxes
 from laplace_verify.geometry.surfaces import QUARTERS, around, spherical
 from laplace_verify.geometry.thin import two_faces, two_sides
@@ -221,6 +221,29 @@ class EllipticRing(Shape):
         object.__setattr__(self, "outer", coordinates(self.outer, 2, "outer"))
         _nested(self.inner, self.outer)
         self._check()
+
+    @classmethod
+    def confocal(cls, centre: Sequence[float], inner: Sequence[float], longest: float) -> Self:
+        """Return the ring out to the ellipse with the same foci whose longer semi-axis is `longest`.
+
+        With the foci at distance c from the centre, the shorter semi-axis is sqrt(longest^2 - c^2); two
+        circles have their foci in the centre.
+
+        >>> EllipticRing.confocal((0, 0), (1.0, 0.0), 1.25)
+        EllipticRing((0.0, 0.0), (1.0, 0.0), (1.25, 0.75))
+
+        Raises
+        ------
+        GeometryError
+            If the outer ellipse does not enclose the inner one by a thousandth of its size.
+        """
+        a, b = coordinates(inner, 2, "inner")
+        long, short = max(a, b), min(a, b)
+        longest = positive(longest, "longest")
+        if not longest > long:
+            raise GeometryError(f"longest must be > {long!r}, the longer inner semi-axis, got {longest!r}")
+        shortest = math.sqrt((longest - long) * (longest + long) + short**2)
+        return cls(centre, inner, (longest, shortest) if a >= b else (shortest, longest))
 
     @property
     def measure(self) -> float:

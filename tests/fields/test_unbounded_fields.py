@@ -210,6 +210,25 @@ def test_multipoles_on_the_ellipse_are_cosines(axes):
     assert np.abs(log.value(points, side)).max() <= 1e-14
 
 
+@pytest.mark.parametrize("n", [1, 2, 5])
+@pytest.mark.parametrize(("mu", "nu"), [("0.4", "0.3"), ("0.9", "2.5"), ("1.7", "-1.1")])
+def test_between_confocal_ellipses_pairs_are_waves_of_elliptic_coordinates(n, mu, nu):
+    """x + i y = c cosh(mu + i nu): cosh(n mu) cos(n nu), sinh(n mu) sin(n nu), and mu itself."""
+    with mpmath.workdps(40):
+        a, b, mu, nu = mpmath.mpf(5), mpmath.mpf(3), mpmath.mpf(mu), mpmath.mpf(nu)
+        start = mpmath.atanh(b / a)  # mu on the ellipse
+        z = 4 * mpmath.cosh(start + mu + 1j * nu)
+        waves = {"re": mpmath.cosh, "im": mpmath.sinh}
+        for part, trig in (("re", mpmath.cos), ("im", mpmath.sin)):
+            up, down = (fields.elliptic_multipole(k, part, semi_axes=(5, 3)) for k in (-n, n))
+            both = [f.at((z.real, z.imag), 35) for f in (up, down)]
+            grown = mpmath.exp(n * start) * both[0] + mpmath.exp(-n * start) * both[1]
+            assert abs(grown / 2 - waves[part](n * (start + mu)) * trig(n * nu)) <= mpmath.mpf("1e-30")
+        log = fields.elliptic_multipole(0, semi_axes=(5, 3)).at((z.real, z.imag), 35)
+        assert abs(log - mu) <= mpmath.mpf("1e-33")
+        assert abs(log - start) > 1e-3  # the twin
+
+
 @pytest.mark.parametrize("axes", AXES.values(), ids=AXES.keys())
 def test_no_flow_passes_the_ellipse(axes):
     t = np.linspace(0.1, 6.2, 13)

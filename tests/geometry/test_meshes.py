@@ -14,6 +14,7 @@ from laplace_verify.geometry import (
     ConfocalParabolas,
     Disc,
     Ellipse,
+    EllipticRing,
     LShape,
     Polygon,
     Rectangle,
@@ -40,6 +41,8 @@ CURVED = [
     pytest.param(Ellipse((0, 0), (2, 1)).split(rim=[0.1, 0.35]), id="ellipse split"),
     pytest.param(Annulus((0, 0), 0.5, 1.0).split(inner=[0.3], outer=[0.2, 0.9]), id="annulus split"),
     pytest.param(Annulus((0, 0), 0.4, 1.0, (0.2, 0.0)), id="eccentric annulus"),
+    pytest.param(EllipticRing((0, 1), (1.0, 0.8), (1.56, 1.44)), id="elliptic ring"),
+    pytest.param(EllipticRing((0, 1), (0.5, 1), (1.5, 2)).split(inner=[0.3], outer=[0.2]), id="ring split"),
     pytest.param(Sector(1.0, math.pi / 2), id="quarter disc"),
     pytest.param(Sector(1.0, 1.5 * math.pi).split(arc=[0.3], start=[0.6]), id="sector split"),
     pytest.param(Sector(2.0, 2 * math.pi), id="slit disc"),
@@ -173,3 +176,8 @@ def test_a_solid_cannot_be_triangulated():
 def test_too_few_cells_for_the_split_pieces_are_refused():
     with pytest.raises(GeometryError, match="n is too small"):
         triangulate(Sector(1.0, 0.5).split(arc=[0.3, 0.6]), 1)
+
+
+def test_a_ring_around_a_screen_is_refused():
+    with pytest.raises(GeometryError, match="the inner semi-axes must be > 0"):
+        triangulate(EllipticRing((0, 0), (1, 0), (2, 1)), 4)

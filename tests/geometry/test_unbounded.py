@@ -180,6 +180,8 @@ def test_kinds():
         (lambda: lv.Spheroid((0, 0, 0), (1, 1e-4)), "differ by less than a factor"),
         (lambda: lv.EllipticRing((0, 0), (1, 2), (2, 2)), "every outer semi-axis must exceed"),
         (lambda: lv.EllipticRing((0, 0), (0, 0), (2, 2)), "not all zero"),
+        (lambda: lv.EllipticRing.confocal((0, 0), (1, 2), 2), "longest must be > 2.0"),
+        (lambda: lv.EllipticRing.confocal((0, 0), (1, 2), -3), "longest must be > 0"),
         (lambda: lv.SpheroidalShell((0, 0, 0), (0, 1), (2, 2)), "inner equatorial semi-axis"),
         (lambda: lv.PairShell((0, 0, 0), 1, 1, 2.25), "outer must exceed 2 radius"),
         (lambda: lv.HalfSpace(2).pieces["bottom"].sample(5), "is unbounded; take the part of it in a window"),
@@ -196,6 +198,24 @@ def test_kinds():
 def test_what_cannot_be_is_refused(make, message):
     with pytest.raises(lv.GeometryError, match=message):
         make()
+
+
+@pytest.mark.parametrize("inner", [(1.3, 0.5), (0.5, 1.3), (0.7, 0.7), (1.0, 0.0)])
+def test_confocal_ellipses_share_their_foci(inner):
+    """The sum of the distances from the foci is the same, twice the longer semi-axis, all along the outer."""
+    ring = lv.EllipticRing.confocal((0, 1), inner, 2.5)
+    assert ring.inner == inner
+    c = np.sqrt(abs(inner[0] ** 2 - inner[1] ** 2))
+    along = np.array([c, 0.0]) if inner[0] >= inner[1] else np.array([0.0, c])
+
+    def sums(shape):
+        points = shape.pieces["outer"].sample(20)[0] - np.array([0.0, 1.0])
+        return np.hypot(*(points - along).T) + np.hypot(*(points + along).T)
+
+    assert np.abs(sums(ring) - 5.0).max() <= 1e-14
+    if c > 0:  # the twin: another ellipse of the same length
+        wide = (2.5, 2.4) if inner[0] >= inner[1] else (2.4, 2.5)
+        assert np.abs(sums(lv.EllipticRing((0, 1), inner, wide)) - 5.0).max() > 0.01
 
 
 def test_check_of_the_volume_can_fail():

@@ -49,6 +49,7 @@ GAUSS = ((0.5 - 3**-0.5 / 2, 0.5), (0.5 + 3**-0.5 / 2, 0.5))  # place along the 
         "disc",
         "ellipse",
         "annulus",
+        "elliptic-ring",
         "sector",
         "half-disc",
         "half-annulus",
