@@ -7,15 +7,20 @@ permeability. Quantities are those of the whole infinite layer where they have a
 
 from __future__ import annotations
 
+from fractions import Fraction
+
+import mpmath
+
 from laplace_verify import fields
 from laplace_verify.cases.definition import Definition, Family
-from laplace_verify.fields.seepage import form_factor
+from laplace_verify.fields.seepage import DamSeepage, form_factor
 from laplace_verify.geometry import Polygon, Rectangle
 from laplace_verify.problems import discharge_across, exit_gradient_at, flux_through, uplift_on, value_at
 
 __all__ = ["family"]
 
 family = Family()
+DIGITS = 60  # of closed forms, of which files keep 50
 HARR = "elliptic map of the layer: Harr 1962, Groundwater and Seepage, ch. 5 (from memory)"
 RUSSIAN = "Polubarinova-Kochina 1962, Theory of Ground Water Movement, ch. III (from memory)"
 CAUTION = (
@@ -41,6 +46,18 @@ WEIR = Polygon(
 )  # fmt: skip
 
 
+def _times(factor: str, head: DamSeepage) -> str:
+    """Return a discharge, the form factor times conductivity and head drop, in decimals."""
+    with mpmath.workdps(DIGITS + 10):
+        return str(mpmath.nstr(form_factor(head, DIGITS) * mpmath.mpmathify(Fraction(factor)), DIGITS))
+
+
+def _beside_pile(head: DamSeepage) -> str:
+    """Return the exit gradient at the downstream face of the pile, in decimals."""
+    with mpmath.workdps(DIGITS + 10):
+        return str(mpmath.nstr(-head.gradient_at((0, 0), DIGITS, side=-1)[1], DIGITS))
+
+
 @family
 def _dam_on_permeable_layer() -> Definition:
     head = fields.dam_seepage(2, 1)
@@ -57,7 +74,7 @@ def _dam_on_permeable_layer() -> Definition:
         conditions={"bottom": "neumann", "top-2": "neumann"},
         conductivity=0.4,
         quantities={
-            "discharge": discharge_across((0.0, -1.0), (0.0, 0.0), exact=0.4 * float(form_factor(head))),
+            "discharge": discharge_across((0.0, -1.0), (0.0, 0.0), exact=_times("2/5", head)),
             "uplift": uplift_on("top-2", exact=1),
             "pressure head under the upstream quarter of the base": value_at((-0.5, 0.0)),
             "exit gradient half a depth from the toe": exit_gradient_at("top-3", (1.5, 0.0)),
@@ -70,7 +87,7 @@ def _dam_on_permeable_layer() -> Definition:
 
 @family
 def _half_of_a_dam() -> Definition:
-    head = fields.dam_seepage("8/5", "4/5") * 3 + fields.affine((0, 0), "1/2")
+    unit = fields.dam_seepage("8/5", "4/5")
     return Definition(
         title="Downstream half of a dam, split at its line of symmetry",
         solution="1/2 + 3 Re V/(2 K(m)), sn(V, m)^2 = 1 - sinh^2 S/sinh^2 B, m = tanh B, S = pi z/(2 T), B = "
@@ -78,13 +95,11 @@ def _half_of_a_dam() -> Definition:
         note="On x = 0 half of the head is lost; all of the discharge passes it. " + CAUTION,
         reading="A barrage across the inlet, computed on its downstream half with the tailwater at 1/2.",
         shape=Rectangle((0.0, -0.8), (2.0, 0.0)).split(top=[0.4]).renamed(right="downstream"),
-        field=head,
+        field=unit * 3 + fields.affine((0, 0), "1/2"),
         conditions={"bottom": "neumann", "top-1": "neumann"},
         conductivity=1.5,
         quantities={
-            "inflow under the middle": flux_through(
-                "left", exact=4.5 * float(form_factor(fields.dam_seepage("8/5", "4/5")))
-            ),
+            "inflow under the middle": flux_through("left", exact=_times("9/2", unit)),
             "uplift on this half": uplift_on("top-1"),
             "exit gradient at the cut": exit_gradient_at("top-2", (2.0, 0.0)),
         },
@@ -111,8 +126,10 @@ def _sheet_pile_in_layer() -> Definition:
         conditions={"bottom": "neumann", "front": "neumann", "back": "neumann"},
         conductivity=0.7,
         quantities={
-            "discharge": discharge_across((0.0, -1.0), (0.0, -0.5), exact=0.35),
-            "exit gradient beside the pile": exit_gradient_at("bed-downstream", (0.0, 0.0)),
+            "discharge": discharge_across((0.0, -1.0), (0.0, -0.5), exact="7/20"),
+            "exit gradient beside the pile": exit_gradient_at(
+                "bed-downstream", (0.0, 0.0), exact=_beside_pile(head)
+            ),
             "head at the tip": value_at((0.0, -0.5), exact="1/2"),
         },
         tags=("seepage",),
@@ -135,7 +152,7 @@ def _dam_with_sheet_pile() -> Definition:
         conditions=dict.fromkeys(("bottom", "base-front", "front", "back", "base-back"), "neumann"),
         conductivity=0.5,
         quantities={
-            "discharge": discharge_across((0.0, -1.5), (0.0, -0.6), exact=0.5 * float(form_factor(head))),
+            "discharge": discharge_across((0.0, -1.5), (0.0, -0.6), exact=_times("1/2", head)),
             "uplift upstream of the pile": uplift_on("base-back"),
             "uplift downstream of the pile": uplift_on("base-front"),
             "pressure head under the middle of the downstream base": value_at((0.5, 0.0)),

@@ -47,7 +47,7 @@ def _free_surface_head_is_elevation() -> Definition:
             "discharge": discharge_across((-0.85, 0.0), (-0.85, 1.32), exact="72/125"),
             "inflow": flux_through("upstream", exact="72/125"),
             "seepage through the free surface": flux_through("free-surface", exact=0),
-            "uplift on the ground": uplift_on("ground", exact=1.0648),
+            "uplift on the ground": uplift_on("ground", exact="1.0648"),
         },
         reference_points=(("-0.5", "0.5"), ("0.000001", "0"), ("-0.85", "1.32")),
     )

@@ -71,6 +71,10 @@ TABLE = {
     "point-source": space(fields.point_source((0, 0, -0.25), -1)),
     "dipole-2d": plane(fields.dipole((0.1, 0), (1, 2))),
     "dipole-3d": space(fields.dipole((0, "0.1", 0), (1, 2, -1))),
+    "dam": plane(fields.dam_seepage(2, "3/2"), lower=(-2, -1.4), upper=(2, -0.1), near=False),
+    "dam-with-pile": plane(
+        fields.dam_seepage(1, 2, "0.7") * 3, ulps=16, lower=(-2, -1.9), upper=(2, -0.1), near=False
+    ),
     "wedge-2-3-sin": plane(fields.wedge("2/3"), lower=(-1, 0.01), upper=(1, 1)),
     "wedge-1-2-cos": plane(fields.wedge(0.5, "cos", apex=(0.4, 0)), lower=(-1, 0.01), upper=(1, 1)),
     "wedge-far-turn": plane(fields.wedge("2/3", "sin", cut=math.pi), lower=(-1, -1), upper=(1, -0.01)),
@@ -254,6 +258,7 @@ CONJUGATES = [
     "affine-2d", "polynomial-2-re", "polynomial-7-im", "exp-cos", "exp-sin-decay", "cosh-cos-pi", "dipole-2d",
     "sinh-sin-pi", "sinh-below", "wedge-2-3-sin", "wedge-1-2-cos", "wedge-far-turn", "wedge-pole", "shifted",
     "rotated", "rotated-quarter", "scaled", "inverted-2d", "inverted-wedge", "nested",
+    "dam", "dam-with-pile",
 ]  # fmt: skip
 
 

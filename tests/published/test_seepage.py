@@ -129,3 +129,14 @@ def test_a_longer_pile_is_not_mistaken():
     assert not math.isclose(right, wrong, rel_tol=2e-3)
     with pytest.raises(AssertionError):
         test_discharge_past_a_sheet_pile("0.52", PILES["0.5"])
+
+
+def test_fifty_digits_of_the_pile_by_ball_arithmetic():
+    """Exit gradient pi/(4 K(m) m) and k h/2 for s = T/2, m = sin(pi/4), k = 0.7 (Harr 1962, from memory)."""
+    quantities = lv.catalogue["sheet-pile-in-layer"].quantities
+    with flint.ctx.workprec(400):
+        k = flint.acb.elliptic_k(flint.acb(1) / 2).real
+        exact = flint.arb.pi() / (4 * k * (flint.arb(1) / 2).sqrt())
+        stored = quantities["exit gradient beside the pile"].digits
+        assert abs(flint.arb(stored.value) - exact) < flint.arb(stored.radius) < 1e-49
+    assert quantities["discharge"].digits.value == "0.35"
