@@ -42,6 +42,21 @@ def _tall_plate_parabola() -> Definition:
 
 
 @family
+def _tall_plate_step() -> Definition:
+    return Definition(
+        title="Plate seven times as high as wide, a step on top",
+        solution="Fourier cosine series for u = -1 on top up to x = 0.12 and 1 beyond, a = 0.3",
+        note="The data jump inside the top, where it is cut in two pieces.",
+        reading="Voltage in a tall resistive strip fed through two contacts of opposite sign.",
+        shape=_shape(TALL).split(top=[0.4]),
+        field=fields.rectangle_series((0, 0), TALL, fields.step("2/5", -1, 1), neighbours="insulated"),
+        conditions=INSULATED,
+        quantities={"flux through the bottom": flux_through("bottom", exact="-1/35")},
+        sources=(SERIES, HERE),
+    )
+
+
+@family
 def _square_plate_exponential() -> Definition:
     return Definition(
         title="Square plate between insulated sides, an exponential on top",
@@ -103,4 +118,22 @@ def _long_plate_tent() -> Definition:
         conductivity=0.9,
         quantities={"flux through the bottom": flux_through("bottom", exact="-81/10")},
         sources=(SERIES, HERE),
+    )
+
+
+@family
+def _long_plate_ramp() -> Definition:
+    return Definition(
+        title="Plate twelve times as long as high, a ramp on top",
+        solution="y/(2 b) - 8/pi^2 sum over odd n of cos(n pi x/a) sinh(n pi y/a) / (n^2 sinh(n pi b/a)), "
+        "a = 4.8, b = 0.4",
+        note="On top u = 2 x/a - 1/2; away from the ends u = (2 x/a - 1/2) y/b, in the upper corners u "
+        "behaves like r log r.",
+        reading="Heat through a long lintel, frost on one end and sunshine on the other.",
+        shape=_shape(LONG),
+        field=fields.rectangle_series((0, 0), LONG, fields.ramp("-1/2", "3/2"), neighbours="insulated"),
+        conditions=INSULATED,
+        conductivity=2.0,
+        quantities={"flux through the bottom": flux_through("bottom", exact="-12")},
+        sources=(SERIES,),
     )

@@ -31,6 +31,7 @@ INVISIBLE = {
     "plate-layers-across": "u_nn = 0 in every layer",
     "plate-layers-along": "u_nn = 0 in every layer; what is left comes from the nodes on the joints",
     "plate-insulated-step": "the jump costs as much: order 1 in L2 is all a sound scheme has",
+    "tall-plate-step": "the jump costs as much: order 1 in L1 and L2 is all a sound scheme has",
     "l-shape-mixed-corner": "the corner costs more: orders 1/3 and 2/3",
     "plate-condition-change-smooth-data": "the change of condition costs as much: orders 1/2 and 1",
     "plate-hot-end-condition-change": "the change of condition costs as much: orders 1/2 and 1",
