@@ -15,7 +15,7 @@ if TYPE_CHECKING:
     from laplace_verify.problems import Case
     from laplace_verify.solvers import Adapter
 
-__all__ = ["LEVEL", "expectations", "for_computed", "norms_of"]
+__all__ = ["LEVEL", "expectations", "for_computed", "norms_of", "smoothness_of"]
 
 LEVEL = "quantity:level"
 IN_SPACE = (

@@ -40,7 +40,8 @@ class Level:
     U an L2 error is in U L^(d/2), an H1-semi error in U L^(d/2 - 1); relative errors have no unit. A norm
     that could not be measured is absent. `moves` maps a piece to the largest distance by which data points
     were moved onto it, `left_out` is the share of the sample points outside the solver's mesh, `coverage` is
-    there where the answer states standard errors, `residual` is the final residual the solver reports.
+    there where the answer states standard errors, `residual` is the final residual the solver reports,
+    `interpolation` the L2 error of interpolating the exact solution on the same mesh.
     """
 
     size: int
@@ -55,6 +56,7 @@ class Level:
     left_out: float = 0.0
     coverage: Coverage | None = None
     residual: float | None = None
+    interpolation: float | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

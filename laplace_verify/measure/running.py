@@ -9,6 +9,7 @@ from itertools import pairwise
 from typing import TYPE_CHECKING
 
 from laplace_verify.errors import AnswerError, nearest_names
+from laplace_verify.measure.accuracy import interpolation_error
 from laplace_verify.measure.coverage import coverage_of
 from laplace_verify.measure.criteria import LEVEL
 from laplace_verify.measure.exact import Exact
@@ -87,7 +88,7 @@ class Runner:
             errors=measured.errors | found.errors, relative=measured.relative | found.relative,
             judged=judged, note=note, moves=dict(log.largest), left_out=measured.left_out,
             coverage=coverage_of(answer, self.exact, measured),
-            residual=answer.residual,
+            residual=answer.residual, interpolation=interpolation_error(answer, self.exact),
         )  # fmt: skip
         return LevelResult(
             level=level,

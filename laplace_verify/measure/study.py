@@ -11,8 +11,9 @@ from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
 from laplace_verify.errors import AdapterError, history
+from laplace_verify.measure.accuracy import accuracy_remarks
 from laplace_verify.measure.coverage import judge_coverage
-from laplace_verify.measure.criteria import expectations, for_computed
+from laplace_verify.measure.criteria import expectations, for_computed, smoothness_of
 from laplace_verify.measure.expected import Expectation
 from laplace_verify.measure.features import features
 from laplace_verify.measure.judge import combine, judge
@@ -188,6 +189,7 @@ class _Run:
         faults, odd = (a + b for a, b in zip(*found, strict=True))
         if faults:
             verdict, reasons = Verdict.FAIL, [*reasons, *faults]
+        remarks += accuracy_remarks(self.levels, smoothness_of(self.case))
         remarks += [*odd, *dict.fromkeys(remark for result in self.results for remark in result.remarks)]
         return self.result(verdict, reasons, [*remarks, *self.remarks], orders)
 
