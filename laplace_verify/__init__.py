@@ -29,6 +29,7 @@ if TYPE_CHECKING:
     from laplace_verify.geometry import Annulus as Annulus
     from laplace_verify.geometry import Ball as Ball
     from laplace_verify.geometry import Box as Box
+    from laplace_verify.geometry import ConeSection as ConeSection
     from laplace_verify.geometry import ConfocalParabolas as ConfocalParabolas
     from laplace_verify.geometry import Cylinder as Cylinder
     from laplace_verify.geometry import Disc as Disc
@@ -40,8 +41,10 @@ if TYPE_CHECKING:
     from laplace_verify.geometry import HalfSpace as HalfSpace
     from laplace_verify.geometry import Interval as Interval
     from laplace_verify.geometry import LShape as LShape
+    from laplace_verify.geometry import NotchedCube as NotchedCube
     from laplace_verify.geometry import PairShell as PairShell
     from laplace_verify.geometry import Polygon as Polygon
+    from laplace_verify.geometry import Prism as Prism
     from laplace_verify.geometry import Rectangle as Rectangle
     from laplace_verify.geometry import RoundPlate as RoundPlate
     from laplace_verify.geometry import Screen as Screen
@@ -99,9 +102,9 @@ _ROOMS = {
     "errors": "AdapterError AnswerError FieldError GeometryError LaplaceVerifyError ProblemError RecordError",
     "fields": "Field field",
     "geometry": (
-        "Annulus Ball Box ConfocalParabolas Cylinder Disc Ellipse EllipticRing Exterior HalfAnnulus HalfDisc "
-        "HalfSpace Interval LShape PairShell Polygon Rectangle RoundPlate Screen Sector SphericalShell "
-        "Spheroid SpheroidalShell Strip"
+        "Annulus Ball Box ConeSection ConfocalParabolas Cylinder Disc Ellipse EllipticRing Exterior "
+        "HalfAnnulus HalfDisc HalfSpace Interval LShape NotchedCube PairShell Polygon Prism Rectangle "
+        "RoundPlate Screen Sector SphericalShell Spheroid SpheroidalShell Strip"
     ),
     "measure": "Study Verdict grid_convergence study",
     "principles": "Check check_principle",

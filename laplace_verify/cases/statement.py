@@ -278,6 +278,14 @@ REGIONS: dict[str, Callable[[Any], str]] = {
         f"the region above the axis of the parabolas about the focus {_point(s.focus)} whose vertices lie "
         f"{_number(s.right)} to its right and {_number(s.left)} to its left"
     ),
+    "cone-section": lambda s: (
+        f"the part of the disc of radius {_number(s.radius)} about the origin with x > 0 and less than "
+        f"{_number(math.degrees(s.half_angle))} degrees from the y axis"
+    ),
+    "prism": lambda s: f"the prism over {region_in_words(s.base)}, {_number(s.z0)} < z < {_number(s.z1)}",
+    "notched-cube": lambda s: (
+        f"the cube (-{_number(s.size)}, {_number(s.size)})^3 without its octant x, y, z > 0"
+    ),
     "l-shape": lambda s: (
         f"the L-shape (-{_number(s.size)}, {_number(s.size)})^2 without its quadrant x > 0, y < 0"
     ),

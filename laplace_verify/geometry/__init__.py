@@ -1,13 +1,15 @@
 """Shapes, the pieces of their boundaries, outward normals, quadrature, sampling."""
 
-from laplace_verify.geometry.base import Boundaries, Junction, Shape
+from laplace_verify.geometry.base import Boundaries, Junction, Shape, Vertex
 from laplace_verify.geometry.boundary import Boundary
 from laplace_verify.geometry.cartesian import Box, Interval, Rectangle
+from laplace_verify.geometry.cones import ConeSection
 from laplace_verify.geometry.halves import HalfAnnulus, HalfDisc
 from laplace_verify.geometry.pairs import PairShell
 from laplace_verify.geometry.parabolas import ConfocalParabolas
 from laplace_verify.geometry.planes import HalfSpace, Strip, within
 from laplace_verify.geometry.polygons import LShape, Polygon
+from laplace_verify.geometry.prisms import NotchedCube, Prism
 from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
 from laplace_verify.geometry.solids import Ball, Cylinder, SphericalShell
 from laplace_verify.geometry.spec import shape_from_spec, shape_to_spec
@@ -22,6 +24,7 @@ __all__ = [
     "Boundaries",
     "Boundary",
     "Box",
+    "ConeSection",
     "ConfocalParabolas",
     "Cylinder",
     "Disc",
@@ -34,8 +37,10 @@ __all__ = [
     "Interval",
     "Junction",
     "LShape",
+    "NotchedCube",
     "PairShell",
     "Polygon",
+    "Prism",
     "Rectangle",
     "RoundPlate",
     "Screen",
@@ -45,6 +50,7 @@ __all__ = [
     "Spheroid",
     "SpheroidalShell",
     "Strip",
+    "Vertex",
     "Windowed",
     "check_window",
     "default_window",

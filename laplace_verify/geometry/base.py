@@ -24,7 +24,7 @@ from laplace_verify.geometry.checks import LARGEST, ROUNDING, not_negative, plac
 from laplace_verify.geometry.patches import Chart, integrate
 from laplace_verify.geometry.splitting import check_fractions, check_names, junction_openings, split_piece
 
-__all__ = ["Boundaries", "Boundary", "Junction", "Shape"]
+__all__ = ["Boundaries", "Boundary", "Junction", "Shape", "Vertex"]
 
 
 class Boundaries(tuple[Boundary, ...]):
@@ -80,6 +80,25 @@ class Junction:
         object.__setattr__(self, "points", frozen(self.points))
 
 
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Vertex:
+    """A vertex of a solid whose own exponent is smaller than those of the edges that meet there.
+
+    Attributes
+    ----------
+    point
+        Where it is.
+    pieces
+        Names of the faces that meet there.
+    exponent
+        Of r in solutions with Dirichlet conditions on all of them.
+    """
+
+    point: tuple[float, float, float]
+    pieces: tuple[str, ...]
+    exponent: float
+
+
 @dataclass(frozen=True, repr=False)
 class Shape(ABC):
     """A closed bounded region with named boundary pieces (abstract).
@@ -125,6 +144,11 @@ class Shape(ABC):
     def _order(self, names: tuple[str, ...]) -> tuple[str, ...]:
         """Order in which the whole pieces are listed."""
         return names
+
+    @property
+    def sharp_vertices(self) -> tuple[Vertex, ...]:
+        """Vertices of a 3-D shape whose exponents are smaller than those of their edges."""
+        return ()
 
     def _solid_junctions(self) -> tuple[Junction, ...]:
         """Edges of a 3-D shape."""

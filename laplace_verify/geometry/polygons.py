@@ -91,14 +91,7 @@ class _Polygonal(Shape):
         corners, areas = trapezoids(self._rings())
         chosen = generator.choice(len(areas), size=n, p=areas / areas.sum())
         u, v = generator.random(n), generator.random(n)
-        low, high = corners[chosen, 0], corners[chosen, 1]  # rows: y, x left, x right
-        bottom, top = low[:, 2] - low[:, 1], high[:, 2] - high[:, 1]
-        # v has the density bottom + (top - bottom) v: solve the quadratic for its distribution function
-        root = np.sqrt(bottom**2 * (1.0 - v) + top**2 * v)
-        height = v * (bottom + top) / (bottom + root)
-        left = low[:, 1] + height * (high[:, 1] - low[:, 1])
-        width = bottom + height * (top - bottom)
-        return np.stack([left + u * width, low[:, 0] + height * (high[:, 0] - low[:, 0])], axis=1)
+        return in_trapezoids(corners[chosen], u, v)
 
     def _chart(self) -> Chart:
         corners, _ = trapezoids(self._rings())
@@ -157,6 +150,22 @@ def trapezoids(rings: tuple[Vertices, ...]) -> tuple[Array, Array]:
     corners, areas = corners[areas > 0.0], areas[areas > 0.0]
     corners.flags.writeable = areas.flags.writeable = False
     return corners, areas
+
+
+def in_trapezoids(corners: Array, u: Array, v: Array) -> Array:
+    """Return the point (n, 2) of each trapezoid with the share v of its area below and u of its width left.
+
+    `corners` (n, 2, 3) are rows of what `trapezoids` returns.
+    """
+    low, high = corners[:, 0], corners[:, 1]  # rows: y, x left, x right
+    bottom, top = low[:, 2] - low[:, 1], high[:, 2] - high[:, 1]
+    # the area below a height is a quadratic in it
+    root = np.sqrt(bottom**2 * (1.0 - v) + top**2 * v)
+    total = bottom + root
+    height = v * (bottom + top) / np.where(total > 0.0, total, 1.0)  # 0 at the tip of a triangle
+    left = low[:, 1] + height * (high[:, 1] - low[:, 1])
+    width = bottom + height * (top - bottom)
+    return np.stack([left + u * width, low[:, 0] + height * (high[:, 0] - low[:, 0])], axis=1)
 
 
 @dataclass(frozen=True, slots=True, repr=False)

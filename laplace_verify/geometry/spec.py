@@ -12,11 +12,13 @@ from typing import Any
 from laplace_verify.errors import GeometryError, nearest_names
 from laplace_verify.geometry.base import Shape
 from laplace_verify.geometry.cartesian import Box, Interval, Rectangle
+from laplace_verify.geometry.cones import ConeSection
 from laplace_verify.geometry.halves import HalfAnnulus, HalfDisc
 from laplace_verify.geometry.pairs import PairShell
 from laplace_verify.geometry.parabolas import ConfocalParabolas
 from laplace_verify.geometry.planes import HalfSpace, Strip
 from laplace_verify.geometry.polygons import LShape, Polygon
+from laplace_verify.geometry.prisms import NotchedCube, Prism
 from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
 from laplace_verify.geometry.solids import Ball, Cylinder, SphericalShell
 from laplace_verify.geometry.spheroids import EllipticRing, Spheroid, SpheroidalShell
@@ -28,9 +30,9 @@ __all__ = ["SHAPES", "shape_from_spec", "shape_to_spec"]
 SHAPES: dict[str, type[Shape]] = {
     shape.kind: shape
     for shape in (
-        Interval, Rectangle, Box, Disc, Ellipse, Annulus, Sector, HalfDisc, HalfAnnulus, LShape,
+        Interval, Rectangle, Box, Disc, Ellipse, Annulus, Sector, HalfDisc, HalfAnnulus, ConeSection, LShape,
         Polygon, ConfocalParabolas,
-        Ball, SphericalShell, Cylinder,
+        Ball, SphericalShell, Cylinder, Prism, NotchedCube,
         EllipticRing, Spheroid, SpheroidalShell, PairShell, Screen, RoundPlate, Exterior, HalfSpace, Strip,
     )
 }  # fmt: skip
@@ -92,6 +94,8 @@ def shape_from_spec(spec: Mapping[str, Any]) -> Shape:
     for name in known:
         if name not in given and name not in OPTIONAL:
             raise GeometryError(f"a {kind} needs the field {name!r}")
+    if "base" in given:  # a polygon under a prism
+        given["base"] = shape_from_spec(given["base"])
     if "body" in given:  # shapes are nested in an exterior
         given["body"] = _bodies(given["body"])
     made = shape(**given)

@@ -10,7 +10,7 @@ Robin's term is of lower order and leaves the exponent. With a tensor K the angl
 substitution x -> K^{-1/2} x, which turns a normal n into K^{1/2} n: if n_1, n_2 are the outward normals,
 
     w' = pi -+ arccos( n_1 . K n_2 / sqrt(n_1 . K n_1  n_2 . K n_2) ),   - for w < pi, + for w > pi
-    (derived here).
+    (derived here). Vertices of solids count where their exponent is known and below that of their edges.
 
 *Scale.* The smallest length that a grid must resolve: of the shape (pieces, gaps), or of the solution
 (distance to singular points outside, distances between those on the boundary).
@@ -122,7 +122,7 @@ def derive(
     )
     return Regularity(
         solution=min(exponents, default=math.inf),
-        domain=min(beyond, *corners, math.inf),
+        domain=min(beyond, *corners, *_vertex_exponents(shape, kinds), math.inf),
         singular_points=np.array(places).reshape(-1, shape.dim),
         scale=scale,
         jumps=np.array(jumps).reshape(-1, shape.dim),
@@ -171,6 +171,15 @@ def complement_exponent(shape: Shape, kinds: Mapping[str, PieceKind]) -> float |
         elif abs(opening - math.pi) > 1e-9:
             least = min(least, math.pi / opening)
     return least
+
+
+def _vertex_exponents(shape: Shape, kinds: Mapping[str, PieceKind]) -> list[float]:
+    """Return the exponents of vertices whose faces all carry Dirichlet conditions; others are not known."""
+    return [
+        vertex.exponent
+        for vertex in shape.sharp_vertices
+        if all(kinds[name] == "dirichlet" for name in vertex.pieces)
+    ]
 
 
 def seen_opening(shape: Shape, junction: Junction, tensor: Array) -> float:

@@ -39,11 +39,11 @@ Scale: TypeAlias = float | tuple[float, str] | None
 
 LENGTHS = frozenset({"a", "b", "lower", "upper", "centre", "radius", "semi_axes", "inner", "outer"}) | {
     "inner_centre", "size", "vertices", "holes", "z0", "z1", "start", "stop", "body", "gap", "focus", "right",
-    "left",
+    "left", "base",
 }  # fmt: skip
 EPS = float(np.finfo(np.float64).eps)
 DRIVES = {"torsion constant": -2, "added mass": -1}  # power of length of twist and motion, others are values
-RATIOS = frozenset({"opening", "splits", "names", "dim"})  # angles, fractions and words stay
+RATIOS = frozenset({"opening", "half_angle", "splits", "names", "dim"})  # angles, fractions and words stay
 
 
 def as_scale(given: Any, name: str, unit: str) -> tuple[float, str]:

@@ -54,6 +54,7 @@ SHAPES: Final = (
     "exterior-ellipse", "exterior-polygon", "exterior-screen", "exterior-ball", "exterior-spheroid",
     "exterior-round-plate", "elliptic-ring", "spheroidal-shell", "half-disc", "half-annulus",
     "confocal-parabolas",
+    "cone-section", "prism", "prism-l-shape", "prism-polygon", "notched-cube",
 )  # fmt: skip
 CONDITIONS: Final = ("dirichlet", "neumann", "robin", "periodic")
 CONDUCTIVITIES: Final = ("scalar", "tensor", "regions")

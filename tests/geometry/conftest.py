@@ -35,6 +35,17 @@ SHAPES = {
     "ball": geo.Ball((1.0, -0.5, 0.25), 1.5),
     "spherical shell": geo.SphericalShell((1.0, -0.5, 0.25), 0.5, 1.25),
     "cylinder": geo.Cylinder(0.75, -0.5, 1.5),
+    "cone section": geo.ConeSection(1.25, 0.5),
+    "notched cone section": geo.ConeSection(0.75, 0.8 * math.pi),
+    "prism": geo.Prism(geo.LShape(1.25), -0.5, 0.25),
+    "crooked prism": geo.Prism(
+        geo.Polygon(
+            [(0.0, 0.0), (3.0, -0.5), (3.5, 2.0), (1.0, 1.25), (0.0, 2.0)],
+            holes=[[(1.0, 0.25), (1.5, 0.25), (1.25, 0.75)]],
+        ),
+        1.0, 2.5,
+    ),
+    "notched cube": geo.NotchedCube(0.75),
     "split rectangle": geo.Rectangle((0.0, 0.0), (2.0, 1.0)).split(top=[0.4], left=[0.25, 0.5]),
     "split disc": geo.Disc((1.0, 0.0), 2.0).split(rim=[0.125, 0.5]),
     "split annulus": geo.Annulus((0.0, 0.0), 1.0, 2.0).split(inner=[0.25], outer=[0.75]),
