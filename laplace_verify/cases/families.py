@@ -5,6 +5,7 @@ from __future__ import annotations
 from laplace_verify.cases import (
     boxes,
     boxes_faces,
+    cones,
     corners,
     corners_fitted,
     discs,
@@ -23,6 +24,7 @@ from laplace_verify.cases import (
     plates_smooth,
     plates_sources,
     polygons,
+    prisms,
     radial,
     rings,
     rods,
@@ -63,10 +65,12 @@ FAMILIES = joined(
     boxes.family,
     round_solids.family,
     boxes_faces.family,
+    prisms.family,
     round_faces.family,
     exteriors_space.family,
     radial.family,
     round_sections.family,
+    cones.family,
     materials.family,
     ill_posed.family,
 )

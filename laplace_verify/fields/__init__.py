@@ -1,17 +1,21 @@
 """Harmonic functions: values, gradients, conjugates, and as many digits as asked for."""
 
 from laplace_verify.fields.affine import affine
+from laplace_verify.fields.along_z import along_z
 from laplace_verify.fields.base import Field
 from laplace_verify.fields.box_faces import box_faces
 from laplace_verify.fields.box_modes import box_mode
 from laplace_verify.fields.checkerboards import checkerboard, checkerboard_ratio
+from laplace_verify.fields.cones import cone, cone_exponent
 from laplace_verify.fields.corner_powers import CornerPowers, corner_powers
 from laplace_verify.fields.corner_series import CornerSeries, Expansion, LocalSum, PolynomialPart
 from laplace_verify.fields.cylinder_faces import cylinder_faces
 from laplace_verify.fields.disc_arcs import arcs
-from laplace_verify.fields.edges import Edge, Ring
+from laplace_verify.fields.edge_waves import edge_wave
+from laplace_verify.fields.edges import Edge, Line, Ring
 from laplace_verify.fields.exponentials import exp_trig
 from laplace_verify.fields.formula import Formula
+from laplace_verify.fields.half_edges import half_edge
 from laplace_verify.fields.hemispheres import hemispheres
 from laplace_verify.fields.joukowski import elliptic_multipole, flow_past
 from laplace_verify.fields.meridian import axisymmetric
@@ -27,7 +31,7 @@ from laplace_verify.fields.polynomials import polynomial
 from laplace_verify.fields.radial import radial
 from laplace_verify.fields.rectangle_series import rectangle_series
 from laplace_verify.fields.seepage import dam_seepage
-from laplace_verify.fields.sheets import Sheet
+from laplace_verify.fields.sheets import Fan, Sheet
 from laplace_verify.fields.singular import Cut, Enclosure, Singularity
 from laplace_verify.fields.solids import solid
 from laplace_verify.fields.sources import dipole, log_source, point_source
@@ -47,14 +51,17 @@ __all__ = [
     "Edge",
     "Enclosure",
     "Expansion",
+    "Fan",
     "Field",
     "Formula",
+    "Line",
     "LocalSum",
     "PolynomialPart",
     "Ring",
     "Sheet",
     "Singularity",
     "affine",
+    "along_z",
     "arcs",
     "axisymmetric",
     "ball_zonal",
@@ -64,10 +71,13 @@ __all__ = [
     "checkerboard",
     "checkerboard_ratio",
     "coefficient_rule",
+    "cone",
+    "cone_exponent",
     "corner_powers",
     "cylinder_faces",
     "dam_seepage",
     "dipole",
+    "edge_wave",
     "elliptic_multipole",
     "exp_trig",
     "exponential",
@@ -76,6 +86,7 @@ __all__ = [
     "flow_past_square",
     "fourier",
     "from_spec",
+    "half_edge",
     "hemispheres",
     "loaded_disc",
     "loaded_rectangle",

@@ -23,9 +23,9 @@ from laplace_verify.errors import FieldError
 from laplace_verify.fields._inputs import Side, as_sides, columns, is_number, shortened, text_of
 from laplace_verify.fields._precision import agreeing, real
 from laplace_verify.fields._refusals import Place, refuse, refuse_infinite
-from laplace_verify.fields.edges import Edge, Ring
+from laplace_verify.fields.edges import Edge, Line, Ring
 from laplace_verify.fields.exact import exact_point, whole
-from laplace_verify.fields.sheets import Sheet
+from laplace_verify.fields.sheets import Fan, Sheet
 from laplace_verify.fields.singular import Basis, Cut, Enclosure, Singularity
 
 if TYPE_CHECKING:
@@ -74,13 +74,13 @@ class Field(ABC):
         return ()
 
     @property
-    def edges(self) -> tuple[Edge | Ring, ...]:
+    def edges(self) -> tuple[Edge | Line | Ring, ...]:
         """Curves along which the field is not smooth (fields of space only)."""
         return ()
 
     @property
-    def sheets(self) -> tuple[Sheet, ...]:
-        """Discs across which the gradient jumps (fields of space only)."""
+    def sheets(self) -> tuple[Fan | Sheet, ...]:
+        """Flat sheets across which value or gradient jump (fields of space only)."""
         return ()
 
     @property

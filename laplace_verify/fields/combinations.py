@@ -12,9 +12,9 @@ from laplace_verify.contexts import Number
 from laplace_verify.errors import FieldError
 from laplace_verify.fields.affine import join_terms
 from laplace_verify.fields.base import Field
-from laplace_verify.fields.edges import Edge, Ring
+from laplace_verify.fields.edges import Edge, Line, Ring
 from laplace_verify.fields.exact import Exact, exact, rational
-from laplace_verify.fields.sheets import Sheet
+from laplace_verify.fields.sheets import Fan, Sheet
 from laplace_verify.fields.singular import Basis, Cut, Singularity, weakest_basis
 from laplace_verify.fields.specs import registered
 
@@ -59,12 +59,12 @@ class Combination(Field):
         return tuple(dict.fromkeys(c for term in self.terms for c in term.cuts))
 
     @property
-    def edges(self) -> tuple[Edge | Ring, ...]:
+    def edges(self) -> tuple[Edge | Line | Ring, ...]:
         """Those of all terms, each once."""
         return tuple(dict.fromkeys(e for term in self.terms for e in term.edges))
 
     @property
-    def sheets(self) -> tuple[Sheet, ...]:
+    def sheets(self) -> tuple[Fan | Sheet, ...]:
         """Those of all terms, each once."""
         return tuple(dict.fromkeys(s for term in self.terms for s in term.sheets))
 

@@ -1,4 +1,4 @@
-"""Curves in space along which a field is not smooth: straight edges and circles.
+"""Curves in space along which a field is not smooth: straight edges, lines, rays and circles.
 
 Where two faces of a solid carry different boundary values, the data jump along the whole edge they share.
 Near such an edge u depends on the angle about it, as a plane field does near a jump point, and |grad u| grows
@@ -16,11 +16,12 @@ import numpy as np
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.errors import FieldError
 
-__all__ = ["Edge", "Ring"]
+__all__ = ["Edge", "Line", "Ring"]
 
 ROUNDING = 4 * float(
     np.finfo(np.float64).eps
 )  # of coordinates of a point that was computed to lie on a curve
+IN_BOX = 1e-9  # of a box's size: a line this near to it is one of its edges
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -66,10 +67,80 @@ class Edge:
         points: Array = (1.0 - s) * np.asarray(self.start) + s * np.asarray(self.end)
         return points
 
+    def within(self, lower: Array, upper: Array) -> Edge:  # noqa: ARG002  # it is finite
+        """Return the edge: boxes cut lines only."""
+        return self
+
     def moved(self, matrix: Array, vector: Array) -> Edge:
         """Return the image under x -> matrix x + vector."""
         start, end = (tuple((matrix @ np.asarray(p) + vector).tolist()) for p in (self.start, self.end))
         return Edge(start=start, end=end, exponent=self.exponent)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Line:
+    """An infinite straight line through `point` along the unit vector `direction`; `ray`: only forwards.
+
+    The part of it that matters is what a shape holds: `within` its bounding box it is an `Edge`.
+
+    >>> line = Line(point=(0, 0, 1), direction=(1, 0, 0), exponent=0.5, ray=True)
+    >>> line.distance(np.array([[5.0, 3.0, 5.0], [-3.0, 0.0, 1.0]])).tolist()
+    [5.0, 3.0]
+    >>> line.within(np.array([-1.0, -1.0, 0.0]), np.array([2.0, 1.0, 1.0])).end
+    (2.0, 0.0, 1.0)
+    """
+
+    point: tuple[float, float, float]
+    direction: tuple[float, float, float]
+    exponent: float
+    ray: bool = False
+
+    def _along(self, points: Array) -> tuple[Array, Array]:
+        """Return the way to the nearest point of the line, and the offset (n, 3) from it."""
+        offset = np.asarray(points, dtype=np.float64) - self.point
+        along = offset @ np.asarray(self.direction)
+        along = np.maximum(along, 0.0) if self.ray else along
+        return along, offset - along[:, None] * self.direction
+
+    def distance(self, points: Array) -> Array:
+        """Return the distance of points (n, 3) from the line, shape (n,)."""
+        away: Array = np.sqrt((self._along(points)[1] ** 2).sum(axis=1))
+        return away
+
+    def meets(self, points: Array) -> BoolArray:
+        """Return which points lie on the line, to rounding of its direction; exactly if along an axis."""
+        along, away = self._along(points)
+        slanted = np.count_nonzero(self.direction) > 1
+        reach = ROUNDING * (np.abs(along) + float(np.abs(self.point).max())) if slanted else 0.0
+        on: BoolArray = np.sqrt((away**2).sum(axis=1)) <= reach
+        return on
+
+    def tangents(self, points: Array) -> Array:
+        """Return the unit tangents (n, 3) at points of the line."""
+        return np.tile(np.asarray(self.direction), (len(points), 1))
+
+    def within(self, lower: Array, upper: Array) -> Edge | None:
+        """Return the part inside a box, None if the line passes it by."""
+        size = float((upper - lower).max())
+        low, high = (0.0 if self.ray else -math.inf), math.inf
+        for a, b, place, way in zip(lower, upper, self.point, self.direction, strict=True):
+            if abs(way) > ROUNDING:
+                ends = sorted(((a - place) / way, (b - place) / way))
+                low, high = max(low, ends[0]), min(high, ends[1])
+            elif not a - IN_BOX * size <= place <= b + IN_BOX * size:
+                return None
+        if not low < high:
+            return None
+        (x, y, z), (u, v, w) = self.point, self.direction
+        start, end = ((x + t * u + 0.0, y + t * v + 0.0, z + t * w + 0.0) for t in (low, high))
+        return Edge(start=start, end=end, exponent=self.exponent)
+
+    def moved(self, matrix: Array, vector: Array) -> Line:
+        """Return the image under x -> matrix x + vector."""
+        way = matrix @ np.asarray(self.direction)
+        x, y, z = (matrix @ np.asarray(self.point) + vector).tolist()
+        dx, dy, dz = (way / math.sqrt(float(way @ way))).tolist()
+        return Line(point=(x, y, z), direction=(dx, dy, dz), exponent=self.exponent, ray=self.ray)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -120,6 +191,10 @@ class Ring:
             np.cos(angle) * first + np.sin(angle) * second
         )
         return points
+
+    def within(self, lower: Array, upper: Array) -> Ring:  # noqa: ARG002  # it is finite
+        """Return the circle: boxes cut lines only."""
+        return self
 
     def moved(self, matrix: Array, vector: Array) -> Ring:
         """Return the image under x -> matrix x + vector, matrix a rotation times a positive number.

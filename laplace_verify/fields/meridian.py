@@ -7,7 +7,7 @@ A field U of space that does not change when turned about the z axis is known fr
 and div(K grad U) = 0 becomes (1/r) d/dr(r K u_r) + d/dz(K u_z) = 0. The even continuation to r < 0 is U in
 the opposite half-plane. On the axis u_r = 0. Singular points of U on the axis are singular points of u; a
 circle about the axis along which U jumps is one too. Derived here. What depends on r alone, a + b log r, is
-singular along the whole axis.
+singular along the whole axis; a cone's field along the half of it outside the cone.
 """
 
 from __future__ import annotations
@@ -21,7 +21,7 @@ import numpy as np
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.errors import FieldError
 from laplace_verify.fields.base import Field
-from laplace_verify.fields.edges import Ring
+from laplace_verify.fields.edges import Line, Ring
 from laplace_verify.fields.radial import Radial
 from laplace_verify.fields.singular import Basis, Singularity
 from laplace_verify.fields.specs import registered
@@ -209,6 +209,8 @@ def _check_places(field: Field) -> None:
                 f"{field.formula} is not symmetric about the z axis: its singular point {s.point} lies off it"
             )
     for edge in field.edges:
+        if isinstance(edge, Line) and not any(edge.point[:2]) and not any(edge.direction[:2]):
+            continue  # the axis or half of it, where the field is not valid
         about = isinstance(edge, Ring) and math.hypot(*edge.axis[:2], *edge.centre[:2]) <= ON_AXIS
         if not about:
             raise FieldError(f"{field.formula} is not symmetric about the z axis: it jumps along {edge}")

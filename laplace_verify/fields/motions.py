@@ -18,9 +18,9 @@ from laplace_verify.contexts import FLOAT
 from laplace_verify.errors import FieldError
 from laplace_verify.fields._precision import working
 from laplace_verify.fields.base import Field
-from laplace_verify.fields.edges import Edge, Ring
+from laplace_verify.fields.edges import Edge, Line, Ring
 from laplace_verify.fields.exact import Exact, exact, exact_point, offset, show
-from laplace_verify.fields.sheets import Sheet
+from laplace_verify.fields.sheets import Fan, Sheet
 from laplace_verify.fields.singular import Basis, Cut, Singularity
 from laplace_verify.fields.specs import registered
 
@@ -86,13 +86,13 @@ class Moved(Field):
         return tuple(moved)
 
     @property
-    def edges(self) -> tuple[Edge | Ring, ...]:
+    def edges(self) -> tuple[Edge | Line | Ring, ...]:
         """The moved edges."""
         matrix, vector = self._map()
         return tuple(edge.moved(matrix, vector) for edge in self.field.edges)
 
     @property
-    def sheets(self) -> tuple[Sheet, ...]:
+    def sheets(self) -> tuple[Fan | Sheet, ...]:
         """The moved sheets."""
         matrix, vector = self._map()
         return tuple(sheet.moved(matrix, vector) for sheet in self.field.sheets)

@@ -88,7 +88,8 @@ class ConeSection(Shape):
     def _draw(self, generator: np.random.Generator, n: int) -> Array:
         s = self.radius * np.sqrt(generator.random(n))
         t = self.half_angle * generator.random(n)
-        return s[:, None] * np.stack([np.sin(t), np.cos(t)], axis=1)
+        points: Array = s[:, None] * np.stack([np.sin(t), np.cos(t)], axis=1)
+        return points
 
     def _chart(self) -> Chart:
         def place(parameters: Array, _box: IntArray) -> tuple[Array, Array]:

@@ -74,7 +74,7 @@ class PolygonFace(Surface):
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Wall(Surface):
-    """The rectangle over a straight side in the plane, z0 < z < z1; its outward normal is that of the side."""
+    """The rectangle over a straight side in the plane, z0 < z < z1, with the outward normal of the side."""
 
     side: Segment
     z0: float

@@ -22,6 +22,7 @@ from laplace_verify.geometry._fans import edges_of, fan_of, unit
 from laplace_verify.geometry._marks import SAME, stretched, subdivide
 from laplace_verify.geometry.base import Shape
 from laplace_verify.geometry.boundary import Boundary
+from laplace_verify.geometry.cones import ConeSection
 from laplace_verify.geometry.halves import HalfAnnulus, HalfDisc
 from laplace_verify.geometry.parabolas import ConfocalParabolas
 from laplace_verify.geometry.round import Annulus, Disc, Ellipse, Sector
@@ -158,23 +159,30 @@ def _from_disc(shape: Shape, n: int) -> Mesh:
 
 
 def _from_sector(shape: Shape, n: int) -> Mesh:
-    """Map a fan of triangles with about 60 degrees each onto a sector."""
-    if not isinstance(shape, Sector):
+    """Map a fan of triangles with about 60 degrees each onto a sector, or onto one beside an axis."""
+    if isinstance(shape, Sector):
+        first, opening, names = 0.0, shape.opening, ("start", "arc", "end")
+    elif isinstance(shape, ConeSection):
+        first, opening = math.pi / 2.0 - shape.half_angle, shape.half_angle
+        names = ("side", "cap", "straight")
+    else:
         raise GeometryError(f"a sector is needed here, got {shape!r}")
-    wedges = max(1, round(shape.opening / (math.pi / 3.0)))
+    wedges = max(1, round(opening / (math.pi / 3.0)))
     fan = fan_of(wedges, n, closed=False)
     ends = np.concatenate([piece.ends for piece in shape.pieces])
     radii = np.linalg.norm(ends, axis=1) / shape.radius
     on_arc = ends[np.abs(radii - 1.0) < SAME]
-    breaks = (np.arctan2(on_arc[:, 1], on_arc[:, 0]) % (2.0 * math.pi)) / shape.opening
-    angle = shape.opening * stretched(fan.share, breaks, wedges * n)
+    breaks = ((np.arctan2(on_arc[:, 1], on_arc[:, 0]) - first) % (2.0 * math.pi)) / opening
+    angle = first + opening * stretched(fan.share, breaks, wedges * n)
     along = shape.radius * stretched(fan.ring / n, radii, n)
-    rays = {"start": edges_of(fan.start), "arc": edges_of(fan.rim), "end": edges_of(fan.end)}
     points = along[:, np.newaxis] * unit(angle)
+    if isinstance(shape, ConeSection):
+        points[fan.end, 0] = 0.0  # the axis, to the last bit
     boundary: dict[str, IntArray] = {}
-    for name, edges in rays.items():
+    for name, nodes in zip(names, (fan.start, fan.rim, fan.end), strict=True):
+        edges = edges_of(nodes)
         middles = points[edges].mean(axis=1)
-        if name == "arc":
+        if nodes is fan.rim:
             middles = shape.radius * unit(angle[edges].mean(axis=1))
         parts = [piece for piece in shape.pieces if piece.name == name or piece.name.startswith(name + "-")]
         boundary |= _by_piece(parts, edges, middles)
@@ -378,6 +386,8 @@ _BUILDERS: dict[str, Callable[[Shape, int], Mesh]] = {
     "sector": _from_sector,
     "annulus": _from_ring,
     "elliptic-ring": _from_ring,
+    "cone-section": _from_sector,
+    "annulus": _from_annulus,
     "half-disc": _from_half_disc,
     "half-annulus": _from_half_annulus,
     "confocal-parabolas": _from_parabolas,

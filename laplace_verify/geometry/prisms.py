@@ -27,6 +27,7 @@ from laplace_verify.geometry.segments import Face, Segment
 __all__ = ["VERTEX_EXPONENT", "NotchedCube", "Prism"]
 
 RIGHT = math.pi / 2.0
+PAIRS = (("left", "right"), ("front", "back"), ("bottom", "top"))  # faces across x, y, z
 # Dirichlet exponent of space without an octant. Fichera 1975, Comportamento asintotico del campo elettrico
 # (bounds), and Schmitz, Volk & Wendland 1993, Three-dimensional singularities of elastic fields near vertices
 # (0.4541737), both from memory, unchecked; the further digits by two spectral computations that agree to 13.
@@ -58,7 +59,9 @@ class Prism(Shape):
             )
         taken = {"bottom", "top"} & set(self.base.pieces.names)
         if taken:
-            raise GeometryError(f"no side of the base may be called {min(taken)!r}, as an end of the prism is")
+            raise GeometryError(
+                f"no side of the base may be called {min(taken)!r}, as an end of the prism is"
+            )
         if any(junction.opening > 2.0 * math.pi - 1e-9 for junction in self.base.junctions):
             raise GeometryError("the base of a prism must not have a slit")
         object.__setattr__(self, "z0", number(self.z0, "z0"))
@@ -174,7 +177,7 @@ class NotchedCube(Shape):
         s = self.size
         bent = Polygon([(-s, -s), (s, -s), (s, 0.0), (0.0, 0.0), (0.0, s), (-s, s)])
         faces: list[Boundary] = []
-        for axis, (low_name, high_name) in enumerate((("left", "right"), ("front", "back"), ("bottom", "top"))):
+        for axis, (low_name, high_name) in enumerate(PAIRS):
             low, high = np.full(3, -s), np.full(3, s)
             high[axis] = -s
             faces.append(_square(low_name, low, high, axis, -1.0))
@@ -186,7 +189,7 @@ class NotchedCube(Shape):
         return (tuple(faces),)
 
     def _solid_junctions(self) -> tuple[Junction, ...]:
-        s, names = self.size, (("left", "right"), ("front", "back"), ("bottom", "top"))
+        s, names = self.size, PAIRS
         found = []
         for i, j in combinations(range(3), 2):
             k = 3 - i - j
@@ -218,7 +221,8 @@ class NotchedCube(Shape):
         return (Vertex(point=(0.0, 0.0, 0.0), pieces=notch, exponent=VERTEX_EXPONENT),)
 
     def _inside(self, points: Array) -> BoolArray:
-        inside: BoolArray = (np.abs(points) <= self.size).all(axis=1) & (points <= 0.0).any(axis=1)
+        inside: BoolArray = np.asarray((np.abs(points) <= self.size).all(axis=1))
+        inside &= np.asarray((points <= 0.0).any(axis=1))
         return inside
 
     def _draw(self, generator: np.random.Generator, n: int) -> Array:
@@ -227,14 +231,12 @@ class NotchedCube(Shape):
     def _chart(self) -> Chart:
         halves = [-self.size, 0.0, self.size]
         lower, upper = boxes(halves, halves, halves)
-        kept = (upper <= 0.0).any(axis=1)
+        kept = np.asarray((upper <= 0.0).any(axis=1))
 
         def place(parameters: Array, _box: IntArray) -> tuple[Array, Array]:
             return parameters.copy(), np.ones(len(parameters))
 
-        return Chart(
-            lower=lower[kept], upper=upper[kept], place=place, angles=(False,) * 3, extra=(0,) * 3
-        )
+        return Chart(lower=lower[kept], upper=upper[kept], place=place, angles=(False,) * 3, extra=(0,) * 3)
 
 
 def _square(name: str, low: Array, high: Array, axis: int, outward: float) -> Face:

@@ -6,14 +6,15 @@ from collections.abc import Callable
 
 import numpy as np
 
-from laplace_verify.arrays import Array
+from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.errors import FieldError, ProblemError
-from laplace_verify.fields import Field, Singularity
+from laplace_verify.fields import Edge, Field, Line, Ring, Singularity
 from laplace_verify.geometry import Boundary
 from laplace_verify.problems.conditions import Kind
 from laplace_verify.problems.data import PointFunction
 from laplace_verify.problems.limits import (
     AT_POINT,
+    bounded_at_edge,
     bounded_limit,
     directions_along,
     limits_at_edge,
@@ -25,6 +26,15 @@ from laplace_verify.problems.materials import Materials
 __all__ = ["BoundaryField", "ExactData"]
 
 INTERFACE = 1e-12  # of the shape's size: closer than this is on an interface
+ALONG_EDGE = 1e-9  # angle between an edge and K n that counts as none
+STENCIL_STEP = 1e-3  # of the shape's size, between values along an edge
+FORWARD = (
+    -25 / 12,
+    4.0,
+    -3.0,
+    4 / 3,
+    -1 / 4,
+)  # derivative at the first of five values, Abramowitz & Stegun 25.2
 BESIDE = 1e-6  # of the shape's size: where the regions on both sides are looked up
 
 
@@ -129,16 +139,46 @@ class BoundaryField:
             if not hit.any():
                 continue
             if derivative and edge.exponent < 1.0:  # r log r: the flux has a limit on either side
-                row = int(np.flatnonzero(hit)[0])
-                raise ProblemError(
-                    f"the flux n . K grad u on piece {self._boundary.name!r} has no finite limit at point "
-                    f"{row} = {tuple(points[row].tolist())}, on an edge where it is infinite; leave it out"
-                )
-            values[hit] = limits_at_edge(function, self._boundary, edge, points[hit], self._size)
+                values[hit] = self._flux_at_edge(edge, points, hit)
+            else:
+                values[hit] = limits_at_edge(function, self._boundary, edge, points[hit], self._size)
             ordinary[hit] = False
         if ordinary.any():
             values[ordinary] = self._named(function, points[ordinary])
         return values
+
+    def _flux_at_edge(self, edge: Edge | Line | Ring, points: Array, hit: BoolArray) -> Array:
+        """Return the flux at the points hit, on an edge along which |grad u| is infinite.
+
+        Where the edge ends on the piece and K n points along it, the flux is a derivative along the edge, on
+        which u itself is finite: five values inwards, error h^4. Elsewhere it is the limit along the piece,
+        zero on an insulated face, if there is one.
+
+        Raises
+        ------
+        ProblemError
+            If it has no finite limit.
+        """
+        places = points[hit]
+        if not isinstance(self._tensor, Materials):
+            flow = self._boundary.normals(places) @ self._tensor
+            strength = np.sqrt((flow**2).sum(axis=1))
+            inwards = -flow / strength[:, None]
+            turned = np.cross(inwards, edge.tangents(places))
+            if (np.abs(turned) <= ALONG_EDGE).all():
+                step = STENCIL_STEP * self._size
+                around = [self._field.value(places + k * step * inwards) for k in range(len(FORWARD))]
+                slopes = sum(c * u for c, u in zip(FORWARD, around, strict=True)) / step
+                along: Array = -strength * slopes
+                return along
+        limits = bounded_at_edge(self._flux, self._flow, self._boundary, places, self._size)
+        if limits is None:
+            row = int(np.flatnonzero(hit)[0])
+            raise ProblemError(
+                f"the flux n . K grad u on piece {self._boundary.name!r} has no finite limit at point "
+                f"{row} = {tuple(points[row].tolist())}, on an edge where it is infinite; leave it out"
+            )
+        return limits
 
     def _named(self, function: Callable[[Array], Array], points: Array) -> Array:
         """Evaluate `function`, naming the piece if the field refuses."""

@@ -18,10 +18,10 @@ from collections.abc import Callable, Sequence
 import numpy as np
 
 from laplace_verify.arrays import Array, BoolArray
-from laplace_verify.fields import Cut, Edge, Field, Ring, Singularity
+from laplace_verify.fields import Cut, Edge, Field, Line, Ring, Singularity
 from laplace_verify.geometry import Boundary
 
-__all__ = ["bounded_limit", "directions_along", "limits_at_edge", "near", "sides_on"]
+__all__ = ["bounded_at_edge", "bounded_limit", "directions_along", "limits_at_edge", "near", "sides_on"]
 
 AT_POINT = 1e-12  # of the shape's size: closer than this is "at the point"
 OFFSET = 1e-7  # delta
@@ -112,8 +112,32 @@ def bounded_limit(
     return sum(limits) / len(limits) if limits else None
 
 
+def bounded_at_edge(
+    function: Callable[[Array], Array],
+    magnitude: Callable[[Array], Array],
+    boundary: Boundary,
+    points: Array,
+    size: float,
+) -> Array | None:
+    """Return the limits (n,) of `function` on the way to a surface piece's middle, None if it has none.
+
+    As `bounded_limit` at points (n, 3) of an edge of the piece along which u is singular.
+    """
+    middle = boundary.point(np.array([[0.5, 0.5]]))[0] - points
+    away = np.sqrt((middle**2).sum(axis=1, keepdims=True))
+    steps = (OFFSET * size, 2.0 * OFFSET * size, min(0.1 * size, 0.25 * boundary.size))
+    places = [boundary.project(points + step * middle / away) for step in steps]
+    first, second, third = (function(place) for place in places)
+    settled = np.abs(first - second) <= SMOOTH * (np.abs(third) + magnitude(places[2]))
+    return 2.0 * first - second if settled.all() else None
+
+
 def limits_at_edge(
-    function: Callable[[Array], Array], boundary: Boundary, edge: Edge | Ring, points: Array, size: float
+    function: Callable[[Array], Array],
+    boundary: Boundary,
+    edge: Edge | Line | Ring,
+    points: Array,
+    size: float,
 ) -> Array:
     """Return the limits (n,) of `function` along a surface piece at points (n, 3) on an edge where u jumps.
 

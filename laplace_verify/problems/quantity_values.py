@@ -13,8 +13,9 @@ from decimal import ROUND_CEILING, Decimal
 
 import numpy as np
 
+from laplace_verify.arrays import Array
 from laplace_verify.errors import FieldError, ProblemError, nearest_names
-from laplace_verify.fields import Field, Singularity
+from laplace_verify.fields import Edge, Line, Ring, Singularity
 from laplace_verify.geometry import Boundary
 from laplace_verify.problems.boundary_values import BoundaryField
 from laplace_verify.problems.closed_forms import closed_form
@@ -34,6 +35,7 @@ from laplace_verify.problems.materials import Materials
 from laplace_verify.problems.quantities import Quantity, QuantitySpec
 from laplace_verify.problems.regions import parts_of
 from laplace_verify.problems.sections import exit_gradient, section
+from laplace_verify.problems.singular_checks import edge_points
 
 __all__ = ["CLOSED_FORM", "evaluate"]
 
@@ -194,11 +196,11 @@ def _integral(
     for piece in pieces:
         seen = BoundaryField(setting.field, piece, setting.tensor, shape.size)
         if spec.kind not in OF_VALUES:
-            radius += _hidden(name, spec.kind, piece, seen, setting.field, shape.size)
+            radius += _hidden(name, spec.kind, piece, seen, setting)
         low, high = (_quadrature(spec, drive, piece, seen, order, setting) for order in ORDERS)
         value += high[0]
         total += high[1]
-        radius += _spread(piece, setting.field) * abs(high[0] - low[0]) + 16 * EPS * high[1]
+        radius += _spread(piece, setting) * abs(high[0] - low[0]) + 16 * EPS * high[1]
     return value, radius, total
 
 
@@ -240,22 +242,28 @@ def _quadrature(
     return math.fsum(weights * density), math.fsum(weights * np.abs(density))
 
 
-def _spread(piece: Boundary, field: Field) -> float:
+def _spread(piece: Boundary, setting: Setting) -> float:
     """Return how much the error may exceed the difference of two orders.
 
     Along an edge where the flux grows like r**(-1/2) Gauss rules of n points err like 1/n: with 8 and 12
     points by twice their difference.
     """
-    steep = any(0.0 < e.exponent < 1.0 and piece.contains(e.sample(5)).any() for e in field.edges)
+    steep = any(0.0 < e.exponent < 1.0 and len(_along(piece, e, setting)) for e in setting.field.edges)
     return 5.0 if steep else 1.0
 
 
-def _hidden(name: str, kind: str, piece: Boundary, seen: BoundaryField, field: Field, size: float) -> float:
+def _along(piece: Boundary, edge: Edge | Line | Ring, setting: Setting) -> Array:
+    """Return points (n, 3) of an edge that lie on a piece; none if it keeps off it."""
+    points = edge_points(setting.shape, edge, 5)
+    return points[piece.contains(points)] if len(points) else points
+
+
+def _hidden(name: str, kind: str, piece: Boundary, seen: BoundaryField, setting: Setting) -> float:
     """Return how much of an integral the innermost panels at singular points may hide."""
-    hidden = 0.0
+    hidden, field, size = 0.0, setting.field, setting.shape.size
     for edge in field.edges:
-        along = edge.sample(5)
-        if edge.exponent <= 0.0 and piece.contains(along).any():
+        along = _along(piece, edge, setting)
+        if edge.exponent <= 0.0 and len(along):
             what = (
                 "energy at"
                 if kind == "energy"
@@ -265,7 +273,7 @@ def _hidden(name: str, kind: str, piece: Boundary, seen: BoundaryField, field: F
             )
             raise ProblemError(
                 f"quantity {name!r}: the {what} piece {piece.name!r} is infinite, because boundary data "
-                f"jump along its edge through {tuple(along[piece.contains(along)][0].tolist())}"
+                f"jump along its edge through {tuple(along[0].tolist())}"
             )
     for singularity in field.singularities:
         place = np.array([singularity.point])

@@ -26,7 +26,7 @@ import numpy as np
 from scipy.spatial.distance import cdist, pdist
 
 from laplace_verify.arrays import Array, frozen
-from laplace_verify.fields import Field
+from laplace_verify.fields import Field, Line
 from laplace_verify.geometry import Boundary, Junction, Shape
 from laplace_verify.problems.conditions import PieceKind
 from laplace_verify.problems.coordinates import AXIS, Coordinates, cone_exponent
@@ -205,8 +205,11 @@ def _scale(shape: Shape, field: Field, places: list[tuple[float, ...]]) -> float
         away = shape.distance(np.array([s.point for s in field.singularities]))
         lengths += away[away > COINCIDENT * shape.size].tolist()
     for edge in field.edges:
-        away = shape.distance(edge.sample(ON_EDGE))
-        lengths += away[away > COINCIDENT * shape.size].tolist()
+        part = edge.within(lower - shape.size, upper + shape.size)
+        touching = isinstance(edge, Line) and len(edge_points(shape, edge))
+        if part is not None and not touching:  # how a line goes on beyond the shape does not matter
+            away = shape.distance(part.sample(ON_EDGE))
+            lengths += away[away > COINCIDENT * shape.size].tolist()
     if len(places) > 1:
         lengths.append(float(pdist(np.array(places)).min()))
     return float(min(lengths))

@@ -14,7 +14,7 @@ import numpy as np
 
 from laplace_verify.arrays import Array
 from laplace_verify.errors import FieldError, ProblemError
-from laplace_verify.fields import Cut, Edge, Field, Ring, Singularity
+from laplace_verify.fields import Cut, Edge, Fan, Field, Line, Ring, Singularity
 from laplace_verify.geometry import Shape
 
 __all__ = ["check_axis", "check_singularities", "edge_points", "on_shape"]
@@ -22,6 +22,7 @@ __all__ = ["check_axis", "check_singularities", "edge_points", "on_shape"]
 ON_BOUNDARY = 1e-9  # of the shape's size
 ALONG = 33  # points at which an edge is looked at
 SHORTEST = 1e-4  # of the shape's size: intervals of a cut that are not halved further
+SMALLEST = 5e-3  # the same for patches of a plane across which a field of space jumps
 
 
 def on_shape(shape: Shape, field: Field) -> tuple[Singularity, ...]:
@@ -29,9 +30,10 @@ def on_shape(shape: Shape, field: Field) -> tuple[Singularity, ...]:
     return tuple(s for s in field.singularities if shape.contains(np.array([s.point]), tol=ON_BOUNDARY).all())
 
 
-def edge_points(shape: Shape, edge: Edge | Ring, count: int = ALONG) -> Array:
+def edge_points(shape: Shape, edge: Edge | Line | Ring, count: int = ALONG) -> Array:
     """Return those of evenly spaced points (n, 3) of an edge that lie in the closed shape."""
-    points = edge.sample(count)
+    part = edge.within(*shape.bounding_box)
+    points = part.sample(count) if part is not None else np.zeros((0, 3))
     inside: Array = points[shape.contains(points, tol=ON_BOUNDARY)]
     return inside
 
@@ -60,9 +62,17 @@ def check_singularities(shape: Shape, field: Field, meeting: tuple[float, ...] |
         along = edge_points(shape, edge)
         within = along[shape.distance(along) > ON_BOUNDARY * shape.size] if len(along) else along
         if len(within):
+            what = "is singular" if edge.exponent > 0.0 else "jumps"
             raise ProblemError(
-                f"{field.formula} is no solution in {shape!r}: it jumps along an edge inside, for example at "
+                f"{field.formula} is no solution in {shape!r}: it {what} along an edge inside, as at "
                 f"{tuple(within[0].tolist())}; the edge must lie on the boundary or outside"
+            )
+    for sheet in field.sheets:
+        crossing = _fan_inside(shape, sheet) if isinstance(sheet, Fan) else None
+        if crossing is not None:
+            raise ProblemError(
+                f"{field.formula} is no solution in {shape!r}: it jumps across a plane inside, as at "
+                f"{crossing}; turn its branch cut away"
             )
     for cut in field.cuts:
         crossing = _point_inside(shape, cut)
@@ -119,4 +129,29 @@ def _point_inside(shape: Shape, cut: Cut) -> tuple[float, ...] | None:
         again = (distance < half) & (half > SHORTEST * shape.size / 2.0)
         low, middle, high = low[again], middle[again], high[again]
         low, high = np.concatenate([low, middle]), np.concatenate([middle, high])
+    return None
+
+
+def _fan_inside(shape: Shape, fan: Fan) -> tuple[float, ...] | None:
+    """Return a point of the plane sector strictly inside the shape, None if there is none.
+
+    As along cuts: a patch whose middle lies outside, farther from the boundary than the patch reaches, lies
+    outside; other patches are cut in four.
+    """
+    lower, upper = shape.bounding_box
+    start = np.array(fan.start)
+    reach = float(np.sqrt((np.maximum(np.abs(start - lower), np.abs(start - upper)) ** 2).sum()))
+    edges, turns = np.linspace(0.0, reach, 17), np.linspace(0.0, fan.opening, 17)
+    s, t = (grid.ravel() for grid in np.meshgrid(edges[1:] - reach / 32.0, turns[1:] - fan.opening / 32.0))
+    step, turn = reach / 32.0, fan.opening / 32.0
+    while len(s):
+        points = fan.at(s, t)
+        within, distance = shape.contains(points), shape.distance(points)
+        inside = within & (distance > ON_BOUNDARY * shape.size)
+        if inside.any():
+            return tuple(points[int(np.argmax(np.where(inside, distance, -math.inf)))].tolist())
+        again = (distance < step + (s + step) * turn) & (step > SMALLEST * shape.size / 2.0)
+        step, turn = step / 2.0, turn / 2.0
+        s = np.concatenate([s[again] + i * step for i in (-1, 1, -1, 1)])
+        t = np.concatenate([t[again] + j * turn for j in (-1, -1, 1, 1)])
     return None

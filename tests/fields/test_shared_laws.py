@@ -96,6 +96,15 @@ TABLE = {
     "inverted-2d": plane(fields.polynomial(2, "im").inverted((0, 0), 1), ulps=32),
     "inverted-wedge": plane(fields.wedge("2/3").inverted((0, 0), 2)),
     "inverted-3d": space(fields.solid(2, 1).inverted((0, 0.1, 0), "1/2"), ulps=32),
+    "along-z": space(fields.along_z(fields.wedge("2/3"), slope="1/2")),
+    "along-z-polynomial": space(fields.along_z(fields.polynomial(3), 0, 2)),
+    "edge-wave": space(fields.edge_wave("2/3", 3), ulps=16),
+    "edge-wave-cos": space(fields.edge_wave("3/4", "5/2", "cos", "sin", radius=2), ulps=16),
+    "half-edge": space(fields.half_edge("2/3", (1, 1, 1)), lower=(-0.7, -0.6, -0.5), upper=(-0.1, 0.8, 0.9)),
+    "half-edge-x": space(fields.half_edge("3/4", (1, 2, 1), "x", "im"), lower=(-0.7, -0.6, -0.5)),
+    "cone": space(fields.cone("3/4"), ulps=16),
+    "cone-below": space(fields.cone("5/6"), ulps=16, lower=(0.3, 0.2, -0.3), upper=(0.7, 0.8, -0.1)),
+    "cone-neumann": space(fields.cone("1/3", "neumann"), ulps=32),
     "stretched-2d": plane(fields.stretched(fields.exp_trig(2), SHEAR), K=SHEAR),
     "stretched-3d": space(fields.stretched(fields.solid(3, 2), SPATIAL), K=SPATIAL, ulps=16),
     "stretched-wedge": plane(fields.stretched(fields.wedge("2/3"), [[4, 0], [0, 1]]), K=[[4, 0], [0, 1]]),
@@ -204,7 +213,8 @@ def near_singular_points(field):
     for s in field.singularities:
         if s.kind in ("power", "log"):
             angles = rng.uniform(0.1, 3.0, 3)
-            found.extend(np.array(s.point) + 1e-12 * np.column_stack((np.cos(angles), np.sin(angles))))
+            ways = np.column_stack((np.cos(angles), np.sin(angles), np.full(3, 0.4)))
+            found.extend(np.array(s.point) + 1e-12 * ways[:, : field.dim])
     return np.array(found).reshape(-1, field.dim)
 
 

@@ -59,6 +59,18 @@ BAD = [
     (lv.Cylinder, (1, 1, 1), "z1 must exceed z0"),
     (lv.Cylinder, (0, 0, 1), "radius must be > 0"),
     (lv.Cylinder, (1, NAN, 1), "z0 must be finite"),
+    (lv.Prism, (lv.Rectangle((0, 0), (1, 1)), 0, 1), "over a rectangle it is a Box"),
+    (lv.Prism, (lv.LShape(1).renamed(**{"side-1": "top"}), 0, 1), "no side of the base may be called 'top'"),
+    (lv.Prism, (lv.LShape(1), 1, 1), "z1 must exceed z0"),
+    (
+        lv.Prism,
+        (lv.Polygon([(0, 0), (1, 0), (0.75, 0.5), (1, 0), (2, 0), (2, 1), (0, 1.5)]), 0, 1),
+        "must not have a slit",
+    ),
+    (lv.NotchedCube, (0,), "size must be > 0"),
+    (lv.ConeSection, (1, 0), "half_angle must be > 0"),
+    (lv.ConeSection, (1, math.pi), "half_angle must be less than pi"),
+    (lv.ConeSection, (-1, 1), "radius must be > 0"),
 ]
 
 

@@ -77,6 +77,24 @@ def test_edges_of_solids():
         for name in junction.pieces:
             assert shape.pieces[name].contains(junction.points).all()
     assert lv.Ball((0, 0, 0), 1).junctions == ()
+    for shape, count, re_entrant in (
+        (lv.Prism(lv.LShape(2), -1, 1), 6 + 12, 1),
+        (lv.NotchedCube(2), 12 + 3 + 6, 3),
+    ):
+        assert len(shape.junctions) == count
+        openings = [junction.opening for junction in shape.junctions]
+        assert sum(o == pytest.approx(1.5 * math.pi) for o in openings) == re_entrant
+        assert sum(o == pytest.approx(0.5 * math.pi) for o in openings) == count - re_entrant
+        for junction in shape.junctions:
+            for name in junction.pieces:
+                assert shape.pieces[name].contains(junction.points).all()
+
+
+def test_edges_of_a_renamed_solid_bear_the_new_names():
+    block = lv.Prism(lv.LShape(1), 0, 1).renamed(**{"side-1": "wall", "top": "deck"})
+    assert ("deck", "wall") in {junction.pieces for junction in block.junctions}
+    cube = lv.NotchedCube(1).renamed(**{"notch-x": "recess"})
+    assert cube.sharp_vertices[0].pieces == ("recess", "notch-y", "notch-z")
     assert lv.Interval(0, 1).junctions == ()
 
 

@@ -32,7 +32,7 @@ from laplace_verify.solvers.samples.corner_rows import corner_rows
 from laplace_verify.solvers.samples.input_checks import refuse_ill_posed
 from laplace_verify.solvers.samples.levels import level_shift
 from laplace_verify.solvers.samples.linear_systems import conjugate_gradients, direct
-from laplace_verify.solvers.samples.rectilinear import Grid, Patch, axis_balances, grid_on
+from laplace_verify.solvers.samples.rectilinear import Grid, Patch, axis_balances, cells_along, grid_on
 
 __all__ = ["SCHEME", "Equations", "Scheme", "five_point", "five_point_with", "seven_point", "solve_on_grid"]
 
@@ -170,12 +170,11 @@ def solve_on_grid(problem: Problem, n: int, scheme: Scheme = SCHEME) -> Answer:
         mean = np.average(values, weights=grid.node_volumes())
         values = values + level_shift(problem, mean, lambda points: interpolated(grid, values, points))
     lower, upper = problem.shape.bounding_box
-    cells = n if not problem.shape.is_a("l-shape") else 2 * n
     return Answer(
         grid.points,
         values,
         cells=grid.cells_by_name(),
-        h=float(np.max(upper - lower)) / cells,
+        h=float(np.max((upper - lower) / cells_along(problem.shape, n))),
         unknowns=int(np.count_nonzero(~equations.held)),
         fluxes=fluxes(grid, sides, values),
         residual=residual,

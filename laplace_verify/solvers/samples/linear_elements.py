@@ -54,6 +54,7 @@ GAUSS = ((0.5 - 3**-0.5 / 2, 0.5), (0.5 + 3**-0.5 / 2, 0.5))  # place along the 
         "half-disc",
         "half-annulus",
         "confocal-parabolas",
+        "cone-section",
     },
     conditions={"dirichlet", "neumann", "robin"},
     conductivity={"scalar", "tensor"},

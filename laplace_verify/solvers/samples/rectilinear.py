@@ -35,7 +35,7 @@ from laplace_verify.geometry import Boundary, Shape
 from laplace_verify.geometry.meshes import subdivide
 from laplace_verify.problems.coordinates import Coordinates, metric
 
-__all__ = ["Grid", "Patch", "axis_balances", "grid_on"]
+__all__ = ["Grid", "Patch", "axis_balances", "cells_along", "grid_on"]
 
 MESH_FILE_ORDER = {
     1: ("line", [0, 1]),
@@ -182,17 +182,30 @@ def grid_on(
 ) -> Grid:
     """Return the grid with n cells along every side; ends of boundary pieces lie on grid lines.
 
-    An L-shape is three squares of n x n cells each. `lines` are further grid lines wanted, for each axis.
+    An L-shape is three squares of n x n cells each, a cube without an octant seven cubes, see `cells_along`.
+    `lines` are further grid lines wanted, for each axis.
     """
     ends = np.concatenate([*shape.bounding_box, *(piece.ends.ravel() for piece in shape.pieces)])
     ends = ends.reshape(-1, shape.dim)
-    count = 2 * n if shape.is_a("l-shape") else n
-    wanted = lines or [()] * shape.dim
-    axes = tuple(subdivide([*ends[:, a], *wanted[a]], count) for a in range(shape.dim))
+    count, wanted = cells_along(shape, n), lines or [()] * shape.dim
+    inner = [[0.0] if shape.dim == 3 and count[a] > n else [] for a in range(shape.dim)]  # where a notch ends
+    axes = tuple(subdivide([*ends[:, a], *wanted[a], *inner[a]], count[a]) for a in range(shape.dim))
     middles = np.meshgrid(*((axis[1:] + axis[:-1]) / 2 for axis in axes), indexing="ij")
     inside = shape.contains(np.stack([middle.ravel() for middle in middles], axis=1))
     index = np.stack(np.unravel_index(np.flatnonzero(inside), middles[0].shape), axis=1)
     return _with_nodes(axes, index, coordinates)
+
+
+def cells_along(shape: Shape, n: int) -> list[int]:
+    """Return the cells along every axis: 2 n where the shape has a notch from its middle on, else n.
+
+    >>> from laplace_verify.geometry import LShape, Prism
+    >>> cells_along(Prism(LShape(1.0), 0.0, 1.0), 8)
+    [16, 16, 8]
+    """
+    notched = {"l-shape": 2, "prism-l-shape": 2, "notched-cube": 3}
+    axes = max((count for kind, count in notched.items() if shape.is_a(kind)), default=0)
+    return [2 * n if axis < axes else n for axis in range(shape.dim)]
 
 
 def _with_nodes(axes: tuple[Array, ...], index: IntArray, coordinates: Coordinates) -> Grid:
