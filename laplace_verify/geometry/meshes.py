@@ -387,7 +387,6 @@ _BUILDERS: dict[str, Callable[[Shape, int], Mesh]] = {
     "annulus": _from_ring,
     "elliptic-ring": _from_ring,
     "cone-section": _from_sector,
-    "annulus": _from_annulus,
     "half-disc": _from_half_disc,
     "half-annulus": _from_half_annulus,
     "confocal-parabolas": _from_parabolas,

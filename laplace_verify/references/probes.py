@@ -138,7 +138,10 @@ def _meetings(case: Case, shape: Shape, generator: np.random.Generator) -> Itera
         else:
             yield "edge", points[int(generator.integers(len(points)))]
     for edge in case.exact.edges:
-        points = edge.sample(7)[1:-1]
+        part = edge.within(*shape.bounding_box)
+        if part is None:
+            continue
+        points = part.sample(7)[1:-1]
         points = points[shape.contains(points, tol=SAME)]
         if len(points):
             yield "singular edge", points[int(generator.integers(len(points)))]
