@@ -31,7 +31,7 @@ if TYPE_CHECKING:
 __all__ = ["accuracy_remarks", "interpolation_error"]
 
 FACTOR = 10.0
-FELL, STAYED = 0.3, 0.8  # last over first: what has clearly converged, what has not at all
+FELL, STAYED = 0.3, 0.7  # last over first: what has clearly converged, what has not at all
 LEAST = 1e-3  # relative error of a gradient below which a stall is put down to precision
 EXACT = 1e-12  # of max |u|: interpolation that leaves no more is exact
 

@@ -15,11 +15,13 @@ import numpy as np
 from laplace_verify.measure.floors import named_floor
 from laplace_verify.measure.orders import pair_orders
 from laplace_verify.measure.series import MINIMUM_LEVELS, Series, differences
+from laplace_verify.measure.smoothness import is_functional
 from laplace_verify.measure.verdict import Verdict
 
 __all__ = ["Finding", "judge_decrease", "judge_exponential", "stagnation"]
 
 STEEP = 6.0  # a fall to the floor in one step counts as geometric from this local order on
+UNLIKELY = 0.1  # relative error of a functional that no coarse grid meets by chance and keeps
 FLAT = 0.9  # last error over first: nothing was gained
 # Relative errors below it that do not fall look like a tolerance or a precision, not like a wrong limit;
 # gradients take ten times as much, since single precision divided by h comes to that on affordable grids.
@@ -97,6 +99,11 @@ def _geometric(series: Series, n: list[float], errors: list[float], said: str) -
     return Finding(Verdict.INCONCLUSIVE, words, finer=True)
 
 
+def _by_chance(series: Series) -> bool:
+    """Return whether a functional that stays may have been close at first by chance: its errors are small."""
+    return is_functional(series.norm) and min(series.relative) < UNLIKELY
+
+
 def judge_decrease(series: Series) -> Finding:
     """Return the finding where theory promises convergence without a rate: the error must clearly fall.
 
@@ -110,7 +117,7 @@ def judge_decrease(series: Series) -> Finding:
         words = "fewer than four levels can be judged; run finer sizes"
         return Finding(Verdict.INCONCLUSIVE, words, finer=True)
     stuck = stagnation(series)
-    if stuck is not None and min(series.errors) >= FLAT * series.errors[0]:
+    if stuck is not None and min(series.errors) >= FLAT * series.errors[0] and not _by_chance(series):
         return stuck
     first, last = (math.sqrt(a * b) for a, b in (series.errors[:2], series.errors[-2:]))
     if last <= CLEARLY * first and max(series.errors[-2:]) <= min(series.errors[:2]):

@@ -282,3 +282,11 @@ def test_falling_short_by_a_third_in_norms_without_a_theorem_fails_nobody():
         expected = 1.0 if norm == "H1-semi" else 2.0
         orders |= judge(levels_of(h, errors, norm), expect(expected, norm, decides=decides))
     assert combine(orders)[0] is Verdict.PASS
+
+
+def test_a_functional_that_was_close_by_chance_on_the_first_level_is_not_failed_for_staying():
+    # flux through a side that ends in a re-entrant corner, computed from linear elements: relative 1.5 %
+    name = "quantity:flux"
+    verdict, _ = verdict_of(halving(4), [0.0141, 0.0288, 0.0282, 0.0228], "decrease", norm=name)
+    assert verdict is not Verdict.FAIL
+    assert verdict_of(halving(4), [0.5, 0.51, 0.52, 0.52], "decrease", norm=name)[0] is Verdict.FAIL
