@@ -216,9 +216,8 @@ def test_mean_settlement_of_rectangles(ratio, printed, value):
     assert found == pytest.approx(printed, abs=5e-3)
 
 
-def added_mass(axes, axis):
+def added_mass(axes, axis, far=1e4):
     """Added mass over displaced mass, from the dipole (1 + k) volume/(4 pi) that is seen far away."""
-    far = 1e4
     place = {"z": (0, 0, far), "x": (far, 0, 0)}[axis]
     with mpmath.workdps(40):
         flow = fields.spheroid_flow(axis, axes)
@@ -239,12 +238,30 @@ def added_mass(axes, axis):
         ("6.97", "z", 0.036, 0.03608290068), ("8.01", "z", 0.029, 0.02919681566),
         ("9.02", "z", 0.024, 0.02431300264), ("9.97", "z", 0.021, 0.02080343867),
         ("1.5", "x", 0.621, 0.6220844089), ("2", "x", 0.702, 0.7042104259),
+        ("2.99", "x", 0.803, 0.8031747104), ("3.99", "x", 0.860, 0.8593305513),
+        ("4.99", "x", 0.895, 0.8939838511),
     ],
 )  # fmt: skip
 def test_added_mass_of_prolate_spheroids(ratio, axis, printed, value):
     found = added_mass((1, ratio), axis)
     assert found == pytest.approx(value, abs=1e-6)  # the next term far away is (c/far)^2 = 1e-6 of the dipole
     assert found == pytest.approx(printed, abs=2.5e-3)
+
+
+# Osborn 1945; Stoner 1945: demagnetising factors along the axis of prolate spheroids, N = k/(1 + k) with the
+# added mass k end-on, because both are the same integral over the body (Landau & Lifshitz vol. 8, section 4)
+@pytest.mark.parametrize(
+    ("ratio", "printed", "value"),
+    [
+        ("2", "0.1736", 0.173563997533964), ("5", "0.0558", 0.0558209698024552),
+        ("10", "0.0203", 0.0202858803015638), ("20", "0.00675", 0.00674905475460911),
+        ("50", "0.00144", 0.00144297377407575),
+    ],
+)  # fmt: skip
+def test_demagnetising_factors_of_prolate_spheroids(ratio, printed, value):
+    k = added_mass((1, ratio), "z", far=1e8)  # 40 digits less 24; the next term far away is below 1e-12
+    assert k / (1 + k) == pytest.approx(value, rel=1e-9)
+    assert k / (1 + k) == pytest.approx(float(printed), abs=0.51 * 10.0 ** (2 - len(printed)))
 
 
 # Newman 1977, table 4.3: a disc broadside has the added mass 8/3 rho a^3
