@@ -18,7 +18,6 @@ from laplace_verify.geometry import (
     EllipticRing,
     Exterior,
     HalfSpace,
-    Polygon,
     Rectangle,
     Screen,
     Strip,
@@ -28,11 +27,9 @@ from laplace_verify.problems import energy_of_solution, flux_through, robin, val
 __all__ = ["family"]
 
 family = Family()
-SQUARE = math.gamma(0.25) ** 2 / (4 * math.pi**1.5)  # logarithmic capacity of the unit square
 LAMB = "flow past a cylinder: Lamb 1932, Hydrodynamics, 6th ed., art. 68"
 MAP = "Joukowski's map: Milne-Thomson 1968, Theoretical Hydrodynamics, 5th ed., ch. VI"
 CAPACITY = "logarithmic capacity: Ransford 1995, Potential Theory in the Complex Plane, table 5.1"
-SCHWARZ = "Schwarz-Christoffel map of the exterior: Nehari 1952, Conformal Mapping, ch. V"
 MULTIPOLES = "exterior multipoles: Kellogg 1929, Foundations of Potential Theory, ch. V"
 MIDDLE = ("1/5", "-1/10")
 
@@ -164,6 +161,44 @@ def _ellipse_of_unit_capacity() -> Definition:
 
 
 @family
+def _pile_with_circulation() -> Definition:
+    return Definition(
+        title="Stream function of a turning flow past a pile, a film on its face",
+        solution="Im F(w), F = 1/2 (conj(V) w + V/w) - i G/(2 pi) log w, V = 4/5 - i/5, G = -5/4, "
+        "w = 2 (z + 3/10 - i/10)",
+        reading="The stream past a turning pile; its face leaks in proportion to what it feels.",
+        shape=Exterior(Disc((-0.3, 0.1), 0.5)),
+        field=fields.flow_past(
+            ("1/2", "1/2"), ("4/5", "-1/5"), "-5/4", part="stream", centre=("-3/10", "1/10")
+        ),
+        conditions={"rim": robin(1.5)},
+        at_infinity=("flow", (0.2, 0.8), -1.25),
+        window=Annulus((-0.3, 0.1), 0.5, 1.8),
+        quantities={"circulation": flux_through("rim", exact=-1.25)},
+        sources=(LAMB,),
+    )
+
+
+@family
+def _hull_with_breathing_skin() -> Definition:
+    return Definition(
+        title="Outside a hull whose skin takes in and gives off, fading away",
+        solution="Re w^-1 + 1/2 Im w^-2, |w| = 1 on the ellipse",
+        note="The flux is given all round; that u fades fixes its level.",
+        reading="Still water around a hull with intakes and outlets.",
+        shape=Exterior(Ellipse((0.3, -0.2), (1.5, 0.9))),
+        field=fields.elliptic_multipole(1, semi_axes=("3/2", "9/10"), centre=("3/10", "-1/5"))
+        + fields.elliptic_multipole(2, "im", semi_axes=("3/2", "9/10"), centre=("3/10", "-1/5")) * "1/2",
+        conditions={"rim": "neumann"},
+        conductivity=0.7,
+        at_infinity="decay",
+        window=EllipticRing((0.3, -0.2), (1.5, 0.9), (3.0, 2.4)),
+        quantities={"energy": energy_of_solution(exact=1.05 * math.pi)},
+        sources=(MAP, HERE),
+    )
+
+
+@family
 def _charged_screen() -> Definition:
     return Definition(
         title="Charged open screen",
@@ -201,98 +236,40 @@ def _stream_across_screen() -> Definition:
 
 
 @family
-def _square_caisson_outside() -> Definition:
+def _screen_fading_disturbance() -> Definition:
     return Definition(
-        title="Outside a square caisson, charged and drained",
-        solution="2 log |x - p| + (y - 1/5)/|x - p|^2, p = (1/10, 1/5)",
-        note="The corners open 3 pi/2 into the water; this solution is smooth there.",
-        reading="Seepage towards a square caisson that is pumped through one wall.",
-        shape=Exterior(Rectangle((-0.6, -0.6), (0.6, 0.6))),
-        field=fields.log_source(("1/10", "1/5"), 2) + fields.dipole(("1/10", "1/5"), (0, 1)),
-        conditions={"left": "neumann", "top": robin(1.5)},
-        conductivity=1.1,
-        at_infinity=("log", 2.0),
-        window=_around_square((0.0, 0.0), 0.6, 1.6),
-        quantities={"flux into the left wall": flux_through("left")},
-        sources=(MULTIPOLES, HERE),
-    )
-
-
-@family
-def _square_footing_losing_heat() -> Definition:
-    flow = 0.9 * 1.5 * math.pi / 2
-    return Definition(
-        title="Outside a square footing with a given charge",
-        solution="1 - 3/2 log |w|, w the map of the exterior onto |w| > 1",
-        note="The capacity of a square is 0.59017 sides. The flux is infinite at the corners, like r^(-1/3).",
-        reading="A square footing kept at one temperature; its heat loss is metered.",
-        shape=Exterior(Rectangle((-0.625, -0.625), (0.625, 0.625))),
-        field=fields.square_multipole(0, side="5/4") * "-3/2" + fields.affine((0, 0), 1),
-        conductivity=0.9,
-        at_infinity=("log", -1.5),
-        window=_around_square((0.0, 0.0), 0.625, 1.75),
-        quantities={
-            f"flux into the {side} side": flux_through(side, exact=flow)
-            for side in ("left", "right", "bottom", "top")
-        },
-        sources=(CAPACITY, SCHWARZ),
-        reference_points=(("1", "0.5"), ("0.75", "0.75"), ("0", "-1.5")),
-    )
-
-
-@family
-def _square_pier_disturbance() -> Definition:
-    return Definition(
-        title="Outside a square pier, two multipoles",
-        solution="Re w^-2 + 1/2 Im w^-3, w the map of the exterior onto |w| > 1",
-        note="Boundary values and solution behave like r^(2/3) at the corners.",
-        reading="Disturbance of a still pool by the skin of a square pier, fading away from it.",
-        shape=Exterior(Rectangle((-0.75, -1.5), (1.25, 0.5))),
-        field=fields.square_multipole(2, side=2, centre=("1/4", "-1/2"))
-        + fields.square_multipole(3, "im", side=2, centre=("1/4", "-1/2")) * "1/2",
-        conductivity=1.4,
+        title="Outside an upright screen, two multipoles",
+        solution="Re w^-1 + 2/3 Im w^-2, |w| = 1 on the screen",
+        note="The values on the two sides differ; u ~ sqrt(r) at the tips.",
+        reading="Still water around an upright baffle whose two faces are held at different levels.",
+        shape=Exterior(Screen((0.25, -0.5), (0.25, 1.0))),
+        field=fields.elliptic_multipole(1, semi_axes=(0, "3/4"), centre=("1/4", "1/4"))
+        + fields.elliptic_multipole(2, "im", semi_axes=(0, "3/4"), centre=("1/4", "1/4")) * "2/3",
+        conductivity=1.2,
         at_infinity="decay",
-        window=_around_square((0.25, -0.5), 1.0, 2.5),
-        quantities={"energy": energy_of_solution(exact=1.4 * math.pi * 2.75)},
-        sources=(SCHWARZ, HERE),
-        reference_points=(("1.5", "0"), ("1.26", "0.51"), ("0.25", "-2.5")),
+        window=EllipticRing((0.25, 0.25), (0.0, 0.75), (1.25, 1.75)),
+        quantities={
+            "flux into the front": flux_through("front", exact="-12/5"),
+            "flux into the back": flux_through("back", exact="12/5"),
+        },
+        sources=(MAP, HERE),
     )
 
 
 @family
-def _stream_turning_about_square_pier() -> Definition:
+def _stream_turning_about_screen() -> Definition:
     return Definition(
-        title="Stream function of a turning flow past a square pier",
-        solution="Im F(w), F = c (conj(V) w + V/w) - i G/(2 pi) log w, V = 1 + i/2, G = 3/2, c = 0.73771",
-        note="The stream function is 0 on the pier and behaves like r^(2/3) at its corners.",
-        reading="The stream passes a square pier between two unequal gates, which make it turn.",
-        shape=Exterior(Rectangle((-0.625, -0.625), (0.625, 0.625))),
-        field=fields.flow_past_square("5/4", (1, "1/2"), "3/2", part="stream"),
-        at_infinity=("flow", (-0.5, 1.0), 1.5),
-        window=_around_square((0.0, 0.0), 0.625, 1.75),
-        quantities={"value off a corner": value_at((-1.0, 1.0))},
-        sources=(SCHWARZ, MAP),
-        reference_points=(("0.7", "0.7"), ("0", "1.5"), ("-1.5", "0.25")),
-    )
-
-
-@family
-def _square_pier_in_tidal_stream() -> Definition:
-    return Definition(
-        title="Potential flow past a square pier",
-        solution="Re (c (conj(V) w + V/w)), V = 1 + i/4, c = 1.18034",
-        note="No flow passes the sides; the speed at the corners is infinite, like r^(-1/3). The added mass "
-        "is 4.754 times density times the square of half the side.",
-        reading="Tidal stream past a square pier of the jetty.",
-        shape=Exterior(Rectangle((-1.0, -0.5), (1.0, 1.5))),
-        field=fields.flow_past_square(2, (1, "1/4"), centre=(0, "1/2")),
-        conditions=dict.fromkeys(("left", "right", "bottom", "top"), "neumann"),
-        conductivity=0.8,
-        at_infinity=("flow", (1.0, 0.25), 0.0),
-        window=_around_square((0.0, 0.5), 1.0, 2.5),
-        quantities={"value at the middle of the front": value_at((-1.0, 0.5), exact=-4 * SQUARE)},
-        sources=(SCHWARZ, MAP),
-        reference_points=(("1.01", "1.51"), ("0", "2"), ("-2", "0.25")),
+        title="Stream function of a turning flow past an open screen",
+        solution="Im F(w), F = 3/8 (conj(V) w + V/w) - i G/(2 pi) log w, V = 1/2 + i, G = 2, "
+        "z = 3/8 (w + 1/w)",
+        note="The stream function is 0 on the screen and behaves like sqrt(r) at its tips.",
+        reading="A stream that turns about a flat fender.",
+        shape=Exterior(Screen((-0.75, 0.0), (0.75, 0.0))),
+        field=fields.flow_past(("3/4", 0), ("1/2", 1), 2, part="stream"),
+        at_infinity=("flow", (-1.0, 0.5), 2.0),
+        window=EllipticRing((0.0, 0.0), (0.75, 0.0), (1.75, 1.5)),
+        quantities={"value above the middle": value_at((0.0, 1.0))},
+        sources=(MAP,),
     )
 
 
@@ -328,10 +305,3 @@ def _channel_between_drains() -> Definition:
         quantities={"value between the drains": value_at((0.0, 0.4), exact=0)},
         sources=(MULTIPOLES,),
     )
-
-
-def _around_square(centre: tuple[float, float], half: float, reach: float) -> Polygon:
-    """Return the square of half side `reach` without the one of half side `half`."""
-    (x, y), signs = centre, ((-1, -1), (1, -1), (1, 1), (-1, 1))
-    outer, hole = ([(x + p * r, y + q * r) for p, q in signs] for r in (reach, half))
-    return Polygon(outer, holes=[hole])

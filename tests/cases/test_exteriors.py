@@ -5,11 +5,11 @@ import math
 import pytest
 
 import laplace_verify as lv
-from laplace_verify.cases import exteriors, exteriors_space
+from laplace_verify.cases import exteriors, exteriors_space, exteriors_squares
 from laplace_verify.cases.describe import describe
 from laplace_verify.solvers.samples import fundamental_solutions
 
-PLANE, SPACE = list(exteriors.family), list(exteriors_space.family)
+PLANE, SPACE = [*exteriors.family, *exteriors_squares.family], list(exteriors_space.family)
 DOABLE = [i for i in PLANE if fundamental_solutions.refuses(lv.catalogue[i].problem) is None]
 SQUARE = math.gamma(0.25) ** 2 / (4 * math.pi**1.5)  # capacity of the unit square (Landkof 1972, memory)
 
@@ -66,7 +66,7 @@ def test_every_behaviour_at_infinity_occurs():
 
 
 def test_the_sample_solver_does_discs_and_ellipses():
-    assert len(DOABLE) == 7
+    assert len(DOABLE) == 9
 
 
 @pytest.mark.parametrize("id_", DOABLE)
