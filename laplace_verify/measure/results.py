@@ -41,7 +41,8 @@ class Level:
     that could not be measured is absent. `moves` maps a piece to the largest distance by which data points
     were moved onto it, `left_out` is the share of the sample points outside the solver's mesh, `coverage` is
     there where the answer states standard errors, `residual` is the final residual the solver reports,
-    `interpolation` the L2 error of interpolating the exact solution on the same mesh.
+    `interpolation` the L2 error of interpolating the exact solution on the same mesh,
+    `nodal` the largest error at the solver's own points over the largest |u|.
     """
 
     size: int
@@ -57,6 +58,7 @@ class Level:
     coverage: Coverage | None = None
     residual: float | None = None
     interpolation: float | None = None
+    nodal: float | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

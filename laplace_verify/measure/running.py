@@ -13,6 +13,7 @@ from laplace_verify.measure.accuracy import interpolation_error
 from laplace_verify.measure.coverage import coverage_of
 from laplace_verify.measure.criteria import LEVEL
 from laplace_verify.measure.exact import Exact
+from laplace_verify.measure.exactness import nodal_error
 from laplace_verify.measure.functionals import ExactFluxes, Functionals, measure_functionals
 from laplace_verify.measure.norms import Measured, Sample, measure_norms, sample_answer, sharpened
 from laplace_verify.measure.places import error_map, local_errors
@@ -89,6 +90,7 @@ class Runner:
             judged=judged, note=note, moves=dict(log.largest), left_out=measured.left_out,
             coverage=coverage_of(answer, self.exact, measured),
             residual=answer.residual, interpolation=interpolation_error(answer, self.exact),
+            nodal=nodal_error(answer, self.exact, measured),
         )  # fmt: skip
         return LevelResult(
             level=level,

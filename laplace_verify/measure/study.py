@@ -14,6 +14,7 @@ from laplace_verify.errors import AdapterError, history
 from laplace_verify.measure.accuracy import accuracy_remarks
 from laplace_verify.measure.coverage import judge_coverage
 from laplace_verify.measure.criteria import expectations, for_computed, smoothness_of
+from laplace_verify.measure.exactness import exactness_faults
 from laplace_verify.measure.expected import Expectation
 from laplace_verify.measure.features import features
 from laplace_verify.measure.judge import combine, judge
@@ -187,6 +188,7 @@ class _Run:
         verdict, reasons, remarks = combine(orders)
         found = oddities(self.levels, self.case.dim, self.solver.kind), judge_coverage(self.levels)
         faults, odd = (a + b for a, b in zip(*found, strict=True))
+        faults += exactness_faults(self.solver, self.case, self.levels)
         if faults:
             verdict, reasons = Verdict.FAIL, [*reasons, *faults]
         remarks += accuracy_remarks(self.levels, smoothness_of(self.case))

@@ -307,6 +307,7 @@ def fluxes(grid: Grid, sides: list[Side], values: Array) -> dict[str, float]:
     conductivity={"scalar", "tensor", "regions"},
     coordinates={"cartesian", "axisymmetric", "radial-cylinder", "radial-sphere"},
     error_floor=1e-11,
+    reproduces_degree=1,
     checks_well_posedness=True,
 )
 def five_point(problem: Problem, n: int) -> Answer:
@@ -327,6 +328,7 @@ def five_point(problem: Problem, n: int) -> Answer:
     conditions={"dirichlet", "neumann", "robin"},
     conductivity={"scalar", "tensor"},
     error_floor=1e-10,
+    reproduces_degree=1,
     checks_well_posedness=True,
 )
 def seven_point(problem: Problem, n: int) -> Answer:

@@ -60,6 +60,7 @@ GAUSS = ((0.5 - 3**-0.5 / 2, 0.5), (0.5 + 3**-0.5 / 2, 0.5))  # place along the 
     conductivity={"scalar", "tensor"},
     coordinates={"cartesian", "axisymmetric"},
     error_floor=1e-11,
+    reproduces_degree=1,
 )
 def p1_element(problem: Problem, n: int) -> Answer:
     """Solve on a triangulation with n cells along every side."""
