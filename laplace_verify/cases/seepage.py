@@ -67,8 +67,8 @@ def _dam_on_permeable_layer() -> Definition:
         "pi/2; u - 1/2 is odd in x",
         note=f"u = 1 on the bed upstream, 0 downstream; the base |x| < 1 and the bottom are tight. {CAUTION}",
         reading="Seepage under a gravity dam of the tidal power station; its base carries the uplift.",
-        shape=Rectangle((-2.5, -1.0), (2.5, 0.0))
-        .split(top=[0.3, 0.7])
+        shape=Rectangle((-2.0, -1.0), (2.0, 0.0))
+        .split(top=[0.25, 0.75])
         .renamed(left="upstream", right="downstream"),
         field=head,
         conditions={"bottom": "neumann", "top-2": "neumann"},
@@ -81,7 +81,7 @@ def _dam_on_permeable_layer() -> Definition:
         },
         tags=("seepage",),
         sources=(HARR, RUSSIAN),
-        reference_points=(("0.5", "-0.5"), ("-1.000001", "-0.000001"), ("2.5", "-0.25")),
+        reference_points=(("0.5", "-0.5"), ("-1.000001", "-0.000001"), ("2", "-0.25")),
     )
 
 

@@ -60,7 +60,7 @@ def _free_surface_without_flux() -> Definition:
         solution=f"{SOLUTION}, a = 4/5",
         note="No flux through the free surface, on which the head must come out as the elevation; u = 0 on "
         f"the drain, 1.44 upstream. {CAUTION}",
-        reading="The same check the other way round: the water table found must lie where it was prescribed.",
+        reading="A levee on a blanket drain, its water table prescribed: the head computed must lie on it.",
         **_drained(0.64, 0.81, "4/5"),
         conditions={"ground": "neumann", "free-surface": "neumann"},
         conductivity=1.25,

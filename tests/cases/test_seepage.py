@@ -31,7 +31,7 @@ def test_dam_in_metres_and_seconds(twin):
     assert gradient == pytest.approx(-float(twin.exact.gradient_at((18, 0), 20)[1]), rel=1e-12)
     assert unit == ""
     shape = twin.problem.shape
-    assert (shape.lower, shape.upper) == ((-30.0, -12.0), (30.0, 0.0))
+    assert (shape.lower, shape.upper) == ((-24.0, -12.0), (24.0, 0.0))
     upstream = twin.problem.pieces["top-1"]
     assert (upstream.data(upstream.sample(5)[0]) == DROP).all()
 
