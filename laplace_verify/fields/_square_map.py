@@ -33,17 +33,20 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable
+from fractions import Fraction
 from functools import lru_cache
 from typing import Any, NamedTuple
 
 import numpy as np
 
 from laplace_verify.contexts import FLOAT, Precise
+from laplace_verify.fields.exact import power
 from laplace_verify.fields.polylog import accuracy, horner
 
 __all__ = ["octant", "unit_capacity"]
 
-NEAR = 1.2  # half sides: up to this distance from the corner its own series is summed
+FAR = 1.6  # half sides: from this distance on the series about infinity is summed, which loses no digits
+NEAR = math.hypot(FAR - 1, 1)  # the largest distance from the corner at which its own series is summed
 SMALLEST = 2.0**-20  # ratio below which points are not told apart
 SOURCE = 40  # digits of the coefficients that float64 uses
 
@@ -70,10 +73,10 @@ def octant(ctx: Any, place: tuple[Any, Any], beyond: tuple[Any, Any]) -> tuple[A
         Coordinates, and those of the offset from the corner 1 + i.
     """
     if ctx is not FLOAT:
-        close = ctx.hypot(*beyond) <= NEAR
+        close = ctx.hypot(*place) < FAR
         return _by_corner(ctx, *beyond) if close else _far_out(ctx, *place)
     w, s = (np.empty(place[0].shape, dtype=np.complex128) for _ in range(2))
-    close = np.hypot(*beyond) <= NEAR
+    close = np.hypot(*place) < FAR
     for here, function, given in ((close, _by_corner, beyond), (~close, _far_out, place)):
         if here.any():
             w[here], s[here] = function(ctx, given[0][here], given[1][here])
@@ -83,7 +86,7 @@ def octant(ctx: Any, place: tuple[Any, Any], beyond: tuple[Any, Any]) -> tuple[A
 def _by_corner(ctx: Any, dx: Any, dy: Any) -> tuple[Any, Any]:
     """Return w and s by the series about the corner."""
     c, r = unit_capacity(ctx), ctx.hypot(dx, dy)
-    ratio = (r / 2) ** (ctx.number("2/3"))  # |q| over the radius of convergence
+    ratio = power(ctx, r / 2, Fraction(2, 3))  # |q| over the radius of convergence
     angle = (ctx.atan2(dy, dx) - ctx.pi / 4) * 2 / 3
     q = _complex(ctx, ratio * ctx.cos(angle), ratio * ctx.sin(angle))
     t = q * CORNER.summed(ctx, q, ratio)
@@ -194,4 +197,4 @@ def _next_of_power(ctx: Any, base: list[Any], power: list[Any], exponent: Any) -
 
 
 CORNER = Series(_corner_coefficients, (NEAR / 2) ** (2 / 3), 138.0)
-INFINITY = Series(_infinity_coefficients, 4 / (1 + math.sqrt((NEAR - 1) * (NEAR + 1))) ** 4, 1.2)
+INFINITY = Series(_infinity_coefficients, 4 / FAR**4, 1.2)

@@ -7,21 +7,13 @@ themselves.
 
 from __future__ import annotations
 
-from fractions import Fraction
 from typing import Any
 
 from laplace_verify.contexts import FLOAT
+from laplace_verify.fields._two_floats import product_loss, two_floats
 from laplace_verify.fields.exact import Exact, rational
 
-__all__ = ["rim_gap", "two_floats"]
-
-SPLITTER = 2.0**27 + 1.0
-
-
-def two_floats(number: Fraction) -> tuple[float, float]:
-    """Return the nearest float64 and the rest."""
-    high = float(number)
-    return high, float(number - Fraction(high))
+__all__ = ["rim_gap"]
 
 
 def rim_gap(ctx: Any, x: Any, y: Any, radius: Exact) -> tuple[Any, Any]:
@@ -51,7 +43,4 @@ def _larger_first(a: Any, b: Any) -> tuple[Any, Any]:
 def _square(x: Any) -> tuple[Any, Any]:
     """Return x^2 as a sum of two floats, exactly."""
     product = x * x
-    upper = SPLITTER * x
-    upper = upper - (upper - x)
-    lower = x - upper
-    return product, ((upper * upper - product) + 2.0 * upper * lower) + lower * lower
+    return product, product_loss(x, x, product)

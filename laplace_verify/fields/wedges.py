@@ -22,6 +22,7 @@ from laplace_verify.fields.base import Field
 from laplace_verify.fields.combinations import combined
 from laplace_verify.fields.exact import Exact, exact, exact_point, offset, power, rational, show
 from laplace_verify.fields.motions import show_point
+from laplace_verify.fields.polynomials import Polynomial
 from laplace_verify.fields.singular import Cut, Singularity
 from laplace_verify.fields.specs import registered
 
@@ -157,13 +158,21 @@ class Wedge(Field):
             turns = ctx.where(lip, floor((end - theta) / (2 * ctx.pi) + 0.5), turns)
         return r, theta + 2 * ctx.pi * turns
 
+    def _polynomial(self, degree: int) -> Polynomial:
+        """Return u for a whole alpha > 0: the rounding of alpha theta would cost alpha pi/2 units."""
+        return Polynomial(degree=degree, part="im" if self.part == "sin" else "re", centre=self.apex)
+
     def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:
+        if self.degree is not None:
+            return self._polynomial(self.degree)._value(ctx, x, side)
         r, theta = self._polar(ctx, x, side)
         alpha = ctx.number(self.alpha)
         return r**alpha * (ctx.sin(alpha * theta) if self.part == "sin" else ctx.cos(alpha * theta))
 
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:
         """Return the parts of f' = alpha z^{alpha - 1}: u_x = Re f', u_y = -Im f' for u = Re f."""
+        if self.degree is not None:
+            return self._polynomial(self.degree)._gradient(ctx, x, side)
         r, theta = self._polar(ctx, x, side)
         less = rational(self.alpha) - 1
         size = ctx.number(self.alpha) * power(ctx, r, less)
