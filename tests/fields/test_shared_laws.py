@@ -31,7 +31,7 @@ class Row:
     upper: tuple
     K: tuple | None = None
     curved: bool = True  # False: affine, second derivatives are zero
-    near: bool = True  # False: the singular point is no float64 point, nothing is exact 1e-12 from it
+    near: bool = True  # False: 1e-12 from the singular point the field is not defined, or no float64 is exact
 
 
 def plane(field, lower=(0.2, 0.15), upper=(1.0, 0.9), K=None, curved=True, near=True):
@@ -116,6 +116,16 @@ TABLE = {
     ),
     "checkerboard": plane(fields.checkerboard("1/4"), lower=(-1, -1), upper=(1, 1)),
     "quarter-wave": plane(fields.checkerboard("3/2", ("1/4", 0)).restricted("second"), lower=(-1, 0.01)),
+    "rectangle-exponential": plane(
+        fields.rectangle_series((0, 0), (1.25, 1), fields.exponential(1), "insulated"), near=False
+    ),
+    "rectangle-sides": plane(
+        fields.rectangle_sides((0, 0), (1.25, 1), left=1, bottom=fields.ramp(1, 2), top=fields.tent()),
+        near=False,
+    ),
+    "rectangle-convection": plane(
+        fields.rectangle_convection((0, 0), (1.25, 1), fields.step("1/3", 1, 2), 4), near=False
+    ),
     "nested": plane(
         (2 * (fields.wedge("2/3") + fields.polynomial(1)).rotated(0.2).shifted((0, "0.1"))).scaled(3) * "1/3",
         near=False,
@@ -242,7 +252,8 @@ def test_digits_asked_for_are_correct(row):
         assert abs(few - many) <= mpmath.mpf(10) ** -25 * abs(many)
         value, radius, basis = row.field.enclosure(point, 25)
         assert abs(value - many) <= radius <= mpmath.mpf(10) ** -24 * abs(many)
-        assert basis == ("uncertified" if isinstance(row.field, fields.user.UserField) else "closed form")
+        assert basis == row.field.basis
+        assert (basis == "uncertified") == isinstance(row.field, fields.user.UserField)
 
 
 PLAIN = {name: row for name, row in TABLE.items() if not name.startswith("callable")}
