@@ -20,7 +20,7 @@ def add_cases(commands: Any) -> None:
     parser.add_argument(
         "--condition",
         action="append",
-        choices=("dirichlet", "neumann", "robin"),
+        choices=("dirichlet", "neumann", "robin", "periodic"),
         help="only cases that use this condition; may be repeated",
     )
     parser.add_argument(

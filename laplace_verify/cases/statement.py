@@ -172,6 +172,8 @@ def given_in_words(condition: Condition) -> str:
     >>> given_in_words(robin(-0.5, "x - y"))
     'n . K grad u - 0.5 u = x - y'
     """
+    if condition.kind == "periodic":
+        return "u and its flux periodic"
     data, alpha = condition.data, condition.alpha
     given = " given" if data is None else f" = {_right_side(data)}"
     if condition.kind == "dirichlet":

@@ -39,7 +39,7 @@ def derived_tags(case: Case) -> frozenset[str]:
         "smooth": smooth,
         "singular": not smooth,
         "jump": len(regularity.jumps) > 0,
-        "mixed": len(kinds) > 1,
+        "mixed": len(kinds - {"periodic"}) > 1,
         "pure-neumann": case.problem.constant is not None,
         "axisymmetric": case.problem.coordinates == "axisymmetric",
         "radial": case.problem.coordinates in ("radial-cylinder", "radial-sphere"),

@@ -68,7 +68,7 @@ def _pieces(quantity: Quantity, case: Case) -> list[Boundary]:
     if quantity.kind == "discharge":
         return [section("", where, case.problem.shape)]
     if where is None:
-        return [piece.boundary for piece in pieces if piece.kind != "axis"]
+        return [piece.boundary for piece in pieces if piece.has_data]
     return [pieces[str(where[0] if isinstance(where, tuple) else where)].boundary]
 
 

@@ -30,7 +30,7 @@ def norms_of(case: Case) -> list[str]:
     """Return every norm that may be measured on a case."""
     names = list(INTERIOR)
     for head in ("trace", "flux", "fluxdensity"):
-        names += [f"{head}:{piece.name}" for piece in case.problem.pieces if piece.kind != "axis"]
+        names += [f"{head}:{piece.name}" for piece in case.problem.pieces if piece.has_data]
     names += [f"quantity:{name}" for name in case.quantities]
     if case.problem.constant is not None:
         names.append(LEVEL)

@@ -27,7 +27,7 @@ def features(case: Case, exact: Exact) -> dict[str, Feature]:
     """Return name -> True, False, a number or a word."""
     problem, shape, regularity = case.problem, case.problem.shape, case.regularity
     kinds = {piece.name: piece.kind for piece in problem.pieces}
-    used = set(kinds.values()) - {"axis"}
+    used = set(kinds.values()) - {"axis", "periodic"}
     smooth = math.isinf(regularity.solution)
     lower, upper = shape.bounding_box
     tensor = isinstance(problem.conductivity, np.ndarray)
@@ -37,6 +37,7 @@ def features(case: Case, exact: Exact) -> dict[str, Feature]:
         "Dirichlet condition": "dirichlet" in kinds.values(),
         "Neumann condition": "neumann" in kinds.values(),
         "Robin condition": "robin" in kinds.values(),
+        "periodic pieces": "periodic" in kinds.values(),
         "only Dirichlet conditions": used == {"dirichlet"},
         "pure Neumann problem": problem.constant is not None,
         "several kinds of condition": len(used) > 1,
@@ -89,7 +90,7 @@ def _data_features(case: Case, exact: Exact) -> dict[str, Feature]:
     """Return what Neumann and Robin data do on their pieces."""
     flowing, bending, scaled = False, False, False
     for piece in case.problem.pieces:
-        if piece.kind in ("dirichlet", "axis"):
+        if piece.kind == "dirichlet" or not piece.has_data:
             continue
         points, normals, _ = piece.sample(SAMPLED)
         if piece.kind == "neumann":

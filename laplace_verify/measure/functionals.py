@@ -104,11 +104,11 @@ def measure_functionals(
     shift, scale = measured.shift, measured.scale
     result = Functionals()
     for piece in case.problem.pieces:
-        if piece.kind == "axis":
+        if not piece.has_data:
             continue  # no boundary of space
         _trace(result, piece, answer, case, exact, h, shift)
     for name, flux in (answer.fluxes or {}).items():
-        known = None if case.problem.pieces[name].kind == "axis" else fluxes.of(name)
+        known = fluxes.of(name) if case.problem.pieces[name].has_data else None
         if known is not None:
             result.add(f"flux:{name}", flux - known[0], max(abs(known[0]), known[1]))
     reported = answer.quantities or {}

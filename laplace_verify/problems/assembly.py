@@ -10,7 +10,7 @@ import numpy as np
 from laplace_verify.arrays import Array, frozen
 from laplace_verify.errors import ProblemError, nearest_names
 from laplace_verify.geometry import Shape
-from laplace_verify.problems.conditions import KINDS, Condition
+from laplace_verify.problems.conditions import EVERY_KIND, Condition
 from laplace_verify.problems.coordinates import Coordinates
 from laplace_verify.problems.data import PointFunction
 from laplace_verify.problems.materials import Materials
@@ -162,11 +162,13 @@ def _condition(piece: str, condition: Any) -> Condition:
         raise ProblemError(
             f"the Robin condition of piece {piece!r} needs its coefficient: write robin(alpha)"
         )
-    if isinstance(condition, str) and condition in KINDS:
+    if isinstance(condition, str) and condition in EVERY_KIND:
         return Condition(kind=condition)
-    known = nearest_names(str(condition), KINDS)
+    known = nearest_names(str(condition), EVERY_KIND)
     raise ProblemError(
-        f"the condition of piece {piece!r} must be dirichlet, neumann or robin, got {condition!r}; {known}"
+        f"the condition of piece {piece!r} must be dirichlet, neumann or robin, or periodic on a pair, "
+        f"got {condition!r}; "
+        f"{known}"
     )
 
 

@@ -83,6 +83,11 @@ class BoundaryField:
         """
         return self._filled(points, self._flux, self._flow, derivative=True)
 
+    def magnitudes(self, points: Array) -> tuple[float, float]:
+        """Return how large value and flux may be near points (n, d): |u| + size |grad u|, and |K grad u|."""
+        steep = float(self._steepness(points).max())
+        return float(np.abs(self.value(points)).max()) + steep, float(self._flow(points).max())
+
     def densities(self, points: Array) -> tuple[Array, Array]:
         """Return u and the flux, each (n,), at quadrature points graded towards singular points.
 

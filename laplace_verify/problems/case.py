@@ -8,7 +8,6 @@ from dataclasses import dataclass, replace
 from dataclasses import field as dataclass_field
 from typing import Any
 
-import numpy as np
 import numpy.typing as npt
 
 from laplace_verify.arrays import Array
@@ -16,14 +15,11 @@ from laplace_verify.errors import ProblemError
 from laplace_verify.fields import Field
 from laplace_verify.geometry import Shape, Windowed
 from laplace_verify.problems.assembly import (
-    Conductivity,
-    alpha_of,
     as_conductivity,
     as_tensor,
-    by_piece,
     is_shape,
 )
-from laplace_verify.problems.boundary_values import BoundaryField, ExactData
+from laplace_verify.problems.boundary_values import BoundaryField
 from laplace_verify.problems.compatibility import (
     Constant,
     as_constant,
@@ -31,8 +27,9 @@ from laplace_verify.problems.compatibility import (
     default_constant,
     is_pure_neumann,
 )
-from laplace_verify.problems.conditions import Condition, PieceKind
+from laplace_verify.problems.conditions import PERIODIC, Condition, PieceKind
 from laplace_verify.problems.coordinates import AXIS, Coordinates, axis_names, in_coordinates
+from laplace_verify.problems.derivation import check_solution, derived_conditions, derived_pieces
 from laplace_verify.problems.driving import Setting
 from laplace_verify.problems.infinity import (
     AtInfinity,
@@ -46,11 +43,11 @@ from laplace_verify.problems.infinity import (
     scaled_at_infinity,
 )
 from laplace_verify.problems.materials import Materials
-from laplace_verify.problems.pieces import Piece, Pieces
-from laplace_verify.problems.problem import Problem, axis_piece, no_constant, piece_parts
+from laplace_verify.problems.periodic import check_continued, check_materials, joins_of
+from laplace_verify.problems.pieces import Pieces
+from laplace_verify.problems.problem import Problem, no_constant
 from laplace_verify.problems.quantities import Quantity, QuantitySpec
 from laplace_verify.problems.quantity_values import evaluate
-from laplace_verify.problems.region_checks import check_regions
 from laplace_verify.problems.regularity import Regularity, derive
 from laplace_verify.problems.scaling import (
     Scale,
@@ -62,8 +59,6 @@ from laplace_verify.problems.scaling import (
     scaled_regularity,
     scaled_shape,
 )
-from laplace_verify.problems.singular_checks import check_axis, check_singularities
-from laplace_verify.problems.solution_checks import check_equation, check_green
 from laplace_verify.problems.stored import StoredValue
 from laplace_verify.problems.units import Units
 
@@ -166,7 +161,7 @@ class Case:
             problem=Problem(
                 name=self.id,
                 shape=shape,
-                pieces=_pieces(shape, conditions, exact, k),
+                pieces=derived_pieces(shape, conditions, exact, k),
                 conductivity=k,
                 constant=scaled_constant(self.problem.constant, big, high),
                 coordinates=self.problem.coordinates,
@@ -214,8 +209,9 @@ def case(
     shape
         The region.
     conditions
-        Piece name -> "dirichlet", "neumann" or ``robin(alpha)``. Pieces not named are Dirichlet; the name
-        of a split piece stands for its parts.
+        Piece name -> "dirichlet", "neumann", ``robin(alpha)``, or "periodic" for both pieces of an opposite
+        pair, onto which the field must continue. Pieces not named are Dirichlet; the name of a split piece
+        stands for its parts.
     field
         The exact solution, with div(K grad field) = 0 in the shape; this is checked.
     conductivity
@@ -275,18 +271,23 @@ def case(
     k = as_conductivity(conductivity, shape.dim, coordinates)
     one_region(shape, k)
     tensor = k if isinstance(k, Materials) else as_tensor(k, shape.dim)
-    complete = _derived(shape, conditions, axis)
-    _check_solution(seen, field, tensor, coordinates)
+    complete = derived_conditions(shape, conditions, axis)
+    check_solution(seen, field, tensor, coordinates)
     if isinstance(seen, Windowed):
         check_far(field, infinity, seen)
         check_infinite_quantities(quantities or {}, shape, infinity)
     kinds: dict[str, PieceKind] = {name: condition.kind for name, condition in complete.items()}
     for name in axis:
         kinds[name] = "axis"
-    regularity = derive(seen, field, kinds, tensor, coordinates)
-    pieces, singular = _pieces(shape, complete, field, k), regularity.singular_points
+    joins = joins_of(shape, [name for name, kind in kinds.items() if kind == PERIODIC], coordinates)
+    check_materials(shape, joins, k)
+    check_continued(
+        joins, {name: BoundaryField(field, shape.pieces[name], tensor, shape.size) for name in joins}, shape
+    )
+    regularity = derive(seen, field, kinds, tensor, coordinates, joins)
+    pieces, singular = derived_pieces(shape, complete, field, k), regularity.singular_points
     for piece in pieces:  # a field that is not defined on the boundary shows here, by the piece's name
-        if piece.kind != AXIS:
+        if piece.has_data:
             piece.probe(seen.pieces[piece.name])
     setting = Setting(
         shape=seen, field=field, tensor=tensor, regularity=regularity, coordinates=coordinates,
@@ -328,70 +329,6 @@ def check_id(id_: str) -> None:
         raise ProblemError(
             f"id must be lower-case words joined by hyphens, such as 'warm-plate', got {id_!r}"
         )
-
-
-def _derived(
-    shape: Shape, conditions: Mapping[str, str | Condition], axis: frozenset[str]
-) -> dict[str, Condition]:
-    """Return the condition of every piece off the axis, refusing data."""
-    given = by_piece(shape, conditions, axis)
-    for name, condition in given.items():
-        if condition.data is not None:
-            raise ProblemError(
-                f"piece {name!r}: data of a case are derived from its exact field; give the kind alone "
-                f"({'robin(alpha)' if condition.kind == 'robin' else repr(condition.kind)}), or use problem()"
-            )
-    return {
-        piece.name: given.get(piece.name, Condition(kind="dirichlet"))
-        for piece in shape.pieces
-        if piece.name not in axis
-    }
-
-
-def _check_solution(shape: Shape, field: Field, tensor: Array | Materials, coordinates: Coordinates) -> None:
-    """Refuse a field that is no solution of div(K grad u) = 0 in the shape."""
-    check_axis(shape, field, axis_names(shape, coordinates))
-    if isinstance(tensor, Materials):
-        check_regions(shape, field, tensor, coordinates)
-        check_singularities(shape, field, tensor.partition.meeting)
-        return
-    if field.regions:
-        raise ProblemError(
-            f"the field is pieced together from the regions {', '.join(field.regions)}; give a conductivity "
-            "with the same regions"
-        )
-    check_singularities(shape, field)
-    check_equation(shape, field, tensor, coordinates)
-    if field.opaque:  # a closed form declares its singular points; of a user's function nothing is known
-        singular = np.array([s.point for s in field.singularities]).reshape(-1, shape.dim)
-        closed = shape.window if isinstance(shape, Windowed) else shape
-        check_green(closed, field, tensor, singular, coordinates)
-
-
-def _pieces(
-    shape: Shape, conditions: Mapping[str, Condition], field: Field, conductivity: Conductivity
-) -> Pieces:
-    """Return the pieces with data derived from the field."""
-    pieces = []
-    tensor = conductivity if isinstance(conductivity, Materials) else as_tensor(conductivity, shape.dim)
-    for boundary in shape.pieces:
-        if boundary.name not in conditions:
-            pieces.append(axis_piece(shape, boundary.name))
-            continue
-        condition = conditions[boundary.name]
-        alpha = alpha_of(boundary.name, condition, shape.dim)
-        seen = BoundaryField(field, boundary, tensor, shape.size)
-        pieces.append(
-            Piece(
-                boundary=boundary,
-                kind=condition.kind,
-                shape_size=shape.size,
-                parts=piece_parts(shape, boundary.name, conductivity),
-                _data=ExactData(seen, condition.kind, alpha),
-                _alpha=alpha,
-            )
-        )
-    return Pieces(pieces)
 
 
 def _constant(

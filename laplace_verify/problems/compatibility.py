@@ -85,7 +85,7 @@ def check_balance(shape: Shape, pieces: Iterable[Piece], coordinates: Coordinate
     ProblemError
         If the net flux exceeds 1e-8 of the total |flux| and its own quadrature error; both are stated.
     """
-    kept = [piece for piece in pieces if piece.kind != "axis"]
+    kept = [piece for piece in pieces if piece.has_data]
     coarse, _ = _net_flux(kept, shape.size / 8.0, coordinates)
     fine, total = _net_flux(kept, shape.size / 16.0, coordinates)
     if not abs(fine) <= max(BALANCE * total, 4.0 * abs(fine - coarse)):

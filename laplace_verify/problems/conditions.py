@@ -5,6 +5,7 @@ With the outward unit normal n and the conductivity K:
     dirichlet    u = f
     neumann      n . K grad u = g
     robin        n . K grad u + alpha u = g,   alpha >= 0
+    periodic     u and its flux continue on the opposite piece, see `periodic`; no data
 
 The flux n . K grad u points out of the region along rising u; a heat flux or a discharge is its negative.
 """
@@ -21,12 +22,25 @@ import numpy as np
 from laplace_verify.errors import ProblemError, nearest_names
 from laplace_verify.fields import Field
 
-__all__ = ["KINDS", "Condition", "Data", "Kind", "PieceKind", "dirichlet", "neumann", "robin"]
+__all__ = [
+    "EVERY_KIND",
+    "KINDS",
+    "PERIODIC",
+    "Condition",
+    "Data",
+    "Kind",
+    "PieceKind",
+    "dirichlet",
+    "neumann",
+    "robin",
+]
 
 Data: TypeAlias = float | str | Field | Callable[..., Any]
-Kind: TypeAlias = Literal["dirichlet", "neumann", "robin"]
+Kind: TypeAlias = Literal["dirichlet", "neumann", "robin", "periodic"]
 PieceKind: TypeAlias = Kind | Literal["axis"]  # the axis r = 0 is no boundary of space
-KINDS: tuple[Kind, ...] = ("dirichlet", "neumann", "robin")
+KINDS: tuple[Kind, ...] = ("dirichlet", "neumann", "robin")  # with data
+PERIODIC: Literal["periodic"] = "periodic"
+EVERY_KIND: tuple[Kind, ...] = (*KINDS, PERIODIC)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -36,7 +50,7 @@ class Condition:
     Attributes
     ----------
     kind
-        "dirichlet", "neumann" or "robin".
+        "dirichlet", "neumann", "robin" or "periodic".
     data
         f or g: a number, a formula string, a field or a function; None if derived from an exact field.
     alpha
@@ -56,12 +70,14 @@ class Condition:
 
     def __post_init__(self) -> None:
         """Check what can be checked without points."""
-        if self.kind not in KINDS:
-            known = nearest_names(str(self.kind), KINDS)
+        if self.kind not in EVERY_KIND:
+            known = nearest_names(str(self.kind), EVERY_KIND)
             raise ProblemError(f"unknown kind of boundary condition {self.kind!r}; {known}")
         if (self.alpha is not None) != (self.kind == "robin"):
             need = "needs alpha >= 0" if self.kind == "robin" else "has no alpha"
             raise ProblemError(f"a {self.kind} condition {need}, got alpha={self.alpha!r}")
+        if self.kind == PERIODIC and self.data is not None:
+            raise ProblemError(f"a periodic condition has no data, got {self.data!r}")
         for name in ("data", "alpha"):
             object.__setattr__(self, name, _checked(getattr(self, name), name))
         if self.data is None and isinstance(self.alpha, float) and not self.alpha >= 0.0:

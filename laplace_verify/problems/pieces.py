@@ -12,7 +12,7 @@ import numpy.typing as npt
 from laplace_verify.arrays import Array, BoolArray, as_points
 from laplace_verify.errors import ProblemError, nearest_names
 from laplace_verify.geometry import Boundary
-from laplace_verify.problems.conditions import PieceKind
+from laplace_verify.problems.conditions import PERIODIC, PieceKind
 from laplace_verify.problems.data import PointFunction
 
 __all__ = ["MoveLog", "Piece", "Pieces"]
@@ -48,10 +48,11 @@ class Piece:
     boundary
         Its geometry.
     kind
-        "dirichlet" (u = f), "neumann" (n . K grad u = g), "robin" (n . K grad u + alpha u = g), or "axis": no
-        boundary of space at all, without condition and data.
+        "dirichlet" (u = f), "neumann" (n . K grad u = g), "robin" (n . K grad u + alpha u = g); without
+        data: "periodic" (u and its flux continue on the partner) or "axis" (no boundary of space at all).
     partner, shift
-        None; they belong to periodic pieces.
+        Of a periodic piece the name of the piece it is joined to, and the vector s from x on this one to
+        x + s on that one; else None.
     parts
         Its parts between the interfaces of regions that cross it; () if none does.
     """
@@ -71,6 +72,11 @@ class Piece:
     def name(self) -> str:
         """Name of the piece."""
         return self.boundary.name
+
+    @property
+    def has_data(self) -> bool:
+        """Whether something is prescribed: not on the axis, not on periodic pieces."""
+        return self.kind not in ("axis", PERIODIC)
 
     @property
     def measure(self) -> float:
@@ -102,7 +108,7 @@ class Piece:
             If a point is farther off the piece than that (piece, point and distance are named), or the data
             are infinite there.
         """
-        self._not_the_axis("data")
+        self._has("data")
         if region is None:
             return self._data(self._moved(points))
         by_region = getattr(self._data, "by_region", None)
@@ -119,7 +125,7 @@ class Piece:
         ProblemError
             If the piece is a Dirichlet piece, a point is off the piece, or alpha is negative there.
         """
-        self._not_the_axis("alpha")
+        self._has("alpha")
         if self.kind == "dirichlet":
             raise ProblemError(f"piece {self.name!r} has a dirichlet condition; alpha belongs to Robin's")
         moved = self._moved(points)
@@ -181,8 +187,13 @@ class Piece:
         """Return the same piece, with every move recorded in `log`."""
         return replace(self, _log=log)
 
-    def _not_the_axis(self, what: str) -> None:
-        """Refuse to speak of data on the axis."""
+    def _has(self, what: str) -> None:
+        """Refuse to speak of data on the axis and on periodic pieces."""
+        if self.kind == PERIODIC:
+            raise ProblemError(
+                f"piece {self.name!r} is periodic and has no {what}: u and its flux continue on piece "
+                f"{self.partner!r}, where x + {self.shift} is the same place as x here"
+            )
         if self.kind == "axis":
             raise ProblemError(
                 f"piece {self.name!r} is the axis r = 0: it is no boundary of the body and has no {what}; "
@@ -238,8 +249,8 @@ class Pieces(tuple[Piece, ...]):
 
 
 def no_data(points: Array) -> Array:
-    """Stand in for the data of the axis, which has none."""
-    raise ProblemError(f"the axis r = 0 has no data, not at any of {len(points)} points")
+    """Stand in for the data of the axis and of periodic pieces, which have none."""
+    raise ProblemError(f"this piece has no data, not at any of {len(points)} points")
 
 
 def checked_alpha(alpha: PointFunction, points: Array) -> Array:

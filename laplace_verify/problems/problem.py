@@ -25,7 +25,7 @@ from laplace_verify.problems.assembly import (
     is_shape,
 )
 from laplace_verify.problems.compatibility import Constant, as_constant, check_balance, is_pure_neumann
-from laplace_verify.problems.conditions import Condition
+from laplace_verify.problems.conditions import PERIODIC, Condition
 from laplace_verify.problems.coordinates import (
     Coordinates,
     axis_names,
@@ -43,6 +43,7 @@ from laplace_verify.problems.infinity import (
     one_region,
 )
 from laplace_verify.problems.materials import Materials
+from laplace_verify.problems.periodic import Join, check_materials, joins_of
 from laplace_verify.problems.pieces import MoveLog, Piece, Pieces, no_data
 from laplace_verify.problems.regions import Interface, Region, interfaces_of, parts_of, regions_of
 
@@ -172,7 +173,7 @@ class Problem:
 
 def problem(
     shape: Shape,
-    conditions: Mapping[str, Condition],
+    conditions: Mapping[str, str | Condition],
     conductivity: float | npt.ArrayLike | Materials = 1.0,
     *,
     constant: Any = None,
@@ -188,7 +189,8 @@ def problem(
     shape
         The region.
     conditions
-        A condition with data for every piece; the name of a split piece stands for its parts.
+        A condition with data for every piece, or "periodic" for both pieces of an opposite pair; the name of
+        a split piece stands for its parts.
     conductivity
         A positive number, a symmetric positive definite matrix (d, d), or one number per region: what
         `layers`, `inclusion` or `sectors` made.
@@ -227,16 +229,20 @@ def problem(
     k = as_conductivity(conductivity, shape.dim, coordinates)
     one_region(shape, k)
     given = by_piece(shape, conditions, axis)
+    joins = joins_of(shape, [name for name, c in given.items() if c.kind == PERIODIC], coordinates)
+    check_materials(shape, joins, k)
     missing = [piece.name for piece in shape.pieces if piece.name not in given and piece.name not in axis]
     if missing and ill_posed is None:
         raise ProblemError(f"every piece needs a condition; missing: {', '.join(missing)}")
     pieces = Pieces(
-        axis_piece(shape, name) if name in axis else _piece(shape, name, given[name], k, ill_posed)
+        bare_piece(shape, name, joins.get(name))
+        if name in axis or name in joins
+        else _piece(shape, name, given[name], k, ill_posed)
         for name in shape.pieces.names
         if name not in missing
     )
     for piece in pieces:
-        if piece.name not in axis and math.isfinite(piece.measure):
+        if piece.has_data and math.isfinite(piece.measure):
             piece.probe()
     if isinstance(k, Materials):
         regions_of(shape, k)  # refuses regions that do not fit
@@ -277,9 +283,17 @@ def _fixed(
     return as_constant(constant, shape)
 
 
-def axis_piece(shape: Shape, name: str) -> Piece:
-    """Return a piece on r = 0, where space has no boundary."""
-    return Piece(boundary=shape.pieces[name], kind="axis", shape_size=shape.size, _data=no_data)
+def bare_piece(shape: Shape, name: str, join: Join | None) -> Piece:
+    """Return a piece without data: periodic if it is joined to another, else on r = 0."""
+    partner, shift = join or (None, None)
+    return Piece(
+        boundary=shape.pieces[name],
+        kind="axis" if join is None else PERIODIC,
+        shape_size=shape.size,
+        partner=partner,
+        shift=shift,
+        _data=no_data,
+    )
 
 
 def piece_parts(shape: Shape, name: str, conductivity: Conductivity) -> tuple[Boundary, ...]:

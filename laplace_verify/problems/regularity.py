@@ -28,9 +28,10 @@ from scipy.spatial.distance import cdist, pdist
 from laplace_verify.arrays import Array, frozen
 from laplace_verify.fields import Field, Line
 from laplace_verify.geometry import Boundary, Junction, Shape
-from laplace_verify.problems.conditions import PieceKind
+from laplace_verify.problems.conditions import PERIODIC, PieceKind
 from laplace_verify.problems.coordinates import AXIS, Coordinates, cone_exponent
 from laplace_verify.problems.materials import Materials
+from laplace_verify.problems.periodic import Join, glued_exponent
 from laplace_verify.problems.regions import InterfaceKind, interface_kind, region_lengths
 from laplace_verify.problems.singular_checks import edge_points, on_shape
 from laplace_verify.problems.transmission import interface_exponent
@@ -84,6 +85,7 @@ def derive(
     kinds: Mapping[str, PieceKind],
     tensor: Array | Materials,
     coordinates: Coordinates = "cartesian",
+    joins: Mapping[str, Join] | None = None,
 ) -> Regularity:
     """Return the regularity of an exact solution in a shape with a kind of condition on each piece.
 
@@ -92,12 +94,15 @@ def derive(
     shape, field
         The shape and the exact solution.
     kinds
-        Piece name -> "dirichlet", "neumann", "robin" or "axis".
+        Piece name -> "dirichlet", "neumann", "robin", "periodic" or "axis".
     tensor
         Conductivity as a matrix (d, d), or a number per region.
     coordinates
         In (r, z) or r the least radius is one of the lengths to be resolved.
+    joins
+        Partner and shift of every periodic piece.
     """
+    joins = joins or {}
     singular = on_shape(shape, field)
     places = list(dict.fromkeys(s.point for s in singular))
     jumps = list(dict.fromkeys(s.point for s in singular if s.kind == "jump"))
@@ -117,6 +122,8 @@ def derive(
         single = tensor
     corners = (
         junction_exponent(shape, j, kinds, single)
+        if joins.keys().isdisjoint(j.pieces)
+        else glued_exponent(shape, j, kinds, joins)
         for j in shape.junctions
         if not (isinstance(tensor, Materials) and tensor.partition.on_interface(j.points).any())
     )
@@ -148,8 +155,9 @@ def junction_exponent(
 def complement_exponent(shape: Shape, kinds: Mapping[str, PieceKind]) -> float | None:
     """Return the smallest exponent of the corners seen from the other side of a plane boundary.
 
-    There the opening is 2 pi less the interior angle. Infinite without corners; None for corners in space and
-    on an axis, for which no theorem is used. The lips of a slit (2 pi) have nothing on their other side.
+    There the opening is 2 pi less the interior angle. Infinite without corners; None for corners in space, on
+    an axis and at periodic sides, for which no theorem is used. The lips of a slit (2 pi) have nothing on
+    their other side.
 
     >>> from laplace_verify.geometry import Rectangle
     >>> square = Rectangle((0, 0), (1, 1))
@@ -158,7 +166,7 @@ def complement_exponent(shape: Shape, kinds: Mapping[str, PieceKind]) -> float |
     """
     if shape.dim == 1 or not shape.junctions:
         return math.inf
-    if shape.dim == 3 or AXIS in kinds.values():
+    if shape.dim == 3 or {AXIS, PERIODIC} & set(kinds.values()):
         return None
     least = math.inf
     for junction in shape.junctions:

@@ -6,7 +6,8 @@
     conductivity              a number, a matrix, or {"regions": partition, "values": region -> number}
     coordinates               "axisymmetric" (points are (r, z)), "radial-cylinder" or "radial-sphere" (points
                               are r); left out if Cartesian. Pieces called "axis" carry no condition
-    conditions                piece -> {"kind": "robin", "alpha": 3.0}; "data" too in ill-posed problems
+    conditions                piece -> {"kind": "robin", "alpha": 3.0}; "data" too in ill-posed problems,
+                              "partner" of a periodic piece
     constant                  null, or {"kind": "mean" | "point", "point": null | [x, y], "value": v}
     exact                     {"formula": text, "basis": why its digits can be believed, "field": parameters}
     regularity                exponents (null: smooth, no limit), singular points, jumps, smallest length
@@ -33,7 +34,7 @@ import sys
 from collections.abc import Iterator
 from contextlib import contextmanager
 from dataclasses import replace
-from typing import Any, Literal
+from typing import Any
 
 import msgspec
 import numpy as np
@@ -44,14 +45,23 @@ from laplace_verify.files import json_content
 from laplace_verify.geometry import Shape, shape_from_spec, shape_to_spec
 from laplace_verify.problems.assembly import Conductivity
 from laplace_verify.problems.case import Case, case
-from laplace_verify.problems.compatibility import Constant
-from laplace_verify.problems.conditions import Condition, Kind
-from laplace_verify.problems.coordinates import Coordinates
+from laplace_verify.problems.case_file import (
+    CaseFile,
+    ConditionEntry,
+    ExactEntry,
+    QuantityEntry,
+    RegularityEntry,
+    StoredEntry,
+    UnitsEntry,
+    constant_from_file,
+    constant_to_file,
+    infinity_to_file,
+)
+from laplace_verify.problems.conditions import Condition
 from laplace_verify.problems.ill_posed import ill_posed_case
-from laplace_verify.problems.infinity import AtInfinity
 from laplace_verify.problems.materials import Materials
 from laplace_verify.problems.problem import problem
-from laplace_verify.problems.quantities import Quantity, QuantityKind, QuantitySpec, Where
+from laplace_verify.problems.quantities import Quantity, QuantitySpec, Where
 from laplace_verify.problems.quantity_values import CLOSED_FORM
 from laplace_verify.problems.regularity import Regularity
 from laplace_verify.problems.stored import StoredNumber, StoredValue
@@ -65,85 +75,6 @@ READABLE = (1, 2)  # version 1 has neither places nor radii of gradients
 STORED = 1e-8  # of values with the field in float64, whose points are rounded where gradients are large
 EPS = sys.float_info.epsilon
 AGREEMENT = 1e-9  # of exponents and lengths in a file with those derived
-
-
-class _Condition(msgspec.Struct, kw_only=True, forbid_unknown_fields=True, omit_defaults=True):
-    kind: Kind
-    alpha: float | str | None = None
-    data: float | str | None = None
-
-
-class _Constant(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
-    kind: Literal["mean", "point"]
-    point: tuple[float, ...] | None
-    value: float
-
-
-class _Exact(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
-    formula: str
-    basis: str
-    field: dict[str, Any]
-
-
-class _Regularity(msgspec.Struct, kw_only=True, forbid_unknown_fields=True, omit_defaults=True):
-    solution: float | None
-    domain: float | None
-    singular_points: list[list[float]]
-    jumps: list[list[float]]
-    scale: float
-    interface: Literal["", "aligned", "oblique", "curved"] = ""
-
-
-class _Quantity(msgspec.Struct, kw_only=True, forbid_unknown_fields=True, omit_defaults=True):
-    kind: QuantityKind
-    where: str | list[float | str] | None
-    value: str
-    radius: str
-    basis: str = ""
-    unit: str
-    direction: tuple[float, ...] = ()
-    place: tuple[float, ...] | None = None
-
-
-class _Units(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
-    length: str
-    value: str
-    conductivity: str
-
-
-class _Stored(msgspec.Struct, kw_only=True, forbid_unknown_fields=True):
-    place: str = ""
-    point: tuple[str, ...]
-    value: str
-    gradient: tuple[str, ...]
-    radius: str
-    gradient_radius: str = ""
-    basis: str
-
-
-class _CaseFile(msgspec.Struct, kw_only=True, forbid_unknown_fields=True, omit_defaults=True):
-    format: str
-    format_version: int
-    id: str
-    title: str
-    statement: str
-    reading: str
-    tags: list[str]
-    sources: list[str]
-    dim: int
-    shape: dict[str, Any]
-    conductivity: float | list[list[float]] | dict[str, Any]
-    coordinates: Coordinates = "cartesian"
-    conditions: dict[str, _Condition]
-    constant: _Constant | None
-    exact: _Exact | None
-    regularity: _Regularity | None
-    quantities: dict[str, _Quantity]
-    units: _Units
-    stored: list[_Stored]
-    at_infinity: str | list[Any] | msgspec.UnsetType = msgspec.UNSET
-    window: dict[str, Any] | msgspec.UnsetType = msgspec.UNSET
-    ill_posed: str | msgspec.UnsetType = msgspec.UNSET
 
 
 def case_to_json(case: Case) -> bytes:
@@ -166,7 +97,7 @@ def case_to_json(case: Case) -> bytes:
     posed = case.problem
     k = posed.conductivity
     solved = posed.ill_posed is None
-    content = _CaseFile(
+    content = CaseFile(
         format=FORMAT,
         format_version=FORMAT_VERSION,
         id=case.id,
@@ -180,15 +111,18 @@ def case_to_json(case: Case) -> bytes:
         conductivity=_conductivity_to_file(k),
         coordinates=posed.coordinates,
         conditions={p.name: _condition(case, p.name) for p in posed.pieces if p.kind != "axis"},
-        constant=_constant_to_file(posed.constant),
+        constant=constant_to_file(posed.constant),
         exact=_exact_to_file(case) if solved else None,
         regularity=_regularity_to_file(case.regularity) if solved else None,
         quantities={name: _quantity_to_file(q) for name, q in case.quantities.items()},
-        units=_Units(length=case.units.length, value=case.units.value, conductivity=case.units.conductivity),
+        units=UnitsEntry(
+            length=case.units.length, value=case.units.value, conductivity=case.units.conductivity
+        ),
         stored=[
-            _Stored(**{name: getattr(s, name) for name in _Stored.__struct_fields__}) for s in case.stored
+            StoredEntry(**{name: getattr(s, name) for name in StoredEntry.__struct_fields__})
+            for s in case.stored
         ],
-        at_infinity=_infinity_to_file(posed.at_infinity),
+        at_infinity=infinity_to_file(posed.at_infinity),
         window=msgspec.UNSET if case.window is None else shape_to_spec(case.window),
         ill_posed=msgspec.UNSET if posed.ill_posed is None else posed.ill_posed,
     )
@@ -246,11 +180,12 @@ def case_from_json(data: bytes, path: str = "case file") -> Case:
             sources=content.sources,
             reading=content.reading,
             quantities=specs,
-            constant=_constant_from_file(content.constant),
+            constant=constant_from_file(content.constant),
             at_infinity=None if content.at_infinity is msgspec.UNSET else content.at_infinity,
             window=None if content.window is msgspec.UNSET else shape_from_spec(content.window),
             coordinates=content.coordinates,
         )
+    _check_partners(path, content, made)
     _check_regularity(path, content.regularity, made.regularity)
     with _named(path, "stored"):
         stored = tuple(StoredValue(**msgspec.structs.asdict(s)) for s in content.stored)
@@ -286,7 +221,7 @@ def _check_stored(made: Case, stored: tuple[StoredValue, ...]) -> None:
 
 
 def _ill_posed(
-    content: _CaseFile, path: str, shape: Shape, conditions: dict[str, Condition], why: str
+    content: CaseFile, path: str, shape: Shape, conditions: dict[str, Condition], why: str
 ) -> Case:
     """Return the ill-posed case of a file."""
     for name in ("exact", "regularity", "quantities", "stored"):
@@ -299,7 +234,7 @@ def _ill_posed(
             shape,
             conditions,
             _conductivity_from_file(content.conductivity),
-            constant=_constant_from_file(content.constant),
+            constant=constant_from_file(content.constant),
             coordinates=content.coordinates,
             name=content.id,
             ill_posed=why,
@@ -314,7 +249,7 @@ def _ill_posed(
         )
 
 
-def _decoded(data: bytes, path: str) -> _CaseFile:
+def _decoded(data: bytes, path: str) -> CaseFile:
     """Return the typed content of a file."""
     head = json_content(data, path)
     if not isinstance(head, dict) or head.get("format") != FORMAT:
@@ -325,7 +260,7 @@ def _decoded(data: bytes, path: str) -> _CaseFile:
             f"{path}: format_version {head.get('format_version')!r} cannot be read, only {known}"
         )
     try:
-        return msgspec.convert(head, _CaseFile)
+        return msgspec.convert(head, CaseFile)
     except msgspec.ValidationError as cause:
         raise RecordError(f"{path}: {cause}") from cause
 
@@ -339,7 +274,7 @@ def _named(path: str, part: str) -> Iterator[None]:
         raise RecordError(f"{path}: {part}: {cause}") from cause
 
 
-def _condition(case: Case, name: str) -> _Condition:
+def _condition(case: Case, name: str) -> ConditionEntry:
     """Return kind and alpha of a piece."""
     condition = case._conditions[name]
     alpha = condition.alpha
@@ -355,12 +290,13 @@ def _condition(case: Case, name: str) -> _Condition:
             f"case {case.id!r}: the data of piece {name!r} are a function, which cannot be written to a "
             "file; give a number or a formula string"
         )
-    return _Condition(kind=condition.kind, alpha=alpha, data=data)
+    partner = case.problem.pieces[name].partner
+    return ConditionEntry(kind=condition.kind, alpha=alpha, data=data, partner=partner)
 
 
-def _exact_to_file(case: Case) -> _Exact:
+def _exact_to_file(case: Case) -> ExactEntry:
     with _named(f"case {case.id!r}", "exact"):
-        return _Exact(formula=case.exact.formula, basis=case.exact.basis, field=case.exact.spec())
+        return ExactEntry(formula=case.exact.formula, basis=case.exact.basis, field=case.exact.spec())
 
 
 def _conductivity_to_file(conductivity: Conductivity) -> float | list[list[float]] | dict[str, Any]:
@@ -373,32 +309,8 @@ def _conductivity_from_file(conductivity: float | list[list[float]] | dict[str, 
     return Materials.from_spec(conductivity) if isinstance(conductivity, dict) else conductivity
 
 
-def _constant_to_file(constant: Constant | None) -> _Constant | None:
-    if constant is None:
-        return None
-    if constant[0] == "mean":
-        return _Constant(kind="mean", point=None, value=constant[1])
-    return _Constant(kind="point", point=constant[1], value=constant[2])
-
-
-def _constant_from_file(constant: _Constant | None) -> Any:
-    if constant is None:
-        return None
-    if constant.kind == "mean":
-        return ("mean", constant.value)
-    return ("point", constant.point, constant.value)
-
-
-def _infinity_to_file(at_infinity: AtInfinity) -> str | list[Any] | msgspec.UnsetType:
-    if at_infinity is None:
-        return msgspec.UNSET
-    if isinstance(at_infinity, str):
-        return at_infinity
-    return [list(part) if isinstance(part, tuple) else part for part in at_infinity]
-
-
-def _regularity_to_file(regularity: Regularity) -> _Regularity:
-    return _Regularity(
+def _regularity_to_file(regularity: Regularity) -> RegularityEntry:
+    return RegularityEntry(
         solution=_exponent(regularity.solution),
         domain=_exponent(regularity.domain),
         singular_points=regularity.singular_points.tolist(),
@@ -418,7 +330,17 @@ def _rounded(number: float) -> float:
     return float(f"{number:.12g}")
 
 
-def _check_regularity(path: str, given: _Regularity, derived: Regularity) -> None:
+def _check_partners(path: str, content: CaseFile, made: Case) -> None:
+    """Refuse a file that joins periodic pieces in another way than the shape does."""
+    for name, given in content.conditions.items():
+        partner = made.problem.pieces[name].partner
+        if given.partner != partner:
+            raise RecordError(
+                f"{path}: conditions.{name}: partner is {given.partner!r}, in the shape it is {partner!r}"
+            )
+
+
+def _check_regularity(path: str, given: RegularityEntry, derived: Regularity) -> None:
     """Refuse a file whose regularity is not that of its own exact field."""
     expected = _regularity_to_file(derived)
     for name in ("solution", "domain", "scale"):
@@ -431,10 +353,10 @@ def _check_regularity(path: str, given: _Regularity, derived: Regularity) -> Non
             raise RecordError(f"{path}: regularity.{name} is {a}, but the exact field has {b}")
 
 
-def _quantity_to_file(quantity: Quantity) -> _Quantity:
+def _quantity_to_file(quantity: Quantity) -> QuantityEntry:
     digits = quantity.digits
     where = quantity.where
-    return _Quantity(
+    return QuantityEntry(
         kind=quantity.kind,
         where=list(where) if isinstance(where, tuple) else where,
         direction=quantity.direction,
@@ -451,7 +373,7 @@ def _where(given: str | list[float | str] | None) -> Where:
     return tuple(given) if isinstance(given, list) else given  # type: ignore[arg-type]
 
 
-def _quantity_from_file(path: str, name: str, given: _Quantity, derived: Quantity) -> Quantity:
+def _quantity_from_file(path: str, name: str, given: QuantityEntry, derived: Quantity) -> Quantity:
     """Return the quantity of a file, refusing one that the exact field does not have."""
     try:
         value, radius = float(given.value), float(given.radius)

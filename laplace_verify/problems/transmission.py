@@ -27,7 +27,7 @@ from laplace_verify.arrays import Array
 from laplace_verify.contexts import FLOAT
 from laplace_verify.geometry import Shape
 from laplace_verify.geometry.cutting import crossings
-from laplace_verify.problems.conditions import PieceKind
+from laplace_verify.problems.conditions import PERIODIC, PieceKind
 from laplace_verify.problems.materials import Materials
 
 __all__ = ["interface_exponent", "transmission_exponent"]
@@ -120,6 +120,8 @@ def _on_boundary(
     corners = [junction.points[0] for junction in shape.junctions]
     for wall in materials.partition.walls:
         for piece in shape.pieces:
+            if kinds[piece.name] == PERIODIC:
+                continue  # the interface goes on where the partner lies
             fractions = crossings(piece, lambda points, wall=wall: wall.level(FLOAT, tuple(points.T)))  # type: ignore[misc]
             for place in piece.point(fractions):
                 if wall.distance(place[None, :])[0] <= NEAR * shape.extent:

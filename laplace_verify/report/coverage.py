@@ -26,7 +26,7 @@ __all__ = ["coverage_section", "traits"]
 _MEASURED = (Verdict.PASS, Verdict.FAIL, Verdict.INCONCLUSIVE)
 _ALWAYS_ASKED = (
     *(("dimension", text) for text in ("1-D", "2-D", "3-D")),
-    *(("condition", text) for text in ("dirichlet", "neumann", "robin")),
+    *(("condition", text) for text in ("dirichlet", "neumann", "robin", "periodic")),
     *(("solution", text) for text in ("smooth", "singular point", "jump of the data", NO_SOLUTION)),
     *(("conductivity", text) for text in ("1", "other scalar", "tensor", "regions")),
 )

@@ -50,8 +50,8 @@ def scale(id_):
 
 
 def bounding(case):
-    """The pieces that bound the body in space: all but the axis; infinite ones within the window."""
-    return [piece for piece in through_window(case).problem.pieces if piece.kind != "axis"]
+    """The pieces that bound the body in space: no axis, no periodic ones; infinite ones within the window."""
+    return [piece for piece in through_window(case).problem.pieces if piece.has_data]
 
 
 def ring(case, points):

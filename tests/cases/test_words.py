@@ -88,6 +88,7 @@ def _arithmetic(formula):
         return None
     text = formula.replace("e^(", "exp(").replace("^", "**")
     text = re.sub(r"(\d|\)) (?=[a-z(])", r"\1*", text)  # 2 x, (...) (...)
+    text = re.sub(r"\bpi (?=[a-z(])", "pi*", text)  # 2 pi x
     text = re.sub(r"\b([xyz]|\d|[xyz]\*\*\d) (?=[a-z(])", r"\1*", text)
     text = re.sub(r"\b(cos|sin|cosh|log|sqrt) (\w+)", r"\1(\2)", text)
     return re.sub(r"(\*\*\d|\)) (?=[xyz(])", r"\1*", text)

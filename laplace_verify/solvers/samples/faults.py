@@ -12,7 +12,7 @@ from typing import NamedTuple
 import numpy as np
 import scipy.sparse as sp
 
-from laplace_verify.arrays import Array
+from laplace_verify.arrays import Array, IntArray
 from laplace_verify.problems import Problem
 from laplace_verify.problems.coordinates import metric
 from laplace_verify.solvers.adapter import Adapter
@@ -26,6 +26,7 @@ from laplace_verify.solvers.samples.finite_difference import (
     five_point_with,
 )
 from laplace_verify.solvers.samples.rectilinear import Grid, corners_on
+from laplace_verify.solvers.samples.seams import facing_nodes
 
 __all__ = ["FAULTS", "Fault"]
 
@@ -139,6 +140,12 @@ def outer_radius_stencil(grid: Grid, tensor: Array) -> sp.csr_array:
     return box_stencil(_OuterRadius(**values), tensor)
 
 
+def facing_the_neighbour(side: Side, partner: Side) -> tuple[IntArray, IntArray]:
+    """Count the nodes of one periodic side from the wrong end by one."""
+    kept, copies = facing_nodes(side, partner)
+    return np.roll(kept, 1), copies
+
+
 def accept_everything(problem: Problem) -> None:
     """Take whatever comes."""
     del problem
@@ -179,6 +186,11 @@ FAULTS: dict[str, Fault] = dict(
             "arithmetic mean of conductivities",
             "arithmetic mean of K across interfaces where the harmonic one belongs; invisible elsewhere",
             replace(SCHEME, stencil=smeared_stencil),
+        ),
+        _fault(
+            "seam shifted",
+            "nodes of a periodic side are joined to neighbours of those that face them; invisible elsewhere",
+            replace(SCHEME, facing=facing_the_neighbour),
         ),
         _fault(
             "ill-posed input accepted",

@@ -9,6 +9,7 @@ cell (quarter cell in a corner) that a boundary node owns, so its equation has t
 Dirichlet nodes are no unknowns; their values go to the right-hand side. Where a Dirichlet piece meets another
 condition, Dirichlet wins; where two Dirichlet pieces meet, the later piece gives the value (it never enters a
 five-point equation); where two derivative conditions meet, the node's box has a face on either piece.
+Periodic sides are joined to one row of unknowns, see `seams`.
 
 A `Scheme` is the list of these decisions, one small function each, so that a single one can be exchanged.
 """
@@ -33,6 +34,7 @@ from laplace_verify.solvers.samples.input_checks import refuse_ill_posed
 from laplace_verify.solvers.samples.levels import level_shift
 from laplace_verify.solvers.samples.linear_systems import conjugate_gradients, direct
 from laplace_verify.solvers.samples.rectilinear import Grid, Patch, axis_balances, cells_along, grid_on
+from laplace_verify.solvers.samples.seams import facing_nodes, masters, spread
 
 __all__ = ["SCHEME", "Equations", "Scheme", "five_point", "five_point_with", "seven_point", "solve_on_grid"]
 
@@ -45,6 +47,7 @@ class Equations:
     load: Array
     held: BoolArray
     values: Array
+    master: IntArray  # of every node the one whose value it has: itself, but for copies on periodic sides
     lagged: sp.csr_array | None = (
         None  # a small unsymmetric part of the matrix, taken at the previous iterate
     )
@@ -56,6 +59,15 @@ class Equations:
         diagonal[nodes] = strength
         self.matrix = self.matrix + sp.diags_array(diagonal)
         self.level_is_free &= not np.any(strength > 0.0)
+
+    def join(self, master: IntArray) -> None:
+        """Add the balance of every copy on a periodic side to that of its master, the only unknown."""
+        values = spread(master)
+        self.matrix, self.load = values.T @ self.matrix @ values, values.T @ self.load
+        if self.lagged is not None:
+            self.lagged = values.T @ self.lagged @ values
+        self.held |= master != np.arange(len(master))
+        self.master = master
 
     def overwrite(self, nodes: IntArray, rows: sp.csr_array, load: Array) -> None:
         """Replace the equations of some nodes."""
@@ -137,6 +149,7 @@ class Scheme:
     """The decisions that make a finite-difference solver."""
 
     accept: Callable[[Problem], None] = refuse_ill_posed
+    facing: Callable[[Side, Side], tuple[IntArray, IntArray]] = facing_nodes
     stencil: Callable[[Grid, Array], sp.csr_array] = box_stencil
     corners: Callable[[Grid, Array, list[Patch]], sp.csr_array] = corner_rows
     robin: Callable[[Equations, Side], None] = half_cell_transfer
@@ -212,18 +225,23 @@ def material(problem: Problem, grid: Grid) -> tuple[Array, dict[str, IntArray]]:
 def assemble(grid: Grid, tensor: Array, sides: list[Side], scheme: Scheme) -> Equations:
     """Write the balance of every box, then close it piece by piece; Dirichlet comes last and so wins."""
     count, balance = len(grid.points), scheme.stencil(grid, tensor)
-    open_patches = [side.patch for side in sides if side.piece.kind != "dirichlet"]
+    open_patches = [side.patch for side in sides if side.piece.kind in ("neumann", "robin")]
     corners = scheme.corners(grid, tensor, open_patches if tensor.ndim == 2 else [])
     lagged = None
     if grid.dim == 3 and corners.nnz:
         lagged = corners  # conjugate gradients need the symmetric part alone
     else:
         balance = balance + corners
-    equations = Equations(balance, np.zeros(count), np.zeros(count, np.bool_), np.zeros(count), lagged)
+    equations = Equations(
+        balance, np.zeros(count), np.zeros(count, np.bool_), np.zeros(count), np.arange(count), lagged
+    )
     for kind in ("robin", "neumann", "dirichlet"):
         for side in sides:
             if side.piece.kind == kind:
                 getattr(scheme, kind)(equations, side)
+    master = masters(sides, scheme.facing, count)
+    if (master != np.arange(count)).any():
+        equations.join(master)
     return equations
 
 
@@ -231,7 +249,8 @@ def solved(equations: Equations, scheme: Scheme, sides: list[Side]) -> tuple[Arr
     """Return the nodal values, the relative residual, and the number of iterations (None: direct)."""
     free, grid = ~equations.held, sides[0].grid
     matrix, load = equations.matrix[free][:, free].tocsc(), scheme.load(equations, sides)
-    weights = grid.node_volumes()[free] if equations.level_is_free else None
+    volumes = np.bincount(equations.master, grid.node_volumes(), len(free)).astype(np.float64)
+    weights = volumes[free] if equations.level_is_free else None
     solve = conjugate_gradients if grid.dim == 3 else direct
     values = equations.values.copy()
     values[free], iterations = solve(matrix, load, weights)
@@ -249,7 +268,11 @@ def solved(equations: Equations, scheme: Scheme, sides: list[Side]) -> tuple[Arr
             )
         load = shifted
     size = max(float(np.max(np.abs(load), initial=0.0)), np.finfo(float).tiny)
-    return values, float(np.max(np.abs(matrix @ values[free] - load), initial=0.0)) / size, iterations
+    return (
+        values[equations.master],
+        float(np.max(np.abs(matrix @ values[free] - load), initial=0.0)) / size,
+        iterations,
+    )
 
 
 # ---- what is handed back -------------------------------------------------------------------------
@@ -266,7 +289,8 @@ def interpolated(grid: Grid, values: Array, points: Array) -> Array:
 def fluxes(grid: Grid, sides: list[Side], values: Array) -> dict[str, float]:
     """Return the integral of n . K grad u over every piece.
 
-    On Dirichlet pieces it is what the half cells lack for balance, which is as accurate as the nodal values.
+    Periodic pieces have none. On Dirichlet pieces it is what the half cells lack for balance, which is as
+    accurate as the nodal values.
     A corner of two Dirichlet pieces has one balance for two faces; each face then takes the part along its
     own axis.
     """
@@ -278,6 +302,8 @@ def fluxes(grid: Grid, sides: list[Side], values: Array) -> dict[str, float]:
         nodes, areas = grid.shares(side.patch)
         if side.piece.kind == "dirichlet":
             held[side.patch.axis, nodes] += areas
+            continue
+        if not side.piece.has_data:
             continue
         points = grid.points[nodes]
         entering = side.inflow()
@@ -303,7 +329,7 @@ def fluxes(grid: Grid, sides: list[Side], values: Array) -> dict[str, float]:
     order=2,
     dims={1, 2},
     shapes={"interval", "rectangle", "l-shape"},
-    conditions={"dirichlet", "neumann", "robin"},
+    conditions={"dirichlet", "neumann", "robin", "periodic"},
     conductivity={"scalar", "tensor", "regions"},
     coordinates={"cartesian", "axisymmetric", "radial-cylinder", "radial-sphere"},
     error_floor=1e-11,
@@ -325,7 +351,7 @@ def five_point(problem: Problem, n: int) -> Answer:
     order=2,
     dims={3},
     shapes={"box"},
-    conditions={"dirichlet", "neumann", "robin"},
+    conditions={"dirichlet", "neumann", "robin", "periodic"},
     conductivity={"scalar", "tensor"},
     error_floor=1e-10,
     reproduces_degree=1,
