@@ -167,8 +167,7 @@ def _condition(piece: str, condition: Any) -> Condition:
     known = nearest_names(str(condition), EVERY_KIND)
     raise ProblemError(
         f"the condition of piece {piece!r} must be dirichlet, neumann or robin, or periodic on a pair, "
-        f"got {condition!r}; "
-        f"{known}"
+        f"got {condition!r}; {known}"
     )
 
 
