@@ -5,7 +5,7 @@ from __future__ import annotations
 from laplace_verify import fields
 from laplace_verify.cases.definition import HERE, Definition, Family
 from laplace_verify.geometry import Box
-from laplace_verify.problems import flux_through, robin, value_at
+from laplace_verify.problems import energy_of_solution, flux_through, robin, value_at
 
 __all__ = ["family"]
 
@@ -30,7 +30,10 @@ def _box_affine() -> Definition:
         field=fields.affine((1, -2, 3), 1),
         conditions={"right": "neumann", "top": robin(0.9)},
         conductivity=1.6,
-        quantities={"flux through the top": flux_through("top", exact="5.184")},
+        quantities={
+            "flux through the top": flux_through("top", exact="5.184"),
+            "energy": energy_of_solution(exact="1.6*14*1.2*0.9*0.7"),
+        },
         tags=("exactness",),
     )
 

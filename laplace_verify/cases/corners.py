@@ -2,12 +2,10 @@
 
 from __future__ import annotations
 
-import math
-
 from laplace_verify import fields
 from laplace_verify.cases.definition import HERE, Definition, Family
 from laplace_verify.geometry import LShape, Rectangle
-from laplace_verify.problems import flux_through, value_at
+from laplace_verify.problems import energy_of_solution, flux_through, value_at
 
 __all__ = ["family"]
 
@@ -25,7 +23,10 @@ def _l_shape_corner() -> Definition:
         reading="An L-shaped tidal pool, where the flow is fastest around the inner corner.",
         shape=BASIN,
         field=fields.wedge("2/3"),
-        quantities={"flux through the inner side": flux_through("side-1", exact=-1)},
+        quantities={
+            "flux through the inner side": flux_through("side-1", exact=-1),
+            "energy": energy_of_solution(),
+        },
         tags=("corner",),
         sources=(CORNER,),
         reference_points=(("0.5", "0.5"), ("-1", "0.25"), ("-1e-6", "1e-6")),
@@ -99,6 +100,6 @@ def _plate_condition_change() -> Definition:
         field=fields.wedge("1/2"),
         conditions={"bottom-1": "neumann"},
         conductivity=1.6,
-        quantities={"flux through the cooling mat": flux_through("bottom-2", exact=-0.8 * math.sqrt(5.0))},
+        quantities={"flux through the cooling mat": flux_through("bottom-2", exact="-0.8*sqrt(5.0)")},
         sources=(CORNER,),
     )

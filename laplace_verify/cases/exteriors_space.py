@@ -18,7 +18,15 @@ from laplace_verify.geometry import (
     SpheroidalShell,
     Strip,
 )
-from laplace_verify.problems import energy_of_solution, flux_through, robin, value_at
+from laplace_verify.problems import (
+    added_mass,
+    capacitance_coefficient,
+    conductance_between,
+    energy_of_solution,
+    flux_through,
+    robin,
+    value_at,
+)
 
 __all__ = ["family"]
 
@@ -28,6 +36,8 @@ LAMB = "flow past ellipsoids: Lamb 1932, Hydrodynamics, 6th ed., art. 92 and 103
 SMYTHE = "charged spheroids and disc: Smythe 1968, Static and Dynamic Electricity, 3rd ed., ch. V"
 IMAGES = "two spheres by images: Smythe 1968, Static and Dynamic Electricity, 3rd ed., sections 5.08-5.09"
 LAYER = "uniform layers: MacMillan 1930, The Theory of the Potential, section 43"
+
+SPINDLE = "11.2*pi*sqrt(2)/log((1.5 + sqrt(2))/(1.5 - sqrt(2)))"  # 4 pi K f/artanh(f/c), f = sqrt 2, K = 1.4
 
 
 @family
@@ -43,7 +53,7 @@ def _float_losing_heat() -> Definition:
         at_infinity="decay",
         window=SphericalShell((0.0, 0.0, 0.25), 0.8, 2.0),
         quantities={
-            "flux into the float": flux_through("surface", exact=4.8 * math.pi),
+            "flux into the float": flux_through("surface", exact="4.8*pi"),
             "energy": energy_of_solution(),
         },
         sources=(POINT, HERE),
@@ -62,14 +72,16 @@ def _float_in_tidal_stream() -> Definition:
         conditions={"surface": "neumann"},
         at_infinity=("flow", (1.0, 0.0, 0.0), 0.0),
         window=SphericalShell((0.0, 0.0, 0.0), 0.9, 2.2),
-        quantities={"value behind the float": value_at((1.8, 0.0, 0.0), exact="153/80")},
+        quantities={
+            "value behind the float": value_at((1.8, 0.0, 0.0), exact="153/80"),
+            "added mass": added_mass(exact="2/3*pi*0.729"),
+        },
         sources=(LAMB,),
     )
 
 
 @family
 def _charged_spindle() -> Definition:
-    f = math.sqrt(1.5**2 - 0.5**2)
     return Definition(
         title="Charged prolate spheroid",
         solution="artanh(f/t)/artanh(f/c), f^2 = c^2 - a^2, a = 1/2, c = 3/2, t the polar semi-axis of the "
@@ -82,9 +94,8 @@ def _charged_spindle() -> Definition:
         at_infinity="decay",
         window=SpheroidalShell((0.0, 0.0, 0.0), (0.5, 1.5), (1.6, 2.5)),
         quantities={
-            "flux into the electrode": flux_through(
-                "surface", exact=1.4 * 4 * math.pi * f / math.atanh(f / 1.5)
-            )
+            "flux into the electrode": flux_through("surface", exact=SPINDLE),
+            "capacitance": conductance_between("surface", "infinity", exact=SPINDLE),
         },
         sources=(SMYTHE,),
         reference_points=(("0.5", "0", "0"), ("0", "0", "1.6"), ("1", "-1", "1")),
@@ -103,7 +114,7 @@ def _buoy_heaving() -> Definition:
         conductivity=1.2,
         at_infinity=("flow", (0.0, 0.0, 1.0), 0.0),
         window=SpheroidalShell((0.2, 0.0, -0.1), (1.2, 0.7), (2.4, 2.0)),
-        quantities={"value above the buoy": value_at((0.2, 0.0, 0.9))},
+        quantities={"value above the buoy": value_at((0.2, 0.0, 0.9)), "added mass": added_mass()},
         sources=(LAMB,),
     )
 
@@ -158,7 +169,9 @@ def _two_spheres_unlike() -> Definition:
         at_infinity="decay",
         window=PairShell((0.0, 0.0, 0.0), 1.0, 0.5, 4.0),
         quantities={
-            "flux into the upper sphere": flux_through("body-1-surface", exact=0.8 * 4 * math.pi * own)
+            "flux into the upper sphere": flux_through("body-1-surface", exact=0.8 * 4 * math.pi * own),
+            "own capacitance": capacitance_coefficient("body-1-surface", "body-1-surface"),
+            "mutual capacitance": capacitance_coefficient("body-2-surface", "body-1-surface"),
         },
         sources=(IMAGES,),
         reference_points=(("0", "0", "0"), ("0", "0", "2.5"), ("1.5", "0", "-1")),

@@ -13,8 +13,10 @@ from laplace_verify.cases import (
     exteriors,
     exteriors_space,
     exteriors_squares,
+    gravity,
     half_discs,
     ill_posed,
+    lines,
     materials,
     plates_flux,
     plates_insulated,
@@ -36,6 +38,7 @@ from laplace_verify.cases import (
     sectors,
     seepage,
     seepage_drains,
+    torsion,
     wedges,
 )
 from laplace_verify.cases.definition import joined
@@ -76,5 +79,8 @@ FAMILIES = joined(
     round_sections.family,
     cones.family,
     materials.family,
+    lines.family,
+    torsion.family,
+    gravity.family,
     ill_posed.family,
 )

@@ -19,6 +19,7 @@ from laplace_verify.problems import (
     flux_through,
     inclusion,
     layers,
+    resistance_between,
     robin,
     sectors,
     value_at,
@@ -67,6 +68,7 @@ def _rod_two_layers() -> Definition:
         quantities={
             "flux through the right end": flux_through("right", exact="1/2"),
             "value at the joint": value_at((0.8,), exact="1/5"),
+            "thermal resistance": resistance_between("right", "left", exact=4),
         },
         tags=("exactness",),
         sources=(SERIES,),
@@ -111,7 +113,10 @@ def _plate_layers_across() -> Definition:
         field=_through(SEABED, "1", "0"),
         conditions={"left": "neumann", "right": "neumann", "top": robin(0.8)},
         conductivity=SEABED,
-        quantities={"flux through the top": flux_through("top", exact="8/5")},
+        quantities={
+            "flux through the top": flux_through("top", exact="8/5"),
+            "thermal resistance": resistance_between("top", "bottom", exact="0.915/1.6"),
+        },
         tags=("exactness",),
         sources=(SERIES,),
         reference_points=(("0.3", "0.24"), ("1.6", "0.7")),

@@ -10,7 +10,7 @@ from laplace_verify import fields
 from laplace_verify.cases.definition import HERE, Definition, Family
 from laplace_verify.cases.plates_smooth import PLATE, SOURCE, WAVES
 from laplace_verify.geometry import Rectangle
-from laplace_verify.problems import flux_through, value_at
+from laplace_verify.problems import energy_of_solution, flux_density_at, flux_through, value_at
 
 __all__ = ["family"]
 
@@ -71,7 +71,11 @@ def _plate_flux_top() -> Definition:
         field=fields.polynomial(4, centre=("1/2", "-1/10")) + fields.affine((2, 0)),
         conditions={"top": "neumann"},
         conductivity=2.2,
-        quantities={"flux through the right side": flux_through("right")},
+        quantities={
+            "flux through the right side": flux_through("right"),
+            "flux density in the middle of the top": flux_density_at((0.8, 0.9), "top"),
+            "energy": energy_of_solution(),
+        },
     )
 
 

@@ -6,13 +6,20 @@ The flux through every cylinder or sphere about the axis or centre is the same: 
 
 from __future__ import annotations
 
-import math
 from fractions import Fraction
 
 from laplace_verify.cases.definition import HERE, Definition, Family
 from laplace_verify.fields import by_region, radial
 from laplace_verify.geometry import Interval
-from laplace_verify.problems import energy_of_solution, flux_through, layers, robin, value_at
+from laplace_verify.problems import (
+    energy_of_solution,
+    flux_through,
+    layers,
+    resistance_between,
+    robin,
+    shape_factor_between,
+    value_at,
+)
 
 __all__ = ["family"]
 
@@ -35,8 +42,9 @@ def _pipe_wall_two_temperatures() -> Definition:
         conductivity=1.8,
         coordinates="radial-cylinder",
         quantities={
-            "flux through the outside": flux_through("right", exact=-4.5 * math.pi),
-            "energy": energy_of_solution(exact=4.5 * math.pi * 1.25 * math.log(3)),
+            "flux through the outside": flux_through("right", exact="-4.5*pi"),
+            "energy": energy_of_solution(exact="4.5*pi*1.25*log(3)"),
+            "thermal resistance": resistance_between("left", "right", exact="log(3)/(3.6*pi)"),
         },
         sources=(PIPE,),
         reference_points=(("0.4",), ("0.7",), ("1.2",)),
@@ -56,8 +64,8 @@ def _pipe_wall_convection() -> Definition:
         conductivity=0.6,
         coordinates="radial-cylinder",
         quantities={
-            "flux through the outside": flux_through("right", exact=-1.8 * math.pi),
-            "value at the inside": value_at((0.5,), exact=1 + 1.5 * math.log(2)),
+            "flux through the outside": flux_through("right", exact="-1.8*pi"),
+            "value at the inside": value_at((0.5,), exact="1 + 1.5*log(2)"),
         },
         sources=(PIPE, SERIES),
         reference_points=(("0.5",), ("0.65",), ("0.8",)),
@@ -77,8 +85,8 @@ def _pipe_thick_wall_flux() -> Definition:
         conductivity=1.25,
         coordinates="radial-cylinder",
         quantities={
-            "flux through the inside": flux_through("left", exact=-2 * math.pi),
-            "value at the borehole": value_at((0.25,), exact=2 - 0.8 * math.log(4)),
+            "flux through the inside": flux_through("left", exact="-2*pi"),
+            "value at the borehole": value_at((0.25,), exact="2 - 0.8*log(4)"),
         },
         sources=(PIPE,),
         reference_points=(("0.25",), ("0.251",), ("1",), ("2",)),
@@ -105,7 +113,10 @@ def _pipe_lagged() -> Definition:
         conductivity=wall,
         coordinates="radial-cylinder",
         quantities={
-            "flux through the outside": flux_through("right", exact=2 * math.pi),
+            "flux through the outside": flux_through("right", exact="2*pi"),
+            "thermal resistance of both layers": resistance_between(
+                "right", "left", exact="(log(6/5)/8 + log(3/2)/0.5)/(2*pi)"
+            ),
             "value at the joint": value_at((0.6,), exact=4),
         },
         sources=(SERIES,),
@@ -125,7 +136,7 @@ def _pipe_pure_flux() -> Definition:
         conditions={"left": "neumann", "right": "neumann"},
         conductivity=2.0,
         coordinates="radial-cylinder",
-        quantities={"flux through the drain": flux_through("right", exact=-5 * math.pi)},
+        quantities={"flux through the drain": flux_through("right", exact="-5*pi")},
         sources=(PIPE, HERE),
         reference_points=(("0.3",), ("0.9",), ("1.5",)),
     )
@@ -161,7 +172,8 @@ def _tank_wall_two_temperatures() -> Definition:
         conductivity=0.5,
         coordinates="radial-sphere",
         quantities={
-            "flux through the outside": flux_through("right", exact=-4.8 * math.pi),
+            "flux through the outside": flux_through("right", exact="-4.8*pi"),
+            "shape factor": shape_factor_between("left", "right", exact="9.6*pi"),
             "value in the middle": value_at((1.0,), exact="7/5"),
         },
         sources=(TANK,),
@@ -181,8 +193,8 @@ def _tank_wall_flux_and_convection() -> Definition:
         conductivity=0.8,
         coordinates="radial-sphere",
         quantities={
-            "flux through the inside": flux_through("left", exact=4.8 * math.pi),
-            "energy": energy_of_solution(exact=4 * math.pi * 0.8 * 2.25 * (2 - 0.8)),
+            "flux through the inside": flux_through("left", exact="4.8*pi"),
+            "energy": energy_of_solution(exact="4*pi*0.8*2.25*(2 - 0.8)"),
         },
         sources=(TANK,),
         reference_points=(("0.5",), ("0.85",), ("1.25",)),
@@ -209,8 +221,9 @@ def _tank_lagged() -> Definition:
         conductivity=wall,
         coordinates="radial-sphere",
         quantities={
-            "flux through the planks": flux_through("right", exact=4 * math.pi),
+            "flux through the planks": flux_through("right", exact="4*pi"),
             "value at the outside": value_at((1.3,), exact=level),
+            "thermal resistance": resistance_between("right", "left", exact="1857/5824/pi"),
         },
         sources=(SERIES,),
         reference_points=(("0.7",), ("0.75",), ("0.9",), ("1.1",), ("1.3",)),

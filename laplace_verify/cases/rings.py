@@ -2,12 +2,18 @@
 
 from __future__ import annotations
 
-import math
-
 from laplace_verify import fields
 from laplace_verify.cases.definition import HERE, Definition, Family
 from laplace_verify.geometry import Annulus
-from laplace_verify.problems import energy_of_solution, flux_through, robin, value_at
+from laplace_verify.problems import (
+    conductance_between,
+    energy_of_solution,
+    flux_density_at,
+    flux_through,
+    robin,
+    shape_factor_between,
+    value_at,
+)
 
 __all__ = ["family"]
 
@@ -27,8 +33,11 @@ def _annulus_logarithm() -> Definition:
         field=fields.log_source(MIDDLE, -3) + fields.affine((0, 0), 1),
         conductivity=2.0,
         quantities={
-            "flux through the inner circle": flux_through("inner", exact=12 * math.pi),
-            "energy": energy_of_solution(exact=36 * math.pi * math.log(3.125)),
+            "flux through the inner circle": flux_through("inner", exact="12*pi"),
+            "energy": energy_of_solution(exact="36*pi*log(3.125)"),
+            "conductance": conductance_between("inner", "outer", exact="4*pi/log(3.125)"),
+            "shape factor": shape_factor_between("inner", "outer", exact="2*pi/log(3.125)"),
+            "flux density on the inner circle": flux_density_at((0.5, 0.2), "inner", exact=15),
         },
         sources=(PIPE,),
         reference_points=(("0.5", "0.2"), ("0.1", "0.9"), ("-0.5", "0.2")),
@@ -45,7 +54,7 @@ def _annulus_flux_inside() -> Definition:
         field=fields.log_source((0, 0), 2) + fields.polynomial(2) * "1/2",
         conditions={"inner": "neumann"},
         conductivity=0.7,
-        quantities={"flux through the outer circle": flux_through("outer", exact=2.8 * math.pi)},
+        quantities={"flux through the outer circle": flux_through("outer", exact="2.8*pi")},
         sources=(PIPE, HERE),
     )
 
@@ -60,7 +69,7 @@ def _annulus_convection() -> Definition:
         field=fields.log_source((0, 0)) + fields.polynomial(3, "im"),
         conditions={"outer": robin(1.5)},
         conductivity=1.2,
-        quantities={"flux through the inner circle": flux_through("inner", exact=-2.4 * math.pi)},
+        quantities={"flux through the inner circle": flux_through("inner", exact="-2.4*pi")},
         sources=(PIPE, HERE),
     )
 
@@ -74,7 +83,7 @@ def _annulus_eccentric() -> Definition:
         shape=Annulus((0.0, 0.0), 0.3, 1.25, (0.35, 0.2)),
         field=fields.log_source(("7/20", "1/5")) + fields.polynomial(3) * "1/2",
         conductivity=1.3,
-        quantities={"flux through the inner circle": flux_through("inner", exact=-2.6 * math.pi)},
+        quantities={"flux through the inner circle": flux_through("inner", exact="-2.6*pi")},
         sources=(HERE,),
     )
 
@@ -89,7 +98,11 @@ def _annulus_past_pile() -> Definition:
         shape=Annulus((0.0, 0.0), 0.4, 1.2),
         field=fields.affine((1, 0)) + fields.dipole((0, 0), (1, 0)) * "4/25",
         conditions={"inner": "neumann"},
-        quantities={"value at the front of the pile": value_at((-0.4, 0.0), exact="-4/5")},
+        quantities={
+            "value at the front of the pile": value_at((-0.4, 0.0), exact="-4/5"),
+            "speed beside the pile": flux_density_at((0.0, 0.4), (1, 0), exact=2),
+            "energy": energy_of_solution(),
+        },
         sources=(LAMB,),
     )
 
@@ -106,7 +119,7 @@ def _annulus_two_temperatures_outside() -> Definition:
         + fields.elliptic_multipole(0, semi_axes=("6/5", "6/5")) * "1/2",
         conditions={"inner": robin(1.6)},
         conductivity=1.3,
-        quantities={"flux through the inner circle": flux_through("inner", exact=-1.3 * math.pi)},
+        quantities={"flux through the inner circle": flux_through("inner", exact="-1.3*pi")},
         sources=("Poisson's integral: Churchill & Brown, Complex Variables and Applications", HERE),
         reference_points=(("0.5", "0"), ("0.8", "0.8"), ("-1.1", "0.1")),
     )
@@ -125,7 +138,7 @@ def _annulus_film_on_both_sides() -> Definition:
         + fields.polynomial(2, centre=MIDDLE) * "1/2",
         conditions={"inner": robin(2.5), "outer": robin("3/2 + x")},
         conductivity=0.9,
-        quantities={"flux through the outer circle": flux_through("outer", exact=1.8 * math.pi)},
+        quantities={"flux through the outer circle": flux_through("outer", exact="1.8*pi")},
         sources=(PIPE, HERE),
     )
 
@@ -141,8 +154,12 @@ def _eccentric_circles_two_temperatures() -> Definition:
         field=(fields.log_source(("1/2", 0)) - fields.log_source((2, 0))) * "3/2",
         conductivity=0.8,
         quantities={
-            "flux through the inner circle": flux_through("inner", exact=-2.4 * math.pi),
-            "energy": energy_of_solution(exact=3.6 * math.pi * math.log(2)),
+            "flux through the inner circle": flux_through("inner", exact="-2.4*pi"),
+            "energy": energy_of_solution(exact="3.6*pi*log(2)"),
+            "conductance": conductance_between("inner", "outer", exact="1.6*pi/log(2)"),
+            "shape factor": shape_factor_between("inner", "outer", exact="2*pi/log(2)"),
+            "flux density at the narrows": flux_density_at((0.8, 0.0), "inner", exact=-5),
+            "flux density opposite": flux_density_at((0.0, 0.0), "inner", exact="-9/5"),
         },
         sources=("eccentric cylinders: Smythe 1968, Static and Dynamic Electricity, 3rd ed., section 4.13",),
         reference_points=(("0.9", "0"), ("0", "0.5"), ("-0.9", "0.1")),

@@ -9,7 +9,7 @@ from laplace_verify import fields
 from laplace_verify.cases.definition import Definition, Family
 from laplace_verify.fields import Field
 from laplace_verify.geometry import Interval
-from laplace_verify.problems import flux_through, robin, value_at
+from laplace_verify.problems import energy_of_solution, flux_through, resistance_between, robin, value_at
 
 __all__ = ["family"]
 
@@ -34,6 +34,8 @@ def _rod_two_temperatures() -> Definition:
         conductivity=2.0,
         quantities={
             "flux through the right end": flux_through("right", exact=-4),
+            "thermal resistance": resistance_between("left", "right", exact="3/4"),
+            "energy": energy_of_solution(exact=12),
             "value at the sensor": value_at((0.8,), exact="7/5"),
         },
         tags=("exactness",),

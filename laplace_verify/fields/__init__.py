@@ -28,6 +28,7 @@ from laplace_verify.fields.plate_modes import coefficient_rule, modes
 from laplace_verify.fields.plate_sides import rectangle_sides
 from laplace_verify.fields.poisson_disc import fourier, poisson_disc
 from laplace_verify.fields.polynomials import polynomial
+from laplace_verify.fields.prism import prism
 from laplace_verify.fields.radial import radial
 from laplace_verify.fields.rectangle_series import rectangle_series
 from laplace_verify.fields.seepage import dam_seepage
@@ -97,6 +98,7 @@ __all__ = [
     "point_source",
     "poisson_disc",
     "polynomial",
+    "prism",
     "radial",
     "ramp",
     "rectangle_convection",

@@ -36,6 +36,7 @@ import numpy as np
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.contexts import FLOAT, Number
 from laplace_verify.errors import FieldError
+from laplace_verify.fields._end_gaps import TINY, logarithm_between
 from laplace_verify.fields._square_gaps import square_gap
 from laplace_verify.fields.base import Field
 from laplace_verify.fields.complete_elliptic import cel
@@ -45,8 +46,6 @@ from laplace_verify.fields.motions import show_point
 from laplace_verify.fields.specs import registered
 
 __all__ = ["LoadedDisc", "LoadedRectangle", "loaded_disc", "loaded_rectangle"]
-
-TINY = 1e-150
 
 
 class _Loaded(Field):
@@ -153,8 +152,8 @@ class LoadedRectangle(_Loaded):
         """Return asinh(Y_1/h) - asinh(Y_0/h), h = hypot(X, z), at X_0 and X_1; the same with x, y swapped."""
         xs, ys, z, r = self._corners(ctx, x)
         return (
-            [_logarithm(ctx, xs[i], z, ys, r[i]) for i in (0, 1)],
-            [_logarithm(ctx, ys[j], z, xs, [r[0][j], r[1][j]]) for j in (0, 1)],
+            [logarithm_between(ctx, xs[i], z, ys, r[i]) for i in (0, 1)],
+            [logarithm_between(ctx, ys[j], z, xs, [r[0][j], r[1][j]]) for j in (0, 1)],
         )
 
 
@@ -169,25 +168,6 @@ def _slope(ctx: Any, across: Any, z: Any, ends: list[Any], r: list[Any]) -> Any:
         beside = None
     between = (high / r[1] - low / r[0]) / (across * across + z * z)
     return between if beside is None else np.where(low * high > 0.0, beside, between)
-
-
-def _logarithm(ctx: Any, across: Any, z: Any, ends: list[Any], r: list[Any]) -> Any:
-    """Return asinh(Y_1/h) - asinh(Y_0/h): one logarithm that tells on which side of the ends the point is."""
-    low, high = ends
-    if ctx is FLOAT:
-        h2 = np.maximum(across * across + z * z, TINY)  # on the edge the factor X makes the term vanish
-        above, below = (
-            (high + r[1]) / np.where(low > 0.0, low + r[0], 1.0),
-            (r[0] - low) / np.where(high < 0.0, r[1] - high, 1.0),
-        )
-        ratio = np.where(low > 0.0, above, np.where(high < 0.0, below, above * below / h2))
-        return np.log(np.maximum(ratio, TINY))
-    if low > 0:
-        return ctx.log((high + r[1]) / (low + r[0]))
-    if high < 0:
-        return ctx.log((r[0] - low) / (r[1] - high))
-    h2 = across * across + z * z
-    return ctx.log((high + r[1]) * (r[0] - low) / h2) if h2 else ctx.mpf(0)
 
 
 @registered("loaded-disc")
