@@ -89,8 +89,7 @@ class Prism(Field):
     def _valid(self, points: Array) -> BoolArray:
         """Return which points are not inside."""
         low, high = (np.array([float(c) for c in corner]) for corner in (self.lower, self.upper))
-        valid: BoolArray = ((points <= low) | (points >= high)).any(axis=1)
-        return valid
+        return np.asarray(((points <= low) | (points >= high)).any(axis=1), dtype=np.bool_)
 
     def _gaps(self, ctx: Any, x: tuple[Any, ...]) -> tuple[list[list[Any]], dict[tuple[int, ...], Any]]:
         """Return the offsets of the ends along each axis, and the distances of the corners."""
