@@ -13,7 +13,7 @@ import mpmath
 
 from laplace_verify import fields
 from laplace_verify.cases.definition import Definition, Family
-from laplace_verify.fields.seepage import DamSeepage, form_factor
+from laplace_verify.fields.seepage import DamSeepage
 from laplace_verify.geometry import Polygon, Rectangle
 from laplace_verify.problems import discharge_across, exit_gradient_at, flux_through, uplift_on, value_at
 
@@ -49,7 +49,7 @@ WEIR = Polygon(
 def _times(factor: str, head: DamSeepage) -> str:
     """Return a discharge, the form factor times conductivity and head drop, in decimals."""
     with mpmath.workdps(DIGITS + 10):
-        return str(mpmath.nstr(form_factor(head, DIGITS) * mpmath.mpmathify(Fraction(factor)), DIGITS))
+        return str(mpmath.nstr(fields.form_factor(head, DIGITS) * mpmath.mpmathify(Fraction(factor)), DIGITS))
 
 
 def _beside_pile(head: DamSeepage) -> str:

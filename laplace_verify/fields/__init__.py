@@ -31,7 +31,7 @@ from laplace_verify.fields.polynomials import polynomial
 from laplace_verify.fields.prism import prism
 from laplace_verify.fields.radial import radial
 from laplace_verify.fields.rectangle_series import rectangle_series
-from laplace_verify.fields.seepage import dam_seepage
+from laplace_verify.fields.seepage import dam_seepage, form_factor
 from laplace_verify.fields.sheets import Fan, Sheet
 from laplace_verify.fields.singular import Cut, Enclosure, Singularity
 from laplace_verify.fields.solids import solid
@@ -85,6 +85,7 @@ __all__ = [
     "field",
     "flow_past",
     "flow_past_square",
+    "form_factor",
     "fourier",
     "from_spec",
     "half_edge",

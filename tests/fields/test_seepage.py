@@ -2,6 +2,7 @@
 
 import json
 import math
+from fractions import Fraction
 
 import flint
 import mpmath
@@ -12,7 +13,6 @@ from laplace_verify import fields
 from laplace_verify.contexts import FLOAT
 from laplace_verify.errors import FieldError
 from laplace_verify.fields.elliptic_first import first_kind
-from laplace_verify.fields.seepage import form_factor
 
 EPS = np.finfo(np.float64).eps
 FORMS = {
@@ -106,6 +106,44 @@ def test_boundary_conditions(form):
             assert abs(gradient[0]) < 1e-28 * abs(gradient[1])
 
 
+def ball_of_head(form, x, y):
+    """F(asin(sn V), m^2)/(2 K) + i stream in ball arithmetic, x > 0: Legendre's integral, not Carlson's."""
+    base, depth, pile, x, d = (
+        flint.arb(flint.fmpq(*Fraction(str(v)).as_integer_ratio())) for v in (*form, x, -y)
+    )
+    unit = flint.arb.pi() / (2 * depth)
+    across, below = (unit * base / 2).sinh() ** 2, (unit * pile).sin() ** 2
+    m = (across + below) / (unit * base / 2).cosh() ** 2
+    square = (across - flint.acb(unit * x, -unit * d).sinh() ** 2) / (across + below)
+    sine = square.sqrt()
+    return flint.acb.elliptic_f(sine.asin(), flint.acb(m)) / (2 * flint.acb.elliptic_k(flint.acb(m)))
+
+
+def assert_balls(form, head, stream):
+    b, T, s = lengths(form)
+    rng = np.random.default_rng(12)
+    places = [(round(x, 6), round(-y, 6)) for x, y in rng.uniform((0.01, 0.01), (b + T, 0.99 * T), (6, 2))]
+    places += [(round(b + 1e-6, 9), -1e-9), (1e-9, round(-s - 1e-9, 12))]
+    with flint.ctx.workprec(260):
+        for place in places:
+            point = tuple(Fraction(str(c)) for c in place)
+            ball = ball_of_head(form, *place)
+            for found, part in ((head.at(point, 48), ball.real), (stream.at(point, 48), ball.imag)):
+                gap = abs(flint.arb(mpmath.nstr(found, 50)) - part)
+                assert gap < flint.arb("1e-45"), (place, gap)
+
+
+@forms
+def test_45_digits_by_ball_arithmetic(form):
+    assert_balls(form, *(fields.dam_seepage(*form, part=part) for part in ("head", "stream")))
+
+
+def test_check_by_ball_arithmetic_can_fail():
+    slip = fields.affine((0, "1e-44"))
+    with pytest.raises(AssertionError):
+        assert_balls((2, 1, 0), fields.dam_seepage(2, 1) + slip, fields.dam_seepage(2, 1, part="stream"))
+
+
 def test_pile_parts_the_heads():
     u = fields.dam_seepage(0, 1, "1/2")
     upstream, downstream = u.value([[0.0, -0.2], [0.0, -0.2]], side=[1, -1])
@@ -127,7 +165,7 @@ def test_conjugate_and_discharge(form):
     assert np.all(np.abs(dv[:, 0] + du[:, 1]) <= 8 * EPS * size)
     assert np.all(np.abs(dv[:, 1] - du[:, 0]) <= 8 * EPS * size)
     T = lengths(form)[1]
-    assert np.allclose(v.value([[-0.3, -T], [2.0, -T]]), float(form_factor(u)), rtol=1e-13, atol=0)
+    assert np.allclose(v.value([[-0.3, -T], [2.0, -T]]), float(fields.form_factor(u)), rtol=1e-13, atol=0)
     assert v.conjugate() == -u
 
 
