@@ -49,10 +49,11 @@ def as_points(
         array = array[:, np.newaxis]
     if array.ndim != 2 or array.shape[1] != dim:
         raise error(f"{name} must have shape (n, {dim}), one row per point, got {array.shape}")
-    finite = np.isfinite(array)
-    if not finite.all():
-        row = int(np.flatnonzero(~finite.all(axis=1))[0])
-        raise error(f"{name} must be finite, but row {row} is {array[row].tolist()}")
+    for rows in blocks(len(array)):  # a mask of all points would be memory that grows with them
+        finite = np.isfinite(array[rows])
+        if not finite.all():
+            row = rows.start + int(np.flatnonzero(~finite.all(axis=1))[0])
+            raise error(f"{name} must be finite, but row {row} is {array[row].tolist()}")
     return array
 
 
