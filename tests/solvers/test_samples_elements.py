@@ -8,7 +8,16 @@ import numpy as np
 import pytest
 
 from laplace_verify import fields
-from laplace_verify.geometry import Annulus, Disc, Ellipse, LShape, Polygon, Rectangle, Sector
+from laplace_verify.geometry import (
+    Annulus,
+    ConfocalParabolas,
+    Disc,
+    Ellipse,
+    LShape,
+    Polygon,
+    Rectangle,
+    Sector,
+)
 from laplace_verify.geometry.meshes import triangulate
 from laplace_verify.problems import case, neumann, problem, robin
 from laplace_verify.solvers.samples import five_point, p1_element
@@ -37,6 +46,9 @@ SHAPES = [
     pytest.param(LShape(1.0), {"side-1": "neumann", "side-3": robin(2.0)}, id="l-shape"),
     pytest.param(Disc((0, 0), 1.0).split(rim=[0.3]), {"rim-1": "neumann"}, id="disc"),
     pytest.param(Ellipse((0, 0), (1.5, 1)), {"rim": robin(2.0)}, id="ellipse"),
+    pytest.param(
+        ConfocalParabolas((0.1, -0.2), 0.7, 1.1), {"right": "neumann", "left": robin(1.5)}, id="parabolas"
+    ),
     pytest.param(
         Annulus((0, 0), 0.4, 1.0, (0.2, 0)), {"inner": "neumann", "outer": robin(1.5)}, id="annulus"
     ),
