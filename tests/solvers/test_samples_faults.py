@@ -8,6 +8,7 @@ import numpy as np
 import pytest
 
 from laplace_verify import fields
+from laplace_verify.cases import catalogue
 from laplace_verify.geometry import Rectangle
 from laplace_verify.problems import case, robin
 from laplace_verify.solvers.samples import ALL, FAULTS, five_point
@@ -101,3 +102,11 @@ def test_samples_and_faults_travel_between_processes():
     again = pickle.loads(pickle.dumps(FAULTS["flux sign"].adapter))
     first, second = (solver.solve(FLUX.problem, 8).values for solver in (again, FAULTS["flux sign"].adapter))
     np.testing.assert_array_equal(first, second)
+
+
+def test_faults_name_cases_that_the_sound_solver_can_do():
+    samples = {solver.name: solver for solver in ALL}
+    for name, fault in FAULTS.items():
+        assert fault.shown_by, name
+        for id_ in fault.shown_by:
+            assert samples[fault.sample].refuses(catalogue[id_].problem) is None, (name, id_)
