@@ -10,9 +10,9 @@ square. With t = 1 + w^-4, which vanishes at the corners, and the offset d from 
     zeta = d e^{-i pi/4} = (c/6) t^(3/2) 2F1(3/2, 5/4; 5/2; t),
 
 so that t is an analytic function of q = (6 zeta/c)^(2/3), and dw/dz = 1/(c sqrt(t)). By symmetry only the
-octant 0 <= y <= x needs to be mapped. There t(q) is a power series near the corner, and w c/z one in z^-4
-farther out; both are summed by Horner's rule, from the offset near the corner, so that r^(2/3) keeps its
-digits at any distance from it.
+octant 0 <= y <= x needs to be mapped. There t(q) is a power series near the square, and w c/z one in z^-4
+farther out, where 1 - t is small; both are summed by Horner's rule, the first from the offset from the
+corner, so that r^(2/3) keeps its digits at any distance from it.
 
 *Coefficients.* t = q T(q) obeys dt/dq = T^(-1/2) (1 - t)^(5/4), and w = (z/c) W(p), p = 4/z^4, obeys
 W - 4 p W' = (1 + (c^4/4) p W^-4)^(-1/2): recurrences, with powers of series by Euler's rule (Henrici 1974,

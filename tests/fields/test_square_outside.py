@@ -51,6 +51,21 @@ def test_the_hypergeometric_map_is_the_integral_of_its_slope(turn):
         assert abs(image(stop) - image(start) - along) <= 1e-22
 
 
+@pytest.mark.parametrize(
+    "field",
+    [
+        fields.square_multipole(0, side=2),
+        fields.square_multipole(2, "im", side=2),
+        fields.flow_past_square(2, (1, 0.5), 2, part="stream"),
+    ],
+)
+def test_float64_is_right_to_a_few_units_wherever_the_series_change(field):
+    turns, reach = np.random.default_rng(6).uniform(0, 2 * math.pi, 60), np.linspace(1.42, 2.4, 60)
+    points = np.stack([reach * np.cos(turns), reach * np.sin(turns)], axis=1)
+    exact = np.array([float(field.at(tuple(point), 30)) for point in points])
+    assert np.abs(field.value(points) - exact).max() <= 8 * np.finfo(np.float64).eps * np.abs(exact).max()
+
+
 def test_sides_of_the_square_go_onto_the_unit_circle():
     t = np.linspace(-1, 1, 41)
     sides = np.concatenate([np.stack([t, 1 + 0 * t], 1), np.stack([-1 + 0 * t, t], 1)])
