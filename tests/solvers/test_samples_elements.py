@@ -47,7 +47,7 @@ SHAPES = [
     pytest.param(Disc((0, 0), 1.0).split(rim=[0.3]), {"rim-1": "neumann"}, id="disc"),
     pytest.param(Ellipse((0, 0), (1.5, 1)), {"rim": robin(2.0)}, id="ellipse"),
     pytest.param(
-        ConfocalParabolas((0.1, -0.2), 0.7, 1.1), {"right": "neumann", "left": robin(1.5)}, id="parabolas"
+        ConfocalParabolas((0.1, -0.2), 0.9, 0.9), {"right": "neumann", "left": robin(1.5)}, id="parabolas"
     ),
     pytest.param(
         Annulus((0, 0), 0.4, 1.0, (0.2, 0)), {"inner": "neumann", "outer": robin(1.5)}, id="annulus"
