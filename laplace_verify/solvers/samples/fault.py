@@ -27,8 +27,8 @@ class Fault:
     kind
         The kind of mistake, such as "flux sign" or "low-order closure".
     effect
-        "order": convergence is slower than declared or goes to a wrong limit; "accuracy": the order holds, with
-        a larger error or down to a floor; "harmless": another way of doing it right.
+        "order": convergence is slower than declared or goes to a wrong limit; "accuracy": the order holds,
+        with a larger error or down to a floor; "harmless": another way of doing it right.
     suspects
         Words of which the first suspect of a diagnosis should contain one.
     shown_by
