@@ -11,6 +11,7 @@ from laplace_verify.solvers.samples.faults import FAULTS, Fault
 from laplace_verify.solvers.samples.finite_difference import five_point, seven_point
 from laplace_verify.solvers.samples.linear_elements import p1_element
 from laplace_verify.solvers.samples.source_points import fundamental_solutions
+from laplace_verify.solvers.samples.trilinear_elements import q1_element
 from laplace_verify.solvers.samples.walk_on_spheres import walk_on_spheres
 
 __all__ = [
@@ -21,6 +22,7 @@ __all__ = [
     "five_point",
     "fundamental_solutions",
     "p1_element",
+    "q1_element",
     "seven_point",
     "walk_on_spheres",
 ]
