@@ -31,6 +31,22 @@ def broken(problem, n):
     raise ArithmeticError("zero pivot")
 
 
+def _short(problem, n):
+    exact = lv.catalogue["plate-saddle"].exact
+    return lv.Answer(evaluate=lambda x: exact.value(x) * (1 + 1 / n), h=1.0 / n)
+
+
+def _sound(problem, n):
+    exact = lv.catalogue["plate-saddle"].exact
+    return lv.Answer(evaluate=lambda x: exact.value(x) * (1 + 1 / n**2), h=1.0 / n)
+
+
+KNOWN = {"kind": "finite difference", "order": 2, "dims": {2}, "known": {"plate-saddle": "open outlet"}}
+deviating = lv.adapt(_short, name="deviating", **KNOWN)
+mended = lv.adapt(_sound, name="mended", **KNOWN)
+crashing = lv.adapt(broken.function, name="crashing", **KNOWN)
+
+
 @lv.adapt(kind="finite difference", order=2, dims={2})
 def hanging(problem, n):
     import time
@@ -228,3 +244,14 @@ def test_a_grid_study_that_diverges_is_status_1_and_a_bad_file_status_2(tmp_path
     assert main(["gci", str(path)]) == 2
     assert "order must be given with two grids" in capsys.readouterr().err
     assert main(["gci", str(path), "--order", "2"]) == 0
+
+
+def test_a_known_deviation_is_accepted_but_neither_a_crash_nor_an_unexpected_pass(
+    tmp_path, solver_file, capsys
+):
+    cases = ("--cases", "plate-saddle")
+    assert run(tmp_path, solver_file.replace(".py", ".py:deviating"), *cases) == 0
+    assert run(tmp_path, solver_file.replace(".py", ".py:crashing"), *cases) == 1
+    assert "known deviations that pass" not in capsys.readouterr().err
+    assert run(tmp_path, solver_file.replace(".py", ".py:mended"), *cases) == 1
+    assert "declared known deviations that pass: plate-saddle" in capsys.readouterr().err

@@ -133,11 +133,21 @@ def _status(record: Record, inconclusive: str) -> int:
     """Return the exit status of a run."""
     verdicts = set(_verdicts(record))
     known = record.solver.known
-    judged = {str(study.verdict) for study in record.studies if study.case_id not in known}
+    accepted = {"FAIL", "INCONCLUSIVE"}
+    judged = {
+        str(study.verdict)
+        for study in record.studies
+        if not (study.case_id in known and str(study.verdict) in accepted)
+    }
+    outlived = [
+        study.case_id for study in record.studies if study.case_id in known and study.verdict == "PASS"
+    ]
+    if outlived:
+        note(f"declared known deviations that pass: {', '.join(outlived)}; remove the declarations")
     judged |= {str(check.verdict) for check in record.checks}
     if verdicts <= {"NOT_APPLICABLE", "NOT_RUN"}:
         note("nothing could be run: no case and no law is within the declared capabilities")
         return 3
-    if judged & set(BAD) or (inconclusive == "fail" and "INCONCLUSIVE" in judged):
+    if outlived or judged & set(BAD) or (inconclusive == "fail" and "INCONCLUSIVE" in judged):
         return 1
     return 0

@@ -232,6 +232,8 @@ class _Run:
         known = self.solver.known.get(self.case.id)
         if known is not None:
             remarks = [f"known deviation, says its author: {known}", *remarks]
+            if verdict is Verdict.PASS:
+                remarks.insert(0, "passes, though declared a known deviation: remove the declaration")
         last: Any = self.results[-1] if self.results else None
         places = list(dict.fromkeys(place for result in self.results for place in result.local))
         return Study(
