@@ -109,7 +109,9 @@ class _Ellipse(Mapped):
         sign = _sign(ctx, dx, dy, side, float(focus(a, b)))
         up = dy * sign
         if ctx is FLOAT:
-            right, left = offset(ctx, dx, c) + 1j * up, offset(ctx, dx, -c) + 1j * up
+            # offsets from the foci themselves: that from the centre has lost digits next to a focus
+            along, middle = x[self.upright], rational(self.centre[self.upright])
+            right, left = offset(ctx, along, middle + c) + 1j * up, offset(ctx, along, middle - c) + 1j * up
             root = np.sqrt(right) * np.sqrt(left)
             z = dx + 1j * up
         else:
