@@ -165,7 +165,9 @@ def _stop_early(verdict: str, reasons: Sequence[str], crash: str) -> None:
 
 def study_message(study: Study) -> str:
     """Return why a study did not pass: reasons, table, remarks."""
-    parts = [f"{study.solver} on {study.case_id}: {study.verdict}", *study.reasons, "", study.table()]
+    parts = [f"{study.solver} on {study.case_id}: {study.verdict}", *study.reasons]
+    if study.levels:
+        parts += ["", study.table()]
     if study.remarks:
         parts += ["", "remarks:", *(f"- {remark}" for remark in study.remarks)]
     return "\n".join(parts)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 from typing import TYPE_CHECKING
 
 from laplace_verify.errors import LaplaceVerifyError, history, told
@@ -24,8 +25,9 @@ def refusal_study(solver: Adapter, case: Case, sizes: Sequence[int], seed: int) 
     Any other exception is an ERROR: to stumble over a singular matrix is no check. What the solver does not
     declare to do is NOT_APPLICABLE.
     """
-    problem, tried, refusals = case.problem, list[int](), list[str]()
-    declined, crash = solver.refuses(problem), ""
+    tried, refusals = list[int](), list[str]()
+    declined, crash = solver.refuses(case.problem), ""
+    problem = replace(case.problem, ill_posed=None)  # the solver has to find out by itself
     verdict, reasons = Verdict.NOT_APPLICABLE, [declined or ""]
     if declined is None:
         wanted = problem.shape.sample(WANTED, seed=seed)

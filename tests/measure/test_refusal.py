@@ -58,6 +58,17 @@ def test_only_a_refusal_at_every_size_passes(solve, verdict, words):
     assert bool(study.crash) == (verdict is lv.Verdict.ERROR)
 
 
+def test_the_solver_is_not_told():
+    told = []
+
+    def listens(problem, _n):
+        told.append(problem.ill_posed)
+        raise lv.Refused("does not balance")
+
+    assert lv.study(solver(listens), ILL).verdict is lv.Verdict.PASS
+    assert set(told) == {None}
+
+
 def test_who_does_not_claim_to_check_is_not_judged():
     study = lv.study(solver(answers, checks_well_posedness=False), ILL)
     assert study.verdict is lv.Verdict.NOT_APPLICABLE
