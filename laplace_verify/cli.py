@@ -16,6 +16,7 @@ from laplace_verify._commands.common import note, say
 from laplace_verify._commands.grids import add_gci
 from laplace_verify._commands.report import add_regenerate, add_report
 from laplace_verify._commands.run import add_run
+from laplace_verify._commands.seeded import add_seeded_faults
 from laplace_verify.errors import LaplaceVerifyError
 from laplace_verify.version import __version__
 
@@ -71,6 +72,15 @@ def _parser() -> argparse.ArgumentParser:
     )
     parser.add_argument("--version", action="version", version=f"laplace-verify {__version__}")
     commands = parser.add_subparsers(dest="command", metavar="COMMAND")
-    for add in (add_cases, add_show, add_value, add_run, add_report, add_gci, add_regenerate):
+    for add in (
+        add_cases,
+        add_show,
+        add_value,
+        add_run,
+        add_report,
+        add_gci,
+        add_seeded_faults,
+        add_regenerate,
+    ):
         add(commands)
     return parser

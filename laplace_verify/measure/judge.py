@@ -118,10 +118,16 @@ def combine(orders: Mapping[str, Order]) -> tuple[Verdict, list[str], list[str]]
 
 
 def _fit(series: Series, expected: float | None, noise: float) -> OrderFit | None:
-    """Return the fit over the levels above the floor, None if fewer than three."""
-    if series.above < 3:
+    """Return the fit over the levels above the floor, None if fewer than three.
+
+    A functional can be hit exactly by chance: such levels have no logarithm and are left out.
+    """
+    pairs = zip(series.h[: series.above], series.errors[: series.above], strict=True)
+    known = [(h, error) for h, error in pairs if error > 0.0 or not math.isfinite(error)]
+    if len(known) < 3:
         return None
-    return fit_order(series.h[: series.above], series.errors[: series.above], expected, noise)
+    h, errors = zip(*known, strict=True)
+    return fit_order(h, errors, expected, noise)
 
 
 def _algebraic(series: Series, expected: float, fit: OrderFit | None, noise: float) -> Finding:

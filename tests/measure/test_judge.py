@@ -290,3 +290,11 @@ def test_a_functional_that_was_close_by_chance_on_the_first_level_is_not_failed_
     verdict, _ = verdict_of(halving(4), [0.0141, 0.0288, 0.0282, 0.0228], "decrease", norm=name)
     assert verdict is not Verdict.FAIL
     assert verdict_of(halving(4), [0.5, 0.51, 0.52, 0.52], "decrease", norm=name)[0] is Verdict.FAIL
+
+
+def test_a_functional_that_is_hit_exactly_on_one_level_is_judged_by_the_others():
+    name = "quantity:heat"
+    verdict, reason = verdict_of(halving(5), [0.04, 0.01, 0.0, 6.25e-4, 1.5625e-4], norm=name)
+    assert verdict is Verdict.INCONCLUSIVE or "observed 2.00" in reason
+    assert verdict is not Verdict.FAIL
+    assert verdict_of(halving(5), [0.4, 0.5, 0.0, 0.5, 0.5], "decrease", norm=name)[0] is not Verdict.PASS

@@ -1,0 +1,176 @@
+"""The seeded-fault exercise: what the suite catches of known mistakes, and whether it points the right way.
+
+Every fault is run on the cases that should show it and on contrasting ones, and so is the sound sample it was
+made from. A fault whose effect is "order" is caught by a FAIL of a case or law; one whose effect is
+"accuracy" by a verdict other than PASS or by a remark that the sound sample does not get; a "harmless" one
+must neither FAIL nor stay open. The first suspect is the first that `diagnose` names, or the first new remark
+where nothing fails; it is right if it contains one of the words that the fault expects.
+"""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Callable, Iterable, Iterator, Sequence
+from dataclasses import dataclass
+
+from laplace_verify.campaign import Record, verify
+from laplace_verify.cases import catalogue
+from laplace_verify.diagnosis.suspects import diagnose
+from laplace_verify.errors import AdapterError, nearest_names
+from laplace_verify.measure.verdict import Verdict
+from laplace_verify.solvers.adapter import Adapter
+from laplace_verify.solvers.samples import ALL, FAULTS, Fault
+
+__all__ = ["Outcome", "chosen_faults", "contrast_for", "exercise", "sound_outcome"]
+
+CONTRAST = (
+    "rod-two-temperatures", "rod-fixed-and-flux", "plate-saddle", "plate-cubic", "plate-flux-top",
+    "plate-convection-all-round", "plate-tensor-diagonal", "plate-tensor-oblique", "plate-layers-across",
+    "l-shape-smooth", "l-shape-corner", "triangle-cubic", "disc-fourier", "annulus-flux-inside",
+    "disc-convection", "pillar-section", "pipe-wall-two-temperatures", "plate-periodic-sides", "box-solid",
+    "ball-solid", "float-losing-heat",
+)  # fmt: skip
+MOST_CONTRAST = 8
+ACCEPTED = ("NOT_APPLICABLE", "NOT_RUN")
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Outcome:
+    """What became of one fault.
+
+    `cases` and `laws` map names to verdicts; `remarks` are those that the sound sample does not get.
+    """
+
+    name: str
+    fault: Fault
+    cases: dict[str, Verdict]
+    laws: dict[str, Verdict]
+    remarks: tuple[str, ...]
+    suspect: str
+
+    @property
+    def failing(self) -> list[str]:
+        """Cases and laws that FAIL."""
+        found = [name for name, verdict in self.cases.items() if verdict is Verdict.FAIL]
+        return found + [f"law: {name}" for name, verdict in self.laws.items() if verdict is Verdict.FAIL]
+
+    @property
+    def open(self) -> list[str]:
+        """Cases that are neither PASS nor FAIL."""
+        return [name for name, v in self.cases.items() if v in (Verdict.INCONCLUSIVE, Verdict.ERROR)]
+
+    @property
+    def caught(self) -> bool:
+        """Whether the suite did what it should: see the module."""
+        if self.fault.effect == "order":
+            return bool(self.failing)
+        if self.fault.effect == "accuracy":
+            return bool(self.failing or self.open or self.remarks)
+        return not self.failing and not self.open
+
+    @property
+    def suspected(self) -> bool:
+        """Whether the first suspect names the right place."""
+        return any(word.lower() in self.suspect.lower() for word in self.fault.suspects)
+
+
+def chosen_faults(names: Iterable[str] | None = None) -> dict[str, Fault]:
+    """Return the faults asked for, all of them by default.
+
+    Raises
+    ------
+    AdapterError
+        If there is no fault of a name; the nearest names are shown.
+    """
+    if names is None:
+        return dict(FAULTS)
+    chosen = {}
+    for name in names:
+        if name not in FAULTS:
+            raise AdapterError(f"no seeded fault is called {name!r}; {nearest_names(name, FAULTS)}")
+        chosen[name] = FAULTS[name]
+    return chosen
+
+
+def contrast_for(solver: Adapter, shown_by: Sequence[str]) -> list[str]:
+    """Return up to eight other cases that a solver can do, from a fixed list that covers every feature."""
+    found = [
+        id_ for id_ in CONTRAST if id_ not in shown_by and solver.refuses(catalogue[id_].problem) is None
+    ]
+    return found[:MOST_CONTRAST]
+
+
+def exercise(
+    faults: dict[str, Fault],
+    *,
+    workers: int = 1,
+    principles: bool = True,
+    seed: int = 0,
+    progress: Callable[[str], object] | None = None,
+) -> Iterator[Outcome]:
+    """Run every fault and yield what became of it.
+
+    Parameters
+    ----------
+    faults
+        Name -> fault.
+    workers
+        Child processes at a time.
+    principles
+        Whether the laws are checked too.
+    seed
+        Of everything random.
+    progress
+        Called with the name of a fault before it is run.
+    """
+    samples = {solver.name: solver for solver in ALL}
+    for name, fault in faults.items():
+        if progress is not None:
+            progress(name)
+        sound = samples[fault.sample]
+        ids = [*fault.shown_by, *contrast_for(sound, fault.shown_by)]
+        record = verify(fault.adapter, ids, principles=principles, seed=seed, workers=workers)
+        usual = verify(sound, ids, principles=False, seed=seed, workers=workers)
+        yield _outcome(name, fault, record, usual)
+
+
+def sound_outcome(
+    solver: Adapter, ids: Sequence[str], *, workers: int = 1, seed: int = 0
+) -> dict[str, Verdict]:
+    """Return case -> verdict of a sound solver, cases it cannot do left out."""
+    record = verify(solver, ids, principles=False, seed=seed, workers=workers)
+    return {study.case_id: study.verdict for study in record.studies if study.verdict not in ACCEPTED}
+
+
+def _outcome(name: str, fault: Fault, record: Record, usual: Record) -> Outcome:
+    """Put together what a fault and its sound twin got."""
+    known = {(study.case_id, _kind(remark)) for study in usual.studies for remark in study.remarks}
+    remarks = tuple(
+        f"{study.case_id}: {remark}"
+        for study in record.studies
+        for remark in study.remarks
+        if (study.case_id, _kind(remark)) not in known
+    )
+    return Outcome(
+        name=name,
+        fault=fault,
+        cases={s.case_id: s.verdict for s in record.studies if s.verdict not in ACCEPTED},
+        laws={check.law: check.verdict for check in record.checks if check.verdict not in ACCEPTED},
+        remarks=remarks,
+        suspect=_first_suspect(record, remarks),
+    )
+
+
+def _first_suspect(record: Record, remarks: Sequence[str]) -> str:
+    """Return the first suspect, or what stands in for it where no study fails."""
+    suspects = diagnose(record)
+    if suspects:
+        return suspects[0].text
+    undecided = [s.reasons[0] for s in record.studies if s.verdict is Verdict.INCONCLUSIVE and s.reasons]
+    broken = [f"law: {check.law}: {check.reason}" for check in record.checks if check.verdict is Verdict.FAIL]
+    return next(iter([*broken, *undecided, *remarks]), "")
+
+
+def _kind(remark: str) -> str:
+    """Return a remark without its numbers, so that two of a kind are known as such."""
+    return re.sub(r"[-+0-9.e]+", "#", remark)
