@@ -32,8 +32,8 @@ def column(lower, upper, place, derivative=False):
 
 
 # MacMillan 1930, The Theory of the Potential; Nagy 1966, Geophysics 31 (both from memory, unchecked); 19
-# digits computed from the closed form of the prism. The corner is also the box integral B_3(-1) of Bailey, Borwein &
-# Crandall 2007, 1.190038681989777.
+# digits computed from the closed form of the prism. The corner is also the box integral B_3(-1) of Bailey,
+# Borwein & Crandall 2007, 1.190038681989777.
 @pytest.mark.parametrize(
     ("place", "value"),
     [
