@@ -66,6 +66,8 @@ def confirmation_of(case: Case) -> tuple[str, Confirmation] | None:
     >>> confirmation_of(case(Disc((0, 0), 1), {}, fields.polynomial(2)))[0]
     'balls'
     """
+    if case.problem.ill_posed is not None:
+        return None  # there is no value to confirm
     kinds = frozenset(kinds_in(case.exact.spec()))
     for name, confirmation in CONFIRMATIONS.items():
         if kinds <= confirmation.kinds:

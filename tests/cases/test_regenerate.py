@@ -10,7 +10,7 @@ from laplace_verify.cases import regenerate as module
 from laplace_verify.problems import case_from_json
 from laplace_verify.references import reference_folder
 
-FEW = ("rod-pure-flux", "plate-saddle", "plate-hot-side", "disc-step", "ball-solid")
+FEW = ("rod-pure-flux", "plate-saddle", "plate-hot-side", "disc-step", "plate-unbalanced-flux", "ball-solid")
 
 
 @pytest.fixture
@@ -31,7 +31,7 @@ def test_one_file_a_case_an_index_and_the_versions(tmp_path):
     assert [file.name for file in written] == [*(f"{i}.json" for i in FEW), "README.md", "PROVENANCE.json"]
     assert done == list(FEW)
     assert notes[0].startswith("stray.json is no case")
-    assert notes[-1].startswith("5 cases written")
+    assert notes[-1].startswith(f"{len(FEW)} cases written")
     assert (tmp_path / "stray.json").exists()
 
 
@@ -54,7 +54,7 @@ def test_index_lists_every_case_with_picture_points_and_routes(tmp_path):
         assert f"[{id_}]({id_}.json)" in row
         assert case.title in row
         assert f"| {len(stored)} " in row
-        assert len(stored) >= 12
+        assert len(stored) >= 12 if case.problem.ill_posed is None else not stored
 
 
 @pytest.mark.usefixtures("few")
