@@ -27,6 +27,7 @@ from laplace_verify.errors import RecordError
 from laplace_verify.problems import Case, case_to_json
 from laplace_verify.references import CONFIRMATIONS, Probe, confirmation_of, probes_of, stored_values
 from laplace_verify.references.files import write_file
+from laplace_verify.references.quantity_digits import with_quantity_digits
 from laplace_verify.version import __version__
 
 __all__ = ["case_file", "regenerate_cases"]
@@ -150,7 +151,8 @@ def _complete(id_: str) -> Case:
     if not isinstance(definition, Definition):  # an ill-posed case has no solution to evaluate
         return case
     chosen = (Probe(point=tuple(point), place="chosen") for point in definition.reference_points)
-    return replace(case, stored=stored_values(case, (*chosen, *probes_of(case)), DIGITS))
+    stored = stored_values(case, (*chosen, *probes_of(case)), DIGITS)
+    return replace(with_quantity_digits(case), stored=stored)
 
 
 def _row(case: Case) -> tuple[str, ...]:
