@@ -191,8 +191,11 @@ def _index(files: Sequence[_Made]) -> str:
 
 def _routes() -> str:
     """Return the table of the routes that confirm values."""
-    rows = [(c.route, c.source, str(c.digits)) for c in CONFIRMATIONS.values()]
-    headers = ("confirmed by", "source", "digits confirmed")
+    rows = [
+        (c.route, c.source, f"{c.digits} {c.counted}", f"{100 * c.share:.0f} %")
+        for c in CONFIRMATIONS.values()
+    ]
+    headers = ("confirmed by", "source", "digits confirmed", "of the points of a case, at least")
     return tabulate(rows, headers=headers, tablefmt="pipe", disable_numparse=True)
 
 

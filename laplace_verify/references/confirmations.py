@@ -10,7 +10,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
-from typing import Any
+from typing import Any, Literal
 
 from laplace_verify.problems import Case
 
@@ -27,8 +27,11 @@ class Confirmation:
         How, in words.
     source
         What the route follows.
-    digits
-        To how many significant digits it confirms the values (of a gradient, those of its largest component).
+    digits, counted
+        To how many digits it confirms values and gradients: "significant" (of a gradient, those of its
+        largest component), or "behind the point" where numbers are small.
+    share
+        Of the points of each case that it reaches, at least.
     kinds
         Kinds of field it can do; every kind in the file of a case must be among them.
     """
@@ -36,13 +39,17 @@ class Confirmation:
     route: str
     source: str
     digits: int
+    counted: Literal["significant", "behind the point"]
+    share: float
     kinds: frozenset[str]
 
 
 BALLS = frozenset({
-    "affine", "axisymmetric", "box-mode", "coaxial", "dipole", "disc-fourier", "elliptic-multipole",
-    "exp-trig", "flow-past", "inverted", "loaded-rectangle", "log-source", "point-source", "polynomial",
-    "quarter-wave", "radial", "regions", "shifted", "solid", "spheroid", "stretched", "sum", "wedge", "zonal",
+    "affine", "axisymmetric", "box-mode", "coaxial", "dipole", "disc-arcs", "disc-fourier",
+    "elliptic-multipole", "exp-trig", "flow-past", "inverted", "loaded-rectangle", "log-source",
+    "point-source", "polynomial",
+    "quarter-wave", "radial", "rectangle-modes", "regions", "shifted", "solid", "spheroid", "stretched",
+    "sum", "wedge", "zonal",
 })  # fmt: skip
 
 CONFIRMATIONS: dict[str, Confirmation] = {
@@ -50,7 +57,41 @@ CONFIRMATIONS: dict[str, Confirmation] = {
         route="ball arithmetic from the parameters in the file",
         source="formulas written again for python-flint (Johansson 2017, IEEE Trans. Computers 66, Arb)",
         digits=48,
+        counted="significant",
+        share=1.0,
         kinds=BALLS,
+    ),
+    "integrals": Confirmation(
+        route="rigorous quadrature of Poisson's or Laplace's integral of the data",
+        source="Whittaker & Watson 1927, A Course of Modern Analysis, section 18.3; Arb's integration",
+        digits=46,
+        counted="behind the point",
+        share=0.9,
+        kinds=frozenset(
+            {
+                "hemispheres",
+                "loaded-disc",
+                "rectangle-exponential",
+                "rectangle-pieces",
+                "rectangle-sides",
+            }
+        ),
+    ),
+    "expansions": Confirmation(
+        route="expansion summed in ball arithmetic, its conditions looked at along the boundary",
+        source="corner powers of Lehman 1959 and the coefficients in the file; Arb",
+        digits=48,
+        counted="behind the point",
+        share=1.0,
+        kinds=frozenset({"corner-powers"}),
+    ),
+    "series": Confirmation(
+        route="eigenfunction series in bispherical coordinates",
+        source="Morse & Feshbach 1953, Methods of Theoretical Physics, section 10.3",
+        digits=48,
+        counted="significant",
+        share=1.0,
+        kinds=frozenset({"sphere-pair"}),
     ),
 }
 

@@ -163,14 +163,14 @@ def _directions(dim: int) -> Array:
     count = DIRECTIONS[dim]
     if dim == 1:
         return np.array([[1.0], [-1.0]])
-    turns = np.arange(count) + 0.5
+    golden = math.pi * (3.0 - math.sqrt(5.0))
+    turns: Array = np.linspace(0.5, count - 0.5, count)
+    angles: Array = turns * (2.0 * math.pi / count if dim == 2 else golden) + TURN
+    circle: Array = np.column_stack([np.cos(angles), np.sin(angles)])
     if dim == 2:
-        angles: Array = 2.0 * math.pi * turns / count + TURN
-        return np.column_stack([np.cos(angles), np.sin(angles)])
-    angles = math.pi * (3.0 - math.sqrt(5.0)) * turns + TURN
+        return circle
     height = 1.0 - 2.0 * turns / count
-    radius: Array = np.sqrt(1.0 - height**2)
-    return np.column_stack([radius * np.cos(angles), radius * np.sin(angles), height])
+    return np.column_stack([circle * np.sqrt(1.0 - height**2)[:, None], height])
 
 
 def _decimals(point: Array, extent: float) -> tuple[str, ...]:

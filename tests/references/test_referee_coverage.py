@@ -1,0 +1,37 @@
+"""How much of the stored values is confirmed by another route, and that every route has its tests."""
+
+from pathlib import Path
+
+import laplace_verify as lv
+from laplace_verify.references import CONFIRMATIONS, confirmation_of, probes_of
+
+CASES = lv.catalogue.select(ill_posed=False)
+
+
+def test_at_least_nine_tenths_of_the_stored_values_are_confirmed():
+    every = confirmed = 0.0
+    for case in CASES:
+        points, by = len(probes_of(case)), confirmation_of(case)
+        every += points
+        confirmed += points * by[1].share if by is not None else 0
+    assert confirmed >= 0.9 * every, confirmed / every
+
+
+def test_each_route_is_run_by_the_test_that_bears_its_name():
+    here = Path(__file__).parent
+    named = {
+        path.stem.removeprefix("test_referee_"): path.read_text() for path in here.glob("test_referee_*.py")
+    }
+    del named["coverage"]
+    assert set(named) == set(CONFIRMATIONS)
+    for name, text in named.items():
+        assert f'ROUTE = "{name}"' in text
+
+
+def test_a_case_without_solution_is_confirmed_by_nothing():
+    assert confirmation_of(lv.catalogue.select(ill_posed=True)[0]) is None
+
+
+def test_a_field_of_a_kind_that_no_route_can_do_is_confirmed_by_nothing():
+    corner = lv.fields.box_faces((0, 0, 0), (1, 1, 1), top=1)
+    assert confirmation_of(lv.case(lv.Box((0, 0, 0), (1, 1, 1)), {}, corner)) is None
