@@ -45,7 +45,7 @@ def _cable_coated() -> Definition:
             "charge density on the wire": flux_density_at((0.0, 0.2), "inner", exact=25),
         },
         sources=(GAUSS, HERE),
-        reference_points=(("0.3", "0"), ("0", "-0.4"), ("0.5", "0.5")),
+        reference_points=(("0.3", "0"), ("0", "-0.45"), ("0.5", "0.5")),
     )
 
 

@@ -45,11 +45,10 @@ class Confirmation:
 
 
 BALLS = frozenset({
-    "affine", "axisymmetric", "box-mode", "coaxial", "dipole", "disc-arcs", "disc-fourier",
-    "elliptic-multipole", "exp-trig", "flow-past", "inverted", "loaded-rectangle", "log-source",
-    "point-source", "polynomial",
-    "quarter-wave", "radial", "rectangle-modes", "regions", "shifted", "solid", "spheroid", "stretched",
-    "sum", "wedge", "zonal",
+    "affine", "along-z", "axisymmetric", "box-mode", "coaxial", "dipole", "disc-arcs", "disc-fourier",
+    "edge-wave", "elliptic-multipole", "exp-trig", "flow-past", "inverted", "loaded-rectangle", "log-source",
+    "point-source", "polynomial", "quarter-wave", "radial", "rectangle-modes", "regions", "scaled",
+    "shifted", "solid", "spheroid", "stretched", "sum", "wedge", "zonal",
 })  # fmt: skip
 
 CONFIRMATIONS: dict[str, Confirmation] = {

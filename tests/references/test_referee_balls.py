@@ -340,6 +340,22 @@ def stretched(b, f, x):
     return value(b, f["field"], [image[i, 0].real for i in range(d)])
 
 
+def scaled(b, f, x):
+    return value(b, f["field"], [c / b.number(f["factor"]) for c in x])
+
+
+def along_z(b, f, x):
+    return (b.number(f["level"]) + b.number(f["slope"]) * x[2]) * value(b, f["field"], x[:2])
+
+
+def edge_wave(b, f, x):
+    """I_alpha(k r)/I_alpha(k radius) times a corner's sine or cosine times a wave along the edge."""
+    k, alpha, r = b.number(f["k"]), b.number(f["alpha"]), norm(x[:2])
+    corner = wedge(b, f | {"apex": [0, 0]}, x[:2]) / r**alpha
+    size = (k * r).bessel_i(alpha) / (k * b.number(f["radius"])).bessel_i(alpha)
+    return size * corner * getattr(k * x[2], f["wave"])()
+
+
 def axisymmetric(b, f, x):
     return value(b, f["field"], [x[0], b.arb(0), x[1]])
 
@@ -366,7 +382,8 @@ def regions(b, f, x):
 
 
 KINDS = {
-    "affine": affine, "axisymmetric": axisymmetric, "box-mode": box_mode, "coaxial": coaxial,
+    "affine": affine, "along-z": along_z, "edge-wave": edge_wave, "scaled": scaled,
+    "axisymmetric": axisymmetric, "box-mode": box_mode, "coaxial": coaxial,
     "dipole": dipole, "disc-arcs": disc_arcs, "disc-fourier": disc_fourier,
     "elliptic-multipole": elliptic_multipole, "exp-trig": exp_trig, "flow-past": flow_past,
     "inverted": inverted, "loaded-rectangle": loaded_rectangle, "log-source": log_source,
