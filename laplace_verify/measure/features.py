@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from laplace_verify.arrays import Array
+from laplace_verify.measure.data_features import data_features
 from laplace_verify.measure.results import Feature
 
 if TYPE_CHECKING:
@@ -16,11 +17,10 @@ if TYPE_CHECKING:
 
 __all__ = ["features", "ill_posed_features"]
 
-SAMPLED = 16  # points of a piece
 SMALL = 1e-9
 LARGE_JUMP = 10.0
 CLOSE = 0.1  # of the shape's extent
-STEP = 1e-3  # of the extent: step of the second derivative along the normal
+STRETCHED = (2.0, 5.0)  # ratios of the extents that are told apart
 
 
 def features(case: Case, exact: Exact) -> dict[str, Feature]:
@@ -53,7 +53,14 @@ def features(case: Case, exact: Exact) -> dict[str, Feature]:
         "conductivity jump of ten or more": _jump(problem) >= LARGE_JUMP,
         "curved boundary": any(piece.curved for piece in problem.pieces),
         "sides off the axes": any(_oblique(piece) for piece in problem.pieces),
+        "boundary across the lines of a rectangular grid": any(
+            piece.curved or _oblique(piece) for piece in problem.pieces
+        ),
+        "inner boundary": any(name == "inner" or name.startswith("hole-") for name in kinds),
+        "slit": any(j.opening > 2 * math.pi - SMALL for j in shape.junctions),
+        "corner": any(abs(j.opening - math.pi) > SMALL for j in shape.junctions),
         "unequal extents": not np.allclose(upper - lower, (upper - lower)[0], rtol=SMALL, atol=0.0),
+        "aspect ratio": _aspect(upper - lower),
         "corner of the box not at the origin": bool(np.any(np.abs(lower) > SMALL * shape.extent)),
         "re-entrant corner": any(j.opening > math.pi + SMALL for j in shape.junctions),
         "change of condition inside a side": any(
@@ -65,7 +72,9 @@ def features(case: Case, exact: Exact) -> dict[str, Feature]:
         "source close to the boundary": smooth and regularity.scale < CLOSE * shape.extent,
         "harmonic polynomial": None if exact.field.degree is None else float(exact.field.degree),
     }
-    found |= _data_features(case, exact)
+    found |= data_features(case, exact)
+    for piece in problem.pieces:
+        found |= dict.fromkeys(_places(piece), True)
     found |= {f"{piece.kind} on {piece.name}": True for piece in problem.pieces if piece.kind != "axis"}
     found |= {f"tag {tag}": True for tag in sorted(case.tags)}
     return found
@@ -86,36 +95,6 @@ def ill_posed_features(case: Case) -> dict[str, Feature]:
     }
 
 
-def _data_features(case: Case, exact: Exact) -> dict[str, Feature]:
-    """Return what Neumann and Robin data do on their pieces."""
-    flowing, bending, scaled = False, False, False
-    for piece in case.problem.pieces:
-        if piece.kind == "dirichlet" or not piece.has_data:
-            continue
-        points, normals, _ = piece.sample(SAMPLED)
-        if piece.kind == "neumann":
-            flowing |= bool(np.any(np.abs(piece.data(points)) > SMALL))
-            bending |= _bends(points, normals, exact, case.problem.shape.extent)
-        elif piece.kind == "robin":
-            scaled |= bool(np.any(np.abs(piece.alpha(points) - 1.0) > SMALL))
-    return {
-        "nonzero Neumann data": flowing,
-        "second normal derivative on a Neumann piece": bending,
-        "Robin coefficient other than 1": scaled,
-    }
-
-
-def _bends(points: Array, normals: Array, exact: Exact, extent: float) -> bool:
-    """Return whether d^2 u/dn^2 differs from zero: where it is zero a one-sided closure cannot be seen."""
-    step = STEP * extent
-    slopes = [
-        (exact.gradients(points - k * step * normals) * normals).sum(axis=1) for k in (1.0, 2.0)
-    ]  # inside, where the field holds
-    change = np.abs(slopes[1] - slopes[0]) / STEP
-    size = float(np.nanmax(np.abs(exact.gradients(points - step * normals)), initial=0.0))
-    return bool(np.nanmax(change, initial=0.0) > 1e-6 * size)
-
-
 def _other_than_one(problem: Problem) -> bool:
     """Return whether the conductivity is anything but 1 everywhere."""
     if problem.interfaces:
@@ -127,6 +106,34 @@ def _jump(problem: Problem) -> float:
     """Return the largest over the smallest conductivity of the regions; 1 if there is only one."""
     values = [float(region.conductivity) for region in problem.regions if np.ndim(region.conductivity) == 0]
     return max(values) / min(values) if len(values) > 1 else 1.0
+
+
+def _aspect(extents: Array) -> str | None:
+    """Return the ratio of the extents in words; None in one dimension and for what has no end."""
+    if len(extents) == 1 or not np.isfinite(extents).all():
+        return None
+    ratio = float(extents.max() / extents.min())
+    if ratio < 1 + SMALL:
+        return "1"
+    below, above = STRETCHED
+    if ratio < below:
+        return f"below {below:g}"
+    return f"{below:g} to {above:g}" if ratio < above else f"{above:g} or more"
+
+
+def _places(piece: Piece) -> list[str]:
+    """Return how a piece with data lies: curved, or at which end of an axis."""
+    if not piece.has_data:
+        return []
+    words = f"{piece.kind.capitalize()} condition"
+    if piece.curved:
+        return [f"{words} on a curved piece"]
+    _, normals, _ = piece.sample(1)
+    along = normals[0][np.abs(normals[0]).argmax()]
+    if abs(along) < 1 - SMALL:
+        return [f"{words} on a side off the axes"]
+    end = "high end of an axis (right, top)" if along > 0 else "low end of an axis (left, bottom)"
+    return [f"{words} at the {end}"]
 
 
 def _oblique(piece: Piece) -> bool:
