@@ -6,10 +6,13 @@ multiple of it where solution and shape are smooth enough (Cea's lemma and its d
 discrete maximum principle for differences; the sample solvers stay below 4 on every such case of the
 catalogue). A wrong weight or penalty can keep the order and cost far more.
 
+*Nodes.* An answer is measured as its user evaluates it, between nodes too. Where the nodes converge a whole
+order faster than that, the shape functions of the cells are the limit, not the scheme.
+
 *Gradients.* If the values converge, so do gradients of any consistent recovery; one that does not has a wrong
 scale or sign.
 
-Both are remarks: no theorem gives the constants.
+All are remarks: no theorem gives the constants.
 """
 
 from __future__ import annotations
@@ -20,6 +23,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from laplace_verify.measure.norms import weighted_norm
+from laplace_verify.measure.orders import line_order
 from laplace_verify.measure.results import Level
 from laplace_verify.measure.series import differences
 
@@ -32,6 +36,7 @@ __all__ = ["accuracy_remarks", "interpolation_error"]
 
 FACTOR = 10.0
 FELL, STAYED = 0.3, 0.7  # last over first: what has clearly converged, what has not at all
+FASTER = 0.8
 LEAST = 1e-3  # relative error of a gradient below which a stall is put down to precision
 EXACT = 1e-12  # of max |u|: interpolation that leaves no more is exact
 
@@ -61,7 +66,7 @@ def accuracy_remarks(levels: Sequence[Level], smoothness: Smoothness) -> list[st
     judged = [level for level in levels if level.judged]
     if not judged:
         return []
-    return [*_constant(judged[-1], smoothness), *_gradients(judged, smoothness)]
+    return [*_constant(judged[-1], smoothness), *_between(judged), *_gradients(judged, smoothness)]
 
 
 def _constant(level: Level, smoothness: Smoothness) -> list[str]:
@@ -75,6 +80,20 @@ def _constant(level: Level, smoothness: Smoothness) -> list[str]:
         f"size {level.size}: the L2 error {error:.2e} is {error / best:.0f} times that of interpolating the "
         f"exact solution on the same mesh (sound samples stay below {FACTOR:g}): the order may hold and yet "
         "a weight, a penalty or a boundary closure cost accuracy"
+    ]
+
+
+def _between(levels: Sequence[Level]) -> list[str]:
+    """Remark values at nodes that converge an order faster than values between them."""
+    spacing = [level.h for level in levels]
+    nodes = line_order(spacing, [level.nodal for level in levels])
+    overall = line_order(spacing, [level.errors.get("L2") for level in levels])
+    if nodes is None or overall is None or levels[-1].interpolation is None or nodes < overall + FASTER:
+        return []
+    return [
+        f"at the solver's own points the error falls at order {nodes:.1f}, between them (L2) at "
+        f"{overall:.1f}: the shape functions of the cells limit it; hand back cells of a higher degree, or "
+        "points without cells"
     ]
 
 
