@@ -43,7 +43,7 @@ def counted(part: int, whole: int, what: str) -> str:
     ('all 6 failing cases', 'none of the 14 passing', 'the only one of the failing cases')
     """
     if whole == 1:
-        return f"the only one of the {what}" if part else f"not the only one of the {what}"
+        return f"the only one of the {what}" if part else f"none of the {what}"
     if part == whole:
         return f"both {what}" if whole == 2 else f"all {whole} {what}"
     return f"{part} of the {whole} {what}" if part else f"none of the {whole} {what}"

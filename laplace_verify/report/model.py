@@ -265,7 +265,7 @@ def _diagnosis_section(record: Record, suspects: list[Suspect]) -> Section:
             Cell(text=f"{suspect.score:.2f}"),
             Cell(text=suspect.text),
             Cell(text=suspect.evidence),
-            Cell(text=suspect.case_id, target=f"case-{suspect.case_id}"),
+            Cell(text=suspect.case_id, target=f"case-{suspect.case_id}" if suspect.case_id else ""),
         )
         for suspect in suspects
     )

@@ -5,78 +5,19 @@ import math
 import numpy as np
 import pytest
 
-from laplace_verify.campaign.record import CaseInfo, Environment, PieceInfo, Record, Settings, SolverIdentity
 from laplace_verify.diagnosis import diagnose
-from laplace_verify.measure.results import ErrorMap, Level, Order, Study
+from laplace_verify.measure.results import ErrorMap
 from laplace_verify.measure.verdict import Verdict
 
 
-def study(case_id, verdict, features, *, observed=2.0, norm="max", error_map=None, known=None, unknowns=49):
-    level = Level(size=8, h=0.125, unknowns=unknowns, seconds=0.1, errors={norm: 0.1}, relative={})
-    order = Order(
-        observed=observed,
-        low=observed - 0.1,
-        high=observed + 0.1,
-        formal=2.0,
-        expected=2.0,
-        decides=True,
-        tolerance=0.5,
-        verdict=verdict if verdict in (Verdict.PASS, Verdict.FAIL) else None,
-    )
-    ran = verdict is not Verdict.ERROR
-    return Study(
-        solver="pool model",
-        case_id=case_id,
-        case_title=case_id,
-        verdict=verdict,
-        sizes=[8],
-        seed=0,
-        levels=[level] if ran else [],
-        orders={norm: order} if ran else {},
-        features=features,
-        error_map=error_map,
-        known=known,
-    )
-
-
-def record(studies, dims=None):
-    sides = {
-        "left": ((0.0, 1.0), (0.0, 0.0)),
-        "right": ((1.0, 0.0), (1.0, 1.0)),
-        "bottom": ((0.0, 0.0), (1.0, 0.0)),
-        "top": ((1.0, 1.0), (0.0, 1.0)),
-    }
-    cases = tuple(
-        CaseInfo(
-            id=s.case_id,
-            title="",
-            dim=(dims or {}).get(s.case_id, 2),
-            shape="rectangle",
-            pieces=tuple(
-                PieceInfo(name=n, condition="robin" if n == "top" else "dirichlet", outline=o)
-                for n, o in sides.items()
-            ),
-        )
-        for s in studies
-    )
-    return Record(
-        package_version="0",
-        solver=SolverIdentity(name="s", kind="other", order="2"),
-        settings=Settings(),
-        environment=Environment(python="", numpy="", scipy="", platform="", cpus=1),
-        studies=tuple(studies),
-        cases=cases,
-    )
-
-
-def test_nothing_is_suspected_where_nothing_fails():
+def test_nothing_is_suspected_where_nothing_fails(study, record):
     passing = [study(f"p{k}", Verdict.PASS, {"Neumann condition": True}) for k in range(3)]
     undecided = study("u", Verdict.INCONCLUSIVE, {"tensor": True})
     assert diagnose(record([*passing, undecided])) == []
     assert diagnose(record([])) == []
 
 
-def test_a_condition_that_only_failing_cases_have_comes_first_with_its_counts():
+def test_a_condition_that_only_failing_cases_have_comes_first_with_its_counts(study, record):
     failing = [
         study(
             f"f{k}", Verdict.FAIL, {"Neumann condition": True, "shape": "disc" if k else "box"}, observed=1.6
@@ -97,13 +38,13 @@ def test_a_condition_that_only_failing_cases_have_comes_first_with_its_counts():
     )  # one failing case in six, half of the passing
 
 
-def test_a_feature_that_passing_cases_have_as_often_is_no_suspect():
+def test_a_feature_that_passing_cases_have_as_often_is_no_suspect(study, record):
     failing = [study(f"f{k}", Verdict.FAIL, {"smooth": True}, observed=1.6) for k in range(3)]
     passing = [study(f"p{k}", Verdict.PASS, {"smooth": True}) for k in range(3)]
     assert all("smooth" not in suspect.text for suspect in diagnose(record(failing + passing)))
 
 
-def test_features_of_the_same_cases_are_named_together_general_one_first():
+def test_features_of_the_same_cases_are_named_together_general_one_first(study, record):
     failing = [study(f"f{k}", Verdict.FAIL, {"tensor": True, "a tag": True}, observed=1.6) for k in range(2)]
     passing = [study(f"p{k}", Verdict.PASS, {"tensor": False}) for k in range(2)]
     first = diagnose(record(failing + passing))[0]
@@ -111,7 +52,7 @@ def test_features_of_the_same_cases_are_named_together_general_one_first():
     assert "a tag: these cases cannot tell them apart" in first.text
 
 
-def test_two_features_are_named_together_when_neither_explains_alone():
+def test_two_features_are_named_together_when_neither_explains_alone(study, record):
     both = {"Neumann condition": True, "tensor": True}
     failing = [study(f"f{k}", Verdict.FAIL, both, observed=1.6) for k in range(3)]
     passing = [study(f"n{k}", Verdict.PASS, {"Neumann condition": True}) for k in range(3)]
@@ -122,12 +63,12 @@ def test_two_features_are_named_together_when_neither_explains_alone():
     )
 
 
-def test_known_deviations_are_not_explained():
+def test_known_deviations_are_not_explained(study, record):
     known = study("old", Verdict.FAIL, {"tensor": True}, observed=1.0, known="first order by design")
     assert diagnose(record([known, study("p", Verdict.PASS, {})])) == []
 
 
-def test_smallest_case_has_lowest_dimension_then_fewest_unknowns():
+def test_smallest_case_has_lowest_dimension_then_fewest_unknowns(study, record):
     failing = [
         study("solid", Verdict.FAIL, {"x": True}, unknowns=5),
         study("large", Verdict.FAIL, {"x": True}, unknowns=90),
@@ -145,13 +86,13 @@ def test_smallest_case_has_lowest_dimension_then_fewest_unknowns():
         (1.5, "H1-semi", "gradient or flux only"),
     ],
 )
-def test_manner_of_failing_is_named(observed, norm, words):
+def test_manner_of_failing_is_named(study, record, observed, norm, words):
     failing = [study(f"f{k}", Verdict.FAIL, {}, observed=observed, norm=norm) for k in range(3)]
     found = diagnose(record([*failing, study("p", Verdict.PASS, {})]))
     assert [words in suspect.text for suspect in found] == [True]
 
 
-def test_a_single_failing_case_is_spoken_of_in_the_singular():
+def test_a_single_failing_case_is_spoken_of_in_the_singular(study, record):
     found = diagnose(record([study("f", Verdict.FAIL, {}, observed=0.0), study("p", Verdict.PASS, {})]))
     assert found[0].text.startswith(
         "The only one of the failing cases does not get smaller errors by refinement: it"
@@ -159,7 +100,7 @@ def test_a_single_failing_case_is_spoken_of_in_the_singular():
 
 
 @pytest.mark.parametrize(("decay", "named"), [(8.0, True), (0.0, False)])
-def test_errors_crowded_at_a_condition_are_located_and_even_ones_are_not(decay, named):
+def test_errors_crowded_at_a_condition_are_located_and_even_ones_are_not(study, record, decay, named):
     points = np.random.default_rng(11).uniform(0.0, 1.0, (600, 2))
     errors = np.exp(decay * (points[:, 1] - 1)) * (1 + 0.1 * np.sin(37 * points[:, 0]))
     crowded = ErrorMap(size=8, points=points.tolist(), errors=errors.tolist())
@@ -168,12 +109,12 @@ def test_errors_crowded_at_a_condition_are_located_and_even_ones_are_not(decay, 
     assert any("next to pieces with a Robin condition" in text for text in texts) == named
 
 
-def test_without_a_passing_case_the_common_ground_is_suspected():
+def test_without_a_passing_case_the_common_ground_is_suspected(study, record):
     found = diagnose(record([study(f"f{k}", Verdict.FAIL, {"x": True}, observed=1.6) for k in range(2)]))
     assert found[0].text.startswith("None of the cases is passing to compare with")
 
 
-def test_broken_cases_are_explained_apart_from_failing_ones():
+def test_broken_cases_are_explained_apart_from_failing_ones(study, record):
     broken = [study(f"b{k}", Verdict.ERROR, {"shape": "disc"}) for k in range(2)]
     others = [
         study("p", Verdict.PASS, {"shape": "box"}),
@@ -184,7 +125,7 @@ def test_broken_cases_are_explained_apart_from_failing_ones():
     assert any(text.startswith("tensor: ") for text in texts)
 
 
-def test_same_record_same_suspects():
+def test_same_record_same_suspects(study, record):
     failing = [study(f"f{k}", Verdict.FAIL, {"a": True, "b": True, "c": "x"}, observed=1.0) for k in range(3)]
     one = record([*failing, study("p", Verdict.PASS, {"b": True})])
     assert diagnose(one) == diagnose(one)

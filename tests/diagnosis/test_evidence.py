@@ -1,0 +1,150 @@
+"""Local orders, remarks, polynomials and laws as evidence, each with a twin that must say nothing."""
+
+import pytest
+
+from laplace_verify.diagnosis import diagnose
+from laplace_verify.diagnosis.found_degree import found_degree
+from laplace_verify.diagnosis.signs import SIGNS
+from laplace_verify.measure.floors import named_floor
+from laplace_verify.measure.verdict import Verdict
+from laplace_verify.principles import Check, check_principle
+from laplace_verify.solvers.samples import FAULTS, five_point
+
+PASS, FAIL, OPEN = Verdict.PASS, Verdict.FAIL, Verdict.INCONCLUSIVE
+
+
+def falling(start, order):
+    return [start * 2.0 ** (-order * k) for k in range(4)]
+
+
+def local(**orders):
+    """Errors near the sides and inside that end at the sizes given, falling at the orders given."""
+    return {place: [e * 8.0**order for e in falling(last, order)] for place, (last, order) in orders.items()}
+
+
+def suspects(record, *studies, checks=()):
+    return [suspect.text for suspect in diagnose(record(studies, checks=checks))]
+
+
+def test_a_slow_and_largest_error_next_to_a_condition_is_a_place(study, record):
+    near_top = local(top=(0.1, 1.0), left=(0.01, 2.0), interior=(0.08, 1.9))
+    texts = suspects(
+        record,
+        *(study(f"f{k}", FAIL, {}, observed=1.6, local=near_top) for k in range(3)),
+        study("p", PASS, {}),
+    )
+    assert texts[0] == (
+        "The largest error lies next to pieces with a Robin condition in all 3 failing cases and falls at "
+        "order 1.0 there, 1.9 inside, 2.0 next to other pieces"
+    )
+
+
+def test_a_mistake_in_the_equation_inside_is_told_from_one_at_the_boundary(study, record):
+    inside = local(top=(0.05, 1.0), left=(0.04, 1.0), interior=(0.1, 1.0))
+    texts = suspects(
+        record,
+        *(study(f"f{k}", FAIL, {}, observed=1.0, local=inside) for k in range(3)),
+        study("p", PASS, {}),
+    )
+    (place,) = [text for text in texts if text.startswith("The largest error")]
+    assert "lies inside, away from all pieces in all 3 failing cases" in place
+    assert place.endswith("look at the equation inside, or at what every case uses")
+
+
+def test_places_whose_error_falls_as_it_should_are_none(study, record):
+    sound = local(top=(0.1, 2.0), left=(0.01, 3.0), interior=(0.08, 2.0))
+    texts = suspects(
+        record, *(study(f"f{k}", FAIL, {}, observed=1.6, local=sound) for k in range(3)), study("p", PASS, {})
+    )
+    assert not [text for text in texts if text.startswith("The largest error")]
+
+
+def polynomial(degree, **features):
+    flags = {name.replace("_", " "): value for name, value in features.items()}
+    return {"harmonic polynomial": float(degree), **flags}
+
+
+def test_the_degree_that_comes_out_exact_is_found(study):
+    dirichlet = {"only Dirichlet conditions": True}
+    studies = [
+        study(f"d{k}", PASS, polynomial(k) | dirichlet, nodal=1e-15 if k < 4 else 1e-4, local=local())
+        for k in range(1, 6)
+    ]
+    assert found_degree(studies) == 3
+    assert found_degree(studies[3:]) is None
+    assert found_degree([]) is None
+
+
+@pytest.mark.parametrize(
+    ("feature", "miss", "named"),
+    [
+        ("Neumann condition", 1e-5, True),
+        ("Neumann condition", 1e-15, False),
+        ("Robin condition", 1e-5, False),  # sound schemes may integrate alpha u by a rule that is not exact
+        ("curved boundary", 1e-5, False),
+    ],
+)
+def test_a_polynomial_missed_under_another_condition_is_a_suspect_though_all_pass(
+    study, record, feature, miss, named
+):
+    exact = [
+        study(f"d{k}", PASS, polynomial(1) | {"only Dirichlet conditions": True}, nodal=1e-15)
+        for k in range(2)
+    ]
+    texts = suspects(record, *exact, study("n", PASS, polynomial(1) | {feature: True}, nodal=miss))
+    words = (
+        "Harmonic polynomials of degree up to 1 come out to round-off with Dirichlet data, but not in 1 case"
+    )
+    assert any(text.startswith(words) and feature in text for text in texts) == named
+
+
+def test_higher_degrees_are_hints_where_something_fails(study, record):
+    dirichlet = study("d", PASS, polynomial(3) | {"only Dirichlet conditions": True}, nodal=1e-15)
+    flux = polynomial(3) | {"Neumann condition": True}
+    assert suspects(record, dirichlet, study("n", PASS, flux, nodal=1e-4)) == []
+    texts = suspects(record, dirichlet, study("n", FAIL, flux, nodal=1e-4, observed=1.6))
+    assert any("not in 1 case with other data" in text for text in texts)
+
+
+@pytest.mark.parametrize("relative", [1e-7, 1e-5, 1e-14])
+def test_every_named_floor_is_a_sign(study, record, relative):
+    remark = f"the error stays near 1: {named_floor(relative)}"
+    found = suspects(record, study("o", OPEN, {}, reasons=[remark]), study("p", PASS, {}))
+    assert "no case fails, remarked in 1 of the 2 cases" in found[0]
+
+
+def test_a_remark_where_nothing_fails_names_what_the_remarked_cases_share(study, record):
+    remark = "size 64: the L2 error 1e-2 is 30 times that of interpolating the exact solution"
+    studies = [study(f"r{k}", PASS, {"Robin condition": True}, remarks=[remark]) for k in range(2)]
+    first = suspects(record, *studies, study("p", PASS, {}))[0]
+    assert first.startswith("The error constant is far above that of interpolation")
+    assert first.endswith("Robin condition: both remarked cases have it, none of the others")
+    assert suspects(record, study("q", PASS, {}, remarks=["the planned sizes left the verdict open"])) == []
+
+
+def test_an_iteration_that_stops_early_is_weighed_beside_failing_cases(study, record):
+    remark = "the iteration stops early: a tolerance of 1e-5 in place of 1e-3 changes the L2 error"
+    failing = [study(f"f{k}", FAIL, {}, observed=0.0, remarks=[remark]) for k in range(2)]
+    assert suspects(record, *failing, study("p", PASS, {}))[0].startswith("The iteration stops early")
+    assert not any(sign.cause for sign in SIGNS if "error constant" in sign.meaning)
+
+
+def test_what_open_cases_share_is_said_where_nothing_fails(study, record):
+    open_ = [study(f"o{k}", OPEN, {"slit": True}) for k in range(2)]
+    found = suspects(record, *open_, study("p", PASS, {"slit": False}))
+    assert found == ["slit: both open cases have it, none of the passing"]
+
+
+def test_a_law_says_what_its_simplest_problem_needs(study, record):
+    check = check_principle(FAULTS["flux for gradient"].adapter, "affine fields reproduced")
+    (text,) = suspects(record, study("p", PASS, {}), checks=[check])
+    assert "the simplest problem that shows it has Neumann condition, conductivity other than 1" in text
+    kept = check_principle(five_point, "affine fields reproduced")
+    assert suspects(record, study("p", PASS, {}), checks=[kept]) == []
+
+
+def test_a_law_without_a_case_has_none(record):
+    broken = Check(law="mean value", verdict=FAIL, reason="broken")
+    (suspect,) = diagnose(record([], checks=[broken]))
+    assert suspect.case_id == ""
+    assert suspect.text == "The law 'mean value' is broken; typical of the equation inside"
