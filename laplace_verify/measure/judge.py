@@ -242,12 +242,15 @@ def _few(series: Series) -> str:
 
 
 def _sentence(series: Series, expectation: Expectation, fit: OrderFit | None, finding: Finding | None) -> str:
-    """Return, say, "max: formal order 2, expected 2, observed 1.02 [0.95, 1.09] over 4 levels: FAIL"."""
+    """Return, say, "max: formal order 2, observed 1.02 [0.95, 1.09] over 4 levels: FAIL".
+
+    The expected order is named where it differs from the formal one.
+    """
     parts = []
     formal, expected = expectation.formal, expectation.expected
     if formal is not None:
         parts.append(f"formal order {formal if isinstance(formal, str) else format(formal, '.3g')}")
-    if expected is not None:
+    if expected is not None and (expected != formal or expectation.claimed):
         whose = " (claimed by its author)" if expectation.claimed else ""
         parts.append(f"expected {expected if isinstance(expected, str) else format(expected, '.3g')}{whose}")
     if fit is not None:
