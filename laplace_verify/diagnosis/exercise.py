@@ -17,11 +17,12 @@ from laplace_verify.campaign import Record, verify
 from laplace_verify.cases import catalogue
 from laplace_verify.diagnosis.suspects import diagnose
 from laplace_verify.errors import AdapterError, nearest_names
+from laplace_verify.measure.results import Study
 from laplace_verify.measure.verdict import Verdict
 from laplace_verify.solvers.adapter import Adapter
 from laplace_verify.solvers.samples import ALL, FAULTS, Fault
 
-__all__ = ["Outcome", "chosen_faults", "contrast_for", "exercise", "sound_outcome"]
+__all__ = ["Outcome", "chosen_faults", "contrast_for", "exercise"]
 
 CONTRAST = (
     "rod-two-temperatures", "rod-fixed-and-flux", "plate-saddle", "plate-cubic", "plate-flux-top",
@@ -38,13 +39,15 @@ ACCEPTED = ("NOT_APPLICABLE", "NOT_RUN")
 class Outcome:
     """What became of one fault.
 
-    `cases` and `laws` map names to verdicts; `remarks` are those that the sound sample does not get.
+    `cases` and `laws` map names to verdicts, `sound` those of the sound sample on the same cases; `remarks`
+    are those that the sound sample does not get.
     """
 
     name: str
     fault: Fault
     cases: dict[str, Verdict]
     laws: dict[str, Verdict]
+    sound: dict[str, Verdict]
     remarks: tuple[str, ...]
     suspect: str
 
@@ -124,27 +127,24 @@ def exercise(
         Called with the name of a fault before it is run.
     """
     samples = {solver.name: solver for solver in ALL}
+    usual: dict[str, dict[str, Study]] = {}  # sample -> case -> what the sound sample gets, run once
     for name, fault in faults.items():
         if progress is not None:
             progress(name)
         sound = samples[fault.sample]
         ids = [*fault.shown_by, *contrast_for(sound, fault.shown_by)]
         record = verify(fault.adapter, ids, principles=principles, seed=seed, workers=workers)
-        usual = verify(sound, ids, principles=False, seed=seed, workers=workers)
-        yield _outcome(name, fault, record, usual)
+        known = usual.setdefault(sound.name, {})
+        new = [id_ for id_ in ids if id_ not in known]
+        if new:
+            ran = verify(sound, new, principles=False, seed=seed, workers=workers)
+            known.update({study.case_id: study for study in ran.studies})
+        yield _outcome(name, fault, record, [known[id_] for id_ in ids])
 
 
-def sound_outcome(
-    solver: Adapter, ids: Sequence[str], *, workers: int = 1, seed: int = 0
-) -> dict[str, Verdict]:
-    """Return case -> verdict of a sound solver, cases it cannot do left out."""
-    record = verify(solver, ids, principles=False, seed=seed, workers=workers)
-    return {study.case_id: study.verdict for study in record.studies if study.verdict not in ACCEPTED}
-
-
-def _outcome(name: str, fault: Fault, record: Record, usual: Record) -> Outcome:
+def _outcome(name: str, fault: Fault, record: Record, usual: Sequence[Study]) -> Outcome:
     """Put together what a fault and its sound twin got."""
-    known = {(study.case_id, _kind(remark)) for study in usual.studies for remark in study.remarks}
+    known = {(study.case_id, _kind(remark)) for study in usual for remark in study.remarks}
     remarks = tuple(
         f"{study.case_id}: {remark}"
         for study in record.studies
@@ -154,11 +154,17 @@ def _outcome(name: str, fault: Fault, record: Record, usual: Record) -> Outcome:
     return Outcome(
         name=name,
         fault=fault,
-        cases={s.case_id: s.verdict for s in record.studies if s.verdict not in ACCEPTED},
+        cases=_verdicts(record.studies),
         laws={check.law: check.verdict for check in record.checks if check.verdict not in ACCEPTED},
+        sound=_verdicts(usual),
         remarks=remarks,
         suspect=_first_suspect(record, remarks),
     )
+
+
+def _verdicts(studies: Iterable[Study]) -> dict[str, Verdict]:
+    """Return case -> verdict, cases that a solver cannot do left out."""
+    return {study.case_id: study.verdict for study in studies if study.verdict not in ACCEPTED}
 
 
 def _first_suspect(record: Record, remarks: Sequence[str]) -> str:

@@ -33,7 +33,7 @@ def exercise_rows(outcomes: Sequence[Outcome], limit: int | None = SHORT) -> lis
 
 
 def exercise_summary(outcomes: Sequence[Outcome]) -> str:
-    """Return the rates by effect and the share of right first suspects, a line each."""
+    """Return the rates by effect, the share of right first suspects and the false alarms, a line each."""
     lines = []
     said = {"order": "FAIL", "accuracy": "at least remarked", "harmless": "pass"}
     for effect in EFFECTS:
@@ -41,15 +41,35 @@ def exercise_summary(outcomes: Sequence[Outcome]) -> str:
         if chosen:
             good = sum(found.caught for found in chosen)
             lines.append(f"{effect}: {good} of {len(chosen)} {said[effect]}")
-    wrong = [found for found in outcomes if found.fault.effect != "harmless" and found.caught]
-    if wrong:
-        right = sum(found.suspected for found in wrong)
-        lines.append(f"first suspect right: {right} of {len(wrong)} ({100 * right / len(wrong):.0f} %)")
+    caught = [found for found in outcomes if found.fault.effect != "harmless" and found.caught]
+    if caught:
+        shares = [("", caught)]
+        shares += [(f" ({effect})", [f for f in caught if f.fault.effect == effect]) for effect in EFFECTS]
+        lines += [f"first suspect right{which}: {_share(group)}" for which, group in shares if group]
     laws = [found for found in outcomes if found.fault.effect == "order" and found.laws]
     if laws:
         count = sum(any(verdict == "FAIL" for verdict in found.laws.values()) for found in laws)
         lines.append(f"of the order faults, seen by the laws alone: {count} of {len(laws)}")
-    return "\n".join(lines)
+    return "\n".join([*lines, _sound(outcomes)])
+
+
+def _share(outcomes: Sequence[Outcome]) -> str:
+    """Return how many first suspects are right."""
+    right = sum(found.suspected for found in outcomes)
+    return f"{right} of {len(outcomes)} ({100 * right / len(outcomes):.0f} %)"
+
+
+def _sound(outcomes: Sequence[Outcome]) -> str:
+    """Return the false alarms: what the sound samples get on the cases of their faults."""
+    verdicts = {
+        (found.fault.sample, case): verdict for found in outcomes for case, verdict in found.sound.items()
+    }
+    said = []
+    for words, kinds in (("FAIL", ("FAIL",)), ("stay open", ("INCONCLUSIVE", "ERROR"))):
+        alarms = [f"{case} ({sample})" for (sample, case), verdict in verdicts.items() if verdict in kinds]
+        said.append(f"{len(alarms)} {words}" + (f" ({', '.join(alarms)})" if alarms else ""))
+    samples = len({sample for sample, _ in verdicts})
+    return f"sound solvers: of {len(verdicts)} cases over {samples} samples {', '.join(said)}"
 
 
 def exercise_markdown(outcomes: Sequence[Outcome], command: str) -> str:

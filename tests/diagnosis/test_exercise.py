@@ -17,7 +17,12 @@ PASS, FAIL, OPEN = Verdict.PASS, Verdict.FAIL, Verdict.INCONCLUSIVE
 
 
 def outcome(
-    effect, cases=(PASS,), laws=(PASS,), remarks=(), suspect="Neumann condition: all 3 failing cases"
+    effect,
+    cases=(PASS,),
+    laws=(PASS,),
+    remarks=(),
+    suspect="Neumann condition: all 3 failing cases",
+    sound=(),
 ):
     fault = Fault(
         description="a flux enters twice", adapter=five_point, sample=five_point.name, kind="flux sign",
@@ -26,6 +31,7 @@ def outcome(
     return Outcome(
         name="twice", fault=fault, cases={f"case-{k}": v for k, v in enumerate(cases)},
         laws={f"law-{k}": v for k, v in enumerate(laws)}, remarks=remarks, suspect=suspect,
+        sound={f"case-{k}": v for k, v in enumerate(sound)},
     )  # fmt: skip
 
 
@@ -58,6 +64,15 @@ def test_the_summary_counts_rates_by_effect():
     assert "order: 1 of 2 FAIL" in text
     assert "harmless: 1 of 1 pass" in text
     assert "first suspect right: 1 of 1 (100 %)" in text
+    assert "first suspect right (order): 1 of 1 (100 %)" in text
+    assert "first suspect right (accuracy)" not in text
+
+
+def test_the_summary_counts_false_alarms_once_a_case():
+    quiet = [outcome("order", sound=(PASS, PASS)), outcome("harmless", sound=(PASS,))]
+    assert "sound solvers: of 2 cases over 1 samples 0 FAIL, 0 stay open" in exercise_summary(quiet)
+    loud = exercise_summary([outcome("order", sound=(FAIL, OPEN, PASS))])
+    assert "1 FAIL (case-0 (five-point finite differences)), 1 stay open (case-1" in loud
 
 
 def test_the_report_holds_every_fault_and_reads_back_as_csv():
