@@ -7,6 +7,7 @@ from collections.abc import Sequence
 from itertools import pairwise
 
 from laplace_verify.measure.results import Level
+from laplace_verify.measure.series import ROUND_OFF
 from laplace_verify.measure.smoothness import is_functional
 
 __all__ = ["oddities", "sign_changes"]
@@ -63,10 +64,12 @@ def _uneven(levels: Sequence[Level], dim: int, kind: str) -> list[str]:
 
 
 def _unsolved(levels: Sequence[Level]) -> list[str]:
-    """Remark reported residuals that are not well below the relative error."""
+    """Remark reported residuals above round-off that are not well below the relative error."""
     for level in levels:
         error = level.relative.get("L2", level.relative.get("max"))
-        if level.residual is not None and error is not None and level.residual > WELL_BELOW * error > 0:
+        if level.residual is None or error is None or level.residual <= ROUND_OFF:
+            continue
+        if level.residual > WELL_BELOW * error > 0:
             return [
                 f"size {level.size}: the reported residual {level.residual:.1e} is not well below the "
                 f"relative error {error:.1e}: part of the error may be the iteration's"

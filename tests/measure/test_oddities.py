@@ -32,3 +32,9 @@ def test_residuals_not_well_below_the_error_are_remarked(residual, remarked):
     assert bool(remarks) is remarked
     if remarked:
         assert "reported residual 2.0e-04 is not well below" in remarks[0]
+
+
+@pytest.mark.parametrize(("size", "remarked"), [(1e-15, False), (1e-8, True)])
+def test_a_residual_at_round_off_is_no_remark_where_the_answer_is_exact(size, remarked):
+    levels = [level(n, 1 / n, n * n, error=size, residual=size) for n in (8, 16)]
+    assert bool(oddities(levels)[1]) == remarked
