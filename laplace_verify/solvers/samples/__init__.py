@@ -6,6 +6,7 @@ works.
 
 from __future__ import annotations
 
+from laplace_verify.solvers.samples.cell_centred import cell_centred
 from laplace_verify.solvers.samples.chebyshev_collocation import chebyshev
 from laplace_verify.solvers.samples.faults import FAULTS, Fault
 from laplace_verify.solvers.samples.finite_difference import five_point, seven_point
@@ -18,6 +19,7 @@ __all__ = [
     "ALL",
     "FAULTS",
     "Fault",
+    "cell_centred",
     "chebyshev",
     "five_point",
     "fundamental_solutions",
@@ -27,4 +29,4 @@ __all__ = [
     "walk_on_spheres",
 ]
 
-ALL = (five_point, seven_point, p1_element, chebyshev, fundamental_solutions, walk_on_spheres)
+ALL = (five_point, seven_point, cell_centred, p1_element, chebyshev, fundamental_solutions, walk_on_spheres)

@@ -8,7 +8,8 @@ from __future__ import annotations
 
 from laplace_verify.solvers.samples.fault import Fault
 from laplace_verify.solvers.samples.faults_grid import GRID_FAULTS
+from laplace_verify.solvers.samples.faults_volume import VOLUME_FAULTS
 
 __all__ = ["FAULTS", "Fault"]
 
-FAULTS: dict[str, Fault] = {**GRID_FAULTS}
+FAULTS: dict[str, Fault] = {**GRID_FAULTS, **VOLUME_FAULTS}

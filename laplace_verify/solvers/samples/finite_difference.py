@@ -18,7 +18,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field, replace
-from functools import partial
+from typing import Any
 
 import numpy as np
 import scipy.sparse as sp
@@ -27,16 +27,25 @@ from scipy.interpolate import interpn
 from laplace_verify.arrays import Array, BoolArray, IntArray
 from laplace_verify.errors import AnswerError
 from laplace_verify.problems import Piece, Problem
-from laplace_verify.solvers.adapter import Adapter, Refused, adapt
+from laplace_verify.solvers.adapter import Refused, adapt
 from laplace_verify.solvers.answer import Answer
 from laplace_verify.solvers.samples.corner_rows import corner_rows
 from laplace_verify.solvers.samples.input_checks import refuse_ill_posed
 from laplace_verify.solvers.samples.levels import level_shift
-from laplace_verify.solvers.samples.linear_systems import conjugate_gradients, direct
+from laplace_verify.solvers.samples.linear_systems import LinearSolver, conjugate_gradients, direct
 from laplace_verify.solvers.samples.rectilinear import Grid, Patch, axis_balances, cells_along, grid_on
 from laplace_verify.solvers.samples.seams import facing_nodes, masters, spread
 
-__all__ = ["SCHEME", "Equations", "Scheme", "five_point", "five_point_with", "seven_point", "solve_on_grid"]
+__all__ = [
+    "IN_SPACE",
+    "SCHEME",
+    "Equations",
+    "Scheme",
+    "Side",
+    "five_point",
+    "seven_point",
+    "solve_on_grid",
+]
 
 
 @dataclass(slots=True, eq=False)
@@ -144,76 +153,7 @@ def carried_load(equations: Equations, sides: list[Side]) -> Array:  # noqa: ARG
     return equations.load[free] - carried
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Scheme:
-    """The decisions that make a finite-difference solver."""
-
-    accept: Callable[[Problem], None] = refuse_ill_posed
-    facing: Callable[[Side, Side], tuple[IntArray, IntArray]] = facing_nodes
-    stencil: Callable[[Grid, Array], sp.csr_array] = box_stencil
-    corners: Callable[[Grid, Array, list[Patch]], sp.csr_array] = corner_rows
-    robin: Callable[[Equations, Side], None] = half_cell_transfer
-    neumann: Callable[[Equations, Side], None] = half_cell_flux
-    dirichlet: Callable[[Equations, Side], None] = held_values
-    load: Callable[[Equations, list[Side]], Array] = carried_load
-
-
-SCHEME = Scheme()
-
-SWEEPS = 40  # at most, over the lagged rows of edges
-SETTLED = 1e-10  # relative change that ends them
-
-
-# ---- putting it together -------------------------------------------------------------------------
-
-
-def solve_on_grid(problem: Problem, n: int, scheme: Scheme = SCHEME) -> Answer:
-    """Solve div(K grad u) = 0 on an interval, rectangle, L-shape or box with n cells along every side."""
-    scheme.accept(problem)
-    grid = grid_on(problem.shape, n, interface_lines(problem), problem.coordinates)
-    tensor, regions = material(problem, grid)
-    sides = [
-        Side(grid=grid, patch=grid.patch(piece.boundary), piece=piece, tensor=tensor, regions=regions)
-        for piece in problem.pieces
-        if piece.kind != "axis"  # its faces have no area: the balance is closed as it is
-    ]
-    equations = assemble(grid, tensor, sides, scheme)
-    values, residual, iterations = solved(equations, scheme, sides)
-    if equations.level_is_free:
-        mean = np.average(values, weights=grid.node_volumes())
-        values = values + level_shift(problem, mean, lambda points: interpolated(grid, values, points))
-    lower, upper = problem.shape.bounding_box
-    return Answer(
-        grid.points,
-        values,
-        cells=grid.cells_by_name(),
-        h=float(np.max((upper - lower) / cells_along(problem.shape, n))),
-        unknowns=int(np.count_nonzero(~equations.held)),
-        fluxes=fluxes(grid, sides, values),
-        residual=residual,
-        iterations=iterations,
-    )
-
-
-def interface_lines(problem: Problem) -> list[list[float]]:
-    """Return the coordinates of the interfaces along each axis; Refused if one follows no axis."""
-    lines: list[list[float]] = [[] for _ in range(problem.dim)]
-    for interface in problem.interfaces:
-        points, normals = interface.sample(8)
-        if not len(points):
-            continue
-        axis = int(np.argmax(np.abs(normals[0])))
-        spread = float(np.ptp(points[:, axis]))
-        if not (np.abs(normals[:, axis]) > 1.0 - 1e-9).all() or spread > 1e-9 * problem.shape.extent:
-            raise Refused(
-                f"the interface {interface.name!r} follows no axis, so no line of the grid can lie on it",
-                beyond=True,
-            )
-        lines[axis].append(float(points[0, axis]))
-    return lines
-
-
-def material(problem: Problem, grid: Grid) -> tuple[Array, dict[str, IntArray]]:
+def cell_material(problem: Problem, grid: Grid) -> tuple[Array, dict[str, IntArray]]:
     """Return K as a matrix (d, d), or a number for every cell, and the cells of each region."""
     if not problem.interfaces:
         return problem.tensor, {}
@@ -222,71 +162,7 @@ def material(problem: Problem, grid: Grid) -> tuple[Array, dict[str, IntArray]]:
     return problem.conductivity_at(middles), cells
 
 
-def assemble(grid: Grid, tensor: Array, sides: list[Side], scheme: Scheme) -> Equations:
-    """Write the balance of every box, then close it piece by piece; Dirichlet comes last and so wins."""
-    count, balance = len(grid.points), scheme.stencil(grid, tensor)
-    open_patches = [side.patch for side in sides if side.piece.kind in ("neumann", "robin")]
-    corners = scheme.corners(grid, tensor, open_patches if tensor.ndim == 2 else [])
-    lagged = None
-    if grid.dim == 3 and corners.nnz:
-        lagged = corners  # conjugate gradients need the symmetric part alone
-    else:
-        balance = balance + corners
-    equations = Equations(
-        balance, np.zeros(count), np.zeros(count, np.bool_), np.zeros(count), np.arange(count), lagged
-    )
-    for kind in ("robin", "neumann", "dirichlet"):
-        for side in sides:
-            if side.piece.kind == kind:
-                getattr(scheme, kind)(equations, side)
-    master = masters(sides, scheme.facing, count)
-    if (master != np.arange(count)).any():
-        equations.join(master)
-    return equations
-
-
-def solved(equations: Equations, scheme: Scheme, sides: list[Side]) -> tuple[Array, float, int | None]:
-    """Return the nodal values, the relative residual, and the number of iterations (None: direct)."""
-    free, grid = ~equations.held, sides[0].grid
-    matrix, load = equations.matrix[free][:, free].tocsc(), scheme.load(equations, sides)
-    volumes = np.bincount(equations.master, grid.node_volumes(), len(free)).astype(np.float64)
-    weights = volumes[free] if equations.level_is_free else None
-    solve = conjugate_gradients if grid.dim == 3 else direct
-    values = equations.values.copy()
-    values[free], iterations = solve(matrix, load, weights)
-    if equations.lagged is not None:
-        for _ in range(SWEEPS):
-            before = values[free]
-            shifted = load - (equations.lagged @ values)[free]
-            values[free], more = solve(matrix, shifted, weights)
-            iterations = (iterations or 0) + (more or 0)
-            if np.max(np.abs(values[free] - before)) <= SETTLED * np.max(np.abs(values)):
-                break
-        else:
-            raise AnswerError(
-                f"the rows of edges did not settle in {SWEEPS} sweeps; the conductivity is too skew"
-            )
-        load = shifted
-    size = max(float(np.max(np.abs(load), initial=0.0)), np.finfo(float).tiny)
-    return (
-        values[equations.master],
-        float(np.max(np.abs(matrix @ values[free] - load), initial=0.0)) / size,
-        iterations,
-    )
-
-
-# ---- what is handed back -------------------------------------------------------------------------
-
-
-def interpolated(grid: Grid, values: Array, points: Array) -> Array:
-    """Return the values between the nodes, linear along every axis."""
-    full = np.zeros([len(axis) for axis in grid.axes])
-    full[tuple(grid.place.T)] = values
-    between: Array = interpn(grid.axes, full, points)
-    return between
-
-
-def fluxes(grid: Grid, sides: list[Side], values: Array) -> dict[str, float]:
+def balanced_fluxes(grid: Grid, sides: list[Side], values: Array) -> dict[str, float]:
     """Return the integral of n . K grad u over every piece.
 
     Periodic pieces have none. On Dirichlet pieces it is what the half cells lack for balance, which is as
@@ -320,13 +196,155 @@ def fluxes(grid: Grid, sides: list[Side], values: Array) -> dict[str, float]:
     return given
 
 
+def nodal_answer(grid: Grid, values: Array, **facts: Any) -> Answer:
+    """Hand back the values at the nodes, to be interpolated within the grid's cells."""
+    return Answer(grid.points, values, cells=grid.cells_by_name(), **facts)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Scheme:
+    """The decisions that make a finite-difference solver."""
+
+    accept: Callable[[Problem], None] = refuse_ill_posed
+    material: Callable[[Problem, Grid], tuple[Array, dict[str, IntArray]]] = cell_material
+    facing: Callable[[Side, Side], tuple[IntArray, IntArray]] = facing_nodes
+    stencil: Callable[[Grid, Array], sp.csr_array] = box_stencil
+    corners: Callable[[Grid, Array, list[Patch]], sp.csr_array] = corner_rows
+    robin: Callable[[Equations, Side], None] = half_cell_transfer
+    neumann: Callable[[Equations, Side], None] = half_cell_flux
+    dirichlet: Callable[[Equations, Side], None] = held_values
+    load: Callable[[Equations, list[Side]], Array] = carried_load
+    solve: LinearSolver = direct
+    level: Callable[[Problem, float, Callable[[Array], Array]], float] = level_shift
+    fluxes: Callable[[Grid, list[Side], Array], dict[str, float]] = balanced_fluxes
+    answer: Callable[..., Answer] = nodal_answer
+
+
+SCHEME = Scheme()
+IN_SPACE = Scheme(solve=conjugate_gradients)
+
+SWEEPS = 40  # at most, over the lagged rows of edges
+SETTLED = 1e-10  # relative change that ends them
+
+
+# ---- putting it together -------------------------------------------------------------------------
+
+
+def solve_on_grid(problem: Problem, n: int, scheme: Scheme = SCHEME) -> Answer:
+    """Solve div(K grad u) = 0 on an interval, rectangle, L-shape or box with n cells along every side."""
+    scheme.accept(problem)
+    grid = grid_on(problem.shape, n, interface_lines(problem), problem.coordinates)
+    tensor, regions = scheme.material(problem, grid)
+    sides = [
+        Side(grid=grid, patch=grid.patch(piece.boundary), piece=piece, tensor=tensor, regions=regions)
+        for piece in problem.pieces
+        if piece.kind != "axis"  # its faces have no area: the balance is closed as it is
+    ]
+    equations = assemble(grid, tensor, sides, scheme)
+    values, residual, iterations = solved(equations, scheme, sides)
+    if equations.level_is_free:
+        mean = np.average(values, weights=grid.node_volumes())
+        values = values + scheme.level(problem, mean, lambda points: interpolated(grid, values, points))
+    lower, upper = problem.shape.bounding_box
+    return scheme.answer(
+        grid,
+        values,
+        h=float(np.max((upper - lower) / cells_along(problem.shape, n))),
+        unknowns=int(np.count_nonzero(~equations.held)),
+        fluxes=scheme.fluxes(grid, sides, values),
+        residual=residual,
+        iterations=iterations,
+    )
+
+
+def interface_lines(problem: Problem) -> list[list[float]]:
+    """Return the coordinates of the interfaces along each axis; Refused if one follows no axis."""
+    lines: list[list[float]] = [[] for _ in range(problem.dim)]
+    for interface in problem.interfaces:
+        points, normals = interface.sample(8)
+        if not len(points):
+            continue
+        axis = int(np.argmax(np.abs(normals[0])))
+        spread = float(np.ptp(points[:, axis]))
+        if not (np.abs(normals[:, axis]) > 1.0 - 1e-9).all() or spread > 1e-9 * problem.shape.extent:
+            raise Refused(
+                f"the interface {interface.name!r} follows no axis, so no line of the grid can lie on it",
+                beyond=True,
+            )
+        lines[axis].append(float(points[0, axis]))
+    return lines
+
+
+def assemble(grid: Grid, tensor: Array, sides: list[Side], scheme: Scheme) -> Equations:
+    """Write the balance of every box, then close it piece by piece; Dirichlet comes last and so wins."""
+    count, balance = len(grid.points), scheme.stencil(grid, tensor)
+    open_patches = [side.patch for side in sides if side.piece.kind in ("neumann", "robin")]
+    corners = scheme.corners(grid, tensor, open_patches if tensor.ndim == 2 else [])
+    lagged = None
+    if grid.dim == 3 and corners.nnz:
+        lagged = corners  # conjugate gradients need the symmetric part alone
+    else:
+        balance = balance + corners
+    equations = Equations(
+        balance, np.zeros(count), np.zeros(count, np.bool_), np.zeros(count), np.arange(count), lagged
+    )
+    for kind in ("robin", "neumann", "dirichlet"):
+        for side in sides:
+            if side.piece.kind == kind:
+                getattr(scheme, kind)(equations, side)
+    master = masters(sides, scheme.facing, count)
+    if (master != np.arange(count)).any():
+        equations.join(master)
+    return equations
+
+
+def solved(equations: Equations, scheme: Scheme, sides: list[Side]) -> tuple[Array, float, int | None]:
+    """Return the nodal values, the relative residual, and the number of iterations (None: direct)."""
+    free, grid = ~equations.held, sides[0].grid
+    matrix, load = equations.matrix[free][:, free].tocsc(), scheme.load(equations, sides)
+    volumes = np.bincount(equations.master, grid.node_volumes(), len(free)).astype(np.float64)
+    weights = volumes[free] if equations.level_is_free else None
+    values = equations.values.copy()
+    values[free], iterations = scheme.solve(matrix, load, weights)
+    if equations.lagged is not None:
+        for _ in range(SWEEPS):
+            before = values[free]
+            shifted = load - (equations.lagged @ values)[free]
+            values[free], more = scheme.solve(matrix, shifted, weights)
+            iterations = (iterations or 0) + (more or 0)
+            if np.max(np.abs(values[free] - before)) <= SETTLED * np.max(np.abs(values)):
+                break
+        else:
+            raise AnswerError(
+                f"the rows of edges did not settle in {SWEEPS} sweeps; the conductivity is too skew"
+            )
+        load = shifted
+    size = max(float(np.max(np.abs(load), initial=0.0)), np.finfo(float).tiny)
+    return (
+        values[equations.master],
+        float(np.max(np.abs(matrix @ values[free] - load), initial=0.0)) / size,
+        iterations,
+    )
+
+
+# ---- what is handed back -------------------------------------------------------------------------
+
+
+def interpolated(grid: Grid, values: Array, points: Array) -> Array:
+    """Return the values between the nodes, linear along every axis."""
+    full = np.zeros([len(axis) for axis in grid.axes])
+    full[tuple(grid.place.T)] = values
+    between: Array = interpn(grid.axes, full, points)
+    return between
+
+
 # ---- the solvers ---------------------------------------------------------------------------------
 
 
 @adapt(
     name="five-point finite differences",
     kind="finite difference",
-    order=2,
+    order={"max": 2, "L1": 2, "L2": 2, "flux": 2},
     dims={1, 2},
     shapes={"interval", "rectangle", "l-shape"},
     conditions={"dirichlet", "neumann", "robin", "periodic"},
@@ -334,6 +352,7 @@ def fluxes(grid: Grid, sides: list[Side], values: Array) -> dict[str, float]:
     coordinates={"cartesian", "axisymmetric", "radial-cylinder", "radial-sphere"},
     error_floor=1e-11,
     reproduces_degree=1,
+    fixes_constant=True,
     checks_well_posedness=True,
 )
 def five_point(problem: Problem, n: int) -> Answer:
@@ -359,9 +378,4 @@ def five_point(problem: Problem, n: int) -> Answer:
 )
 def seven_point(problem: Problem, n: int) -> Answer:
     """Solve on a box by the seven-point formula and conjugate gradients."""
-    return solve_on_grid(problem, n)
-
-
-def five_point_with(scheme: Scheme, name: str) -> Adapter:
-    """Return the five-point solver with another scheme; it still declares what `five_point` does."""
-    return replace(five_point, function=partial(solve_on_grid, scheme=scheme), name=name)
+    return solve_on_grid(problem, n, IN_SPACE)

@@ -11,6 +11,9 @@ has one: u has mean zero, and m spreads what the data lack evenly over the domai
 
 from __future__ import annotations
 
+from collections.abc import Callable
+from typing import TypeAlias
+
 import numpy as np
 import scipy.sparse as sp
 from scipy.sparse.linalg import cg, splu
@@ -18,7 +21,9 @@ from scipy.sparse.linalg import cg, splu
 from laplace_verify.arrays import Array
 from laplace_verify.errors import AnswerError
 
-__all__ = ["conjugate_gradients", "direct"]
+__all__ = ["LinearSolver", "conjugate_gradients", "direct"]
+
+LinearSolver: TypeAlias = Callable[[sp.csc_array, Array, Array | None], tuple[Array, int | None]]
 
 RTOL = 1e-12  # of the residual; the discretisation error stays far above it
 MOST = 10_000
