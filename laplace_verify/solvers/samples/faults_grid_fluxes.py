@@ -25,6 +25,7 @@ FLUX_FAULTS = SEEDS.faults
 WITH_FLUX = ("plate-flux-top", "plate-flux-left", "wall-mixed-conditions", "rod-fixed-and-flux")
 WITH_TRANSFER = ("plate-convection-all-round", "wall-mixed-conditions", "rod-both-convection")
 FLUX = ("Neumann condition", "Neumann data", "neumann on", "Neumann piece")
+ONE_LOST = ("lose one order", "loses one order")
 TRANSFER = ("Robin condition", "Robin coefficient", "robin on")
 
 
@@ -163,7 +164,7 @@ def whole_cell_flux(equations: Equations, side: Side) -> None:
     "whole edge in corners",
     "the corner node takes the flux of a whole edge where it owns half a one",
     kind="half-cell factor",
-    suspects=(*FLUX, "corner"),
+    suspects=(*FLUX, "corner", *ONE_LOST),
     shown_by=("plate-degree-eleven", "wall-mixed-conditions"),
 )
 def whole_edge_in_corners(equations: Equations, side: Side) -> None:
@@ -218,6 +219,7 @@ def flux_of_cell_centres(equations: Equations, side: Side) -> None:
     for axis in range(side.grid.dim):
         if axis != side.patch.axis:
             following = neighbours(side, nodes, axis, 1)
+            following = np.where(np.isin(following, nodes), following, nodes)
             middles = (points[nodes] + points[following]) / 2.0
             equations.load[nodes] += areas * side.piece.data(middles)
             return
