@@ -24,21 +24,58 @@ from laplace_verify.solvers.samples import (
 
 SOUND = {"five": five_point, "p1": p1_element, "chebyshev": chebyshev, "sources": fundamental_solutions}
 
-# which laws catch which fault, and why the others cannot
-CAUGHT = {
-    # the problems drawn are of one material, in Cartesian coordinates
-    "arithmetic mean of conductivities": (),
-    "radius of the outer node": (),
-    "ill-posed input accepted": (),  # they are well posed too
-    "seam shifted": (),  # and have no periodic sides
-    # one-sided differences meet the zero flux of a constant and the constant flux of an affine field
-    "first-order flux": (),
-    "flux sign": ("affine fields reproduced",),  # data of a constant are zero, whatever their sign
-    "flux for gradient": ("affine fields reproduced",),
-    "half-cell factor": ("affine fields reproduced",),
-    "robin coefficient": ("constants reproduced", "affine fields reproduced"),
-    "dirichlet side not carried": ("constants reproduced", "affine fields reproduced", "maximum principle"),
-}
+CONSTANTS, AFFINE, MAXIMUM, MEAN = LAWS
+
+# Which laws catch which fault of finite differences, and why the others cannot.
+SEEN_BY = [
+    ((), "the problems drawn are of one material, on even grids, in Cartesian coordinates", (
+        "arithmetic mean of conductivities", "conductivity of the lower neighbour",
+        "equal spacings taken for granted", "radius of the outer node", "metric factor missing",
+        "metric factor doubled", "reciprocal metric factor",
+    )),
+    ((), "they are well posed, have no periodic sides, and are held somewhere", (
+        "ill-posed input accepted", "seam shifted", "seam reversed", "pinned twice", "regularised",
+        "level not restored",
+    )),
+    ((), "exact for the zero flux of a constant and the constant flux of an affine field", (
+        "first-order flux", "flux of cell centres",
+    )),
+    ((), "no oblong plate with a flux is drawn", ("edge length of the other axis",)),
+    ((), "no law looks at reported gradients and fluxes", (
+        "gradient halved", "gradient exchanged", "reported fluxes of low sides", "reported fluxes one-sided",
+        "reported fluxes without conductivity", "pi with four decimals",
+    )),
+    ((), "the numbers drawn have few binary digits", ("values in single precision",)),
+    ((), "harmless", (
+        "second-order one-sided flux", "dirichlet by rows of the unit matrix", "other corner owner",
+        "corner rows missing", "pinned with unbalanced data", "balanced, then pinned",
+        "conjugate gradients in the plane", "red and black unknowns", "equations scaled",
+    )),
+    ((AFFINE,), "data of a constant are zero, or the same everywhere", (
+        "flux sign", "normal of the low sides", "flux for gradient", "gradient for flux", "half-cell factor",
+        "whole edge in corners", "flux spacing from the number of nodes", "flux on the opposite side",
+        "flux lost", "robin at the inner neighbour", "dirichlet data of the next node",
+        "data of top and left reversed", "corners left to the flux", "dirichlet by a weak penalty",
+        "spacing along x from the number of nodes", "interior weight", "mixed derivative missing",
+        "mixed derivative sign", "tensor exchanged", "value of the nearest node",
+        "constant next to the boundary", "corners filled by means", "coordinates off by one",
+    )),
+    ((CONSTANTS, AFFINE), "data of a constant are alpha times it", (
+        "robin coefficient", "robin sign", "robin coefficient times conductivity", "robin edge length lost",
+        "robin only on high sides",
+    )),
+    ((CONSTANTS, AFFINE, MAXIMUM), "values are lost", (
+        "dirichlet side not carried", "dirichlet carried with the wrong sign",
+    )),
+    ((MEAN,), "second differences of affine fields vanish, whatever their weights", ("spacings exchanged",)),
+    ((AFFINE, MEAN), "a constant may be turned round", ("output exchanged",)),
+    ((CONSTANTS, AFFINE, MEAN), "the system is not solved", (
+        "loose tolerance", "increment instead of residual", "cap on iterations",
+        "factors in single precision",
+    )),
+]  # fmt: skip
+CAUGHT = {name: laws for laws, _, names in SEEN_BY for name in names}
+GRID_FAULTS = {name: fault for name, fault in FAULTS.items() if fault.sample == five_point.name}
 
 
 def violation_of(check, solver):
@@ -49,7 +86,7 @@ def violation_of(check, solver):
 
 
 def test_every_fault_has_its_line():
-    assert set(CAUGHT) == set(FAULTS)
+    assert set(CAUGHT) == set(GRID_FAULTS)
 
 
 def test_laws_come_in_a_fixed_order():
@@ -90,7 +127,7 @@ def test_the_seven_point_sample_keeps_every_law(law, seed):
 
 
 @pytest.mark.slow
-@pytest.mark.parametrize("fault", FAULTS)
+@pytest.mark.parametrize("fault", GRID_FAULTS)
 @pytest.mark.parametrize("law", LAWS)
 def test_faults_are_caught_by_the_laws_that_can_see_them(fault, law):
     solver = FAULTS[fault].adapter

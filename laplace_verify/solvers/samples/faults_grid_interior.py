@@ -45,7 +45,7 @@ SYMMETRY = ("coordinates with a symmetry", "axis")
     "spacings exchanged",
     "h_x and h_y exchanged in the difference formula; invisible on square cells",
     kind="exchanged axes",
-    suspects=("unequal extents", "Dirichlet"),
+    suspects=("unequal extents", "ratio of the sides", "dimension", "do not get smaller errors"),
     shown_by=(*FIXED, "plate-flux-top"),
 )
 def crosswise_stencil(grid: Grid, tensor: Array) -> sp.csr_array:
@@ -92,7 +92,7 @@ def evenly_spaced_stencil(grid: Grid, tensor: Array) -> sp.csr_array:
     "interior weight",
     "differences along y weighted 1.01 times: a mistyped constant in the formula",
     kind="interior weights",
-    suspects=("dimension", "shape"),
+    suspects=("dimension", "shape", "do not get smaller errors"),
     shown_by=(*FIXED, "plate-flux-top"),
 )
 def mistyped_stencil(grid: Grid, tensor: Array) -> sp.csr_array:

@@ -129,7 +129,8 @@ def shrunk_answer(grid: Grid, values: Array, **facts: Any) -> Answer:
     nodal = nodal_answer(grid, values, **facts)
 
     def misplaced(points: Array) -> Array:
-        return nodal.value_at(np.minimum(lower + (points - lower) * scale, upper))
+        moved = nodal.value_at(np.minimum(lower + (points - lower) * scale, upper))
+        return np.where(np.isnan(moved), nodal.value_at(points), moved)  # in a notch there is nothing
 
     return Answer(grid.points, values, evaluate=misplaced, **facts)
 
@@ -176,7 +177,7 @@ def exchanged_gradient(grid: Grid, values: Array, **facts: Any) -> Answer:
     "values in single precision",
     "values kept in an array of 32 bits before they are handed back",
     kind="reduced precision",
-    suspects=("single precision", "dimension", "harmonic polynomial"),
+    suspects=("single precision", "harmonic polynomial", "exactness"),
     shown_by=("plate-affine", "rod-two-temperatures", "plate-layers-across"),
     effect="accuracy",
 )

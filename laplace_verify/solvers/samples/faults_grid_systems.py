@@ -236,7 +236,7 @@ def scaled(matrix: sp.csc_array, load: Array, weights: Array | None) -> tuple[Ar
     "factors in single precision",
     "matrix and right-hand side stored in 32 bits before they are factorised",
     kind="reduced precision",
-    suspects=("single precision", "dimension", "harmonic polynomial"),
+    suspects=("single precision", "harmonic polynomial", "exactness"),
     shown_by=("plate-affine", "rod-two-temperatures", "plate-layers-across", "rod-pure-flux"),
     effect="accuracy",
 )

@@ -221,7 +221,7 @@ def of_the_left(left: Array, right: Array) -> Array:
     "volumes: areas and distances exchanged",
     "fluxes multiplied by the distance and divided by the area of a face; invisible on square cells",
     kind="exchanged axes",
-    suspects=("unequal extents", "Dirichlet", "dimension"),
+    suspects=("unequal extents", "ratio of the sides", "dimension", "do not get smaller errors"),
     shown_by=(*FIXED, "plate-flux-top"),
 )
 def upended(areas: Array, conductivity: Array, widths: Array) -> Array:
