@@ -13,7 +13,7 @@ import numpy.typing as npt
 
 from laplace_verify.errors import LaplaceVerifyError
 
-__all__ = ["Array", "BoolArray", "IntArray", "as_points", "as_values", "blocks", "frozen"]
+__all__ = ["Array", "BoolArray", "IntArray", "as_points", "as_values", "between", "blocks", "frozen"]
 
 Array: TypeAlias = npt.NDArray[np.float64]
 BoolArray: TypeAlias = npt.NDArray[np.bool_]
@@ -93,6 +93,19 @@ def frozen(array: npt.ArrayLike) -> Array:
     copy = np.array(array, dtype=np.float64, order="C")
     copy.flags.writeable = False
     return copy
+
+
+def between(points: Array, low: npt.ArrayLike, high: npt.ArrayLike) -> BoolArray:
+    """Return which points (n, d) lie in the closed box from `low` to `high`, axis by axis: rows are short.
+
+    >>> between(np.array([[0.0, 1.0], [0.5, 3.0]]), (0, 0), (1, 2)).tolist()
+    [True, False]
+    """
+    inside: BoolArray = np.ones(len(points), dtype=bool)
+    for column, a, b in zip(points.T, np.asarray(low), np.asarray(high), strict=True):
+        inside &= column >= a
+        inside &= column <= b
+    return inside
 
 
 def blocks(count: int, size: int = BLOCK) -> Iterator[slice]:

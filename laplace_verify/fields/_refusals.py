@@ -14,6 +14,9 @@ from laplace_verify.fields._precision import working
 
 if TYPE_CHECKING:
     from laplace_verify.fields.base import Field
+    from laplace_verify.fields.edges import Edge, Line, Ring
+    from laplace_verify.fields.sheets import Fan, Sheet
+    from laplace_verify.fields.singular import Cut, Singularity
 
 CUT_DIGITS = 60  # of a precise point that may lie on a cut
 
@@ -36,15 +39,33 @@ class Place:
         return hit if self.side is None else hit & (self.side == 0)
 
 
-def refuse(field: Field, place: Place, *, derivative: bool) -> None:
+@dataclass(frozen=True, slots=True, eq=False)
+class Marks:
+    """A field and where it is not smooth: asked of it once, not block by block."""
+
+    field: Field
+    singularities: tuple[Singularity, ...]
+    edges: tuple[Edge | Line | Ring, ...]
+    sheets: tuple[Fan | Sheet, ...]
+    cuts: tuple[Cut, ...]
+
+    @classmethod
+    def of(cls, field: Field) -> Marks:
+        """Ask a field."""
+        return cls(field, field.singularities, field.edges, field.sheets, field.cuts)
+
+
+def refuse(marks: Marks, place: Place, *, derivative: bool) -> None:
     """Raise FieldError at the first point where the field has no value (or no gradient)."""
-    _at_singular_points(field, place, derivative)
-    _on_edges(field, place, derivative)
-    _on_sheets(field, place, derivative)
-    _on_cuts(field, place)
+    field = marks.field
+    _at_singular_points(marks, place, derivative)
+    _on_edges(marks, place, derivative)
+    _on_sheets(marks, place, derivative)
+    _on_cuts(marks, place)
     if derivative and field.regions:
         _on_interfaces(field, place)
-    valid = field._valid(place.points)
+    with np.errstate(over="ignore"):  # points far out, where an infinite distance tells enough
+        valid = field._valid(place.points)
     if not valid.all():
         raise FieldError(f"{shortened(field.formula)} is not defined at {place.name(~valid)}")
 
@@ -60,8 +81,9 @@ def refuse_infinite(field: Field, place: Place, results: Array) -> None:
         )
 
 
-def _at_singular_points(field: Field, place: Place, derivative: bool) -> None:
-    for singularity in field.singularities:
+def _at_singular_points(marks: Marks, place: Place, derivative: bool) -> None:
+    field = marks.field
+    for singularity in marks.singularities:
         hit = equals(place.points, singularity.point, place.exact)
         if not hit.any():
             continue
@@ -77,10 +99,11 @@ def _at_singular_points(field: Field, place: Place, derivative: bool) -> None:
             )
 
 
-def _on_edges(field: Field, place: Place, derivative: bool) -> None:
+def _on_edges(marks: Marks, place: Place, derivative: bool) -> None:
+    field = marks.field
     if place.exact is not None:
         return  # precise values tell by themselves
-    for edge in field.edges:
+    for edge in marks.edges:
         if edge.exponent > 0 and not (derivative and edge.exponent <= 1):
             continue  # the value has a limit there
         hit = edge.meets(place.points)
@@ -95,8 +118,9 @@ def _on_edges(field: Field, place: Place, derivative: bool) -> None:
             )
 
 
-def _on_sheets(field: Field, place: Place, derivative: bool) -> None:
-    for sheet in field.sheets:
+def _on_sheets(marks: Marks, place: Place, derivative: bool) -> None:
+    field = marks.field
+    for sheet in marks.sheets:
         if not (derivative or sheet.jump):
             continue
         hit = place.undecided(sheet.meets(place.points))
@@ -108,8 +132,9 @@ def _on_sheets(field: Field, place: Place, derivative: bool) -> None:
             )
 
 
-def _on_cuts(field: Field, place: Place) -> None:
-    for cut in field.cuts:
+def _on_cuts(marks: Marks, place: Place) -> None:
+    field = marks.field
+    for cut in marks.cuts:
         if place.exact is None:
             meets = cut.meets(place.points)
         else:

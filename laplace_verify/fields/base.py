@@ -22,7 +22,7 @@ from laplace_verify.contexts import FLOAT, MAX_DIGITS, Number, Precise
 from laplace_verify.errors import FieldError
 from laplace_verify.fields._inputs import Side, as_sides, columns, is_number, shortened, text_of
 from laplace_verify.fields._precision import agreeing, real
-from laplace_verify.fields._refusals import Place, refuse, refuse_infinite
+from laplace_verify.fields._refusals import Marks, Place, refuse, refuse_infinite
 from laplace_verify.fields.edges import Edge, Line, Ring
 from laplace_verify.fields.exact import exact_point, whole
 from laplace_verify.fields.sheets import Fan, Sheet
@@ -176,11 +176,11 @@ class Field(ABC):
         """
         points = as_points(points, self.dim, error=FieldError)
         side = as_sides(side, len(points))
-        values = np.empty(len(points))
+        values, marks = np.empty(len(points)), Marks.of(self)
         for block in blocks(len(points)):
             part, lip = points[block], None if side is None else side[block]
             place = Place(part, lip, first=block.start)
-            refuse(self, place, derivative=False)
+            refuse(marks, place, derivative=False)
             with np.errstate(all="ignore"):  # whatever is not finite is refused by name below
                 values[block] = self._value(FLOAT, columns(part), lip)
             refuse_infinite(self, place, values[block])
@@ -201,11 +201,11 @@ class Field(ABC):
             return self.restricted(region).gradient(points, side)
         points = as_points(points, self.dim, error=FieldError)
         side = as_sides(side, len(points))
-        gradients = np.empty(points.shape)
+        gradients, marks = np.empty(points.shape), Marks.of(self)
         for block in blocks(len(points)):
             part, lip = points[block], None if side is None else side[block]
             place = Place(part, lip, first=block.start)
-            refuse(self, place, derivative=True)
+            refuse(marks, place, derivative=True)
             with np.errstate(all="ignore"):
                 for axis, derivative in enumerate(self._gradient(FLOAT, columns(part), lip)):
                     gradients[block, axis] = derivative
@@ -306,7 +306,7 @@ class Field(ABC):
         place = exact_point((point,) if is_number(point) else point, "point", (self.dim,))  # type: ignore[arg-type]
         lip = as_sides(side, 1)
         row = np.array([[float(c) for c in place]])
-        refuse(self, Place(row, lip, first=None, exact=place), derivative=derivative)
+        refuse(Marks.of(self), Place(row, lip, first=None, exact=place), derivative=derivative)
         one_side = None if lip is None else int(lip[0])
 
         def evaluate(ctx: Precise) -> list[Any]:

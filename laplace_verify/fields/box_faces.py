@@ -17,7 +17,7 @@ from typing import Any
 
 import numpy as np
 
-from laplace_verify.arrays import Array, BoolArray
+from laplace_verify.arrays import Array, BoolArray, between
 from laplace_verify.contexts import FLOAT, Number
 from laplace_verify.errors import FieldError, nearest_names
 from laplace_verify.fields.base import Field
@@ -253,7 +253,7 @@ def inside_box(lower: tuple[Exact, ...], upper: tuple[Exact, ...], points: Array
     """Return which points lie in the closed box, to rounding."""
     low, high = np.array([float(c) for c in lower]), np.array([float(c) for c in upper])
     slack = OUTSIDE * float((high - low).max())
-    return np.asarray(((points >= low - slack) & (points <= high + slack)).all(axis=1))
+    return between(points, low - slack, high + slack)
 
 
 def _point(point: tuple[Exact, ...]) -> str:

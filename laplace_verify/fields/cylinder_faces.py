@@ -138,7 +138,8 @@ class CylinderFaces(Field):
         """Return which points lie in the closed cylinder, to rounding."""
         low, high, radius = float(self.z0), float(self.z1), float(self.radius)
         slack = OUTSIDE * max(high - low, radius)
-        r, z = np.hypot(points[:, 0], points[:, 1]), points[:, 2]
+        x, y, z = points.T
+        r = np.sqrt(x * x + y * y)
         inside: BoolArray = (r <= radius + slack) & (z >= low - slack) & (z <= high + slack)
         return inside
 

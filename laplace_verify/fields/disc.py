@@ -61,9 +61,9 @@ class DiscField(Field):
     def _valid(self, points: Array) -> BoolArray:
         """Return which points lie in the closed disc, to rounding."""
         radius = float(self.radius)
-        offsets = points - np.array([float(c) for c in self.centre])
+        x, y = (column - float(c) for column, c in zip(points.T, self.centre, strict=True))
         slack = OUTSIDE * radius + 4 * np.finfo(np.float64).eps * float(np.abs(self._floats()).max())
-        inside: BoolArray = np.hypot(offsets[:, 0], offsets[:, 1]) <= radius + slack
+        inside: BoolArray = np.sqrt(x * x + y * y) <= radius + slack
         return inside
 
     def _floats(self) -> Array:

@@ -104,17 +104,11 @@ class DiscArcs(DiscField):
     @property
     def singularities(self) -> tuple[Singularity, ...]:
         """The ends of the arcs where the value changes."""
-        centre, radius = [rational(c) for c in self.centre], rational(self.radius)
-        found = []
-        for i, turn in enumerate(self.turns):
-            if rational(self.values[i]) != rational(self.values[i - 1]):
-                unit = _direction(_SOURCE, rational(turn))
-                point = tuple(
-                    float(_SOURCE.number(c) + _SOURCE.number(radius) * e)
-                    for c, e in zip(centre, unit, strict=True)
-                )
-                found.append(Singularity(point=point, exponent=0.0, kind="jump"))
-        return tuple(found)
+        return tuple(
+            Singularity(point=_jump(FLOAT, turn, self.centre, self.radius)[1], exponent=0.0, kind="jump")
+            for i, turn in enumerate(self.turns)
+            if rational(self.values[i]) != rational(self.values[i - 1])
+        )
 
     def _data_text(self) -> str:
         return (
@@ -162,7 +156,7 @@ class DiscArcs(DiscField):
 
     def _from_jump(self, ctx: Any, x: tuple[Any, ...], i: int) -> tuple[tuple[Any, Any], tuple[Any, Any]]:
         """Return e^{i alpha} and z - e^{i alpha} for the start of arc i, to full relative accuracy."""
-        unit, high, low = _jump(ctx, rational(self.turns[i]), self.centre, self.radius)
+        unit, high, low = _jump(ctx, self.turns[i], self.centre, self.radius)
         radius = ctx.number(self.radius)
         return unit, tuple((c - a - b) / radius for c, a, b in zip(x, high, low, strict=True))
 
@@ -183,12 +177,12 @@ def _direction_rounded(ctx: Any, turn: Fraction) -> tuple[Any, Any]:
 
 
 @lru_cache(maxsize=512)
-def _jump(ctx: Any, turn: Fraction, centre: tuple[Exact, ...], radius: Exact) -> Any:
+def _jump(ctx: Any, turn: Exact, centre: tuple[Exact, ...], radius: Exact) -> Any:
     """Return e^{i alpha} and the jump point, in float64 split into its nearest float and the rest."""
     source = _SOURCE if ctx is FLOAT else ctx
-    unit = _direction(source, turn)
+    unit = _direction(source, rational(turn))
     points = [source.number(c) + source.number(radius) * e for c, e in zip(centre, unit, strict=True)]
     if ctx is not FLOAT:
         return unit, points, (ctx.mpf(0), ctx.mpf(0))
-    high = [float(p) for p in points]
+    high = tuple(float(p) for p in points)
     return tuple(float(e) for e in unit), high, [float(p - h) for p, h in zip(points, high, strict=True)]

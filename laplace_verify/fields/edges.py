@@ -13,7 +13,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from laplace_verify.arrays import Array, BoolArray
+from laplace_verify.arrays import Array, BoolArray, between
 from laplace_verify.errors import FieldError
 
 __all__ = ["Edge", "Line", "Ring"]
@@ -47,10 +47,17 @@ class Edge:
 
     def meets(self, points: Array) -> BoolArray:
         """Return which points lie on the segment, to rounding of its direction; exactly if along an axis."""
-        offset, way = np.asarray(points, dtype=np.float64) - self.start, np.subtract(self.end, self.start)
+        points, way = np.asarray(points, dtype=np.float64), np.subtract(self.end, self.start)
         length = math.sqrt(float(way @ way))
-        slanted = np.count_nonzero(way) > 1
-        reach = ROUNDING * float(np.abs([self.start, self.end]).max()) if slanted else 0.0
+        if np.count_nonzero(way) == 1:
+            beyond = (
+                ROUNDING * np.maximum(way, 0.0),
+                ROUNDING * np.minimum(way, 0.0),
+            )  # at the end, not the start
+            low, high = np.minimum(self.start, self.end), np.maximum(self.start, self.end)
+            return between(points, low + beyond[1], high + beyond[0])
+        reach = ROUNDING * float(np.abs([self.start, self.end]).max())
+        offset = points - self.start
         across, along = np.cross(offset, way / length), offset @ (way / length)
         on: BoolArray = np.sqrt((across**2).sum(axis=1)) <= reach
         return on & (along >= -reach) & (along <= length * (1 + ROUNDING) + reach)
@@ -170,9 +177,11 @@ class Ring:
 
     def meets(self, points: Array) -> BoolArray:
         """Return which points lie on the circle, to rounding."""
-        size = self.radius + float(np.abs(self.centre).max())
-        on: BoolArray = self.distance(points) <= ROUNDING * size
-        return on
+        reach = ROUNDING * (self.radius + float(np.abs(self.centre).max()))
+        near: BoolArray = np.abs((points - self.centre) @ np.asarray(self.axis)) <= reach
+        if near.any():  # rare: most blocks are done after the height
+            near[near] = self.distance(points[near]) <= reach
+        return near
 
     def tangents(self, points: Array) -> Array:
         """Return the unit tangents (n, 3) at points of the circle."""

@@ -100,8 +100,9 @@ def offset(ctx: Any, x: Any, place: Exact) -> Any:
     if ctx is not FLOAT:
         return x - ctx.number(place)
     high = float(place)
-    low = 0.0 if isinstance(place, float) else float(Fraction(place) - Fraction(high))
-    return (x - high) - low if low else x - high
+    if place.as_integer_ratio() == high.as_integer_ratio():
+        return x - high
+    return (x - high) - float(Fraction(place) - Fraction(high))
 
 
 def power(ctx: Any, base: Any, exponent: Exact) -> Any:

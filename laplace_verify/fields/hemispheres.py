@@ -135,8 +135,8 @@ class Hemispheres(Field):
 
     def _valid(self, points: Array) -> BoolArray:
         """Return which points lie in the closed ball, to rounding."""
-        offsets = points - np.array([float(c) for c in self.centre])
-        inside: BoolArray = np.sqrt((offsets**2).sum(axis=1)) <= float(self.radius) * (1 + OUTSIDE)
+        x, y, z = (column - float(c) for column, c in zip(points.T, self.centre, strict=True))
+        inside: BoolArray = np.sqrt(x * x + y * y + z * z) <= float(self.radius) * (1 + OUTSIDE)
         return inside
 
 

@@ -14,7 +14,7 @@ from typing import Any
 
 import numpy as np
 
-from laplace_verify.arrays import Array, BoolArray
+from laplace_verify.arrays import Array, BoolArray, between
 from laplace_verify.contexts import Number
 from laplace_verify.errors import FieldError, nearest_names
 from laplace_verify.fields.base import Field
@@ -170,8 +170,7 @@ def in_rectangle(lower: tuple[Exact, ...], upper: tuple[Exact, ...], points: Arr
     low = np.array([float(c) for c in lower])
     high = np.array([float(c) for c in upper])
     slack = OUTSIDE * float((high - low).max())
-    inside = (points >= low - slack) & (points <= high + slack)
-    return np.asarray(inside.all(axis=1))
+    return between(points, low - slack, high + slack)
 
 
 def side_ends(lower: Iterable[Number], upper: Iterable[Number], side: str) -> tuple[Fraction, Fraction]:

@@ -136,12 +136,9 @@ class SpherePair(Field):
         """Return which points are outside both spheres."""
         radius = float(self.radius)
         half = radius + float(self.gap) / 2.0
-        away = points - np.array([float(c) for c in self.centre])
-        least = np.minimum(
-            np.hypot(np.hypot(away[:, 0], away[:, 1]), away[:, 2] - half),
-            np.hypot(np.hypot(away[:, 0], away[:, 1]), away[:, 2] + half),
-        )
-        outside: BoolArray = least >= (1.0 - SURFACE) * radius
+        x, y, z = (column - float(c) for column, c in zip(points.T, self.centre, strict=True))
+        z = np.abs(z) - half  # from the centre of the nearer sphere
+        outside: BoolArray = np.sqrt(x * x + y * y + z * z) >= (1.0 - SURFACE) * radius
         return outside
 
 
