@@ -32,58 +32,127 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable, Iterator
-from functools import lru_cache
+from dataclasses import dataclass
+from functools import lru_cache, partial
 
 import numpy as np
 
 from laplace_verify.arrays import Array, BoolArray, IntArray, blocks
 from laplace_verify.fields.box_axes import ACCURACY, Rows, flow, nearest_images, survival
+from laplace_verify.fields.parity_tables import ParityTable, parity_table, products
 
 __all__ = ["face_slopes", "face_value"]
 
 STEP = 0.25  # of log t: exp(-pi^2 / STEP) = 7e-18
-BLOCK = 512  # points at once: rows of times by points stay in cache
+BLOCK = 1024  # points at once: rows of times by points stay in cache
 GAUSS, PANEL = 40, 20
+SAMPLED = 65  # distances at which the size of a flow is seen
 SHORT = 5.0  # largest v times extent of the innermost panel
 
 Extents = tuple[float, float, float]
-Factors = Callable[[Array, Array, Array, Array, bool], tuple[Rows, Rows, Rows]]
-Part = tuple[float, Array, Factors]
+Factors = Callable[[Array, Array, Array, Array, bool], tuple[Rows, ...]]
+Part = tuple[Array, Factors]
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Rule:
+    """Signed weights of a sum over times, its three factors there, and their tables if they can be had.
+
+    The flow is odd about the hot face or, if `opposite`, about the opposite one, from where its table counts.
+    """
+
+    weight: Array
+    factors: Factors
+    tables: tuple[ParityTable, ...]
+    opposite: bool
+
+    def rows(self, x: Array, y: Array, d: Array, h: Array, slopes: bool) -> tuple[Rows, Rows, Rows]:
+        """Return the factors, the last one times the weights."""
+        if not self.tables:
+            f, g, (k, dk) = self.factors(x, y, d, h, slopes)
+            return f, g, (self.weight[:, None] * k, self.weight[:, None] * dk)
+        places = zip(self.tables, (x, y, h if self.opposite else d), strict=True)
+        f, g, (k, dk) = ((table.odd_rows(s), table.even_rows(s) if slopes else s) for table, s in places)
+        return f, g, (k, -dk if self.opposite else dk)
 
 
 def face_value(x: Array, y: Array, d: Array, h: Array, extents: Extents) -> Array:
     """Return u at distances x, y from the nearer walls, d from the hot face and h from the opposite one."""
     close = d <= min(extents) / 2.0
-    u = np.where(close, _solid_angles(x, y, d, extents), 0.0)
-    for sign, weight, factors, rows in _sums(close, extents):
+    u = np.zeros(len(d))
+    u[close] = _solid_angles(x[close], y[close], d[close], extents)
+    for rule, rows in _sums(close, extents):
         for block in blocks(len(rows), BLOCK):
             here = rows[block]
-            (f, _), (g, _), (k, _) = factors(x[here], y[here], d[here], h[here], False)
-            u[here] += sign * (weight @ (f * g * k))
+            (f, _), (g, _), (k, _) = rule.rows(x[here], y[here], d[here], h[here], False)
+            u[here] += products(f * g, k)
     return u
 
 
 def face_slopes(x: Array, y: Array, d: Array, h: Array, extents: Extents) -> tuple[Array, Array, Array]:
     """Return the derivatives of `face_value` in x, y and d."""
     close = d <= min(extents) / 2.0
-    slopes = [np.where(close, part, 0.0) for part in _solid_angle_slopes(x, y, d, extents)]
-    for sign, weight, factors, rows in _sums(close, extents):
+    slopes = np.zeros((3, len(d)))
+    slopes[:, close] = _solid_angle_slopes(x[close], y[close], d[close], extents)
+    for rule, rows in _sums(close, extents):
         for block in blocks(len(rows), BLOCK):
             here = rows[block]
-            (f, df), (g, dg), (k, dk) = factors(x[here], y[here], d[here], h[here], True)
-            for slope, product in zip(slopes, (df * g * k, f * dg * k, f * g * dk), strict=True):
-                slope[here] += sign * (weight @ product)
+            (f, df), (g, dg), (k, dk) = rule.rows(x[here], y[here], d[here], h[here], True)
+            slopes[0, here] += products(df, g * k)
+            slopes[1, here] += products(dg, f * k)
+            slopes[2, here] += products(f * g, dk)
     return slopes[0], slopes[1], slopes[2]
 
 
-def _sums(close: BoolArray, extents: Extents) -> Iterator[tuple[float, Array, Factors, IntArray]]:
-    """Yield sign, weights, factors and points of the sums over time: two near the hot face, else one."""
-    near, far = np.flatnonzero(close), np.flatnonzero(~close)
-    if len(near):
-        for part in (_late_box(extents), _late_images(extents)):
-            yield (*part, near)
-    if len(far):
-        yield (*_whole_box(extents), far)
+def _sums(close: BoolArray, extents: Extents) -> Iterator[tuple[Rule, IntArray]]:
+    """Yield the rules and their points."""
+    for rule, rows in ((_near_rule, np.flatnonzero(close)), (_far_rule, np.flatnonzero(~close))):
+        if len(rows):
+            yield rule(extents), rows
+
+
+@lru_cache(maxsize=64)
+def _near_rule(extents: Extents) -> Rule:
+    """Return the sum over late times, less that of the nearest images, for d <= m/2."""
+    parts = (_late_box(extents), _late_images(extents))
+
+    def factors(x: Array, y: Array, d: Array, h: Array, slopes: bool) -> tuple[Rows, ...]:
+        pairs = zip(*(part[1](x, y, d, h, slopes) for part in parts), strict=True)
+        return tuple((np.vstack([a[0], b[0]]), np.vstack([a[1], b[1]])) for a, b in pairs)
+
+    return _tabled(np.concatenate([parts[0][0], -parts[1][0]]), factors, extents, opposite=False)
+
+
+@lru_cache(maxsize=64)
+def _far_rule(extents: Extents) -> Rule:
+    """Return the sum over all times, for d > m/2."""
+    return _tabled(*_whole_box(extents), extents, opposite=True)
+
+
+def _tabled(weight: Array, factors: Factors, extents: Extents, *, opposite: bool) -> Rule:
+    """Return a rule with the tables of its factors."""
+    a, b, c = extents
+    half = min(extents) / 2.0
+    reach = c - half if opposite else half
+
+    def along(i: int, s: Array) -> Rows:
+        if i < 2:
+            return factors(s, s, half + 0.0 * s, c - half + 0.0 * s, True)[i]
+        if not opposite:
+            return factors(0.0 * s, 0.0 * s, s, c - s, True)[2]
+        value, slope = factors(0.0 * s, 0.0 * s, c - s, s, True)[2]
+        return value, -slope
+
+    through = partial(along, 2)
+    flow_size = np.abs(weight) * np.abs(through(np.linspace(0.0, reach, SAMPLED))[0]).max(axis=1)
+    tables = []
+    for i, (length, size) in enumerate(((a / 2, flow_size), (b / 2, flow_size), (reach, np.abs(weight)))):
+        table = parity_table(partial(along, i), length, size)
+        if table is None:
+            return Rule(weight, factors, (), opposite)
+        tables.append(table)
+    tables[2] = tables[2].times(weight)
+    return Rule(weight, factors, tuple(tables), opposite)
 
 
 def _last_time(extents: Extents) -> float:
@@ -96,7 +165,7 @@ def _whole_box(extents: Extents) -> Part:
     """Return the trapezoidal rule for all times, at d > m/2."""
     first = math.log((min(extents) / 2.0) ** 2 / (4.0 * ACCURACY))
     t = np.exp(np.arange(first, math.log(_last_time(extents)) + STEP, STEP))
-    return 1.0, STEP * t, _box_factors(extents, t)
+    return STEP * t, _box_factors(extents, t)
 
 
 @lru_cache(maxsize=64)
@@ -104,7 +173,7 @@ def _late_box(extents: Extents) -> Part:
     """Return Gauss's rule in log t for times after tau."""
     log_t, weight = _gauss(GAUSS, math.log(_first_difference(extents)), math.log(_last_time(extents)))
     t = np.exp(log_t)
-    return 1.0, weight * t, _box_factors(extents, t)
+    return weight * t, _box_factors(extents, t)
 
 
 @lru_cache(maxsize=64)
@@ -131,7 +200,7 @@ def _late_images(extents: Extents) -> Part:
         through = (d * decay, (1.0 - square * (d * d / 2.0)) * decay)
         return nearest_images(x, a, v, slopes), nearest_images(y, b, v, slopes), through
 
-    return -1.0, weight, factors
+    return weight, factors
 
 
 def _box_factors(extents: Extents, t: Array) -> Factors:

@@ -14,13 +14,14 @@ Bulirsch (1969), Numerical calculation of elliptic integrals and elliptic functi
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from typing import Any
 
 import numpy as np
 
 from laplace_verify.contexts import FLOAT
 
-__all__ = ["cel"]
+__all__ = ["cel", "cels"]
 
 MOST_STEPS = 60
 
@@ -32,22 +33,27 @@ def cel(ctx: Any, k: Any, p: Any, a: Any, b: Any) -> Any:
     >>> bool(abs(kept[0] - 2.1565156474996432) < 1e-15)
     True
     """
-    root = ctx.sqrt(p)
-    a, b, p = a + 0 * k, b / root, root + 0 * k
+    return cels(ctx, k, ((p, a, b),))[0]
+
+
+def cels(ctx: Any, k: Any, parameters: Sequence[tuple[Any, Any, Any]]) -> list[Any]:
+    """Return cel(k, p, a, b) for several (p, a, b): the mean of k is taken once."""
+    sums = []
+    for p, a, b in parameters:
+        root = ctx.sqrt(p)
+        sums.append((root + 0 * k, a + 0 * k, b / root))
     e, em, kc = k, 0 * k + 1, k
     for _ in range(MOST_STEPS):
-        f = a
-        a = a + b / p
-        g = e / p
-        b = 2 * (b + f * g)
-        p = p + g
+        for i, (p, a, b) in enumerate(sums):
+            g = e / p
+            sums[i] = (p + g, a + b / p, 2 * (b + a * g))
         g = em
         em = kc + em
         if _settled(ctx, g, kc):
             break
         kc = 2 * ctx.sqrt(e)
         e = kc * em
-    return ctx.pi / 2 * (b + a * em) / (em * (em + p))
+    return [ctx.pi / 2 * (b + a * em) / (em * (em + p)) for p, a, b in sums]
 
 
 def _settled(ctx: Any, g: Any, kc: Any) -> bool:

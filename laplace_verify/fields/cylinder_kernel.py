@@ -34,9 +34,11 @@ from typing import Any
 
 import numpy as np
 
+from laplace_verify.arrays import Array
 from laplace_verify.contexts import FLOAT
 from laplace_verify.fields._precision import working
 from laplace_verify.fields.bessel_tables import bessel_j, expansion, quotient, zero
+from laplace_verify.fields.cylinder_tables import axial_sum, radial_sum
 from laplace_verify.fields.polylog import accuracy, polylog
 
 __all__ = ["lid_slopes", "lid_value"]
@@ -44,6 +46,7 @@ __all__ = ["lid_slopes", "lid_value"]
 DEEP = 0.3  # d from which (1) serves
 AWAY = 0.25  # gap / H from which (2) serves
 FLOAT_MODES, FLOAT_ORDERS = 24, 9
+LOWEST = 4  # powers of two in which distances are told apart
 
 Place = tuple[Any, Any, Any]  # r, gap, d
 
@@ -67,16 +70,33 @@ def _chosen(ctx: Any, place: Place, height: Any, weight: int) -> list[Any]:
     r, gap, d = place
     zones = np.where(d >= DEEP, 0, np.where(gap >= AWAY * cut, 20, 40))
     decay = np.where(zones == 0, d, np.where(zones == 20, gap / cut, 1.0))
-    zones = zones + np.clip(
-        -np.frexp(decay)[1], -4, 4
-    )  # points within a factor of two share their number of terms
+    # Points within a factor of two share their number of terms.
+    zones = zones - np.clip(np.frexp(decay)[1], -LOWEST, LOWEST)
     result = [np.zeros(len(d)) for _ in range(3)]
-    for zone in np.unique(zones):
+    for zone in np.flatnonzero(np.bincount(zones + LOWEST)) - LOWEST:
         rows = np.flatnonzero(zones == zone)
-        parts = _form(ctx, int((zone + 5) // 20), (r[rows], gap[rows], d[rows]), height, cut, weight)
+        form, band = divmod(int(zone) + LOWEST, 20)
+        at = (r[rows], gap[rows], d[rows])
+        parts: Any = _tabled(form, 2.0 ** (LOWEST - 1 - band), at, height, cut, weight)
+        if parts is None:
+            parts = _form(ctx, form, at, height, cut, weight)
         for total, part in zip(result, parts, strict=True):
             total[rows] = part
     return result
+
+
+def _tabled(form: int, least: float, place: Place, height: float, cut: float, weight: int) -> Array | None:
+    """Return float64's `_form` by tables, None if there are none; decay is at least `least`."""
+    r, _, d = place
+    if form == 0:
+        return radial_sum(r, d, lambda j, d: _profile(FLOAT, j, d, height), max(DEEP, least), weight)
+    if form == 2:
+        return None
+    parts = axial_sum(r, d, cut, min(DEEP, cut), cut * max(AWAY, least), weight)
+    if parts is None or cut == height:
+        return parts
+    extra = radial_sum(r, d, lambda j, d: _difference(FLOAT, j, d, height, cut), 2 * cut - DEEP, weight)
+    return None if extra is None else parts + extra
 
 
 def _zone(place: Place, cut: Any) -> int:
@@ -91,14 +111,8 @@ def _form(ctx: Any, zone: int, place: Place, height: Any, cut: Any, weight: int)
         return _radial_modes(ctx, place, lambda j, d: _profile(ctx, j, d, height), _least(place[2]), weight)
     parts = (_axial_modes if zone == 1 else _rim)(ctx, place, cut, weight)
     if cut < height:
-        reach = 2 * cut - DEEP
-        extra = _radial_modes(
-            ctx, place,
-            lambda j, d: [
-                a - b for a, b in zip(_profile(ctx, j, d, height), _profile(ctx, j, d, cut), strict=True)
-            ],
-            float(reach), weight,
-        )  # fmt: skip
+        reach = float(2 * cut - DEEP)
+        extra = _radial_modes(ctx, place, lambda j, d: _difference(ctx, j, d, height, cut), reach, weight)
         parts = [a + b for a, b in zip(parts, extra, strict=True)]
     return parts
 
@@ -114,6 +128,12 @@ def _profile(ctx: Any, j: Any, d: Any, height: Any) -> list[Any]:
     below = -ctx.expm1(-2 * j * height)
     decay = ctx.exp(-j * d)
     return [decay * -ctx.expm1(-2 * j * h) / below, -j * decay * (1 + ctx.exp(-2 * j * h)) / below]
+
+
+def _difference(ctx: Any, j: Any, d: Any, height: Any, cut: Any) -> list[Any]:
+    """Return Z of the whole cylinder less that of the cut one, and its derivative."""
+    whole, part = _profile(ctx, j, d, height), _profile(ctx, j, d, cut)
+    return [a - b for a, b in zip(whole, part, strict=True)]
 
 
 def _radial_modes(

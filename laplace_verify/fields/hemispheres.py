@@ -17,8 +17,9 @@ Bulirsch's, of complementary modulus
     k^2 = ((1 - s)^2 + z^2) / ((1 + s)^2 + z^2)   and   p = (1 - n)/(1 + n), 1/p or k^2,
     1 - n = c^2/(1 + n).
 
-1 - s and 1 - rho^2 are formed without cancellation (`rim`). In float64, rho < 0.6 is left to the sum of zonal
-harmonics, u = 1/2 + sum_{l odd} a_l rho^l P_l(c), a_l = (P_{l-1}(0) - P_{l+1}(0))/2.
+1 - s and 1 - rho^2 are formed without cancellation (`rim`). In float64, rho < 0.7 is left to
+tables in s^2 and z, made from these integrals and, for rho < 0.6, from the sum of zonal harmonics,
+u = 1/2 + sum_{l odd} a_l rho^l P_l(c), a_l = (P_{l-1}(0) - P_{l+1}(0))/2.
 
 References
 ----------
@@ -35,13 +36,21 @@ from typing import Any
 
 import numpy as np
 
-from laplace_verify.arrays import Array, BoolArray
+from laplace_verify.arrays import Array, BoolArray, blocks
 from laplace_verify.contexts import FLOAT, Number
 from laplace_verify.errors import FieldError
 from laplace_verify.fields.base import Field
-from laplace_verify.fields.complete_elliptic import cel
+from laplace_verify.fields.complete_elliptic import cels
 from laplace_verify.fields.edges import Ring
 from laplace_verify.fields.exact import Exact, exact, exact_point, offset, rational, show
+from laplace_verify.fields.parity_tables import (
+    ParityTable,
+    coefficients,
+    even_polynomials,
+    nodes,
+    parity_table,
+    products,
+)
 from laplace_verify.fields.rim import rim_gap
 from laplace_verify.fields.specs import registered
 from laplace_verify.fields.zonal import zonal_sum
@@ -50,6 +59,9 @@ __all__ = ["Hemispheres", "hemispheres"]
 
 INSIDE = 0.6  # of the radius: up to here the series serves
 DEGREE = 77  # 0.6^79 = 3e-18
+MIDDLE = 0.7  # of the radius: up to here tables in s and z serve
+ACROSS = 24  # polynomials in s: u is singular at s = 1, so they fall off like 6^-n at z = 0
+BLOCK = 1024  # points at once: rows of polynomials by points stay in cache
 FLAT = 1e-100  # of the radius: so near to z = 0 that c^2 could underflow, u is 1/2 to rounding
 OUTSIDE = 1e-9  # of the radius: how far outside a point may be put by rounding
 
@@ -105,10 +117,10 @@ class Hemispheres(Field):
         step = ctx.number(exact(rational(self.upper) - rational(self.lower), "step"))
         if ctx is not FLOAT:
             return ctx.number(self.lower) + step * _upper_half(ctx, place)
-        near = _squared(place) < INSIDE**2
+        near, inner, outer = _split(place, MIDDLE)
         u = np.empty(len(near))
-        u[near] = zonal_sum(ctx, _legendre(), tuple(c[near] for c in place[:3]), 1)[0]
-        u[~near] = _upper_half(ctx, tuple(c[~near] for c in place))
+        u[near] = _middle_value(*inner)
+        u[~near] = _upper_half(ctx, outer)
         return float(self.lower) + step * u
 
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:  # noqa: ARG002  # no cut
@@ -118,12 +130,10 @@ class Hemispheres(Field):
         )
         if ctx is not FLOAT:
             return tuple(step * g for g in _upper_half_slopes(ctx, place))
-        near = _squared(place) < INSIDE**2
+        near, inner, outer = _split(place, MIDDLE)
         slopes = np.empty((3, len(near)))
-        inner = tuple(c[near] for c in place[:3])
-        _, across, along = zonal_sum(ctx, _legendre(), inner, 1)
-        slopes[:, near] = across * inner[0], across * inner[1], along
-        slopes[:, ~near] = _upper_half_slopes(ctx, tuple(c[~near] for c in place))
+        slopes[:, near] = _middle_slopes(*inner)
+        slopes[:, ~near] = _upper_half_slopes(ctx, outer)
         return tuple(step * g for g in slopes)
 
     def _place(self, ctx: Any, x: tuple[Any, ...]) -> tuple[Any, ...]:
@@ -166,9 +176,69 @@ def hemispheres(
     return Hemispheres(centre=tuple(centre), radius=radius, upper=upper, lower=lower)  # type: ignore[arg-type]  # made exact there
 
 
-def _squared(place: tuple[Any, ...]) -> Any:
-    """Return rho^2."""
-    return place[0] * place[0] + place[1] * place[1] + place[2] * place[2]
+def _split(place: tuple[Any, ...], radius: float) -> tuple[BoolArray, tuple[Any, ...], tuple[Any, ...]]:
+    """Return which points lie inside rho = radius, their coordinates, and the places of the others."""
+    near: BoolArray = place[0] * place[0] + place[1] * place[1] + place[2] * place[2] < radius**2
+    return near, tuple(c[near] for c in place[:3]), tuple(c[~near] for c in place)
+
+
+def _middle_value(x: Array, y: Array, z: Array) -> Array:
+    """Return u for the values 1 and 0 at rho < MIDDLE."""
+    u = np.full(len(x), 0.5)
+    table, _ = _middle_tables()
+    for block in blocks(len(x), BLOCK):
+        u[block] += products(_along_s(x[block], y[block], len(table.odd)), table.odd_rows(z[block]))
+    return u
+
+
+def _middle_slopes(x: Array, y: Array, z: Array) -> Array:
+    """Return the gradient of `_middle_value`."""
+    slopes = np.empty((3, len(x)))
+    value, across = _middle_tables()
+    for block in blocks(len(x), BLOCK):
+        waves = _along_s(x[block], y[block], len(value.odd))
+        out = products(waves, across.odd_rows(z[block]))
+        slopes[0, block], slopes[1, block] = out * x[block], out * y[block]
+        slopes[2, block] = products(waves, value.even_rows(z[block]))
+    return slopes
+
+
+def _along_s(x: Array, y: Array, count: int) -> Array:
+    """Return Chebyshev's polynomials of s / MIDDLE."""
+    return even_polynomials(np.sqrt(x * x + y * y) / MIDDLE, count)
+
+
+@lru_cache(maxsize=1)
+def _middle_tables() -> tuple[ParityTable, ParityTable]:
+    """Return the factors of T_0, T_2, ... (s / MIDDLE) as functions of z.
+
+    Those of u - 1/2 are odd, of du/dz even, of (du/ds) / s odd.
+    """
+    s = MIDDLE * nodes(ACROSS)
+
+    def factors(z: Array) -> list[Array]:
+        at, up = (c.ravel() for c in np.meshgrid(s, z))
+        place = (at, 0.0 * at, up, 1.0 - at)
+        near, inner, outer = _split(place, INSIDE)
+        found = np.empty((3, len(at)))
+        u, across, along = zonal_sum(FLOAT, _legendre(), inner, 1)
+        found[:, near] = u - 0.5, along, across
+        out, _, along = _upper_half_slopes(FLOAT, outer)
+        found[:, ~near] = _upper_half(FLOAT, outer) - 0.5, along, out / outer[0]
+        return [coefficients(part.reshape(len(z), len(s)), 0).T for part in found]
+
+    def value(z: Array) -> tuple[Array, Array]:
+        u, along, _ = factors(z)
+        return u, along
+
+    def slope(z: Array) -> tuple[Array, Array]:
+        _, along, across = factors(z)
+        return across, along
+
+    tables = [parity_table(function, MIDDLE, np.ones(ACROSS)) for function in (value, slope)]
+    if tables[0] is None or tables[1] is None:
+        raise AssertionError("the middle of the ball takes fewer polynomials than are allowed")
+    return tables[0], tables[1]
 
 
 @lru_cache(maxsize=1)
@@ -189,23 +259,30 @@ def _upper_half(ctx: Any, place: tuple[Any, ...]) -> Any:
     rho = ctx.sqrt(s * s + height * height)
     shell = gap * (1 + s) - height * height  # 1 - rho^2
     shell = ctx.where(shell > 0, shell, 0 * shell)
-    third = _third_kind(ctx, s, height, gap, rho)
+    third = _integrals(ctx, s, height, gap, rho)
     u = (1 + rho) / (2 * rho) - shell / (4 * ctx.pi * rho) * (third[0] + third[1])
     u = ctx.where(z < 0, 1 - u, u)
     return np.where(height < FLAT, 0.5, u) if ctx is FLOAT else u
 
 
-def _third_kind(ctx: Any, s: Any, height: Any, gap: Any, rho: Any) -> tuple[Any, Any]:
-    """Return c/2 times the integrals of 1 / (D (1 - g)) and 1 / (D (1 + g)), nothing of use on z = 0."""
+def _integrals(ctx: Any, s: Any, height: Any, gap: Any, rho: Any, *, cubes: bool = False) -> list[Any]:
+    """Return c/2 times the integrals of 1 / (D (1 - g)) and 1 / (D (1 + g)), nothing of use on z = 0.
+
+    With `cubes` those of 1 / D^3 and of cos(f) / D^3 follow.
+    """
     flat = height < FLAT if ctx is FLOAT else height == 0
     c = ctx.where(flat, 1 + 0 * height, height / rho)
     n = s / rho
     low, high = c * c / (1 + n), 1 + n  # 1 - n and 1 + n
-    size = ctx.sqrt((1 + s) * (1 + s) + height * height)
+    square = (1 + s) * (1 + s) + height * height
+    size = ctx.sqrt(square)
     k = ctx.sqrt(gap * gap + height * height) / size
-    minus = 2 / size * c / high * cel(ctx, k, low / high, 1, 1)
-    plus = 2 / size * c / low * cel(ctx, k, high / low, 1, 1)
-    return minus, plus
+    parameters = [(low / high, 1, 1), (high / low, 1, 1)]
+    factors = [2 / size * c / high, 2 / size * c / low]
+    if cubes:
+        parameters += [(k * k, 1, 1), (k * k, -1, 1)]
+        factors += [4 / (size * square)] * 2
+    return [f * integral for f, integral in zip(factors, cels(ctx, k, parameters), strict=True)]
 
 
 def _upper_half_slopes(ctx: Any, place: tuple[Any, ...]) -> tuple[Any, Any, Any]:
@@ -218,11 +295,7 @@ def _upper_half_slopes(ctx: Any, place: tuple[Any, ...]) -> tuple[Any, Any, Any]
     shell = gap * (1 + s) - height * height
     shell = ctx.where(shell > 0, shell, 0 * shell)
     c, n = height / rho, s / rho
-    square = (1 + s) * (1 + s) + height * height
-    size = ctx.sqrt(square)
-    k = ctx.sqrt(gap * gap + height * height) / size
-    ring, turned = (4 / (size * square) * cel(ctx, k, k * k, a, 1) for a in (1, -1))
-    minus, plus = _third_kind(ctx, s, height, gap, rho)
+    minus, plus, ring, turned = _integrals(ctx, s, height, gap, rho, cubes=True)
     steep = c / (2 * ctx.pi) * ring + (((1 - rho) * minus + (1 + rho) * plus) / (4 * ctx.pi) - 0.5) / (
         rho * rho
     )
