@@ -273,7 +273,7 @@ def shifted_answer(grid: Grid, values: Array, **facts: Any) -> Answer:
     "reported fluxes are -n . K grad u, what flows out, where n . K grad u is asked for",
     kind="flux sign",
     suspects=("fall short in gradient or flux only", "falls short in gradient or flux only", "flux"),
-    shown_by=("plate-flux-top", "rod-two-temperatures"),
+    shown_by=("rod-two-temperatures", "rod-two-layers"),
 )
 def outward_fluxes(grid: Grid, values: Array, **facts: Any) -> Answer:
     """Change the sign of all reported fluxes."""
