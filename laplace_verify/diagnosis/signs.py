@@ -3,7 +3,8 @@
 A mistake that leaves the order as it is shows in remarks: an error constant far above that of
 interpolation, gradients that stay, a floor. Where a case fails, only the signs that name a cause are weighed;
 where none does, every sign is, and the cases left open are compared with those that pass. Score: weight of
-the sign times the share of the failing cases that show it; where nothing fails, the weight alone.
+the sign times the share of the failing cases that show it; where nothing fails, the weight alone. A sign that
+shows a cause directly weighs as much as a feature that separates the cases perfectly, and comes before it.
 """
 
 from __future__ import annotations
@@ -14,6 +15,7 @@ from dataclasses import dataclass, replace
 
 from laplace_verify.diagnosis.finding import Finding, case_list, counted
 from laplace_verify.diagnosis.shared import shared_features
+from laplace_verify.measure.floors import named_floor
 from laplace_verify.measure.results import Study
 from laplace_verify.measure.verdict import Verdict
 
@@ -21,6 +23,8 @@ __all__ = ["SIGNS", "Sign", "signs_among_failing", "signs_where_nothing_fails"]
 
 _TELLING = 0.7  # score of a feature that is added to a sign
 _OPEN = 0.5  # weight of what open cases share
+_SMALL = 1e-4  # relative error of a promised polynomial that looks like a floor, not like a mistake of scale
+_PROMISED = "a harmonic polynomial of degree"
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -36,29 +40,30 @@ class Sign:
     cause: bool = False
 
 
-SIGNS = (
+SIGNS = (  # where two weigh the same, the first comes first
     Sign(
         pattern="the iteration stops early",
         meaning="the iteration stops early: its tolerance, its norm or its number of steps",
-        weight=0.95,
+        weight=1.0,
         cause=True,
-    ),
-    Sign(
-        pattern=r"reported residual .* not well below",
-        meaning="the reported residual is not well below the error: the iteration may stop early",
-        weight=0.6,
     ),
     Sign(
         pattern="single precision",
         meaning="the error stops at the size of single precision: an array or constant in 32 bits",
-        weight=0.9,
+        weight=1.0,
+        cause=True,
+    ),
+    Sign(
+        pattern=r"reported residual .* not well below",
+        meaning="the reported residual is not well below the error: the iteration stops early",
+        weight=1.0,
         cause=True,
     ),
     Sign(
         pattern="loose tolerance, or of a constant",
         meaning="the error stops falling at a floor: a loose tolerance of the iteration, or a constant typed "
         "with few digits",
-        weight=0.85,
+        weight=0.75,
         cause=True,
     ),
     Sign(
@@ -90,7 +95,7 @@ SIGNS = (
         cause=True,
     ),
     Sign(
-        pattern="a harmonic polynomial of degree",
+        pattern=_PROMISED,
         meaning="polynomials that the solver promises to reproduce are not exact: weights, constants, tags "
         "of pieces or corner nodes",
         weight=0.6,
@@ -152,4 +157,9 @@ def _shows(study: Study, sign: Sign) -> bool:
 
 
 def _texts(study: Study) -> list[str]:
-    return [*study.remarks, *study.reasons]
+    """Return what is said of a study, and what usually leaves a promised polynomial as inexact as it is."""
+    said = [*study.remarks, *study.reasons]
+    if any(re.search(_PROMISED, reason) for reason in study.reasons):
+        miss = max((level.nodal for level in study.levels if level.nodal is not None), default=1.0)
+        said += [f"polynomials are missed by {miss:.1e}: {named_floor(miss)}"] if miss < _SMALL else []
+    return said

@@ -79,10 +79,10 @@ def diagnose(record: Record) -> list[Suspect]:
     passing = [study for study in record.studies if study.verdict is Verdict.PASS]
     broken = [study for study in record.studies if study.verdict is Verdict.ERROR]
     ran = [study for study in record.studies if study.levels and study.verdict is not Verdict.ERROR]
-    findings = shared_features(failing, passing, "failing", "passing")
+    findings = signs_among_failing(failing)
+    findings += shared_features(failing, passing, "failing", "passing")
     findings += patterns(failing)
     findings += _places(record, failing)
-    findings += signs_among_failing(failing)
     findings += missed_polynomials(studies, bool(failing))
     findings += shared_features(broken, ran, "broken", "completed")
     if not failing and not broken:
