@@ -23,7 +23,7 @@ from laplace_verify.measure.verdict import Verdict
 
 __all__ = ["found_degree", "missed_polynomials"]
 
-_SURE, _HINT = 0.85, 0.4
+_ALONE, _BESIDE = 0.85, 0.4  # score where nothing fails, and where failing cases tell more
 _PROVEN = 1  # degree up to which theory speaks
 _ALLOWED = FLOOR_MARGIN * ROUND_OFF
 _BENT = ("curved boundary", "interface", "coordinates with a symmetry")
@@ -50,15 +50,13 @@ def missed_polynomials(studies: Sequence[Study], failing: bool) -> list[Finding]
     found = found_degree(studies)
     if found is None:
         return []
-    flat = [
-        (study, degree) for study in studies if (degree := _degree(study)) is not None and degree <= found
-    ]
-    missed = [(study, degree) for study, degree in flat if not _is_exact(study)]
-    good = [study for study, _ in flat if _is_exact(study)]
-    sure = [study for study, degree in missed if degree <= _PROVEN and not _is_unsure(study)]
+    low = [study for study in studies if _at_most(study, found)]
+    missed = [study for study in low if not _is_exact(study)]
+    good = [study for study in low if _is_exact(study)]
+    sure = [study for study in missed if _at_most(study, _PROVEN) and not _is_unsure(study)]
     if sure:
-        return [_finding(sure, good, _PROVEN, _SURE)]
-    return [_finding([study for study, _ in missed], good, found, _HINT)] if missed and failing else []
+        return [_finding(sure, good, min(found, _PROVEN), _BESIDE if failing else _ALONE)]
+    return [_finding(missed, good, found, _BESIDE)] if missed and failing else []
 
 
 def _finding(missed: Sequence[Study], good: Sequence[Study], degree: int, score: float) -> Finding:

@@ -5,6 +5,9 @@ Fisher's exact probability (one-sided) of so uneven a split if the feature had n
 
     p = sum_{k >= a} C(a + b, k) C(F + P - a - b, F - k) / C(F + P, F).
 
+Where p is above 0.02, so few cases tell little, and the score is multiplied by ln p / ln 0.02. Tags, which
+are labels, count 0.7 times what features of the problem do.
+
 Two features together are named only if they separate the groups better than every single one. Features that
 the same cases have cannot be told apart and are named together.
 
@@ -16,6 +19,7 @@ Royal Statistical Society 85, 87-94 (the test; from memory, unchecked).
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from itertools import combinations
 
@@ -29,6 +33,8 @@ __all__ = ["feature_names", "shared_features"]
 _LOWEST_SCORE = 0.3
 _GAIN_OF_A_PAIR = 0.1
 _LIMIT = 5
+_SURPRISING = 0.02  # probability of a split by chance from which it counts in full
+_LABEL = 0.7  # weight of tags
 
 
 def feature_names(study: Study) -> frozenset[str]:
@@ -131,13 +137,16 @@ def _finding(
     a, b = len(key[0]), len(key[1])
     chance = float(hypergeom.sf(a - 1, len(bad) + len(good), a + b, len(bad)))
     evidence = (
-        f"score {a}/{len(bad)} - {b}/{len(good)} = {score:.2f}; "
+        f"{a}/{len(bad)} - {b}/{len(good)} = {score:.2f}; "
         f"probability of so uneven a split by chance {chance:.2g}; "
         f"cases: {case_list(with_it)}"
     )
     if b:
         evidence += f"; {words[1]} with it: {case_list([good[k] for k in sorted(key[1])])}"
-    return Finding(text=text, evidence=evidence, score=score, studies=tuple(with_it))
+    weight = min(1.0, math.log(max(chance, 1e-300)) / math.log(_SURPRISING))
+    if all(name.startswith("tag ") for name in names):
+        weight *= _LABEL
+    return Finding(text=text, evidence=evidence, score=weight * score, studies=tuple(with_it))
 
 
 def _have(part: int, whole: int) -> str:

@@ -108,14 +108,16 @@ SIGNS = (  # where two weigh the same, the first comes first
 )
 
 
-def signs_among_failing(failing: Sequence[Study]) -> list[Finding]:
-    """Return the causes that the remarks and reasons of failing studies name."""
+def signs_among_failing(failing: Sequence[Study], passing: Sequence[Study]) -> list[Finding]:
+    """Return the causes that the remarks and reasons of failing studies name, and what those cases share."""
     found = []
     for sign in SIGNS:
         showing = [study for study in failing if _shows(study, sign)] if sign.cause else []
         if showing:
+            others = [study for study in (*failing, *passing) if not _shows(study, sign)]
             who = counted(len(showing), len(failing), "failing cases")
-            found.append(_finding(sign, showing, f"{sign.meaning} ({who})", len(showing) / len(failing)))
+            text = f"{sign.meaning} ({who}){_shared(showing, others)}"
+            found.append(_finding(sign, showing, text, len(showing) / len(failing)))
     return found
 
 
@@ -127,10 +129,9 @@ def signs_where_nothing_fails(studies: Sequence[Study]) -> list[Finding]:
         showing = [study for study in ran if _shows(study, sign)]
         if showing:
             others = [study for study in ran if not _shows(study, sign)]
-            apart = shared_features(showing, others, "remarked", "others") if others else []
             who = f"no case fails, remarked in {counted(len(showing), len(ran), 'cases')}"
-            shared = f": {apart[0].text}" if apart and apart[0].score >= _TELLING else ""
-            found.append(_finding(sign, showing, f"{sign.meaning} ({who}){shared}", 1.0))
+            text = f"{sign.meaning} ({who}){_shared(showing, others)}"
+            found.append(_finding(sign, showing, text, 1.0))
     open_ = [study for study in ran if study.verdict is Verdict.INCONCLUSIVE]
     passing = [study for study in ran if study.verdict is Verdict.PASS]
     if len(open_) > 1 and passing:  # a single one has too much that others lack
@@ -152,6 +153,12 @@ def _finding(sign: Sign, showing: Sequence[Study], text: str, share: float) -> F
     )
 
 
+def _shared(showing: Sequence[Study], others: Sequence[Study]) -> str:
+    """Return, in words to add, what sets the cases with a sign apart; "" if nothing does clearly."""
+    apart = shared_features(showing, others, "remarked", "others") if others else []
+    return f": {apart[0].text}" if apart and apart[0].score >= _TELLING else ""
+
+
 def _shows(study: Study, sign: Sign) -> bool:
     return any(re.search(sign.pattern, text) for text in _texts(study))
 
@@ -160,6 +167,6 @@ def _texts(study: Study) -> list[str]:
     """Return what is said of a study, and what usually leaves a promised polynomial as inexact as it is."""
     said = [*study.remarks, *study.reasons]
     if any(re.search(_PROMISED, reason) for reason in study.reasons):
-        miss = max((level.nodal for level in study.levels if level.nodal is not None), default=1.0)
+        miss = next((level.nodal for level in study.levels if level.nodal), 1.0)  # it grows with the size
         said += [f"polynomials are missed by {miss:.1e}: {named_floor(miss)}"] if miss < _SMALL else []
     return said

@@ -3,7 +3,8 @@
 Evidence is weighed on one scale from 0 to 1:
 
 - a *feature* (a condition, a shape, a tensor): the share of the failing cases that have it less the share
-  of the passing cases that have it. 1: all failing cases have it and no passing one. `shared` explains it.
+  of the passing cases that have it, less where so few cases split so by chance. 1: all failing cases have it
+  and no passing one. `shared` explains it.
 - a *pattern*: in what manner the failing cases fail (a wrong limit, one order lost, only the gradient).
   `patterns` explains it.
 - a *place*: where the errors of the failing cases are largest and how slowly they fall there (`local`), and
@@ -79,7 +80,7 @@ def diagnose(record: Record) -> list[Suspect]:
     passing = [study for study in record.studies if study.verdict is Verdict.PASS]
     broken = [study for study in record.studies if study.verdict is Verdict.ERROR]
     ran = [study for study in record.studies if study.levels and study.verdict is not Verdict.ERROR]
-    findings = signs_among_failing(failing)
+    findings = signs_among_failing(failing, passing)
     findings += shared_features(failing, passing, "failing", "passing")
     findings += patterns(failing)
     findings += _places(record, failing)

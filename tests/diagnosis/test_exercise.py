@@ -103,11 +103,29 @@ def test_a_flux_of_the_wrong_sign_is_caught_and_the_flux_condition_suspected():
     assert "plate-saddle" not in found.failing
 
 
+ONE_OF_A_KIND = (
+    "robin coefficient", "arithmetic mean of conductivities", "radius of the outer node", "seam shifted",
+    "reported fluxes one-sided", "values in single precision",
+)  # fmt: skip
+
+
 @pytest.mark.slow
-@pytest.mark.parametrize("name", FAULTS)
-def test_every_seeded_fault_has_the_effect_it_is_classed_by(name):
+@pytest.mark.parametrize("name", ONE_OF_A_KIND)
+def test_one_fault_of_a_kind_is_caught_and_suspected_first(name):
     (found,) = exercise({name: FAULTS[name]}, principles=False)
     assert found.caught, (found.fault.effect, found.cases, found.remarks)
+    assert found.suspected, found.suspect
+
+
+@pytest.mark.slow
+def test_all_seeded_faults_have_their_effect_and_four_in_five_first_suspects_are_right():
+    outcomes = list(exercise(dict(FAULTS), principles=False))
+    missed = {found.name: (found.fault.effect, found.cases) for found in outcomes if not found.caught}
+    assert not missed
+    mistakes = [found for found in outcomes if found.fault.effect != "harmless"]
+    wrong = {found.name: found.suspect for found in mistakes if not found.suspected}
+    assert len(wrong) <= 0.2 * len(mistakes), wrong
+    assert "0 FAIL, 0 stay open" in exercise_summary(outcomes)
 
 
 def test_the_command_lists_the_faults_and_refuses_unknown_ones(capsys):
