@@ -52,8 +52,8 @@ def patterns(failing: Sequence[Study]) -> list[Finding]:
         _pattern(
             failing,
             _behind_the_values,
-            "fall short in gradient or flux only, or in quantities taken from the answer; the values converge "
-            "as expected: look at how gradients, fluxes and the level are recovered",
+            "fall short in gradient or flux only, or in quantities taken from the answer; the values "
+            "converge as expected: look at how gradients, fluxes and the level are recovered",
             1.0,
         ),
     ]
