@@ -44,12 +44,16 @@ class Confirmation:
     kinds: frozenset[str]
 
 
-BALLS = frozenset({
-    "affine", "along-z", "axisymmetric", "box-mode", "coaxial", "dipole", "disc-arcs", "disc-fourier",
-    "edge-wave", "elliptic-multipole", "exp-trig", "flow-past", "inverted", "loaded-rectangle", "log-source",
-    "point-source", "polynomial", "quarter-wave", "radial", "rectangle-modes", "regions", "scaled",
-    "shifted", "solid", "spheroid", "stretched", "sum", "wedge", "zonal",
+COMPOSED = frozenset({
+    "affine", "along-z", "axisymmetric", "coaxial", "inverted", "regions", "scaled", "shifted", "stretched",
+    "sum",
 })  # fmt: skip
+CLOSED = frozenset({
+    "box-mode", "dipole", "disc-arcs", "disc-fourier", "edge-wave", "elliptic-multipole", "exp-trig",
+    "flow-past", "loaded-rectangle", "log-source", "point-source", "polynomial", "quarter-wave", "radial",
+    "rectangle-modes", "solid", "spheroid", "wedge", "zonal",
+})  # fmt: skip
+MAPPED = frozenset({"cone", "dam-seepage", "flow-past-square", "half-edge", "prism", "square-multipole"})
 
 CONFIRMATIONS: dict[str, Confirmation] = {
     "balls": Confirmation(
@@ -58,7 +62,16 @@ CONFIRMATIONS: dict[str, Confirmation] = {
         digits=48,
         counted="significant",
         share=1.0,
-        kinds=BALLS,
+        kinds=COMPOSED | CLOSED,
+    ),
+    "maps": Confirmation(
+        route="conformal map inverted, special functions and faces of bodies, in ball arithmetic",
+        source="Legendre's integral, hypergeometric and Legendre functions of Arb (Johansson 2017); "
+        "MacMillan 1930, The Theory of the Potential, art. 43",
+        digits=48,
+        counted="significant",
+        share=1.0,
+        kinds=COMPOSED | MAPPED,
     ),
     "integrals": Confirmation(
         route="rigorous quadrature of Poisson's or Laplace's integral of the data",
@@ -70,6 +83,7 @@ CONFIRMATIONS: dict[str, Confirmation] = {
             {
                 "hemispheres",
                 "loaded-disc",
+                "rectangle-convection",
                 "rectangle-exponential",
                 "rectangle-pieces",
                 "rectangle-sides",
