@@ -246,13 +246,14 @@ def _diagnosis_section(record: Record, suspects: list[Suspect]) -> Section:
         text = (
             "Nothing sets the failing cases apart from the passing ones."
             if troubled
-            else "No case fails or breaks, so there is nothing to explain."
+            else "No case fails or breaks and no remark names a cause, so there is nothing to explain."
         )
         return Section(anchor="diagnosis", title="Diagnosis", blocks=(Paragraph(text=text),))
     intro = (
-        "What the failing cases have in common, how they fail and where their errors sit. The score, "
-        "from 0 to 1, ranks: for a feature it is the share of failing cases that have it less the share "
-        "of passing ones. It is a hint where to look, not a finding of fact."
+        "What the failing cases have in common, how they fail, where their errors sit and what remarks and "
+        "broken laws tell. The score, from 0 to 1, ranks: for a feature it is the share of failing cases "
+        "that have it less the share of passing ones, lowered where so few cases split so by chance. It is "
+        "a hint where to look, not a finding of fact."
     )
     columns = (
         Column(title="Score", align="right"),

@@ -36,6 +36,9 @@ Written by `laplace-verify regenerate reports`; they differ from run to run in t
 - [The same solver with a mistake](five-point-first-order-flux/report.md): {fault}:
   [HTML](five-point-first-order-flux/report.html). The cases with flux data fail near order 1, the others
   still pass, and the diagnosis names the flux condition.
+- [Seeded faults](seeded-faults/README.md): known mistakes put into the sample solvers one at a time, what
+  catches each and what is suspected first ([CSV](seeded-faults/outcomes.csv)); written by
+  `laplace-verify seeded-faults --out reports/seeded-faults`.
 
 Open the HTML files in a browser; they are complete in themselves.
 """
