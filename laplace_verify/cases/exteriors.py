@@ -99,7 +99,7 @@ def _hull_stream_function() -> Definition:
         field=fields.flow_past((2, 1), (1, "1/2"), "7/4", part="stream"),
         at_infinity=("flow", (-0.5, 1.0), 1.75),
         window=EllipticRing((0.0, 0.0), (2.0, 1.0), (3.5, 2.75)),
-        quantities={"circulation": flux_through("rim", exact=1.75)},
+        quantities={"circulation": flux_through("rim", exact="7/4")},
         sources=(MAP,),
         reference_points=(("2", "0.5"), ("0", "1.5"), ("-3", "-1")),
     )
@@ -175,7 +175,7 @@ def _pile_with_circulation() -> Definition:
         conditions={"rim": robin(1.5)},
         at_infinity=("flow", (0.2, 0.8), -1.25),
         window=Annulus((-0.3, 0.1), 0.5, 1.8),
-        quantities={"circulation": flux_through("rim", exact=-1.25)},
+        quantities={"circulation": flux_through("rim", exact="-5/4")},
         sources=(LAMB,),
     )
 

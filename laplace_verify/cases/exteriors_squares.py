@@ -43,7 +43,6 @@ def _square_caisson_outside() -> Definition:
 
 @family
 def _square_footing_losing_heat() -> Definition:
-    flow = 0.9 * 1.5 * math.pi / 2
     return Definition(
         title="Outside a square footing with a given charge",
         solution="1 - 3/2 log |w|, w the map of the exterior onto |w| > 1",
@@ -55,7 +54,7 @@ def _square_footing_losing_heat() -> Definition:
         at_infinity=("log", -1.5),
         window=_around_square((0.0, 0.0), 0.625, 1.75),
         quantities={
-            f"flux into the {side} side": flux_through(side, exact=flow)
+            f"flux into the {side} side": flux_through(side, exact="27*pi/40")
             for side in ("left", "right", "bottom", "top")
         },
         sources=(CAPACITY, SCHWARZ),

@@ -1,10 +1,11 @@
 """Quantities of a case in 50 digits where the exact field gives them: values, flux densities, fluxes.
 
 A value is that of the field at the decimals its point is written with, with the field's own radius and basis.
-A flux density along a coordinate axis is K times a component of the gradient. The flux through a straight
-side of a plane shape is K times the rise of the conjugate function from the start of the side to its end (the
-region lies on the left): two values in place of an integral. Quantities in closed form have their digits
-already; integrals without any of these keep the digits that quadrature at two orders confirms.
+A flux density along a coordinate axis is K times a component of the gradient, an exit gradient minus one. The
+flux through a curve in the plane is a rise of the stream function (`quantity_streams`). Other fluxes,
+energies, uplifts and added masses are integrated (`quantity_integrals`). Quantities in closed form have their
+digits already; what is left keeps the digits that quadrature in float64 confirms: fluxes of fitted fields,
+whose errors only their values have a bound for.
 """
 
 from __future__ import annotations
@@ -18,11 +19,12 @@ from laplace_verify.errors import FieldError, ProblemError
 from laplace_verify.problems import Case, Quantity, StoredNumber
 from laplace_verify.problems.closed_forms import DIGITS, in_digits
 from laplace_verify.problems.stored import BASES
+from laplace_verify.references.quantity_integrals import integral_digits
+from laplace_verify.references.quantity_streams import flux_by_streams
 
 __all__ = ["with_quantity_digits"]
 
 GUARD = 10
-SHORT = 12  # characters of a coordinate that was written down, not computed
 AGREEMENT = 1e-9
 
 
@@ -63,14 +65,20 @@ def with_quantity_digits(case: Case) -> Case:
 
 def _digits(case: Case, quantity: Quantity) -> StoredNumber | None:
     """Return the digits of one quantity, None where the field does not give them."""
-    rules = {"value": _value, "flux density": _flux_density, "flux": _flux}
-    rule = rules.get(quantity.kind)
-    if rule is None:
-        return None
-    try:
-        return rule(case, quantity)
-    except FieldError:  # a singular end, no conjugate in closed form
-        return None
+    rules = {
+        "value": (_value,),
+        "flux density": (_flux_density,),
+        "exit gradient": (_exit_gradient,),
+        "flux": (flux_by_streams, integral_digits),
+    }
+    for rule in rules.get(quantity.kind, (integral_digits,)):
+        try:
+            found = rule(case, quantity)
+        except FieldError:  # a singular end, no value on a piece
+            continue
+        if found is not None:
+            return found
+    return None
 
 
 def _value(case: Case, quantity: Quantity) -> StoredNumber:
@@ -81,37 +89,28 @@ def _value(case: Case, quantity: Quantity) -> StoredNumber:
 
 def _flux_density(case: Case, quantity: Quantity) -> StoredNumber | None:
     """Return K times a derivative along a coordinate axis."""
-    axes = [axis for axis, part in enumerate(quantity.direction) if part]
-    if len(axes) != 1 or not isinstance(case.problem.conductivity, float) or case.exact.fit_error:
+    k = case.problem.conductivity
+    return _slope(case, quantity.where, quantity.direction, k) if isinstance(k, float) else None
+
+
+def _exit_gradient(case: Case, quantity: Quantity) -> StoredNumber | None:
+    """Return - n . grad u at a point of a piece that lies across a coordinate axis."""
+    place = quantity.place or ()
+    normal = case.problem.pieces[str(quantity.where)].normals([place])[0]
+    return _slope(case, place, tuple(float(n) for n in normal), -1.0)
+
+
+def _slope(case: Case, place: Any, direction: tuple[float, ...], factor: float) -> StoredNumber | None:
+    """Return a factor times a derivative along a coordinate axis."""
+    axes = [axis for axis, part in enumerate(direction) if part]
+    if len(axes) != 1 or case.exact.fit_error:
         return None
     asked = _asked(case)
-    gradient = case.exact.gradient_at(_decimals(quantity.where), asked)
+    gradient = case.exact.gradient_at(_decimals(place), asked)
     with mpmath.workdps(DIGITS + 2 * GUARD):
-        k = mpmath.mpf(repr(case.problem.conductivity)) * int(quantity.direction[axes[0]])
+        k = mpmath.mpf(repr(factor)) * int(direction[axes[0]])
         radius = abs(k) * max(abs(part) for part in gradient) * mpmath.mpf(10) ** (1 - asked)
         return in_digits(k * gradient[axes[0]], radius, case.exact.basis)
-
-
-def _flux(case: Case, quantity: Quantity) -> StoredNumber | None:
-    """Return K times the rise of the conjugate along a straight side."""
-    problem, name = case.problem, str(quantity.where)
-    if problem.dim != 2 or problem.coordinates != "cartesian" or case.window is not None:
-        return None
-    side = problem.pieces[name].boundary
-    ends = [_decimals(end) for end in side.ends]
-    written = all(len(c) <= SHORT for end in ends for c in end)
-    if side.curved or not written or not isinstance(problem.conductivity, float) or case.exact.fit_error:
-        return None
-    stream = case.exact.conjugate()
-    (start, low, _), (stop, high, basis) = (stream.enclosure(end, _asked(case)) for end in ends)
-    with mpmath.workdps(DIGITS + 2 * GUARD):
-        k = mpmath.mpf(repr(problem.conductivity))
-        found = in_digits(k * (stop - start), k * (low + high), basis)
-    # around a source the conjugate gains a turn; quadrature tells
-    agrees = abs(float(found.value) - quantity.value) <= quantity.radius + AGREEMENT * (
-        1 + abs(quantity.value)
-    )
-    return found if agrees else None
 
 
 def _decimals(point: Any) -> tuple[str, ...]:
