@@ -70,14 +70,18 @@ class ExactPiece:
 
 
 def written(number: float) -> Fraction | None:
-    """Return the decimal of at most 12 digits that a float stands for, None if it stands for none.
+    """Return the decimal of at most 12 digits, or the fraction of small terms, that a float stands for.
 
-    >>> written(0.1 + 0.2), written(3**0.5)
-    (Fraction(3, 10), None)
+    None if it stands for none.
+
+    >>> written(0.1 + 0.2), written(29 / 30), written(3**0.5)
+    (Fraction(3, 10), Fraction(29, 30), None)
     """
     decimal = Fraction(f"{float(number):.{WRITTEN}g}")
-    near = abs(float(decimal) - float(number)) <= ROUNDING * abs(float(number))
-    return decimal if near else None
+    for choice in (decimal, Fraction(float(number)).limit_denominator(LARGEST_DENOMINATOR)):
+        if abs(float(choice) - float(number)) <= ROUNDING * abs(float(number)):
+            return choice
+    return None
 
 
 def angle_as_written(angle: float) -> Any:
