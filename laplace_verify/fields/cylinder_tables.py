@@ -92,7 +92,7 @@ def _axial_tables(
     height: float, deepest: float, reach: float
 ) -> tuple[ParityTable, ParityTable, ParityTable] | None:
     """Return the quotients -2 I / (H I_0(k)) over k, the same as they are, and sines and cosines of k d."""
-    k: Array = (math.pi / height) * np.arange(1, most_modes(reach, math.pi / height) + 1)
+    k = np.arange(1.0, most_modes(reach, math.pi / height) + 1.0) * (math.pi / height)
 
     def quotients(r: Array) -> tuple[Array, Array]:
         odd, even = (quotient(FLOAT, order, k[:, None], r, 1.0 - r) for order in (1, 0))

@@ -118,13 +118,15 @@ class DiscArcs(DiscField):
 
     def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:  # noqa: ARG002  # no cut
         offsets = [self._from_jump(ctx, x, i) for i in range(len(self.turns))]
-        gap: Any = 0 * x[0]
-        nearest = gap + math.inf
-        for (ex, ey), (ax, ay) in offsets:
-            square = ax * ax + ay * ay
+        squares = [ax * ax + ay * ay for _, (ax, ay) in offsets]
+        gaps = [  # 1 - |z|^2
+            -2 * (ax * ex + ay * ey) - square
+            for ((ex, ey), (ax, ay)), square in zip(offsets, squares, strict=True)
+        ]
+        gap, nearest = gaps[0], squares[0]
+        for other, square in zip(gaps[1:], squares[1:], strict=True):
             closer = square < nearest
-            gap = ctx.where(closer, -2 * (ax * ex + ay * ey) - square, gap)  # 1 - |z|^2
-            nearest = ctx.where(closer, square, nearest)
+            gap, nearest = ctx.where(closer, other, gap), ctx.where(closer, square, nearest)
         gap = ctx.where(gap > 0, gap, ctx.fabs(0 * gap))  # not -0.0, whose atan2 is -pi
         total: Any = 0
         for i, value in enumerate(self.values):
@@ -158,7 +160,7 @@ class DiscArcs(DiscField):
         """Return e^{i alpha} and z - e^{i alpha} for the start of arc i, to full relative accuracy."""
         unit, high, low = _jump(ctx, self.turns[i], self.centre, self.radius)
         radius = ctx.number(self.radius)
-        return unit, tuple((c - a - b) / radius for c, a, b in zip(x, high, low, strict=True))
+        return unit, tuple((c - a - b if b else c - a) / radius for c, a, b in zip(x, high, low, strict=True))
 
 
 _SOURCE = Precise(40)

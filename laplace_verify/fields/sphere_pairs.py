@@ -103,9 +103,10 @@ class SpherePair(Field):
             for sign in (1.0, -1.0)
         )
 
-    def _images(self, ctx: Any) -> tuple[tuple[Any, Any, Any], ...]:
-        """Return the images, see `images`."""
-        return images(ctx, self.radius, self.gap, self.potentials)
+    def _charges(self, ctx: Any) -> list[tuple[Any, Any]]:
+        """Return charge and height of the images that have any, see `images`."""
+        found = images(ctx, self.radius, self.gap, self.potentials)
+        return [(q, at) for z, up, down in found for q, at in ((up, z), (down, -z)) if q]
 
     def _offsets(self, ctx: Any, x: tuple[Any, ...]) -> tuple[Any, Any, Any, Any]:
         dx, dy, dz = (offset(ctx, c, m) for c, m in zip(x, self.centre, strict=True))
@@ -114,22 +115,25 @@ class SpherePair(Field):
     def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:  # noqa: ARG002  # no cut
         _, _, dz, flat = self._offsets(ctx, x)
         total = 0 * dz
-        for height, up, down in self._images(ctx):
-            if up:
-                total = total + up / ctx.sqrt(flat + (dz - height) ** 2)
-            if down:
-                total = total + down / ctx.sqrt(flat + (dz + height) ** 2)
+        for charge, z in self._charges(ctx):
+            square = dz - z
+            square *= square  # in place: there are hundreds of images
+            square += flat
+            total += charge / ctx.sqrt(square)
         return total
 
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:  # noqa: ARG002
         dx, dy, dz, flat = self._offsets(ctx, x)
         across, along = 0 * dz, 0 * dz
-        for height, up, down in self._images(ctx):
-            for charge, z in ((up, dz - height), (down, dz + height)):
-                if charge:
-                    square = flat + z * z
-                    pull = -charge / (square * ctx.sqrt(square))
-                    across, along = across + pull, along + pull * z
+        for charge, height in self._charges(ctx):
+            z = dz - height
+            square = z * z
+            square += flat
+            square *= ctx.sqrt(square)
+            pull = -charge / square
+            across += pull
+            pull *= z
+            along += pull
         return across * dx, across * dy, along
 
     def _valid(self, points: Array) -> BoolArray:
