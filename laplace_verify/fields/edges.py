@@ -50,12 +50,8 @@ class Edge:
         points, way = np.asarray(points, dtype=np.float64), np.subtract(self.end, self.start)
         length = math.sqrt(float(way @ way))
         if np.count_nonzero(way) == 1:
-            beyond = (
-                ROUNDING * np.maximum(way, 0.0),
-                ROUNDING * np.minimum(way, 0.0),
-            )  # at the end, not the start
-            low, high = np.minimum(self.start, self.end), np.maximum(self.start, self.end)
-            return between(points, low + beyond[1], high + beyond[0])
+            end = self.end + ROUNDING * way
+            return between(points, np.minimum(self.start, end), np.maximum(self.start, end))
         reach = ROUNDING * float(np.abs([self.start, self.end]).max())
         offset = points - self.start
         across, along = np.cross(offset, way / length), offset @ (way / length)
@@ -139,7 +135,7 @@ class Line:
         if not low < high:
             return None
         (x, y, z), (u, v, w) = self.point, self.direction
-        start, end = ((x + t * u + 0.0, y + t * v + 0.0, z + t * w + 0.0) for t in (low, high))
+        start, end = ((x + t * u + 0.0, y + t * v + 0.0, z + t * w + 0.0) for t in (float(low), float(high)))
         return Edge(start=start, end=end, exponent=self.exponent)
 
     def moved(self, matrix: Array, vector: Array) -> Line:
