@@ -16,7 +16,7 @@ Trefethen, Spectral Methods in MATLAB, 2000, chapters 7 and 13 (from memory, unc
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -24,13 +24,13 @@ import numpy as np
 from laplace_verify.arrays import Array, BoolArray, blocks
 from laplace_verify.geometry import Shape
 from laplace_verify.geometry.meshes import subdivide
-from laplace_verify.problems import Problem
+from laplace_verify.problems import Piece, Problem
 from laplace_verify.solvers.adapter import adapt
 from laplace_verify.solvers.answer import Answer
 from laplace_verify.solvers.samples.chebyshev_lines import Line
 from laplace_verify.solvers.samples.levels import level_shift
 
-__all__ = ["chebyshev"]
+__all__ = ["COLLOCATION", "ChebyshevGrid", "Scheme", "chebyshev", "solve_by_collocation"]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -87,35 +87,6 @@ def grid_on(shape: Shape, n: int) -> ChebyshevGrid:
     return ChebyshevGrid(lines=tuple(Line(stops=subdivide(ends[:, a], 1), n=n) for a in range(shape.dim)))
 
 
-@adapt(
-    name="Chebyshev collocation",
-    kind="spectral",
-    order="exponential",
-    dims={1, 2},
-    shapes={"interval", "rectangle"},
-    conditions={"dirichlet", "neumann", "robin"},
-    conductivity={"scalar", "tensor"},
-    error_floor=1e-10,
-    sizes=(4, 6, 8, 12, 16, 24),
-)
-def chebyshev(problem: Problem, n: int) -> Answer:
-    """Solve with polynomials of degree n in every coordinate."""
-    grid = grid_on(problem.shape, n)
-    matrix, load = equation_rows(grid, problem.tensor), np.zeros(len(grid.points()))
-    free = impose_conditions(matrix, load, grid, problem)
-    values = balanced(matrix, load, grid) if free else solved(matrix, load)
-    if free:
-        mean = float(np.average(values, weights=grid.weights()))
-        values = values + level_shift(problem, mean, lambda points: evaluated(grid, values, points))
-    return Answer(
-        evaluate=lambda points: evaluated(grid, values, points),
-        gradient=lambda points: np.stack(
-            [evaluated(grid, values, points, a) for a in range(grid.dim)], axis=1
-        ),
-        unknowns=len(values),
-    )
-
-
 def equation_rows(grid: ChebyshevGrid, tensor: Array) -> Array:
     """Return the collocated operator sum_ab K_ab D_a D_b; on cuts the jump of the normal flux."""
     count = len(grid.points())
@@ -132,7 +103,9 @@ def equation_rows(grid: ChebyshevGrid, tensor: Array) -> Array:
     return operator
 
 
-def impose_conditions(matrix: Array, load: Array, grid: ChebyshevGrid, problem: Problem) -> bool:
+def impose_conditions(
+    matrix: Array, load: Array, grid: ChebyshevGrid, problem: Problem, scheme: Scheme
+) -> bool:
     """Replace the rows of boundary points by the conditions; tell whether the constant is left free."""
     points = grid.points()
     slopes = [grid.along(a, line.derivative(1)) for a, line in enumerate(grid.lines)]
@@ -141,21 +114,37 @@ def impose_conditions(matrix: Array, load: Array, grid: ChebyshevGrid, problem: 
     for piece in problem.pieces:
         on = np.flatnonzero(piece.contains(points))
         if piece.kind != "dirichlet":
-            conormal = piece.normals(points[on]) @ problem.tensor
+            conormal = scheme.conormals(piece, points[on], problem.tensor)
             for axis, slope in enumerate(slopes):
                 matrix[on] += conormal[:, axis, np.newaxis] * slope[on]
-            load[on] += piece.data(points[on])
+            load[on] += scheme.influx(piece, points[on])
         if piece.kind == "robin":
-            alpha = piece.alpha(points[on])
+            alpha = scheme.transfer(piece, points[on])
             matrix[on, on] += alpha
             free &= not np.any(alpha > 0.0)
     for piece in problem.pieces:
         if piece.kind == "dirichlet":
             on = np.flatnonzero(piece.contains(points))
             matrix[on] = np.eye(len(points))[on]
-            load[on] = piece.data(points[on])
+            load[on] = scheme.held(piece, points[on])
             free = False
     return free
+
+
+def conormals(piece: Piece, points: Array, tensor: Array) -> Array:
+    """Return n . K at points of a piece, (m, d)."""
+    result: Array = piece.normals(points) @ tensor
+    return result
+
+
+def data_at(piece: Piece, points: Array) -> Array:
+    """Return what is prescribed at points of a piece."""
+    return piece.data(points)
+
+
+def transfer_at(piece: Piece, points: Array) -> Array:
+    """Return Robin's alpha at points of a piece."""
+    return piece.alpha(points)
 
 
 def solved(matrix: Array, load: Array) -> Array:
@@ -163,11 +152,13 @@ def solved(matrix: Array, load: Array) -> Array:
     return np.linalg.solve(matrix, load).astype(np.float64)
 
 
-def balanced(matrix: Array, load: Array, grid: ChebyshevGrid) -> Array:
+def balanced(
+    matrix: Array, load: Array, grid: ChebyshevGrid, solve: Callable[[Array, Array], Array] = solved
+) -> Array:
     """Return the solution of mean zero; what data lack for balance is spread over the equations inside."""
     inside = ~(grid.at_rim() | grid.at_cut())
     bordered = np.block([[matrix, inside[:, np.newaxis].astype(np.float64)], [grid.weights(), np.zeros(1)]])
-    return solved(bordered, np.append(load, 0.0))[:-1]
+    return solve(bordered, np.append(load, 0.0))[:-1]
 
 
 def evaluated(grid: ChebyshevGrid, values: Array, points: Array, slope: int | None = None) -> Array:
@@ -180,3 +171,56 @@ def evaluated(grid: ChebyshevGrid, values: Array, points: Array, slope: int | No
             part = np.sum(part * grid.lines[1].basis(points[block, 1], slope=slope == 1), axis=1)
         result[block] = part
     return result
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Scheme:
+    """The decisions that make a solver with Chebyshev collocation."""
+
+    grid: Callable[[Shape, int], ChebyshevGrid] = grid_on
+    equations: Callable[[ChebyshevGrid, Array], Array] = equation_rows
+    conormals: Callable[[Piece, Array, Array], Array] = conormals
+    influx: Callable[[Piece, Array], Array] = data_at
+    transfer: Callable[[Piece, Array], Array] = transfer_at
+    held: Callable[[Piece, Array], Array] = data_at
+    solve: Callable[[Array, Array], Array] = solved
+    evaluate: Callable[[ChebyshevGrid, Array, Array, int | None], Array] = evaluated
+
+
+COLLOCATION = Scheme()
+
+
+def solve_by_collocation(problem: Problem, n: int, scheme: Scheme = COLLOCATION) -> Answer:
+    """Solve with polynomials of degree n in every coordinate."""
+    grid = scheme.grid(problem.shape, n)
+    matrix, load = scheme.equations(grid, problem.tensor), np.zeros(len(grid.points()))
+    free = impose_conditions(matrix, load, grid, problem, scheme)
+    values = balanced(matrix, load, grid, scheme.solve) if free else scheme.solve(matrix, load)
+    if free:
+        mean = float(np.average(values, weights=grid.weights()))
+        values = values + level_shift(
+            problem, mean, lambda points: scheme.evaluate(grid, values, points, None)
+        )
+    return Answer(
+        evaluate=lambda points: scheme.evaluate(grid, values, points, None),
+        gradient=lambda points: np.stack(
+            [scheme.evaluate(grid, values, points, a) for a in range(grid.dim)], axis=1
+        ),
+        unknowns=len(values),
+    )
+
+
+@adapt(
+    name="Chebyshev collocation",
+    kind="spectral",
+    order="exponential",
+    dims={1, 2},
+    shapes={"interval", "rectangle"},
+    conditions={"dirichlet", "neumann", "robin"},
+    conductivity={"scalar", "tensor"},
+    error_floor=1e-10,
+    sizes=(4, 6, 8, 12, 16, 24),
+)
+def chebyshev(problem: Problem, n: int) -> Answer:
+    """Solve with polynomials of degree n in every coordinate."""
+    return solve_by_collocation(problem, n)

@@ -18,13 +18,16 @@ Strang & Fix, An Analysis of the Finite Element Method, 1973, sections 1.9 and 4
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator, Mapping
+from dataclasses import dataclass
 from functools import partial
+from typing import Any
 
 import numpy as np
 import scipy.sparse as sp
 
 from laplace_verify.arrays import Array, BoolArray, IntArray
+from laplace_verify.geometry import Shape
 from laplace_verify.geometry.meshes import Mesh, triangulate
 from laplace_verify.problems import Piece, Problem
 from laplace_verify.problems.coordinates import Coordinates, metric
@@ -33,60 +36,10 @@ from laplace_verify.solvers.answer import Answer
 from laplace_verify.solvers.samples.levels import level_shift
 from laplace_verify.solvers.samples.linear_systems import direct
 
-__all__ = ["p1_element"]
+__all__ = ["LINEAR", "PLANAR", "Scheme", "p1_element", "solve_with_elements"]
 
 HAIR = 1e-8  # of an edge: far more than rounding, far less than any error of discretisation
 GAUSS = ((0.5 - 3**-0.5 / 2, 0.5), (0.5 + 3**-0.5 / 2, 0.5))  # place along the edge, weight
-
-
-@adapt(
-    name="linear finite elements",
-    kind="finite element",
-    order={"max": 2, "L1": 2, "L2": 2, "H1-semi": 1, "energy": 1},
-    dims={2},
-    shapes={
-        "polygon",
-        "disc",
-        "ellipse",
-        "annulus",
-        "elliptic-ring",
-        "sector",
-        "half-disc",
-        "half-annulus",
-        "confocal-parabolas",
-        "cone-section",
-    },
-    conditions={"dirichlet", "neumann", "robin"},
-    conductivity={"scalar", "tensor"},
-    coordinates={"cartesian", "axisymmetric"},
-    error_floor=1e-11,
-    reproduces_degree=1,
-)
-def p1_element(problem: Problem, n: int) -> Answer:
-    """Solve on a triangulation with n cells along every side."""
-    mesh = triangulate(problem.shape, n)
-    matrix = stiffness(mesh, problem.tensor, problem.coordinates)
-    load = np.zeros(len(mesh.points))
-    transfer = sp.csr_array(matrix.shape)
-    for piece in problem.pieces:
-        if piece.kind in ("neumann", "robin"):
-            load += boundary_load(mesh, piece, problem.coordinates)
-        if piece.kind == "robin":
-            transfer = transfer + boundary_mass(mesh, piece, problem.coordinates)
-    held, values = held_values(mesh, problem)
-    fixed = bool(held.any() or transfer.diagonal().any())
-    shares = masses(mesh, problem.coordinates)
-    values = solved(matrix + transfer, load, held, values, None if fixed else shares)
-    if not fixed:
-        mean = float(np.average(values, weights=shares))
-        values = values + level_shift(problem, mean, partial(interpolated, mesh, values))
-    return Answer(
-        mesh.points,
-        values,
-        cells={"triangle": mesh.triangles},
-        h=mesh.h,
-        unknowns=int(np.count_nonzero(~held)),
-    )
 
 
 def hat_gradients(mesh: Mesh) -> Array:
@@ -157,7 +110,7 @@ def asked_at(mesh: Mesh, piece: Piece, nodes: IntArray) -> Array:
     """
     points = mesh.points[nodes].copy()
     edges = mesh.boundary[piece.name]
-    first, last = edges[0], edges[-1][::-1]
+    first, last = edges[0, :2], edges[-1, 1::-1]
     gap = np.linalg.norm(mesh.points[first[0]] - mesh.points[last[0]])
     if first[0] != last[0] and gap < HAIR * piece.measure:
         for end, neighbour in (first, last):
@@ -191,3 +144,83 @@ def interpolated(mesh: Mesh, values: Array, points: Array) -> Array:
         best = int(np.argmax(shares.min(axis=1)))
         result[k] = shares[best] @ values[mesh.triangles[best]]
     return result
+
+
+def on_triangles(mesh: Mesh, values: Array) -> dict[str, Any]:
+    """Return what is handed back: the nodal values and the triangles between them."""
+    return {"points": mesh.points, "values": values, "cells": {"triangle": mesh.triangles}}
+
+
+# ---- putting it together -------------------------------------------------------------------------
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Scheme:
+    """The decisions that make a solver with nodal finite elements."""
+
+    mesh: Callable[[Shape, int], Mesh] = triangulate
+    stiffness: Callable[[Mesh, Array, Coordinates], sp.csr_array] = stiffness
+    neumann: Callable[[Mesh, Piece, Coordinates], Array] = boundary_load
+    robin: Callable[[Mesh, Piece, Coordinates], sp.csr_array] = boundary_mass
+    dirichlet: Callable[[Mesh, Problem], tuple[BoolArray, Array]] = held_values
+    masses: Callable[[Mesh, Coordinates], Array] = masses
+    solve: Callable[[sp.csr_array, Array, BoolArray, Array, Array | None], Array] = solved
+    value_at: Callable[[Mesh, Array, Array], Array] = interpolated
+    answer: Callable[[Mesh, Array], Mapping[str, Any]] = on_triangles
+
+
+LINEAR = Scheme()
+
+
+def solve_with_elements(problem: Problem, n: int, scheme: Scheme = LINEAR) -> Answer:
+    """Solve div(K grad u) = 0 on a planar shape with n cells along every side."""
+    mesh = scheme.mesh(problem.shape, n)
+    matrix = scheme.stiffness(mesh, problem.tensor, problem.coordinates)
+    load = np.zeros(len(mesh.points))
+    transfer = sp.csr_array(matrix.shape)
+    for piece in problem.pieces:
+        if piece.kind in ("neumann", "robin"):
+            load += scheme.neumann(mesh, piece, problem.coordinates)
+        if piece.kind == "robin":
+            transfer = transfer + scheme.robin(mesh, piece, problem.coordinates)
+    held, values = scheme.dirichlet(mesh, problem)
+    fixed = bool(held.any() or transfer.diagonal().any())
+    shares = scheme.masses(mesh, problem.coordinates)
+    values = scheme.solve(matrix + transfer, load, held, values, None if fixed else shares)
+    if not fixed:
+        mean = float(np.average(values, weights=shares))
+        values = values + level_shift(problem, mean, partial(scheme.value_at, mesh, values))
+    return Answer(h=mesh.h, unknowns=int(np.count_nonzero(~held)), **scheme.answer(mesh, values))
+
+
+PLANAR = frozenset(
+    {
+        "polygon",
+        "disc",
+        "ellipse",
+        "annulus",
+        "elliptic-ring",
+        "sector",
+        "half-disc",
+        "half-annulus",
+        "confocal-parabolas",
+        "cone-section",
+    }
+)
+
+
+@adapt(
+    name="linear finite elements",
+    kind="finite element",
+    order={"max": 2, "L1": 2, "L2": 2, "H1-semi": 1, "energy": 1},
+    dims={2},
+    shapes=PLANAR,
+    conditions={"dirichlet", "neumann", "robin"},
+    conductivity={"scalar", "tensor"},
+    coordinates={"cartesian", "axisymmetric"},
+    error_floor=1e-11,
+    reproduces_degree=1,
+)
+def p1_element(problem: Problem, n: int) -> Answer:
+    """Solve by linear triangular elements."""
+    return solve_with_elements(problem, n)

@@ -28,8 +28,9 @@ unchecked).
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
+from functools import partial
 
 import numpy as np
 
@@ -41,44 +42,12 @@ from laplace_verify.solvers.adapter import adapt
 from laplace_verify.solvers.answer import Answer
 from laplace_verify.solvers.samples.levels import level_shift
 
-__all__ = ["fundamental_solutions"]
+__all__ = ["CONFOCAL", "FarField", "Scheme", "Sources", "fundamental_solutions", "solve_by_sources"]
 
 DILATION = 2.0
 CUT = 1e-15  # singular values below this part of the largest are left out
 BLOCK = 2048  # points at a time: a table of points by sources stays in cache
 FINE = 40  # degree of the quadrature that takes the mean for the level
-
-
-@adapt(
-    name="fundamental solutions",
-    kind="boundary element",
-    order="exponential",
-    dims={2},
-    shapes={"disc", "ellipse", "annulus", "exterior-disc", "exterior-ellipse"},
-    unbounded=True,
-    conditions={"dirichlet", "neumann", "robin"},
-    error_floor=1e-10,
-    formulation="indirect",
-    sizes=(8, 12, 16, 24, 32, 48),
-)
-def fundamental_solutions(problem: Problem, n: int) -> Answer:
-    """Solve with n sources on every enclosing curve."""
-    curves, far = source_curves(problem.shape, n), FarField.of(problem)
-    pieces = [condition_rows(piece, problem, curves, n, far) for piece in problem.pieces]
-    rows, load = (np.concatenate(part) for part in zip(*pieces, strict=True))
-    if problem.at_infinity == "decay":
-        rows[:, -1] = 0.0  # the constant is 0
-    unknown = truncated_least_squares(rows, load)
-    solution = Sources(
-        points=np.concatenate(curves), strengths=uncharged(unknown[:-1], n), constant=unknown[-1], far=far
-    )
-    if not np.any(rows[:, -1]) and problem.at_infinity != "decay":  # no condition sees the constant
-        mean = 0.0
-        if problem.shape.bounded:
-            points, weights = problem.shape.quadrature(FINE)
-            mean = float(np.average(solution.value(points), weights=weights))
-        solution = replace(solution, constant=solution.constant + level_shift(problem, mean, solution.value))
-    return Answer(evaluate=solution.value, gradient=solution.gradient, unknowns=rows.shape[1])
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -156,17 +125,17 @@ def inverse_distances(points: Array, sources: Array) -> tuple[Array, Array]:
     return x / squared, y / squared
 
 
-def source_curves(shape: Shape, n: int) -> list[Array]:
+def source_curves(shape: Shape, n: int, dilation: float = DILATION) -> list[Array]:
     """Return n sources around the shape and, if it has a hole, n inside that."""
     if isinstance(shape, Annulus):
-        hole = confocal(np.array(shape.hole_centre), (shape.inner, shape.inner), 1.0 / DILATION, n)
-        return [confocal(np.array(shape.centre), (shape.outer, shape.outer), DILATION, n), hole]
+        hole = confocal(np.array(shape.hole_centre), (shape.inner, shape.inner), 1.0 / dilation, n)
+        return [confocal(np.array(shape.centre), (shape.outer, shape.outer), dilation, n), hole]
     if isinstance(shape, Disc | Ellipse):
-        return [confocal(np.array(shape.centre), shape.semi_axes, DILATION, n)]
+        return [confocal(np.array(shape.centre), shape.semi_axes, dilation, n)]
     if isinstance(shape, Exterior) and isinstance(shape.body, Disc | Ellipse):
         a, b = shape.body.semi_axes
         # the segment between the foci has a + b = sqrt(|a^2 - b^2|)
-        shrunk = max(1.0 / DILATION, (abs(a - b) / (a + b)) ** 0.45)
+        shrunk = max(1.0 / dilation, (abs(a - b) / (a + b)) ** 0.45)
         return [confocal(np.array(shape.body.centre), (a, b), shrunk, n)]
     raise AdapterError(
         "sources can be placed around discs, ellipses and annuli, and inside discs and ellipses, "
@@ -193,14 +162,19 @@ def columns(terms: Array, n: int) -> Array:
 
 
 def condition_rows(
-    piece: Piece, problem: Problem, curves: list[Array], n: int, far: FarField
+    piece: Piece,
+    problem: Problem,
+    curves: list[Array],
+    n: int,
+    far: FarField,
+    kernel: Callable[[Array, Array], Array] = logarithms,
 ) -> tuple[Array, Array]:
     """Return the equations of one piece, weighted by the square roots of the lengths they stand for."""
     points, normals, weights = piece.sample(
         max(4, math.ceil(2 * n * piece.measure / loop_length(piece, problem)))
     )
     sources, root = np.concatenate(curves), np.sqrt(weights)[:, np.newaxis]
-    value = np.append(columns(logarithms(points, sources), n), np.ones((len(points), 1)), axis=1)
+    value = np.append(columns(kernel(points, sources), n), np.ones((len(points), 1)), axis=1)
     if piece.kind == "dirichlet":
         return root * value, root[:, 0] * (piece.data(points) - far.value(points))
     x, y = inverse_distances(points, sources)
@@ -226,10 +200,63 @@ def in_hole(piece: Piece) -> bool:
     return piece.name.startswith("inner")
 
 
-def truncated_least_squares(rows: Array, load: Array) -> Array:
+def truncated_least_squares(rows: Array, load: Array, cut: float = CUT) -> Array:
     """Return the least-squares solution of smallest norm, columns scaled to unit length."""
     size = np.linalg.norm(rows, axis=0)
     size[size == 0.0] = 1.0
-    solution, *_ = np.linalg.lstsq(rows / size, load, rcond=CUT)
+    solution, *_ = np.linalg.lstsq(rows / size, load, rcond=cut)
     unscaled: Array = solution / size
     return unscaled
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Scheme:
+    """The decisions that make a solver with fundamental solutions."""
+
+    curves: Callable[[Shape, int], list[Array]] = source_curves
+    far: Callable[[Problem], FarField] = FarField.of
+    rows: Callable[[Piece, Problem, list[Array], int, FarField], tuple[Array, Array]] = condition_rows
+    solve: Callable[[Array, Array], Array] = truncated_least_squares
+    gradient: Callable[[Sources, Array], Array] = Sources.gradient
+
+
+CONFOCAL = Scheme()
+
+
+def solve_by_sources(problem: Problem, n: int, scheme: Scheme = CONFOCAL) -> Answer:
+    """Solve with n sources on every enclosing curve."""
+    curves, far = scheme.curves(problem.shape, n), scheme.far(problem)
+    pieces = [scheme.rows(piece, problem, curves, n, far) for piece in problem.pieces]
+    rows, load = (np.concatenate(part) for part in zip(*pieces, strict=True))
+    if problem.at_infinity == "decay":
+        rows[:, -1] = 0.0  # the constant is 0
+    unknown = scheme.solve(rows, load)
+    solution = Sources(
+        points=np.concatenate(curves), strengths=uncharged(unknown[:-1], n), constant=unknown[-1], far=far
+    )
+    if not np.any(rows[:, -1]) and problem.at_infinity != "decay":  # no condition sees the constant
+        mean = 0.0
+        if problem.shape.bounded:
+            points, weights = problem.shape.quadrature(FINE)
+            mean = float(np.average(solution.value(points), weights=weights))
+        solution = replace(solution, constant=solution.constant + level_shift(problem, mean, solution.value))
+    return Answer(
+        evaluate=solution.value, gradient=partial(scheme.gradient, solution), unknowns=rows.shape[1]
+    )
+
+
+@adapt(
+    name="fundamental solutions",
+    kind="boundary element",
+    order="exponential",
+    dims={2},
+    shapes={"disc", "ellipse", "annulus", "exterior-disc", "exterior-ellipse"},
+    unbounded=True,
+    conditions={"dirichlet", "neumann", "robin"},
+    error_floor=1e-10,
+    formulation="indirect",
+    sizes=(8, 12, 16, 24, 32, 48),
+)
+def fundamental_solutions(problem: Problem, n: int) -> Answer:
+    """Solve with n sources on every enclosing curve."""
+    return solve_by_sources(problem, n)

@@ -1,0 +1,202 @@
+"""Coding mistakes in the walk on spheres, and ways of doing the same right that look like some."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+from functools import partial
+
+import numpy as np
+
+from laplace_verify.arrays import Array
+from laplace_verify.problems import Problem
+from laplace_verify.solvers.samples.fault import Effect, Fault, seeded
+from laplace_verify.solvers.samples.walk_on_spheres import (
+    SPHERES,
+    Walk,
+    leaps_onto_spheres,
+    solve_by_walks,
+    standard_errors,
+    walk_on_spheres,
+)
+
+__all__ = ["WALK_FAULTS"]
+
+
+def drifting_leaps(radii: Array, dim: int, generator: np.random.Generator) -> Array:
+    """Leap to the right along the first axis in 55 of 100 leaps."""
+    leaps = leaps_onto_spheres(radii, dim, generator)
+    leaps[:, 0] = np.abs(leaps[:, 0]) * np.where(generator.random(len(leaps)) < 0.55, 1.0, -1.0)
+    return leaps
+
+
+def leaps_from_a_cube(radii: Array, dim: int, generator: np.random.Generator) -> Array:
+    """Normalise points of a cube that reaches further to one side."""
+    leaps = generator.uniform(-1.0, 1.2, (len(radii), dim))
+    leaps *= (radii / np.sqrt((leaps**2).sum(axis=1)))[:, np.newaxis]
+    return leaps
+
+
+def elliptic_leaps(radii: Array, dim: int, generator: np.random.Generator) -> Array:
+    """Take half of the last component, so that leaps end on an ellipse."""
+    leaps = leaps_onto_spheres(radii, dim, generator)
+    leaps[:, -1] *= 0.5
+    return leaps
+
+
+def half_leaps(radii: Array, dim: int, generator: np.random.Generator) -> Array:
+    """Leap half as far: slower and right, by the mean value on the smaller sphere."""
+    return leaps_onto_spheres(0.5 * radii, dim, generator)
+
+
+def reversed_leaps(radii: Array, dim: int, generator: np.random.Generator) -> Array:
+    """Leap in the opposite direction, evenly distributed as before."""
+    return -leaps_onto_spheres(radii, dim, generator)
+
+
+def leaps_in_balls(radii: Array, dim: int, generator: np.random.Generator) -> Array:
+    """Leap evenly into the ball: slower and right, by the mean value over the ball."""
+    shrunk = radii * generator.random(len(radii)) ** (1.0 / dim)
+    return leaps_onto_spheres(shrunk, dim, generator)
+
+
+def first_piece_only(problem: Problem, places: Array) -> Array:
+    """Take the data of the first piece wherever a walk leaves."""
+    piece = next(iter(problem.pieces))
+    feet = problem.shape.pieces[piece.name].project(places)
+    return piece.data(feet)
+
+
+def deviations(variance: Array, n: int) -> Array:
+    """State the deviation of one walk, not of their mean."""
+    del n
+    return np.sqrt(variance)
+
+
+def errors_of_squares(variance: Array, n: int) -> Array:
+    """Divide by n what belongs under the root."""
+    errors: Array = np.sqrt(variance) / n
+    return errors
+
+
+def quarter_of_errors(variance: Array, n: int) -> Array:
+    """State a quarter of the standard error."""
+    return 0.25 * standard_errors(variance, n)
+
+
+def _fault(
+    name: str,
+    description: str,
+    walk: Walk,
+    *,
+    kind: str,
+    suspects: tuple[str, ...],
+    shown_by: tuple[str, ...],
+    effect: Effect = "order",
+) -> tuple[str, Fault]:
+    """Return an entry of `WALK_FAULTS`."""
+    solve = partial(solve_by_walks, walk=walk)
+    return seeded(
+        walk_on_spheres, solve, name, description,
+        kind=kind, suspects=suspects, shown_by=shown_by, effect=effect,
+    )  # fmt: skip
+
+
+FIXED = ("plate-saddle", "plate-wave", "disc-fourier")
+BIASED = ("do not get smaller", "diverge", "standard error", "biased", "wrong limit")
+
+WALK_FAULTS: dict[str, Fault] = dict(
+    [
+        _fault(
+            "thick shell",
+            "walks end within a tenth of the shape's size of the boundary",
+            replace(SPHERES, shell=0.1),
+            kind="early stopping",
+            suspects=BIASED,
+            shown_by=FIXED,
+        ),
+        _fault(
+            "drift",
+            "leaps go to one side along the first axis more often than to the other",
+            replace(SPHERES, leaps=drifting_leaps),
+            kind="distribution",
+            suspects=BIASED,
+            shown_by=FIXED,
+        ),
+        _fault(
+            "lopsided cube",
+            "directions are normalised points of a cube that is not centred",
+            replace(SPHERES, leaps=leaps_from_a_cube),
+            kind="distribution",
+            suspects=BIASED,
+            shown_by=FIXED,
+        ),
+        _fault(
+            "flat leaps",
+            "the last component of every leap is halved",
+            replace(SPHERES, leaps=elliptic_leaps),
+            kind="distribution",
+            suspects=BIASED,
+            shown_by=FIXED,
+        ),
+        _fault(
+            "data of the first piece",
+            "all walks take the data of the first piece",
+            replace(SPHERES, data=first_piece_only),
+            kind="wrong side",
+            suspects=BIASED,
+            shown_by=("plate-saddle", "plate-wave", "annulus-logarithm"),
+        ),
+        _fault(
+            "standard errors over n",
+            "standard errors are s/n instead of s/sqrt(n)",
+            replace(SPHERES, errors=errors_of_squares),
+            kind="standard error",
+            suspects=BIASED,
+            shown_by=FIXED,
+        ),
+        _fault(
+            "quarter of the standard error",
+            "standard errors are four times too small",
+            replace(SPHERES, errors=quarter_of_errors),
+            kind="standard error",
+            suspects=BIASED,
+            shown_by=FIXED,
+        ),
+        _fault(
+            "deviation for error",
+            "the deviation of one walk is stated for the standard error of their mean",
+            replace(SPHERES, errors=deviations),
+            kind="standard error",
+            effect="accuracy",
+            suspects=("standard error",),
+            shown_by=FIXED,
+        ),
+        _fault(
+            "half leaps",
+            "leaps go half as far: slower and right",
+            replace(SPHERES, leaps=half_leaps),
+            kind="equivalent formulation",
+            effect="harmless",
+            suspects=(),
+            shown_by=FIXED,
+        ),
+        _fault(
+            "leaps into the ball",
+            "leaps end anywhere in the ball, evenly: slower and right",
+            replace(SPHERES, leaps=leaps_in_balls),
+            kind="equivalent formulation",
+            effect="harmless",
+            suspects=(),
+            shown_by=FIXED,
+        ),
+        _fault(
+            "leaps reversed",
+            "leaps in the opposite direction: other walks of the same law",
+            replace(SPHERES, leaps=reversed_leaps),
+            kind="equivalent formulation",
+            effect="harmless",
+            suspects=(),
+            shown_by=FIXED,
+        ),
+    ]
+)
