@@ -152,7 +152,7 @@ def _fault(
 
 
 FIXED = ("plate-wave", "plate-saddle", "triangle-cubic")
-FLUX = ("plate-flux-top", "plate-flux-left", "annulus-past-pile")
+FLUX = ("plate-flux-top", "plate-flux-left", "plate-flux-bottom")
 ROBIN = ("plate-convection-all-round", "wall-mixed-conditions", "plate-source-close")
 EVERYWHERE = ("do not get smaller", "diverge", "wrong limit")
 

@@ -250,11 +250,11 @@ ELEMENT_FAULTS: dict[str, Fault] = dict(
         ),
         _fault(
             "one area for all",
-            "all triangles get the mean area; invisible on uniform meshes",
+            "all triangles get the mean area; hidden on uniform meshes and nearly so on discs",
             replace(LINEAR, stiffness=mean_area),
             kind="element volume",
             suspects=("curved boundary", "sides off the axes"),
-            shown_by=("disc-fourier", "annulus-logarithm", "ellipse-convection"),
+            shown_by=("annulus-logarithm", "annulus-flux-inside", "annulus-convection"),
         ),
         _fault(
             "alpha left out",

@@ -79,7 +79,7 @@ def _fault(
     )
 
 
-FLUX = ("plate-flux-top", "plate-flux-left", "annulus-past-pile")
+FLUX = ("plate-flux-top", "plate-flux-left", "plate-flux-bottom")
 ROUND = ("disc-fourier", "disc-convection", "annulus-convection")
 FIXED = ("plate-wave", "plate-cubic", "disc-fourier")
 
