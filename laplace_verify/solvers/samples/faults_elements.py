@@ -140,7 +140,7 @@ def in_single_precision(
     matrix: sp.csr_array, load: Array, held: BoolArray, values: Array, weights: Array | None
 ) -> Array:
     """Keep the nodal values in 32 bits."""
-    return sound.solved(matrix, load, held, values, weights).astype(np.float32)  # type: ignore[return-value]
+    return sound.solved(matrix, load, held, values, weights).astype(np.float32)
 
 
 def renumbered(shape: Shape, n: int) -> Mesh:

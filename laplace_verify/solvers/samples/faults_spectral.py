@@ -70,7 +70,8 @@ def single_mixed_derivative(grid: ChebyshevGrid, tensor: Array) -> Array:
 def scaled_rows(grid: ChebyshevGrid, tensor: Array) -> Array:
     """Divide every equation inside by its largest number."""
     matrix = sound.equation_rows(grid, tensor)
-    return matrix / np.max(np.abs(matrix), axis=1, keepdims=True)
+    scaled: Array = matrix / np.max(np.abs(matrix), axis=1, keepdims=True)
+    return scaled
 
 
 def normal_without_conductivity(piece: Piece, points: Array, tensor: Array) -> Array:
