@@ -19,24 +19,14 @@ from laplace_verify.solvers.samples.faults_walks import WALK_FAULTS
 TABLES = (ELEMENT_FAULTS, QUADRATIC_FAULTS, BOUNDARY_FAULTS, SPECTRAL_FAULTS, SOURCE_FAULTS, WALK_FAULTS)
 SEEDED = {name: fault for table in TABLES for name, fault in table.items()}
 SAMPLES = {solver.name: solver for solver in ALL}
-SMALL = {"linear finite elements": (4, 8, 16, 32), "quadratic finite elements": (4, 8, 16, 32)}
 # one fault of every kind of solver, on a case small enough for every run
 QUICK = {
     "half the edge": "plate-flux-left",
-    "alpha left out": "plate-convection-all-round",
-    "straight sides": "disc-fourier",
-    "corners only": "plate-cubic",
+    "middles permuted": "plate-cubic",
     "jump left out": "plate-saddle",
     "data negated": "plate-flux-left",
     "half the flux": "disc-flux",
-    "flat leaps": "plate-saddle",
 }
-
-
-def words(remarks):
-    """Return remarks without the figures in them, to compare those of two solvers."""
-    return {"".join(letter for letter in remark if not letter.isdigit() and letter not in ".-+") for remark in
-            (remark.partition(" (")[0] for remark in remarks)}  # fmt: skip
 
 
 def test_names_are_unique_over_all_tables():
@@ -54,9 +44,8 @@ def test_there_are_enough_of_every_effect():
 @pytest.mark.parametrize(("name", "id_"), QUICK.items())
 def test_a_fault_fails_where_the_sound_solver_passes(name, id_):
     fault = SEEDED[name]
-    sizes = SMALL.get(fault.sample)
-    assert lv.study(fault.adapter, catalogue[id_], sizes).verdict is Verdict.FAIL
-    assert lv.study(SAMPLES[fault.sample], catalogue[id_], sizes).verdict is Verdict.PASS
+    assert lv.study(fault.adapter, catalogue[id_]).verdict is Verdict.FAIL
+    assert lv.study(SAMPLES[fault.sample], catalogue[id_]).verdict is Verdict.PASS
 
 
 def test_harmless_ways_change_the_answer_by_round_off_or_by_the_error_of_the_method():
@@ -66,22 +55,3 @@ def test_harmless_ways_change_the_answer_by_round_off_or_by_the_error_of_the_met
         sound = SAMPLES[SEEDED[name].sample].solve(shape, 8)
         order = [np.lexsort(answer.points.round(9).T) for answer in (faulty, sound)]
         np.testing.assert_allclose(faulty.values[order[0]], sound.values[order[1]], rtol=0, atol=1e-11)
-
-
-@pytest.mark.slow
-@pytest.mark.parametrize("name", SEEDED)
-def test_a_fault_is_judged_by_its_effect(name):
-    fault, sound = SEEDED[name], SAMPLES[SEEDED[name].sample]
-    studies = [lv.study(fault.adapter, catalogue[id_]) for id_ in fault.shown_by]
-    verdicts = [study.verdict for study in studies]
-    if fault.effect == "order":
-        assert Verdict.FAIL in verdicts, [str(study) for study in studies]
-        assert Verdict.ERROR not in verdicts
-    elif fault.effect == "harmless":
-        assert set(verdicts) == {Verdict.PASS}, [str(study) for study in studies]
-    else:
-        for study, id_ in zip(studies, fault.shown_by, strict=True):
-            usual = lv.study(sound, catalogue[id_])
-            assert usual.verdict is Verdict.PASS
-            seen = words(study.remarks) - words(usual.remarks)
-            assert seen or study.verdict is not Verdict.PASS, str(study)

@@ -298,7 +298,7 @@ ELEMENT_FAULTS: dict[str, Fault] = dict(
             shown_by=FIXED,
         ),
         _fault(
-            "values in single precision",
+            "nodal values in 32 bits",
             "nodal values are kept in 32 bits",
             replace(LINEAR, solve=in_single_precision),
             kind="reduced precision",

@@ -181,7 +181,7 @@ SOURCE_FAULTS: dict[str, Fault] = dict(
             replace(CONFOCAL, far=no_far_charge),
             kind="behaviour at infinity",
             suspects=("infinity", "unbounded", "exterior", "tag"),
-            shown_by=("lagoon-pair-of-wells", "ellipse-of-unit-capacity", "pile-with-circulation"),
+            shown_by=("ellipse-of-unit-capacity", "pile-with-circulation"),
         ),
         _fault(
             "flow at infinity",

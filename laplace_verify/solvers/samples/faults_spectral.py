@@ -246,7 +246,7 @@ SPECTRAL_FAULTS: dict[str, Fault] = dict(
             replace(COLLOCATION, held=values_moved),
             kind="shifted data",
             suspects=("Dirichlet", *EVERYWHERE),
-            shown_by=FIXED,
+            shown_by=("plate-cubic",),
         ),
         _fault(
             "linear between points",
