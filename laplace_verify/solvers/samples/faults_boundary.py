@@ -153,7 +153,7 @@ def _fault(
 
 FIXED = ("plate-wave", "plate-saddle", "triangle-cubic")
 FLUX = ("plate-flux-top", "plate-flux-left", "plate-flux-bottom")
-ROBIN = ("plate-convection-all-round", "wall-mixed-conditions", "plate-source-close")
+ROBIN = ("plate-convection-all-round", "wall-mixed-conditions")
 EVERYWHERE = ("do not get smaller", "diverge", "wrong limit")
 
 BOUNDARY_FAULTS: dict[str, Fault] = dict(
@@ -244,7 +244,7 @@ BOUNDARY_FAULTS: dict[str, Fault] = dict(
             replace(COLLOCATION, elements=reversed_in_holes),
             kind="normal orientation",
             suspects=("annulus", "inner", "hole", "shape"),
-            shown_by=("annulus-logarithm", "annulus-past-pile", "eccentric-circles-two-temperatures"),
+            shown_by=("annulus-flux-inside", "annulus-convection"),
         ),
         _fault(
             "alpha twice",
@@ -269,7 +269,7 @@ BOUNDARY_FAULTS: dict[str, Fault] = dict(
             kind="equivalent formulation",
             effect="harmless",
             suspects=(),
-            shown_by=(*FIXED, "annulus-logarithm"),
+            shown_by=FIXED,
         ),
         _fault(
             "elements of equal length",

@@ -225,7 +225,7 @@ SOURCE_FAULTS: dict[str, Fault] = dict(
             kind="early stopping",
             effect="accuracy",
             suspects=("tolerance", "constant"),
-            shown_by=("disc-fourier", "disc-source-near", "annulus-convection"),
+            shown_by=("disc-source-near",),
         ),
         _fault(
             "unweighted least squares",
