@@ -2,7 +2,7 @@
 
 The loss of a norm is its expected order less the observed one. A consistent scheme with a closure one order
 too low loses one; a wrong sign, coefficient or constant leaves an error that does not shrink at all
-(observed order near 0). Score: share of the failing cases that show the pattern, times 0.6: it says how a
+(observed order near 0). Score: share of the failing cases that show the pattern, times 0.5: it says how a
 solver fails, and what says where comes first. Gradients or fluxes that alone fall short say where, after the
 solution, so that this pattern has its share unabated.
 """
@@ -19,7 +19,7 @@ from laplace_verify.measure.verdict import Verdict
 
 __all__ = ["patterns", "short_norms"]
 
-_WEIGHT = 0.6
+_WEIGHT = 0.5
 _SHARE = 0.6
 _NEAR = 0.3
 _VALUES = ("max", "L1", "L2")

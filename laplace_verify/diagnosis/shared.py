@@ -161,4 +161,4 @@ def _no_contrast(bad: Sequence[Study], bad_word: str, good_word: str) -> Finding
         "(the equation inside, the reported h, the declared order, how the answer is handed back)"
     )
     evidence = f"{len(bad)} {bad_word}: {case_list(bad)}; all share: {listed(common, 8) or 'no feature'}"
-    return Finding(text=text, evidence=evidence, score=0.5, studies=tuple(bad))
+    return Finding(text=text, evidence=evidence, score=0.4, studies=tuple(bad))
