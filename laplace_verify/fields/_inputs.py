@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from fractions import Fraction
 from typing import Any, TypeAlias
 
@@ -14,6 +15,7 @@ from laplace_verify.errors import FieldError
 __all__ = ["Side", "as_sides", "columns", "equals", "is_number", "name_of", "shortened", "text_of"]
 
 Side: TypeAlias = npt.ArrayLike | None
+SHORT = 10**6  # the largest denominator of a fraction that a float is read as
 LONGEST = 120  # letters of a formula in a message; fits have hundreds
 
 
@@ -44,13 +46,25 @@ def as_sides(side: Side, count: int) -> Array | None:
 
 
 def equals(points: Array, singular: tuple[float, ...], place: Any) -> BoolArray:
-    """Return which points are the singular one; a precise point is compared exactly."""
+    """Return which points are the singular one; a precise point is compared with the number that is meant."""
     if place is None:
         same: BoolArray = points[:, 0] == singular[0]
         if same.any():  # rare: most blocks are done after one coordinate
             same = np.asarray((points == singular).all(axis=1))
         return same
-    return np.array([all(a == b for a, b in zip(place, singular, strict=True))])
+    return np.array([all(a in _meant_by(b) for a, b in zip(place, singular, strict=True))])
+
+
+def _meant_by(number: float) -> tuple[Fraction, ...]:
+    """Return what a float may stand for: itself, its decimals, or the short fraction that it is nearest to.
+
+    >>> [str(q) for q in _meant_by(0.5)], str(_meant_by(1 / 3)[-1])
+    (['1/2', '1/2', '1/2'], '1/3')
+    """
+    if not math.isfinite(number):
+        return ()
+    short = Fraction(number).limit_denominator(SHORT)
+    return (Fraction(number), Fraction(str(float(number))), *([short] if float(short) == number else []))
 
 
 def is_number(point: Any) -> bool:

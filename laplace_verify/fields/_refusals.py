@@ -92,9 +92,10 @@ def _at_singular_points(marks: Marks, place: Place, derivative: bool) -> None:
             raise FieldError(f"{shortened(field.formula)} jumps at {where}: it has no single value there")
         if singularity.kind != "power":
             raise FieldError(f"{shortened(field.formula)} is infinite at {where}; leave this point out")
-        if derivative and singularity.exponent < 1:
+        if derivative and singularity.exponent <= 1:
+            what = "is infinite" if singularity.exponent < 1 else "has no limit"
             raise FieldError(
-                f"the gradient of {shortened(field.formula)} is infinite at {where}: "
+                f"the gradient of {shortened(field.formula)} {what} at {where}: "
                 f"u ~ r^{singularity.exponent:.4g} there; leave this point out"
             )
 

@@ -125,10 +125,13 @@ class Cut:
         return on
 
     def meets_exactly(self, x: mpmath.mpf, y: mpmath.mpf) -> bool:
-        """Return whether one precise point lies on the cut: exactly if the cut is parallel to an axis."""
+        """Return whether one precise point lies on the cut: exactly if the cut is parallel to an axis.
+
+        Within rounding of the start of another cut a point is not on it: there the start itself is meant.
+        """
         dx, dy = x - self.start[0], y - self.start[1]
         along = dx * self.direction[0] + dy * self.direction[1]
         across = abs(self.direction[0] * dy - self.direction[1] * dx)
         exact = 0.0 in self.direction
         tolerance = 0.0 if exact else ROUNDING * (abs(x) + abs(y) + abs(self.start[0]) + abs(self.start[1]))
-        return bool(0 < along <= self.length and across <= tolerance)
+        return bool(tolerance < along <= self.length and across <= tolerance)

@@ -47,3 +47,17 @@ def test_weakest_basis():
 def test_bad_singularities(arguments, reason):
     with pytest.raises(FieldError, match=reason):
         fields.Singularity(**arguments)
+
+
+def test_a_corner_given_as_a_fraction_has_no_gradient():
+    """-2/5 is no float: the place that is meant counts, and one beside it has its gradient."""
+    u = fields.wedge("2/3", apex=("-2/5", "1/3"))
+    for corner in (("-2/5", "1/3"), (-0.4, 1 / 3), ("-0.4", "1/3")):
+        with pytest.raises(FieldError, match="infinite"):
+            u.gradient_at(corner, 20)
+    assert abs(u.gradient_at(("-0.39999999999999999999", "1/3"), 20)[1]) > 1e6
+
+
+def test_where_the_gradient_depends_on_the_direction_there_is_none():
+    with pytest.raises(FieldError, match="has no limit"):
+        fields.half_edge("2/3", (1, 1, 1)).gradient_at((0, 0, 0), 20)
