@@ -31,7 +31,8 @@ __all__ = ["Integral", "Tolerance", "along", "around", "over"]
 POINTS = (12, 24, 48, 96)
 STEPS = (8, 16, 32, 64, 128)  # nodes of tanh-sinh per unit of its own variable
 TURNS = (4, 8, 16, 32, 64, 128, 256, 512)
-OFFSET = Fraction(1, 3)  # of a step: no point on a plane of symmetry
+ROUND = (1, 2, *TURNS)  # for surfaces, which may be symmetric about the axis
+OFFSET = Fraction(3, 11)  # of a step: no point on a plane of symmetry, no two rules alike by chance
 HALVINGS = 12
 MOST = 20_000  # points of a surface
 MOST_AROUND = 64
@@ -172,13 +173,13 @@ def _refined(panels: list[Panel]) -> Rule:
 def _turns_needed(density: Callable[[Any], Any], tolerance: Tolerance) -> int:
     """Return the smallest number of points around that twice as many confirm."""
     zero, one = Fraction(0), Fraction(1)
-    low, _ = _applied(density, zero, one, _trapezoid(TURNS[0]))
-    for coarse, fine in pairwise(TURNS):
+    low, _ = _applied(density, zero, one, _trapezoid(ROUND[0]))
+    for coarse, fine in pairwise(ROUND):
         high, size = _applied(density, zero, one, _trapezoid(fine))
         if tolerance.passes(abs(high - low), size):
             return coarse
         low = high
-    return TURNS[-2]
+    return ROUND[-2]
 
 
 def _halved(
