@@ -17,7 +17,7 @@ from typing import Any
 import hypothesis
 from hypothesis import HealthCheck, Phase, Verbosity, configuration, given
 
-from laplace_verify.principles.law import Finding, Law, NoValuesError, OutOfCallsError, Trial, trial_sizes
+from laplace_verify.principles.law import Finding, Law, NoValuesError, OutOfCallsError, Trial
 from laplace_verify.principles.posed import Posed
 from laplace_verify.solvers import Adapter, Refused
 
@@ -104,16 +104,7 @@ class Search:
 
     def trial(self, posed: Posed) -> Trial:
         """Return a fresh trial of a problem."""
-        problem = posed.problem()
-        sizes = trial_sizes(self.solver, problem.dim)
-        return Trial(
-            solver=self.solver,
-            posed=posed,
-            problem=problem,
-            seed=self.seed,
-            sizes=sizes,
-            may_call=self._count,
-        )
+        return Trial.of(posed, self.solver, self.seed, self._count)
 
     def _verdict(self, posed: Posed) -> Failure | None:
         """Return what is wrong on a problem, from memory if it was tried before."""

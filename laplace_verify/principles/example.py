@@ -18,7 +18,8 @@ def example_code(trial: Trial, size: int, body: tuple[str, ...]) -> str:
     ----------
     trial : the problem and the solver
     size : resolution number
-    body : lines that use `problem`, `answer` and, if there is one, `exact`; the last is the value to return
+    body : lines that use `problem`, `answer` and, if there is one, `exact`, and the answers of problems
+        beside it by their names; the last is the value to return
 
     The solver is imported and the function called if it stands in a module under its function's name;
     otherwise the last line says what to call it with.
@@ -28,7 +29,7 @@ def example_code(trial: Trial, size: int, body: tuple[str, ...]) -> str:
     imports = ["import numpy as np", ""] if "np." in text else []
     imports.append("import laplace_verify as lv")
     if "sphere(" in text:
-        imports.append("from laplace_verify.principles.mean_value import sphere")
+        imports.append("from laplace_verify.principles.spheres import sphere")
     place = _importable(trial.solver)
     if place is None:
         call = f"# print(violation(...)) with the adapter {trial.solver.name!r}"
@@ -44,6 +45,7 @@ def example_code(trial: Trial, size: int, body: tuple[str, ...]) -> str:
         "def violation(solver):",
         f"    n = {size}",
         f"    answer = solver.solve(problem, n, seed={trial.seed})",
+        *(f"    {name} = solver.solve(problem_{name}, n, seed={trial.seed})" for name in trial.companions),
         *(f"    {step}" for step in steps),
         f"    return {last}",
         "",

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass, field
+from typing import Any
 
 import numpy as np
 from hypothesis import strategies as st
@@ -82,25 +83,48 @@ class Trial:
     sizes: tuple[int, ...]
     may_call: Callable[[], None]  # counts; raises OutOfCallsError
     answers: dict[int, Answer] = field(default_factory=dict)
+    companions: dict[str, Trial] = field(default_factory=dict)  # of the problems beside it
+
+    @classmethod
+    def of(cls, posed: Posed, solver: Adapter, seed: int, may_call: Callable[[], None]) -> Trial:
+        """Return a fresh trial of a problem and of those beside it."""
+        problem = posed.problem()
+        return cls(
+            solver=solver,
+            posed=posed,
+            problem=problem,
+            seed=seed,
+            sizes=trial_sizes(solver, problem.dim),
+            may_call=may_call,
+            companions={name: cls.of(other, solver, seed, may_call) for name, other in posed.beside.items()},
+        )
 
     def answer(self, size: int, wanted: Array | None = None) -> Answer:
         """Solve with a resolution number; the same size is solved only once."""
         if size not in self.answers:
-            self.may_call()
-            answer = self.solver.solve(self.problem, size, wanted, seed=self.seed)
-            if self.solver.kind == "stochastic" and answer.standard_error is None:
-                raise NoValuesError("without a standard_error chance and error cannot be told apart")
-            self.answers[size] = answer
+            self.answers[size] = self.fresh_answer(size, wanted)
         return self.answers[size]
+
+    def fresh_answer(self, size: int, wanted: Array | None = None, **keywords: Any) -> Answer:
+        """Solve, whether or not the size was solved before; keywords as in `Adapter.solve`."""
+        self.may_call()
+        answer = self.solver.solve(self.problem, size, wanted, seed=self.seed, **keywords)
+        if self.solver.kind == "stochastic" and answer.standard_error is None:
+            raise NoValuesError("without a standard_error chance and error cannot be told apart")
+        return answer
 
     def spacing(self, size: int) -> float:
         """Return h of the answer of a size."""
         return spacing(self.answers[size], self.problem, self.solver.kind, size).h
 
     def noise(self, size: int) -> float:
-        """Return what chance may add to a violation, from the solver's own standard error, or 0."""
-        error = self.answers[size].standard_error
-        return 0.0 if error is None else SIGMAS * float(np.max(error)) / self.posed.size
+        """Return what chance may add to a violation, from the solver's own standard error, or 0.
+
+        Problems beside it add theirs, each relative to its own largest boundary value.
+        """
+        beside = sum(other.noise(size) for other in self.companions.values())
+        error = self.answers[size].standard_error if size in self.answers else None
+        return beside + (0.0 if error is None else SIGMAS * float(np.max(error)) / self.posed.size)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)

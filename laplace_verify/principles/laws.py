@@ -3,11 +3,29 @@
 from __future__ import annotations
 
 from laplace_verify.principles.affine_fields import AFFINE_FIELDS
+from laplace_verify.principles.comparison import COMPARISON
+from laplace_verify.principles.conductivity_scaling import CONDUCTIVITY_SCALING
 from laplace_verify.principles.constants import CONSTANTS
+from laplace_verify.principles.flux_balance import FLUX_BALANCE
 from laplace_verify.principles.law import Law
 from laplace_verify.principles.maximum_principle import MAXIMUM_PRINCIPLE
 from laplace_verify.principles.mean_value import MEAN_VALUE
+from laplace_verify.principles.superposition import SUPERPOSITION
+from laplace_verify.principles.symmetry import SYMMETRY
 
 __all__ = ["LAWS"]
 
-LAWS: dict[str, Law] = {law.name: law for law in (CONSTANTS, AFFINE_FIELDS, MAXIMUM_PRINCIPLE, MEAN_VALUE)}
+LAWS: dict[str, Law] = {
+    law.name: law
+    for law in (
+        CONSTANTS,
+        AFFINE_FIELDS,
+        MAXIMUM_PRINCIPLE,
+        MEAN_VALUE,
+        SUPERPOSITION,
+        COMPARISON,
+        SYMMETRY,
+        CONDUCTIVITY_SCALING,
+        FLUX_BALANCE,
+    )
+}

@@ -28,7 +28,15 @@ from laplace_verify.arrays import Array
 from laplace_verify.errors import AnswerError
 from laplace_verify.principles.law import Finding, Trial, round_off
 
-__all__ = ["Measurement", "exactly", "in_the_limit", "rate_of"]
+__all__ = [
+    "Measurement",
+    "between_nodes",
+    "declared_or_in_the_limit",
+    "exactly",
+    "in_the_limit",
+    "rate_of",
+    "rate_of_slopes",
+]
 
 CAP = 2.0  # no law asks for more than second order
 FINER = {1: 2.0, 2: 2.0, 3: 1.45}
@@ -80,6 +88,35 @@ def in_the_limit(trial: Trial, measure: Measure, rate: float) -> Finding:
             if found.violation <= allowed:
                 break
     return _finding(found, allowed, tuple(sizes), tuple(history))
+
+
+def declared_or_in_the_limit(law: str, trial: Trial, measure: Measure, rate: float) -> Finding:
+    """Judge exactly what the solver declares as a discrete law, in the limit what it does not."""
+    if law in trial.solver.discrete_laws:
+        return exactly(trial, measure)
+    return in_the_limit(trial, measure, rate)
+
+
+def between_nodes(law: str, trial: Trial, measure: Measure) -> Finding:
+    """Judge a violation made of values between nodes: exactly if the solver declares the law.
+
+    Where the answer is constant on each cell, these values are of first order only.
+    """
+    measure(trial, trial.sizes[0])  # the answer tells what it is made of
+    constant_on_cells = trial.answer(trial.sizes[0]).location == "cell"
+    rate = min(rate_of(trial), 1.0) if constant_on_cells else rate_of(trial)
+    return declared_or_in_the_limit(law, trial, measure, rate)
+
+
+def rate_of_slopes(trial: Trial) -> float:
+    """Return the rate to count on for gradients: the declared one in H1-semi, else one less than for values.
+
+    0 where they need not converge.
+    """
+    order = trial.solver.formal_order("H1-semi")
+    if order is None:
+        return rate_of(trial) - 1.0 if rate_of(trial) > 1.0 else 0.0
+    return CAP if isinstance(order, str) else min(float(order), CAP)
 
 
 def rate_of(trial: Trial) -> float:

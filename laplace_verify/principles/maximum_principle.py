@@ -30,7 +30,7 @@ from hypothesis import strategies as st
 from laplace_verify.principles import strategies
 from laplace_verify.principles._shapes import shape_of_kind
 from laplace_verify.principles.law import Finding, Law, Trial
-from laplace_verify.principles.limits import Measurement, exactly, in_the_limit, rate_of
+from laplace_verify.principles.limits import Measurement, declared_or_in_the_limit, rate_of
 from laplace_verify.principles.posed import Posed
 from laplace_verify.principles.reading import seen
 from laplace_verify.problems import Piece
@@ -51,9 +51,7 @@ def _inapplicable(solver: Adapter) -> str | None:
         return (
             f"{solver.name} does not declare Dirichlet conditions, which the law needs on the whole boundary"
         )
-    if "scalar" not in solver.conductivity:
-        return f"{solver.name} does not solve problems whose conductivity is a number, as the law asks"
-    return strategies.beyond(solver)
+    return strategies.beyond_numbers(solver)
 
 
 def _problems(solver: Adapter) -> st.SearchStrategy[Posed]:
@@ -122,9 +120,8 @@ def _measure(trial: Trial, size: int) -> Measurement:
 
 
 def _judge(trial: Trial) -> Finding:
-    if MAXIMUM_PRINCIPLE.name in trial.solver.discrete_laws:
-        return exactly(trial, _measure)
-    return in_the_limit(trial, _measure, min(rate_of(trial), 1.0))
+    rate = min(rate_of(trial), 1.0)
+    return declared_or_in_the_limit(MAXIMUM_PRINCIPLE.name, trial, _measure, rate)
 
 
 MAXIMUM_PRINCIPLE = Law(

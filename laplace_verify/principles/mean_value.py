@@ -24,72 +24,26 @@ from __future__ import annotations
 import numpy as np
 from hypothesis import strategies as st
 
-from laplace_verify.arrays import Array
 from laplace_verify.principles import strategies
 from laplace_verify.principles.law import Finding, Law, Trial
-from laplace_verify.principles.limits import Measurement, in_the_limit, rate_of
+from laplace_verify.principles.limits import Measurement, between_nodes
 from laplace_verify.principles.posed import Posed
 from laplace_verify.principles.reading import values_at
+from laplace_verify.principles.spheres import spheres_inside
 from laplace_verify.solvers import Adapter
 
-__all__ = ["MEAN_VALUE", "sphere"]
+__all__ = ["MEAN_VALUE"]
 
-ON_CIRCLE = 64
-GAUSS, AROUND = 8, 16
-DRAWN_CENTRES, CENTRES = 64, 8
-SHARE = 0.6  # of the distance to the boundary
 DEGREE = 4
 
 
-def sphere(centre: Array, radius: float) -> tuple[Array, Array]:
-    """Return points (m, d) on the sphere (circle, pair of ends) and weights (m,) with sum one.
-
-    >>> import numpy as np
-    >>> points, weights = sphere(np.array([1.0, 0.0]), 2.0)
-    >>> round(float(weights @ points[:, 0] ** 2), 12)  # 1 + 2^2 / 2
-    3.0
-    """
-    dim = len(centre)
-    if dim == 1:
-        return centre + radius * np.array([[-1.0], [1.0]]), np.array([0.5, 0.5])
-    if dim == 2:
-        angle = 2.0 * np.pi * np.arange(ON_CIRCLE) / ON_CIRCLE
-        ring = np.stack([np.cos(angle), np.sin(angle)], axis=1)
-        return centre + radius * ring, np.full(ON_CIRCLE, 1.0 / ON_CIRCLE)
-    z, weights = np.polynomial.legendre.leggauss(GAUSS)
-    angle = 2.0 * np.pi * np.arange(AROUND) / AROUND
-    level, turn = (part.ravel() for part in np.meshgrid(z, angle, indexing="ij"))
-    across = np.sqrt(1.0 - level**2)
-    unit = np.stack([across * np.cos(turn), across * np.sin(turn), level], axis=1)
-    return centre + radius * unit, np.repeat(weights / (2.0 * AROUND), AROUND)
-
-
-def _inapplicable(solver: Adapter) -> str | None:
-    if "scalar" not in solver.conductivity:
-        return f"{solver.name} does not solve problems whose conductivity is a number, as the law asks"
-    return strategies.beyond(solver)
-
-
 def _problems(solver: Adapter) -> st.SearchStrategy[Posed]:
-    kinds = solver.conditions & set(strategies.KINDS)
-    return strategies.posed(solver.dims, solver.shapes, kinds, degree=DEGREE)
-
-
-def _spheres(trial: Trial) -> tuple[Array, Array]:
-    """Return centres (m, d) and radii (m,) of spheres that fit inside, away from the declared clearance."""
-    shape = trial.problem.shape
-    centres = shape.sample(DRAWN_CENTRES, seed=trial.seed)
-    depth = shape.distance(centres)
-    chosen = np.argsort(-depth, kind="stable")[:CENTRES]
-    radii = SHARE * np.maximum(depth[chosen] - trial.solver.clearance * shape.extent, 0.0)
-    return centres[chosen], radii
+    return strategies.posed_for(solver, materials={"scalar"}, degree=DEGREE)
 
 
 def _measure(trial: Trial, size: int) -> Measurement:
-    centres, radii = _spheres(trial)
-    spheres = [sphere(centre, radius) for centre, radius in zip(centres, radii.tolist(), strict=True)]
-    weights = np.array([w for _, w in spheres])
-    values = values_at(trial, size, np.concatenate([centres, *(points for points, _ in spheres)]))
+    centres, radii, points, weights = spheres_inside(trial)
+    values = values_at(trial, size, np.concatenate([centres, points]))
     middle, around = values[: len(centres)], values[len(centres) :].reshape(weights.shape)
     means = np.sum(weights * around, axis=1)
     gap = np.abs(means - middle)
@@ -110,15 +64,13 @@ def _measure(trial: Trial, size: int) -> Measurement:
 
 
 def _judge(trial: Trial) -> Finding:
-    _measure(trial, trial.sizes[0])  # the answer tells what it is made of
-    constant_on_cells = trial.answer(trial.sizes[0]).location == "cell"
-    return in_the_limit(trial, _measure, min(rate_of(trial), 1.0) if constant_on_cells else rate_of(trial))
+    return between_nodes(MEAN_VALUE.name, trial, _measure)
 
 
 MEAN_VALUE = Law(
     name="mean value",
     statement="the value at a point is the mean over every circle or sphere about it that fits inside",
-    inapplicable=_inapplicable,
+    inapplicable=strategies.beyond_numbers,
     problems=_problems,
     judge=_judge,
 )

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from dataclasses import field as dataclass_field
 from typing import Any
 
 import numpy as np
@@ -37,13 +38,19 @@ class Posed:
         The exact solution, if there is one.
     data : str
         Otherwise the formula of the Dirichlet data.
+    beside : mapping
+        Problems that are solved too, by the names that their answers have in code.
+    note : str
+        In what relation they stand, in words.
     """
 
     shape: Shape
-    conditions: Mapping[str, str | int]
+    conditions: Mapping[str, str | float]
     conductivity: Conductivity = 1.0
     field: Field | None = None
     data: str = ""
+    beside: Mapping[str, Posed] = dataclass_field(default_factory=dict)
+    note: str = ""
 
     def case(self) -> Case:
         """Return the case with its exact solution; for problems made from a field."""
@@ -75,31 +82,40 @@ class Posed:
         """Return one line that a reader can picture."""
         data = f"u = {self.field.formula}" if self.field is not None else f"u = {self.data} on the boundary"
         sides = [
-            f"{name} {kind if isinstance(kind, str) else f'robin with alpha = {kind}'}"
+            f"{name} {kind if isinstance(kind, str) else f'robin with alpha = {kind:g}'}"
             for name, kind in self.conditions.items()
         ]
         k = self.conductivity
         material = [] if k == 1 else [f"K = {[list(row) for row in k] if isinstance(k, tuple) else f'{k:g}'}"]
-        return ", ".join([data, f"on {self.shape!r}", *(sides or ["all Dirichlet"]), *material])
+        return ", ".join([data, f"on {self.shape!r}", *(sides or ["all Dirichlet"]), *material]) + self.note
 
     def code(self) -> str:
-        """Return Python that makes `problem`, and `exact` if there is an exact solution."""
+        """Return Python that makes `problem` and, if there is an exact solution, `exact`.
+
+        Of a problem beside it, called "other", they are `problem_other` and `exact_other`.
+        """
+        others = [other._own_code(f"_{name}") for name, other in self.beside.items()]
+        return "\n\n".join([self._own_code(""), *others])
+
+    def _own_code(self, suffix: str) -> str:
+        """Return the code of this problem alone, its names ending in `suffix`."""
         k = [] if self.conductivity == 1 else [f"    conductivity={_number(self.conductivity)},"]
         if self.field is None:
             sides = ", ".join(f'"{piece.name}"' for piece in self.shape.pieces)
             conditions = f'    dict.fromkeys([{sides}], lv.dirichlet("{self.data}")),'
-            return "\n".join(["problem = lv.problem(", f"    lv.{self.shape!r},", conditions, *k, ")"])
+            lines = [f"problem{suffix} = lv.problem(", f"    lv.{self.shape!r},", conditions, *k, ")"]
+            return "\n".join(lines)
         kinds = ", ".join(
-            f'"{name}": ' + (f'"{kind}"' if isinstance(kind, str) else f"lv.robin({kind})")
+            f'"{name}": ' + (f'"{kind}"' if isinstance(kind, str) else f"lv.robin({_number(kind)})")
             for name, kind in self.conditions.items()
         )
         return "\n".join(
             [
-                f"exact = {field_code(self.field)}",
-                "problem = lv.case(",
+                f"exact{suffix} = {field_code(self.field)}",
+                f"problem{suffix} = lv.case(",
                 f"    lv.{self.shape!r},",
                 f"    {{{kinds}}},",
-                "    exact,",
+                f"    exact{suffix},",
                 *k,
                 ").problem",
             ]
@@ -134,6 +150,13 @@ def _field_code(spec: Mapping[str, Any]) -> str:
             return f"lv.fields.solid({degree}, {order})"
         case {"kind": "stretched", "field": field, "tensor": tensor}:
             return f"lv.fields.stretched({_field_code(field)}, {_number(tensor)})"
+        case {"kind": "rotated", "field": field, "angle": angle, "axis": axis}:
+            about = "" if axis is None else f", {_number(axis)}"
+            return f"({_field_code(field)}).rotated({_number(angle)}{about})"
+        case {"kind": "scaled", "field": field, "factor": factor}:
+            return f"({_field_code(field)}).scaled({_number(factor)})"
+        case {"kind": "shifted", "field": field, "vector": vector}:
+            return f"({_field_code(field)}).shifted({_number(vector)})"
         case {"kind": "exp-trig", "k": k, "parts": parts} if _plain_wave(spec):
             many = len(k) > 1
             waves = tuple(parts) if many else f'"{parts[0]}"'

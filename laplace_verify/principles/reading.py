@@ -8,7 +8,7 @@ from laplace_verify.arrays import Array
 from laplace_verify.errors import AnswerError
 from laplace_verify.principles.law import NoValuesError, Trial
 
-__all__ = ["seen", "values_at"]
+__all__ = ["gradients_at", "seen", "values_at"]
 
 INSIDE, ON_PIECE = 300, 40  # points at which a function is asked
 WANTED = 200
@@ -66,6 +66,25 @@ def values_at(trial: Trial, size: int, points: Array) -> Array:
             raise NoValuesError("values between nodes are not available")
         raise AnswerError(f"the value at {tuple(points[missing[0]].tolist())}, inside the shape, is NaN")
     return values
+
+
+def gradients_at(trial: Trial, size: int, points: Array) -> Array:
+    """Return the gradients (m, d) of one answer at points (m, d) well inside the shape.
+
+    Raises
+    ------
+    NoValuesError
+        If the answer has no gradient.
+    AnswerError
+        If it is NaN there.
+    """
+    gradients = trial.answer(size, points).gradient_at(points)
+    if gradients is None:
+        raise NoValuesError("the answer has no gradient")
+    missing = np.flatnonzero(np.isnan(gradients).any(axis=1))
+    if len(missing):
+        raise AnswerError(f"the gradient at {tuple(points[missing[0]].tolist())}, inside the shape, is NaN")
+    return gradients
 
 
 def _without_outside(trial: Trial, size: int, points: Array, values: Array) -> tuple[Array, Array]:

@@ -22,13 +22,7 @@ def inapplicable(solver: Adapter) -> str | None:
 
 def problems(solver: Adapter, degree: int) -> st.SearchStrategy[Posed]:
     """Return a strategy for problems with a field of degree 0 or 1 within the declared capabilities."""
-    return strategies.posed(
-        solver.dims,
-        solver.shapes,
-        solver.conditions & set(strategies.KINDS),
-        solver.conductivity & set(strategies.MATERIALS),
-        degree=degree,
-    )
+    return strategies.posed_for(solver, degree=degree)
 
 
 def misses(trial: Trial, size: int) -> Measurement:

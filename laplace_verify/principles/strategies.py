@@ -17,6 +17,7 @@ when the strategy is made.
 from __future__ import annotations
 
 from collections.abc import Collection, Iterable
+from dataclasses import replace
 from typing import Literal
 
 from hypothesis import strategies as st
@@ -39,7 +40,9 @@ __all__ = [
     "conductivities",
     "drawable",
     "harmonic_fields",
+    "pairs",
     "posed",
+    "posed_for",
     "problems_for",
     "shapes",
 ]
@@ -121,7 +124,7 @@ def harmonic_fields(dim: int = 2, degree: int = 4, *, waves: bool = True) -> st.
     )
 
 
-def conditions(shape: Shape, kinds: Iterable[str] | None = None) -> st.SearchStrategy[dict[str, str | int]]:
+def conditions(shape: Shape, kinds: Iterable[str] | None = None) -> st.SearchStrategy[dict[str, str | float]]:
     """Return a strategy for conditions: {piece name: "neumann" or Robin's alpha}, Dirichlet ones left out.
 
     At least one piece fixes the constant (Dirichlet, else Robin), unless "neumann" is the only kind.
@@ -178,9 +181,7 @@ def cases_for(solver: Adapter, degree: int = 4) -> st.SearchStrategy[Case]:
     reason = beyond(solver)
     if reason is not None:
         raise InvalidArgument(reason)
-    materials = solver.conductivity & set(MATERIALS)
-    kinds = solver.conditions & set(KINDS)
-    return posed(solver.dims, solver.shapes, kinds, materials, degree=degree).map(Posed.case)
+    return posed_for(solver, degree=degree).map(Posed.case)
 
 
 def problems_for(solver: Adapter, degree: int = 4) -> st.SearchStrategy[Problem]:
@@ -195,6 +196,7 @@ def posed(
     conductivity: Iterable[str] = ("scalar",),
     *,
     degree: int = 4,
+    waves: bool = True,
 ) -> st.SearchStrategy[Posed]:
     """Return a strategy for problems with an exact field of degree 0 (constants), 1, or up to `degree`."""
     found = drawable(dims, kinds)
@@ -204,7 +206,27 @@ def posed(
         )
     allowed = [kind for kind in KINDS if kind in _names(conditions, "kind of condition", KINDS)]
     materials = _names(conductivity, "kind of conductivity", MATERIALS)
-    return _posed(found, allowed, sorted(materials), degree)
+    return _posed(found, allowed, sorted(materials), degree, waves)
+
+
+def posed_for(
+    solver: Adapter,
+    *,
+    materials: Iterable[str] = MATERIALS,
+    degree: int = 4,
+    waves: bool = True,
+) -> st.SearchStrategy[Posed]:
+    """Return a strategy for problems as `posed` makes them, within the declared capabilities of a solver."""
+    conductivity = solver.conductivity & set(materials)
+    kinds = solver.conditions & set(KINDS)
+    return posed(solver.dims, solver.shapes, kinds, conductivity, degree=degree, waves=waves)
+
+
+@st.composite
+def pairs(draw: st.DrawFn, drawn: st.SearchStrategy[Posed], degree: int = 3) -> tuple[Posed, Posed]:
+    """Draw a problem, and a second one with the same shape, conditions and K, but data of another field."""
+    first = draw(drawn)
+    return first, replace(first, field=draw(_solutions(first.shape.dim, first.conductivity, degree)))
 
 
 def drawable(dims: Iterable[int], kinds: Collection[str] | None) -> list[str]:
@@ -233,22 +255,36 @@ def beyond(solver: Adapter) -> str | None:
     return None
 
 
+def beyond_numbers(solver: Adapter) -> str | None:
+    """Return as `beyond` why no problem can be drawn whose conductivity is a number."""
+    if "scalar" not in solver.conductivity:
+        return f"{solver.name} does not solve problems whose conductivity is a number, as the law asks"
+    return beyond(solver)
+
+
 @st.composite
-def _posed(draw: st.DrawFn, found: list[str], allowed: list[str], materials: list[str], degree: int) -> Posed:
+def _posed(
+    draw: st.DrawFn, found: list[str], allowed: list[str], materials: list[str], degree: int, waves: bool
+) -> Posed:
     shape = draw(shape_of_kind(found))
     k = draw(conductivities(shape.dim, materials))
-    if degree == 0:
-        field: Field = draw(st.builds(lambda c: fields.affine((0,) * shape.dim, c), st.integers(1, 9)))
-    else:
-        field = draw(affine_fields(shape.dim) if degree == 1 else harmonic_fields(shape.dim, degree))
-        if degree > 1 and shape.dim > 1 and isinstance(k, tuple):
-            field = fields.stretched(field, k)
+    field = draw(_solutions(shape.dim, k, degree, waves))
     chosen = draw(_conditions(shape.pieces.names, allowed))
     return Posed(shape=shape, conditions=chosen, conductivity=k, field=field)
 
 
+def _solutions(dim: int, k: Conductivity, degree: int, waves: bool = True) -> st.SearchStrategy[Field]:
+    """Return a strategy for solutions of div(K grad u) = 0 of degree 0, 1, or up to `degree`."""
+    if degree == 0:
+        return st.builds(lambda c: fields.affine((0,) * dim, c), st.integers(1, 9))
+    if degree == 1 or dim == 1:
+        return affine_fields(dim)
+    harmonic = harmonic_fields(dim, degree, waves=waves)
+    return harmonic.map(lambda field: fields.stretched(field, k)) if isinstance(k, tuple) else harmonic
+
+
 @st.composite
-def _conditions(draw: st.DrawFn, names: tuple[str, ...], allowed: list[str]) -> dict[str, str | int]:
+def _conditions(draw: st.DrawFn, names: tuple[str, ...], allowed: list[str]) -> dict[str, str | float]:
     # as many choices for every shape (see `_shapes`)
     drawn = draw(st.lists(st.sampled_from(allowed), min_size=MOST_PIECES, max_size=MOST_PIECES))
     alphas = draw(st.lists(st.integers(1, 3), min_size=MOST_PIECES, max_size=MOST_PIECES))

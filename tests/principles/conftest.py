@@ -59,6 +59,8 @@ def twins():
         "not repeatable": changed(
             lambda p, n, a: with_values(a, a.values + 0.01 * rng.standard_normal(len(a.values)))
         ),
+        "clips": changed(lambda p, n, a: with_values(a, np.maximum(a.values, 0.0))),
+        "drifts": changed(lambda p, n, a: with_values(a, a.values + 0.1 * a.points[:, 0])),
         "screened": five_point_with(replace(SCHEME, stencil=screened), "screened"),
         "infinite": replace(chebyshev, function=_infinite, name="infinite"),
     }

@@ -24,9 +24,10 @@ from laplace_verify.solvers.samples import (
 
 SOUND = {"five": five_point, "p1": p1_element, "chebyshev": chebyshev, "sources": fundamental_solutions}
 
-CONSTANTS, AFFINE, MAXIMUM, MEAN = LAWS
+CONSTANTS, AFFINE, MAXIMUM, MEAN, *_ = LAWS
+FIRST_FOUR = (CONSTANTS, AFFINE, MAXIMUM, MEAN)
 
-# Which laws catch which fault of finite differences, and why the others cannot.
+# Which of the first four laws catch which fault of finite differences, and why the others cannot.
 SEEN_BY = [
     ((), "the problems drawn are of one material, on even grids, in Cartesian coordinates", (
         "arithmetic mean of conductivities", "conductivity of the lower neighbour",
@@ -41,7 +42,7 @@ SEEN_BY = [
         "first-order flux", "flux of cell centres",
     )),
     ((), "no oblong plate with a flux is drawn", ("edge length of the other axis",)),
-    ((), "no law looks at reported gradients and fluxes", (
+    ((), "they do not look at reported gradients and fluxes", (
         "gradient halved", "gradient exchanged", "reported fluxes of low sides", "reported fluxes one-sided",
         "reported fluxes without conductivity", "pi with four decimals",
     )),
@@ -95,6 +96,11 @@ def test_laws_come_in_a_fixed_order():
         "affine fields reproduced",
         "maximum principle",
         "mean value",
+        "superposition",
+        "comparison",
+        "symmetry",
+        "conductivity scaling",
+        "flux balance",
     ]
     assert all(law.name == name and law.statement for name, law in LAWS.items())
 
@@ -128,7 +134,7 @@ def test_the_seven_point_sample_keeps_every_law(law, seed):
 
 @pytest.mark.slow
 @pytest.mark.parametrize("fault", GRID_FAULTS)
-@pytest.mark.parametrize("law", LAWS)
+@pytest.mark.parametrize("law", FIRST_FOUR)
 def test_faults_are_caught_by_the_laws_that_can_see_them(fault, law):
     solver = FAULTS[fault].adapter
     check = check_principle(solver, law, seed=2)

@@ -10,8 +10,8 @@ from laplace_verify.errors import AnswerError
 from laplace_verify.geometry import Box, Rectangle
 from laplace_verify.principles.law import Trial, round_off, trial_sizes
 from laplace_verify.principles.limits import Measurement, exactly, in_the_limit, rate_of
-from laplace_verify.principles.mean_value import sphere
 from laplace_verify.principles.posed import Posed
+from laplace_verify.principles.spheres import sphere
 from laplace_verify.solvers import Answer
 from laplace_verify.solvers.samples import (
     chebyshev,
