@@ -46,7 +46,10 @@ def add_run(commands: Any) -> None:
     parser.add_argument("--workers", type=int, default=os.cpu_count() or 1, help="default: one a core")
     parser.add_argument("--seed", type=int, default=0, help="of everything random (default 0)")
     parser.add_argument(
-        "--no-principles", action="store_true", help="leave out the laws of harmonic functions"
+        "--principles",
+        action=argparse.BooleanOptionalAction,
+        default=True,
+        help="check the laws of harmonic functions too (default: yes)",
     )
     parser.add_argument("--inconclusive", choices=("fail", "warn"), default="fail")
     parser.set_defaults(run=_run)
@@ -65,12 +68,12 @@ def _run(options: argparse.Namespace) -> int:
     if options.dim:
         cases = [case for case in cases if case.dim in options.dim]
     check_folder(options.out)
-    laws = 0 if options.no_principles else len(LAWS)
+    laws = len(LAWS) if options.principles else 0
     with tqdm(total=len(cases) + laws, file=sys.stderr, unit="item", desc=solver.name) as bar:
         record = verify(
             options.solver,
             cases,
-            principles=not options.no_principles,
+            principles=options.principles,
             sizes=options.sizes,
             seed=options.seed,
             time_limit=options.time_limit,

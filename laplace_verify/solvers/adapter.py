@@ -104,6 +104,10 @@ class Adapter:
             return _by_name, (*place, None if found is self else values)
         return _by_values, (values,)
 
+    def takes(self, keyword: str) -> bool:
+        """Whether the solve function has a parameter of that name."""
+        return keyword in _keywords(self.function)
+
     def formal_order(self, norm: str) -> float | Exponential | None:
         """Return the declared order in a norm; None if the declaration promises none there."""
         return order_in(norm, self.kind, self.order)
@@ -150,7 +154,8 @@ class Adapter:
         """Solve, and check the answer against the problem.
 
         `wanted` (points at which values will be asked for), `tolerance`, `initial` and `seed` reach the solve
-        function only if they are given and its signature has them. What the function prints goes to stderr.
+        function only if they are given and its signature has them. `initial` is a first guess: a function of
+        points (n, d) that returns values (n,). What the function prints goes to stderr.
 
         Raises
         ------

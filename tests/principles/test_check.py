@@ -101,6 +101,7 @@ def test_laws_come_in_a_fixed_order():
         "symmetry",
         "conductivity scaling",
         "flux balance",
+        "repeatability",
     ]
     assert all(law.name == name and law.statement for name, law in LAWS.items())
 

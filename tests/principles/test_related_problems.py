@@ -132,3 +132,46 @@ def test_a_moved_problem_is_the_picture_of_the_problem(drawn):
 def test_what_has_no_rule_is_not_mirrored():
     with pytest.raises(TypeError, match="no rule to mirror"):
         mirrored(fields.exp_trig(1, "cos"))
+
+
+@pytest.mark.slow
+def test_repeatability_sees_what_is_kept_from_an_earlier_problem():
+    kept = {}
+
+    def forgetful(problem, n):  # keeps the answer to the problem it met last but one
+        before, kept["last"] = kept.get("last"), five_point(problem, n)
+        same = before is not None and len(before.values) == len(kept["last"].values)
+        return before if same else kept["last"]
+
+    check = check_principle(replace(five_point, function=forgetful), "repeatability")
+    assert check.verdict is Verdict.FAIL
+    assert "solved again" in check.reason
+    assert "solved before and after" in check.reason
+
+
+@pytest.mark.slow
+def test_repeatability_names_noise_a_broken_law(twins):
+    check = check_principle(twins["not repeatable"], "repeatability")
+    assert check.verdict is Verdict.FAIL
+    space = {}
+    exec(check.example, space)  # our own text
+    assert space["violation"](twins["not repeatable"]) > 1e-6  # the difference of two draws of noise of 0.01
+    assert space["violation"](five_point) == 0.0
+
+
+@pytest.mark.slow
+def test_repeatability_tries_another_first_guess():
+    def iterated(problem, n, initial=None):  # stops a thousandth of the way before the solution
+        answer = five_point(problem, n)
+        guess = np.zeros(len(answer.values)) if initial is None else initial(answer.points)
+        return Answer(answer.points, answer.values + 1e-3 * guess, cells=answer.cells, h=answer.h)
+
+    early = replace(five_point, function=iterated)
+    check = check_principle(early, "repeatability")
+    assert check.verdict is Verdict.FAIL
+    assert "with another first guess" in check.reason
+    space = {}
+    exec(check.example, space)  # our own text
+    assert space["violation"](early) == pytest.approx(check.violation, rel=1e-9)  # the same solve again
+    converged = replace(five_point, function=lambda problem, n, initial=None: five_point(problem, n))
+    assert check_principle(converged, "repeatability").verdict is Verdict.PASS
