@@ -36,27 +36,9 @@ def leaps_from_a_cube(radii: Array, dim: int, generator: np.random.Generator) ->
     return leaps
 
 
-def elliptic_leaps(radii: Array, dim: int, generator: np.random.Generator) -> Array:
-    """Take half of the last component, so that leaps end on an ellipse."""
-    leaps = leaps_onto_spheres(radii, dim, generator)
-    leaps[:, -1] *= 0.5
-    return leaps
-
-
-def half_leaps(radii: Array, dim: int, generator: np.random.Generator) -> Array:
-    """Leap half as far: slower and right, by the mean value on the smaller sphere."""
-    return leaps_onto_spheres(0.5 * radii, dim, generator)
-
-
 def reversed_leaps(radii: Array, dim: int, generator: np.random.Generator) -> Array:
     """Leap in the opposite direction, evenly distributed as before."""
     return -leaps_onto_spheres(radii, dim, generator)
-
-
-def leaps_in_balls(radii: Array, dim: int, generator: np.random.Generator) -> Array:
-    """Leap evenly into the ball: slower and right, by the mean value over the ball."""
-    shrunk = radii * generator.random(len(radii)) ** (1.0 / dim)
-    return leaps_onto_spheres(shrunk, dim, generator)
 
 
 def first_piece_only(problem: Problem, places: Array) -> Array:
@@ -131,14 +113,6 @@ WALK_FAULTS: dict[str, Fault] = dict(
             shown_by=FIXED,
         ),
         _fault(
-            "flat leaps",
-            "the last component of every leap is halved",
-            replace(SPHERES, leaps=elliptic_leaps),
-            kind="distribution",
-            suspects=BIASED,
-            shown_by=FIXED,
-        ),
-        _fault(
             "data of the first piece",
             "all walks take the data of the first piece",
             replace(SPHERES, data=first_piece_only),
@@ -169,24 +143,6 @@ WALK_FAULTS: dict[str, Fault] = dict(
             kind="standard error",
             effect="accuracy",
             suspects=("standard error",),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "half leaps",
-            "leaps go half as far: slower and right",
-            replace(SPHERES, leaps=half_leaps),
-            kind="equivalent formulation",
-            effect="harmless",
-            suspects=(),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "leaps into the ball",
-            "leaps end anywhere in the ball, evenly: slower and right",
-            replace(SPHERES, leaps=leaps_in_balls),
-            kind="equivalent formulation",
-            effect="harmless",
-            suspects=(),
             shown_by=FIXED,
         ),
         _fault(
