@@ -152,7 +152,7 @@ WALK_FAULTS: dict[str, Fault] = dict(
             kind="equivalent formulation",
             effect="harmless",
             suspects=(),
-            shown_by=FIXED,
+            shown_by=("plate-saddle", "disc-fourier"),
         ),
     ]
 )
