@@ -31,8 +31,8 @@ def check_principle(solver: Adapter, law: str, seed: int = 0) -> Check:
     solver : Adapter
     law : str
         A key of `LAWS`: "constants reproduced", "affine fields reproduced", "maximum principle", "mean
-        value", "superposition", "comparison", "symmetry", "conductivity scaling", "flux balance" or
-        "repeatability".
+        value", "superposition", "comparison", "symmetry", "conductivity scaling", "flux balance",
+        "repeatability" or "reciprocity".
     seed : int
         Of the problems and of the points looked at; the same seed gives the same check. The solver is
         called at most 160 times, and twice more before a law counts as broken.

@@ -10,6 +10,7 @@ from laplace_verify.principles.flux_balance import FLUX_BALANCE
 from laplace_verify.principles.law import Law
 from laplace_verify.principles.maximum_principle import MAXIMUM_PRINCIPLE
 from laplace_verify.principles.mean_value import MEAN_VALUE
+from laplace_verify.principles.reciprocity import RECIPROCITY
 from laplace_verify.principles.repeatability import REPEATABILITY
 from laplace_verify.principles.superposition import SUPERPOSITION
 from laplace_verify.principles.symmetry import SYMMETRY
@@ -29,5 +30,6 @@ LAWS: dict[str, Law] = {
         CONDUCTIVITY_SCALING,
         FLUX_BALANCE,
         REPEATABILITY,
+        RECIPROCITY,
     )
 }

@@ -61,6 +61,7 @@ def twins():
         ),
         "clips": changed(lambda p, n, a: with_values(a, np.maximum(a.values, 0.0))),
         "drifts": changed(lambda p, n, a: with_values(a, a.values + 0.1 * a.points[:, 0])),
+        "bulges": changed(lambda p, n, a: with_values(a, a.values + 0.1 * a.points[:, 0] ** 2)),
         "screened": five_point_with(replace(SCHEME, stencil=screened), "screened"),
         "infinite": replace(chebyshev, function=_infinite, name="infinite"),
     }

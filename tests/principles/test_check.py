@@ -102,6 +102,7 @@ def test_laws_come_in_a_fixed_order():
         "conductivity scaling",
         "flux balance",
         "repeatability",
+        "reciprocity",
     ]
     assert all(law.name == name and law.statement for name, law in LAWS.items())
 

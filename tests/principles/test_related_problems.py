@@ -36,6 +36,7 @@ def wrong(twins):
         ("flux for gradient", "conductivity scaling", "with 4 times the conductivity"),
         ("half-cell factor", "flux balance", "add up to"),
         ("screened", "flux balance", "add up to"),
+        ("bulges", "reciprocity", "the mean of u n . grad v - v n . grad u"),
     ],
 )
 def test_a_wrong_solver_breaks_the_law_and_the_code_shows_it(wrong, name, law, says):
