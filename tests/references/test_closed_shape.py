@@ -33,6 +33,11 @@ def exact(point):
     return tuple(text if abs(float(text) - c) < 4e-16 else repr(c) for text, c in texts)
 
 
+def _off_decimals(point):
+    """How far a point is from one in short decimals: on a curved edge others lie beside it by a rounding."""
+    return float(np.abs(point - np.round(point, 12)).max())
+
+
 def places(case):
     """Singular points and corners, then points of every piece."""
     shape, found = through_window(case).problem.shape if case.window else case.problem.shape, []
@@ -41,7 +46,7 @@ def places(case):
         return [p for p in points if shape.contains([p], tol=1e-9 * shape.extent)[0]]
 
     found += on(s.point for s in case.exact.singularities)
-    found += [junction.points[len(junction.points) // 3] for junction in shape.junctions]
+    found += [min(junction.points, key=_off_decimals) for junction in shape.junctions]
     for share, piece in itertools.product((0.25, 0.4), shape.pieces):
         found.append(
             piece.point(np.full((1, 2 if shape.dim == 3 else 1), share) if shape.dim > 1 else [0.0])[0]
