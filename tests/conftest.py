@@ -1,4 +1,4 @@
-"""For every test: no leaked precision; a rotating tenth of the slow tests unless all are asked for."""
+"""For every test: no leaked precision; a rotating share of slow and long tests unless all are asked for."""
 
 from __future__ import annotations
 
@@ -9,23 +9,24 @@ from collections.abc import Iterator
 import mpmath
 import pytest
 
-SHARE = 10  # one slow test in SHARE runs by default
+SHARES = {"long": 100, "slow": 10}  # one test in so many runs by default
 
 
 def pytest_addoption(parser: pytest.Parser) -> None:
-    parser.addoption("--all", action="store_true", help="run every slow test, not a rotating tenth of them")
+    parser.addoption("--all", action="store_true", help="run every slow and long test, not a share of them")
     parser.addoption(
         "--slow-seed",
         type=int,
         default=int(time.time() // 86400),
-        help="which tenth of the slow tests runs (default: changes every day)",
+        help="which share of the slow and long tests runs (default: changes every day)",
     )
 
 
 def pytest_report_header(config: pytest.Config) -> str:
     if config.getoption("--all"):
-        return "slow tests: all"
-    return f"slow tests: one in {SHARE}, chosen by --slow-seed {config.getoption('--slow-seed')}"
+        return "slow and long tests: all"
+    shares = ", ".join(f"one {name} test in {share}" for name, share in SHARES.items())
+    return f"{shares}, chosen by --slow-seed {config.getoption('--slow-seed')}"
 
 
 def pytest_collection_modifyitems(config: pytest.Config, items: list[pytest.Item]) -> None:
@@ -34,8 +35,8 @@ def pytest_collection_modifyitems(config: pytest.Config, items: list[pytest.Item
     seed = config.getoption("--slow-seed")
 
     def chosen(item: pytest.Item) -> bool:
-        slow = item.get_closest_marker("slow") is not None
-        return not slow or (zlib.crc32(item.nodeid.encode()) + seed) % SHARE == 0
+        marks = [name for name in SHARES if item.get_closest_marker(name) is not None]
+        return not marks or (zlib.crc32(item.nodeid.encode()) + seed) % SHARES[marks[0]] == 0
 
     left_out = [item for item in items if not chosen(item)]
     if left_out:

@@ -54,7 +54,7 @@ def test_five_point_passes(id_):
     assert study.verdict is lv.Verdict.PASS, str(study)
 
 
-@pytest.mark.slow
+@pytest.mark.long
 @pytest.mark.parametrize(("solver", "id_"), DOABLE)
 def test_sample_solver_passes_at_default_sizes(solver, id_):
     study = lv.study(solver, lv.catalogue[id_])

@@ -109,7 +109,7 @@ ONE_OF_A_KIND = (
 )  # fmt: skip
 
 
-@pytest.mark.slow
+@pytest.mark.long
 @pytest.mark.parametrize("name", ONE_OF_A_KIND)
 def test_one_fault_of_a_kind_is_caught_and_suspected_first(name):
     (found,) = exercise({name: FAULTS[name]}, principles=False)
@@ -117,14 +117,14 @@ def test_one_fault_of_a_kind_is_caught_and_suspected_first(name):
     assert found.suspected, found.suspect
 
 
-@pytest.mark.slow
+@pytest.mark.long
 @pytest.mark.parametrize("name", FAULTS)
 def test_every_seeded_fault_has_the_effect_it_is_classed_by(name):
     (found,) = exercise({name: FAULTS[name]}, principles=False)
     assert found.caught, (found.fault.effect, found.cases, found.remarks)
 
 
-@pytest.mark.slow
+@pytest.mark.long
 def test_four_in_five_first_suspects_are_right_and_sound_samples_raise_no_alarm():
     mistakes = [name for name, fault in FAULTS.items() if fault.effect != "harmless"][::6]
     outcomes = list(exercise({name: FAULTS[name] for name in mistakes}, principles=False))

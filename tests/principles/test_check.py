@@ -117,7 +117,7 @@ def test_sound_solvers_keep_every_law(name, law):
     assert check.points == ()
 
 
-@pytest.mark.slow
+@pytest.mark.long
 @pytest.mark.parametrize("seed", range(20))
 @pytest.mark.parametrize("name", SOUND)
 def test_sound_solvers_raise_no_false_alarm_on_any_seed(name, seed):
@@ -126,7 +126,7 @@ def test_sound_solvers_raise_no_false_alarm_on_any_seed(name, seed):
         assert check.verdict is Verdict.PASS, check.reason
 
 
-@pytest.mark.slow
+@pytest.mark.long
 @pytest.mark.parametrize("law", LAWS)
 @pytest.mark.parametrize("seed", range(4))
 def test_the_seven_point_sample_keeps_every_law(law, seed):
@@ -134,7 +134,7 @@ def test_the_seven_point_sample_keeps_every_law(law, seed):
     assert check.verdict is Verdict.PASS, check.reason
 
 
-@pytest.mark.slow
+@pytest.mark.long
 @pytest.mark.parametrize("fault", GRID_FAULTS)
 @pytest.mark.parametrize("law", FIRST_FOUR)
 def test_faults_are_caught_by_the_laws_that_can_see_them(fault, law):

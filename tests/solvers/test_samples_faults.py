@@ -161,7 +161,7 @@ def test_faults_have_their_effect_in_one_dimension(name, id_):
     shows(name, id_)
 
 
-@pytest.mark.slow
+@pytest.mark.long
 @pytest.mark.parametrize(
     ("name", "id_"), [(name, id_) for name, fault in FAULTS.items() for id_ in fault.shown_by]
 )
