@@ -18,7 +18,7 @@ if TYPE_CHECKING:
     from laplace_verify.fields.sheets import Fan, Sheet
     from laplace_verify.fields.singular import Cut, Singularity
 
-CUT_DIGITS = 60  # of a precise point that may lie on a cut
+CUT_DIGITS = 250  # of a precise point that may lie on a cut: more than values are asked in
 
 
 @dataclass(frozen=True, slots=True, eq=False)
