@@ -107,7 +107,7 @@ def test_a_few_points(id_):
     check(id_, inner=4, count=1, digits=30)
 
 
-@pytest.mark.slow
+@pytest.mark.long
 @pytest.mark.parametrize("id_", IDS)
 def test_two_hundred_points(id_):
     if id_ in DEAREST:

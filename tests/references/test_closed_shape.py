@@ -138,7 +138,7 @@ def flaws(case, field, digits):
                     yield f"{case.id}: {name} at {place} {found}"
 
 
-@pytest.mark.slow
+@pytest.mark.long
 @pytest.mark.parametrize("id_", IDS)
 def test_limits_where_they_exist_and_refusals_where_they_do_not(id_):
     case = lv.catalogue[id_]

@@ -10,7 +10,7 @@ IDS = [case.id for case in lv.catalogue.select(ill_posed=False)]
 MOST = 200
 
 
-@pytest.mark.slow
+@pytest.mark.long
 @pytest.mark.parametrize("id_", IDS)
 def test_digits_go_on_where_the_stored_ones_end(id_):
     case = lv.catalogue[id_]
