@@ -61,7 +61,9 @@ def test_sample_solver_passes_at_default_sizes(solver, id_):
     if (solver.name, id_) in OPEN:
         assert study.verdict is lv.Verdict.INCONCLUSIVE, str(study)
         return
-    allowed = (lv.Verdict.PASS, lv.Verdict.NOT_APPLICABLE)  # a solver may decline what it cannot do
+    allowed = [lv.Verdict.PASS, lv.Verdict.NOT_APPLICABLE]  # a solver may decline what it cannot do
+    if solver.kind == "stochastic":
+        allowed.append(lv.Verdict.INCONCLUSIVE)  # by chance, on a few cases in a hundred
     assert study.verdict in allowed, f"{study}\n{study.table() if study.orders else ''}"
 
 

@@ -139,7 +139,7 @@ def test_points_where_u_has_no_value_are_refused():
         with pytest.raises(FieldError, match="jumps at"):
             u.at(point)
     third = fields.rectangle_series((0, 0), (1, 1), fields.step("1/3"))
-    with pytest.raises(FieldError, match="not a finite real number"):
+    with pytest.raises(FieldError, match=r"jumps at point \(1/3, 1\)"):
         third.at(("1/3", 1))
     with pytest.raises(FieldError, match="not a finite float64"):  # moved onto the jump from 1e-13 outside
         u.value([[0.25, 1 + 1e-13]])
@@ -150,9 +150,9 @@ def test_a_kink_has_a_value_but_no_gradient():
     u = fields.rectangle_series((0, 0), (1, 1), fields.tent())
     assert u.value([[0.5, 1.0]])[0] == 1
     assert u.at(("1/2", 1)) == 1
-    with pytest.raises(FieldError, match="not a finite float64"):
+    with pytest.raises(FieldError, match="has no limit at point 0"):
         u.gradient([[0.5, 1.0]])
-    with pytest.raises(FieldError, match="not a finite real number"):
+    with pytest.raises(FieldError, match="no limit"):
         u.gradient_at(("1/2", 1))
 
 
