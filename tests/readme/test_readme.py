@@ -8,6 +8,7 @@ import pytest
 
 import laplace_verify as lv
 from laplace_verify.cli import main
+from laplace_verify.solvers.samples import FAULTS
 
 ROOT = Path(__file__).parents[2]
 TEXT = (ROOT / "README.md").read_text(encoding="utf-8")
@@ -59,6 +60,10 @@ def test_the_commands_on_the_catalogue_work(line, tmp_path, monkeypatch, capsys)
 
 def test_the_number_of_cases_is_right():
     assert f"\n{len(lv.catalogue)} cases:" in TEXT
+
+
+def test_the_number_of_seeded_faults_is_right():
+    assert f"mistakes ({len(FAULTS)} of them)" in TEXT
 
 
 def test_every_link_within_the_repository_leads_somewhere():

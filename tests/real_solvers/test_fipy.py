@@ -11,7 +11,7 @@ import pytest
 import laplace_verify as lv
 
 README = Path(__file__).parents[2] / "README.md"
-# A uniform grid misses the end of the crack by up to half a cell, each size by another part of it.
+# A uniform grid misses the end of the crack, or the step, by up to half a cell, each size by another part.
 OFF_THE_GRID = {"cracked-bar", "tall-plate-step"}
 QUICK = {"plate-wave", "plate-flux-top", "plate-hot-side"}
 
