@@ -18,6 +18,7 @@ from laplace_verify.fields.formula import Formula
 from laplace_verify.fields.half_edges import half_edge
 from laplace_verify.fields.hemispheres import hemispheres
 from laplace_verify.fields.joukowski import elliptic_multipole, flow_past
+from laplace_verify.fields.kelvin import Inverted as Inverted  # its kind must be known to readers of files
 from laplace_verify.fields.meridian import axisymmetric
 from laplace_verify.fields.patches_loaded import loaded_disc, loaded_rectangle
 from laplace_verify.fields.piecewise import parabola, piecewise, ramp, step, tent

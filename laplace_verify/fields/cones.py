@@ -278,7 +278,7 @@ def cone_exponent(share: Number, condition: Surface = "dirichlet", digits: int =
     --------
     >>> value, radius, basis = cone_exponent("3/4")
     >>> mpmath.nstr(value, 12), bool(radius < 1e-30), basis
-    ('0.463098561780', True, 'tail bound')
+    ('0.46309856178', True, 'tail bound')
     """
     ctx = working(digits)
     nu = _degree(ctx, _checked(share, condition), condition)

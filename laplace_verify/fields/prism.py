@@ -168,6 +168,6 @@ def prism(lower: Iterable[Number], upper: Iterable[Number]) -> Prism:
     Examples
     --------
     >>> prism((0, 0, 0), (1, 1, 1)).value([[0.0, 0.0, 0.0]]).round(12).tolist()
-    [1.190038681990]
+    [1.19003868199]
     """
     return Prism(lower=lower, upper=upper)  # type: ignore[arg-type]  # made exact

@@ -59,8 +59,8 @@ def in_digits(number: Any, radius: Any, basis: str, digits: int = DIGITS) -> Sto
 
     The stored radius is twice the radius given plus half a unit in the last digit printed.
 
-    >>> in_digits(mpmath.mpf(1) / 3, mpmath.mpf("1e-7"), "confirmed")
-    StoredNumber(value='0.33333333', radius='2.1e-7', basis='confirmed')
+    >>> in_digits(mpmath.mpf(1) / 3, mpmath.mpf("2e-7"), "confirmed")
+    StoredNumber(value='0.33333333', radius='4.1e-7', basis='confirmed')
     """
     with mpmath.workdps(digits + 20):
         if not number and not radius:
