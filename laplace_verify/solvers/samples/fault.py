@@ -2,14 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from typing import Literal, TypeAlias
 
 from laplace_verify.solvers.adapter import Adapter
-from laplace_verify.solvers.answer import Answer
 
-__all__ = ["Effect", "Fault", "seeded"]
+__all__ = ["Effect", "Fault"]
 
 Effect: TypeAlias = Literal["order", "accuracy", "harmless"]
 
@@ -44,26 +42,3 @@ class Fault:
     effect: Effect
     suspects: tuple[str, ...]
     shown_by: tuple[str, ...]
-
-
-def seeded(
-    sound: Adapter,
-    solve: Callable[..., Answer],
-    name: str,
-    description: str,
-    *,
-    kind: str,
-    suspects: tuple[str, ...],
-    shown_by: tuple[str, ...],
-    effect: Effect = "order",
-) -> tuple[str, Fault]:
-    """Return name and fault of a solver that declares what the sound one does and solves otherwise."""
-    return name, Fault(
-        description=description,
-        adapter=replace(sound, function=solve, name=f"{sound.name}, fault: {name}"),
-        sample=sound.name,
-        kind=kind,
-        effect=effect,
-        suspects=suspects,
-        shown_by=shown_by,
-    )

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import math
 from dataclasses import replace
-from functools import partial
 
 import numpy as np
 
@@ -15,11 +14,10 @@ from laplace_verify.solvers.samples import boundary_collocation as sound
 from laplace_verify.solvers.samples.boundary_collocation import (
     COLLOCATION,
     Elements,
-    Scheme,
     boundary_elements,
     solve_on_boundary,
 )
-from laplace_verify.solvers.samples.fault import Effect, Fault, seeded
+from laplace_verify.solvers.samples.seeding import Seeds
 
 __all__ = ["BOUNDARY_FAULTS"]
 
@@ -133,161 +131,142 @@ def by_least_squares(matrix: Array, load: Array, border: Array | None) -> Array:
     return solution.astype(np.float64)
 
 
-def _fault(
-    name: str,
-    description: str,
-    scheme: Scheme,
-    *,
-    kind: str,
-    suspects: tuple[str, ...],
-    shown_by: tuple[str, ...],
-    effect: Effect = "order",
-) -> tuple[str, Fault]:
-    """Return an entry of `BOUNDARY_FAULTS`."""
-    solve = partial(solve_on_boundary, scheme=scheme)
-    return seeded(
-        boundary_elements, solve, name, description,
-        kind=kind, suspects=suspects, shown_by=shown_by, effect=effect,
-    )  # fmt: skip
-
-
 FIXED = ("plate-wave", "plate-saddle", "triangle-cubic")
 FLUX = ("plate-flux-top", "plate-flux-left", "plate-flux-bottom")
 ROBIN = ("plate-convection-all-round", "wall-mixed-conditions")
 EVERYWHERE = ("do not get smaller", "diverge", "wrong limit")
 
-BOUNDARY_FAULTS: dict[str, Fault] = dict(
-    [
-        _fault(
-            "jump left out",
-            "the double layer jumps by half of u at the boundary, and that half is missing",
-            replace(COLLOCATION, jump=no_jump),
-            kind="fundamental solution",
-            suspects=EVERYWHERE,
-            shown_by=FIXED,
-        ),
-        _fault(
-            "whole jump",
-            "u enters whole on the boundary, as it does inside",
-            replace(COLLOCATION, jump=whole_jump),
-            kind="fundamental solution",
-            suspects=EVERYWHERE,
-            shown_by=FIXED,
-        ),
-        _fault(
-            "double layer reversed",
-            "the double layer enters with the wrong sign",
-            replace(COLLOCATION, collocated=reversed_double_layer),
-            kind="normal orientation",
-            suspects=EVERYWHERE,
-            shown_by=FIXED,
-        ),
-        _fault(
-            "constant of space",
-            "the single layer is divided by 4 pi, the constant of three dimensions",
-            replace(COLLOCATION, collocated=sourcewise_constant),
-            kind="fundamental solution",
-            suspects=EVERYWHERE,
-            shown_by=FIXED,
-        ),
-        _fault(
-            "logarithm to the base ten",
-            "the single layer takes the logarithm to the base ten",
-            replace(COLLOCATION, collocated=decimal_logarithm),
-            kind="fundamental solution",
-            suspects=EVERYWHERE,
-            shown_by=FIXED,
-        ),
-        _fault(
-            "one lost on the diagonal",
-            "an element's own integral of the logarithm is L log(L/2), without the - L",
-            replace(COLLOCATION, collocated=diagonal_without_one),
-            kind="singular integral",
-            suspects=("lose one order", "Dirichlet"),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "own element twice",
-            "an element's own integral of the logarithm by one point, and twice for its two halves",
-            replace(COLLOCATION, collocated=plain_diagonal),
-            kind="singular integral",
-            suspects=("lose one order", "Dirichlet", "do not get smaller"),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "collocation off centre",
-            "the identity is asked for at a quarter of every element",
-            replace(COLLOCATION, collocated=collocated_off_centre),
-            kind="shifted data",
-            suspects=("lose one order",),
-            shown_by=(*FIXED, "disc-fourier"),
-        ),
-        _fault(
-            "data at the start of elements",
-            "data are taken where an element begins",
-            replace(COLLOCATION, data=data_at_starts),
-            kind="shifted data",
-            suspects=("lose one order",),
-            shown_by=(*FIXED, "plate-flux-top"),
-        ),
-        _fault(
-            "flux inwards",
-            "a prescribed flux is taken for one along the inward normal",
-            replace(COLLOCATION, data=reversed_flux),
-            kind="flux sign",
-            suspects=("Neumann condition", "Neumann data", "neumann on"),
-            shown_by=FLUX,
-        ),
-        _fault(
-            "holes the wrong way round",
-            "elements around holes are travelled with the shape on their right; invisible without holes",
-            replace(COLLOCATION, elements=reversed_in_holes),
-            kind="normal orientation",
-            suspects=("annulus", "inner", "hole", "shape"),
-            shown_by=("annulus-flux-inside", "annulus-convection"),
-        ),
-        _fault(
-            "alpha twice",
-            "Robin's alpha enters twice",
-            replace(COLLOCATION, transfer=doubled_transfer),
-            kind="Robin coefficient",
-            suspects=("Robin", "robin on"),
-            shown_by=ROBIN,
-        ),
-        _fault(
-            "alpha negative",
-            "Robin's alpha enters with the wrong sign",
-            replace(COLLOCATION, transfer=negative_transfer),
-            kind="Robin coefficient",
-            suspects=("Robin", "robin on"),
-            shown_by=ROBIN,
-        ),
-        _fault(
-            "other unit of length",
-            "lengths in the logarithm are measured in another unit: the net flux is zero",
-            replace(COLLOCATION, elements=larger_radius),
-            kind="equivalent formulation",
-            effect="harmless",
-            suspects=(),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "elements of equal length",
-            "elements do not crowd in corners: as good where conditions do not change",
-            replace(COLLOCATION, elements=even_elements),
-            kind="equivalent formulation",
-            effect="harmless",
-            suspects=(),
-            shown_by=(*FIXED, "plate-convection-all-round"),
-        ),
-        _fault(
-            "orthogonal factors",
-            "the system is solved by an orthogonal factorisation",
-            replace(COLLOCATION, solve=by_least_squares),
-            kind="equivalent formulation",
-            effect="harmless",
-            suspects=(),
-            shown_by=(*FIXED, "plate-flux-top"),
-        ),
-    ]
+SEEDS = Seeds(sample=boundary_elements, solve=solve_on_boundary, scheme=COLLOCATION)
+BOUNDARY_FAULTS = SEEDS.faults
+
+SEEDS.add(
+    "jump left out",
+    "the double layer jumps by half of u at the boundary, and that half is missing",
+    replace(COLLOCATION, jump=no_jump),
+    kind="fundamental solution",
+    suspects=EVERYWHERE,
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "whole jump",
+    "u enters whole on the boundary, as it does inside",
+    replace(COLLOCATION, jump=whole_jump),
+    kind="fundamental solution",
+    suspects=EVERYWHERE,
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "double layer reversed",
+    "the double layer enters with the wrong sign",
+    replace(COLLOCATION, collocated=reversed_double_layer),
+    kind="normal orientation",
+    suspects=EVERYWHERE,
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "constant of space",
+    "the single layer is divided by 4 pi, the constant of three dimensions",
+    replace(COLLOCATION, collocated=sourcewise_constant),
+    kind="fundamental solution",
+    suspects=EVERYWHERE,
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "logarithm to the base ten",
+    "the single layer takes the logarithm to the base ten",
+    replace(COLLOCATION, collocated=decimal_logarithm),
+    kind="fundamental solution",
+    suspects=EVERYWHERE,
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "one lost on the diagonal",
+    "an element's own integral of the logarithm is L log(L/2), without the - L",
+    replace(COLLOCATION, collocated=diagonal_without_one),
+    kind="singular integral",
+    suspects=("lose one order", "Dirichlet"),
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "own element twice",
+    "an element's own integral of the logarithm by one point, and twice for its two halves",
+    replace(COLLOCATION, collocated=plain_diagonal),
+    kind="singular integral",
+    suspects=("lose one order", "Dirichlet", "do not get smaller"),
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "collocation off centre",
+    "the identity is asked for at a quarter of every element",
+    replace(COLLOCATION, collocated=collocated_off_centre),
+    kind="shifted data",
+    suspects=("lose one order",),
+    shown_by=(*FIXED, "disc-fourier"),
+)
+SEEDS.add(
+    "data at the start of elements",
+    "data are taken where an element begins",
+    replace(COLLOCATION, data=data_at_starts),
+    kind="shifted data",
+    suspects=("lose one order",),
+    shown_by=(*FIXED, "plate-flux-top"),
+)
+SEEDS.add(
+    "flux inwards",
+    "a prescribed flux is taken for one along the inward normal",
+    replace(COLLOCATION, data=reversed_flux),
+    kind="flux sign",
+    suspects=("Neumann condition", "Neumann data", "neumann on"),
+    shown_by=FLUX,
+)
+SEEDS.add(
+    "holes the wrong way round",
+    "elements around holes are travelled with the shape on their right; invisible without holes",
+    replace(COLLOCATION, elements=reversed_in_holes),
+    kind="normal orientation",
+    suspects=("annulus", "inner", "hole", "shape"),
+    shown_by=("annulus-flux-inside", "annulus-convection"),
+)
+SEEDS.add(
+    "alpha twice",
+    "Robin's alpha enters twice",
+    replace(COLLOCATION, transfer=doubled_transfer),
+    kind="Robin coefficient",
+    suspects=("Robin", "robin on"),
+    shown_by=ROBIN,
+)
+SEEDS.add(
+    "alpha negative",
+    "Robin's alpha enters with the wrong sign",
+    replace(COLLOCATION, transfer=negative_transfer),
+    kind="Robin coefficient",
+    suspects=("Robin", "robin on"),
+    shown_by=ROBIN,
+)
+SEEDS.add(
+    "other unit of length",
+    "lengths in the logarithm are measured in another unit: the net flux is zero",
+    replace(COLLOCATION, elements=larger_radius),
+    kind="equivalent formulation",
+    effect="harmless",
+    suspects=(),
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "elements of equal length",
+    "elements do not crowd in corners: as good where conditions do not change",
+    replace(COLLOCATION, elements=even_elements),
+    kind="equivalent formulation",
+    effect="harmless",
+    suspects=(),
+    shown_by=(*FIXED, "plate-convection-all-round"),
+)
+SEEDS.add(
+    "orthogonal factors",
+    "the system is solved by an orthogonal factorisation",
+    replace(COLLOCATION, solve=by_least_squares),
+    kind="equivalent formulation",
+    effect="harmless",
+    suspects=(),
+    shown_by=(*FIXED, "plate-flux-top"),
 )

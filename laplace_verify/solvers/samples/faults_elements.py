@@ -17,8 +17,8 @@ from laplace_verify.problems import Piece, Problem
 from laplace_verify.problems.coordinates import Coordinates, metric
 from laplace_verify.solvers.answer import Answer
 from laplace_verify.solvers.samples import linear_elements as sound
-from laplace_verify.solvers.samples.fault import Effect, Fault, seeded
-from laplace_verify.solvers.samples.linear_elements import LINEAR, Scheme, p1_element, solve_with_elements
+from laplace_verify.solvers.samples.linear_elements import LINEAR, p1_element, solve_with_elements
+from laplace_verify.solvers.samples.seeding import Seeds
 
 __all__ = ["ELEMENT_FAULTS"]
 
@@ -163,23 +163,6 @@ def doubled_slopes(mesh: Mesh, values: Array) -> dict[str, Any]:
     return given | {"gradient": gradient}
 
 
-def _fault(
-    name: str,
-    description: str,
-    scheme: Scheme,
-    *,
-    kind: str,
-    suspects: tuple[str, ...],
-    shown_by: tuple[str, ...],
-    effect: Effect = "order",
-) -> tuple[str, Fault]:
-    """Return an entry of `ELEMENT_FAULTS`."""
-    solve = partial(solve_with_elements, scheme=scheme)
-    return seeded(
-        p1_element, solve, name, description, kind=kind, suspects=suspects, shown_by=shown_by, effect=effect
-    )
-
-
 FLUX = ("plate-flux-top", "plate-flux-left", "annulus-flux-inside")
 FLUX_SUSPECTS = ("Neumann condition", "Neumann data", "neumann on", "second normal derivative")
 ROBIN = ("plate-convection-all-round", "wall-mixed-conditions", "disc-convection")
@@ -190,165 +173,164 @@ MERIDIAN = ("pillar-section", "ball-section", "sleeve-section-mixed")
 MERIDIAN_SUSPECTS = ("coordinates with a symmetry", "axis")
 FIXED = ("plate-saddle", "plate-wave", "disc-fourier")
 
-ELEMENT_FAULTS: dict[str, Fault] = dict(
-    [
-        _fault(
-            "half the edge",
-            "prescribed flux enters over half of every edge",
-            replace(LINEAR, neumann=halved_influx),
-            kind="half-cell factor",
-            suspects=(*FLUX_SUSPECTS, *ROBIN_SUSPECTS),
-            shown_by=FLUX,
-        ),
-        _fault(
-            "flux at the first node",
-            "prescribed flux of a whole edge is that at its first node",
-            replace(LINEAR, neumann=influx_at_starts),
-            kind="shifted data",
-            suspects=(*FLUX_SUSPECTS, *ROBIN_SUSPECTS),
-            shown_by=FLUX,
-        ),
-        _fault(
-            "first edge left out",
-            "the loop over the edges of a flux condition begins at the second",
-            replace(LINEAR, neumann=influx_without_first_edge),
-            kind="off by one",
-            suspects=(*FLUX_SUSPECTS, *ROBIN_SUSPECTS),
-            shown_by=("annulus-flux-inside", "disc-convection", "disc-flux"),
-        ),
-        _fault(
-            "off-diagonal conductivity ignored",
-            "element matrices know K_xx and K_yy only",
-            replace(LINEAR, stiffness=diagonal_only),
-            kind="exchanged axes",
-            suspects=TENSOR_SUSPECTS,
-            shown_by=TENSOR,
-        ),
-        _fault(
-            "conductivities exchanged",
-            "K_xx and K_yy are exchanged",
-            replace(LINEAR, stiffness=exchanged_axes),
-            kind="exchanged axes",
-            suspects=TENSOR_SUSPECTS,
-            shown_by=(*TENSOR, "plate-tensor-diagonal"),
-        ),
-        _fault(
-            "weight left out",
-            "2 pi r is missing in the element matrices; invisible in Cartesian coordinates",
-            replace(LINEAR, stiffness=without_weight),
-            kind="curvilinear factor",
-            suspects=MERIDIAN_SUSPECTS,
-            shown_by=MERIDIAN,
-        ),
-        _fault(
-            "radius of the outer corner",
-            "2 pi r is taken at the outermost corner of every triangle; invisible in Cartesian coordinates",
-            replace(LINEAR, stiffness=weight_of_outer_corner),
-            kind="curvilinear factor",
-            suspects=MERIDIAN_SUSPECTS,
-            shown_by=MERIDIAN,
-        ),
-        _fault(
-            "one area for all",
-            "all triangles get the mean area; hidden on uniform meshes and nearly so on discs",
-            replace(LINEAR, stiffness=mean_area),
-            kind="element volume",
-            suspects=("curved boundary", "sides off the axes"),
-            shown_by=("annulus-logarithm", "annulus-flux-inside", "annulus-convection"),
-        ),
-        _fault(
-            "alpha left out",
-            "Robin's alpha u is forgotten and its data are kept",
-            replace(LINEAR, robin=no_transfer),
-            kind="Robin coefficient",
-            suspects=ROBIN_SUSPECTS,
-            shown_by=ROBIN,
-        ),
-        _fault(
-            "alpha of the wrong sign",
-            "Robin's alpha u enters with the wrong sign",
-            replace(LINEAR, robin=reversed_transfer),
-            kind="Robin coefficient",
-            suspects=ROBIN_SUSPECTS,
-            shown_by=ROBIN,
-        ),
-        _fault(
-            "values of the next node",
-            "held nodes take the data of their neighbours",
-            replace(LINEAR, dirichlet=neighbours_values),
-            kind="shifted data",
-            suspects=("Dirichlet",),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "springs of fixed strength",
-            "Dirichlet data by a penalty that does not grow as the mesh is refined",
-            replace(LINEAR, solve=partial(penalised, factor=3.0)),
-            kind="Dirichlet enforcement",
-            suspects=("Dirichlet",),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "springs too soft",
-            "Dirichlet data by a penalty that grows as it must and is far too small",
-            replace(LINEAR, solve=refined_penalty),
-            kind="Dirichlet enforcement",
-            effect="accuracy",
-            suspects=("Dirichlet",),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "nodal values in 32 bits",
-            "nodal values are kept in 32 bits",
-            replace(LINEAR, solve=in_single_precision),
-            kind="reduced precision",
-            effect="accuracy",
-            suspects=("single precision",),
-            shown_by=("plate-saddle", "plate-wave", "plate-flux-top"),
-        ),
-        _fault(
-            "gradients doubled",
-            "gradients handed back are twice as large as they are",
-            replace(LINEAR, answer=doubled_slopes),
-            kind="gradient recovery",
-            suspects=("gradient",),
-            shown_by=("plate-saddle", "plate-flux-top", "disc-fourier"),
-        ),
-        _fault(
-            "flux by midpoints",
-            "prescribed flux by the midpoint rule: as accurate as linear elements are",
-            replace(LINEAR, neumann=influx_by_midpoints),
-            kind="under-integration",
-            effect="harmless",
-            suspects=(),
-            shown_by=(*FLUX, "wall-mixed-conditions", "sleeve-section-mixed"),
-        ),
-        _fault(
-            "lumped transfer",
-            "Robin's alpha u by the trapezoidal rule: another right quadrature",
-            replace(LINEAR, robin=lumped_transfer),
-            kind="under-integration",
-            effect="harmless",
-            suspects=(),
-            shown_by=(*ROBIN, "ball-section-convection"),
-        ),
-        _fault(
-            "conductivity transposed",
-            "the transposed conductivity, which is the same",
-            replace(LINEAR, stiffness=transposed),
-            kind="exchanged axes",
-            effect="harmless",
-            suspects=(),
-            shown_by=TENSOR,
-        ),
-        _fault(
-            "nodes numbered backwards",
-            "nodes in another order",
-            replace(LINEAR, mesh=renumbered),
-            kind="other numbering",
-            effect="harmless",
-            suspects=(),
-            shown_by=("plate-flux-top", "disc-convection", "annulus-flux-inside", "l-shape-corner"),
-        ),
-    ]
+SEEDS = Seeds(sample=p1_element, solve=solve_with_elements, scheme=LINEAR)
+ELEMENT_FAULTS = SEEDS.faults
+
+SEEDS.add(
+    "half the edge",
+    "prescribed flux enters over half of every edge",
+    replace(LINEAR, neumann=halved_influx),
+    kind="half-cell factor",
+    suspects=(*FLUX_SUSPECTS, *ROBIN_SUSPECTS),
+    shown_by=FLUX,
+)
+SEEDS.add(
+    "flux at the first node",
+    "prescribed flux of a whole edge is that at its first node",
+    replace(LINEAR, neumann=influx_at_starts),
+    kind="shifted data",
+    suspects=(*FLUX_SUSPECTS, *ROBIN_SUSPECTS),
+    shown_by=FLUX,
+)
+SEEDS.add(
+    "first edge left out",
+    "the loop over the edges of a flux condition begins at the second",
+    replace(LINEAR, neumann=influx_without_first_edge),
+    kind="off by one",
+    suspects=(*FLUX_SUSPECTS, *ROBIN_SUSPECTS),
+    shown_by=("annulus-flux-inside", "disc-convection", "disc-flux"),
+)
+SEEDS.add(
+    "off-diagonal conductivity ignored",
+    "element matrices know K_xx and K_yy only",
+    replace(LINEAR, stiffness=diagonal_only),
+    kind="exchanged axes",
+    suspects=TENSOR_SUSPECTS,
+    shown_by=TENSOR,
+)
+SEEDS.add(
+    "conductivities exchanged",
+    "K_xx and K_yy are exchanged",
+    replace(LINEAR, stiffness=exchanged_axes),
+    kind="exchanged axes",
+    suspects=TENSOR_SUSPECTS,
+    shown_by=(*TENSOR, "plate-tensor-diagonal"),
+)
+SEEDS.add(
+    "weight left out",
+    "2 pi r is missing in the element matrices; invisible in Cartesian coordinates",
+    replace(LINEAR, stiffness=without_weight),
+    kind="curvilinear factor",
+    suspects=MERIDIAN_SUSPECTS,
+    shown_by=MERIDIAN,
+)
+SEEDS.add(
+    "radius of the outer corner",
+    "2 pi r is taken at the outermost corner of every triangle; invisible in Cartesian coordinates",
+    replace(LINEAR, stiffness=weight_of_outer_corner),
+    kind="curvilinear factor",
+    suspects=MERIDIAN_SUSPECTS,
+    shown_by=MERIDIAN,
+)
+SEEDS.add(
+    "one area for all",
+    "all triangles get the mean area; hidden on uniform meshes and nearly so on discs",
+    replace(LINEAR, stiffness=mean_area),
+    kind="element volume",
+    suspects=("curved boundary", "sides off the axes"),
+    shown_by=("annulus-logarithm", "annulus-flux-inside", "annulus-convection"),
+)
+SEEDS.add(
+    "alpha left out",
+    "Robin's alpha u is forgotten and its data are kept",
+    replace(LINEAR, robin=no_transfer),
+    kind="Robin coefficient",
+    suspects=ROBIN_SUSPECTS,
+    shown_by=ROBIN,
+)
+SEEDS.add(
+    "alpha of the wrong sign",
+    "Robin's alpha u enters with the wrong sign",
+    replace(LINEAR, robin=reversed_transfer),
+    kind="Robin coefficient",
+    suspects=ROBIN_SUSPECTS,
+    shown_by=ROBIN,
+)
+SEEDS.add(
+    "values of the next node",
+    "held nodes take the data of their neighbours",
+    replace(LINEAR, dirichlet=neighbours_values),
+    kind="shifted data",
+    suspects=("Dirichlet",),
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "springs of fixed strength",
+    "Dirichlet data by a penalty that does not grow as the mesh is refined",
+    replace(LINEAR, solve=partial(penalised, factor=3.0)),
+    kind="Dirichlet enforcement",
+    suspects=("Dirichlet",),
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "springs too soft",
+    "Dirichlet data by a penalty that grows as it must and is far too small",
+    replace(LINEAR, solve=refined_penalty),
+    kind="Dirichlet enforcement",
+    effect="accuracy",
+    suspects=("Dirichlet",),
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "nodal values in 32 bits",
+    "nodal values are kept in 32 bits",
+    replace(LINEAR, solve=in_single_precision),
+    kind="reduced precision",
+    effect="accuracy",
+    suspects=("single precision",),
+    shown_by=("plate-saddle", "plate-wave", "plate-flux-top"),
+)
+SEEDS.add(
+    "gradients doubled",
+    "gradients handed back are twice as large as they are",
+    replace(LINEAR, answer=doubled_slopes),
+    kind="gradient recovery",
+    suspects=("gradient",),
+    shown_by=("plate-saddle", "plate-flux-top", "disc-fourier"),
+)
+SEEDS.add(
+    "flux by midpoints",
+    "prescribed flux by the midpoint rule: as accurate as linear elements are",
+    replace(LINEAR, neumann=influx_by_midpoints),
+    kind="under-integration",
+    effect="harmless",
+    suspects=(),
+    shown_by=(*FLUX, "wall-mixed-conditions", "sleeve-section-mixed"),
+)
+SEEDS.add(
+    "lumped transfer",
+    "Robin's alpha u by the trapezoidal rule: another right quadrature",
+    replace(LINEAR, robin=lumped_transfer),
+    kind="under-integration",
+    effect="harmless",
+    suspects=(),
+    shown_by=(*ROBIN, "ball-section-convection"),
+)
+SEEDS.add(
+    "conductivity transposed",
+    "the transposed conductivity, which is the same",
+    replace(LINEAR, stiffness=transposed),
+    kind="exchanged axes",
+    effect="harmless",
+    suspects=(),
+    shown_by=TENSOR,
+)
+SEEDS.add(
+    "nodes numbered backwards",
+    "nodes in another order",
+    replace(LINEAR, mesh=renumbered),
+    kind="other numbering",
+    effect="harmless",
+    suspects=(),
+    shown_by=("plate-flux-top", "disc-convection", "annulus-flux-inside", "l-shape-corner"),
 )

@@ -16,9 +16,9 @@ from laplace_verify.problems import Piece, Problem
 from laplace_verify.problems.coordinates import Coordinates
 from laplace_verify.solvers.samples import linear_elements
 from laplace_verify.solvers.samples import quadratic_elements as sound
-from laplace_verify.solvers.samples.fault import Effect, Fault, seeded
-from laplace_verify.solvers.samples.linear_elements import Scheme, solve_with_elements
+from laplace_verify.solvers.samples.linear_elements import solve_with_elements
 from laplace_verify.solvers.samples.quadratic_elements import QUADRATIC, QuadraticMesh, p2_element
+from laplace_verify.solvers.samples.seeding import Seeds
 
 __all__ = ["QUADRATIC_FAULTS"]
 
@@ -62,115 +62,97 @@ def corners_only(mesh: Mesh, values: Array) -> dict[str, Any]:
     return {"points": mesh.points[used], "values": values[used], "cells": cells}
 
 
-def _fault(
-    name: str,
-    description: str,
-    scheme: Scheme,
-    *,
-    kind: str,
-    suspects: tuple[str, ...],
-    shown_by: tuple[str, ...],
-    effect: Effect = "order",
-) -> tuple[str, Fault]:
-    """Return an entry of `QUADRATIC_FAULTS`."""
-    solve = partial(solve_with_elements, scheme=scheme)
-    return seeded(
-        p2_element, solve, name, description, kind=kind, suspects=suspects, shown_by=shown_by, effect=effect
-    )
-
-
 FLUX = ("plate-flux-top", "plate-flux-left", "plate-flux-bottom")
 ROUND = ("disc-fourier", "disc-convection", "annulus-convection")
 FIXED = ("plate-wave", "plate-cubic", "disc-fourier")
 
-QUADRATIC_FAULTS: dict[str, Fault] = dict(
-    [
-        _fault(
-            "straight sides",
-            "sides under curved boundaries stay straight",
-            replace(QUADRATIC, mesh=straight),
-            kind="curved boundary",
-            suspects=("curved boundary",),
-            shown_by=ROUND,
-        ),
-        _fault(
-            "one point on a side",
-            "prescribed flux by the one-point rule, too few points for quadratic elements",
-            replace(QUADRATIC, neumann=partial(sound.boundary_load, degree=1)),
-            kind="under-integration",
-            suspects=("Neumann condition", "Neumann data", "neumann on", "second normal derivative", "Robin"),
-            shown_by=FLUX,
-        ),
-        _fault(
-            "one point for alpha",
-            "Robin's alpha u by the one-point rule, too few points for quadratic elements",
-            replace(QUADRATIC, robin=partial(sound.boundary_mass, degree=1)),
-            kind="under-integration",
-            suspects=("Robin", "robin on"),
-            shown_by=("plate-convection-all-round", "wall-mixed-conditions", "disc-convection"),
-        ),
-        _fault(
-            "one point in a triangle",
-            "element matrices by the one-point rule, too few points for quadratic elements",
-            replace(QUADRATIC, stiffness=partial(sound.stiffness, degree=1)),
-            kind="under-integration",
-            suspects=("do not get smaller", "lose one order", "every"),
-            shown_by=("plate-wave", "plate-cubic"),
-        ),
-        _fault(
-            "middles permuted",
-            "nodes in the middle of sides are numbered as if each lay opposite its corner",
-            replace(QUADRATIC, stiffness=permuted_sides),
-            kind="node numbering",
-            suspects=("do not get smaller", "diverge"),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "middles interpolated",
-            "Dirichlet data in the middle of sides are the means of both ends",
-            replace(QUADRATIC, dirichlet=interpolated_middles),
-            kind="Dirichlet enforcement",
-            suspects=("Dirichlet", "lose one order"),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "corners only",
-            "values at corners are handed back, between them linear interpolation",
-            replace(QUADRATIC, answer=corners_only),
-            kind="evaluation",
-            suspects=("lose one order",),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "more quadrature points",
-            "integrals by Gauss rules of degree 8: as accurate as before",
-            replace(
-                QUADRATIC,
-                stiffness=partial(sound.stiffness, degree=8),
-                neumann=partial(sound.boundary_load, degree=8),
-            ),
-            kind="under-integration",
-            effect="harmless",
-            suspects=(),
-            shown_by=(*FLUX, "disc-convection"),
-        ),
-        _fault(
-            "fewest quadrature points",
-            "element matrices by a rule of degree 2, exact on straight sides and enough on bent ones",
-            replace(QUADRATIC, stiffness=partial(sound.stiffness, degree=2)),
-            kind="under-integration",
-            effect="harmless",
-            suspects=(),
-            shown_by=(*ROUND, "plate-tensor-oblique-fixed"),
-        ),
-        _fault(
-            "flux interpolated",
-            "prescribed flux replaced by its quadratic interpolation on every side: of the same order",
-            replace(QUADRATIC, neumann=interpolated_influx),
-            kind="under-integration",
-            effect="harmless",
-            suspects=(),
-            shown_by=(*FLUX, "disc-convection"),
-        ),
-    ]
+SEEDS = Seeds(sample=p2_element, solve=solve_with_elements, scheme=QUADRATIC)
+QUADRATIC_FAULTS = SEEDS.faults
+
+SEEDS.add(
+    "straight sides",
+    "sides under curved boundaries stay straight",
+    replace(QUADRATIC, mesh=straight),
+    kind="curved boundary",
+    suspects=("curved boundary",),
+    shown_by=ROUND,
+)
+SEEDS.add(
+    "one point on a side",
+    "prescribed flux by the one-point rule, too few points for quadratic elements",
+    replace(QUADRATIC, neumann=partial(sound.boundary_load, degree=1)),
+    kind="under-integration",
+    suspects=("Neumann condition", "Neumann data", "neumann on", "second normal derivative", "Robin"),
+    shown_by=FLUX,
+)
+SEEDS.add(
+    "one point for alpha",
+    "Robin's alpha u by the one-point rule, too few points for quadratic elements",
+    replace(QUADRATIC, robin=partial(sound.boundary_mass, degree=1)),
+    kind="under-integration",
+    suspects=("Robin", "robin on"),
+    shown_by=("plate-convection-all-round", "wall-mixed-conditions", "disc-convection"),
+)
+SEEDS.add(
+    "one point in a triangle",
+    "element matrices by the one-point rule, too few points for quadratic elements",
+    replace(QUADRATIC, stiffness=partial(sound.stiffness, degree=1)),
+    kind="under-integration",
+    suspects=("do not get smaller", "lose one order", "every"),
+    shown_by=("plate-wave", "plate-cubic"),
+)
+SEEDS.add(
+    "middles permuted",
+    "nodes in the middle of sides are numbered as if each lay opposite its corner",
+    replace(QUADRATIC, stiffness=permuted_sides),
+    kind="node numbering",
+    suspects=("do not get smaller", "diverge"),
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "middles interpolated",
+    "Dirichlet data in the middle of sides are the means of both ends",
+    replace(QUADRATIC, dirichlet=interpolated_middles),
+    kind="Dirichlet enforcement",
+    suspects=("Dirichlet", "lose one order"),
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "corners only",
+    "values at corners are handed back, between them linear interpolation",
+    replace(QUADRATIC, answer=corners_only),
+    kind="evaluation",
+    suspects=("lose one order",),
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "more quadrature points",
+    "integrals by Gauss rules of degree 8: as accurate as before",
+    replace(
+        QUADRATIC,
+        stiffness=partial(sound.stiffness, degree=8),
+        neumann=partial(sound.boundary_load, degree=8),
+    ),
+    kind="under-integration",
+    effect="harmless",
+    suspects=(),
+    shown_by=(*FLUX, "disc-convection"),
+)
+SEEDS.add(
+    "fewest quadrature points",
+    "element matrices by a rule of degree 2, exact on straight sides and enough on bent ones",
+    replace(QUADRATIC, stiffness=partial(sound.stiffness, degree=2)),
+    kind="under-integration",
+    effect="harmless",
+    suspects=(),
+    shown_by=(*ROUND, "plate-tensor-oblique-fixed"),
+)
+SEEDS.add(
+    "flux interpolated",
+    "prescribed flux replaced by its quadratic interpolation on every side: of the same order",
+    replace(QUADRATIC, neumann=interpolated_influx),
+    kind="under-integration",
+    effect="harmless",
+    suspects=(),
+    shown_by=(*FLUX, "disc-convection"),
 )

@@ -12,11 +12,10 @@ from laplace_verify.arrays import Array
 from laplace_verify.geometry import Shape
 from laplace_verify.problems import Piece, Problem
 from laplace_verify.solvers.samples import source_points as sound
-from laplace_verify.solvers.samples.fault import Effect, Fault, seeded
+from laplace_verify.solvers.samples.seeding import Seeds
 from laplace_verify.solvers.samples.source_points import (
     CONFOCAL,
     FarField,
-    Scheme,
     Sources,
     fundamental_solutions,
     solve_by_sources,
@@ -104,146 +103,127 @@ def single_precision(rows: Array, load: Array) -> Array:
     return found.astype(np.float64)
 
 
-def _fault(
-    name: str,
-    description: str,
-    scheme: Scheme,
-    *,
-    kind: str,
-    suspects: tuple[str, ...],
-    shown_by: tuple[str, ...],
-    effect: Effect = "order",
-) -> tuple[str, Fault]:
-    """Return an entry of `SOURCE_FAULTS`."""
-    solve = partial(solve_by_sources, scheme=scheme)
-    return seeded(
-        fundamental_solutions, solve, name, description,
-        kind=kind, suspects=suspects, shown_by=shown_by, effect=effect,
-    )  # fmt: skip
-
-
 FIXED = ("disc-fourier", "annulus-logarithm", "disc-source-near")
 EVERYWHERE = ("do not get smaller", "diverge", "wrong limit")
 
-SOURCE_FAULTS: dict[str, Fault] = dict(
-    [
-        _fault(
-            "sources in space",
-            "conditions on u are put on sums of 1/r, the fundamental solution of space",
-            replace(CONFOCAL, rows=partial(sound.condition_rows, kernel=inverse_of_distance)),
-            kind="fundamental solution",
-            suspects=(*EVERYWHERE, "Dirichlet"),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "two logarithms",
-            "conditions on u use the logarithm to the base ten, fluxes and results the natural one",
-            replace(CONFOCAL, rows=partial(sound.condition_rows, kernel=decimal_logarithms)),
-            kind="fundamental solution",
-            suspects=(*EVERYWHERE, "Dirichlet"),
-            shown_by=(*FIXED, "disc-convection"),
-        ),
-        _fault(
-            "normals of holes",
-            "normals on inner circles point into the shape; invisible without a flux in a hole",
-            replace(CONFOCAL, rows=inward_in_holes),
-            kind="normal orientation",
-            suspects=("neumann on inner", "Neumann condition", "Neumann data"),
-            shown_by=("annulus-flux-inside",),
-        ),
-        _fault(
-            "half the flux",
-            "half of a prescribed flux is taken",
-            replace(CONFOCAL, rows=halved_data),
-            kind="half-cell factor",
-            suspects=("Neumann condition", "Neumann data", "neumann on", "second normal derivative"),
-            shown_by=("disc-flux", "annulus-flux-inside", "bar-elliptic-twisted"),
-        ),
-        _fault(
-            "constant in alpha u",
-            "alpha u takes half of the constant",
-            replace(CONFOCAL, rows=half_of_constant),
-            kind="Robin coefficient",
-            suspects=("Robin", "robin on"),
-            shown_by=("disc-convection", "ellipse-convection"),
-        ),
-        _fault(
-            "no sources in the hole",
-            "all sources lie around the shape: what a hole radiates cannot be made; invisible without holes",
-            replace(CONFOCAL, curves=only_outside),
-            kind="fundamental solution",
-            suspects=("annulus", "inner"),
-            shown_by=("annulus-logarithm", "annulus-convection", "annulus-flux-inside"),
-        ),
-        _fault(
-            "charge at infinity",
-            "the net charge that is asked for at infinity is forgotten",
-            replace(CONFOCAL, far=no_far_charge),
-            kind="behaviour at infinity",
-            suspects=("infinity", "unbounded", "exterior", "tag"),
-            shown_by=("ellipse-of-unit-capacity", "pile-with-circulation"),
-        ),
-        _fault(
-            "flow at infinity",
-            "the uniform flow that is asked for at infinity is forgotten",
-            replace(CONFOCAL, far=no_far_flow),
-            kind="behaviour at infinity",
-            suspects=("infinity", "unbounded", "exterior", "tag"),
-            shown_by=("pile-in-tidal-stream", "hull-stream-function", "hull-potential"),
-        ),
-        _fault(
-            "gradients reversed",
-            "gradients are handed back with the sign of a flux",
-            replace(CONFOCAL, gradient=reversed_gradient),
-            kind="gradient recovery",
-            effect="accuracy",
-            suspects=("gradient",),
-            shown_by=("disc-fourier", "annulus-logarithm", "disc-flux"),
-        ),
-        _fault(
-            "gradients of unit charges",
-            "gradients are handed back for the fundamental solution with its 2 pi, values for that without",
-            replace(CONFOCAL, gradient=gradient_of_unit_charges),
-            kind="gradient recovery",
-            effect="accuracy",
-            suspects=("gradient",),
-            shown_by=("disc-fourier", "annulus-logarithm", "disc-flux"),
-        ),
-        _fault(
-            "strengths in single precision",
-            "the least squares are solved in 32 bits",
-            replace(CONFOCAL, solve=single_precision),
-            kind="reduced precision",
-            effect="accuracy",
-            suspects=("single precision",),
-            shown_by=("disc-fourier", "annulus-logarithm", "disc-convection"),
-        ),
-        _fault(
-            "loose truncation",
-            "singular values below 1e-4 of the largest are left out",
-            replace(CONFOCAL, solve=partial(sound.truncated_least_squares, cut=1e-4)),
-            kind="early stopping",
-            effect="accuracy",
-            suspects=("tolerance", "constant"),
-            shown_by=("disc-source-near",),
-        ),
-        _fault(
-            "unweighted least squares",
-            "least squares without weights: another norm",
-            replace(CONFOCAL, rows=equal_weights),
-            kind="equivalent formulation",
-            effect="harmless",
-            suspects=(),
-            shown_by=(*FIXED, "annulus-convection"),
-        ),
-        _fault(
-            "sources farther out",
-            "sources on curves three times as wide instead of twice",
-            replace(CONFOCAL, curves=partial(sound.source_curves, dilation=3.0)),
-            kind="equivalent formulation",
-            effect="harmless",
-            suspects=(),
-            shown_by=("disc-fourier", "disc-convection", "annulus-logarithm"),
-        ),
-    ]
+SEEDS = Seeds(sample=fundamental_solutions, solve=solve_by_sources, scheme=CONFOCAL)
+SOURCE_FAULTS = SEEDS.faults
+
+SEEDS.add(
+    "sources in space",
+    "conditions on u are put on sums of 1/r, the fundamental solution of space",
+    replace(CONFOCAL, rows=partial(sound.condition_rows, kernel=inverse_of_distance)),
+    kind="fundamental solution",
+    suspects=(*EVERYWHERE, "Dirichlet"),
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "two logarithms",
+    "conditions on u use the logarithm to the base ten, fluxes and results the natural one",
+    replace(CONFOCAL, rows=partial(sound.condition_rows, kernel=decimal_logarithms)),
+    kind="fundamental solution",
+    suspects=(*EVERYWHERE, "Dirichlet"),
+    shown_by=(*FIXED, "disc-convection"),
+)
+SEEDS.add(
+    "normals of holes",
+    "normals on inner circles point into the shape; invisible without a flux in a hole",
+    replace(CONFOCAL, rows=inward_in_holes),
+    kind="normal orientation",
+    suspects=("neumann on inner", "Neumann condition", "Neumann data"),
+    shown_by=("annulus-flux-inside",),
+)
+SEEDS.add(
+    "half the flux",
+    "half of a prescribed flux is taken",
+    replace(CONFOCAL, rows=halved_data),
+    kind="half-cell factor",
+    suspects=("Neumann condition", "Neumann data", "neumann on", "second normal derivative"),
+    shown_by=("disc-flux", "annulus-flux-inside", "bar-elliptic-twisted"),
+)
+SEEDS.add(
+    "constant in alpha u",
+    "alpha u takes half of the constant",
+    replace(CONFOCAL, rows=half_of_constant),
+    kind="Robin coefficient",
+    suspects=("Robin", "robin on"),
+    shown_by=("disc-convection", "ellipse-convection"),
+)
+SEEDS.add(
+    "no sources in the hole",
+    "all sources lie around the shape: what a hole radiates cannot be made; invisible without holes",
+    replace(CONFOCAL, curves=only_outside),
+    kind="fundamental solution",
+    suspects=("annulus", "inner"),
+    shown_by=("annulus-logarithm", "annulus-convection", "annulus-flux-inside"),
+)
+SEEDS.add(
+    "charge at infinity",
+    "the net charge that is asked for at infinity is forgotten",
+    replace(CONFOCAL, far=no_far_charge),
+    kind="behaviour at infinity",
+    suspects=("infinity", "unbounded", "exterior", "tag"),
+    shown_by=("ellipse-of-unit-capacity", "pile-with-circulation"),
+)
+SEEDS.add(
+    "flow at infinity",
+    "the uniform flow that is asked for at infinity is forgotten",
+    replace(CONFOCAL, far=no_far_flow),
+    kind="behaviour at infinity",
+    suspects=("infinity", "unbounded", "exterior", "tag"),
+    shown_by=("pile-in-tidal-stream", "hull-stream-function", "hull-potential"),
+)
+SEEDS.add(
+    "gradients reversed",
+    "gradients are handed back with the sign of a flux",
+    replace(CONFOCAL, gradient=reversed_gradient),
+    kind="gradient recovery",
+    effect="accuracy",
+    suspects=("gradient",),
+    shown_by=("disc-fourier", "annulus-logarithm", "disc-flux"),
+)
+SEEDS.add(
+    "gradients of unit charges",
+    "gradients are handed back for the fundamental solution with its 2 pi, values for that without",
+    replace(CONFOCAL, gradient=gradient_of_unit_charges),
+    kind="gradient recovery",
+    effect="accuracy",
+    suspects=("gradient",),
+    shown_by=("disc-fourier", "annulus-logarithm", "disc-flux"),
+)
+SEEDS.add(
+    "strengths in single precision",
+    "the least squares are solved in 32 bits",
+    replace(CONFOCAL, solve=single_precision),
+    kind="reduced precision",
+    effect="accuracy",
+    suspects=("single precision",),
+    shown_by=("disc-fourier", "annulus-logarithm", "disc-convection"),
+)
+SEEDS.add(
+    "loose truncation",
+    "singular values below 1e-4 of the largest are left out",
+    replace(CONFOCAL, solve=partial(sound.truncated_least_squares, cut=1e-4)),
+    kind="early stopping",
+    effect="accuracy",
+    suspects=("tolerance", "constant"),
+    shown_by=("disc-source-near",),
+)
+SEEDS.add(
+    "unweighted least squares",
+    "least squares without weights: another norm",
+    replace(CONFOCAL, rows=equal_weights),
+    kind="equivalent formulation",
+    effect="harmless",
+    suspects=(),
+    shown_by=(*FIXED, "annulus-convection"),
+)
+SEEDS.add(
+    "sources farther out",
+    "sources on curves three times as wide instead of twice",
+    replace(CONFOCAL, curves=partial(sound.source_curves, dilation=3.0)),
+    kind="equivalent formulation",
+    effect="harmless",
+    suspects=(),
+    shown_by=("disc-fourier", "disc-convection", "annulus-logarithm"),
 )

@@ -14,12 +14,11 @@ from laplace_verify.solvers.samples import chebyshev_collocation as sound
 from laplace_verify.solvers.samples.chebyshev_collocation import (
     COLLOCATION,
     ChebyshevGrid,
-    Scheme,
     chebyshev,
     solve_by_collocation,
 )
 from laplace_verify.solvers.samples.chebyshev_lines import Line
-from laplace_verify.solvers.samples.fault import Effect, Fault, seeded
+from laplace_verify.solvers.samples.seeding import Seeds
 
 __all__ = ["SPECTRAL_FAULTS"]
 
@@ -142,23 +141,6 @@ def slopes_unscaled(grid: ChebyshevGrid, values: Array, points: Array, slope: in
     return found * 0.5 * float(stops[-1] - stops[0])
 
 
-def _fault(
-    name: str,
-    description: str,
-    scheme: Scheme,
-    *,
-    kind: str,
-    suspects: tuple[str, ...],
-    shown_by: tuple[str, ...],
-    effect: Effect = "order",
-) -> tuple[str, Fault]:
-    """Return an entry of `SPECTRAL_FAULTS`."""
-    solve = partial(solve_by_collocation, scheme=scheme)
-    return seeded(
-        chebyshev, solve, name, description, kind=kind, suspects=suspects, shown_by=shown_by, effect=effect
-    )
-
-
 FIXED = ("plate-wave", "plate-cubic", "plate-degree-six")
 FLUX = ("plate-flux-top", "plate-flux-left", "wall-mixed-conditions")
 FLUX_SUSPECTS = ("Neumann condition", "Neumann data", "neumann on", "second normal derivative")
@@ -166,140 +148,139 @@ TENSOR = ("plate-tensor-oblique-fixed", "plate-tensor-oblique")
 TENSOR_SUSPECTS = ("tensor conductivity", "off-diagonal conductivity")
 EVERYWHERE = ("do not get smaller", "diverge", "wrong limit")
 
-SPECTRAL_FAULTS: dict[str, Fault] = dict(
-    [
-        _fault(
-            "second derivative scaled once",
-            "second derivatives are scaled by 2/length once instead of twice; invisible on squares",
-            replace(COLLOCATION, grid=partial(relined, kind=_Unscaled)),
-            kind="off by one in h",
-            suspects=("unequal extents", *EVERYWHERE),
-            shown_by=("plate-wave", "plate-cubic", "plate-flux-top"),
-        ),
-        _fault(
-            "end row halved",
-            "the row of the first node in the matrix of the derivative lacks a factor 2",
-            replace(COLLOCATION, grid=partial(relined, kind=_EndRow)),
-            kind="half-cell factor",
-            suspects=("neumann on left", "neumann on bottom", *FLUX_SUSPECTS, "robin on"),
-            shown_by=("plate-flux-left", "plate-flux-bottom", "wall-mixed-conditions"),
-        ),
-        _fault(
-            "second derivative negated",
-            "d^2/dy^2 enters with the wrong sign",
-            replace(COLLOCATION, equations=negated_second),
-            kind="exchanged axes",
-            suspects=EVERYWHERE,
-            shown_by=FIXED,
-        ),
-        _fault(
-            "mixed derivative left out",
-            "K_xy is missing in the equation",
-            replace(COLLOCATION, equations=no_mixed_derivative),
-            kind="exchanged axes",
-            suspects=TENSOR_SUSPECTS,
-            shown_by=TENSOR,
-        ),
-        _fault(
-            "mixed derivative once",
-            "K_xy is counted once, and K_yx not",
-            replace(COLLOCATION, equations=single_mixed_derivative),
-            kind="exchanged axes",
-            suspects=TENSOR_SUSPECTS,
-            shown_by=TENSOR,
-        ),
-        _fault(
-            "conductivity missing in the flux",
-            "n . grad u is put equal to the prescribed n . K grad u; invisible where K = 1",
-            replace(COLLOCATION, conormals=normal_without_conductivity),
-            kind="flux or gradient",
-            suspects=("conductivity other than 1", *FLUX_SUSPECTS, "Robin"),
-            shown_by=("wall-mixed-conditions", "plate-tensor-diagonal", "plate-flux-top"),
-        ),
-        _fault(
-            "normals along the axes",
-            "normals on the left and at the bottom point inwards",
-            replace(COLLOCATION, conormals=upward_normals),
-            kind="normal orientation",
-            suspects=("neumann on left", "neumann on bottom", *FLUX_SUSPECTS),
-            shown_by=("plate-flux-left", "plate-flux-bottom", "plate-source-near-flux"),
-        ),
-        _fault(
-            "data negated",
-            "data of derivative conditions enter with the wrong sign",
-            replace(COLLOCATION, influx=reversed_influx),
-            kind="flux sign",
-            suspects=(*FLUX_SUSPECTS, "Robin"),
-            shown_by=FLUX,
-        ),
-        _fault(
-            "half of alpha",
-            "Robin's alpha enters at half its size",
-            replace(COLLOCATION, transfer=halved_transfer),
-            kind="Robin coefficient",
-            suspects=("Robin", "robin on"),
-            shown_by=("plate-convection-all-round", "wall-mixed-conditions", "plate-tensor-oblique"),
-        ),
-        _fault(
-            "values of the next point",
-            "Dirichlet data are those of the neighbouring point",
-            replace(COLLOCATION, held=values_moved),
-            kind="shifted data",
-            suspects=("Dirichlet", *EVERYWHERE),
-            shown_by=("plate-cubic",),
-        ),
-        _fault(
-            "linear between points",
-            "between the points of the grid values are interpolated linearly",
-            replace(COLLOCATION, evaluate=linear_between),
-            kind="evaluation",
-            suspects=("exponential", "algebraic", "only", "Dirichlet"),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "gradients of the reference square",
-            "gradients are handed back in reference coordinates",
-            replace(COLLOCATION, evaluate=slopes_unscaled),
-            kind="gradient recovery",
-            effect="accuracy",
-            suspects=("gradient",),
-            shown_by=("plate-wave", "plate-cubic", "plate-flux-left"),
-        ),
-        _fault(
-            "system in single precision",
-            "the linear system is solved in 32 bits",
-            replace(COLLOCATION, solve=single_precision),
-            kind="reduced precision",
-            effect="accuracy",
-            suspects=("single precision",),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "values with five digits",
-            "prescribed values are rounded to five digits after the point",
-            replace(COLLOCATION, held=rounded),
-            kind="reduced precision",
-            effect="accuracy",
-            suspects=("Dirichlet",),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "rows scaled",
-            "every equation inside is divided by its largest number",
-            replace(COLLOCATION, equations=scaled_rows),
-            kind="equivalent formulation",
-            effect="harmless",
-            suspects=(),
-            shown_by=(*FIXED, "plate-tensor-oblique"),
-        ),
-        _fault(
-            "orthogonal factorisation",
-            "the system is solved by an orthogonal factorisation",
-            replace(COLLOCATION, solve=by_least_squares),
-            kind="equivalent formulation",
-            effect="harmless",
-            suspects=(),
-            shown_by=(*FIXED, "plate-flux-top"),
-        ),
-    ]
+SEEDS = Seeds(sample=chebyshev, solve=solve_by_collocation, scheme=COLLOCATION)
+SPECTRAL_FAULTS = SEEDS.faults
+
+SEEDS.add(
+    "second derivative scaled once",
+    "second derivatives are scaled by 2/length once instead of twice; invisible on squares",
+    replace(COLLOCATION, grid=partial(relined, kind=_Unscaled)),
+    kind="off by one in h",
+    suspects=("unequal extents", *EVERYWHERE),
+    shown_by=("plate-wave", "plate-cubic", "plate-flux-top"),
+)
+SEEDS.add(
+    "end row halved",
+    "the row of the first node in the matrix of the derivative lacks a factor 2",
+    replace(COLLOCATION, grid=partial(relined, kind=_EndRow)),
+    kind="half-cell factor",
+    suspects=("neumann on left", "neumann on bottom", *FLUX_SUSPECTS, "robin on"),
+    shown_by=("plate-flux-left", "plate-flux-bottom", "wall-mixed-conditions"),
+)
+SEEDS.add(
+    "second derivative negated",
+    "d^2/dy^2 enters with the wrong sign",
+    replace(COLLOCATION, equations=negated_second),
+    kind="exchanged axes",
+    suspects=EVERYWHERE,
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "mixed derivative left out",
+    "K_xy is missing in the equation",
+    replace(COLLOCATION, equations=no_mixed_derivative),
+    kind="exchanged axes",
+    suspects=TENSOR_SUSPECTS,
+    shown_by=TENSOR,
+)
+SEEDS.add(
+    "mixed derivative once",
+    "K_xy is counted once, and K_yx not",
+    replace(COLLOCATION, equations=single_mixed_derivative),
+    kind="exchanged axes",
+    suspects=TENSOR_SUSPECTS,
+    shown_by=TENSOR,
+)
+SEEDS.add(
+    "conductivity missing in the flux",
+    "n . grad u is put equal to the prescribed n . K grad u; invisible where K = 1",
+    replace(COLLOCATION, conormals=normal_without_conductivity),
+    kind="flux or gradient",
+    suspects=("conductivity other than 1", *FLUX_SUSPECTS, "Robin"),
+    shown_by=("wall-mixed-conditions", "plate-tensor-diagonal", "plate-flux-top"),
+)
+SEEDS.add(
+    "normals along the axes",
+    "normals on the left and at the bottom point inwards",
+    replace(COLLOCATION, conormals=upward_normals),
+    kind="normal orientation",
+    suspects=("neumann on left", "neumann on bottom", *FLUX_SUSPECTS),
+    shown_by=("plate-flux-left", "plate-flux-bottom", "plate-source-near-flux"),
+)
+SEEDS.add(
+    "data negated",
+    "data of derivative conditions enter with the wrong sign",
+    replace(COLLOCATION, influx=reversed_influx),
+    kind="flux sign",
+    suspects=(*FLUX_SUSPECTS, "Robin"),
+    shown_by=FLUX,
+)
+SEEDS.add(
+    "half of alpha",
+    "Robin's alpha enters at half its size",
+    replace(COLLOCATION, transfer=halved_transfer),
+    kind="Robin coefficient",
+    suspects=("Robin", "robin on"),
+    shown_by=("plate-convection-all-round", "wall-mixed-conditions", "plate-tensor-oblique"),
+)
+SEEDS.add(
+    "values of the next point",
+    "Dirichlet data are those of the neighbouring point",
+    replace(COLLOCATION, held=values_moved),
+    kind="shifted data",
+    suspects=("Dirichlet", *EVERYWHERE),
+    shown_by=("plate-cubic",),
+)
+SEEDS.add(
+    "linear between points",
+    "between the points of the grid values are interpolated linearly",
+    replace(COLLOCATION, evaluate=linear_between),
+    kind="evaluation",
+    suspects=("exponential", "algebraic", "only", "Dirichlet"),
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "gradients of the reference square",
+    "gradients are handed back in reference coordinates",
+    replace(COLLOCATION, evaluate=slopes_unscaled),
+    kind="gradient recovery",
+    effect="accuracy",
+    suspects=("gradient",),
+    shown_by=("plate-wave", "plate-cubic", "plate-flux-left"),
+)
+SEEDS.add(
+    "system in single precision",
+    "the linear system is solved in 32 bits",
+    replace(COLLOCATION, solve=single_precision),
+    kind="reduced precision",
+    effect="accuracy",
+    suspects=("single precision",),
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "values with five digits",
+    "prescribed values are rounded to five digits after the point",
+    replace(COLLOCATION, held=rounded),
+    kind="reduced precision",
+    effect="accuracy",
+    suspects=("Dirichlet",),
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "rows scaled",
+    "every equation inside is divided by its largest number",
+    replace(COLLOCATION, equations=scaled_rows),
+    kind="equivalent formulation",
+    effect="harmless",
+    suspects=(),
+    shown_by=(*FIXED, "plate-tensor-oblique"),
+)
+SEEDS.add(
+    "orthogonal factorisation",
+    "the system is solved by an orthogonal factorisation",
+    replace(COLLOCATION, solve=by_least_squares),
+    kind="equivalent formulation",
+    effect="harmless",
+    suspects=(),
+    shown_by=(*FIXED, "plate-flux-top"),
 )

@@ -3,16 +3,14 @@
 from __future__ import annotations
 
 from dataclasses import replace
-from functools import partial
 
 import numpy as np
 
 from laplace_verify.arrays import Array
 from laplace_verify.problems import Problem
-from laplace_verify.solvers.samples.fault import Effect, Fault, seeded
+from laplace_verify.solvers.samples.seeding import Seeds
 from laplace_verify.solvers.samples.walk_on_spheres import (
     SPHERES,
-    Walk,
     leaps_onto_spheres,
     solve_by_walks,
     standard_errors,
@@ -65,94 +63,75 @@ def quarter_of_errors(variance: Array, n: int) -> Array:
     return 0.25 * standard_errors(variance, n)
 
 
-def _fault(
-    name: str,
-    description: str,
-    walk: Walk,
-    *,
-    kind: str,
-    suspects: tuple[str, ...],
-    shown_by: tuple[str, ...],
-    effect: Effect = "order",
-) -> tuple[str, Fault]:
-    """Return an entry of `WALK_FAULTS`."""
-    solve = partial(solve_by_walks, walk=walk)
-    return seeded(
-        walk_on_spheres, solve, name, description,
-        kind=kind, suspects=suspects, shown_by=shown_by, effect=effect,
-    )  # fmt: skip
-
-
 FIXED = ("plate-saddle", "plate-wave", "disc-fourier")
 BIASED = ("do not get smaller", "diverge", "standard error", "biased", "wrong limit")
 
-WALK_FAULTS: dict[str, Fault] = dict(
-    [
-        _fault(
-            "thick shell",
-            "walks end within a tenth of the shape's size of the boundary",
-            replace(SPHERES, shell=0.1),
-            kind="early stopping",
-            suspects=BIASED,
-            shown_by=FIXED,
-        ),
-        _fault(
-            "drift",
-            "leaps go to one side along the first axis more often than to the other",
-            replace(SPHERES, leaps=drifting_leaps),
-            kind="distribution",
-            suspects=BIASED,
-            shown_by=FIXED,
-        ),
-        _fault(
-            "lopsided cube",
-            "directions are normalised points of a cube that is not centred",
-            replace(SPHERES, leaps=leaps_from_a_cube),
-            kind="distribution",
-            suspects=BIASED,
-            shown_by=FIXED,
-        ),
-        _fault(
-            "data of the first piece",
-            "all walks take the data of the first piece",
-            replace(SPHERES, data=first_piece_only),
-            kind="wrong side",
-            suspects=BIASED,
-            shown_by=("plate-saddle", "plate-wave", "annulus-logarithm"),
-        ),
-        _fault(
-            "standard errors over n",
-            "standard errors are s/n instead of s/sqrt(n)",
-            replace(SPHERES, errors=errors_of_squares),
-            kind="standard error",
-            suspects=BIASED,
-            shown_by=FIXED,
-        ),
-        _fault(
-            "quarter of the standard error",
-            "standard errors are four times too small",
-            replace(SPHERES, errors=quarter_of_errors),
-            kind="standard error",
-            suspects=BIASED,
-            shown_by=FIXED,
-        ),
-        _fault(
-            "deviation for error",
-            "the deviation of one walk is stated for the standard error of their mean",
-            replace(SPHERES, errors=deviations),
-            kind="standard error",
-            effect="accuracy",
-            suspects=("standard error",),
-            shown_by=FIXED,
-        ),
-        _fault(
-            "leaps reversed",
-            "leaps in the opposite direction: other walks of the same law",
-            replace(SPHERES, leaps=reversed_leaps),
-            kind="equivalent formulation",
-            effect="harmless",
-            suspects=(),
-            shown_by=("plate-saddle", "disc-fourier"),
-        ),
-    ]
+SEEDS = Seeds(sample=walk_on_spheres, solve=solve_by_walks, scheme=SPHERES)
+WALK_FAULTS = SEEDS.faults
+
+SEEDS.add(
+    "thick shell",
+    "walks end within a tenth of the shape's size of the boundary",
+    replace(SPHERES, shell=0.1),
+    kind="early stopping",
+    suspects=BIASED,
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "drift",
+    "leaps go to one side along the first axis more often than to the other",
+    replace(SPHERES, leaps=drifting_leaps),
+    kind="distribution",
+    suspects=BIASED,
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "lopsided cube",
+    "directions are normalised points of a cube that is not centred",
+    replace(SPHERES, leaps=leaps_from_a_cube),
+    kind="distribution",
+    suspects=BIASED,
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "data of the first piece",
+    "all walks take the data of the first piece",
+    replace(SPHERES, data=first_piece_only),
+    kind="wrong side",
+    suspects=BIASED,
+    shown_by=("plate-saddle", "plate-wave", "annulus-logarithm"),
+)
+SEEDS.add(
+    "standard errors over n",
+    "standard errors are s/n instead of s/sqrt(n)",
+    replace(SPHERES, errors=errors_of_squares),
+    kind="standard error",
+    suspects=BIASED,
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "quarter of the standard error",
+    "standard errors are four times too small",
+    replace(SPHERES, errors=quarter_of_errors),
+    kind="standard error",
+    suspects=BIASED,
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "deviation for error",
+    "the deviation of one walk is stated for the standard error of their mean",
+    replace(SPHERES, errors=deviations),
+    kind="standard error",
+    effect="accuracy",
+    suspects=("standard error",),
+    shown_by=FIXED,
+)
+SEEDS.add(
+    "leaps reversed",
+    "leaps in the opposite direction: other walks of the same law",
+    replace(SPHERES, leaps=reversed_leaps),
+    kind="equivalent formulation",
+    effect="harmless",
+    suspects=(),
+    shown_by=("plate-saddle", "disc-fourier"),
 )

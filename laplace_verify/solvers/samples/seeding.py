@@ -1,11 +1,14 @@
-"""How faults are put into a sample: one part of its scheme is exchanged, the rest stays as it is."""
+"""How faults are put into a sample: one part of its scheme is exchanged, the rest stays as it is.
+
+`Seeds.add` takes a changed scheme, `Seeds.into` decorates the function that is exchanged.
+"""
 
 from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass, field, replace
 from functools import partial
-from typing import Any, Generic, Protocol, TypeVar
+from typing import Any, Generic, TypeVar
 
 from laplace_verify.solvers.adapter import Adapter
 from laplace_verify.solvers.answer import Answer
@@ -17,13 +20,6 @@ S = TypeVar("S")
 Part = TypeVar("Part", bound=Callable[..., Any])
 
 
-class SolveWith(Protocol):
-    """A solve function that takes its scheme by keyword."""
-
-    def __call__(self, problem: Any, n: int, *, scheme: Any) -> Answer:
-        """Solve with n cells along every side."""
-
-
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Seeds(Generic[S]):
     """Faults of one sample, collected as they are defined.
@@ -33,7 +29,7 @@ class Seeds(Generic[S]):
     sample
         The sound solver.
     solve
-        The function behind it, which takes a scheme.
+        The function behind it, which takes a scheme by the keyword `scheme`.
     scheme
         The sound scheme, a dataclass of small functions.
     faults
@@ -41,9 +37,37 @@ class Seeds(Generic[S]):
     """
 
     sample: Adapter
-    solve: SolveWith
+    solve: Callable[..., Answer]
     scheme: S
     faults: dict[str, Fault] = field(default_factory=dict)
+
+    def add(
+        self,
+        name: str,
+        description: str,
+        scheme: S,
+        *,
+        kind: str,
+        suspects: tuple[str, ...],
+        shown_by: tuple[str, ...],
+        effect: Effect = "order",
+    ) -> None:
+        """Add the fault of solving by `scheme`; `Fault` explains the rest."""
+        if name in self.faults:
+            raise ValueError(f"a fault named {name!r} exists already")
+        self.faults[name] = Fault(
+            description=description,
+            adapter=replace(
+                self.sample,
+                function=partial(self.solve, scheme=scheme),
+                name=f"{self.sample.name}, fault: {name}",
+            ),
+            sample=self.sample.name,
+            kind=kind,
+            effect=effect,
+            suspects=suspects,
+            shown_by=shown_by,
+        )
 
     def into(
         self,
@@ -56,25 +80,12 @@ class Seeds(Generic[S]):
         shown_by: tuple[str, ...],
         effect: Effect = "order",
     ) -> Callable[[Part], Part]:
-        """Return a decorator: the function below it takes the place of `part` in the scheme."""
+        """Return a decorator that adds a fault: the function below it takes the place of `part`."""
 
         def seed(function: Part) -> Part:
             scheme = replace(self.scheme, **{part: function})  # type: ignore[type-var]
-            adapter = replace(
-                self.sample,
-                function=partial(self.solve, scheme=scheme),
-                name=f"{self.sample.name}, fault: {name}",
-            )
-            if name in self.faults:
-                raise ValueError(f"a fault named {name!r} exists already")
-            self.faults[name] = Fault(
-                description=description,
-                adapter=adapter,
-                sample=self.sample.name,
-                kind=kind,
-                effect=effect,
-                suspects=suspects,
-                shown_by=shown_by,
+            self.add(
+                name, description, scheme, kind=kind, suspects=suspects, shown_by=shown_by, effect=effect
             )
             return function
 

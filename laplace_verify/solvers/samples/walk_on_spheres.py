@@ -86,7 +86,7 @@ class Walk:
 SPHERES = Walk()
 
 
-def solve_by_walks(problem: Problem, n: int, wanted: Array, seed: int, walk: Walk = SPHERES) -> Answer:
+def solve_by_walks(problem: Problem, n: int, wanted: Array, seed: int, scheme: Walk = SPHERES) -> Answer:
     """Solve with n walks from each of the wanted points, at most 100."""
     points = wanted[:MOST_POINTS]
     generator = np.random.default_rng([seed, n])
@@ -94,13 +94,13 @@ def solve_by_walks(problem: Problem, n: int, wanted: Array, seed: int, walk: Wal
     for part in blocks(n, max(WALKERS // len(points), 1)):
         walks = part.stop - part.start
         starts = np.repeat(points, walks, axis=0)
-        found = exit_values(problem, starts, generator, walk).reshape(len(points), walks)
+        found = exit_values(problem, starts, generator, scheme).reshape(len(points), walks)
         total += found.sum(axis=1)
         squares += (found**2).sum(axis=1)
     mean = total / n
     variance = np.maximum(squares / n - mean**2, 0.0) * n / max(n - 1, 1)
     bias = SHELL * float(np.max(np.abs(mean), initial=1.0))  # all that is left where the data are constant
-    errors = walk.errors(variance, n) + bias
+    errors = scheme.errors(variance, n) + bias
     return Answer(points, mean, samples=n, standard_error=errors, unknowns=n * len(points))
 
 
