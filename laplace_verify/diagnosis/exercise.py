@@ -9,7 +9,6 @@ where nothing fails; it is right if it contains one of the words that the fault 
 
 from __future__ import annotations
 
-import re
 from collections.abc import Callable, Iterable, Iterator, Sequence
 from dataclasses import dataclass
 
@@ -144,12 +143,12 @@ def exercise(
 
 def _outcome(name: str, fault: Fault, record: Record, usual: Sequence[Study]) -> Outcome:
     """Put together what a fault and its sound twin got."""
-    known = {(study.case_id, _kind(remark)) for study in usual for remark in study.remarks}
+    known = {(study.case_id, what) for study in usual for what, _ in _remarked(study)}
     remarks = tuple(
-        f"{study.case_id}: {remark}"
+        f"{study.case_id}: {text}"
         for study in record.studies
-        for remark in study.remarks
-        if (study.case_id, _kind(remark)) not in known
+        for what, text in _remarked(study)
+        if (study.case_id, what) not in known
     )
     return Outcome(
         name=name,
@@ -177,6 +176,7 @@ def _first_suspect(record: Record, remarks: Sequence[str]) -> str:
     return next(iter([*broken, *undecided, *remarks]), "")
 
 
-def _kind(remark: str) -> str:
-    """Return a remark without its numbers, so that two of a kind are known as such."""
-    return re.sub(r"[-+0-9.e]+", "#", remark)
+def _remarked(study: Study) -> list[tuple[str, str]]:
+    """Return what is remarked of a study: the kind of a sign, or a norm that falls short, and the words."""
+    short = [(norm, order.note) for norm, order in study.orders.items() if order.verdict is Verdict.FAIL]
+    return [*((sign.kind, sign.text) for sign in study.signs), *short]

@@ -9,129 +9,124 @@ shows a cause directly weighs as much as a feature that separates the cases perf
 
 from __future__ import annotations
 
-import re
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
 from laplace_verify.diagnosis.finding import Finding, case_list, counted
 from laplace_verify.diagnosis.shared import shared_features
-from laplace_verify.measure.floors import named_floor
+from laplace_verify.measure.floors import floor_kind
 from laplace_verify.measure.results import Study
+from laplace_verify.measure.signs import Sign, SignKind
 from laplace_verify.measure.verdict import Verdict
 
-__all__ = ["SIGNS", "Sign", "signs_among_failing", "signs_where_nothing_fails"]
+__all__ = ["MEANINGS", "Meaning", "signs_among_failing", "signs_where_nothing_fails"]
 
 _TELLING = 0.7  # score of a feature that is added to a sign
 _OPEN = 0.5  # weight of what open cases share
 _SMALL = 1e-4  # relative error of a promised polynomial that looks like a floor, not like a mistake of scale
-_PROMISED = "a harmonic polynomial of degree"
+_SHORT_WEIGHT = 0.5
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class Sign:
-    """What a remark or reason tells: a pattern that finds it, its meaning, how much it weighs.
+class Meaning:
+    """What signs of some kinds tell, and how much it weighs.
 
-    `cause` says that it names a cause, so that it is weighed beside failing cases too.
+    `cause` says that they name a cause, so that they are weighed beside failing cases too.
     """
 
-    pattern: str
-    meaning: str
+    kinds: tuple[SignKind, ...]
+    text: str
     weight: float
     cause: bool = False
 
 
-SIGNS = (  # where two weigh the same, the first comes first
-    Sign(
-        pattern="the iteration stops early",
-        meaning="the iteration stops early: its tolerance, its norm or its number of steps",
+MEANINGS = (  # where two weigh the same, the first comes first
+    Meaning(
+        kinds=("early stop",),
+        text="the iteration stops early: its tolerance, its norm or its number of steps",
         weight=1.0,
         cause=True,
     ),
-    Sign(
-        pattern="single precision",
-        meaning="the error stops at the size of single precision: an array or constant in 32 bits",
+    Meaning(
+        kinds=("single-precision floor",),
+        text="the error stops at the size of single precision: an array or constant in 32 bits",
         weight=1.0,
         cause=True,
     ),
-    Sign(
-        pattern=r"reported residual .* not well below",
-        meaning="the reported residual is not well below the error: the iteration stops early",
+    Meaning(
+        kinds=("large residual",),
+        text="the reported residual is not well below the error: the iteration stops early",
         weight=1.0,
         cause=True,
     ),
-    Sign(
-        pattern="loose tolerance, or of a constant",
-        meaning="the error stops falling at a floor: a loose tolerance of the iteration, or a constant typed "
+    Meaning(
+        kinds=("loose floor",),
+        text="the error stops falling at a floor: a loose tolerance of the iteration, or a constant typed "
         "with few digits",
         weight=0.75,
         cause=True,
     ),
-    Sign(
-        pattern="accumulated round-off, or of the tolerance",
-        meaning="the error stops falling near round-off: the tolerance of an iteration, or cancellation",
+    Meaning(
+        kinds=("round-off floor",),
+        text="the error stops falling near round-off: the tolerance of an iteration, or cancellation",
         weight=0.6,
     ),
-    Sign(
-        pattern="the values converge but",
-        meaning="the values converge but gradients or fluxes do not: their scale, sign or recovery",
+    Meaning(
+        kinds=("stuck gradients",),
+        text="the values converge but gradients or fluxes do not: their scale, sign or recovery",
         weight=0.9,
     ),
-    Sign(
-        pattern="times that of interpolating",
-        meaning="the error constant is far above that of interpolation: a weight, a penalty or a boundary "
+    Meaning(
+        kinds=("large error constant",),
+        text="the error constant is far above that of interpolation: a weight, a penalty or a boundary "
         "closure costs accuracy",
         weight=0.7,
     ),
-    Sign(
-        pattern="standard errors",
-        meaning="the stated standard errors do not fit the errors: a bias, or their scale",
+    Meaning(
+        kinds=("wrong standard errors",),
+        text="the stated standard errors do not fit the errors: a bias, or their scale",
         weight=0.9,
         cause=True,
     ),
-    Sign(
-        pattern="does not follow the curve",
-        meaning="points handed back do not follow the curved boundary",
+    Meaning(
+        kinds=("off the curve",),
+        text="points handed back do not follow the curved boundary",
         weight=0.8,
         cause=True,
     ),
-    Sign(
-        pattern=_PROMISED,
-        meaning="polynomials that the solver promises to reproduce are not exact: weights, constants, tags "
+    Meaning(
+        kinds=("inexact polynomial",),
+        text="polynomials that the solver promises to reproduce are not exact: weights, constants, tags "
         "of pieces or corner nodes",
         weight=0.6,
-    ),
-    Sign(
-        pattern=r"\bobserved [-0-9.]+ .*\(does not decide\)",
-        meaning="a norm that does not decide falls short",
-        weight=0.5,
     ),
 )
 
 
 def signs_among_failing(failing: Sequence[Study], passing: Sequence[Study]) -> list[Finding]:
-    """Return the causes that the remarks and reasons of failing studies name, and what those cases share."""
+    """Return the causes that the signs of failing studies name, and what those cases share."""
     found = []
-    for sign in SIGNS:
-        showing = [study for study in failing if _shows(study, sign)] if sign.cause else []
+    for meaning in MEANINGS:
+        showing = [study for study in failing if _first(study, meaning)] if meaning.cause else []
         if showing:
-            others = [study for study in (*failing, *passing) if not _shows(study, sign)]
+            others = [study for study in (*failing, *passing) if not _first(study, meaning)]
             who = counted(len(showing), len(failing), "failing cases")
-            text = f"{sign.meaning} ({who}){_shared(showing, others)}"
-            found.append(_finding(sign, showing, text, len(showing) / len(failing)))
+            text = f"{meaning.text} ({who}){_shared(showing, others)}"
+            found.append(_finding(meaning, showing, text, len(showing) / len(failing)))
     return found
 
 
 def signs_where_nothing_fails(studies: Sequence[Study]) -> list[Finding]:
-    """Return what remarks tell where no study fails or breaks, and what open studies have in common."""
+    """Return what signs tell where no study fails or breaks, and what open studies have in common."""
     ran = [study for study in studies if study.levels]
     found = []
-    for sign in SIGNS:
-        showing = [study for study in ran if _shows(study, sign)]
+    for meaning in MEANINGS:
+        showing = [study for study in ran if _first(study, meaning)]
         if showing:
-            others = [study for study in ran if not _shows(study, sign)]
-            who = f"no case fails, remarked in {counted(len(showing), len(ran), 'cases')}"
-            text = f"{sign.meaning} ({who}){_shared(showing, others)}"
-            found.append(_finding(sign, showing, text, 1.0))
+            others = [study for study in ran if not _first(study, meaning)]
+            text = f"{meaning.text} ({_remarked(showing, ran)}){_shared(showing, others)}"
+            found.append(_finding(meaning, showing, text, 1.0))
+    found += _short(ran)
     open_ = [study for study in ran if study.verdict is Verdict.INCONCLUSIVE]
     passing = [study for study in ran if study.verdict is Verdict.PASS]
     if len(open_) > 1 and passing:  # a single one has too much that others lack
@@ -142,15 +137,45 @@ def signs_where_nothing_fails(studies: Sequence[Study]) -> list[Finding]:
     return found
 
 
-def _finding(sign: Sign, showing: Sequence[Study], text: str, share: float) -> Finding:
+def _short(ran: Sequence[Study]) -> list[Finding]:
+    """Return a finding on norms that fall short where they do not decide."""
+    notes = {id(study): note for study in ran if (note := _short_note(study))}
+    showing = [study for study in ran if id(study) in notes]
+    if not showing:
+        return []
+    others = [study for study in ran if id(study) not in notes]
+    return [
+        Finding(
+            text=f"A norm that does not decide falls short ({_remarked(showing, ran)})"
+            f"{_shared(showing, others)}",
+            evidence=f"{showing[0].case_id}: {notes[id(showing[0])]}; cases: {case_list(showing)}",
+            score=_SHORT_WEIGHT,
+            studies=tuple(showing),
+        )
+    ]
+
+
+def _short_note(study: Study) -> str:
+    """Return what is said of the first norm that falls short without deciding; "" if none does."""
+    notes = (
+        order.note for order in study.orders.values() if order.verdict is Verdict.FAIL and not order.decides
+    )
+    return next(notes, "")
+
+
+def _finding(meaning: Meaning, showing: Sequence[Study], text: str, share: float) -> Finding:
     """Return a finding with the first remark as evidence."""
-    first = next(text for text in _texts(showing[0]) if re.search(sign.pattern, text))
+    first = _first(showing[0], meaning)
     return Finding(
         text=text[0].upper() + text[1:],
-        evidence=f"{showing[0].case_id}: {first}; cases: {case_list(showing)}",
-        score=sign.weight * share,
+        evidence=f"{showing[0].case_id}: {first.text if first else ''}; cases: {case_list(showing)}",
+        score=meaning.weight * share,
         studies=tuple(showing),
     )
+
+
+def _remarked(showing: Sequence[Study], ran: Sequence[Study]) -> str:
+    return f"no case fails, remarked in {counted(len(showing), len(ran), 'cases')}"
 
 
 def _shared(showing: Sequence[Study], others: Sequence[Study]) -> str:
@@ -159,14 +184,16 @@ def _shared(showing: Sequence[Study], others: Sequence[Study]) -> str:
     return f": {apart[0].text}" if apart and apart[0].score >= _TELLING else ""
 
 
-def _shows(study: Study, sign: Sign) -> bool:
-    return any(re.search(sign.pattern, text) for text in _texts(study))
+def _first(study: Study, meaning: Meaning) -> Sign | None:
+    """Return the first sign of a study that has this meaning."""
+    return next((sign for sign in _signs(study) if sign.kind in meaning.kinds), None)
 
 
-def _texts(study: Study) -> list[str]:
-    """Return what is said of a study, and what usually leaves a promised polynomial as inexact as it is."""
-    said = [*study.remarks, *study.reasons]
-    if any(re.search(_PROMISED, reason) for reason in study.reasons):
-        miss = next((level.nodal for level in study.levels if level.nodal), 1.0)  # it grows with the size
-        said += [f"polynomials are missed by {miss:.1e}: {named_floor(miss)}"] if miss < _SMALL else []
-    return said
+def _signs(study: Study) -> list[Sign]:
+    """Return the signs of a study, and what usually leaves a promised polynomial as inexact as it is."""
+    if not any(sign.kind == "inexact polynomial" for sign in study.signs):
+        return study.signs
+    miss = next((level.nodal for level in study.levels if level.nodal), 1.0)  # it grows with the size
+    if not miss < _SMALL:
+        return study.signs
+    return [*study.signs, Sign(kind=floor_kind(miss), text=f"polynomials are missed by {miss:.1e}")]

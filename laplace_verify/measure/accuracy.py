@@ -26,6 +26,7 @@ from laplace_verify.measure.norms import weighted_norm
 from laplace_verify.measure.orders import line_order
 from laplace_verify.measure.results import Level
 from laplace_verify.measure.series import differences
+from laplace_verify.measure.signs import Sign
 
 if TYPE_CHECKING:
     from laplace_verify.measure.exact import Exact
@@ -61,7 +62,7 @@ def interpolation_error(answer: Answer, exact: Exact) -> float | None:
     return found if found > EXACT * size else None
 
 
-def accuracy_remarks(levels: Sequence[Level], smoothness: Smoothness) -> list[str]:
+def accuracy_remarks(levels: Sequence[Level], smoothness: Smoothness) -> list[Sign]:
     """Return remarks on the error constant of the finest level and on gradients that do not converge."""
     judged = [level for level in levels if level.judged]
     if not judged:
@@ -69,35 +70,37 @@ def accuracy_remarks(levels: Sequence[Level], smoothness: Smoothness) -> list[st
     return [*_constant(judged[-1], smoothness), *_between(judged), *_gradients(judged, smoothness)]
 
 
-def _constant(level: Level, smoothness: Smoothness) -> list[str]:
+def _constant(level: Level, smoothness: Smoothness) -> list[Sign]:
     """Remark an error far above that of interpolation, where no singularity explains it."""
     error, best = level.errors.get("L2"), level.interpolation
     if error is None or best is None or not smoothness.smooth or smoothness.domain < 1:
         return []
     if not error > FACTOR * best:
         return []
-    return [
+    text = (
         f"size {level.size}: the L2 error {error:.2e} is {error / best:.0f} times that of interpolating the "
         f"exact solution on the same mesh (sound samples stay below {FACTOR:g}): the order may hold and yet "
         "a weight, a penalty or a boundary closure cost accuracy"
-    ]
+    )
+    return [Sign(kind="large error constant", text=text)]
 
 
-def _between(levels: Sequence[Level]) -> list[str]:
+def _between(levels: Sequence[Level]) -> list[Sign]:
     """Remark values at nodes that converge an order faster than values between them."""
     spacing = [level.h for level in levels]
     nodes = line_order(spacing, [level.nodal for level in levels])
     overall = line_order(spacing, [level.errors.get("L2") for level in levels])
     if nodes is None or overall is None or levels[-1].interpolation is None or nodes < overall + FASTER:
         return []
-    return [
+    text = (
         f"at the solver's own points the error falls at order {nodes:.1f}, between them (L2) at "
         f"{overall:.1f}: the shape functions of the cells limit it; hand back cells of a higher degree, or "
         "points without cells"
-    ]
+    )
+    return [Sign(kind="limited between nodes", text=text)]
 
 
-def _gradients(levels: Sequence[Level], smoothness: Smoothness) -> list[str]:
+def _gradients(levels: Sequence[Level], smoothness: Smoothness) -> list[Sign]:
     """Remark gradient norms that stay while the values converge."""
     first, last = levels[0], levels[-1]
     value = [level.errors.get("L2", level.errors.get("max")) for level in (first, last)]
@@ -112,7 +115,8 @@ def _gradients(levels: Sequence[Level], smoothness: Smoothness) -> list[str]:
     ]  # fmt: skip
     if not stuck:
         return []
-    return [
+    text = (
         f"the values converge but {', '.join(stuck)} does not: look at scale and sign of the gradients or "
         "fluxes handed back"
-    ]
+    )
+    return [Sign(kind="stuck gradients", text=text)]

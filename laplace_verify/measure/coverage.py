@@ -23,6 +23,7 @@ import numpy as np
 from scipy.stats import chi2
 
 from laplace_verify.measure.results import Coverage, Level
+from laplace_verify.measure.signs import Sign
 
 if TYPE_CHECKING:
     from laplace_verify.measure.exact import Exact
@@ -56,10 +57,10 @@ def coverage_of(answer: Answer, exact: Exact, measured: Measured) -> Coverage | 
     )
 
 
-def judge_coverage(levels: Sequence[Level]) -> tuple[list[str], list[str]]:
+def judge_coverage(levels: Sequence[Level]) -> tuple[list[Sign], list[Sign]]:
     """Return faults (each fails the study) and remarks from the levels that state standard errors."""
     stated = [(level.size, level.coverage) for level in levels if level.coverage is not None]
-    faults, remarks = [], []
+    faults, remarks = list[str](), list[str]()
     for size, found in stated:
         probability = (1 - CONFIDENCE) / len(stated)
         dependent = float(chi2.isf(probability, 1))
@@ -83,4 +84,8 @@ def judge_coverage(levels: Sequence[Level]) -> tuple[list[str], list[str]]:
             f"squared errors are at most {largest:.2g} times the squared standard errors, where 1 is "
             "expected: the standard errors are too large"
         )
-    return faults, remarks
+    return _signs(faults), _signs(remarks)
+
+
+def _signs(texts: Sequence[str]) -> list[Sign]:
+    return [Sign(kind="wrong standard errors", text=text) for text in texts]

@@ -17,6 +17,7 @@ import numpy as np
 
 from laplace_verify.measure.results import Level
 from laplace_verify.measure.series import FLOOR_MARGIN, ROUND_OFF
+from laplace_verify.measure.signs import Sign
 
 if TYPE_CHECKING:
     from laplace_verify.measure.exact import Exact
@@ -44,7 +45,7 @@ def promised_degree(solver: Adapter, case: Case) -> int | None:
     return degree if flat and not problem.interfaces and problem.coordinates == "cartesian" else None
 
 
-def exactness_faults(solver: Adapter, case: Case, levels: Sequence[Level]) -> list[str]:
+def exactness_faults(solver: Adapter, case: Case, levels: Sequence[Level]) -> list[Sign]:
     """Return a fault for the first size at which a promised polynomial is not exact to round-off."""
     degree = promised_degree(solver, case)
     if degree is None:
@@ -52,9 +53,10 @@ def exactness_faults(solver: Adapter, case: Case, levels: Sequence[Level]) -> li
     allowed = FLOOR_MARGIN * max(solver.error_floor or 0.0, ROUND_OFF)
     for level in levels:
         if level.nodal is not None and not level.nodal <= allowed:
-            return [
+            text = (
                 f"size {level.size}: a harmonic polynomial of degree {degree} is missed by {level.nodal:.1e} "
                 f"of its size at the solver's own points; the solver declares reproduces_degree = "
                 f"{solver.reproduces_degree}, so that only round-off ({allowed:.0e}) may be left: FAIL"
-            ]
+            )
+            return [Sign(kind="inexact polynomial", text=text)]
     return []

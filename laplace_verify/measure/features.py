@@ -15,7 +15,7 @@ if TYPE_CHECKING:
     from laplace_verify.measure.exact import Exact
     from laplace_verify.problems import Case, Piece, Problem
 
-__all__ = ["features", "ill_posed_features"]
+__all__ = ["features", "ill_posed_features", "problem_features"]
 
 SMALL = 1e-9
 LARGE_JUMP = 10.0
@@ -25,13 +25,32 @@ STRETCHED = (2.0, 5.0)  # ratios of the extents that are told apart
 
 def features(case: Case, exact: Exact) -> dict[str, Feature]:
     """Return name -> True, False, a number or a word."""
-    problem, shape, regularity = case.problem, case.problem.shape, case.regularity
+    problem, regularity = case.problem, case.regularity
+    smooth = math.isinf(regularity.solution)
+    found = problem_features(problem)
+    found |= {
+        "interface off the axes": regularity.interface in ("oblique", "curved"),
+        "jump in the boundary data": bool(len(regularity.jumps)),
+        "singular solution": not smooth,
+        "source close to the boundary": smooth and regularity.scale < CLOSE * problem.shape.extent,
+        "harmonic polynomial": None if exact.field.degree is None else float(exact.field.degree),
+    }
+    found |= data_features(case, exact)
+    for piece in problem.pieces:
+        found |= dict.fromkeys(_places(piece), True)
+    found |= {f"{piece.kind} on {piece.name}": True for piece in problem.pieces if piece.kind != "axis"}
+    found |= {f"tag {tag}": True for tag in sorted(case.tags)}
+    return found
+
+
+def problem_features(problem: Problem) -> dict[str, Feature]:
+    """Return what can be said of a problem without its solution: shape, conditions and materials."""
+    shape = problem.shape
     kinds = {piece.name: piece.kind for piece in problem.pieces}
     used = set(kinds.values()) - {"axis", "periodic"}
-    smooth = math.isinf(regularity.solution)
     lower, upper = shape.bounding_box
     tensor = isinstance(problem.conductivity, np.ndarray)
-    found: dict[str, Feature] = {
+    return {
         "dimension": float(shape.dim),
         "shape": shape.kind,
         "Dirichlet condition": "dirichlet" in kinds.values(),
@@ -48,7 +67,6 @@ def features(case: Case, exact: Exact) -> dict[str, Feature]:
         "interface": bool(problem.interfaces),
         "coordinates with a symmetry": problem.coordinates != "cartesian",
         "axis of symmetry": "axis" in kinds.values(),
-        "interface off the axes": regularity.interface in ("oblique", "curved"),
         "interface that meets the boundary": any(len(piece.parts) > 1 for piece in problem.pieces),
         "conductivity jump of ten or more": _jump(problem) >= LARGE_JUMP,
         "curved boundary": any(piece.curved for piece in problem.pieces),
@@ -67,17 +85,7 @@ def features(case: Case, exact: Exact) -> dict[str, Feature]:
             abs(j.opening - math.pi) < SMALL and kinds[j.pieces[0]] != kinds[j.pieces[1]]
             for j in shape.junctions
         ),
-        "jump in the boundary data": bool(len(regularity.jumps)),
-        "singular solution": not smooth,
-        "source close to the boundary": smooth and regularity.scale < CLOSE * shape.extent,
-        "harmonic polynomial": None if exact.field.degree is None else float(exact.field.degree),
     }
-    found |= data_features(case, exact)
-    for piece in problem.pieces:
-        found |= dict.fromkeys(_places(piece), True)
-    found |= {f"{piece.kind} on {piece.name}": True for piece in problem.pieces if piece.kind != "axis"}
-    found |= {f"tag {tag}": True for tag in sorted(case.tags)}
-    return found
 
 
 def ill_posed_features(case: Case) -> dict[str, Feature]:

@@ -13,13 +13,31 @@ from __future__ import annotations
 from itertools import pairwise
 
 from laplace_verify.measure.series import Series
+from laplace_verify.measure.signs import FloorKind
 
-__all__ = ["named_floor", "rises"]
+__all__ = ["floor_kind", "named_floor", "rises"]
 
 SINGLE = 2.0**-24
-LOWEST, HIGHEST = 0.3, 300.0  # times SINGLE: what is put down to single precision
+LOWEST, HIGHEST = 0.1, 300.0  # times SINGLE: a mean of rounding errors, and a large multiple of one
 ROUGHLY_DOUBLE = 1e-10
 RISE = 1.1  # a rise of the error by less is scatter
+NAMES: dict[FloorKind, str] = {
+    "round-off floor": "the size of accumulated round-off, or of the tolerance of an iteration",
+    "single-precision floor": "the size at which numbers of single precision (6e-8) stop",
+    "loose floor": "the size of a loose tolerance, or of a constant typed with few digits",
+}
+
+
+def floor_kind(relative: float) -> FloorKind:
+    """Return the kind of floor at which errors of this relative size usually stop.
+
+    >>> floor_kind(1e-14), floor_kind(2e-7), floor_kind(1e-3)
+    ('round-off floor', 'single-precision floor', 'loose floor')
+    """
+    if relative <= ROUGHLY_DOUBLE:
+        return "round-off floor"
+    single = LOWEST * SINGLE <= relative <= HIGHEST * SINGLE
+    return "single-precision floor" if single else "loose floor"
 
 
 def named_floor(relative: float) -> str:
@@ -28,11 +46,7 @@ def named_floor(relative: float) -> str:
     >>> named_floor(2e-7)
     'the size at which numbers of single precision (6e-8) stop'
     """
-    if relative <= ROUGHLY_DOUBLE:
-        return "the size of accumulated round-off, or of the tolerance of an iteration"
-    if LOWEST * SINGLE <= relative <= HIGHEST * SINGLE:
-        return "the size at which numbers of single precision (6e-8) stop"
-    return "the size of a loose tolerance, or of a constant typed with few digits"
+    return NAMES[floor_kind(relative)]
 
 
 def rises(series: Series) -> str:

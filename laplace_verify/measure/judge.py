@@ -25,7 +25,7 @@ from dataclasses import replace
 from itertools import pairwise
 
 from laplace_verify.measure.expected import Expectation, smallest_loss
-from laplace_verify.measure.floors import named_floor, rises
+from laplace_verify.measure.floors import floor_kind, named_floor, rises
 from laplace_verify.measure.orders import OrderFit, fit_order, noise_level, pair_orders
 from laplace_verify.measure.rates import Finding, judge_decrease, judge_exponential, stagnation
 from laplace_verify.measure.results import Level, Order
@@ -68,7 +68,7 @@ def judge(
         series = series_of(norm, levels, error_floor)
         order = judge_norm(series, expectation, noise)
         if mixed_signs and norm in mixed_signs and not series.exact:
-            order = replace(order, verdict=None, note=f"{norm}: {mixed_signs[norm]}")
+            order = replace(order, verdict=None, floor=None, note=f"{norm}: {mixed_signs[norm]}")
         pairs = pair_orders(
             [level.h for level in levels], [level.errors.get(norm, math.nan) for level in levels]
         )
@@ -161,7 +161,7 @@ def _algebraic(series: Series, expected: float, fit: OrderFit | None, noise: flo
             f"{relative:.1e}: {named_floor(relative)}. If a solver tolerance or a reduced precision stops "
             f"it, declare error_floor; if not, {_advice(series)}"
         )
-        return Finding(Verdict.INCONCLUSIVE, words, finer=True)
+        return Finding(Verdict.INCONCLUSIVE, words, finer=True, floor=floor_kind(relative))
     if fit.high <= least and last is not None and last < least:
         return Finding(Verdict.FAIL, rises(series))
     if last is not None and last >= least and _rising(slopes):
@@ -231,6 +231,7 @@ def _order(series: Series, expectation: Expectation, fit: OrderFit | None, findi
         basis=expectation.basis,
         verdict=finding.verdict if finding else None,
         finer=bool(finding and finding.finer),
+        floor=finding.floor if finding else None,
         left_out=series.left_out,
         note=_sentence(series, expectation, fit, finding),
     )

@@ -12,9 +12,10 @@ from typing import NamedTuple
 
 import numpy as np
 
-from laplace_verify.measure.floors import named_floor
+from laplace_verify.measure.floors import floor_kind, named_floor
 from laplace_verify.measure.orders import pair_orders
 from laplace_verify.measure.series import MINIMUM_LEVELS, Series, differences
+from laplace_verify.measure.signs import FloorKind
 from laplace_verify.measure.smoothness import is_functional
 from laplace_verify.measure.verdict import Verdict
 
@@ -30,11 +31,12 @@ CLEARLY = 0.7  # last errors over first ones: a fall that is no scatter
 
 
 class Finding(NamedTuple):
-    """A verdict, why in words, and whether a finer level may settle what is open."""
+    """A verdict, why in words, whether a finer level may settle what is open, and a floor if there is one."""
 
     verdict: Verdict
     words: str = ""
     finer: bool = False
+    floor: FloorKind | None = None
 
 
 def stagnation(series: Series, expected: float = 1.0) -> Finding | None:
@@ -55,7 +57,7 @@ def stagnation(series: Series, expected: float = 1.0) -> Finding | None:
             f"neither falling nor at round-off: {named_floor(series.relative[-1])}. If a solver tolerance or "
             "a reduced precision stops it, declare error_floor"
         )
-        return Finding(Verdict.INCONCLUSIVE, words)
+        return Finding(Verdict.INCONCLUSIVE, words, floor=floor_kind(series.relative[-1]))
     if last > 2 * first:
         return Finding(Verdict.FAIL, f"diverges: the error grows from {first:.2e} to {last:.2e}")
     words = f"does not converge: the error stays at {last:.2e} (relative {series.relative[-1]:.1e})"

@@ -11,6 +11,7 @@ from dataclasses import dataclass, field
 from typing import Literal, TypeAlias
 
 from laplace_verify.measure.orders import line_order
+from laplace_verify.measure.signs import FloorKind, Sign
 from laplace_verify.measure.table import Format, convergence_table
 from laplace_verify.measure.verdict import Verdict
 
@@ -69,7 +70,8 @@ class Order:
     domain: a number, "exponential", "decrease" (theory promises convergence but no rate) or None (theory
     promises nothing). [`low`, `high`] is observed -+ 2 standard errors. `pairs` holds the order between
     neighbouring levels (None where undefined), `left_out` the sizes that did not enter the fit, and
-    why. `finer` says that a finer level may settle what is open.
+    why. `finer` says that a finer level may settle what is open, `floor` at what kind of floor the error
+    stays.
     """
 
     observed: float | None
@@ -83,6 +85,7 @@ class Order:
     basis: str = ""
     verdict: Verdict | None = None
     finer: bool = False
+    floor: FloorKind | None = None
     pairs: list[float | None] = field(default_factory=list)
     left_out: dict[str, str] = field(default_factory=dict)
 
@@ -103,7 +106,8 @@ class Study:
     `local` maps a place (a piece's name, "corner NAME/NAME", "interior") to the largest error there at every
     level, None where no point was sampled. `features` describes case and solver in plain words for diagnosis.
     `crash` is the traceback if the verdict is ERROR. `known` is the author's reason for a known deviation.
-    `journal` says which sizes were added, when and why.
+    `journal` says which sizes were added, when and why. `signs` holds those reasons and remarks again that
+    have a kind.
     """
 
     solver: str
@@ -116,6 +120,7 @@ class Study:
     orders: dict[str, Order] = field(default_factory=dict)
     reasons: list[str] = field(default_factory=list)
     remarks: list[str] = field(default_factory=list)
+    signs: list[Sign] = field(default_factory=list)
     features: dict[str, Feature] = field(default_factory=dict)
     local: dict[str, list[float | None]] = field(default_factory=dict)
     error_map: ErrorMap | None = None

@@ -23,6 +23,7 @@ from laplace_verify.measure.oddities import oddities, sign_changes
 from laplace_verify.measure.refusal import refusal_study, said
 from laplace_verify.measure.results import Level, Order, Study
 from laplace_verify.measure.running import LevelResult, Runner, check_falling
+from laplace_verify.measure.signs import Sign
 from laplace_verify.measure.tightening import iteration_remarks
 from laplace_verify.measure.verdict import Verdict
 from laplace_verify.problems import Case, Problem, as_case
@@ -110,7 +111,7 @@ def study(
         return run.broken(size, cause)
     if given is None or budget is not None:
         run.refine(budget)
-    run.remarks += iteration_remarks(run.runner, run.levels)
+    run.signs += iteration_remarks(run.runner, run.levels)
     return run.judged()
 
 
@@ -125,6 +126,7 @@ class _Run:
     criteria: Mapping[str, Expectation]
     results: list[LevelResult] = field(default_factory=list)
     remarks: list[str] = field(default_factory=list)
+    signs: list[Sign] = field(default_factory=list)
     journal: list[str] = field(default_factory=list)
 
     @property
@@ -190,10 +192,13 @@ class _Run:
         faults, odd = (a + b for a, b in zip(*found, strict=True))
         faults += exactness_faults(self.solver, self.case, self.levels)
         if faults:
-            verdict, reasons = Verdict.FAIL, [*reasons, *faults]
-        remarks += accuracy_remarks(self.levels, smoothness_of(self.case))
-        remarks += [*odd, *dict.fromkeys(remark for result in self.results for remark in result.remarks)]
-        return self.result(verdict, reasons, [*remarks, *self.remarks], orders)
+            verdict, reasons = Verdict.FAIL, [*reasons, *(fault.text for fault in faults)]
+        odd = [*accuracy_remarks(self.levels, smoothness_of(self.case)), *odd]
+        remarks += [sign.text for sign in odd]
+        remarks += dict.fromkeys(remark for result in self.results for remark in result.remarks)
+        remarks += [*self.remarks, *(sign.text for sign in self.signs)]
+        self.signs = [*_floors(orders, [*reasons, *remarks]), *faults, *odd, *self.signs]
+        return self.result(verdict, reasons, remarks, orders)
 
     def broken(self, size: int, cause: BaseException) -> Study:
         """Return the study of a solver that broke, with the levels it finished."""
@@ -247,6 +252,7 @@ class _Run:
             orders=orders or {},
             reasons=reasons,
             remarks=remarks,
+            signs=self.signs,
             features=features(self.runner.seen, self.runner.exact),
             local={place: [result.local.get(place) for result in self.results] for place in places},
             error_map=last.error_map if last else None,
@@ -254,6 +260,15 @@ class _Run:
             crash=crash,
             journal=self.journal,
         )
+
+
+def _floors(orders: Mapping[str, Order], said: Sequence[str]) -> list[Sign]:
+    """Return the floors at which norms stay that the reasons or remarks speak of."""
+    return [
+        Sign(kind=order.floor, text=order.note)
+        for order in orders.values()
+        if order.floor is not None and order.note in said
+    ]
 
 
 def _check_arguments(solver: object, max_points: int | None) -> None:

@@ -10,6 +10,7 @@ import inspect
 from typing import TYPE_CHECKING
 
 from laplace_verify.measure.results import Level
+from laplace_verify.measure.signs import Sign
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
@@ -23,7 +24,7 @@ TIGHTER = 0.01
 CHANGED = 0.1  # of the error: more than this was the iteration's
 
 
-def iteration_remarks(runner: Runner, levels: Sequence[Level]) -> list[str]:
+def iteration_remarks(runner: Runner, levels: Sequence[Level]) -> list[Sign]:
     """Return a remark if a tolerance a hundred times tighter changes the L2 error of the finest size."""
     tolerance = default_tolerance(runner.solver)
     if tolerance is None or not levels or "L2" not in levels[-1].errors:
@@ -32,17 +33,19 @@ def iteration_remarks(runner: Runner, levels: Sequence[Level]) -> list[str]:
     try:
         again = runner.run(last.size, tolerance=TIGHTER * tolerance).level.errors["L2"]
     except (Exception, SystemExit) as cause:
-        return [
+        text = (
             f"size {last.size} broke with the tolerance {TIGHTER * tolerance:.1e} in place of "
             f"{tolerance:.1e}: {type(cause).__name__}: {cause}"
-        ]
+        )
+        return [Sign(kind="breaks when tightened", text=text)]
     error = last.errors["L2"]
     if abs(again - error) <= CHANGED * error:
         return []
-    return [
+    text = (
         f"the iteration stops early: a tolerance of {TIGHTER * tolerance:.1e} in place of {tolerance:.1e} "
         f"changes the L2 error at size {last.size} from {error:.2e} to {again:.2e}"
-    ]
+    )
+    return [Sign(kind="early stop", text=text)]
 
 
 def default_tolerance(solver: Adapter) -> float | None:

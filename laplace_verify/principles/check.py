@@ -5,6 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 from laplace_verify.errors import AdapterError, ProblemError, nearest_names, told
+from laplace_verify.measure.features import problem_features
 from laplace_verify.measure.verdict import Verdict
 from laplace_verify.principles.driving import BrokenLawError, BrokenSolverError, Search
 from laplace_verify.principles.example import example_code
@@ -138,6 +139,7 @@ def _failed(law: Law, failure: BrokenLawError) -> Check:
         f"The simplest problem found: {trial.posed.words()}",
         example=example_code(trial, finding.sizes[-1], finding.body),
         points=_rows(finding),
+        features=problem_features(trial.problem),
     )
 
 

@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
+from laplace_verify.measure.results import Feature
 from laplace_verify.measure.verdict import Verdict
 
 __all__ = ["Check"]
@@ -30,6 +31,8 @@ class Check:
         Python for a fresh session: the problem and a function ``violation(solver)``; empty if there is none.
     points : tuple of tuple of float
         Where the law was broken, one row of d coordinates a point.
+    features : dict
+        What the simplest problem that breaks the law contains, as `Study.features` has it of a case.
     """
 
     law: str
@@ -39,3 +42,4 @@ class Check:
     reason: str = ""
     example: str = ""
     points: tuple[tuple[float, ...], ...] = ()
+    features: dict[str, Feature] = field(default_factory=dict)

@@ -4,6 +4,7 @@ import pytest
 
 from laplace_verify.campaign.record import CaseInfo, Environment, PieceInfo, Record, Settings, SolverIdentity
 from laplace_verify.measure.results import Level, Order, Study
+from laplace_verify.measure.signs import Sign
 from laplace_verify.measure.verdict import Verdict
 
 SIDES = {
@@ -16,7 +17,7 @@ SIDES = {
 
 def _study(
     case_id, verdict, features, *, observed=2.0, norm="max", error_map=None, known=None, unknowns=49,
-    local=None, nodal=None, remarks=(), reasons=(),
+    local=None, nodal=None, remarks=(), signs=(),
 ):  # fmt: skip
     ran = verdict is not Verdict.ERROR
     sizes = (8, 16, 32, 64) if local else (8,)
@@ -50,7 +51,7 @@ def _study(
         known=known,
         local=local or {},
         remarks=list(remarks),
-        reasons=list(reasons),
+        signs=[Sign(kind=kind, text=f"words on a {kind}") for kind in signs],
     )
 
 

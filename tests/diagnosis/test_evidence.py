@@ -2,10 +2,14 @@
 
 import pytest
 
+from laplace_verify.campaign.record import record_from_json, record_to_json
+from laplace_verify.cases import catalogue
 from laplace_verify.diagnosis import diagnose
 from laplace_verify.diagnosis.found_degree import found_degree
-from laplace_verify.diagnosis.signs import SIGNS
-from laplace_verify.measure.floors import named_floor
+from laplace_verify.diagnosis.signs import MEANINGS
+from laplace_verify.errors import RecordError
+from laplace_verify.measure.floors import floor_kind
+from laplace_verify.measure.study import study as run_study
 from laplace_verify.measure.verdict import Verdict
 from laplace_verify.principles import Check, check_principle
 from laplace_verify.solvers.samples import FAULTS, five_point
@@ -108,14 +112,13 @@ def test_higher_degrees_are_hints_where_something_fails(study, record):
 
 @pytest.mark.parametrize("relative", [1e-7, 1e-5, 1e-14])
 def test_every_named_floor_is_a_sign(study, record, relative):
-    remark = f"the error stays near 1: {named_floor(relative)}"
-    found = suspects(record, study("o", OPEN, {}, reasons=[remark]), study("p", PASS, {}))
+    found = suspects(record, study("o", OPEN, {}, signs=[floor_kind(relative)]), study("p", PASS, {}))
     assert "no case fails, remarked in 1 of the 2 cases" in found[0]
 
 
 def test_a_remark_where_nothing_fails_names_what_the_remarked_cases_share(study, record):
-    remark = "size 64: the L2 error 1e-2 is 30 times that of interpolating the exact solution"
-    remarked = [study(f"r{k}", PASS, {"Robin condition": True}, remarks=[remark]) for k in range(3)]
+    signs = ["large error constant"]
+    remarked = [study(f"r{k}", PASS, {"Robin condition": True}, signs=signs) for k in range(3)]
     first = suspects(record, *remarked, *(study(f"p{k}", PASS, {}) for k in range(6)))[0]
     assert first.startswith("The error constant is far above that of interpolation")
     assert first.endswith("Robin condition: all 3 remarked cases have it, none of the 6 others")
@@ -125,10 +128,9 @@ def test_a_remark_where_nothing_fails_names_what_the_remarked_cases_share(study,
 
 
 def test_an_iteration_that_stops_early_is_weighed_beside_failing_cases(study, record):
-    remark = "the iteration stops early: a tolerance of 1e-5 in place of 1e-3 changes the L2 error"
-    failing = [study(f"f{k}", FAIL, {}, observed=0.0, remarks=[remark]) for k in range(2)]
+    failing = [study(f"f{k}", FAIL, {}, observed=0.0, signs=["early stop"]) for k in range(2)]
     assert suspects(record, *failing, study("p", PASS, {}))[0].startswith("The iteration stops early")
-    assert not any(sign.cause for sign in SIGNS if "error constant" in sign.meaning)
+    assert not any(meaning.cause for meaning in MEANINGS if "large error constant" in meaning.kinds)
 
 
 def test_what_open_cases_share_is_said_where_nothing_fails(study, record):
@@ -150,3 +152,20 @@ def test_a_law_without_a_case_has_none(record):
     (suspect,) = diagnose(record([], checks=[broken]))
     assert suspect.case_id == ""
     assert suspect.text == "The law 'mean value' is broken; typical of the equation inside"
+
+
+def test_a_record_keeps_the_kind_of_its_remarks_and_one_without_kinds_is_read(study, record):
+    failing = study("f", FAIL, {}, observed=0.0, signs=["early stop"])
+    written = record_to_json(record([failing], checks=[Check(law="mean value", verdict=FAIL)]))
+    assert record_from_json(written).studies[0].signs == failing.signs
+    older = written.replace(b'"signs"', b'"unknown"').replace(b'"features"', b'"unknown"')
+    assert record_from_json(older).studies[0].signs == []
+    with pytest.raises(RecordError, match=r"studies\[.*\]\.signs\[.*\]\.kind"):
+        record_from_json(written.replace(b'"early stop"', b'"early bird"', 1))
+
+
+def test_remarks_of_a_study_have_a_kind():
+    found = run_study(FAULTS["values in single precision"].adapter, catalogue["rod-two-temperatures"])
+    (sign,) = [sign for sign in found.signs if sign.kind == "single-precision floor"][:1]
+    assert sign.text in [*found.reasons, *found.remarks]
+    assert run_study(five_point, catalogue["rod-two-temperatures"]).signs == []

@@ -63,7 +63,8 @@ def test_points_that_share_their_samples_get_a_remark_before_a_fault():
     assert judge_coverage([level(1.49)]) == ([], [])
     faults, remarks = judge_coverage([level(1.50)])
     assert not faults
-    assert "unless the points share their samples" in remarks[0]
+    assert "unless the points share their samples" in remarks[0].text
+    assert remarks[0].kind == "wrong standard errors"
     assert judge_coverage([level(10.82)])[0] == []
     assert len(judge_coverage([level(10.84)])[0]) == 1
     assert len(judge_coverage([level(np.nan)])[0]) == 1

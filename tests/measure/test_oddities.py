@@ -20,7 +20,8 @@ def test_uniform_refinement_counted_in_nodes_is_not_remarked():
 def test_unknowns_that_grow_slower_than_h_falls_are_remarked():
     levels = [level(n, 1 / n, 10 * n) for n in (8, 16, 32)]  # graded in one direction only
     _, remarks = oddities(levels, 2, "finite element")
-    assert "from size 8 to 16 h falls by 2, the unknowns say 1.41" in remarks[0]
+    assert "from size 8 to 16 h falls by 2, the unknowns say 1.41" in remarks[0].text
+    assert remarks[0].kind == "uneven refinement"
 
 
 @pytest.mark.parametrize(
@@ -31,7 +32,8 @@ def test_residuals_not_well_below_the_error_are_remarked(residual, remarked):
     _, remarks = oddities(levels)
     assert bool(remarks) is remarked
     if remarked:
-        assert "reported residual 2.0e-04 is not well below" in remarks[0]
+        assert "reported residual 2.0e-04 is not well below" in remarks[0].text
+        assert remarks[0].kind == "large residual"
 
 
 @pytest.mark.parametrize(("size", "remarked"), [(1e-15, False), (1e-8, True)])
