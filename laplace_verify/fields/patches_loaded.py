@@ -36,7 +36,8 @@ import numpy as np
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.contexts import FLOAT, Number
 from laplace_verify.errors import FieldError
-from laplace_verify.fields._end_gaps import TINY, logarithm_between
+from laplace_verify.fields._end_gaps import TINY, Gaps, gaps_to
+from laplace_verify.fields._prism_near import Distances, distances, face, face_slopes, solid_angle
 from laplace_verify.fields._square_gaps import square_gap
 from laplace_verify.fields.base import Field
 from laplace_verify.fields.complete_elliptic import cel
@@ -114,54 +115,33 @@ class LoadedRectangle(_Loaded):
         corners = ((a, b, 0.0), (c, b, 0.0), (c, d, 0.0), (a, d, 0.0))
         return tuple(Edge(start=corners[k], end=corners[(k + 1) % 4], exponent=self.jump) for k in range(4))
 
-    def _corners(self, ctx: Any, x: tuple[Any, ...]) -> tuple[list[Any], list[Any], Any, list[list[Any]]]:
+    def _corners(self, ctx: Any, x: tuple[Any, ...]) -> tuple[Gaps, Gaps, Any, Distances]:
         """Return X_i, Y_j, z, R_ij."""
-        xs = [-offset(ctx, x[0], v) for v in (self.lower[0], self.upper[0])]
-        ys = [-offset(ctx, x[1], v) for v in (self.lower[1], self.upper[1])]
-        z = x[2]
-        return xs, ys, z, [[ctx.hypot(ctx.hypot(p, q), z) for q in ys] for p in xs]
-
-    def _angle(self, ctx: Any, x: tuple[Any, ...]) -> Any:
-        """Return W."""
-        xs, ys, z, r = self._corners(ctx, x)
-        return sum(
-            (1 if i == j else -1) * ctx.atan2(xs[i] * ys[j], z * r[i][j]) for i in (0, 1) for j in (0, 1)
-        )
+        xs, ys = (gaps_to(ctx, *ends) for ends in zip(x[:2], self.lower, self.upper, strict=True))
+        return xs, ys, x[2], distances(ctx, xs, ys, x[2])
 
     def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:  # noqa: ARG002  # no cut
-        angle = self._angle(ctx, x)
-        if self.given == "value":
-            return angle / (2 * ctx.pi)
-        first, second = self._logarithms(ctx, x)
-        xs, ys, z, _ = self._corners(ctx, x)
-        total = xs[1] * first[1] - xs[0] * first[0] + ys[1] * second[1] - ys[0] * second[0] - z * angle
+        xs, ys, z, r = self._corners(ctx, x)
+        total = face(ctx, xs, ys, z) if self.given == "inflow" else solid_angle(ctx, xs, ys, z, r)
         return total / (2 * ctx.pi)
 
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:  # noqa: ARG002
         turn = 2 * ctx.pi
-        if self.given == "inflow":
-            first, second = self._logarithms(ctx, x)
-            return (first[0] - first[1]) / turn, (second[0] - second[1]) / turn, -self._angle(ctx, x) / turn
         xs, ys, z, r = self._corners(ctx, x)
-        first = [_slope(ctx, xs[i], z, ys, r[i]) for i in (0, 1)]
-        second = [_slope(ctx, ys[j], z, xs, [r[0][j], r[1][j]]) for j in (0, 1)]
+        if self.given == "inflow":
+            along = face_slopes(ctx, xs, ys, z, r)
+            return along[0] / turn, along[1] / turn, -solid_angle(ctx, xs, ys, z, r) / turn
+        first = [_slope(ctx, xs[i], z, ys, [r[i, 0], r[i, 1]]) for i in (0, 1)]
+        second = [_slope(ctx, ys[j], z, xs, [r[0, j], r[1, j]]) for j in (0, 1)]
         down = xs[1] * first[1] - xs[0] * first[0] + ys[1] * second[1] - ys[0] * second[0]
         return z * (first[0] - first[1]) / turn, z * (second[0] - second[1]) / turn, -down / turn
 
-    def _logarithms(self, ctx: Any, x: tuple[Any, ...]) -> tuple[list[Any], list[Any]]:
-        """Return asinh(Y_1/h) - asinh(Y_0/h), h = hypot(X, z), at X_0 and X_1; the same with x, y swapped."""
-        xs, ys, z, r = self._corners(ctx, x)
-        return (
-            [logarithm_between(ctx, xs[i], z, ys, r[i]) for i in (0, 1)],
-            [logarithm_between(ctx, ys[j], z, xs, [r[0][j], r[1][j]]) for j in (0, 1)],
-        )
 
-
-def _slope(ctx: Any, across: Any, z: Any, ends: list[Any], r: list[Any]) -> Any:
+def _slope(ctx: Any, across: Any, z: Any, ends: Gaps, r: list[Any]) -> Any:
     """Return (Y_1/R_1 - Y_0/R_0)/(X^2 + z^2), finite where both ends are on one side, beyond an edge."""
-    low, high = ends
+    low, high, length = ends
     if ctx is FLOAT or low * high > 0:
-        beside = (high - low) * (high + low) / (r[0] * r[1] * (high * r[0] + low * r[1]))
+        beside = length * (high + low) / (r[0] * r[1] * (high * r[0] + low * r[1]))
         if ctx is not FLOAT:
             return beside
     else:

@@ -1,18 +1,18 @@
 """The Newtonian potential of a homogeneous rectangular prism: u(x) = integral over the prism of dV/|x - xi|.
 
-With X_i = x_i - x and so on from the point to the corners, R = |(X, Y, Z)| and the sign +1 for the corner of
-three upper ends, turned with every lower end,
+With X_0, X_1 the offsets to the ends of an axis, and S_i the potential of a uniform layer on the face there,
 
-    u    =  sum +- [ X Y ln(Z + R) + Y Z ln(X + R) + Z X ln(Y + R)
-                     - X^2/2 atan(Y Z/(X R)) - Y^2/2 atan(Z X/(Y R)) - Z^2/2 atan(X Y/(Z R)) ]
-    u_x  = -sum +- [ Y ln(Z + R) + Z ln(Y + R) - X atan(Y Z/(X R)) ]
+    u    =  sum over the axes of (X_1 S_1 - X_0 S_0)/2,     u_x = S_0 - S_1
+    S    =  sum over the two axes of the face of (Y_1 l_1 - Y_0 l_0) - |X| W
 
-(MacMillan 1930, The Theory of the Potential, section 43; Nagy 1966, The gravitational attraction of a right
-rectangular prism, Geophysics 31, 362-371; both from memory, unchecked). Times G and the density it is the
-potential of gravity, and grad u the attraction. Outside u is harmonic; inside its Laplacian is -4 pi, so that
-points inside are refused. The logarithms are taken in differences over the two ends of an edge, which are
-finite on the prolongations of the edge. Far away the terms cancel: at a distance of n lengths the last n^3
-units are lost.
+with l the potential of an edge (`_end_gaps`), Y its distance in the plane of the face, and W the solid angle
+of the face (Gauss's theorem, and d u/d(size) = 2 u for homogeneous bodies; collected over the edges these are
+the corner terms of MacMillan 1930, The Theory of the Potential, section 43, and Nagy 1966, The gravitational
+attraction of a right rectangular prism, Geophysics 31, 362-371; both from memory, unchecked).
+
+Times G and the density, u is the potential of gravity, and grad u the attraction. Outside u is harmonic;
+inside its Laplacian is -4 pi, so that points inside are refused. Far away the terms cancel: in float64 the
+axes that a point is far from are integrated by Gauss's rule instead (`_prism_far`).
 """
 
 from __future__ import annotations
@@ -27,10 +27,12 @@ import numpy as np
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.contexts import FLOAT, Number
 from laplace_verify.errors import FieldError
-from laplace_verify.fields._end_gaps import logarithm_between
+from laplace_verify.fields._end_gaps import gaps_to
+from laplace_verify.fields._prism_far import by_distance
+from laplace_verify.fields._prism_near import solid
 from laplace_verify.fields.base import Field
 from laplace_verify.fields.edges import Edge
-from laplace_verify.fields.exact import Exact, exact_point, offset
+from laplace_verify.fields.exact import Exact, exact_point
 from laplace_verify.fields.motions import show_point
 from laplace_verify.fields.specs import registered
 
@@ -91,65 +93,16 @@ class Prism(Field):
         low, high = (np.array([float(c) for c in corner]) for corner in (self.lower, self.upper))
         return np.asarray(((points <= low) | (points >= high)).any(axis=1), dtype=np.bool_)
 
-    def _gaps(self, ctx: Any, x: tuple[Any, ...]) -> tuple[list[list[Any]], dict[tuple[int, ...], Any]]:
-        """Return the offsets of the ends along each axis, and the distances of the corners."""
-        gaps = [[-offset(ctx, x[k], end) for end in (self.lower[k], self.upper[k])] for k in range(3)]
-        distances = {
-            corner: ctx.hypot(ctx.hypot(gaps[0][corner[0]], gaps[1][corner[1]]), gaps[2][corner[2]])
-            for corner in product(ENDS, repeat=3)
-        }
-        return gaps, distances
-
     def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:  # noqa: ARG002  # no cut
-        gaps, distances = self._gaps(ctx, x)
-        total = 0
-        for axis in range(3):
-            first, second = (axis + 1) % 3, (axis + 2) % 3
-            for i, j in product(ENDS, ENDS):
-                sign = 1 if i == j else -1
-                lines = self._line(ctx, axis, (i, j), gaps, distances)
-                total = total + sign * gaps[first][i] * gaps[second][j] * lines
-            total = total - self._angles(ctx, axis, 1, gaps, distances) / 2
-        return total
+        return self._sums(ctx, x)[0]
 
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:  # noqa: ARG002
-        gaps, distances = self._gaps(ctx, x)
-        slopes = []
-        for axis in range(3):
-            first, second = (axis + 1) % 3, (axis + 2) % 3
-            total = -self._angles(ctx, axis, 0, gaps, distances)
-            for i, j in product(ENDS, ENDS):  # i counts the ends along `axis`
-                sign = 1 if i == j else -1
-                total = total + sign * gaps[first][j] * self._line(ctx, second, (i, j), gaps, distances)
-                total = total + sign * gaps[second][j] * self._line(ctx, first, (j, i), gaps, distances)
-            slopes.append(-total)
-        return tuple(slopes)
+        return self._sums(ctx, x)[1]
 
-    def _line(
-        self, ctx: Any, axis: int, ends: tuple[int, int], gaps: list[list[Any]], distances: dict[Any, Any]
-    ) -> Any:
-        """Return ln(Z + R) over the two ends along `axis`, at given ends of the next two axes."""
-        first, second = (axis + 1) % 3, (axis + 2) % 3
-        corner = [0, 0, 0]
-        corner[first], corner[second] = ends
-        r = []
-        for end in ENDS:
-            corner[axis] = end
-            r.append(distances[tuple(corner)])
-        return logarithm_between(ctx, gaps[first][ends[0]], gaps[second][ends[1]], gaps[axis], r)
-
-    def _angles(
-        self, ctx: Any, axis: int, power: int, gaps: list[list[Any]], distances: dict[Any, Any]
-    ) -> Any:
-        """Return sum +- X^(1 + power) atan(Y Z/(X R)) over the corners, X along `axis`."""
-        first, second = (axis + 1) % 3, (axis + 2) % 3
-        total = 0
-        for corner, r in distances.items():
-            sign = 1 if sum(corner) % 2 else -1
-            near, y, z = (gaps[k][corner[k]] for k in (axis, first, second))
-            size = np.abs(near) if ctx is FLOAT else abs(near)
-            total = total + sign * size * near**power * ctx.atan2(y * z, size * r)
-        return total
+    def _sums(self, ctx: Any, x: tuple[Any, ...]) -> tuple[Any, tuple[Any, ...]]:
+        """Return u and grad u."""
+        gaps = [gaps_to(ctx, *ends) for ends in zip(x, self.lower, self.upper, strict=True)]
+        return by_distance(gaps) if ctx is FLOAT else solid(ctx, gaps)
 
 
 def prism(lower: Iterable[Number], upper: Iterable[Number]) -> Prism:
