@@ -46,8 +46,9 @@ def patterns(failing: Sequence[Study]) -> list[Finding]:
         _pattern(
             failing,
             lambda study: any(_lost(order, 1.0) for order in short_norms(study).values()),
-            "lose one order. Typical of one-sided differences, of data taken half a cell away, of a closure "
-            "one order lower at the boundary, or of straight edges in place of curves",
+            "lose one order. Typical of one-sided differences, of data or values taken half a cell or a node "
+            "away, of a spacing with n - 1 or n + 1 in place of n, of a closure one order lower at the "
+            "boundary, or of straight edges in place of curves",
         ),
         _pattern(
             failing,

@@ -16,7 +16,7 @@ from laplace_verify.diagnosis.finding import Finding, case_list, counted
 from laplace_verify.diagnosis.shared import shared_features
 from laplace_verify.measure.floors import floor_kind
 from laplace_verify.measure.results import Study
-from laplace_verify.measure.signs import Sign, SignKind
+from laplace_verify.measure.signs import FloorKind, Sign, SignKind
 from laplace_verify.measure.verdict import Verdict
 
 __all__ = ["MEANINGS", "Meaning", "signs_among_failing", "signs_where_nothing_fails"]
@@ -25,6 +25,7 @@ _TELLING = 0.7  # score of a feature that is added to a sign
 _OPEN = 0.5  # weight of what open cases share
 _SMALL = 1e-4  # relative error of a promised polynomial that looks like a floor, not like a mistake of scale
 _SHORT_WEIGHT = 0.5
+_FLOORS: tuple[FloorKind, ...] = ("single-precision floor", "loose floor", "round-off floor")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -105,6 +106,7 @@ MEANINGS = (  # where two weigh the same, the first comes first
 
 def signs_among_failing(failing: Sequence[Study], passing: Sequence[Study]) -> list[Finding]:
     """Return the causes that the signs of failing studies name, and what those cases share."""
+    failing, passing = _one_floor(failing), _one_floor(passing)
     found = []
     for meaning in MEANINGS:
         showing = [study for study in failing if _first(study, meaning)] if meaning.cause else []
@@ -118,7 +120,7 @@ def signs_among_failing(failing: Sequence[Study], passing: Sequence[Study]) -> l
 
 def signs_where_nothing_fails(studies: Sequence[Study]) -> list[Finding]:
     """Return what signs tell where no study fails or breaks, and what open studies have in common."""
-    ran = [study for study in studies if study.levels]
+    ran = _one_floor([study for study in studies if study.levels])
     found = []
     for meaning in MEANINGS:
         showing = [study for study in ran if _first(study, meaning)]
@@ -186,7 +188,21 @@ def _shared(showing: Sequence[Study], others: Sequence[Study]) -> str:
 
 def _first(study: Study, meaning: Meaning) -> Sign | None:
     """Return the first sign of a study that has this meaning."""
-    return next((sign for sign in _signs(study) if sign.kind in meaning.kinds), None)
+    return next((sign for sign in study.signs if sign.kind in meaning.kinds), None)
+
+
+def _one_floor(studies: Sequence[Study]) -> list[Study]:
+    """Return the studies with the kind of floor that most of them have: one solver has one cause of floors.
+
+    Its size alone, which the kind is told by, changes with the condition of the problem.
+    """
+    signs = [_signs(study) for study in studies]
+    kinds = [next((sign.kind for sign in own if sign.kind in _FLOORS), None) for own in signs]
+    common = max(_FLOORS, key=kinds.count)
+    return [
+        replace(study, signs=[replace(s, kind=common) if s.kind in _FLOORS else s for s in own])
+        for study, own in zip(studies, signs, strict=True)
+    ]
 
 
 def _signs(study: Study) -> list[Sign]:
@@ -196,4 +212,4 @@ def _signs(study: Study) -> list[Sign]:
     miss = next((level.nodal for level in study.levels if level.nodal), 1.0)  # it grows with the size
     if not miss < _SMALL:
         return study.signs
-    return [*study.signs, Sign(kind=floor_kind(miss), text=f"polynomials are missed by {miss:.1e}")]
+    return [Sign(kind=floor_kind(miss), text=f"polynomials are missed by {miss:.1e}"), *study.signs]

@@ -8,6 +8,9 @@ strays from 1 depends on how far the points depend on one another, from chi^2 wi
 99.9 % for the whole study the answer is biased or its standard errors are too small, however the points
 depend: a fault. Beyond that of the former it is remarked.
 
+Where errors are covered on every level, their order is that of the standard errors, sum e^2 = R sum s^2, with
+next to no scatter. So a study whose few random errors leave the order open is settled by the stated ones.
+
 References
 ----------
 The chi-squared law of a sum of squared normal errors; Bonferroni's inequality over the levels: common
@@ -16,21 +19,25 @@ practice, no source.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
+from dataclasses import replace
 from typing import TYPE_CHECKING
 
 import numpy as np
 from scipy.stats import chi2
 
-from laplace_verify.measure.results import Coverage, Level
+from laplace_verify.measure.orders import line_order
+from laplace_verify.measure.results import Coverage, Level, Order
+from laplace_verify.measure.series import MINIMUM_LEVELS
 from laplace_verify.measure.signs import Sign
+from laplace_verify.measure.verdict import Verdict
 
 if TYPE_CHECKING:
     from laplace_verify.measure.exact import Exact
     from laplace_verify.measure.norms import Measured
     from laplace_verify.solvers import Answer
 
-__all__ = ["CONFIDENCE", "coverage_of", "judge_coverage"]
+__all__ = ["CONFIDENCE", "coverage_of", "judge_coverage", "settled_by_coverage"]
 
 CONFIDENCE = 0.999
 WIDTH = 2.0
@@ -54,6 +61,7 @@ def coverage_of(answer: Answer, exact: Exact, measured: Measured) -> Coverage | 
         points=len(errors),
         ratio=float((errors**2).sum() / (stated**2).sum()),
         covered=float(np.mean(np.abs(errors) <= WIDTH * stated)),
+        stated=float(np.sqrt(np.mean(stated**2))),
     )
 
 
@@ -85,6 +93,25 @@ def judge_coverage(levels: Sequence[Level]) -> tuple[list[Sign], list[Sign]]:
             "expected: the standard errors are too large"
         )
     return _signs(faults), _signs(remarks)
+
+
+def settled_by_coverage(orders: Mapping[str, Order], levels: Sequence[Level]) -> dict[str, Order]:
+    """Return the orders, L2 settled where it is open and the errors are covered on four levels or more."""
+    order, judged = orders.get("L2"), [level for level in levels if level.judged]
+    sizes = [level.coverage.stated if level.coverage else None for level in judged]
+    open_ = order is not None and order.decides and order.verdict is Verdict.INCONCLUSIVE
+    if order is None or not open_ or len(judged) < MINIMUM_LEVELS or None in sizes:
+        return dict(orders)
+    if any(judge_coverage(levels)) or not isinstance(order.expected, float | int):
+        return dict(orders)
+    stated = line_order([level.h for level in judged], sizes)
+    if stated is None or not stated >= order.expected - (order.tolerance or 0.0):
+        return dict(orders)
+    note = (
+        f"L2: expected {order.expected:.3g}: PASS; the errors scatter too much to tell, but lie within the "
+        f"standard errors on every level, and those fall at order {stated:.2f}"
+    )
+    return {**orders, "L2": replace(order, verdict=Verdict.PASS, finer=False, floor=None, note=note)}
 
 
 def _signs(texts: Sequence[str]) -> list[Sign]:

@@ -25,12 +25,14 @@ Feature: TypeAlias = bool | float | str | None
 class Coverage:
     """Errors against the standard errors a stochastic answer states, at `points` points.
 
-    `ratio` is sum e^2 / sum se^2, `covered` the share of points with |e| <= 2 se (95.4 % of normal errors).
+    `ratio` is sum e^2 / sum se^2, `covered` the share of points with |e| <= 2 se (95.4 % of normal errors),
+    `stated` the root mean square of the standard errors, in units of u.
     """
 
     points: int
     ratio: float
     covered: float
+    stated: float | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

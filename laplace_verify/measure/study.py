@@ -12,7 +12,7 @@ from typing import TYPE_CHECKING
 
 from laplace_verify.errors import AdapterError, history
 from laplace_verify.measure.accuracy import accuracy_remarks
-from laplace_verify.measure.coverage import judge_coverage
+from laplace_verify.measure.coverage import judge_coverage, settled_by_coverage
 from laplace_verify.measure.criteria import expectations, for_computed, smoothness_of
 from laplace_verify.measure.exactness import exactness_faults
 from laplace_verify.measure.expected import Expectation
@@ -176,13 +176,14 @@ class _Run:
         """Judge the levels so far."""
         mixed = sign_changes([result.signed for result in self.results if result.level.judged])
         computed = {norm for result in self.results for norm in result.computed}
-        return judge(
+        orders = judge(
             self.levels,
             for_computed(self.criteria, computed),
             kind=self.solver.kind,
             error_floor=self.solver.error_floor,
             mixed_signs=mixed,
         )
+        return settled_by_coverage(orders, self.levels)
 
     def judged(self) -> Study:
         """Return the study with its verdict."""

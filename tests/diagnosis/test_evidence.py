@@ -39,7 +39,7 @@ def test_a_slow_and_largest_error_next_to_a_condition_is_a_place(study, record):
     )
     assert texts[0] == (
         "The largest error lies next to pieces with a Robin condition in all 3 failing cases and falls at "
-        "order 1.0 there, 1.9 inside, 2.0 next to other pieces"
+        "order 1.0 there, at 1.9 inside, at 2.0 next to other pieces"
     )
 
 

@@ -4,8 +4,8 @@ import numpy as np
 import pytest
 
 import laplace_verify as lv
-from laplace_verify.measure import Level, Verdict
-from laplace_verify.measure.coverage import judge_coverage
+from laplace_verify.measure import Level, Order, Verdict
+from laplace_verify.measure.coverage import judge_coverage, settled_by_coverage
 from laplace_verify.measure.results import Coverage
 from laplace_verify.solvers.samples import walk_on_spheres
 
@@ -75,3 +75,45 @@ def test_points_that_share_their_samples_get_a_remark_before_a_fault():
 def test_walks_on_spheres_pass(case_id):
     found = lv.study(walk_on_spheres, lv.catalogue[case_id])
     assert found.verdict is Verdict.PASS, found.reasons
+
+
+def open_order(verdict=Verdict.INCONCLUSIVE):
+    order = Order(
+        observed=0.4, low=0.2, high=0.6, formal=0.5, expected=0.5, decides=True, tolerance=0.25,
+        verdict=verdict, finer=True,
+    )  # fmt: skip
+    return {"L2": order}
+
+
+def stating(order=0.5, ratio=1.0, count=4):
+    """Levels whose standard errors fall at an order and cover the errors as `ratio` says."""
+    return [
+        Level(size=n, h=1 / n, unknowns=1, seconds=0.0, errors={}, relative={},
+              coverage=Coverage(points=100, ratio=ratio, covered=0.95, stated=n**-order))
+        for n in SIZES[:count]
+    ]  # fmt: skip
+
+
+def test_covered_errors_whose_standard_errors_fall_settle_an_open_order():
+    settled = settled_by_coverage(open_order(), stating())["L2"]
+    assert settled.verdict is Verdict.PASS
+    assert "lie within the standard errors on every level, and those fall at order 0.50" in settled.note
+
+
+@pytest.mark.parametrize(
+    "levels",
+    [
+        stating(order=0.2),
+        stating(ratio=1.6),  # remarked: biased unless the points share their samples
+        stating(ratio=0.05),  # standard errors so large that they cover anything
+        stating(count=3),
+        [*stating()[:3], level(1.0)],  # written before the size of standard errors was kept
+        [],
+    ],
+)
+def test_standard_errors_that_do_not_fall_or_fit_leave_it_open(levels):
+    assert settled_by_coverage(open_order(), levels) == open_order()
+
+
+def test_a_failure_is_not_settled():
+    assert settled_by_coverage(open_order(Verdict.FAIL), stating()) == open_order(Verdict.FAIL)
