@@ -35,6 +35,8 @@ from laplace_verify.measure.verdict import Verdict
 
 __all__ = ["combine", "judge", "judge_norm"]
 
+GRADIENT_NORMS = ("H1-semi", "energy")
+
 
 def judge(
     levels: Sequence[Level],
@@ -96,14 +98,16 @@ def combine(orders: Mapping[str, Order]) -> tuple[Verdict, list[str], list[str]]
     """Return verdict, reasons and remarks: every deciding norm must pass and none may fail.
 
     A functional (flux, quantity) may fail a study but not leave it open: its signed error can pass through
-    zero.
+    zero. Nor does a gradient norm that is on course where L2 passes: with a mesh of size h and an
+    interpolant I, ||grad(u_h - u)|| <= ||grad(u - I u)|| + (C/h) ||u_h - I u|| by the inverse inequality
+    (Ciarlet 1978, theorem 3.2.6; from memory), so the order in L2 less one bounds it from below.
     """
     deciding = {norm: order for norm, order in orders.items() if order.decides and order.verdict is not None}
     remarks = [
         order.note for norm, order in orders.items()
         if norm not in deciding and (order.verdict is Verdict.FAIL or (order.decides and order.note))
     ]  # fmt: skip
-    for norm in [norm for norm in deciding if is_functional(norm)]:
+    for norm in [norm for norm in deciding if is_functional(norm) or _held_by_l2(norm, deciding)]:
         if deciding[norm].verdict is Verdict.INCONCLUSIVE:
             remarks.append(deciding.pop(norm).note)
     if not deciding:
@@ -115,6 +119,16 @@ def combine(orders: Mapping[str, Order]) -> tuple[Verdict, list[str], list[str]]
     if Verdict.INCONCLUSIVE in verdicts:
         return Verdict.INCONCLUSIVE, reasons, remarks
     return Verdict.PASS, reasons, remarks
+
+
+def _held_by_l2(norm: str, orders: Mapping[str, Order]) -> bool:
+    """Return whether a gradient norm is on course by its fit, and bounded by a pass in L2."""
+    order, l2 = orders[norm], orders.get("L2")
+    if norm not in GRADIENT_NORMS or l2 is None or l2.verdict is not Verdict.PASS:
+        return False
+    if order.observed is None or not isinstance(order.expected, float | int):
+        return False
+    return order.observed >= order.expected - smallest_loss(float(order.expected)) / 2
 
 
 def _fit(series: Series, expected: float | None, noise: float) -> OrderFit | None:

@@ -196,6 +196,43 @@ def test_one_failing_norm_fails_the_study_and_one_open_norm_leaves_it_open():
     assert combine({**good, **short})[0] is Verdict.INCONCLUSIVE
 
 
+def in_space(levels):
+    """Spacings of the default sizes in space."""
+    return 1.0 / np.array([6, 9, 13, 19, 28, 41][:levels])
+
+
+def elements(h, l2, h1):
+    """Judge errors of linear elements in both norms."""
+    errors = {"L2": l2, "H1-semi": h1}
+    orders = {}
+    for norm, rate in (("L2", 2.0), ("H1-semi", 1.0)):
+        criteria = expect(rate, norm, formal=rate)
+        orders |= judge(levels_of(h, errors[norm], norm), criteria, kind="finite element")
+    return orders
+
+
+def test_a_gradient_norm_on_course_does_not_leave_open_what_l2_decides():
+    h = in_space(5)
+    orders = elements(h, h**2, h)
+    assert orders["H1-semi"].verdict is Verdict.INCONCLUSIVE  # five sizes cannot tell half an order
+    verdict, _, remarks = combine(orders)
+    assert verdict is Verdict.PASS
+    assert any("H1-semi" in remark for remark in remarks)
+    assert combine(elements(h, h**1.5, h))[0] is Verdict.INCONCLUSIVE  # L2 itself is open
+    assert combine(elements(h, h**2, h**0.7))[0] is Verdict.INCONCLUSIVE  # below the line
+    assert combine(elements(h, h**2, h**0.1))[0] is Verdict.FAIL
+
+
+def test_half_an_order_lost_in_space_hardly_ever_passes():
+    rng, wrong, runs = np.random.default_rng(SEED), 0, 400
+    h = in_space(5)
+    for _ in range(runs):
+        bend = 1 + rng.uniform(-0.5, 1.0) * (h / h[0]) ** rng.choice([1.0, 2.0])
+        l2, h1 = (h**p * bend * np.exp(0.03 * rng.standard_normal(5)) for p in (1.5, 0.5))
+        wrong += combine(elements(h, l2, h1))[0] is Verdict.PASS
+    assert wrong <= 4  # at most one in a hundred, though L2 is only to see the loss of a whole order
+
+
 def test_an_open_functional_is_a_remark_and_a_failing_one_fails():
     good = judge(levels_of(halving(4), halving(4) ** 2), expect(2.0))
     name = "flux:top"
