@@ -24,6 +24,7 @@ from laplace_verify.measure.refusal import refusal_study, said
 from laplace_verify.measure.results import Level, Order, Study
 from laplace_verify.measure.running import LevelResult, Runner, check_falling
 from laplace_verify.measure.signs import Sign
+from laplace_verify.measure.smoothness import is_functional
 from laplace_verify.measure.tightening import iteration_remarks
 from laplace_verify.measure.verdict import Verdict
 from laplace_verify.problems import Case, Problem, as_case
@@ -141,17 +142,21 @@ class _Run:
         self.results = sorted([*self.results, result], key=lambda r: r.level.size)
 
     def refine(self, budget: float | None = None) -> None:
-        """Add sizes while the verdict is open, a finer level may settle it, and the work stays bounded.
+        """Add sizes while a norm that decides is open, a finer level may settle it, and the work is bounded.
 
         Every decision is taken once and goes into the journal.
         """
         rounds, spent = 0, 0.0
         while True:
             verdict, _, _ = combine(orders := self.orders())
-            open_norms = [norm for norm, order in orders.items() if order.decides and order.finer]
+            open_norms = [
+                norm
+                for norm, order in orders.items()
+                if order.decides and order.finer and not is_functional(norm)
+            ]
             left = None if budget is None else budget - spent
             further = further_sizes(self.levels, self.case.dim, rounds, self.case.regularity.scale, left)
-            if verdict is not Verdict.INCONCLUSIVE or not open_norms or not further:
+            if verdict is Verdict.FAIL or not open_norms or not further:
                 break
             rounds += 1
             ran, means = [level.size for level in self.levels], "" if left is None else f", {left:.3g} s left"
