@@ -116,6 +116,22 @@ def _box_convection() -> Definition:
 
 
 @family
+def _box_uneven_film() -> Definition:
+    return Definition(
+        title="Box under a film that varies over its faces",
+        solution="the solid harmonic of degree 3 and order 1 (Schmidt's norm), plus x + 2",
+        note="The coefficient varies in both directions of the top; a mean of it is not enough.",
+        reading="A brine tank in the open: wind cools one corner of its lid most.",
+        shape=TANK,
+        field=fields.solid(3, 1) + fields.affine((1, 0, 0), 2),
+        conditions={"top": robin("1 + 2*x + y"), "right": robin("2 - z"), "front": "neumann"},
+        conductivity=0.8,
+        quantities={"flux through the top": flux_through("top")},
+        sources=(SOLID,),
+    )
+
+
+@family
 def _box_tensor_diagonal() -> Definition:
     return Definition(
         title="Box of a layered material",

@@ -52,6 +52,21 @@ def _plate_convection_all_round() -> Definition:
 
 
 @family
+def _plate_uneven_film() -> Definition:
+    return Definition(
+        title="Plate under a film that varies along its edges",
+        solution="Re (z - 1/2)^3 + y + 2, z = x + i y",
+        note="The coefficient grows along the top and falls along the right side; a mean of it is not enough.",
+        reading="A chilled deck plate in a cross wind: the air film thins downstream.",
+        shape=PLATE,
+        field=fields.polynomial(3, centre=("1/2", 0)) + fields.affine((0, 1), 2),
+        conditions={"top": robin("1 + 2*x"), "right": robin("3 - 2*y"), "left": "neumann"},
+        conductivity=1.5,
+        quantities={"flux through the top": flux_through("top")},
+    )
+
+
+@family
 def _plate_tensor_diagonal() -> Definition:
     return Definition(
         title="Plate of a layered material",

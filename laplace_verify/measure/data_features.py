@@ -44,6 +44,7 @@ def data_features(case: Case, exact: Exact) -> dict[str, Feature]:
     transfers = [p.alpha(p.sample(SAMPLED)[0]) for p in case.problem.pieces if p.kind == "robin"]
     found["second normal derivative on a Neumann piece"] = any(_bends(p, exact, extent) for p in neumann)
     found["Robin coefficient other than 1"] = any(_any(alpha - 1.0) for alpha in transfers)
+    found["Robin coefficient that varies along a piece"] = any(_varies(alpha) for alpha in transfers)
     found["solution that an exchange of x and y changes"] = _asymmetric(case, exact)
     return found
 
