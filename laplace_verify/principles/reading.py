@@ -8,7 +8,7 @@ from laplace_verify.arrays import Array
 from laplace_verify.errors import AnswerError
 from laplace_verify.principles.law import NoValuesError, Trial
 
-__all__ = ["gradients_at", "seen", "values_at"]
+__all__ = ["gradients_at", "seen", "told", "values_at"]
 
 INSIDE, ON_PIECE = 300, 40  # points at which a function is asked
 WANTED = 200
@@ -46,6 +46,16 @@ def seen(trial: Trial, size: int) -> tuple[Array, Array]:
             "no value is left to look at: every point is nearer to the boundary than the clearance"
         )
     return points, values
+
+
+def told(point: Array) -> tuple[float, ...]:
+    """Return a point (d,) as it is told in a sentence: six decimals, no minus before a zero.
+
+    >>> told(np.array([1 / 3, -1e-9]))
+    (0.333333, 0.0)
+    """
+    place: tuple[float, ...] = tuple((np.round(point, 6) + 0.0).tolist())
+    return place
 
 
 def values_at(trial: Trial, size: int, points: Array) -> Array:
