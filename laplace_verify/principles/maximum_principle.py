@@ -36,17 +36,19 @@ from laplace_verify.principles.reading import seen
 from laplace_verify.problems import Piece
 from laplace_verify.solvers import Adapter
 
-__all__ = ["MAXIMUM_PRINCIPLE"]
+__all__ = ["MAXIMUM_PRINCIPLE", "dirichlet_needed", "kinked"]
 
 DEGREE = 3
 COARSE = {1: 1, 2: 481, 3: 33}  # samples a piece; in space a side of a square of them
 ZOOMS = 4
 LEVELS = st.integers(1, 9)  # off zero: values lost from the data then leave their range
 FACTORS = st.integers(-2, 2)
+KINKS = (0.5, 0.25, 0.75)
 NOT_ZERO = st.sampled_from((1, -1, 2, -2))
 
 
-def _inapplicable(solver: Adapter) -> str | None:
+def dirichlet_needed(solver: Adapter) -> str | None:
+    """Return why no problem with Dirichlet conditions all round and a number for K can be drawn, or None."""
     if "dirichlet" not in solver.conditions:
         return (
             f"{solver.name} does not declare Dirichlet conditions, which the law needs on the whole boundary"
@@ -57,18 +59,21 @@ def _inapplicable(solver: Adapter) -> str | None:
 def _problems(solver: Adapter) -> st.SearchStrategy[Posed]:
     smooth = strategies.posed(solver.dims, solver.shapes, {"dirichlet"}, degree=DEGREE)
     assumes_smooth = isinstance(solver.order, str) or solver.kind == "boundary element"
-    return smooth if assumes_smooth else smooth | _rough(strategies.drawable(solver.dims, solver.shapes))
+    return smooth if assumes_smooth else smooth | kinked(strategies.drawable(solver.dims, solver.shapes))
 
 
 @st.composite
-def _rough(draw: st.DrawFn, found: list[str]) -> Posed:
-    """Draw a shape with data that have kinks: m + sum of k_i |x_i - a_i|, a inside the bounding box."""
+def kinked(draw: st.DrawFn, found: list[str], places: tuple[float, ...] = KINKS) -> Posed:
+    """Draw a shape with data that have kinks: m + sum of k_i |x_i - a_i|, a inside the bounding box.
+
+    `places` are those of the kinks in parts of its sides.
+    """
     shape = draw(shape_of_kind(found))
     lower, upper = shape.bounding_box
     terms = [str(draw(LEVELS))]
     for axis, (low, high) in enumerate(zip(lower.tolist(), upper.tolist(), strict=True)):
         factor = draw(FACTORS if axis else NOT_ZERO)
-        place = low + draw(st.sampled_from((0.5, 0.25, 0.75))) * (high - low)
+        place = low + draw(st.sampled_from(places)) * (high - low)
         if factor:
             size = "" if abs(factor) == 1 else f"{abs(factor)} * "
             kink = f"{size}sqrt(({'xyz'[axis]} - {place:g})**2)"
@@ -127,7 +132,7 @@ def _judge(trial: Trial) -> Finding:
 MAXIMUM_PRINCIPLE = Law(
     name="maximum principle",
     statement="no value is larger than the largest, or smaller than the smallest, on the boundary",
-    inapplicable=_inapplicable,
+    inapplicable=dirichlet_needed,
     problems=_problems,
     judge=_judge,
 )

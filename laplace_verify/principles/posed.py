@@ -42,6 +42,8 @@ class Posed:
         Problems that are solved too, by the names that their answers have in code.
     note : str
         In what relation they stand, in words.
+    drawn : object
+        What the law that drew it needs to know again when it judges: a motion, a place on the boundary.
     """
 
     shape: Shape
@@ -51,6 +53,7 @@ class Posed:
     data: str = ""
     beside: Mapping[str, Posed] = dataclass_field(default_factory=dict)
     note: str = ""
+    drawn: Any = None
 
     def case(self) -> Case:
         """Return the case with its exact solution; for problems made from a field."""

@@ -40,20 +40,17 @@ def _moves(draw: st.DrawFn, drawn: st.SearchStrategy[Posed]) -> Posed:
     posed = draw(drawn)
     choices = motions_of(posed.shape)
     number = draw(st.integers(0, 59)) % len(choices)  # as many choices for every shape (see `_shapes`)
-    return replace(posed, beside={"moved": moved(posed, choices[number])}, note=f"; {choices[number].words}")
+    motion = choices[number]
+    return replace(posed, beside={"moved": moved(posed, motion)}, note=f"; {motion.words}", drawn=motion)
 
 
 def _problems(solver: Adapter) -> st.SearchStrategy[Posed]:
     return _moves(strategies.posed_for(solver, materials={"scalar"}, degree=DEGREE, waves=False))
 
 
-def _motion(trial: Trial) -> Motion:
-    """Return the motion that was drawn."""
-    return next(m for m in motions_of(trial.posed.shape) if trial.posed.note == f"; {m.words}")
-
-
 def _measure(trial: Trial, size: int) -> Measurement:
-    points, motion = deep_points(trial), _motion(trial)
+    points = deep_points(trial)
+    motion: Motion = trial.posed.drawn
     answer = trial.answer(size, points)
     if answer.kind == "cloud" and answer.points is not None:
         points = answer.points
