@@ -10,6 +10,11 @@ from laplace_verify.solvers import Adapter
 
 __all__ = ["example_code"]
 
+HELPERS = {
+    "slope_of_energy": "laplace_verify.principles.dirichlet_principle",
+    "sphere": "laplace_verify.principles.spheres",
+}
+
 
 def example_code(trial: Trial, size: int, body: tuple[str, ...]) -> str:
     """Return code that makes the problem and a function ``violation(solver)``.
@@ -28,8 +33,7 @@ def example_code(trial: Trial, size: int, body: tuple[str, ...]) -> str:
     text = "\n".join(body)
     imports = ["import numpy as np", ""] if "np." in text else []
     imports.append("import laplace_verify as lv")
-    if "sphere(" in text:
-        imports.append("from laplace_verify.principles.spheres import sphere")
+    imports += [f"from {module} import {name}" for name, module in HELPERS.items() if f"{name}(" in text]
     place = _importable(trial.solver)
     if place is None:
         call = f"# print(violation(...)) with the adapter {trial.solver.name!r}"
