@@ -6,7 +6,6 @@ the iteration adds to that of the discretisation, so an order can fall, or an er
 
 from __future__ import annotations
 
-import inspect
 from typing import TYPE_CHECKING
 
 from laplace_verify.measure.results import Level
@@ -16,7 +15,6 @@ if TYPE_CHECKING:
     from collections.abc import Sequence
 
     from laplace_verify.measure.running import Runner
-    from laplace_verify.solvers import Adapter
 
 __all__ = ["iteration_remarks"]
 
@@ -26,7 +24,7 @@ CHANGED = 0.1  # of the error: more than this was the iteration's
 
 def iteration_remarks(runner: Runner, levels: Sequence[Level]) -> list[Sign]:
     """Return a remark if a tolerance a hundred times tighter changes the L2 error of the finest size."""
-    tolerance = default_tolerance(runner.solver)
+    tolerance = runner.solver.default("tolerance")
     if tolerance is None or not levels or "L2" not in levels[-1].errors:
         return []
     last = levels[-1]
@@ -46,14 +44,3 @@ def iteration_remarks(runner: Runner, levels: Sequence[Level]) -> list[Sign]:
         f"changes the L2 error at size {last.size} from {error:.2e} to {again:.2e}"
     )
     return [Sign(kind="early stop", text=text)]
-
-
-def default_tolerance(solver: Adapter) -> float | None:
-    """Return the default of the solve function's parameter `tolerance`, None if it has none."""
-    try:
-        parameter = inspect.signature(solver.function).parameters.get("tolerance")
-    except (TypeError, ValueError):  # compiled functions may have no signature
-        return None
-    default = None if parameter is None else parameter.default
-    number = isinstance(default, int | float) and not isinstance(default, bool) and default > 0
-    return float(default) if number and isinstance(default, int | float) else None

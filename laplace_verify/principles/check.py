@@ -7,7 +7,7 @@ import numpy as np
 from laplace_verify.errors import AdapterError, ProblemError, nearest_names, told
 from laplace_verify.measure.features import problem_features
 from laplace_verify.measure.verdict import Verdict
-from laplace_verify.principles.driving import BrokenLawError, BrokenSolverError, Search
+from laplace_verify.principles.driving import EXAMPLES, BrokenLawError, BrokenSolverError, Search
 from laplace_verify.principles.example import example_code
 from laplace_verify.principles.law import Finding, Law, Trial
 from laplace_verify.principles.laws import LAWS
@@ -24,19 +24,19 @@ COMPARED = 50  # points at which two functions are compared
 SHOWN = 20  # points kept
 
 
-def check_principle(solver: Adapter, law: str, seed: int = 0) -> Check:
-    """Try a law of harmonic functions on ten problems drawn within a solver's declared capabilities.
+def check_principle(solver: Adapter, law: str, seed: int = 0, examples: int = EXAMPLES) -> Check:
+    """Try a law of harmonic functions on problems drawn within a solver's declared capabilities.
 
     Parameters
     ----------
     solver : Adapter
     law : str
-        A key of `LAWS`: "constants reproduced", "affine fields reproduced", "maximum principle", "mean
-        value", "superposition", "comparison", "symmetry", "conductivity scaling", "flux balance",
-        "repeatability" or "reciprocity".
+        A key of `LAWS`, such as "maximum principle".
     seed : int
-        Of the problems and of the points looked at; the same seed gives the same check. The solver is
-        called at most 160 times, and twice more before a law counts as broken.
+        Of the problems and of the points looked at; the same seed gives the same check.
+    examples : int
+        How many problems are drawn. The solver is called at most 16 times as often, shrinking included, and
+        twice more before a law counts as broken.
 
     Returns
     -------
@@ -47,7 +47,7 @@ def check_principle(solver: Adapter, law: str, seed: int = 0) -> Check:
     Raises
     ------
     ProblemError
-        If there is no such law; the nearest are named.
+        If there is no such law (the nearest are named), or `seed` or `examples` is no such number.
     AdapterError
         If `solver` is no adapter, or declares a discrete law that does not exist.
 
@@ -67,20 +67,22 @@ def check_principle(solver: Adapter, law: str, seed: int = 0) -> Check:
         )
     if isinstance(seed, bool) or not isinstance(seed, int | np.integer) or seed < 0:
         raise ProblemError(f"seed must be a whole number >= 0, got {seed!r}")
+    if isinstance(examples, bool) or not isinstance(examples, int | np.integer) or examples < 1:
+        raise ProblemError(f"examples must be a whole number >= 1, got {examples!r}")
     for declared in sorted(solver.discrete_laws):
         if declared not in LAWS:
             raise AdapterError(
                 f"discrete_laws: there is no law {declared!r}; {nearest_names(declared, LAWS)}"
             )
-    return _checked(LAWS[law], solver, int(seed))
+    return _checked(LAWS[law], solver, int(seed), int(examples))
 
 
-def _checked(law: Law, solver: Adapter, seed: int) -> Check:
+def _checked(law: Law, solver: Adapter, seed: int, examples: int) -> Check:
     """Return the check of a law that exists on an adapter."""
     reason = law.inapplicable(solver)
     if reason is not None:
         return Check(law=law.name, verdict=Verdict.NOT_APPLICABLE, reason=reason)
-    search = Search(law=law, solver=solver, seed=seed)
+    search = Search(law=law, solver=solver, seed=seed, examples=examples)
     failure = search.run()
     if isinstance(failure, BrokenSolverError):
         return _broke(law, failure)
@@ -125,7 +127,7 @@ def _failed(law: Law, failure: BrokenLawError) -> Check:
         )
     history = ", ".join(f"{v:.2g} with n = {n}" for n, v in zip(finding.sizes, finding.history, strict=True))
     limit = len(finding.sizes) > 1
-    rule = "it must vanish under refinement" if limit else "it must be round-off"
+    rule = finding.rule or ("it must vanish under refinement" if limit else "it must be round-off")
     # An iteration stopped early looks like a small constant; what it is allowed, only its author can say.
     small = not limit and finding.violation < SMALL
     mend = "; if the solver iterates to a tolerance, declare it as error_floor" if small else ""

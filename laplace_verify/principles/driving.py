@@ -1,9 +1,9 @@
 """Hypothesis at the wheel: draw problems, find one that breaks the law, shrink it, and say what was found.
 
-Everything is bounded and repeatable. `EXAMPLES` problems are drawn; a solver is called at most `CALLS`
-times, those of shrinking included; past that bound what is left to shrink counts as sound. Verdicts are
-remembered by the code of the problem, so that Hypothesis, which tries a failure again, meets the same
-verdict.
+Everything is bounded and repeatable. `EXAMPLES` problems are drawn unless asked otherwise; a solver is called
+at most `CALLS` times as often, shrinking included; past that bound what is left to shrink counts as sound.
+Verdicts are remembered by the code of the problem, so that Hypothesis, which tries a failure again, meets the
+same verdict.
 """
 
 from __future__ import annotations
@@ -24,10 +24,9 @@ from laplace_verify.solvers import Adapter, Refused
 __all__ = ["CALLS", "EXAMPLES", "BrokenLawError", "BrokenSolverError", "Failure", "Search"]
 
 EXAMPLES = 10
-CALLS = 160
+CALLS = 16  # a problem drawn
 
 SETTINGS = hypothesis.settings(
-    max_examples=EXAMPLES,
     derandomize=False,  # the seed decides, whatever profile is loaded
     database=None,
     deadline=None,
@@ -76,6 +75,7 @@ class Search:
     law: Law
     solver: Adapter
     seed: int
+    examples: int = EXAMPLES
     calls: int = 0
     tried: int = 0
     refused: int = 0
@@ -84,11 +84,16 @@ class Search:
     worst: Finding | None = None
     known: dict[str, Failure | None] = field(default_factory=dict)
 
+    @property
+    def most_calls(self) -> int:
+        """The bound on the number of solves."""
+        return CALLS * self.examples
+
     def run(self) -> Failure | None:
         """Return the simplest failure found, or None."""
 
         @hypothesis.seed(self.seed)
-        @SETTINGS
+        @hypothesis.settings(SETTINGS, max_examples=self.examples)
         @given(posed=self.law.problems(self.solver))
         def attempt(posed: Posed) -> None:
             failure = self._verdict(posed)
@@ -110,7 +115,7 @@ class Search:
         """Return what is wrong on a problem, from memory if it was tried before."""
         key = posed.code()
         if key not in self.known:
-            if self.calls >= CALLS:
+            if self.calls >= self.most_calls:
                 return None
             self.known[key] = self._tried(posed)
         return self.known[key]
@@ -139,7 +144,7 @@ class Search:
 
     def _count(self) -> None:
         """Count a call of the solver."""
-        if self.calls >= CALLS:
+        if self.calls >= self.most_calls:
             raise OutOfCallsError
         self.calls += 1
 

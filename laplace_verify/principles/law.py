@@ -51,6 +51,8 @@ class Finding:
     body : tuple of str
         Lines of Python that compute the violation from `problem`, `answer` and, if there is one, `exact`;
         the last is an expression.
+    rule : str
+        What the violation is held to, in words; by default round-off at one size, vanishing at several.
     """
 
     violation: float
@@ -60,6 +62,7 @@ class Finding:
     points: Array
     words: str
     body: tuple[str, ...]
+    rule: str = ""
 
     @property
     def broken(self) -> bool:

@@ -218,8 +218,12 @@ def posed_for(
 ) -> st.SearchStrategy[Posed]:
     """Return a strategy for problems as `posed` makes them, within the declared capabilities of a solver."""
     conductivity = solver.conductivity & set(materials)
-    kinds = solver.conditions & set(KINDS)
-    return posed(solver.dims, solver.shapes, kinds, conductivity, degree=degree, waves=waves)
+    return posed(solver.dims, solver.shapes, conditions_of(solver), conductivity, degree=degree, waves=waves)
+
+
+def conditions_of(solver: Adapter) -> frozenset[str]:
+    """Return the declared kinds of condition that can be drawn."""
+    return solver.conditions & set(KINDS)
 
 
 @st.composite

@@ -108,6 +108,21 @@ class Adapter:
         """Whether the solve function has a parameter of that name."""
         return keyword in _keywords(self.function)
 
+    def default(self, keyword: str) -> float | None:
+        """Return the positive number that is the default of a parameter of the solve function, else None.
+
+        >>> adapt(lambda problem, n, tolerance=1e-8: None, kind="other", order=2).default("tolerance")
+        1e-08
+        """
+        try:
+            parameter = inspect.signature(self.function).parameters.get(keyword)
+        except (TypeError, ValueError):  # compiled functions may have no signature
+            return None
+        value = None if parameter is None else parameter.default
+        if not isinstance(value, int | float) or isinstance(value, bool) or not value > 0:
+            return None
+        return float(value)
+
     def formal_order(self, norm: str) -> float | Exponential | None:
         """Return the declared order in a norm; None if the declaration promises none there."""
         return order_in(norm, self.kind, self.order)
@@ -149,13 +164,15 @@ class Adapter:
         *,
         tolerance: float | None = None,
         initial: Any = None,
+        duration: float | None = None,
         seed: int | None = None,
     ) -> Answer:
         """Solve, and check the answer against the problem.
 
-        `wanted` (points at which values will be asked for), `tolerance`, `initial` and `seed` reach the solve
-        function only if they are given and its signature has them. `initial` is a first guess: a function of
-        points (n, d) that returns values (n,). What the function prints goes to stderr.
+        `wanted` (points at which values will be asked for), `tolerance`, `initial`, `duration` and `seed`
+        reach the solve function only if they are given and its signature has them. `initial` is a first
+        guess: a function of points (n, d) that returns values (n,); `duration` is the time to march for, of
+        solvers that march in time to the steady state. What the function prints goes to stderr.
 
         Raises
         ------
@@ -163,7 +180,13 @@ class Adapter:
             If what comes back cannot be measured; names solver, problem and size. Exceptions of the solver
             itself pass through.
         """
-        offered = {"wanted": wanted, "tolerance": tolerance, "initial": initial, "seed": seed}
+        offered = {
+            "wanted": wanted,
+            "tolerance": tolerance,
+            "initial": initial,
+            "duration": duration,
+            "seed": seed,
+        }
         accepted = _keywords(self.function)
         keywords = {key: value for key, value in offered.items() if value is not None and key in accepted}
         try:

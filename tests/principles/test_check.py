@@ -11,7 +11,7 @@ import pytest
 from laplace_verify.errors import AdapterError, ProblemError
 from laplace_verify.measure.verdict import Verdict
 from laplace_verify.principles import LAWS, check_principle
-from laplace_verify.principles.driving import CALLS
+from laplace_verify.principles.driving import CALLS, EXAMPLES
 from laplace_verify.solvers import Answer, adapt
 from laplace_verify.solvers.samples import (
     FAULTS,
@@ -22,9 +22,10 @@ from laplace_verify.solvers.samples import (
     seven_point,
 )
 
+NOT_FOR_ALL = ("Dirichlet principle", "tighter tolerance", "steady state")  # they ask for kinds of solver
 SOUND = {"five": five_point, "p1": p1_element, "chebyshev": chebyshev, "sources": fundamental_solutions}
 
-CONSTANTS, AFFINE, MAXIMUM, MEAN, *_ = LAWS
+CONSTANTS, AFFINE, MAXIMUM, _, MEAN, *_ = LAWS
 FIRST_FOUR = (CONSTANTS, AFFINE, MAXIMUM, MEAN)
 
 # Which of the first four laws catch which fault of finite differences, and why the others cannot.
@@ -95,6 +96,7 @@ def test_laws_come_in_a_fixed_order():
         "constants reproduced",
         "affine fields reproduced",
         "maximum principle",
+        "no interior extremum",
         "mean value",
         "superposition",
         "comparison",
@@ -103,6 +105,11 @@ def test_laws_come_in_a_fixed_order():
         "flux balance",
         "repeatability",
         "reciprocity",
+        "largest gradient on the boundary",
+        "slope at a boundary extremum",
+        "Dirichlet principle",
+        "tighter tolerance",
+        "steady state",
     ]
     assert all(law.name == name and law.statement for name, law in LAWS.items())
 
@@ -111,6 +118,9 @@ def test_laws_come_in_a_fixed_order():
 @pytest.mark.parametrize("name", SOUND)
 def test_sound_solvers_keep_every_law(name, law):
     check = check_principle(SOUND[name], law, seed=5)
+    if check.verdict is Verdict.NOT_APPLICABLE:
+        assert law in NOT_FOR_ALL
+        return
     assert check.verdict is Verdict.PASS, check.reason
     assert 0.0 <= check.violation <= check.tolerance
     assert check.example == ""
@@ -123,7 +133,8 @@ def test_sound_solvers_keep_every_law(name, law):
 def test_sound_solvers_raise_no_false_alarm_on_any_seed(name, seed):
     for law in LAWS:
         check = check_principle(SOUND[name], law, seed=seed)
-        assert check.verdict is Verdict.PASS, check.reason
+        assert check.verdict is Verdict.PASS or law in NOT_FOR_ALL, check.reason
+        assert check.verdict in (Verdict.PASS, Verdict.NOT_APPLICABLE), check.reason
 
 
 @pytest.mark.long
@@ -131,7 +142,7 @@ def test_sound_solvers_raise_no_false_alarm_on_any_seed(name, seed):
 @pytest.mark.parametrize("seed", range(4))
 def test_the_seven_point_sample_keeps_every_law(law, seed):
     check = check_principle(seven_point, law, seed=seed)
-    assert check.verdict is Verdict.PASS, check.reason
+    assert check.verdict is (Verdict.NOT_APPLICABLE if law in NOT_FOR_ALL else Verdict.PASS), check.reason
 
 
 @pytest.mark.long
@@ -318,7 +329,7 @@ def test_the_number_of_solver_calls_is_bounded(twins):
     check = check_principle(replace(twins["adds a constant"], function=counted), "maximum principle")
     assert check.verdict is Verdict.FAIL
     assert "the data lie between" in check.reason
-    assert len(calls) <= CALLS + 2  # two more to see whether it repeats itself
+    assert len(calls) <= CALLS * EXAMPLES + 2  # two more to see whether it repeats itself
 
 
 def _check_in_child(queue):
