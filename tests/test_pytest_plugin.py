@@ -76,7 +76,8 @@ def test_every_verdict_becomes_what_pytest_calls_it(run, pytester):
 
 def test_laws_are_items_too(run):
     result = run(LAWS, "-v")
-    result.assert_outcomes(passed=len(PRINCIPLES))
+    # finite differences minimise no energy, and this sample takes neither tolerance nor duration
+    result.assert_outcomes(passed=len(PRINCIPLES) - 3, skipped=3)
     result.stdout.fnmatch_lines(["*maximum-principle*PASSED*"])
 
 
