@@ -83,6 +83,9 @@ class CornerPowers(Field):
         as it stands.
     trust
         Basis of that radius, see `Enclosure`.
+    flux_radius
+        Decimal string: bound for the error of the integral of n . grad u over any side of the polygon, with
+        the same basis; "" if none is known.
     """
 
     precise: Expansion
@@ -90,6 +93,7 @@ class CornerPowers(Field):
     vertices: tuple[tuple[Exact, ...], ...] = ()
     radius: str = "0"
     trust: Basis = "closed form"
+    flux_radius: str = ""
 
     def __post_init__(self) -> None:
         """Check every parameter."""
@@ -106,6 +110,8 @@ class CornerPowers(Field):
         radius = exact(numeral(self.radius, "radius"), "radius")
         if not (radius == 0 or radius >= SMALLEST_RADIUS):
             raise FieldError(f"radius must be >= 0, and at least 1e-300 if not 0, got {self.radius!r}")
+        if self.flux_radius and not exact(numeral(self.flux_radius, "flux_radius"), "flux_radius") >= 0:
+            raise FieldError(f"flux_radius must be >= 0, got {self.flux_radius!r}")
         if self.trust not in BASES:
             raise FieldError(f"trust must be one of {', '.join(BASES)}, got {self.trust!r}")
 
@@ -204,7 +210,8 @@ class CornerPowers(Field):
         """
         trust: Basis = self.trust if not self.fit_error else "uncertified"
         swift = tuple(part._replace(series=_conjugate(part.series)) for part in self.swift)
-        return dataclasses.replace(self, precise=_conjugate(self.precise), swift=swift, trust=trust)
+        series = _conjugate(self.precise)
+        return dataclasses.replace(self, precise=series, swift=swift, trust=trust, flux_radius="")
 
 
 def corner_powers(

@@ -34,7 +34,7 @@ from scipy.optimize import linprog
 from laplace_verify.errors import ProblemError
 from laplace_verify.references._corner_rows import DATA_DEGREE, Rows, Terms, chebyshev, check_degree
 
-__all__ = ["Bound", "error_bound"]
+__all__ = ["UP", "Bound", "error_bound", "largest_in_disc"]
 
 RADII = (1.2, 1.4, 1.7, 2.0, 2.5, 3.0, 4.0, 5.0, 6.5, 8.0, 10.0, 13.0)  # rho
 CLEAR = 0.9  # largest R in units of the distance to a corner
@@ -46,10 +46,11 @@ UP = Context(prec=2, rounding=ROUND_CEILING)
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Bound:
-    """The radius as a decimal string, rounded up, and its basis."""
+    """The radius as a decimal string, rounded up, and its basis; the residuals on the two kinds of sides."""
 
     radius: str
     basis: Literal["maximum-principle bound", "uncertified"]
+    residuals: dict[str, Decimal]
 
 
 class _Panel(NamedTuple):
@@ -90,7 +91,7 @@ def error_bound(rows: Rows, terms: Terms, texts: list[str], target: float) -> Bo
     if needs:
         highest = comparison(terms, needs)
         total += worst["neumann"] * Decimal(float(highest) * SAFE)
-    return Bound(radius=str(UP.create_decimal(total)), basis="maximum-principle bound")
+    return Bound(radius=str(UP.create_decimal(total)), basis="maximum-principle bound", residuals=worst)
 
 
 def _on_side(
@@ -151,7 +152,7 @@ def _degree(
     best: tuple[int, float] | None = None
     for rho in RADII:
         reach = half * (rho + 1 / rho) / 2 * SAFE
-        bound = _largest(terms, sizes, side, middle, reach)
+        bound = largest_in_disc(terms, sizes, side, middle, reach)
         if bound is None:
             break
         bound *= 2 / (rho - 1)
@@ -161,7 +162,7 @@ def _degree(
     return best
 
 
-def _largest(terms: Terms, sizes: list[float], side: int, middle: Any, reach: float) -> float | None:
+def largest_in_disc(terms: Terms, sizes: list[float], side: int, middle: Any, reach: float) -> float | None:
     """Return a bound of the sum of all terms in a disc, None if another corner is too near.
 
     Terms of a side's own corners are exactly zero (powers) or polynomials of low degree (logarithms) on it.

@@ -15,7 +15,7 @@ memory, unchecked). All of it is done in whole numbers, so that every machine fi
 Terms of a close fit may be 1e14 times as large as u and cancel, so that float64 evaluates sums about many
 points instead (`local_fit`). Those of a coarse fit are small enough for float64 as they are.
 
-The error bound does not depend on how the coefficients were found: see `corner_bound`.
+The error bounds do not depend on how the coefficients were found: see `corner_bound`, `corner_flux_bound`.
 """
 
 from __future__ import annotations
@@ -31,6 +31,7 @@ from laplace_verify.fields.exact import Exact, exact_point
 from laplace_verify.references._corner_rows import Rows, Terms, chebyshev
 from laplace_verify.references._whole_numbers import gram, least_squares
 from laplace_verify.references.corner_bound import error_bound
+from laplace_verify.references.corner_flux_bound import flux_bound
 from laplace_verify.references.local_fit import local_sums
 
 __all__ = ["CornerFit", "CornerTerms", "SideData", "fit_corners"]
@@ -175,6 +176,7 @@ def fit_corners(fit: CornerFit) -> CornerPowers:
         vertices=terms.vertices,
         radius=bound.radius,
         trust=bound.basis,
+        flux_radius=flux_bound(terms, texts, bound),
     )
 
 

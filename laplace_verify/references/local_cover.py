@@ -21,7 +21,7 @@ import numpy as np
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.geometry import Polygon
 
-__all__ = ["Spot", "cover"]
+__all__ = ["Spot", "clear", "cover", "opening", "vertex_reach"]
 
 HALF = 0.5  # reach in units of the distance to the next singular point
 ALONG = 48  # points of a side that must be covered
@@ -57,11 +57,16 @@ def cover(vertices: tuple[Exact2, ...]) -> list[Spot]:
     unit = Fraction(10) ** math.floor(math.log10(np.ptp(corners, axis=0).max()) - 4)
     spots = []
     for k in range(count):
-        reach = min(HALF * _next_vertex(corners, corners[k : k + 1])[0], _clear(corners, k, corners[k]))
+        reach = vertex_reach(corners, k)
         spots.append(Spot(apex=vertices[k], reach=_rounded(reach, unit), sides=(k, (k - 1) % count)))
     for side in range(count):
         spots += _along(vertices, corners, side, unit, spots)
     return spots + _inside(corners, unit, spots)
+
+
+def vertex_reach(corners: Array, k: int) -> float:
+    """Return half the distance from a vertex to the next one, less if its sector would leave the polygon."""
+    return min(HALF * float(_next_vertex(corners, corners[k : k + 1])[0]), clear(corners, k, corners[k]))
 
 
 def _along(
@@ -73,7 +78,7 @@ def _along(
     exact = [(a + (c - a) * i / ALONG, b + (d - b) * i / ALONG) for i in range(1, ALONG)]
     points = np.array([[float(x), float(y)] for x, y in exact])
     near = HALF * _next_vertex(corners, points)
-    reaches = [_rounded(min(n, _clear(corners, side, p)), unit) for n, p in zip(near, points, strict=True)]
+    reaches = [_rounded(min(n, clear(corners, side, p)), unit) for n, p in zip(near, points, strict=True)]
     left = np.ones(len(points), dtype=bool)
     for end in (side, (side + 1) % count):
         left &= _distance(points, corners[end]) > LENS * float(spots[end].reach)
@@ -121,7 +126,7 @@ def _within(corners: Array, spot: Spot, sides: tuple[int, int], points: Array) -
     """Return which points the sector of a spot between two sides holds."""
     apex = np.array([float(c) for c in spot.apex])
     heights = [_heights(corners, side, points) for side in sides]
-    turn = _turn(corners, *sides)
+    turn = opening(corners, *sides)
     if turn > math.pi * SLACK:
         inside = (heights[0] > 0) | (heights[1] > 0)
     else:
@@ -132,7 +137,7 @@ def _within(corners: Array, spot: Spot, sides: tuple[int, int], points: Array) -
     return within
 
 
-def _turn(corners: Array, first: int, second: int) -> float:
+def opening(corners: Array, first: int, second: int) -> float:
     """Return the opening of a sector."""
     if first == second:
         return math.pi
@@ -158,7 +163,7 @@ def _next_vertex(corners: Array, points: Array) -> Array:
     return nearest
 
 
-def _clear(corners: Array, side: int, apex: Array) -> float:
+def clear(corners: Array, side: int, apex: Array) -> float:
     """Return the distance from a point of a side (or its start) to what other sides have above that side.
 
     What lies below the side cannot cut a half-disc on it; at a vertex that is not convex every side counts.
@@ -167,7 +172,7 @@ def _clear(corners: Array, side: int, apex: Array) -> float:
     vertex = bool((apex == corners[side]).all())
     own = {side, (side - 1) % count} if vertex else {side}
     bounds = own
-    if vertex and _turn(corners, side, (side - 1) % count) > math.pi * SLACK:
+    if vertex and opening(corners, side, (side - 1) % count) > math.pi * SLACK:
         bounds = set()
     least = math.inf
     for k in set(range(count)) - own:

@@ -2,10 +2,11 @@
 
 A value is that of the field at the decimals its point is written with, with the field's own radius and basis.
 A flux density along a coordinate axis is K times a component of the gradient, an exit gradient minus one. The
-flux through a curve in the plane is a rise of the stream function (`quantity_streams`). Other fluxes,
-energies, uplifts and added masses are integrated (`quantity_integrals`). Quantities in closed form have their
-digits already; what is left keeps the digits that quadrature in float64 confirms: fluxes of fitted fields,
-whose errors only their values have a bound for.
+flux through a curve in the plane is a rise of the stream function (`quantity_streams`), that through a face
+of a box with constant faces a series (`quantity_series`), that through a face of a homogeneous field an
+integral around its rim (`quantity_rims`). Other fluxes, energies, uplifts and added masses are integrated
+(`quantity_integrals`). Quantities in closed form have their digits already; what is left, if anything, keeps
+the digits that quadrature in float64 confirms.
 """
 
 from __future__ import annotations
@@ -20,6 +21,8 @@ from laplace_verify.problems import Case, Quantity, StoredNumber
 from laplace_verify.problems.closed_forms import DIGITS, in_digits
 from laplace_verify.problems.stored import BASES
 from laplace_verify.references.quantity_integrals import integral_digits
+from laplace_verify.references.quantity_rims import flux_by_rim
+from laplace_verify.references.quantity_series import flux_by_series
 from laplace_verify.references.quantity_streams import flux_by_streams
 
 __all__ = ["with_quantity_digits"]
@@ -69,7 +72,7 @@ def _digits(case: Case, quantity: Quantity) -> StoredNumber | None:
         "value": (_value,),
         "flux density": (_flux_density,),
         "exit gradient": (_exit_gradient,),
-        "flux": (flux_by_streams, integral_digits),
+        "flux": (flux_by_streams, flux_by_series, flux_by_rim, integral_digits),
     }
     for rule in rules.get(quantity.kind, (integral_digits,)):
         try:

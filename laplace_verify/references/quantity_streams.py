@@ -7,8 +7,9 @@ With the region on the left of travel from a to b, and v the conjugate of u,
     u(x) = w(K^(-1/2) x):       integral of n . K grad u ds = sqrt(det K) times the flux of w between the
                                 images of a and b: K^(1/2) J = sqrt(det K) J K^(-1/2), J = ((0, 1), (-1, 0))
 
-(derived here). The angle that a curve sweeps about a source is that of its chord plus whole turns; a straight
-side has none. On a curved one a sum that differs from quadrature is left to others.
+(derived here). Of a fit it is the rise of the fit's own stream function, with the radius that the fit has for
+it (`corner_flux_bound`). The angle that a curve sweeps about a source is that of its chord plus whole turns;
+a straight side has none. On a curved one a sum that differs from quadrature is left to others.
 """
 
 from __future__ import annotations
@@ -18,8 +19,10 @@ from typing import Any
 import mpmath
 import numpy as np
 
-from laplace_verify.fields import Field
+from laplace_verify.errors import FieldError
+from laplace_verify.fields import CornerPowers, Field
 from laplace_verify.fields.combinations import Combination
+from laplace_verify.fields.exact import exact
 from laplace_verify.fields.sources import LogSource
 from laplace_verify.fields.stretched import Stretched
 from laplace_verify.problems import Case, Quantity, StoredNumber
@@ -42,7 +45,7 @@ def flux_by_streams(case: Case, quantity: Quantity) -> StoredNumber | None:
         If the field has no conjugate in closed form, or no value at an end.
     """
     problem, field = case.problem, case.exact
-    if problem.dim != 2 or problem.coordinates != "cartesian" or field.fit_error:
+    if problem.dim != 2 or problem.coordinates != "cartesian":
         return None
     with mpmath.workdps(WORKING):
         piece = exact_piece(problem.pieces[str(quantity.where)].boundary)
@@ -81,8 +84,26 @@ def _rise(field: Field, ends: list[tuple[Any, ...]]) -> tuple[Any, Any]:
         angle = mpmath.atan2(a * d - b * c, a * c + b * d)
         return strength * angle, abs(strength) * mpmath.mpf(10) ** -ASKED
     stream = field.conjugate()
+    if field.fit_error:
+        return stream.formula_at(ends[1], ASKED) - stream.formula_at(ends[0], ASKED), _error(field, ends)
     (start, low, _), (stop, high, _) = (stream.enclosure(end, ASKED) for end in ends)
     return stop - start, low + high
+
+
+def _error(field: Field, ends: list[tuple[Any, ...]]) -> Any:
+    """Return the bound that a fit knows for the flux through a side.
+
+    Raises
+    ------
+    FieldError
+        If it knows none, or the ends are not those of a side.
+    """
+    if isinstance(field, CornerPowers) and field.flux_radius:
+        vertices = [tuple(exact(c, "vertex") for c in vertex) for vertex in field.vertices]
+        sides = zip(vertices, (*vertices[1:], vertices[0]), strict=True)
+        if any(ends == list(side) for side in sides):
+            return mpmath.mpf(field.flux_radius)
+    raise FieldError(f"{field.formula} has no bound for the flux from {ends[0]} to {ends[1]}")
 
 
 def _unstretched(

@@ -1,12 +1,14 @@
-"""The stored corner fits: current, complete, refused when damaged; one is made again, byte for byte."""
+"""The stored corner fits: current, complete, refused when damaged; some are made again, byte for byte."""
 
 import json
 
 import pytest
 
 from laplace_verify.cases import corner_fits
+from laplace_verify.cases.catalogue import catalogue
 from laplace_verify.cases.corner_fits import FITS, fitted, make_fit, stale_fits
 from laplace_verify.errors import RecordError
+from laplace_verify.references.quantity_digits import with_quantity_digits
 
 
 def test_no_file_is_stale():
@@ -19,6 +21,16 @@ def test_error_is_bounded_by_the_maximum_principle(name):
     assert field.basis == "maximum-principle bound"
     assert 0 < field.fit_error < 1e-36
     assert field.most_digits >= 36
+
+
+@pytest.mark.parametrize("name", FITS)
+def test_fluxes_of_the_case_have_the_digits_of_the_fit(name):
+    case = with_quantity_digits(catalogue[name])
+    (flux,) = [q for q in case.quantities.values() if q.kind == "flux"]
+    assert flux.digits.basis == "maximum-principle bound"
+    # the bound of a flux is some hundred times that of the values; 1e-50 is the rounding to fifty digits
+    assert float(flux.digits.radius) < 2000 * fitted(name).fit_error + 3e-50
+    assert abs(float(flux.digits.value) - flux.value) <= flux.radius
 
 
 @pytest.mark.slow

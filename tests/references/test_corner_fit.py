@@ -11,6 +11,7 @@ from laplace_verify.references import _whole_numbers as whole_numbers
 from laplace_verify.references._corner_rows import Rows, chebyshev
 from laplace_verify.references.corner_bound import comparison, error_bound
 from laplace_verify.references.corner_fit import _terms
+from laplace_verify.references.corner_flux_bound import flux_bound
 
 COLD, INSULATED = SideData(), SideData(kind="neumann")
 L_VERTICES = (("0", "0"), ("1", "0"), ("1", "1"), ("-1", "1"), ("-1", "-1"), ("0", "-1"))
@@ -101,7 +102,9 @@ def test_a_spoilt_coefficient_shows_in_the_bound():
     again = error_bound(rows, terms, flat, 1e-10)
     assert float(again.radius) == pytest.approx(float(good.fit_error), rel=0.05)  # rounded up to two digits
     spoilt = [*flat[:-1], str(float(flat[-1]) + 1e-3)]
-    assert 1e-5 < float(error_bound(rows, terms, spoilt, 1e-10).radius) < 1e-2
+    wrong = error_bound(rows, terms, spoilt, 1e-10)
+    assert 1e-5 < float(wrong.radius) < 1e-2
+    assert float(flux_bound(terms, spoilt, wrong)) > 100 * float(good.flux_radius)
 
 
 def test_bound_is_not_below_a_dense_sample_of_the_residual():
@@ -113,6 +116,44 @@ def test_bound_is_not_below_a_dense_sample_of_the_residual():
         points = a + (b - a) * t
         worst = max(worst, np.abs(fit.value(points) - points[:, 0] ** 2).max())
     assert worst <= float(fit.fit_error) <= 2.5 * worst
+
+
+def fluxes(fit, sides):
+    """Fluxes of a fit through sides, as rises of its stream function."""
+    stream = fit.conjugate()
+    ends = [(fit.vertices[k], fit.vertices[(k + 1) % len(fit.vertices)]) for k in sides]
+    return [float(stream.formula_at(b, 20) - stream.formula_at(a, 20)) for a, b in ends]
+
+
+def test_bound_of_the_fluxes_holds_where_the_solution_is_known():
+    """u = x^3 - 3 x y^2 + y, stream function 3 x^2 y - y^3 - x; a fit of degree 2 misses its fluxes."""
+    fit = fit_corners(l_shape(0, 2, data="x**3 - 3*x*y**2 + y"))
+    stream = [3 * x**2 * y - y**3 - x for x, y in fit.vertices]
+    exact = np.diff([*stream, stream[0]])
+    errors = np.abs(np.array(fluxes(fit, range(6))) - exact.astype(float))
+    assert 0.1 < errors.max() <= float(fit.flux_radius) < 100 * errors.max()
+
+
+def test_bound_of_the_fluxes_holds_beside_an_insulated_side():
+    """u = x^2 - y^2 - 1, stream function 2 x y: no flux through the left half of the bottom."""
+    fit = fit_corners(change_fit(0, 1, top="x**2 - y**2 - 1"))
+    exact = np.diff([float(2 * x * y) for x, y in (*fit.vertices, fit.vertices[0])])
+    errors = np.abs(np.array(fluxes(fit, range(5))) - exact)
+    assert 0.05 < errors.max() <= float(fit.flux_radius) < 200 * errors.max()
+
+
+def test_fluxes_of_a_fit_whose_data_jump_have_no_bound():
+    fit = CornerFit(
+        vertices=L_VERTICES,
+        sides=(COLD, COLD, SideData(data="1"), COLD, COLD, COLD),
+        corners=(CornerTerms(vertex=0, powers=8),),
+        degree=8,
+        digits=6,
+        density=20,
+    )
+    found = fit_corners(fit)
+    assert found.fit_error > 0.4
+    assert found.flux_radius == ""
 
 
 @pytest.mark.slow
