@@ -13,6 +13,7 @@ from __future__ import annotations
 
 import itertools
 import math
+from bisect import bisect_right
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from fractions import Fraction
@@ -208,6 +209,12 @@ class Continuation:
         pieces = zip(self.rows, self.breaks, self.breaks[1:], strict=False)
         total = sum(c * (b - a) ** (k + 1) / (k + 1) for row, a, b in pieces for k, c in enumerate(row))
         return Fraction(total) / (self.breaks[-1] - self.breaks[0])
+
+    def powers(self, c: Fraction) -> list[float]:
+        """Return the data in powers of s - c, those just above c, or below if c is the upper end."""
+        k = max(bisect_right(self.breaks, c, hi=len(self.rows)) - 1, 0)
+        derivatives = _derivatives(self.rows[k], c - self.breaks[k], len(self.rows[k]))
+        return [float(value / math.factorial(p)) for p, value in enumerate(derivatives)]
 
     def images(self, low: Fraction, high: Fraction) -> list[tuple[Fraction, tuple[Fraction, ...]]]:
         """Return all places of the continuation in [low, high] with their jumps, in rising order.

@@ -10,16 +10,20 @@ from abc import abstractmethod
 from collections.abc import Iterable
 from dataclasses import dataclass
 from fractions import Fraction
+from functools import lru_cache
 from typing import Any
 
 import numpy as np
 
 from laplace_verify.arrays import Array, BoolArray, between
-from laplace_verify.contexts import Number
+from laplace_verify.contexts import FLOAT, Number
 from laplace_verify.errors import FieldError, nearest_names
 from laplace_verify.fields.base import Field
 from laplace_verify.fields.exact import Exact, exact_point, offset, rational, show
 from laplace_verify.fields.plate_box import Depth
+from laplace_verify.fields.plate_cells import Cells, cells_gradient, cells_value
+from laplace_verify.fields.plate_cells_fit import HalfProblem
+from laplace_verify.fields.plate_cells_table import tabulated
 
 __all__ = ["SIDES", "Plate", "corner_text", "in_rectangle", "opposite_corners", "side_ends"]
 
@@ -124,7 +128,20 @@ class Plate(Field):
         low, high = ctx.where(low > 0, low, 0 * low), ctx.where(high > 0, high, 0 * high)
         return (x, high, low) if end else (x, low, high)
 
+    def half_problem(self) -> HalfProblem | None:
+        """Return what `plate_cells` needs to tabulate u for float64, None if it cannot."""
+        return None
+
     def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:  # noqa: ARG002  # no cut
+        table = _cells(self) if ctx is FLOAT else None
+        if table is None:
+            return self._value_by_sums(ctx, x)
+        u, left_out = cells_value(table, *x)
+        if left_out.size:
+            u[left_out] = self._value_by_sums(ctx, tuple(c[left_out] for c in x))
+        return u
+
+    def _value_by_sums(self, ctx: Any, x: tuple[Any, ...]) -> Any:
         along, d, h = self._distances(ctx, x)
         u = self._solve(ctx, along, d, h)
         if self.even:
@@ -136,6 +153,15 @@ class Plate(Field):
         return ctx.where(on_neighbour, 0 * u, u)  # exactly zero, but NaN stays NaN at a corner that jumps
 
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:  # noqa: ARG002  # no cut
+        table = _cells(self) if ctx is FLOAT else None
+        if table is None:
+            return self._gradient_by_sums(ctx, x)
+        slopes, left_out = cells_gradient(table, *x)
+        if left_out.size:
+            slopes[:, left_out] = self._gradient_by_sums(ctx, tuple(c[left_out] for c in x))
+        return tuple(slopes)
+
+    def _gradient_by_sums(self, ctx: Any, x: tuple[Any, ...]) -> tuple[Any, ...]:
         along, d, h = self._distances(ctx, x)
         axis, end = SIDES[self.side]
         slope, depth = self._slopes(ctx, along, d, h)
@@ -145,6 +171,16 @@ class Plate(Field):
     def _valid(self, points: Array) -> BoolArray:
         """Return which points lie in the closed rectangle, to rounding."""
         return in_rectangle(self.lower, self.upper, points)
+
+
+@lru_cache(maxsize=64)
+def _cells(plate: Plate) -> Cells | None:
+    """Return the cells of a plate."""
+    problem = plate.half_problem()
+    if problem is None:
+        return None
+    low, high = ((rational(c[0]), rational(c[1])) for c in (plate.lower, plate.upper))
+    return tabulated([problem], low, high)
 
 
 def opposite_corners(

@@ -63,6 +63,10 @@ class PlateConvection(PlatePieces):
     def _opposite_text(self) -> str:
         return f"d_n u + {show(self.transfer)} u = 0"
 
+    @property
+    def _far_side(self) -> str:
+        return ""  # neither u nor its normal derivative vanishes there
+
     def _solve(self, ctx: Any, x: Any, d: Any, h: Any) -> Any:
         insulated = pieces_solution(ctx, self.continuation, self.depth, x, d, h)
         fading, mean, decay = _table(ctx, self)

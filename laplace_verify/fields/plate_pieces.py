@@ -6,15 +6,16 @@ principle and agree to rounding.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import lru_cache
 from typing import Any
 
 from laplace_verify.contexts import FLOAT
-from laplace_verify.fields.exact import Exact, rational, show
+from laplace_verify.fields.exact import Exact, exact, rational, show
 from laplace_verify.fields.piecewise import Continuation, Piecewise
 from laplace_verify.fields.plate import Plate
 from laplace_verify.fields.plate_box import Depth
+from laplace_verify.fields.plate_cells_fit import HalfProblem, local_jumps
 from laplace_verify.fields.plate_row import row_gradient, row_value
 from laplace_verify.fields.plate_strip import data_on_side, strip_gradient, strip_value
 from laplace_verify.fields.singular import Basis, Singularity
@@ -67,6 +68,25 @@ class PlatePieces(Plate):
 
     def _data_text(self) -> str:
         return pieces_text(self.breaks, self.coefficients)
+
+    @property
+    def _far_side(self) -> str:
+        """What `plate_cells` may take for granted opposite the data, see `HalfProblem`."""
+        return self.far
+
+    def half_problem(self) -> HalfProblem:
+        """Return what `plate_cells` needs to tabulate u for float64, in distances from the lower corner."""
+        low, high = self.lower, self.upper
+        size = tuple(exact(rational(b) - rational(a), "extent") for a, b in zip(low, high, strict=True))
+        breaks = tuple(exact(rational(b) - self.ends[0], "break") for b in self.breaks)
+        twin = replace(self, lower=(0, 0), upper=size, breaks=breaks)
+        data, length = twin.continuation, twin.ends[1]
+        return HalfProblem(
+            side=self.side, even=self.even, far=self._far_side, length=length, line=data.powers,
+            places=local_jumps(self.side, data.images(-length, 2 * length)),
+            value=lambda s, d, h: twin._solve(FLOAT, s, d, h),
+            slopes=lambda s, d, h: twin._slopes(FLOAT, s, d, h),
+        )  # fmt: skip
 
     def _solve(self, ctx: Any, x: Any, d: Any, h: Any) -> Any:
         return pieces_solution(ctx, self.continuation, self.depth, x, d, h)

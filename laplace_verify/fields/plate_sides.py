@@ -23,7 +23,7 @@ from functools import lru_cache
 from typing import Any
 
 from laplace_verify.arrays import Array, BoolArray
-from laplace_verify.contexts import Number
+from laplace_verify.contexts import FLOAT, Number
 from laplace_verify.errors import FieldError
 from laplace_verify.fields.affine import affine
 from laplace_verify.fields.base import Field
@@ -31,6 +31,8 @@ from laplace_verify.fields.combinations import combined
 from laplace_verify.fields.exact import Exact, rational
 from laplace_verify.fields.piecewise import Piecewise, Rows, level
 from laplace_verify.fields.plate import SIDES, corner_text, in_rectangle, opposite_corners, side_ends
+from laplace_verify.fields.plate_cells import Cells, cells_gradient, cells_value
+from laplace_verify.fields.plate_cells_table import tabulated
 from laplace_verify.fields.plate_pieces import PlatePieces, pieces_text
 from laplace_verify.fields.polynomials import polynomial
 from laplace_verify.fields.singular import Basis, Singularity
@@ -106,10 +108,22 @@ class PlateSides(Field):
         )
 
     def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:
-        return _superposition(self)._value(ctx, x, side)
+        table = _cells(self) if ctx is FLOAT else None
+        if table is None:
+            return _superposition(self)._value(ctx, x, side)
+        u, left_out = cells_value(table, *x)
+        if left_out.size:
+            u[left_out] = _superposition(self)._value(ctx, tuple(c[left_out] for c in x), None)
+        return u
 
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:
-        return _superposition(self)._gradient(ctx, x, side)
+        table = _cells(self) if ctx is FLOAT else None
+        if table is None:
+            return _superposition(self)._gradient(ctx, x, side)
+        slopes, left_out = cells_gradient(table, *x)
+        if left_out.size:
+            slopes[:, left_out] = _superposition(self)._gradient(ctx, tuple(c[left_out] for c in x), None)
+        return tuple(slopes)
 
     def _valid(self, points: Array) -> BoolArray:
         return in_rectangle(self.lower, self.upper, points)
@@ -168,13 +182,29 @@ def rectangle_sides(
 @lru_cache(maxsize=64)
 def _superposition(plate: PlateSides) -> Field:
     """Return B plus the half problems."""
-    (x, y), (a, b), corners = _frame(plate)
-    low, twist = corners[0][0], corners[1][1] - corners[0][1] - corners[1][0] + corners[0][0]
-    slope = ((corners[1][0] - low) / a, (corners[0][1] - low) / b)
-    terms: list[tuple[Number, Field]] = [(1, affine(slope, low - slope[0] * x - slope[1] * y))]
-    if twist:
-        terms.append((twist / (2 * a * b), polynomial(2, "im", centre=(x, y))))
+    (x, y), c0, c1, c2, c3 = _bilinear(plate)
+    terms: list[tuple[Number, Field]] = [(1, affine((c1, c2), c0 - c1 * x - c2 * y))]
+    if c3:
+        terms.append((c3 / 2, polynomial(2, "im", centre=(x, y))))
     return combined(*terms, *((1, half) for half in _half_problems(plate)))
+
+
+@lru_cache(maxsize=64)
+def _cells(plate: PlateSides) -> Cells | None:
+    """Return the cells of the superposition, None if it is B alone."""
+    halves = [half.half_problem() for half in _half_problems(plate)]
+    if not halves:
+        return None
+    low, high = ((rational(c[0]), rational(c[1])) for c in (plate.lower, plate.upper))
+    _, c0, c1, c2, c3 = _bilinear(plate)
+    return tabulated(halves, low, high, (c0, c1, c2, c3))
+
+
+def _bilinear(plate: PlateSides) -> tuple[tuple[Fraction, ...], Fraction, Fraction, Fraction, Fraction]:
+    """Return the lower corner and c0 ... c3 of B = c0 + c1 s + c2 t + c3 s t, s and t counted from it."""
+    lower, (a, b), corners = _frame(plate)
+    low, twist = corners[0][0], corners[1][1] - corners[0][1] - corners[1][0] + corners[0][0]
+    return lower, low, (corners[1][0] - low) / a, (corners[0][1] - low) / b, twist / (a * b)
 
 
 def _frame(plate: PlateSides) -> tuple[tuple[Fraction, ...], tuple[Fraction, ...], list[list[Fraction]]]:
