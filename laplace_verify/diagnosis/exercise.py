@@ -28,7 +28,7 @@ CONTRAST = (
     "plate-convection-all-round", "plate-tensor-diagonal", "plate-tensor-oblique", "plate-layers-across",
     "l-shape-smooth", "l-shape-corner", "triangle-cubic", "disc-fourier", "annulus-flux-inside",
     "disc-convection", "pillar-section", "pipe-wall-two-temperatures", "plate-periodic-sides", "box-solid",
-    "ball-solid", "float-losing-heat",
+    "ball-solid", "float-losing-heat", "box-insulated-sides", "box-tensor-diagonal", "box-cooled-sides",
 )  # fmt: skip
 MOST_CONTRAST = 8
 ACCEPTED = ("NOT_APPLICABLE", "NOT_RUN")

@@ -40,10 +40,10 @@ def counted(part: int, whole: int, what: str) -> str:
     """Return how many of a group, as a reader would say it.
 
     >>> counted(6, 6, "failing cases"), counted(0, 14, "passing"), counted(1, 1, "failing cases")
-    ('all 6 failing cases', 'none of the 14 passing', 'the only one of the failing cases')
+    ('all 6 failing cases', 'none of the 14 passing', 'the only failing case')
     """
     if whole == 1:
-        return f"the only one of the {what}" if part else f"none of the {what}"
+        return f"the only {what.replace('cases', 'case')}" if part else f"none of the {what}"
     if part == whole:
         return f"both {what}" if whole == 2 else f"all {whole} {what}"
     return f"{part} of the {whole} {what}" if part else f"none of the {whole} {what}"

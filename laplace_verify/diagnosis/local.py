@@ -24,8 +24,11 @@ _WEIGHT = 0.8
 _SHARE = 0.6
 _NEAR = 0.95  # of the largest error
 _LOSS = 0.5  # of an order
+_VALUES = ("max", "L1", "L2")
 _FALLS = 0.2  # order from which an error is said to fall
 _GROWS = -0.5  # order: the error is no closer to a limit at the place than anywhere else
+_DERIVATIVES = ("next to pieces with a Neumann condition", "next to pieces with a Robin condition")
+_EITHER = "next to pieces with a Neumann or Robin condition"  # one routine may assemble both
 _INSIDE = "inside, away from all pieces"
 
 
@@ -40,6 +43,9 @@ def slow_places(record: Record, failing: Sequence[Study]) -> list[Finding]:
         known += 1
         for place in _slow_kinds(study, info):
             found.setdefault(place, []).append(study)
+    either = [study for kind in _DERIVATIVES for study in found.get(kind, [])]
+    if len({id(study) for study in either}) > max(len(found.get(kind, [])) for kind in _DERIVATIVES):
+        found[_EITHER] = [study for study in failing if any(study is other for other in either)]
     return [
         _finding(record, place, studies, known, len(failing))
         for place, studies in sorted(found.items())
@@ -55,7 +61,8 @@ def _slow_kinds(study: Study, info: CaseInfo) -> list[str]:
     if set(errors) == {"interior"} or any((orders.get(name) or 0.0) < _GROWS for name in near):
         return []
     inside = orders.get("interior")
-    due = [order.expected for order in study.orders.values() if isinstance(order.expected, float | int)]
+    expected = [study.orders[norm].expected for norm in _VALUES if norm in study.orders]
+    due = [order for order in expected if isinstance(order, float | int)]
     limits = [limit - _LOSS for limit in (inside, min(due, default=None)) if limit is not None]
     slow = {
         kinds[name]
@@ -75,7 +82,8 @@ def _finding(record: Record, place: str, studies: Sequence[Study], known: int, f
         kinds = {} if info is None else _kinds(study, info)
         for name, order in study.local_orders.items():
             if order is not None and name in kinds:
-                group = there if kinds[name] == place else inside if name == "interior" else elsewhere
+                own = kinds[name] == place or (place == _EITHER and kinds[name] in _DERIVATIVES)
+                group = there if own else inside if name == "interior" else elsewhere
                 group.append(order)
     slow = median(there)
     said = [f"falls at order {slow:.1f} there" if slow >= _FALLS else "does not fall there"]

@@ -3,18 +3,21 @@
 The loss of a norm is its expected order less the observed one. A consistent scheme with a closure one order
 too low loses one; a wrong sign, coefficient or constant leaves an error that does not shrink at all
 (observed order near 0). Score: share of the failing cases that show the pattern, times 0.5: it says how a
-solver fails, and what says where comes first. Gradients or fluxes that alone fall short say where, after the
-solution, so that this pattern has its share unabated.
+solver fails, and what says where comes first. Two patterns have their share unabated. Gradients or fluxes
+that alone fall short say where: after the solution. Errors that fall and grow again are those of a system
+solved less and less well, since its condition number grows under refinement and consistent schemes converge;
+where four in five show it, the others may be too easy to solve.
 """
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Sequence
 from statistics import median
 
 from laplace_verify.diagnosis.finding import Finding, case_list, counted
 from laplace_verify.measure.results import Order, Study
-from laplace_verify.measure.series import differences
+from laplace_verify.measure.series import FLOOR_MARGIN, ROUND_OFF, differences
 from laplace_verify.measure.verdict import Verdict
 
 __all__ = ["patterns", "short_norms"]
@@ -22,6 +25,9 @@ __all__ = ["patterns", "short_norms"]
 _WEIGHT = 0.5
 _SHARE = 0.6
 _NEAR = 0.3
+_CLEAR = 0.8  # share of the failing cases from which growing errors count in full
+_SMALL = 0.05  # relative error: a solution that is about right
+_GROWN = 1.5
 _VALUES = ("max", "L1", "L2")
 
 
@@ -37,6 +43,13 @@ def short_norms(study: Study) -> dict[str, Order]:
 def patterns(failing: Sequence[Study]) -> list[Finding]:
     """Return the manners of failing that most failing cases share."""
     found: list[Finding | None] = [
+        _pattern(
+            failing,
+            _solved_worse,
+            "get better on coarse grids and worse on finer ones, where equations are harder to solve: the "
+            "iteration stops early (its tolerance, its norm or its number of steps), or round-off grows",
+            1.0 / _CLEAR,
+        ),
         _pattern(
             failing,
             _without_limit,
@@ -70,11 +83,12 @@ def _pattern(
         return None
     orders = [o.observed for study in showing for o in short_norms(study).values() if o.observed is not None]
     who = counted(len(showing), len(failing), "failing cases")
-    evidence = f"observed orders: median {median(orders):.2f}, from {min(orders):.2f} to {max(orders):.2f}; "
+    said = f"median {median(orders):.2f}, from {min(orders):.2f} to {max(orders):.2f}" if orders else "none"
+    evidence = f"observed orders: {said}; "
     return Finding(
         text=f"{who[0].upper()}{who[1:]} {_agree(text, len(showing), len(failing))}",
         evidence=evidence + f"cases: {case_list(showing)}",
-        score=weight * len(showing) / len(failing),
+        score=min(1.0, weight * len(showing) / len(failing)),
         studies=tuple(showing),
     )
 
@@ -87,6 +101,16 @@ def _agree(text: str, count: int, whole: int) -> str:
     return f"{'does' if first == 'do' else first + 's'} {rest}".replace(
         "they converge", "it converges"
     ).replace("or stop at", "or stops at")
+
+
+def _solved_worse(study: Study) -> bool:
+    """Return whether the error has been small and grows again by half or more down to the finest size."""
+    errors = [
+        error for level in study.levels
+        if (error := level.relative.get("L2", level.relative.get("max"))) is not None
+    ]  # fmt: skip
+    least = min(errors, default=math.inf)
+    return least < _SMALL and errors[-1] > max(_GROWN * least, ROUND_OFF * FLOOR_MARGIN)
 
 
 def _without_limit(study: Study) -> bool:

@@ -49,6 +49,12 @@ MEANINGS = (  # where two weigh the same, the first comes first
         cause=True,
     ),
     Meaning(
+        kinds=("single-precision values",),
+        text="the values handed back are numbers of single precision: an array of 32 bits",
+        weight=1.0,
+        cause=True,
+    ),
+    Meaning(
         kinds=("single-precision floor",),
         text="the error stops at the size of single precision: an array or constant in 32 bits",
         weight=1.0,

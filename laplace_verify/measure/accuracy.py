@@ -12,6 +12,9 @@ order faster than that, the shape functions of the cells are the limit, not the 
 *Gradients.* If the values converge, so do gradients of any consistent recovery; one that does not has a wrong
 scale or sign.
 
+*Precision.* Values that are all numbers of 32 bits, where those of the exact solution are not, were rounded
+to single precision, which an error of discretisation hides.
+
 All are remarks: no theorem gives the constants.
 """
 
@@ -22,6 +25,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.measure.norms import weighted_norm
 from laplace_verify.measure.orders import line_order
 from laplace_verify.measure.results import Level
@@ -33,11 +37,12 @@ if TYPE_CHECKING:
     from laplace_verify.measure.smoothness import Smoothness
     from laplace_verify.solvers import Answer
 
-__all__ = ["accuracy_remarks", "interpolation_error"]
+__all__ = ["accuracy_remarks", "interpolation_error", "precision_remarks"]
 
 FACTOR = 10.0
 FELL, STAYED = 0.3, 0.7  # last over first: what has clearly converged, what has not at all
 FASTER = 0.8
+FEWEST = 16  # values of 32 bits that are no chance: of doubles one in 2^29 is
 LEAST = 1e-3  # relative error of a gradient below which a stall is put down to precision
 EXACT = 1e-12  # of max |u|: interpolation that leaves no more is exact
 
@@ -68,6 +73,24 @@ def accuracy_remarks(levels: Sequence[Level], smoothness: Smoothness) -> list[Si
     if not judged:
         return []
     return [*_constant(judged[-1], smoothness), *_between(judged), *_gradients(judged, smoothness)]
+
+
+def precision_remarks(answer: Answer, exact: Exact) -> list[Sign]:
+    """Remark nodal values of 32 bits where most of the exact ones need more."""
+    if answer.points is None or answer.values is None:
+        return []
+    known = exact.values(answer.points)
+    short = np.isfinite(known) & ~_of_single_precision(known)
+    if np.count_nonzero(short) < FEWEST or not _of_single_precision(answer.values[short]).all():
+        return []
+    text = "the values handed back are numbers of single precision (32 bits): an array is stored in it"
+    return [Sign(kind="single-precision values", text=text)]
+
+
+def _of_single_precision(values: Array) -> BoolArray:
+    """Return which values are numbers of 32 bits."""
+    same: BoolArray = values.astype(np.float32).astype(np.float64) == values
+    return same
 
 
 def _constant(level: Level, smoothness: Smoothness) -> list[Sign]:

@@ -56,6 +56,7 @@ def problem_features(problem: Problem) -> dict[str, Feature]:
         "Dirichlet condition": "dirichlet" in kinds.values(),
         "Neumann condition": "neumann" in kinds.values(),
         "Robin condition": "robin" in kinds.values(),
+        "Neumann or Robin condition": bool(used & {"neumann", "robin"}),
         "periodic pieces": "periodic" in kinds.values(),
         "only Dirichlet conditions": used == {"dirichlet"},
         "pure Neumann problem": problem.constant is not None,

@@ -84,8 +84,8 @@ def _geometric(series: Series, n: list[float], errors: list[float], said: str) -
     orders = [order for order in pair_orders([1 / size for size in n], errors) if order is not None]
     if min(orders) <= 0:
         words = "the error rises between levels above the floor; declare error_floor if it is one"
-        small = series.relative[-1] <= TINY
-        floor = floor_kind(series.relative[-1]) if small else None
+        fell = errors[-1] <= CLEARLY * errors[0] or series.relative[-1] <= TINY
+        floor = floor_kind(series.relative[-1]) if fell else None
         return Finding(Verdict.INCONCLUSIVE, words, floor=floor)
     if series.at_floor and orders[-1] >= STEEP:
         return Finding(Verdict.PASS, f"{said} and reaches the floor by size {series.sizes[series.above]}")

@@ -9,7 +9,7 @@ from itertools import pairwise
 from typing import TYPE_CHECKING
 
 from laplace_verify.errors import AnswerError, nearest_names
-from laplace_verify.measure.accuracy import interpolation_error
+from laplace_verify.measure.accuracy import interpolation_error, precision_remarks
 from laplace_verify.measure.coverage import coverage_of
 from laplace_verify.measure.criteria import LEVEL
 from laplace_verify.measure.exact import Exact
@@ -20,6 +20,7 @@ from laplace_verify.measure.places import error_map, local_errors
 from laplace_verify.measure.results import ErrorMap, Level
 from laplace_verify.measure.sampling import level_generator
 from laplace_verify.measure.series import TOO_COARSE
+from laplace_verify.measure.signs import Sign
 from laplace_verify.measure.windows import through_window
 from laplace_verify.solvers.spacing import spacing
 
@@ -44,6 +45,7 @@ class LevelResult:
     local: dict[str, float | None]
     error_map: ErrorMap
     remarks: tuple[str, ...]
+    signs: tuple[Sign, ...]
 
 
 @dataclass(slots=True, eq=False)
@@ -99,6 +101,7 @@ class Runner:
             local=local_errors(seen, measured.points, measured.signed, h, generator),
             error_map=error_map(size, measured.points, measured.signed, generator),
             remarks=answer.remarks(self.case.problem) + self._unknown(answer) + self._near(measured, size),
+            signs=tuple(precision_remarks(answer, self.exact)),
         )
 
     def _spacing(self, answer: Answer, size: int) -> float:

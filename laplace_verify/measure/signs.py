@@ -14,6 +14,7 @@ FloorKind: TypeAlias = Literal["round-off floor", "single-precision floor", "loo
 SignKind: TypeAlias = (
     FloorKind
     | Literal[
+        "single-precision values",  # all that are handed back are numbers of 32 bits
         "early stop",  # a tighter tolerance changes the answer
         "breaks when tightened",  # with a tighter tolerance
         "large residual",  # the reported residual is not well below the error

@@ -200,6 +200,7 @@ class _Run:
         if faults:
             verdict, reasons = Verdict.FAIL, [*reasons, *(fault.text for fault in faults)]
         odd = [*accuracy_remarks(self.levels, smoothness_of(self.case)), *odd]
+        odd += dict.fromkeys(sign for result in self.results for sign in result.signs)
         remarks += [sign.text for sign in odd]
         remarks += dict.fromkeys(remark for result in self.results for remark in result.remarks)
         remarks += [*self.remarks, *(sign.text for sign in self.signs)]

@@ -17,15 +17,16 @@ SIDES = {
 
 def _study(
     case_id, verdict, features, *, observed=2.0, norm="max", error_map=None, known=None, unknowns=49,
-    local=None, nodal=None, remarks=(), signs=(),
+    local=None, nodal=None, remarks=(), signs=(), relative=None,
 ):  # fmt: skip
     ran = verdict is not Verdict.ERROR
-    sizes = (8, 16, 32, 64) if local else (8,)
+    sizes = (8, 16, 32, 64) if local or relative else (8,)
     levels = [
         Level(
-            size=n, h=1 / n, unknowns=unknowns, seconds=0.1, errors={norm: 0.1}, relative={}, nodal=nodal
+            size=n, h=1 / n, unknowns=unknowns, seconds=0.1, errors={norm: 0.1},
+            relative={"L2": relative[k]} if relative else {}, nodal=nodal,
         )
-        for n in sizes
+        for k, n in enumerate(sizes)
     ]  # fmt: skip
     order = Order(
         observed=observed,
@@ -55,7 +56,8 @@ def _study(
     )
 
 
-def _record(studies, dims=None, checks=()):
+def _record(studies, dims=None, checks=(), conditions=None):
+    named = {"top": "robin"} | (conditions or {})
     cases = tuple(
         CaseInfo(
             id=s.case_id,
@@ -63,8 +65,7 @@ def _record(studies, dims=None, checks=()):
             dim=(dims or {}).get(s.case_id, 2),
             shape="rectangle",
             pieces=tuple(
-                PieceInfo(name=n, condition="robin" if n == "top" else "dirichlet", outline=o)
-                for n, o in SIDES.items()
+                PieceInfo(name=n, condition=named.get(n, "dirichlet"), outline=o) for n, o in SIDES.items()
             ),
         )
         for s in studies

@@ -92,11 +92,28 @@ def test_manner_of_failing_is_named(study, record, observed, norm, words):
     assert [words in suspect.text for suspect in found] == [True]
 
 
+@pytest.mark.parametrize(
+    ("relative", "named"),
+    [
+        ([4e-3, 2e-3, 4e-3, 1e-2], True),
+        ([4e-3, 1e-3, 3e-4, 3e-4], False),  # a floor
+        ([0.5, 0.5, 0.5, 0.5], False),  # a wrong limit
+        ([0.4, 0.8, 1.6, 3.2], False),  # unstable from the start
+        ([1e-15, 2e-15, 4e-15, 8e-15], False),  # round-off
+    ],
+)
+def test_errors_that_fall_and_grow_again_point_to_the_iteration(study, record, relative, named):
+    failing = [
+        study(f"f{k}", Verdict.FAIL, {"wide": True}, observed=0.0, relative=relative) for k in range(5)
+    ]
+    easy = [study("e", Verdict.FAIL, {"wide": True}, observed=0.0, relative=[4e-3, 1e-3, 3e-4, 1e-4])]
+    found = diagnose(record([*failing, *easy, *(study(f"p{k}", Verdict.PASS, {}) for k in range(9))]))
+    assert any("the iteration stops early (its tolerance" in suspect.text for suspect in found) == named
+
+
 def test_a_single_failing_case_is_spoken_of_in_the_singular(study, record):
     found = diagnose(record([study("f", Verdict.FAIL, {}, observed=0.0), study("p", Verdict.PASS, {})]))
-    assert found[0].text.startswith(
-        "The only one of the failing cases does not get smaller errors by refinement: it"
-    )
+    assert found[0].text.startswith("The only failing case does not get smaller errors by refinement: it")
 
 
 @pytest.mark.parametrize(("decay", "named"), [(8.0, True), (0.0, False)])

@@ -26,8 +26,8 @@ def local(**orders):
     return {place: [e * 8.0**order for e in falling(last, order)] for place, (last, order) in orders.items()}
 
 
-def suspects(record, *studies, checks=()):
-    return [suspect.text for suspect in diagnose(record(studies, checks=checks))]
+def suspects(record, *studies, **facts):
+    return [suspect.text for suspect in diagnose(record(studies, **facts))]
 
 
 def test_a_slow_and_largest_error_next_to_a_condition_is_a_place(study, record):
@@ -61,6 +61,25 @@ def test_places_whose_error_falls_as_it_should_are_none(study, record):
         record, *(study(f"f{k}", FAIL, {}, observed=1.6, local=sound) for k in range(3)), study("p", PASS, {})
     )
     assert not [text for text in texts if text.startswith("The largest error")]
+
+
+def test_nothing_is_said_of_places_where_only_the_inside_is_measured_or_errors_grow(study, record):
+    passing = study("p", PASS, {})
+    for errors in (local(interior=(0.1, 1.0)), local(top=(0.9, -3.0), interior=(0.1, -3.0))):
+        failing = [study(f"f{k}", FAIL, {}, observed=1.0, local=errors) for k in range(3)]
+        assert not [text for text in suspects(record, *failing, passing) if "largest error lies" in text]
+
+
+def test_neumann_and_robin_pieces_count_together_where_each_shows_in_some_cases(study, record):
+    at_top, at_side = (
+        local(**{place: (0.1, 1.0)}, interior=(0.05, 0.9)) for place in ("top", "right")
+    )  # Robin at the top, Neumann on the right
+    failing = [study(f"f{k}", FAIL, {}, observed=1.0, local=(at_top, at_side)[k % 2]) for k in range(4)]
+    texts = suspects(record, *failing, study("p", PASS, {}), conditions={"right": "neumann"})
+    places = [text for text in texts if text.startswith("The largest error")]
+    assert "next to pieces with a Neumann or Robin condition in all 4 failing cases" in places[0]
+    alone = [study(f"f{k}", FAIL, {}, observed=1.0, local=at_top) for k in range(4)]
+    assert not [text for text in suspects(record, *alone, study("p", PASS, {})) if "Neumann or" in text]
 
 
 def polynomial(degree, **features):

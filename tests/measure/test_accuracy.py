@@ -55,3 +55,25 @@ def test_a_gradient_of_the_wrong_scale_or_sign_is_remarked(factor, remarked):
     found = lv.study(with_gradient(factor), PLATE, sizes=(6, 12, 24, 48), max_points=4000)
     assert found.orders["L2"].verdict is Verdict.PASS
     assert any("the values converge but H1-semi" in remark for remark in found.remarks) is remarked
+
+
+def kept_in(kind):
+    """Five-point values stored in numbers of a kind."""
+
+    def solve(problem, n):
+        answer = five_point.solve(problem, n)
+        return lv.Answer(answer.points, answer.values.astype(kind), cells=answer.cells, h=answer.h)
+
+    return lv.adapt(solve, name="stored", kind="finite difference", order=2)
+
+
+@pytest.mark.parametrize(("kind", "remarked"), [(np.float32, True), (np.float64, False)])
+def test_values_of_single_precision_are_remarked_far_above_their_round_off(kind, remarked):
+    found = lv.study(kept_in(kind), PLATE)
+    assert found.verdict is Verdict.PASS
+    assert [sign.kind for sign in found.signs] == ["single-precision values"] * remarked
+
+
+def test_exact_values_that_fit_into_single_precision_are_no_sign_of_it():
+    halves = lv.case(lv.Rectangle((0, 0), (2, 1)), {}, lv.fields.affine((1, 2)))  # sums of dyadic numbers
+    assert not lv.study(five_point, halves).signs

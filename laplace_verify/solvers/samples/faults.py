@@ -12,6 +12,7 @@ from laplace_verify.solvers.samples.faults_elements import ELEMENT_FAULTS
 from laplace_verify.solvers.samples.faults_grid import GRID_FAULTS
 from laplace_verify.solvers.samples.faults_quadratic import QUADRATIC_FAULTS
 from laplace_verify.solvers.samples.faults_sources import SOURCE_FAULTS
+from laplace_verify.solvers.samples.faults_space import SPACE_FAULTS
 from laplace_verify.solvers.samples.faults_spectral import SPECTRAL_FAULTS
 from laplace_verify.solvers.samples.faults_volume import VOLUME_FAULTS
 from laplace_verify.solvers.samples.faults_walks import WALK_FAULTS
@@ -20,6 +21,7 @@ __all__ = ["FAULTS", "Fault"]
 
 FAULTS: dict[str, Fault] = {
     **GRID_FAULTS,
+    **SPACE_FAULTS,
     **VOLUME_FAULTS,
     **ELEMENT_FAULTS,
     **QUADRATIC_FAULTS,

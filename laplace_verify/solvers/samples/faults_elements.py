@@ -22,6 +22,8 @@ from laplace_verify.solvers.samples.seeding import Seeds
 
 __all__ = ["ELEMENT_FAULTS"]
 
+COARSE = 4  # cells along a side of the mesh that is refined
+
 
 def halved_influx(mesh: Mesh, piece: Piece, coordinates: Coordinates) -> Array:
     """Take half of every edge, as when each of its two nodes gets a half of half of it."""
@@ -149,6 +151,33 @@ def renumbered(shape: Shape, n: int) -> Mesh:
     last = len(mesh.points) - 1
     boundary = {name: last - edges for name, edges in mesh.boundary.items()}
     return Mesh(points=mesh.points[::-1], triangles=last - mesh.triangles, boundary=boundary)
+
+
+def refined_along_chords(shape: Shape, n: int) -> Mesh:
+    """Halve the edges of a coarse mesh and leave the new boundary nodes on its chords."""
+    halvings = max(int(np.log2(n / COARSE)), 0)
+    mesh = triangulate(shape, n // 2**halvings)
+    for _ in range(halvings):
+        mesh = halved(mesh)
+    return mesh
+
+
+def halved(mesh: Mesh) -> Mesh:
+    """Cut every triangle into four at the middles of its edges."""
+    a, b, c = mesh.triangles.T
+    sides = np.sort(np.concatenate([[a, b], [b, c], [c, a]], axis=1).T, axis=1)
+    edges, number = np.unique(sides, axis=0, return_inverse=True)
+    ab, bc, ca = (len(mesh.points) + number.ravel()).reshape(3, -1)
+    middle_of = {(int(i), int(j)): len(mesh.points) + k for k, (i, j) in enumerate(edges)}
+    boundary = {}
+    for name, ends in mesh.boundary.items():
+        middles = np.array([middle_of[min(i, j), max(i, j)] for i, j in ends.tolist()])
+        boundary[name] = np.stack([ends[:, 0], middles, middles, ends[:, 1]], axis=1).reshape(-1, 2)
+    return Mesh(
+        points=np.concatenate([mesh.points, mesh.points[edges].mean(axis=1)]),
+        triangles=np.stack([a, ab, ca, ab, b, bc, ca, bc, c, ab, bc, ca], axis=1).reshape(-1, 3),
+        boundary=boundary,
+    )
 
 
 def doubled_slopes(mesh: Mesh, values: Array) -> dict[str, Any]:
@@ -289,6 +318,14 @@ SEEDS.add(
     effect="accuracy",
     suspects=("single precision",),
     shown_by=("plate-saddle", "plate-wave", "plate-flux-top"),
+)
+SEEDS.add(
+    "new nodes on chords",
+    "a coarse mesh is refined without moving new boundary nodes onto the curve",
+    replace(LINEAR, mesh=refined_along_chords),
+    kind="curved boundary",
+    suspects=("curved boundary", "do not follow the curve"),
+    shown_by=("disc-fourier", "disc-convection", "annulus-convection"),
 )
 SEEDS.add(
     "gradients doubled",
