@@ -16,6 +16,7 @@ from laplace_verify.principles.mean_value import MEAN_VALUE
 from laplace_verify.principles.no_interior_extremum import NO_INTERIOR_EXTREMUM
 from laplace_verify.principles.reciprocity import RECIPROCITY
 from laplace_verify.principles.repeatability import REPEATABILITY
+from laplace_verify.principles.series_resistance import SERIES_RESISTANCE
 from laplace_verify.principles.steady_state import STEADY_STATE
 from laplace_verify.principles.superposition import SUPERPOSITION
 from laplace_verify.principles.symmetry import SYMMETRY
@@ -28,6 +29,7 @@ LAWS: dict[str, Law] = {
     for law in (
         CONSTANTS,
         AFFINE_FIELDS,
+        SERIES_RESISTANCE,
         MAXIMUM_PRINCIPLE,
         NO_INTERIOR_EXTREMUM,
         MEAN_VALUE,

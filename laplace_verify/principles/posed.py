@@ -14,8 +14,10 @@ from typing import Any
 import numpy as np
 
 from laplace_verify.fields import Field
+from laplace_verify.fields.partitions import Layers
 from laplace_verify.geometry import Shape
-from laplace_verify.problems import Case, Problem, case, dirichlet, problem, robin
+from laplace_verify.problems import Case, Materials, Problem, case, dirichlet, problem, robin
+from laplace_verify.problems.coordinates import Coordinates
 
 __all__ = ["Conductivity", "Posed", "field_code"]
 
@@ -38,6 +40,10 @@ class Posed:
         The exact solution, if there is one.
     data : str
         Otherwise the formula of the Dirichlet data.
+    materials : Materials or None
+        Layers in place of one conductivity; the field then has an affine part in each.
+    coordinates : str
+        As in `laplace_verify.case`.
     beside : mapping
         Problems that are solved too, by the names that their answers have in code.
     note : str
@@ -51,6 +57,8 @@ class Posed:
     conductivity: Conductivity = 1.0
     field: Field | None = None
     data: str = ""
+    materials: Materials | None = None
+    coordinates: Coordinates = "cartesian"
     beside: Mapping[str, Posed] = dataclass_field(default_factory=dict)
     note: str = ""
     drawn: Any = None
@@ -62,7 +70,8 @@ class Posed:
         kinds = {
             name: kind if isinstance(kind, str) else robin(kind) for name, kind in self.conditions.items()
         }
-        return case(self.shape, kinds, self.field, self.conductivity, id="drawn-problem")
+        k = self.conductivity if self.materials is None else self.materials
+        return case(self.shape, kinds, self.field, k, coordinates=self.coordinates, id="drawn-problem")
 
     def problem(self) -> Problem:
         """Return the problem as a solver is handed it."""
@@ -90,7 +99,13 @@ class Posed:
         ]
         k = self.conductivity
         material = [] if k == 1 else [f"K = {[list(row) for row in k] if isinstance(k, tuple) else f'{k:g}'}"]
-        return ", ".join([data, f"on {self.shape!r}", *(sides or ["all Dirichlet"]), *material]) + self.note
+        if self.materials is not None:
+            layers = zip(self.materials.names, self.materials.conductivities, strict=True)
+            material = ["K = " + " and ".join(f"{number:g} in {name}" for name, number in layers)]
+        place = f"on {self.shape!r}"
+        if self.coordinates != "cartesian":
+            place += f" in {self.coordinates} coordinates"
+        return ", ".join([data, place, *(sides or ["all Dirichlet"]), *material]) + self.note
 
     def code(self) -> str:
         """Return Python that makes `problem` and, if there is an exact solution, `exact`.
@@ -112,9 +127,17 @@ class Posed:
             f'"{name}": ' + (f'"{kind}"' if isinstance(kind, str) else f"lv.robin({_number(kind)})")
             for name, kind in self.conditions.items()
         )
+        exact, made = field_code(self.field), []
+        if self.materials is not None:
+            made = [f"layers = {_layers_code(self.materials)}"]
+            parts = ", ".join(_field_code(part) for part in self.field.spec()["parts"])
+            exact, k = f"lv.fields.by_region(layers, [{parts}])", ["    layers,"]
+        if self.coordinates != "cartesian":
+            k = [*k, f'    coordinates="{self.coordinates}",']
         return "\n".join(
             [
-                f"exact{suffix} = {field_code(self.field)}",
+                *made,
+                f"exact{suffix} = {exact}",
                 f"problem{suffix} = lv.case(",
                 f"    lv.{self.shape!r},",
                 f"    {{{kinds}}},",
@@ -151,6 +174,8 @@ def _field_code(spec: Mapping[str, Any]) -> str:
             return f'lv.fields.polynomial({degree}, "{part}")'
         case {"kind": "solid", "l": degree, "m": order}:
             return f"lv.fields.solid({degree}, {order})"
+        case {"kind": "radial", "about": about, "a": a, "b": b, "radius": 1}:
+            return f'lv.fields.radial("{about}", {_number(a)}, {_number(b)})'
         case {"kind": "stretched", "field": field, "tensor": tensor}:
             return f"lv.fields.stretched({_field_code(field)}, {_number(tensor)})"
         case {"kind": "rotated", "field": field, "angle": angle, "axis": axis}:
@@ -166,6 +191,16 @@ def _field_code(spec: Mapping[str, Any]) -> str:
             return f"lv.fields.exp_trig({_number(k if many else k[0])}, {waves})"
         case _:
             return f"lv.fields.from_spec({dict(spec)!r})"
+
+
+def _layers_code(materials: Materials) -> str:
+    """Return Python that makes layers."""
+    layers = materials.partition
+    if not isinstance(layers, Layers):
+        raise TypeError("only layers are drawn")
+    places = [str(place) for place in layers.positions]
+    values = dict(zip(materials.names, materials.conductivities, strict=True))
+    return f"lv.layers({_number(layers.direction)}, {places}, {values})"
 
 
 def _plain_wave(spec: Mapping[str, Any]) -> bool:

@@ -7,19 +7,35 @@ import numpy as np
 from laplace_verify.arrays import Array
 from laplace_verify.errors import AnswerError
 from laplace_verify.principles.law import NoValuesError, Trial
+from laplace_verify.solvers import Answer
 
-__all__ = ["gradients_at", "seen", "told", "values_at"]
+__all__ = ["gradients_at", "places", "seen", "told", "values_at"]
 
 INSIDE, ON_PIECE = 300, 40  # points at which a function is asked
 WANTED = 200
 
 
+def places(answer: Answer) -> Array:
+    """Return the points (n, d) of an answer's values (n,): nodes, or the centres of its cells.
+
+    Raises
+    ------
+    NoValuesError
+        If the answer is a function.
+    """
+    if answer.mesh is not None and answer.location == "cell":
+        return answer.mesh.centroids()
+    if answer.points is None:
+        raise NoValuesError("a function has no nodes")
+    return answer.points
+
+
 def seen(trial: Trial, size: int) -> tuple[Array, Array]:
     """Return points (m, d) and values (m,) that speak for the whole answer of one size.
 
-    Nodes, with `cells` also a random point in each; of a function seeded points inside and on every
-    piece. Points nearer to the boundary than the declared clearance are left out, and so is NaN within h
-    of a curved piece, which means "outside my mesh".
+    Nodes, with `cells` also a random point in each, or centres of cells; of a function seeded points inside
+    and on every piece. Points nearer to the boundary than the declared clearance are left out, and so is NaN
+    within h of a curved piece, which means "outside my mesh".
 
     Raises
     ------
@@ -34,7 +50,7 @@ def seen(trial: Trial, size: int) -> tuple[Array, Array]:
         values = answer.value_at(points)
         points, values = _without_outside(trial, size, points, values)
     else:
-        points, values = np.asarray(answer.points), np.asarray(answer.values)
+        points, values = places(answer), np.asarray(answer.values)
         if answer.kind == "cells" and answer.location == "point":
             sample = answer.random_points(trial.seed)
             points, values = np.concatenate([points, sample.points]), np.concatenate([values, sample.values])

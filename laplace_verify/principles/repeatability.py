@@ -26,6 +26,7 @@ from laplace_verify.principles import strategies
 from laplace_verify.principles.law import Finding, Law, Trial
 from laplace_verify.principles.limits import Measurement, exactly
 from laplace_verify.principles.posed import Posed
+from laplace_verify.principles.reading import places
 from laplace_verify.principles.side_by_side import deep_points
 from laplace_verify.solvers import Adapter, Answer
 
@@ -51,11 +52,11 @@ def _rough(points: Array) -> Array:
 
 def _compared(answer: Answer, again: Answer, points: Array) -> tuple[Array, Array, Array]:
     """Return points, and the values of both answers there."""
-    if answer.values is None or answer.points is None:
+    if answer.values is None:
         return points, answer.value_at(points), again.value_at(points)
     if again.values is None or again.values.shape != answer.values.shape:
         raise AnswerError("solved again, the same problem has another number of values")
-    return answer.points, answer.values, again.values
+    return places(answer), answer.values, again.values
 
 
 def _measure(trial: Trial, size: int) -> Measurement:

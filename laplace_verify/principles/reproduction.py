@@ -22,7 +22,7 @@ def inapplicable(solver: Adapter) -> str | None:
 
 def problems(solver: Adapter, degree: int) -> st.SearchStrategy[Posed]:
     """Return a strategy for problems with a field of degree 0 or 1 within the declared capabilities."""
-    return strategies.posed_for(solver, degree=degree)
+    return strategies.posed_for(solver, degree=degree, floating=True)
 
 
 def misses(trial: Trial, size: int) -> Measurement:
@@ -33,9 +33,8 @@ def misses(trial: Trial, size: int) -> Measurement:
     points, values = seen(trial, size)
     exact = field.value(points)
     gap = values - exact
-    free = (
-        trial.problem.constant is not None
-    )  # the level of a pure Neumann answer: half the range of the gap is left
+    # the level of a pure Neumann answer may be left open: half the range of the gap is left
+    free = trial.problem.constant is not None and not trial.solver.fixes_constant
     shown = [int(np.argmax(gap)), int(np.argmin(gap))] if free else [int(np.argmax(np.abs(gap)))]
     violation = (gap.max() - gap.min()) / 2.0 if free else np.abs(gap).max()
     unit, worst = trial.posed.size, shown[0]

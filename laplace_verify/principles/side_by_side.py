@@ -7,7 +7,7 @@ import numpy as np
 from laplace_verify.arrays import Array
 from laplace_verify.principles.law import Trial
 from laplace_verify.principles.limits import Measurement
-from laplace_verify.principles.reading import values_at
+from laplace_verify.principles.reading import places, values_at
 
 __all__ = ["deep_points", "largest", "together"]
 
@@ -30,12 +30,12 @@ def together(trial: Trial, size: int) -> tuple[Array, Array, dict[str, Array]]:
     inside = deep_points(trial)
     answer = trial.answer(size, inside)
     others = {name: other.answer(size, inside) for name, other in trial.companions.items()}
-    nodes = answer.points
-    if nodes is not None and answer.values is not None:
+    if answer.values is not None:
+        nodes = places(answer)
         values = {
             name: other.values
             for name, other in others.items()
-            if other.values is not None and other.points is not None and np.array_equal(other.points, nodes)
+            if other.values is not None and np.array_equal(places(other), nodes)
         }
         if len(values) == len(others):
             return nodes, answer.values, values

@@ -58,6 +58,7 @@ TENSORS: dict[int, tuple[tuple[tuple[float, ...], ...], ...]] = {
         ((2.0, 1.0, 0.0), (1.0, 2.0, 0.0), (0.0, 0.0, 1.0)),
     ),
 }
+RARE = 4  # one in five
 SLOPES = st.integers(-3, 3)
 MOST_PIECES = 6  # of the shapes drawn
 FIRST_SLOPES = st.sampled_from((1, 2, 3, -1, -2))  # never 0: the field is not a constant
@@ -197,8 +198,12 @@ def posed(
     *,
     degree: int = 4,
     waves: bool = True,
+    floating: bool = False,
 ) -> st.SearchStrategy[Posed]:
-    """Return a strategy for problems with an exact field of degree 0 (constants), 1, or up to `degree`."""
+    """Return a strategy for problems with an exact field of degree 0 (constants), 1, or up to `degree`.
+
+    `floating` ones, with Neumann conditions alone, are among them if it is asked for.
+    """
     found = drawable(dims, kinds)
     if not found:
         raise InvalidArgument(
@@ -206,7 +211,7 @@ def posed(
         )
     allowed = [kind for kind in KINDS if kind in _names(conditions, "kind of condition", KINDS)]
     materials = _names(conductivity, "kind of conductivity", MATERIALS)
-    return _posed(found, allowed, sorted(materials), degree, waves)
+    return _posed(found, allowed, sorted(materials), degree, waves, floating and "neumann" in allowed)
 
 
 def posed_for(
@@ -215,10 +220,19 @@ def posed_for(
     materials: Iterable[str] = MATERIALS,
     degree: int = 4,
     waves: bool = True,
+    floating: bool = False,
 ) -> st.SearchStrategy[Posed]:
     """Return a strategy for problems as `posed` makes them, within the declared capabilities of a solver."""
     conductivity = solver.conductivity & set(materials)
-    return posed(solver.dims, solver.shapes, conditions_of(solver), conductivity, degree=degree, waves=waves)
+    return posed(
+        solver.dims,
+        solver.shapes,
+        conditions_of(solver),
+        conductivity,
+        degree=degree,
+        waves=waves,
+        floating=floating,
+    )
 
 
 def conditions_of(solver: Adapter) -> frozenset[str]:
@@ -268,12 +282,20 @@ def beyond_numbers(solver: Adapter) -> str | None:
 
 @st.composite
 def _posed(
-    draw: st.DrawFn, found: list[str], allowed: list[str], materials: list[str], degree: int, waves: bool
+    draw: st.DrawFn,
+    found: list[str],
+    allowed: list[str],
+    materials: list[str],
+    degree: int,
+    waves: bool,
+    floating: bool,
 ) -> Posed:
     shape = draw(shape_of_kind(found))
     k = draw(conductivities(shape.dim, materials))
     field = draw(_solutions(shape.dim, k, degree, waves))
     chosen = draw(_conditions(shape.pieces.names, allowed))
+    if floating and draw(st.integers(0, RARE)) == RARE:
+        chosen = dict.fromkeys(shape.pieces.names, "neumann")
     return Posed(shape=shape, conditions=chosen, conductivity=k, field=field)
 
 
