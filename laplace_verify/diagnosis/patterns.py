@@ -32,11 +32,11 @@ _VALUES = ("max", "L1", "L2")
 
 
 def short_norms(study: Study) -> dict[str, Order]:
-    """Return the deciding norms in which a study falls short, all with a number as observed order."""
+    """Return the deciding norms in which a study falls short, those whose order between levels is known."""
     return {
         norm: order
         for norm, order in study.orders.items()
-        if order.decides and order.verdict is Verdict.FAIL and order.observed is not None
+        if order.decides and order.verdict is Verdict.FAIL and _observed(order) is not None
     }
 
 
@@ -65,6 +65,13 @@ def patterns(failing: Sequence[Study]) -> list[Finding]:
         ),
         _pattern(
             failing,
+            lambda study: any(_algebraic(order) for order in short_norms(study).values()),
+            "converge like a power of h only, where exponential convergence is declared. Typical of "
+            "interpolation of low order between points, of one condition by a formula of low order, or of "
+            "data that are not smooth",
+        ),
+        _pattern(
+            failing,
             _behind_the_values,
             "fall short in gradient or flux only, or in quantities taken from the answer; the values "
             "converge as expected: look at how gradients, fluxes and the level are recovered",
@@ -81,7 +88,9 @@ def _pattern(
     showing = [study for study in failing if shows(study)]
     if not showing or len(showing) < _SHARE * len(failing):
         return None
-    orders = [o.observed for study in showing for o in short_norms(study).values() if o.observed is not None]
+    orders = [
+        seen for study in showing for o in short_norms(study).values() if (seen := _observed(o)) is not None
+    ]
     who = counted(len(showing), len(failing), "failing cases")
     said = f"median {median(orders):.2f}, from {min(orders):.2f} to {max(orders):.2f}" if orders else "none"
     evidence = f"observed orders: {said}; "
@@ -117,8 +126,21 @@ def _without_limit(study: Study) -> bool:
     return bool(short_norms(study)) and all(_flat(order) for order in short_norms(study).values())
 
 
+def _observed(order: Order) -> float | None:
+    """Return the observed order, between the last levels where a rate and no order was looked for."""
+    if order.expected != "exponential":
+        return order.observed
+    known = [pair for pair in order.pairs if pair is not None][-2:]
+    return sum(known) / len(known) if known else None
+
+
 def _flat(order: Order) -> bool:
-    return order.observed is not None and order.observed < _NEAR
+    observed = _observed(order)
+    return observed is not None and observed < _NEAR
+
+
+def _algebraic(order: Order) -> bool:
+    return order.expected == "exponential" and not _flat(order)
 
 
 def _lost(order: Order, loss: float) -> bool:

@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from laplace_verify.arrays import Array
+from laplace_verify.geometry import Windowed
 from laplace_verify.measure.data_features import data_features
 from laplace_verify.measure.results import Feature
 
@@ -45,14 +46,16 @@ def features(case: Case, exact: Exact) -> dict[str, Feature]:
 
 def problem_features(problem: Problem) -> dict[str, Feature]:
     """Return what can be said of a problem without its solution: shape, conditions and materials."""
-    shape = problem.shape
+    shape, infinity = problem.shape, problem.at_infinity
     kinds = {piece.name: piece.kind for piece in problem.pieces}
     used = set(kinds.values()) - {"axis", "periodic"}
     lower, upper = shape.bounding_box
     tensor = isinstance(problem.conductivity, np.ndarray)
     return {
         "dimension": float(shape.dim),
-        "shape": shape.kind,
+        "shape": (shape.whole if isinstance(shape, Windowed) else shape).kind,
+        "unbounded domain": not shape.bounded or isinstance(shape, Windowed),
+        "behaviour at infinity": infinity[0] if isinstance(infinity, tuple) else infinity,
         "Dirichlet condition": "dirichlet" in kinds.values(),
         "Neumann condition": "neumann" in kinds.values(),
         "Robin condition": "robin" in kinds.values(),

@@ -11,8 +11,13 @@ with sees the corners from both sides, so Galerkin's method gives, by duality,
 
 For collocation this gain is proven on smooth curves only; on polygons it is stable, but where solution or
 density is singular nothing but convergence is promised without grading the elements. Where the flux itself is
-smooth side by side (direct formulation, smooth u) the author's order is held against the method. Next to the
-boundary and for traces no rate decides.
+smooth side by side (direct formulation, smooth u) the author's order is held against the method, but for what
+re-entrant corners cost the dual density: its potential has the values of G(x, .), the solution with its pole
+at the point x inside, which is smooth outside, so that the dual density sees the corners of the shape alone:
+
+    min(p, p/2 + min(p/2, d)).
+
+Next to the boundary and for traces no rate decides.
 
 References
 ----------
@@ -21,7 +26,7 @@ Hsiao & Wendland 1981, "The Aubin-Nitsche lemma for integral equations", J. Inte
 polygonal domains and Galerkin approximation", Banach Center Publ. 15, 175-251 (corners, both sides). Arnold &
 Wendland 1983, Math. Comp. 41, 349-381, and Saranen & Wendland 1985, Math. Comp. 45, 91-108 (collocation on
 smooth curves). Costabel & Stephan 1987, Math. Comp. 49, 461-478 (collocation on polygons). All from memory,
-unchecked; the combination for indirect formulations is derived here.
+unchecked; the combination for indirect formulations and the dual density of direct ones are derived here.
 """
 
 from __future__ import annotations
@@ -39,6 +44,10 @@ GALERKIN = (
     "min(p/2, {s:.3g}) + min(p/2, {dual:.3g}) = {rate:.3g} inside, {formulation} formulation: the density "
     "sees the corners {sides} (Costabel & Stephan 1985)"
 )
+REENTRANT = (
+    "p/2 + {domain:.3g} = {rate:.3g} inside: the dual density sees the re-entrant corner "
+    "(Hsiao & Wendland 1981)"
+)
 COLLOCATION = (
     "corners and no grading: convergence, but no rate is proven for {method} (Costabel & Stephan 1985)"
 )
@@ -53,7 +62,9 @@ def boundary_element(norm: str, declared: float, method: Method, smoothness: Smo
     direct = method.formulation == "direct"
     cornerless = math.isinf(smoothness.domain) and complement is not None and math.isinf(complement)
     if smoothness.smooth and (cornerless or direct):
-        return Promise(declared, norm == "L2" or far, SMOOTH if far else f"{SMOOTH}; {NEAR}")
+        rate = min(declared, declared / 2 + min(declared / 2, smoothness.domain))
+        basis = SMOOTH if rate == declared else REENTRANT.format(domain=smoothness.domain, rate=rate)
+        return Promise(rate, norm == "L2" or far, basis if far else f"{basis}; {NEAR}")
     if method.discretisation == "Galerkin" and method.formulation is not None and complement is not None:
         rate, basis = _galerkin(declared, direct, smoothness, complement)
         return Promise(rate, far, basis if far else f"{basis}; {NEAR}")

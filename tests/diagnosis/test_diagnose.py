@@ -1,6 +1,7 @@
 """The diagnosis names what sets failing cases apart, and names nothing where nothing does."""
 
 import math
+from dataclasses import replace
 
 import numpy as np
 import pytest
@@ -89,6 +90,20 @@ def test_smallest_case_has_lowest_dimension_then_fewest_unknowns(study, record):
 def test_manner_of_failing_is_named(study, record, observed, norm, words):
     failing = [study(f"f{k}", Verdict.FAIL, {}, observed=observed, norm=norm) for k in range(3)]
     found = diagnose(record([*failing, study("p", Verdict.PASS, {})]))
+    assert [words in suspect.text for suspect in found] == [True]
+
+
+@pytest.mark.parametrize(
+    ("pairs", "words"),
+    [([None, 0.1, 0.0], "wrong limit"), ([5.0, 2.1, 1.9], "like a power of h only")],
+)
+def test_manner_of_failing_is_told_from_levels_where_a_rate_is_declared(study, record, pairs, words):
+    def exponential(name):
+        found = study(name, Verdict.FAIL, {}, observed=0.4)
+        order = replace(found.orders["max"], expected="exponential", observed=None, pairs=pairs)
+        return replace(found, orders={"max": order})
+
+    found = diagnose(record([*(exponential(f"f{k}") for k in range(3)), study("p", Verdict.PASS, {})]))
     assert [words in suspect.text for suspect in found] == [True]
 
 

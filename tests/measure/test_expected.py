@@ -103,7 +103,8 @@ def test_points_at_a_fixed_distance_feel_the_pollution_only(kind, norm, order, s
 
 
 # Square, smooth solution: the flux is smooth side by side, so a direct method keeps its order; an indirect
-# one sees the outer corners of 270 degrees, exponent 2/3, in density and dual density.
+# one sees the outer corners of 270 degrees, exponent 2/3, in density and dual density. On the L-shape the
+# dual density of a direct method sees the re-entrant corner.
 @pytest.mark.parametrize(
     ("declared", "norm", "s", "d", "c", "expected", "decides"),
     [
@@ -111,6 +112,7 @@ def test_points_at_a_fixed_distance_feel_the_pollution_only(kind, norm, order, s
         ({}, "max", INF, INF, INF, 3, False),
         ({"clearance": 0.1}, "max", INF, INF, INF, 3, True),
         ({"formulation": "direct"}, "L2", INF, 2, 2 / 3, 3, True),
+        ({"formulation": "direct"}, "L2", INF, 2 / 3, 2 / 3, 3 / 2 + 2 / 3, True),
         ({"formulation": "indirect"}, "L2", INF, 2, 2 / 3, "decrease", True),
         ({"formulation": "indirect", "discretisation": "collocation", "clearance": 0.1}, "max", INF, 2, 2 / 3,
          "decrease", True),

@@ -7,7 +7,8 @@ from laplace_verify.cases import catalogue
 from laplace_verify.geometry import Annulus, Disc, Rectangle
 from laplace_verify.measure.exact import Exact
 from laplace_verify.measure.features import features
-from laplace_verify.problems import case
+from laplace_verify.measure.windows import through_window
+from laplace_verify.problems import case, robin
 
 SQUARE = Rectangle((0, 0), (1, 1))
 SADDLE = fields.affine((2.0, -1.0))
@@ -39,6 +40,21 @@ def test_conditions_are_told_apart_by_the_end_of_the_axis(side, end):
     found = of(SQUARE, {side: "neumann"}, SADDLE)
     ends = {"low": "low end of an axis (left, bottom)", "high": "high end of an axis (right, top)"}
     assert [where for where, words in ends.items() if found.get(f"Neumann condition at the {words}")] == [end]
+
+
+def test_unbounded_domains_and_what_is_asked_for_at_infinity_are_named():
+    case_ = catalogue["pile-in-tidal-stream"]
+    found = features(through_window(case_), Exact(through_window(case_)))
+    assert (found["unbounded domain"], found["behaviour at infinity"]) == (True, "flow")
+    assert found["shape"] == case_.problem.shape.kind
+    bounded = of(SQUARE, {}, SADDLE)
+    assert (bounded["unbounded domain"], bounded["behaviour at infinity"]) == (False, None)
+
+
+def test_neumann_and_robin_conditions_have_a_name_together():
+    assert of(SQUARE, {"left": "neumann"}, SADDLE)["Neumann or Robin condition"] is True
+    assert of(SQUARE, {"left": robin(1.0)}, SADDLE)["Neumann or Robin condition"] is True
+    assert of(SQUARE, {}, SADDLE)["Neumann or Robin condition"] is False
 
 
 def test_conditions_on_curves_are_told_from_those_on_sides():
