@@ -56,7 +56,7 @@ def _plate_uneven_film() -> Definition:
     return Definition(
         title="Plate under a film that varies along its edges",
         solution="Re (z - 1/2)^3 + y + 2, z = x + i y",
-        note="The coefficient grows along the top and falls along the right side; a mean of it is not enough.",
+        note="The coefficient grows along the top and falls along the right side; no mean will do.",
         reading="A chilled deck plate in a cross wind: the air film thins downstream.",
         shape=PLATE,
         field=fields.polynomial(3, centre=("1/2", 0)) + fields.affine((0, 1), 2),

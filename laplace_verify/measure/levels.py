@@ -18,7 +18,7 @@ __all__ = [
 
 PLANE, SPACE = (8, 16, 32, 64), (6, 9, 13, 19, 28)
 SPACE_RATIO = 1.45
-MOST_ROUNDS = 2
+MOST_ROUNDS = 3
 MOST_PAID_ROUNDS = 4
 # a bound on work that does not depend on the machine, so that results do not either
 MOST_UNKNOWNS = {1: 300_000, 2: 300_000, 3: 100_000}

@@ -24,6 +24,7 @@ __all__ = ["Finding", "judge_decrease", "judge_exponential", "stagnation"]
 STEEP = 6.0  # a fall to the floor in one step counts as geometric from this local order on
 UNLIKELY = 0.1  # relative error of a functional that no coarse grid meets by chance and keeps
 FLAT = 0.9  # last error over first: nothing was gained
+STILL_FALLING = 0.3  # order between the last levels above which nothing is said to have stopped
 # Relative errors below it that do not fall look like a tolerance or a precision, not like a wrong limit;
 # gradients take ten times as much, since single precision divided by h comes to that on affordable grids.
 TINY, TINY_GRADIENT = 1e-5, 1e-4
@@ -58,6 +59,13 @@ def stagnation(series: Series, expected: float = 1.0) -> Finding | None:
             "a reduced precision stops it, declare error_floor"
         )
         return Finding(Verdict.INCONCLUSIVE, words, floor=floor_kind(series.relative[-1]))
+    slope = pair_orders(series.h[: series.above], series.errors[: series.above])[-1]
+    if slope is not None and slope > STILL_FALLING:
+        words = (
+            f"the error is no smaller at size {series.sizes[series.above - 1]} than at size "
+            f"{series.sizes[0]}, but falls at the end; run finer sizes"
+        )
+        return Finding(Verdict.INCONCLUSIVE, words, finer=True)
     if last > 2 * first:
         return Finding(Verdict.FAIL, f"diverges: the error grows from {first:.2e} to {last:.2e}")
     words = f"does not converge: the error stays at {last:.2e} (relative {series.relative[-1]:.1e})"

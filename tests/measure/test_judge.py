@@ -104,6 +104,14 @@ def test_growing_errors_fail_as_diverging():
     assert "diverges" in reason
 
 
+def test_errors_that_jump_and_fall_at_the_end_are_open():
+    # A change of condition missed by up to half a cell: another part of it at every size.
+    verdict, reason = verdict_of(halving(4), [6.3e-3, 8.5e-3, 13.6e-3, 9.8e-3], 1.0)
+    assert verdict is Verdict.INCONCLUSIVE
+    assert "falls at the end" in reason
+    assert verdict_of(halving(5), [6.3e-3, 8.5e-3, 13.6e-3, 9.8e-3, 9.5e-3], 1.0)[0] is Verdict.FAIL
+
+
 def test_small_errors_that_do_not_fall_look_like_a_tolerance():
     verdict, reason = verdict_of(halving(4), np.full(4, 3e-9))
     assert verdict is Verdict.INCONCLUSIVE
