@@ -19,7 +19,7 @@ Array: TypeAlias = npt.NDArray[np.float64]
 BoolArray: TypeAlias = npt.NDArray[np.bool_]
 IntArray: TypeAlias = npt.NDArray[np.int64]
 
-BLOCK = 8192  # points per block: the temporaries of one block stay in cache
+BLOCK = 16000  # points per block: its temporaries stay in cache; powers of 2 alias there
 
 
 def shown(given: object) -> str:

@@ -63,7 +63,7 @@ class DiscField(Field):
         radius = float(self.radius)
         x, y = (column - float(c) for column, c in zip(points.T, self.centre, strict=True))
         slack = OUTSIDE * radius + 4 * np.finfo(np.float64).eps * float(np.abs(self._floats()).max())
-        inside: BoolArray = np.sqrt(x * x + y * y) <= radius + slack
+        inside: BoolArray = x * x + y * y <= (radius + slack) ** 2
         return inside
 
     def _floats(self) -> Array:

@@ -25,6 +25,8 @@ from fractions import Fraction
 from functools import lru_cache
 from typing import Any
 
+import numpy as np
+
 from laplace_verify.contexts import FLOAT, Number, Precise
 from laplace_verify.errors import FieldError
 from laplace_verify.fields.disc import DiscField
@@ -33,6 +35,9 @@ from laplace_verify.fields.singular import Singularity
 from laplace_verify.fields.specs import registered
 
 __all__ = ["Arcs", "DiscArcs", "arcs"]
+
+
+NEAR = 0.25  # |a|^2 of a jump from which a point is seen if it is the nearest
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -118,28 +123,31 @@ class DiscArcs(DiscField):
 
     def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:  # noqa: ARG002  # no cut
         offsets = [self._from_jump(ctx, x, i) for i in range(len(self.turns))]
-        squares = [ax * ax + ay * ay for _, (ax, ay) in offsets]
-        gaps = [  # 1 - |z|^2
-            -2 * (ax * ex + ay * ey) - square
-            for ((ex, ey), (ax, ay)), square in zip(offsets, squares, strict=True)
-        ]
-        gap, nearest = gaps[0], squares[0]
-        for other, square in zip(gaps[1:], squares[1:], strict=True):
-            closer = square < nearest
-            gap, nearest = ctx.where(closer, other, gap), ctx.where(closer, square, nearest)
-        gap = ctx.where(gap > 0, gap, ctx.fabs(0 * gap))  # not -0.0, whose atan2 is -pi
-        total: Any = 0
+        gap, at_jump = _rim_gap(ctx, offsets)
+        total: Any = None
         for i, value in enumerate(self.values):
             if not value:
                 continue
             (_, (ax, ay)), (_, (bx, by)) = offsets[i], offsets[(i + 1) % len(offsets)]
             half = (rational(self.turns[(i + 1) % len(self.turns)]) - rational(self.turns[i])) % 1 / 2
             cosine, sine = _direction_rounded(ctx, half)
-            real, imaginary = bx * ax + by * ay, by * ax - bx * ay  # b conj(a)
-            angle = ctx.atan2(gap * sine, real * cosine + imaginary * sine)
-            total = total + ctx.number(value) * (angle / ctx.pi)
-        at_jump = nearest == 0
-        return ctx.where(at_jump, math.nan if ctx is FLOAT else ctx.nan, total + 0 * gap)
+            share = bx * ay  # whole arrays cost as much as arithmetic, so they are updated in place
+            share -= by * ax
+            share *= -sine
+            if cosine:
+                share += (bx * ax + by * ay) * cosine  # Re(b conj(a) e^{-i delta})
+            share = ctx.atan2(gap * sine, share)
+            share /= ctx.pi
+            if value != 1:
+                share *= ctx.number(value)
+            total = share if total is None else total + share
+        if total is None:
+            total = 0 * gap
+        if ctx is not FLOAT:
+            return ctx.nan if at_jump else total
+        if at_jump.any():
+            total = np.where(at_jump, math.nan, total)
+        return total
 
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:  # noqa: ARG002  # no cut
         real: Any = 0 * x[0]
@@ -159,8 +167,48 @@ class DiscArcs(DiscField):
     def _from_jump(self, ctx: Any, x: tuple[Any, ...], i: int) -> tuple[tuple[Any, Any], tuple[Any, Any]]:
         """Return e^{i alpha} and z - e^{i alpha} for the start of arc i, to full relative accuracy."""
         unit, high, low = _jump(ctx, self.turns[i], self.centre, self.radius)
-        radius = ctx.number(self.radius)
-        return unit, tuple((c - a - b if b else c - a) / radius for c, a, b in zip(x, high, low, strict=True))
+        apart = [c - a - b if b else c - a for c, a, b in zip(x, high, low, strict=True)]
+        if self.radius != 1:
+            apart = [c / ctx.number(self.radius) for c in apart]
+        return unit, (apart[0], apart[1])
+
+
+def _rim_gap(ctx: Any, offsets: list[Any]) -> tuple[Any, Any]:
+    """Return 1 - |z|^2, at least +0, as seen from a jump that is near, and whether z is a jump itself.
+
+    Its rounding is that of the distance from the jump it is seen from.
+    """
+    unit, offset = offsets[0]
+    gap, nearest = _gap_from(unit, offset)
+    if ctx is not FLOAT:
+        for unit, offset in offsets[1:]:
+            other, square = _gap_from(unit, offset)
+            if square < nearest:
+                gap, nearest = other, square
+        return (gap if gap > 0 else ctx.mpf(0)), nearest == 0
+    at_jump = nearest == 0
+    for unit, (ax, ay) in offsets[1:]:
+        square = ax * ax
+        square += ay * ay
+        here = np.flatnonzero(square < NEAR)
+        here = here[square[here] < nearest[here]]
+        gap[here], nearest[here] = _gap_from(unit, (ax[here], ay[here]))
+        at_jump[here] = nearest[here] == 0
+    gap = np.maximum(gap, 0.0, out=gap)
+    gap += 0.0  # not -0.0, whose atan2 is -pi
+    return gap, at_jump
+
+
+def _gap_from(unit: tuple[Any, Any], offset: tuple[Any, Any]) -> tuple[Any, Any]:
+    """Return 1 - |z|^2 = -2 Re(a e^{-i alpha}) - |a|^2 and |a|^2 for a jump at `unit`."""
+    (ex, ey), (ax, ay) = unit, offset
+    square = ax * ax
+    square += ay * ay
+    gap = ax * (-2 * ex)
+    if ey:
+        gap += ay * (-2 * ey)
+    gap -= square
+    return gap, square
 
 
 _SOURCE = Precise(40)
@@ -172,6 +220,7 @@ def _direction(ctx: Any, turn: Fraction) -> tuple[Any, Any]:
     return ctx.cospi(angle), ctx.sinpi(angle)
 
 
+@lru_cache(maxsize=512)
 def _direction_rounded(ctx: Any, turn: Fraction) -> tuple[Any, Any]:
     """Return the same as numbers of the context."""
     cosine, sine = _direction(_SOURCE if ctx is FLOAT else ctx, turn)

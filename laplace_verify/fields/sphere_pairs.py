@@ -14,8 +14,9 @@ images is at most
     sum_{n > N} sinh m/sinh(n m)/(1 - e^-m) <= 2 sinh m e^{-(N+1) m}/((1 - e^-m)^2 (1 - e^{-2(N+1) m})),
 
 and of the gradient at most that over R (1 - e^-m). N is taken so that both are below one unit of the working
-precision, relative to 1 and 1/R. About 41/m images do in float64: 44 at a gap of one radius, 1224
-at 1/1000.
+precision, relative to 1 and 1/R. About 41/m images do in float64: 44 at a gap of one radius, 1224 at 1/1000.
+Most of them crowd about the limit points z = +-d, at least R (1 - e^-m) below the surfaces; in float64 those
+are summed by multipoles there (`charge_clusters`).
 """
 
 from __future__ import annotations
@@ -32,6 +33,7 @@ from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.contexts import FLOAT, Number
 from laplace_verify.errors import FieldError
 from laplace_verify.fields.base import Field
+from laplace_verify.fields.charge_clusters import Cluster
 from laplace_verify.fields.exact import Exact, exact, exact_point, offset, show
 from laplace_verify.fields.motions import show_point
 from laplace_verify.fields.singular import Basis, Singularity
@@ -41,6 +43,7 @@ __all__ = ["SpherePair", "sphere_pair"]
 
 NARROWEST = 1e-5  # least gap in radii: 13000 images
 SURFACE = 1e-9  # of the radius: points this little inside count as on the sphere
+CROWDED = 0.03  # of the room around a limit point: so near to it images are summed by multipoles
 SHOWN = 8  # images declared as singular points
 
 
@@ -114,27 +117,28 @@ class SpherePair(Field):
 
     def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:  # noqa: ARG002  # no cut
         _, _, dz, flat = self._offsets(ctx, x)
-        total = 0 * dz
-        for charge, z in self._charges(ctx):
-            square = dz - z
-            square *= square  # in place: there are hundreds of images
-            square += flat
-            total += charge / ctx.sqrt(square)
-        return total
+        if ctx is FLOAT:
+            charges, clusters = self._gathered()
+            return sum((cluster.value(dz, flat) for cluster in clusters), _potential(charges, dz, flat))
+        return sum((charge / ctx.sqrt((dz - z) ** 2 + flat) for charge, z in self._charges(ctx)), ctx.mpf(0))
 
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:  # noqa: ARG002
         dx, dy, dz, flat = self._offsets(ctx, x)
-        across, along = 0 * dz, 0 * dz
-        for charge, height in self._charges(ctx):
-            z = dz - height
-            square = z * z
-            square += flat
-            square *= ctx.sqrt(square)
-            pull = -charge / square
-            across += pull
-            pull *= z
-            along += pull
+        if ctx is FLOAT:
+            charges, clusters = self._gathered()
+            parts = [cluster.slopes(dz, flat) for cluster in clusters] + [_pulls(charges, dz, flat)]
+        else:
+            parts = []
+            for charge, height in self._charges(ctx):
+                z = dz - height
+                pull = -charge / ctx.sqrt(z * z + flat) ** 3
+                parts.append((pull, pull * z))
+        across, along = (sum(column[1:], column[0]) for column in zip(*parts, strict=True))
         return across * dx, across * dy, along
+
+    def _gathered(self) -> tuple[list[tuple[float, float]], tuple[Cluster, ...]]:
+        """Return for float64 the charges that are summed one by one and the clusters of the others."""
+        return _gathered(self.radius, self.gap, self.potentials)
 
     def _valid(self, points: Array) -> BoolArray:
         """Return which points are outside both spheres."""
@@ -182,6 +186,63 @@ def images(
         odd = n % 2 == 1
         found.append((height, above * q if odd else -below * q, below * q if odd else -above * q))
     return tuple(found)
+
+
+@lru_cache(maxsize=64)
+def _gathered(
+    radius: Exact, gap: Exact, potentials: tuple[Exact, ...]
+) -> tuple[list[tuple[float, float]], tuple[Cluster, ...]]:
+    """Return charges (q, z) that are summed one by one, and the clusters of the others about z = +-d."""
+    m, d = angle(FLOAT, radius, gap)
+    room = -float(radius) * math.expm1(-m)  # from +-d to the surface around it
+    found = images(FLOAT, radius, gap, potentials)  # height, charge above, charge below
+    # coth(n m) - 1 = 2 / (e^{2 n m} - 1), without cancellation
+    apart = [2 * d / math.expm1(2 * n * m) for n in range(len(found), 0, -1)]
+    inside = [k for k, a in enumerate(apart) if a <= CROWDED * room]
+    single = [
+        (q, at)
+        for k, (z, up, down) in enumerate(found)
+        if apart[k] > CROWDED * room
+        for q, at in ((up, z), (down, -z))
+        if q
+    ]
+    rows = np.array([[found[k][1], found[k][2], apart[k]] for k in inside]).reshape(-1, 3)
+    clusters = [
+        Cluster.of(sign * d, rows[:, column], sign * rows[:, 2], room)
+        for column, sign in ((0, 1.0), (1, -1.0))
+        if rows[:, column].any()
+    ]
+    return single, tuple(clusters)
+
+
+def _potential(charges: list[tuple[float, float]], dz: Array, flat: Array) -> Array:
+    """Return the sum of q / distance."""
+    total, square = np.zeros_like(dz), np.empty_like(dz)
+    for charge, z in charges:
+        np.subtract(dz, z, out=square)
+        square *= square
+        square += flat
+        np.sqrt(square, out=square)
+        np.divide(charge, square, out=square)
+        total += square
+    return total
+
+
+def _pulls(charges: list[tuple[float, float]], dz: Array, flat: Array) -> tuple[Array, Array]:
+    """Return the sums of -q / distance^3 and of -q (z - z_n) / distance^3."""
+    across, along = np.zeros_like(dz), np.zeros_like(dz)
+    z, square, root = np.empty_like(dz), np.empty_like(dz), np.empty_like(dz)
+    for charge, height in charges:
+        np.subtract(dz, height, out=z)
+        np.multiply(z, z, out=square)
+        square += flat
+        np.sqrt(square, out=root)
+        square *= root
+        np.divide(-charge, square, out=square)
+        across += square
+        z *= square
+        along += z
+    return across, along
 
 
 def sphere_pair(

@@ -172,8 +172,8 @@ def peak(call, count, kind):
 @pytest.mark.parametrize("call", ["value", "gradient"])
 @pytest.mark.parametrize("name", KINDS)
 def test_memory_does_not_grow_with_the_points(name, call):
-    """Four times the points need the same temporaries: those of one block, here of 8192 points."""
-    few, many = (peak(call, count, KINDS[name]) for count in (16384, 65536))
+    """Four times the points need the same temporaries: those of one block, here of 16000 points."""
+    few, many = (peak(call, count, KINDS[name]) for count in (32000, 128000))
     assert many <= 1.1 * few + 65536
 
 
@@ -182,5 +182,26 @@ def test_check_of_memory_can_fail():
         def value(self, points):
             return np.sin(np.exp(points).sum(axis=1))
 
-    few, many = (peak("value", count, (Whole(), (0, 0), (1, 1))) for count in (16384, 65536))
+    few, many = (peak("value", count, (Whole(), (0, 0), (1, 1))) for count in (32000, 128000))
     assert many > 1.1 * few + 65536
+
+
+MANY = 10_000_000
+BOUND = 64 * 2**20  # bytes
+
+
+@pytest.mark.slow
+@pytest.mark.parametrize("name", ["wave", "rectangle", "spheres"])  # closed form, table of a series, series
+def test_ten_million_points_need_less_than_64_mebibytes(name):
+    """Beyond the points, 160 or 240 MB, and the values, 80 MB."""
+    assert peak("value", MANY, KINDS[name]) <= BOUND
+
+
+def test_ten_million_points_at_once_would_need_more():
+    """A tenth of them: one temporary of all points is beyond a tenth of the bound."""
+
+    class Whole:
+        def value(self, points):
+            return np.exp(points).sum(axis=1)
+
+    assert not peak("value", MANY // 10, (Whole(), (0, 0), (1, 1))) <= BOUND / 10
