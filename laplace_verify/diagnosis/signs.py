@@ -1,10 +1,11 @@
 """Signs of trouble in the remarks and reasons of studies, which say more than a verdict does.
 
 A mistake that leaves the order as it is shows in remarks: an error constant far above that of
-interpolation, gradients that stay, a floor. Where a case fails, only the signs that name a cause are weighed;
-where none does, every sign is, and the cases left open are compared with those that pass. Score: weight of
-the sign times the share of the failing cases that show it; where nothing fails, the weight alone. A sign that
-shows a cause directly weighs as much as a feature that separates the cases perfectly, and comes before it.
+interpolation, gradients that stay, a floor. Where a case fails, only the signs that name a cause are weighed,
+in open cases too; where none does, every sign is, and the cases left open are compared with those that pass.
+Score: weight of the sign times the share of the failing and open cases that show it; where nothing fails, the
+weight alone. A sign that shows a cause directly weighs as much as a feature that separates the cases
+perfectly, and comes before it.
 """
 
 from __future__ import annotations
@@ -90,6 +91,13 @@ MEANINGS = (  # where two weigh the same, the first comes first
         weight=0.7,
     ),
     Meaning(
+        kinds=("limited between nodes",),
+        text="values at the solver's own points converge an order faster than those between them: how values "
+        "are evaluated between points, or the cells handed back",
+        weight=1.0,
+        cause=True,
+    ),
+    Meaning(
         kinds=("wrong standard errors",),
         text="the stated standard errors do not fit the errors: a bias, or their scale",
         weight=0.9,
@@ -110,17 +118,20 @@ MEANINGS = (  # where two weigh the same, the first comes first
 )
 
 
-def signs_among_failing(failing: Sequence[Study], passing: Sequence[Study]) -> list[Finding]:
-    """Return the causes that the signs of failing studies name, and what those cases share."""
-    failing, passing = _one_floor(failing), _one_floor(passing)
+def signs_among_failing(studies: Sequence[Study]) -> list[Finding]:
+    """Return the causes that the signs of failing and open studies name, and what those cases share."""
+    ran = _one_floor([study for study in studies if study.levels])
+    bad = [study for study in ran if study.verdict in (Verdict.FAIL, Verdict.INCONCLUSIVE)]
+    words = (
+        "failing cases" if all(study.verdict is Verdict.FAIL for study in bad) else "failing or open cases"
+    )
     found = []
     for meaning in MEANINGS:
-        showing = [study for study in failing if _first(study, meaning)] if meaning.cause else []
+        showing = [study for study in bad if _first(study, meaning)] if meaning.cause else []
         if showing:
-            others = [study for study in (*failing, *passing) if not _first(study, meaning)]
-            who = counted(len(showing), len(failing), "failing cases")
-            text = f"{meaning.text} ({who}){_shared(showing, others)}"
-            found.append(_finding(meaning, showing, text, len(showing) / len(failing)))
+            others = [study for study in ran if not _first(study, meaning)]
+            text = f"{meaning.text} ({counted(len(showing), len(bad), words)}){_shared(showing, others)}"
+            found.append(_finding(meaning, showing, text, len(showing) / len(bad)))
     return found
 
 

@@ -80,8 +80,8 @@ def diagnose(record: Record) -> list[Suspect]:
     passing = [study for study in record.studies if study.verdict is Verdict.PASS]
     broken = [study for study in record.studies if study.verdict is Verdict.ERROR]
     ran = [study for study in record.studies if study.levels and study.verdict is not Verdict.ERROR]
-    findings = signs_among_failing(failing, passing)
-    findings += shared_features(failing, passing, "failing", "passing")
+    findings = signs_among_failing(studies) if failing else []
+    findings += shared_features(failing, _telling(passing), "failing", "passing")
     findings += patterns(failing)
     findings += _places(record, failing)
     findings += missed_polynomials(studies, bool(failing))
@@ -99,6 +99,14 @@ def diagnose(record: Record) -> list[Suspect]:
         )
         for finding in ranked
     ]
+
+
+def _telling(passing: Sequence[Study]) -> list[Study]:
+    """Return the passing studies that were held to a rate: a mere decrease is no contrast to an order."""
+    return [
+        study for study in passing
+        if not study.deciding or any(study.orders[norm].expected != "decrease" for norm in study.deciding)
+    ]  # fmt: skip
 
 
 def _places(record: Record, failing: Sequence[Study]) -> list[Finding]:

@@ -1,5 +1,7 @@
 """Local orders, remarks, polynomials and laws as evidence, each with a twin that must say nothing."""
 
+from dataclasses import replace
+
 import pytest
 
 from laplace_verify.campaign.record import record_from_json, record_to_json
@@ -150,6 +152,41 @@ def test_an_iteration_that_stops_early_is_weighed_beside_failing_cases(study, re
     failing = [study(f"f{k}", FAIL, {}, observed=0.0, signs=["early stop"]) for k in range(2)]
     assert suspects(record, *failing, study("p", PASS, {}))[0].startswith("The iteration stops early")
     assert not any(meaning.cause for meaning in MEANINGS if "large error constant" in meaning.kinds)
+
+
+def test_a_cause_that_open_cases_name_counts_beside_failing_ones(study, record):
+    open_ = [study(f"o{k}", OPEN, {}, signs=["single-precision floor"]) for k in range(3)]
+    failing, passing = study("f", FAIL, {}, observed=0.0), study("p", PASS, {})
+    first = suspects(record, failing, *open_, passing)[0]
+    assert first.startswith("The error stops at the size of single precision")
+    assert "(3 of the 4 failing or open cases)" in first
+    assert "single precision" not in suspects(record, failing, study("o", OPEN, {}), passing)[0]
+
+
+def test_nodes_that_converge_faster_than_what_lies_between_point_to_the_evaluation(study, record):
+    failing = [study(f"f{k}", FAIL, {}, observed=1.0, signs=["limited between nodes"]) for k in range(2)]
+    assert "how values are evaluated between points" in suspects(record, *failing, study("p", PASS, {}))[0]
+
+
+def test_floors_of_one_solver_are_named_by_the_kind_that_most_have(study, record):
+    single = [study(f"s{k}", OPEN, {}, signs=["single-precision floor"]) for k in range(2)]
+    loose = study("l", OPEN, {}, signs=["loose floor"])
+    found = suspects(record, *single, loose, study("p", PASS, {}))
+    assert "single precision" in found[0]
+    assert "remarked in 3 of the 4 cases" in found[0]
+    assert not [text for text in found if "loose tolerance" in text]
+
+
+def test_cases_that_pass_by_a_mere_decrease_are_no_contrast(study, record):
+    failing = [study(f"f{k}", FAIL, {"tag smooth": True}, observed=1.0) for k in range(5)]
+    singular = study("p", PASS, {})
+    assert any("tag smooth" in text for text in suspects(record, *failing, singular))
+    lenient = replace(
+        singular, orders={"max": replace(singular.orders["max"], expected="decrease", observed=1.0)}
+    )
+    texts = suspects(record, *failing, lenient)
+    assert not any("tag smooth:" in text for text in texts)
+    assert any(text.startswith("None of the cases is passing to compare with") for text in texts)
 
 
 def test_what_open_cases_share_is_said_where_nothing_fails(study, record):

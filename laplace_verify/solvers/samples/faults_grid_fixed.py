@@ -101,7 +101,14 @@ def values_round_the_boundary(equations: Equations, side: Side) -> None:
     "rows of bottom and top run without their end nodes: a corner with a flux side is closed by that side "
     "alone",
     kind="Dirichlet enforcement",
-    suspects=("several kinds of condition", "Neumann condition", "neumann on", "corner", "lose one order"),
+    suspects=(
+        "several kinds of condition",
+        "Neumann condition",
+        "neumann on",
+        "Neumann piece",
+        "corner",
+        "lose one order",
+    ),
     shown_by=("plate-flux-left", "plate-flux-right", "plate-degree-seven"),
 )
 def values_without_ends(equations: Equations, side: Side) -> None:

@@ -172,7 +172,7 @@ SEEDS.add(
     "d^2/dy^2 enters with the wrong sign",
     replace(COLLOCATION, equations=negated_second),
     kind="exchanged axes",
-    suspects=EVERYWHERE,
+    suspects=("dimension", *EVERYWHERE),
     shown_by=FIXED,
 )
 SEEDS.add(
