@@ -1,12 +1,15 @@
 """Features that failing cases share and passing cases lack.
 
-Score of a feature: a/F - b/P, where a of F failing and b of P passing cases have it. Beside it stands
-Fisher's exact probability (one-sided) of so uneven a split if the feature had nothing to do with failing,
+Score of a feature: (a/F)^2 - b/(2 P), where a of F failing and b of P passing cases have it. A failing case
+without the feature speaks against it more than a passing case with it: where one mistake is at work, every
+failing case must touch it, but a case may touch it and not show it. Beside the score stands Fisher's exact
+probability (one-sided) of so uneven a split if the feature had nothing to do with failing,
 
     p = sum_{k >= a} C(a + b, k) C(F + P - a - b, F - k) / C(F + P, F).
 
 Where p is above 0.02, so few cases tell little, and the score is multiplied by ln p / ln 0.02. Tags, which
-are labels, count 0.7 times what features of the problem do.
+are labels, count 0.7 times what features of the problem do. Where no feature stands out and at least half of
+the cases fail, what every case uses is the suspect.
 
 Two features together are named only if they separate the groups better than every single one. Features that
 the same cases have cannot be told apart and are named together.
@@ -31,9 +34,12 @@ from laplace_verify.measure.results import Study
 __all__ = ["feature_names", "shared_features"]
 
 _LOWEST_SCORE = 0.3
+_SHOWN = 0.1  # once chance is allowed for
 _GAIN_OF_A_PAIR = 0.1
 _LIMIT = 5
 _SURPRISING = 0.02  # probability of a split by chance from which it counts in full
+_SEVERAL = 3  # failing cases from which it is said that nothing sets them apart
+_EVERYWHERE = 0.4
 _LABEL = 0.7  # weight of tags
 
 
@@ -66,7 +72,7 @@ def shared_features(
     if not bad:
         return []
     if not good:
-        return [_no_contrast(bad, bad_word, good_word)]
+        return [_everywhere(bad, f"None of the cases is {good_word} to compare with", bad_word)]
     features = {id(study): feature_names(study) for study in (*bad, *good)}
     groups: dict[tuple[frozenset[int], frozenset[int]], list[str]] = {}
     for name in _in_order(bad):
@@ -81,7 +87,12 @@ def shared_features(
     found += _pairs(groups, single, len(bad), len(good))
     found.sort(key=lambda entry: (-entry[0], entry[3], entry[2]))
     words = (bad_word, good_word)
-    return [_finding(score, key, names, pair, bad, good, words) for score, key, names, pair in found[:_LIMIT]]
+    findings = [_finding(score, key, names, pair, bad, good, words) for score, key, names, pair in found]
+    findings = [finding for finding in findings if finding.score >= _SHOWN][:_LIMIT]
+    if len(bad) >= max(len(good), _SEVERAL) and not any(f.score >= _LOWEST_SCORE for f in findings):
+        said = f"No feature sets the {bad_word} cases apart from the {good_word} ones"
+        findings.insert(0, _everywhere(bad, said, bad_word))
+    return findings
 
 
 def _in_order(studies: Sequence[Study]) -> list[str]:
@@ -96,7 +107,7 @@ _Found = tuple[float, _Key, list[str], bool]
 
 
 def _score(key: _Key, bad: int, good: int) -> float:
-    return len(key[0]) / bad - len(key[1]) / good
+    return (len(key[0]) / bad) ** 2 - len(key[1]) / (2 * good)
 
 
 def _telling(names: list[str]) -> list[str]:
@@ -137,7 +148,7 @@ def _finding(
     a, b = len(key[0]), len(key[1])
     chance = float(hypergeom.sf(a - 1, len(bad) + len(good), a + b, len(bad)))
     evidence = (
-        f"{a}/{len(bad)} - {b}/{len(good)} = {score:.2f}; "
+        f"({a}/{len(bad)})^2 - {b}/(2*{len(good)}) = {score:.2f}; "
         f"probability of so uneven a split by chance {chance:.2g}; "
         f"cases: {case_list(with_it)}"
     )
@@ -153,12 +164,12 @@ def _have(part: int, whole: int) -> str:
     return "has it" if whole == 1 or part == 1 else "have it"
 
 
-def _no_contrast(bad: Sequence[Study], bad_word: str, good_word: str) -> Finding:
-    """Say that nothing can be set apart when no case is good."""
+def _everywhere(bad: Sequence[Study], said: str, bad_word: str) -> Finding:
+    """Say that nothing can be set apart, so that what all cases use comes first."""
     common = sorted(frozenset.intersection(*(feature_names(study) for study in bad)))
     text = (
-        f"None of the cases is {good_word} to compare with: look first at what every case uses "
+        f"{said}: look first at what every case uses "
         "(the equation inside, the reported h, the declared order, how the answer is handed back)"
     )
     evidence = f"{len(bad)} {bad_word}: {case_list(bad)}; all share: {listed(common, 8) or 'no feature'}"
-    return Finding(text=text, evidence=evidence, score=0.4, studies=tuple(bad))
+    return Finding(text=text, evidence=evidence, score=_EVERYWHERE, studies=tuple(bad))

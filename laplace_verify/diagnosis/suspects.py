@@ -2,9 +2,9 @@
 
 Evidence is weighed on one scale from 0 to 1:
 
-- a *feature* (a condition, a shape, a tensor): the share of the failing cases that have it less the share
-  of the passing cases that have it, less where so few cases split so by chance. 1: all failing cases have it
-  and no passing one. `shared` explains it.
+- a *feature* (a condition, a shape, a tensor): how many of the failing cases have it, and how few of the
+  passing ones, less where so few cases split so by chance. 1: all failing cases have it and no passing one.
+  `shared` explains it.
 - a *pattern*: in what manner the failing cases fail (a wrong limit, one order lost, only the gradient).
   `patterns` explains it.
 - a *place*: where the errors of the failing cases are largest and how slowly they fall there (`local`), and
