@@ -33,13 +33,15 @@ _FLOORS: tuple[FloorKind, ...] = ("single-precision floor", "loose floor", "roun
 class Meaning:
     """What signs of some kinds tell, and how much it weighs.
 
-    `cause` says that they name a cause, so that they are weighed beside failing cases too.
+    `cause` says that they name a cause, so that they are weighed beside failing cases too; `alone` that they
+    are weighed where nothing fails.
     """
 
     kinds: tuple[SignKind, ...]
     text: str
     weight: float
     cause: bool = False
+    alone: bool = True
 
 
 MEANINGS = (  # where two weigh the same, the first comes first
@@ -96,6 +98,7 @@ MEANINGS = (  # where two weigh the same, the first comes first
         "are evaluated between points, or the cells handed back",
         weight=1.0,
         cause=True,
+        alone=False,  # nodes of sound schemes may converge faster than their order
     ),
     Meaning(
         kinds=("wrong standard errors",),
@@ -140,7 +143,7 @@ def signs_where_nothing_fails(studies: Sequence[Study]) -> list[Finding]:
     ran = _one_floor([study for study in studies if study.levels])
     found = []
     for meaning in MEANINGS:
-        showing = [study for study in ran if _first(study, meaning)]
+        showing = [study for study in ran if _first(study, meaning)] if meaning.alone else []
         if showing:
             others = [study for study in ran if not _first(study, meaning)]
             text = f"{meaning.text} ({_remarked(showing, ran)}){_shared(showing, others)}"

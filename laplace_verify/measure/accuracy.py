@@ -77,7 +77,7 @@ def accuracy_remarks(levels: Sequence[Level], smoothness: Smoothness) -> list[Si
 
 def precision_remarks(answer: Answer, exact: Exact) -> list[Sign]:
     """Remark nodal values of 32 bits where most of the exact ones need more."""
-    if answer.points is None or answer.values is None:
+    if answer.points is None or answer.values is None or answer.location != "point":
         return []
     known = exact.values(answer.points)
     short = np.isfinite(known) & ~_of_single_precision(known)

@@ -166,6 +166,7 @@ def test_a_cause_that_open_cases_name_counts_beside_failing_ones(study, record):
 def test_nodes_that_converge_faster_than_what_lies_between_point_to_the_evaluation(study, record):
     failing = [study(f"f{k}", FAIL, {}, observed=1.0, signs=["limited between nodes"]) for k in range(2)]
     assert "how values are evaluated between points" in suspects(record, *failing, study("p", PASS, {}))[0]
+    assert suspects(record, study("p", PASS, {}, signs=["limited between nodes"])) == []
 
 
 def test_floors_of_one_solver_are_named_by_the_kind_that_most_have(study, record):

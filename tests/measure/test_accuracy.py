@@ -5,7 +5,7 @@ import pytest
 
 import laplace_verify as lv
 from laplace_verify.measure import Verdict
-from laplace_verify.solvers.samples import five_point, p1_element
+from laplace_verify.solvers.samples import cell_centred, five_point, p1_element
 
 PLATE = lv.catalogue["plate-degree-six"]
 
@@ -72,6 +72,11 @@ def test_values_of_single_precision_are_remarked_far_above_their_round_off(kind,
     found = lv.study(kept_in(kind), PLATE)
     assert found.verdict is Verdict.PASS
     assert [sign.kind for sign in found.signs] == ["single-precision values"] * remarked
+
+
+def test_values_of_cells_are_not_taken_for_values_at_nodes():
+    found = lv.study(cell_centred, lv.catalogue["plate-saddle"])
+    assert (found.verdict, found.signs) == (Verdict.PASS, [])
 
 
 def test_exact_values_that_fit_into_single_precision_are_no_sign_of_it():
