@@ -18,7 +18,7 @@ Bulirsch's, of complementary modulus
     1 - n = c^2/(1 + n).
 
 1 - s and 1 - rho^2 are formed without cancellation (`rim`). In float64, rho < 0.7 is left to
-tables in s^2 and z, made from these integrals and, for rho < 0.6, from the sum of zonal harmonics,
+tables in s^2 and |z|, made from these integrals and, for rho < 0.6, from the sum of zonal harmonics,
 u = 1/2 + sum_{l odd} a_l rho^l P_l(c), a_l = (P_{l-1}(0) - P_{l+1}(0))/2.
 
 References
@@ -36,21 +36,14 @@ from typing import Any
 
 import numpy as np
 
-from laplace_verify.arrays import Array, BoolArray, blocks
+from laplace_verify.arrays import Array, BoolArray, IntArray
 from laplace_verify.contexts import FLOAT, Number
 from laplace_verify.errors import FieldError
 from laplace_verify.fields.base import Field
+from laplace_verify.fields.chebyshev_cells import ChebyshevCells, chebyshev_cells
 from laplace_verify.fields.complete_elliptic import cels
 from laplace_verify.fields.edges import Ring
 from laplace_verify.fields.exact import Exact, exact, exact_point, offset, rational, show
-from laplace_verify.fields.parity_tables import (
-    ParityTable,
-    coefficients,
-    even_polynomials,
-    nodes,
-    parity_table,
-    products,
-)
 from laplace_verify.fields.rim import rim_gap
 from laplace_verify.fields.specs import registered
 from laplace_verify.fields.zonal import zonal_sum
@@ -60,8 +53,9 @@ __all__ = ["Hemispheres", "hemispheres"]
 INSIDE = 0.6  # of the radius: up to here the series serves
 DEGREE = 77  # 0.6^79 = 3e-18
 MIDDLE = 0.7  # of the radius: up to here tables in s and z serve
-ACROSS = 24  # polynomials in s: u is singular at s = 1, so they fall off like 6^-n at z = 0
-BLOCK = 1024  # points at once: rows of polynomials by points stay in cache
+ACROSS = (0.0, 0.22, MIDDLE**2)  # cells in s^2
+ALONG = (0.0, 0.2, 0.43, MIDDLE)  # and in z
+MOST = 30  # polynomials in either
 FLAT = 1e-100  # of the radius: so near to z = 0 that c^2 could underflow, u is 1/2 to rounding
 OUTSIDE = 1e-9  # of the radius: how far outside a point may be put by rounding
 
@@ -113,35 +107,36 @@ class Hemispheres(Field):
         )
 
     def _value(self, ctx: Any, x: tuple[Any, ...], side: Any) -> Any:  # noqa: ARG002  # no cut
-        place = self._place(ctx, x)
         step = ctx.number(exact(rational(self.upper) - rational(self.lower), "step"))
         if ctx is not FLOAT:
-            return ctx.number(self.lower) + step * _upper_half(ctx, place)
-        near, inner, outer = _split(place, MIDDLE)
-        u = np.empty(len(near))
-        u[near] = _middle_value(*inner)
-        u[~near] = _upper_half(ctx, outer)
-        return float(self.lower) + step * u
+            return ctx.number(self.lower) + step * _upper_half(ctx, self._place(ctx, x))
+        u, left_out = _middle_value(*self._in_radii(ctx, x))
+        u[left_out] = _upper_half(ctx, self._place(ctx, tuple(c[left_out] for c in x)))
+        u *= step
+        u += float(self.lower)
+        return u
 
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:  # noqa: ARG002  # no cut
-        place = self._place(ctx, x)
         step = ctx.number(exact(rational(self.upper) - rational(self.lower), "step")) / ctx.number(
             self.radius
         )
         if ctx is not FLOAT:
-            return tuple(step * g for g in _upper_half_slopes(ctx, place))
-        near, inner, outer = _split(place, MIDDLE)
-        slopes = np.empty((3, len(near)))
-        slopes[:, near] = _middle_slopes(*inner)
-        slopes[:, ~near] = _upper_half_slopes(ctx, outer)
-        return tuple(step * g for g in slopes)
+            return tuple(step * g for g in _upper_half_slopes(ctx, self._place(ctx, x)))
+        slopes, left_out = _middle_slopes(*self._in_radii(ctx, x))
+        slopes[:, left_out] = _upper_half_slopes(ctx, self._place(ctx, tuple(c[left_out] for c in x)))
+        slopes *= step
+        return tuple(slopes)
+
+    def _in_radii(self, ctx: Any, x: tuple[Any, ...]) -> tuple[Any, ...]:
+        """Return coordinates from the centre in units of the radius."""
+        at = tuple(offset(ctx, c, m) for c, m in zip(x, self.centre, strict=True))
+        return at if self.radius == 1 else tuple(c / ctx.number(self.radius) for c in at)
 
     def _place(self, ctx: Any, x: tuple[Any, ...]) -> tuple[Any, ...]:
         """Return x, y, z in units of the radius and 1 - s, s the distance from the axis in that unit."""
-        at = tuple(offset(ctx, c, m) for c, m in zip(x, self.centre, strict=True))
-        radius = ctx.number(self.radius)
-        _, gap = rim_gap(ctx, at[0], at[1], self.radius)
-        return (*(c / radius for c in at), gap / radius)
+        across = tuple(offset(ctx, c, m) for c, m in zip(x[:2], self.centre, strict=False))
+        _, gap = rim_gap(ctx, across[0], across[1], self.radius)
+        return (*self._in_radii(ctx, x), gap / ctx.number(self.radius))
 
     def _valid(self, points: Array) -> BoolArray:
         """Return which points lie in the closed ball, to rounding."""
@@ -176,69 +171,46 @@ def hemispheres(
     return Hemispheres(centre=tuple(centre), radius=radius, upper=upper, lower=lower)  # type: ignore[arg-type]  # made exact there
 
 
-def _split(place: tuple[Any, ...], radius: float) -> tuple[BoolArray, tuple[Any, ...], tuple[Any, ...]]:
-    """Return which points lie inside rho = radius, their coordinates, and the places of the others."""
-    near: BoolArray = place[0] * place[0] + place[1] * place[1] + place[2] * place[2] < radius**2
-    return near, tuple(c[near] for c in place[:3]), tuple(c[~near] for c in place)
+def _middle_value(x: Array, y: Array, z: Array) -> tuple[Array, IntArray]:
+    """Return u for the values 1 and 0 at rho < MIDDLE, and the other points."""
+    (odd,), left_out = _in_middle(x, y, z, (0,))
+    np.copysign(odd, z, out=odd)
+    odd += 0.5
+    return odd, left_out
 
 
-def _middle_value(x: Array, y: Array, z: Array) -> Array:
-    """Return u for the values 1 and 0 at rho < MIDDLE."""
-    u = np.full(len(x), 0.5)
-    table, _ = _middle_tables()
-    for block in blocks(len(x), BLOCK):
-        u[block] += products(_along_s(x[block], y[block], len(table.odd)), table.odd_rows(z[block]))
-    return u
+def _middle_slopes(x: Array, y: Array, z: Array) -> tuple[Array, IntArray]:
+    """Return the gradient of `_middle_value`, and the other points."""
+    (across, along), left_out = _in_middle(x, y, z, (1, 2))
+    np.copysign(across, across * z, out=across)
+    return np.stack([across * x, across * y, along]), left_out
 
 
-def _middle_slopes(x: Array, y: Array, z: Array) -> Array:
-    """Return the gradient of `_middle_value`."""
-    slopes = np.empty((3, len(x)))
-    value, across = _middle_tables()
-    for block in blocks(len(x), BLOCK):
-        waves = _along_s(x[block], y[block], len(value.odd))
-        out = products(waves, across.odd_rows(z[block]))
-        slopes[0, block], slopes[1, block] = out * x[block], out * y[block]
-        slopes[2, block] = products(waves, value.even_rows(z[block]))
-    return slopes
-
-
-def _along_s(x: Array, y: Array, count: int) -> Array:
-    """Return Chebyshev's polynomials of s / MIDDLE."""
-    return even_polynomials(np.sqrt(x * x + y * y) / MIDDLE, count)
+def _in_middle(x: Array, y: Array, z: Array, wanted: tuple[int, ...]) -> tuple[Array, IntArray]:
+    """Return functions of `_middle_cells` at x, y and |z|, and the points beyond."""
+    square = x * x
+    square += y * y
+    inside = z * z
+    inside += square
+    return _middle_cells().values(square, np.abs(z), wanted, inside < MIDDLE**2)
 
 
 @lru_cache(maxsize=1)
-def _middle_tables() -> tuple[ParityTable, ParityTable]:
-    """Return the factors of T_0, T_2, ... (s / MIDDLE) as functions of z.
+def _middle_cells() -> ChebyshevCells:
+    """Return u - 1/2, (du/ds) / s and du/dz as functions of s^2 and z >= 0."""
 
-    Those of u - 1/2 are odd, of du/dz even, of (du/ds) / s odd.
-    """
-    s = MIDDLE * nodes(ACROSS)
-
-    def factors(z: Array) -> list[Array]:
-        at, up = (c.ravel() for c in np.meshgrid(s, z))
-        place = (at, 0.0 * at, up, 1.0 - at)
-        near, inner, outer = _split(place, INSIDE)
-        found = np.empty((3, len(at)))
+    def functions(square: Array, z: Array) -> list[Array]:
+        s = np.sqrt(square)
+        near = square + z * z < INSIDE**2
+        found = np.empty((3, len(s)))
+        inner, outer = (s[near], 0 * s[near], z[near]), (s[~near], 0 * s[~near], z[~near], 1 - s[~near])
         u, across, along = zonal_sum(FLOAT, _legendre(), inner, 1)
-        found[:, near] = u - 0.5, along, across
+        found[:, near] = u - 0.5, across, along
         out, _, along = _upper_half_slopes(FLOAT, outer)
-        found[:, ~near] = _upper_half(FLOAT, outer) - 0.5, along, out / outer[0]
-        return [coefficients(part.reshape(len(z), len(s)), 0).T for part in found]
+        found[:, ~near] = _upper_half(FLOAT, outer) - 0.5, out / outer[0], along
+        return list(found)
 
-    def value(z: Array) -> tuple[Array, Array]:
-        u, along, _ = factors(z)
-        return u, along
-
-    def slope(z: Array) -> tuple[Array, Array]:
-        _, along, across = factors(z)
-        return across, along
-
-    tables = [parity_table(function, MIDDLE, np.ones(ACROSS)) for function in (value, slope)]
-    if tables[0] is None or tables[1] is None:
-        raise AssertionError("the middle of the ball takes fewer polynomials than are allowed")
-    return tables[0], tables[1]
+    return chebyshev_cells(functions, ACROSS, ALONG, MOST)
 
 
 @lru_cache(maxsize=1)

@@ -24,7 +24,7 @@ import numpy as np
 
 from laplace_verify.arrays import Array, IntArray
 
-__all__ = ["ParityTable", "coefficients", "even_polynomials", "nodes", "parity_table", "products"]
+__all__ = ["ParityTable", "coefficients", "cosines", "even_polynomials", "nodes", "parity_table", "products"]
 
 SAMPLES = 128
 SMALL = 2e-16  # of the largest coefficient: below it they are rounding
@@ -92,20 +92,20 @@ def products(f: Array, g: Array) -> Array:
 
 def nodes(count: int) -> Array:
     """Return the positive zeros of T_{2 count}, falling."""
-    return _cosines(2 * np.arange(count) + 1, count)
+    return cosines(2 * np.arange(count) + 1, count)
 
 
 def coefficients(rows: Array, parity: int) -> Array:
     """Return the coefficients of functions with the values `rows`, shape (K, N), at `nodes`(N)."""
     count = rows.shape[1]
     odd = 2 * np.arange(count) + 1
-    found: Array = rows @ _cosines(np.multiply.outer(odd - 1 + parity, odd), count).T * (2.0 / count)
+    found: Array = rows @ cosines(np.multiply.outer(odd - 1 + parity, odd), count).T * (2.0 / count)
     if parity == 0:
         found[:, 0] /= 2.0
     return found
 
 
-def _cosines(turns: IntArray, count: int) -> Array:
+def cosines(turns: IntArray, count: int) -> Array:
     """Return cos(turns pi / (4 count)), the angle folded exactly into [0, pi/4], where rounding is least."""
     quarter = 2 * count
     turns = turns % (4 * quarter)
