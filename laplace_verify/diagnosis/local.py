@@ -87,8 +87,11 @@ def _finding(record: Record, place: str, studies: Sequence[Study], known: int, f
                 group.append(order)
     slow = median(there)
     said = [f"falls at order {slow:.1f} there" if slow >= _FALLS else "does not fall there"]
-    said += [f"{_at(median(inside))} inside"] if inside else []
-    said += [f"{_at(median(elsewhere))} next to other pieces"] if elsewhere else []
+    never = "not at all" if slow >= _FALLS else "nor"
+    for orders, where in ((inside, "inside"), (elsewhere, "next to other pieces")):
+        if orders:
+            order = median(orders)
+            said.append(f"at {order:.1f} {where}" if order >= _FALLS else f"{never} {where}")
     return Finding(
         text=f"The largest error lies {place} in {counted(len(studies), known, 'failing cases')} and "
         + ", ".join(said)
@@ -97,10 +100,6 @@ def _finding(record: Record, place: str, studies: Sequence[Study], known: int, f
         score=_WEIGHT * len(studies) / failing,
         studies=tuple(studies),
     )
-
-
-def _at(order: float) -> str:
-    return f"at {order:.1f}" if order >= _FALLS else "not at all"
 
 
 def _last_errors(study: Study) -> dict[str, float]:

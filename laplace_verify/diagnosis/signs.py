@@ -3,9 +3,9 @@
 A mistake that leaves the order as it is shows in remarks: an error constant far above that of
 interpolation, gradients that stay, a floor. Where a case fails, only the signs that name a cause are weighed,
 in open cases too; where none does, every sign is, and the cases left open are compared with those that pass.
-Score: weight of the sign times the share of the failing and open cases that show it; where nothing fails, the
-weight alone. A sign that shows a cause directly weighs as much as a feature that separates the cases
-perfectly, and comes before it.
+Score: weight of the sign times the share of the failing and open cases that show it, in full from four in
+five; where nothing fails, the weight alone. A sign that shows a cause directly weighs as much as a feature
+that separates the cases perfectly, and comes before it.
 """
 
 from __future__ import annotations
@@ -26,6 +26,7 @@ _TELLING = 0.7  # score of a feature that is added to a sign
 _OPEN = 0.5  # weight of what open cases share
 _SMALL = 1e-4  # relative error of a promised polynomial that looks like a floor, not like a mistake of scale
 _SHORT_WEIGHT = 0.5
+_CLEAR = 0.8  # share of the failing and open cases from which a cause counts in full
 _FLOORS: tuple[FloorKind, ...] = ("single-precision floor", "loose floor", "round-off floor")
 
 
@@ -65,7 +66,8 @@ MEANINGS = (  # where two weigh the same, the first comes first
     ),
     Meaning(
         kinds=("large residual",),
-        text="the reported residual is not well below the error: the iteration stops early",
+        text="the reported residual is not well below the error, so that the equations are not solved: the "
+        "iteration stops early, or the system is close to singular",
         weight=1.0,
         cause=True,
     ),
@@ -134,7 +136,7 @@ def signs_among_failing(studies: Sequence[Study]) -> list[Finding]:
         if showing:
             others = [study for study in ran if not _first(study, meaning)]
             text = f"{meaning.text} ({counted(len(showing), len(bad), words)}){_shared(showing, others)}"
-            found.append(_finding(meaning, showing, text, len(showing) / len(bad)))
+            found.append(_finding(meaning, showing, text, min(1.0, len(showing) / len(bad) / _CLEAR)))
     return found
 
 
