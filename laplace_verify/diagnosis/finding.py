@@ -12,12 +12,13 @@ __all__ = ["Finding", "case_list", "counted", "listed"]
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Finding:
-    """One observation on a group of studies; `score` from 0 to 1."""
+    """One observation on a group of studies; `score` from 0 to 1, `place` in words if it names one."""
 
     text: str
     evidence: str
     score: float
     studies: tuple[Study, ...]
+    place: str = ""
 
 
 def case_list(studies: Sequence[Study], limit: int = 6) -> str:

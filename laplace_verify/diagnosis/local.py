@@ -99,6 +99,7 @@ def _finding(record: Record, place: str, studies: Sequence[Study], known: int, f
         evidence=f"orders of the largest error within two mesh widths, medians; cases: {case_list(studies)}",
         score=_WEIGHT * len(studies) / failing,
         studies=tuple(studies),
+        place=place,
     )
 
 

@@ -45,6 +45,7 @@ def places(record: Record, failing: Sequence[Study]) -> list[Finding]:
             evidence=f"largest {_TOP:.0%} of the errors on the finest level; cases: {case_list(studies)}",
             score=_WEIGHT * len(studies) / len(failing),
             studies=tuple(studies),
+            place=place,
         )
         for place, studies in sorted(found.items())
         if len(studies) >= _SHARE * seen

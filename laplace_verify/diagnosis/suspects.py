@@ -81,7 +81,7 @@ def diagnose(record: Record) -> list[Suspect]:
     broken = [study for study in record.studies if study.verdict is Verdict.ERROR]
     ran = [study for study in record.studies if study.levels and study.verdict is not Verdict.ERROR]
     findings = signs_among_failing(studies) if failing else []
-    findings += shared_features(failing, _telling(passing), "failing", "passing")
+    findings += shared_features(failing, _telling(failing, passing), "failing", "passing")
     findings += patterns(failing)
     findings += _places(record, failing)
     findings += missed_polynomials(studies, bool(failing))
@@ -101,23 +101,28 @@ def diagnose(record: Record) -> list[Suspect]:
     ]
 
 
-def _telling(passing: Sequence[Study]) -> list[Study]:
-    """Return the passing studies that were held to a rate: a mere decrease is no contrast to an order."""
-    return [
-        study for study in passing
-        if not study.deciding or any(study.orders[norm].expected != "decrease" for norm in study.deciding)
-    ]  # fmt: skip
+def _telling(failing: Sequence[Study], passing: Sequence[Study]) -> list[Study]:
+    """Return the passing studies that are a contrast to the failing ones.
+
+    Where a singular solution leaves a fraction of the declared order, or a mere decrease, a mistake that
+    costs an order still passes. Such studies tell something only if another of their kind fails.
+    """
+    if not all(_held_to_full_rate(study) for study in failing):
+        return list(passing)
+    return [study for study in passing if _held_to_full_rate(study)]
+
+
+def _held_to_full_rate(study: Study) -> bool:
+    """Return whether a norm decides in which all of the declared order is expected."""
+    orders = [study.orders[norm] for norm in study.deciding]
+    return not orders or any(order.formal is not None and order.expected == order.formal for order in orders)
 
 
 def _places(record: Record, failing: Sequence[Study]) -> list[Finding]:
     """Return places by local errors, and by the map of errors those that local errors do not name."""
     slow = slow_places(record, failing)
-    words = [finding.text for finding in slow]
-    return slow + [
-        crowded
-        for crowded in places(record, failing)
-        if not any(crowded.text.partition(" sit ")[2].partition(" in ")[0] in text for text in words)
-    ]
+    named = {finding.place for finding in slow}
+    return slow + [crowded for crowded in places(record, failing) if crowded.place not in named]
 
 
 def _smallest(record: Record, studies: Sequence[Study]) -> str:

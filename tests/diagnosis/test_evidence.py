@@ -190,6 +190,18 @@ def test_cases_that_pass_by_a_mere_decrease_are_no_contrast(study, record):
     assert any(text.startswith("None of the cases is passing to compare with") for text in texts)
 
 
+def test_cases_that_pass_at_a_reduced_order_are_a_contrast_only_where_one_of_them_fails(study, record):
+    def reduced(name, verdict):
+        found = study(name, verdict, {"singular solution": True}, observed=0.7)
+        return replace(found, orders={"max": replace(found.orders["max"], expected=2 / 3)})
+
+    failing = [study(f"f{k}", FAIL, {"tag smooth": True}, observed=1.0) for k in range(5)]
+    passing = reduced("p", PASS)
+    assert not any("tag smooth:" in text for text in suspects(record, *failing, passing))
+    texts = suspects(record, *failing, reduced("g", FAIL), passing, study("q", PASS, {}))
+    assert any("tag smooth:" in text for text in texts)
+
+
 def test_what_open_cases_share_is_said_where_nothing_fails(study, record):
     open_ = [study(f"o{k}", OPEN, {"slit": True}) for k in range(2)]
     found = suspects(record, *open_, study("p", PASS, {"slit": False}))
