@@ -16,6 +16,7 @@ if TYPE_CHECKING:
     from laplace_verify.campaign import Record as Record
     from laplace_verify.campaign.verify import verify as verify
     from laplace_verify.cases.catalogue import catalogue as catalogue
+    from laplace_verify.cases.saving import save_case as save_case
     from laplace_verify.diagnosis import diagnose as diagnose
     from laplace_verify.errors import AdapterError as AdapterError
     from laplace_verify.errors import AnswerError as AnswerError
@@ -97,7 +98,7 @@ if TYPE_CHECKING:
 _MODULES = {"fields": "fields", "strategies": "principles.strategies"}
 _ROOMS = {
     "campaign": "Record verify",
-    "cases": "catalogue",
+    "cases": "catalogue save_case",
     "diagnosis": "diagnose",
     "errors": "AdapterError AnswerError FieldError GeometryError LaplaceVerifyError ProblemError RecordError",
     "fields": "Field field",

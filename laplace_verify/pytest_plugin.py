@@ -43,6 +43,7 @@ class _Wanted:
     case: Case | None = None
     sizes: Sequence[int] | None = None
     law: str = ""
+    examples: int = 10
 
 
 def order_tests(
@@ -94,7 +95,7 @@ def order_tests(
     return test_order
 
 
-def principle_tests(solver: Adapter | str, seed: int = 0) -> Callable[..., None]:
+def principle_tests(solver: Adapter | str, seed: int = 0, examples: int = 10) -> Callable[..., None]:
     """Return a test function with one item a law of harmonic functions, on random problems.
 
     Parameters
@@ -103,6 +104,8 @@ def principle_tests(solver: Adapter | str, seed: int = 0) -> Callable[..., None]
         An adapter, or ``module:object`` or ``path/to/file.py:object``.
     seed
         Of the random problems; the same seed draws the same problems.
+    examples
+        How many problems are drawn for each law.
 
     Raises
     ------
@@ -118,7 +121,8 @@ def principle_tests(solver: Adapter | str, seed: int = 0) -> Callable[..., None]
 
     adapter = load_solver(solver)
     items = [
-        pytest.param(_Wanted(solver=adapter, law=law, seed=seed), id=law.replace(" ", "-")) for law in LAWS
+        pytest.param(_Wanted(solver=adapter, law=law, seed=seed, examples=examples), id=law.replace(" ", "-"))
+        for law in LAWS
     ]
 
     @pytest.mark.parametrize("laplace_check", items, indirect=True)
@@ -148,7 +152,7 @@ def laplace_check(request: pytest.FixtureRequest) -> Check:
     from laplace_verify.principles import check_principle
 
     wanted: _Wanted = request.param
-    result = check_principle(wanted.solver, wanted.law, seed=wanted.seed)
+    result = check_principle(wanted.solver, wanted.law, seed=wanted.seed, examples=wanted.examples)
     _remember(request.config, wanted, result)
     _stop_early(str(result.verdict), [result.reason], "")
     return result

@@ -42,7 +42,7 @@ from laplace_verify.principles.limits import (
 )
 from laplace_verify.principles.maximum_principle import dirichlet_needed
 from laplace_verify.principles.posed import Posed
-from laplace_verify.principles.reading import told, values_at
+from laplace_verify.principles.reading import deep_points, told, values_at
 from laplace_verify.solvers import Adapter
 
 __all__ = ["BOUNDARY_SLOPE", "Peak", "harnack", "touching_radius"]
@@ -54,6 +54,7 @@ MOST_PIECES = 6
 LARGEST, SHRINKING = 0.4, 0.8  # radii of balls tried, first in units of the extent, then in steps
 STEPS = 40
 TOUCHING = 1e-9
+ASKED = 6
 BEYOND_CLEARANCE = 1.01
 DIGITS = 12
 
@@ -124,7 +125,8 @@ def _measure(trial: Trial, size: int) -> Measurement:
     radius = touching_radius(shape, peak)
     middle, fixed = peak.point - radius * peak.normal, radius / 4.0
     distance = fixed
-    trial.answer(size, np.array([middle, peak.point - fixed * peak.normal]))
+    others = deep_points(shape, trial.seed)[:ASKED]  # two points alone are no answer
+    trial.answer(size, np.array([middle, peak.point - fixed * peak.normal, *others]))
     if _at_cells(trial):
         clearance = BEYOND_CLEARANCE * trial.solver.clearance * shape.extent
         distance = min(max(trial.spacing(size), clearance), radius / 2.0)

@@ -95,14 +95,19 @@ def _checked(law: Law, solver: Adapter, seed: int, examples: int) -> Check:
         )
         return Check(law=law.name, verdict=Verdict.NOT_APPLICABLE, reason=why)
     worst = search.worst
-    declined = f"; {search.refused} more were declined by the solver" if search.refused else ""
+    declined = (
+        f"; {search.refused} more were declined by the solver, last with: {search.refusal}"
+        if search.refused
+        else ""
+    )
     return Check(
         law=law.name,
         verdict=Verdict.PASS,
         violation=worst.violation,
         tolerance=worst.tolerance,
-        reason=f"kept on {search.tried} problems in {search.calls} solves{declined}; the violation "
-        f"nearest to what is allowed: {worst.violation:.2g} of the largest boundary value, "
+        reason=f"kept on {search.tried} problem{'s' if search.tried > 1 else ''} in {search.calls} solves"
+        f"{declined}; the violation nearest to what is allowed: {worst.violation:.2g} of the largest "
+        "boundary value, "
         f"allowed {worst.tolerance:.2g}",
     )
 
@@ -178,7 +183,7 @@ def _between_runs(trial: Trial) -> float | None:
 
 def _two_runs(trial: Trial) -> tuple[str, ...]:
     """Return lines that show the difference of two runs."""
-    again = "again = solver.solve(problem, n)"
+    again = f"again = {trial.call()}"
     if trial.answers[trial.sizes[0]].kind != "callable":
         return again, "abs(again.values - answer.values).max()"
     points = f"points = problem.shape.sample({COMPARED}, seed={trial.seed})"

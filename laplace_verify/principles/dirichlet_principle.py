@@ -183,7 +183,7 @@ def _not_least(trial: Trial, coarse: Answer, fine: Answer) -> Measurement:
         words="the energy of the answer is not the least: on the line through it and the answer with "
         f"n = {first}, whose mesh and data are contained, it changes by {slope:.2g} of its size",
         body=(
-            f"coarse = solver.solve(problem, {first}, seed={trial.seed})",
+            f"coarse = {trial.call(size=first)}",
             "slope_of_energy(coarse, answer)",
         ),
     )

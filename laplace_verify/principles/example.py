@@ -5,12 +5,20 @@ from __future__ import annotations
 import sys
 from importlib.machinery import PathFinder
 
+import numpy as np
+
+from laplace_verify.arrays import Array
 from laplace_verify.principles.law import Trial
+from laplace_verify.principles.motions import Motion
+from laplace_verify.principles.reading import deep_points, inside_points
 from laplace_verify.solvers import Adapter
 
 __all__ = ["example_code"]
 
+KEEP = '# lv.save_case(case, "my_cases", "its-name") keeps the case for lv.catalogue.with_folder("my_cases")'
 HELPERS = {
+    "deep_points": "laplace_verify.principles.reading",
+    "inside_points": "laplace_verify.principles.reading",
     "slope_of_energy": "laplace_verify.principles.dirichlet_principle",
     "sphere": "laplace_verify.principles.spheres",
 }
@@ -30,7 +38,8 @@ def example_code(trial: Trial, size: int, body: tuple[str, ...]) -> str:
     otherwise the last line says what to call it with.
     """
     *steps, last = body
-    text = "\n".join(body)
+    solves = _solves(trial, size)
+    text = "\n".join([*solves, *body])
     imports = ["import numpy as np", ""] if "np." in text else []
     imports.append("import laplace_verify as lv")
     imports += [f"from {module} import {name}" for name, module in HELPERS.items() if f"{name}(" in text]
@@ -48,16 +57,40 @@ def example_code(trial: Trial, size: int, body: tuple[str, ...]) -> str:
         "",
         "def violation(solver):",
         f"    n = {size}",
-        f"    answer = solver.solve(problem, n, seed={trial.seed})",
-        *(f"    {name} = solver.solve(problem_{name}, n, seed={trial.seed})" for name in trial.companions),
+        *(f"    {line}" for line in solves),
         *(f"    {step}" for step in steps),
         f"    return {last}",
         "",
         "",
         call,
+        *([KEEP] if trial.posed.field is not None else []),
         "",
     ]
     return "\n".join(lines)
+
+
+def _solves(trial: Trial, size: int) -> list[str]:
+    """Return the lines that solve the problem and those beside it."""
+    lines = []
+    for name, one in {"": trial, **trial.companions}.items():
+        suffix = f"_{name}" if name else ""
+        if trial.solver.takes("wanted") and size in one.asked:
+            lines.append(f"wanted{suffix} = {_points_code(trial, one.asked[size])}")
+        lines.append(f"{name or 'answer'} = {one.call(f'problem{suffix}', wanted=f'wanted{suffix}')}")
+    return lines
+
+
+def _points_code(trial: Trial, points: Array) -> str:
+    """Return Python for points that were handed to the solver: drawn ones by how they were drawn."""
+    for draw in (inside_points, deep_points):
+        if np.array_equal(points, draw(trial.problem.shape, trial.seed)):
+            return f"{draw.__name__}(problem.shape, {trial.seed})"
+    motion, deep = trial.posed.drawn, deep_points(trial.problem.shape, trial.seed)
+    if isinstance(motion, Motion) and np.array_equal(points, motion.points(deep)):
+        dim = trial.problem.dim
+        turned = f"wanted @ np.array({motion.matrix(dim).T.tolist()})"
+        return f"{turned} + np.array({motion.shift[:dim]})"
+    return f"np.array({points.tolist()})"
 
 
 def _importable(solver: Adapter) -> tuple[str, str] | None:

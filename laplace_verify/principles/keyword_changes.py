@@ -22,8 +22,7 @@ from laplace_verify.principles import strategies
 from laplace_verify.principles.law import Finding, NoValuesError, Trial, round_off
 from laplace_verify.principles.limits import rate_of
 from laplace_verify.principles.posed import Posed
-from laplace_verify.principles.reading import told, values_at
-from laplace_verify.principles.side_by_side import deep_points
+from laplace_verify.principles.reading import deep_points, told, values_at
 from laplace_verify.solvers import Adapter
 
 __all__ = ["changed_by", "curved_problems", "no_curved_problems"]
@@ -68,7 +67,7 @@ def changed_by(trial: Trial, keyword: str, value: float, says: str) -> Finding:
         If the answer has no values between nodes.
     """
     coarse, fine = trial.sizes[-2:]
-    points = deep_points(trial)
+    points = deep_points(trial.problem.shape, trial.seed)
     before, now = values_at(trial, coarse, points), values_at(trial, fine, points)
     again = trial.fresh_answer(fine, points, **{keyword: value}).value_at(points)
     ratio = trial.spacing(coarse) / trial.spacing(fine)
@@ -89,7 +88,7 @@ def changed_by(trial: Trial, keyword: str, value: float, says: str) -> Finding:
         words=f"at {told(points[worst])} the answer is {now[worst]:.6g}, and {again[worst]:.6g} {says}",
         rule="it must be less than the discretisation error as two sizes show it",
         body=(
-            f"again = solver.solve(problem, n, seed={trial.seed}, {keyword}={value!r})",
+            f"again = {trial.call(more=f', {keyword}={value!r}')}",
             f"abs(again.value_at([{place}]) - answer.value_at([{place}]))[0] / {unit!r}",
         ),
     )

@@ -30,8 +30,7 @@ from laplace_verify.principles import strategies
 from laplace_verify.principles.law import Finding, Law, NoValuesError, Trial
 from laplace_verify.principles.limits import Measurement, declared_or_in_the_limit, rate_of_slopes
 from laplace_verify.principles.posed import Posed
-from laplace_verify.principles.reading import gradients_at, told
-from laplace_verify.principles.side_by_side import deep_points
+from laplace_verify.principles.reading import deep_points, gradients_at, told
 from laplace_verify.solvers import Adapter
 
 __all__ = ["LARGEST_GRADIENT"]
@@ -71,7 +70,7 @@ def _slopes(gradients: Array) -> Array:
 
 
 def _measure(trial: Trial, size: int) -> Measurement:
-    deep, shape = deep_points(trial), trial.problem.shape
+    deep, shape = deep_points(trial.problem.shape, trial.seed), trial.problem.shape
     trial.answer(size, deep)
     clearance = BEYOND_CLEARANCE * trial.solver.clearance * shape.extent
     near = _rim(trial, max(OF_A_CELL * trial.spacing(size), clearance))
@@ -96,7 +95,7 @@ def _measure(trial: Trial, size: int) -> Measurement:
 
 
 def _judge(trial: Trial) -> Finding:
-    if not trial.answer(trial.sizes[0], deep_points(trial)).has_gradient:
+    if not trial.answer(trial.sizes[0], deep_points(trial.problem.shape, trial.seed)).has_gradient:
         raise NoValuesError("the answer has no gradient")
     rate = min(rate_of_slopes(trial), 1.0)
     if rate <= 0.0:

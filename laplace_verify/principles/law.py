@@ -86,6 +86,7 @@ class Trial:
     sizes: tuple[int, ...]
     may_call: Callable[[], None]  # counts; raises OutOfCallsError
     answers: dict[int, Answer] = field(default_factory=dict)
+    asked: dict[int, Array] = field(default_factory=dict)  # points handed over with each size, if any
     companions: dict[str, Trial] = field(default_factory=dict)  # of the problems beside it
 
     @classmethod
@@ -111,10 +112,19 @@ class Trial:
     def fresh_answer(self, size: int, wanted: Array | None = None, **keywords: Any) -> Answer:
         """Solve, whether or not the size was solved before; keywords as in `Adapter.solve`."""
         self.may_call()
+        if wanted is not None:
+            self.asked.setdefault(size, wanted)
         answer = self.solver.solve(self.problem, size, wanted, seed=self.seed, **keywords)
         if self.solver.kind == "stochastic" and answer.standard_error is None:
             raise NoValuesError("without a standard_error chance and error cannot be told apart")
         return answer
+
+    def call(
+        self, problem: str = "problem", size: int | str = "n", wanted: str = "wanted", more: str = ""
+    ) -> str:
+        """Return Python that solves again; points are handed over to solvers that take them only."""
+        points = f", {wanted}" if self.solver.takes("wanted") else ""
+        return f"solver.solve({problem}, {size}{points}, seed={self.seed}{more})"
 
     def spacing(self, size: int) -> float:
         """Return h of the answer of a size."""

@@ -108,9 +108,9 @@ class Posed:
         return ", ".join([data, place, *(sides or ["all Dirichlet"]), *material]) + self.note
 
     def code(self) -> str:
-        """Return Python that makes `problem` and, if there is an exact solution, `exact`.
+        """Return Python that makes `problem` and, if there is an exact solution, `exact` and `case`.
 
-        Of a problem beside it, called "other", they are `problem_other` and `exact_other`.
+        Of a problem beside it, called "other", they are `problem_other` and so on.
         """
         others = [other._own_code(f"_{name}") for name, other in self.beside.items()]
         return "\n\n".join([self._own_code(""), *others])
@@ -138,12 +138,13 @@ class Posed:
             [
                 *made,
                 f"exact{suffix} = {exact}",
-                f"problem{suffix} = lv.case(",
+                f"case{suffix} = lv.case(",
                 f"    lv.{self.shape!r},",
                 f"    {{{kinds}}},",
                 f"    exact{suffix},",
                 *k,
-                ").problem",
+                ")",
+                f"problem{suffix} = case{suffix}.problem",
             ]
         )
 

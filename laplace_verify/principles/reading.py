@@ -6,13 +6,26 @@ import numpy as np
 
 from laplace_verify.arrays import Array
 from laplace_verify.errors import AnswerError
+from laplace_verify.geometry import Shape
 from laplace_verify.principles.law import NoValuesError, Trial
 from laplace_verify.solvers import Answer
 
-__all__ = ["gradients_at", "places", "seen", "told", "values_at"]
+__all__ = ["deep_points", "gradients_at", "inside_points", "places", "seen", "told", "values_at"]
 
 INSIDE, ON_PIECE = 300, 40  # points at which a function is asked
-WANTED = 200
+WANTED, DEEP = 200, 100
+
+
+def inside_points(shape: Shape, seed: int) -> Array:
+    """Return 200 seeded points (m, d) inside a shape, to be asked for before a solver begins."""
+    return shape.sample(INSIDE, seed=seed)[:WANTED]
+
+
+def deep_points(shape: Shape, seed: int) -> Array:
+    """Return 100 points (m, d) well inside a shape: the deepest of 300 seeded ones."""
+    drawn = shape.sample(INSIDE, seed=seed)
+    deepest: Array = drawn[np.argsort(-shape.distance(drawn), kind="stable")[:DEEP]]
+    return deepest
 
 
 def places(answer: Answer) -> Array:
@@ -44,7 +57,7 @@ def seen(trial: Trial, size: int) -> tuple[Array, Array]:
     """
     shape = trial.problem.shape
     inside = shape.sample(INSIDE, seed=trial.seed)
-    answer = trial.answer(size, inside[:WANTED])
+    answer = trial.answer(size, inside_points(shape, trial.seed))
     if answer.kind == "callable":
         points = np.concatenate([inside, *(piece.sample(ON_PIECE)[0] for piece in trial.problem.pieces)])
         values = answer.value_at(points)

@@ -26,8 +26,7 @@ from laplace_verify.principles import strategies
 from laplace_verify.principles.law import Finding, Law, Trial
 from laplace_verify.principles.limits import Measurement, exactly
 from laplace_verify.principles.posed import Posed
-from laplace_verify.principles.reading import places
-from laplace_verify.principles.side_by_side import deep_points
+from laplace_verify.principles.reading import deep_points, places
 from laplace_verify.solvers import Adapter, Answer
 
 __all__ = ["REPEATABILITY"]
@@ -60,7 +59,7 @@ def _compared(answer: Answer, again: Answer, points: Array) -> tuple[Array, Arra
 
 
 def _measure(trial: Trial, size: int) -> Measurement:
-    inside = deep_points(trial)
+    inside = deep_points(trial.problem.shape, trial.seed)
     answer = trial.answer(size, inside)
     trial.companions["other"].answer(size, inside)
     found = [_difference(trial, answer, trial.fresh_answer(size, inside), "")]
@@ -72,7 +71,7 @@ def _measure(trial: Trial, size: int) -> Measurement:
 
 def _difference(trial: Trial, answer: Answer, again: Answer, keyword: str) -> Measurement:
     """Return the largest difference between two answers to one problem."""
-    points, first, second = _compared(answer, again, deep_points(trial))
+    points, first, second = _compared(answer, again, deep_points(trial.problem.shape, trial.seed))
     gap = np.abs(second - first)
     worst, unit = int(np.argmax(gap)), trial.posed.size
     place = tuple(points[worst].tolist())
@@ -85,7 +84,7 @@ def _difference(trial: Trial, answer: Answer, again: Answer, keyword: str) -> Me
         f"{second[worst]:.6g} {how}",
         body=(
             *guess,
-            f"again = solver.solve(problem, n, seed={trial.seed}{keyword})",
+            f"again = {trial.call(more=keyword)}",
             f"abs(again.value_at([{place}]) - answer.value_at([{place}]))[0] / {unit!r}",
         ),
     )

@@ -7,19 +7,9 @@ import numpy as np
 from laplace_verify.arrays import Array
 from laplace_verify.principles.law import Trial
 from laplace_verify.principles.limits import Measurement
-from laplace_verify.principles.reading import places, values_at
+from laplace_verify.principles.reading import deep_points, places, values_at
 
-__all__ = ["deep_points", "largest", "together"]
-
-DRAWN, DEEP = 300, 100
-
-
-def deep_points(trial: Trial) -> Array:
-    """Return 100 points (m, d) well inside the shape: the deepest of 300 seeded ones."""
-    shape = trial.problem.shape
-    drawn = shape.sample(DRAWN, seed=trial.seed)
-    deepest: Array = drawn[np.argsort(-shape.distance(drawn), kind="stable")[:DEEP]]
-    return deepest
+__all__ = ["largest", "together"]
 
 
 def together(trial: Trial, size: int) -> tuple[Array, Array, dict[str, Array]]:
@@ -27,7 +17,7 @@ def together(trial: Trial, size: int) -> tuple[Array, Array, dict[str, Array]]:
 
     If all have values at the same nodes these are the points, else points well inside the shape.
     """
-    inside = deep_points(trial)
+    inside = deep_points(trial.problem.shape, trial.seed)
     answer = trial.answer(size, inside)
     others = {name: other.answer(size, inside) for name, other in trial.companions.items()}
     if answer.values is not None:

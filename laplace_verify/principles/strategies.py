@@ -28,6 +28,7 @@ from laplace_verify.errors import nearest_names
 from laplace_verify.fields import Field
 from laplace_verify.geometry import Shape
 from laplace_verify.principles._shapes import DRAWN, shape_of_kind
+from laplace_verify.principles.motions import Motion, motions_of, moved
 from laplace_verify.principles.posed import Conductivity, Posed
 from laplace_verify.problems import Case, Problem
 from laplace_verify.solvers import Adapter
@@ -45,6 +46,8 @@ __all__ = [
     "posed_for",
     "problems_for",
     "shapes",
+    "shapes_of",
+    "transformed",
 ]
 
 KINDS = ("dirichlet", "neumann", "robin")
@@ -86,6 +89,20 @@ def shapes(dim: int | None = None, kinds: Iterable[str] | None = None) -> st.Sea
     found = drawable(dims, wanted)
     if not found:
         raise InvalidArgument(f"no {dim}-D shape can be drawn of the kinds {', '.join(sorted(wanted or ()))}")
+    return shape_of_kind(found)
+
+
+def shapes_of(family: type[Shape]) -> st.SearchStrategy[Shape]:
+    """Return a strategy for shapes of one class and no special cases of it.
+
+    Raises
+    ------
+    InvalidArgument
+        If no shape of the class can be drawn.
+    """
+    found = [kind for kind, (drawn, _) in DRAWN.items() if drawn is family]
+    if not found:
+        raise InvalidArgument(f"no shape is drawn of {family!r}; {nearest_names('', DRAWN)}")
     return shape_of_kind(found)
 
 
@@ -245,6 +262,22 @@ def pairs(draw: st.DrawFn, drawn: st.SearchStrategy[Posed], degree: int = 3) -> 
     """Draw a problem, and a second one with the same shape, conditions and K, but data of another field."""
     first = draw(drawn)
     return first, replace(first, field=draw(_solutions(first.shape.dim, first.conductivity, degree)))
+
+
+@st.composite
+def transformed(draw: st.DrawFn, drawn: st.SearchStrategy[Posed]) -> tuple[Posed, Posed, Motion]:
+    """Draw a problem whose K is a number, its picture under a motion, and the motion.
+
+    The motions are those that take the shape to one of its own kind: reflections, shifts, quarter turns,
+    changes of scale, of x and y; oblique turns where the shape allows. Fields must be affine or harmonic
+    polynomials, as ``posed(..., waves=False)`` draws them.
+    """
+    posed = draw(drawn)
+    choices = motions_of(posed.shape)
+    motion = choices[
+        draw(st.integers(0, 59)) % len(choices)
+    ]  # as many choices for every shape (see `_shapes`)
+    return posed, moved(posed, motion), motion
 
 
 def drawable(dims: Iterable[int], kinds: Collection[str] | None) -> list[str]:

@@ -24,10 +24,9 @@ from hypothesis import strategies as st
 from laplace_verify.principles import strategies
 from laplace_verify.principles.law import Finding, Law, Trial
 from laplace_verify.principles.limits import Measurement, between_nodes
-from laplace_verify.principles.motions import Motion, motions_of, moved
+from laplace_verify.principles.motions import Motion
 from laplace_verify.principles.posed import Posed
-from laplace_verify.principles.reading import values_at
-from laplace_verify.principles.side_by_side import deep_points
+from laplace_verify.principles.reading import deep_points, values_at
 from laplace_verify.solvers import Adapter
 
 __all__ = ["SYMMETRY"]
@@ -35,21 +34,18 @@ __all__ = ["SYMMETRY"]
 DEGREE = 3
 
 
-@st.composite
-def _moves(draw: st.DrawFn, drawn: st.SearchStrategy[Posed]) -> Posed:
-    posed = draw(drawn)
-    choices = motions_of(posed.shape)
-    number = draw(st.integers(0, 59)) % len(choices)  # as many choices for every shape (see `_shapes`)
-    motion = choices[number]
-    return replace(posed, beside={"moved": moved(posed, motion)}, note=f"; {motion.words}", drawn=motion)
+def _with_picture(drawn: tuple[Posed, Posed, Motion]) -> Posed:
+    posed, picture, motion = drawn
+    return replace(posed, beside={"moved": picture}, note=f"; {motion.words}", drawn=motion)
 
 
 def _problems(solver: Adapter) -> st.SearchStrategy[Posed]:
-    return _moves(strategies.posed_for(solver, materials={"scalar"}, degree=DEGREE, waves=False))
+    drawn = strategies.posed_for(solver, materials={"scalar"}, degree=DEGREE, waves=False)
+    return strategies.transformed(drawn).map(_with_picture)
 
 
 def _measure(trial: Trial, size: int) -> Measurement:
-    points = deep_points(trial)
+    points = deep_points(trial.problem.shape, trial.seed)
     motion: Motion = trial.posed.drawn
     answer = trial.answer(size, points)
     if answer.kind == "cloud" and answer.points is not None:
