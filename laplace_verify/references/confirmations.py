@@ -106,6 +106,15 @@ CONFIRMATIONS: dict[str, Confirmation] = {
         share=1.0,
         kinds=frozenset({"sphere-pair"}),
     ),
+    "modes": Confirmation(
+        route="integral in the complex plane between the poles of two eigenfunction series",
+        source="derived in tests/references/test_referee_modes.py from the series of Carslaw & Jaeger 1959, "
+        "sections 6.2 and 8.3; Bessel functions of Arb",
+        digits=48,
+        counted="behind the point",
+        share=0.85,
+        kinds=frozenset({"box-faces", "cylinder-faces"}),
+    ),
 }
 
 

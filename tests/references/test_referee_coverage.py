@@ -8,7 +8,11 @@ from laplace_verify.references import CONFIRMATIONS, confirmation_of, probes_of
 CASES = lv.catalogue.select(ill_posed=False)
 
 
-LEAST = 0.90  # left out: jumps along the edges of boxes and cylinders
+LEAST = 0.98  # left out: points of sides on which kernels are infinite, hot vertices of boxes
+
+
+def test_every_case_is_confirmed():
+    assert all(confirmation_of(case) is not None for case in CASES)
 
 
 def test_most_of_the_stored_values_are_confirmed():
@@ -36,5 +40,5 @@ def test_a_case_without_solution_is_confirmed_by_nothing():
 
 
 def test_a_field_of_a_kind_that_no_route_can_do_is_confirmed_by_nothing():
-    corner = lv.fields.box_faces((0, 0, 0), (1, 1, 1), top=1)
-    assert confirmation_of(lv.case(lv.Box((0, 0, 0), (1, 1, 1)), {}, corner)) is None
+    formula = lv.field("exp(x)*cos(y)")
+    assert confirmation_of(lv.case(lv.Rectangle((0, 0), (1, 1)), {}, formula)) is None
