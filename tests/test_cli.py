@@ -123,6 +123,8 @@ def test_value_prints_digits_radius_and_basis(capsys):
 @pytest.mark.parametrize(
     ("arguments", "message"),
     [
+        (["value", "disc-step", "1", "0"], "lies outside the disc of radius 0.9"),
+        (["value", "slit-plate", "1/2", "0"], "two values at point .* say side="),
         (["value", "plate-sadle", "1", "1"], "did you mean 'plate-saddle'"),
         (["value", "plate-saddle", "1"], "dimension|coordinates"),
         (["value", "plate-saddle", "a", "b"], "number|decimal|fraction"),
@@ -255,3 +257,14 @@ def test_a_known_deviation_is_accepted_but_neither_a_crash_nor_an_unexpected_pas
     assert "known deviations that pass" not in capsys.readouterr().err
     assert run(tmp_path, solver_file.replace(".py", ".py:mended"), *cases) == 1
     assert "declared known deviations that pass: plate-saddle" in capsys.readouterr().err
+
+
+def test_value_on_a_cut_is_that_of_the_side_asked_for(capsys):
+    found = []
+    for side in ("1", "-1"):
+        assert main(["value", "slit-plate-smooth-data", "--digits", "8", "--", "1/2", "-1e-9"]) == 0
+        below = capsys.readouterr().out
+        assert main(["value", "slit-plate-smooth-data", "1/2", "0", "--digits", "8", "--side", side]) == 0
+        found.append(capsys.readouterr().out.split()[1])
+    assert float(below.split()[1]) == pytest.approx(float(found[1]), abs=1e-7)
+    assert float(found[0]) == pytest.approx(float(found[1]), abs=1e-12)  # both lips have the same data

@@ -84,6 +84,12 @@ def add_value(commands: Any) -> None:
         help='coordinates, exact: "0.1" or "1/3"; "--" before negative ones',
     )
     parser.add_argument("--digits", type=int, default=30, help="correct digits asked for (default 30)")
+    parser.add_argument(
+        "--side",
+        type=int,
+        choices=(1, -1),
+        help="on a cut: 1 for what lies on its left, -1 on its right",
+    )
     parser.set_defaults(run=_value)
 
 
@@ -95,13 +101,14 @@ def _value(options: argparse.Namespace) -> int:
     from laplace_verify.fields.exact import exact_point
 
     case = catalogue[options.case]
-    found = case.exact.enclosure(options.coordinates, options.digits)
+    exact = case.exact
     place = [float(c) for c in exact_point(options.coordinates, "point", (case.dim,))]
     if not case.problem.shape.contains([place])[0]:
         raise ProblemError(
             f"the point ({', '.join(options.coordinates)}) lies outside "
             f"{region_in_words(case.problem.shape)}, where case {case.id!r} is posed"
         )
+    found = exact.enclosure(options.coordinates, options.digits, side=options.side)
     say(f"value   {mpmath.nstr(found.value, options.digits)}")
     say(f"radius  {mpmath.nstr(found.radius, 2)}")
     say(f"basis   {found.basis}")

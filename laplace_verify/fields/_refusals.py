@@ -103,7 +103,10 @@ def _at_singular_points(marks: Marks, place: Place, derivative: bool) -> None:
 def _on_edges(marks: Marks, place: Place, derivative: bool) -> None:
     field = marks.field
     if place.exact is not None:
-        return  # precise values tell by themselves
+        if field._jumps_at(place.exact):
+            everywhere = np.ones(len(place.points), dtype=np.bool_)
+            raise FieldError(_jumps_on_edge(field, place, everywhere))
+        return  # other precise values tell by themselves
     for edge in marks.edges:
         if edge.exponent > 0 and not (derivative and edge.exponent <= 1):
             continue  # the value has a limit there
@@ -114,9 +117,11 @@ def _on_edges(marks: Marks, place: Place, derivative: bool) -> None:
                 raise FieldError(
                     f"the gradient of {shortened(field.formula)} is infinite at {where}, on an edge"
                 )
-            raise FieldError(
-                f"{shortened(field.formula)} jumps at {where}, on an edge: it has no single value there"
-            )
+            raise FieldError(_jumps_on_edge(field, place, hit))
+
+
+def _jumps_on_edge(field: Field, place: Place, hit: BoolArray) -> str:
+    return f"{shortened(field.formula)} jumps at {place.name(hit)}, on an edge: it has no single value there"
 
 
 def _on_sheets(marks: Marks, place: Place, derivative: bool) -> None:

@@ -24,7 +24,7 @@ from laplace_verify.fields._inputs import Side, as_sides, columns, is_number, sh
 from laplace_verify.fields._precision import agreeing, real
 from laplace_verify.fields._refusals import Marks, Place, refuse, refuse_infinite
 from laplace_verify.fields.edges import Edge, Line, Ring
-from laplace_verify.fields.exact import exact_point, whole
+from laplace_verify.fields.exact import Exact, exact_point, whole
 from laplace_verify.fields.sheets import Fan, Sheet
 from laplace_verify.fields.singular import Basis, Cut, Enclosure, Singularity
 
@@ -318,11 +318,18 @@ class Field(ABC):
             except (ZeroDivisionError, OverflowError, ValueError) as cause:
                 if isinstance(cause, FieldError):
                     raise
-                raise FieldError(f"{self.formula} has no value at {text_of(place)}: {cause}") from cause
+                what = f"no {'gradient' if derivative else 'value'} at {text_of(place)}"
+                raise FieldError(
+                    f"{shortened(self.formula)} has {what}: its formula is singular there"
+                ) from cause
 
         values, changes = agreeing(evaluate, digits, self.formula)
         as_global = mpmath.mp.make_mpf  # a number of the global type that keeps every digit
         return tuple(as_global(v._mpf_) for v in values), tuple(as_global(c._mpf_) for c in changes)
+
+    def _jumps_at(self, place: tuple[Exact, ...]) -> bool:  # noqa: ARG002  # most fields have no such edges
+        """Return whether an exact point lies on an edge along which the field jumps."""
+        return False
 
     # -- algebra and motions: each builds a field of its own family ----------------------------------------
 

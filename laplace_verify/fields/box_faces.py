@@ -201,6 +201,16 @@ class BoxFaces(Field):
             touching = touching | (wall == 0)
         return ctx.where(touching, ctx.where(low == high, low, nan), u)
 
+    def _jumps_at(self, place: tuple[Exact, ...]) -> bool:
+        """Return whether faces of different values meet at a point."""
+        ends = (end for pair in zip(self.lower, self.upper, strict=True) for end in pair)
+        met = {
+            rational(value)
+            for face, (end, value) in enumerate(zip(ends, self.values, strict=True))
+            if rational(place[face // 2]) == rational(end)
+        }
+        return len(met) > 1
+
     def _valid(self, points: Array) -> BoolArray:
         """Return which points lie in the closed box, to rounding."""
         return inside_box(self.lower, self.upper, points)

@@ -134,6 +134,15 @@ class CylinderFaces(Field):
             return ctx.where(rim, nan, found)
         return tuple(ctx.where(rim, nan, part) for part in found)
 
+    def _jumps_at(self, place: tuple[Exact, ...]) -> bool:
+        """Return whether a point lies on a rim where two values meet."""
+        x, y, z = (rational(c) for c in place)
+        on_end = any(
+            z == rational(end) and weight
+            for end, weight in zip((self.z0, self.z1), self._weights(), strict=True)
+        )
+        return on_end and x * x + y * y == rational(self.radius) ** 2
+
     def _valid(self, points: Array) -> BoolArray:
         """Return which points lie in the closed cylinder, to rounding."""
         low, high, radius = float(self.z0), float(self.z1), float(self.radius)

@@ -82,7 +82,8 @@ def exact_point(point: Iterable[Number], name: str, dims: tuple[int, ...] = (1, 
         raise FieldError(f"{name} must be a tuple of {_either(dims)} numbers, got {point!r}")
     coordinates = tuple(exact(c, f"{name}[{i}]") for i, c in enumerate(point))
     if len(coordinates) not in dims:
-        raise FieldError(f"{name} must have {_either(dims)} coordinates, got {len(coordinates)}")
+        noun = "coordinate" if dims == (1,) else "coordinates"
+        raise FieldError(f"{name} must have {_either(dims)} {noun}, got {len(coordinates)}")
     return coordinates
 
 

@@ -175,7 +175,7 @@ def test_faces_carry_their_values_and_edges_are_refused():
         for call in (field.value, field.gradient):
             with pytest.raises(FieldError, match=r"jumps at point 0 .* on an edge"):
                 call([place])
-    with pytest.raises(FieldError, match="infinite or undefined"):
+    with pytest.raises(FieldError, match="jumps at point"):
         BOX.at(("3/10", "9/10", "7/10"))
     with pytest.raises(FieldError, match="not defined"):
         BOX.value([[0.3, 0.2, 0.8]])
@@ -212,3 +212,20 @@ def test_edges_move_with_the_field_and_are_kept_by_sums():
 def test_bad_parameters_are_refused(call, message):
     with pytest.raises(FieldError, match=message):
         call()
+
+
+@pytest.mark.parametrize(
+    ("field", "edge", "beside"),
+    [
+        (BOX, ("0.3", "0", "0.7"), ("0.3", "0", "0")),
+        (BOX, ("0", "0", "0.7"), ("0", "0", "0")),
+        (BOX, ("6/5", "2/5", "7/10"), ("6/5", "2/5", "1/10")),
+        (LID, ("0.48", "0.64", 1), ("0.48", "0.64", "1/2")),  # 0.48^2 + 0.64^2 = 0.8^2
+        (LID, ("-4/5", 0, 0), ("-4/5", 0, "1/2")),
+    ],
+)
+def test_precise_values_are_refused_on_an_edge_where_data_jump_and_nowhere_else(field, edge, beside):
+    for asked in (field.at, field.gradient_at):
+        with pytest.raises(FieldError, match=r"jumps at point .*, on an edge: it has no single value there"):
+            asked(edge)
+        asked(beside)
