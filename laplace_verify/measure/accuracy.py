@@ -89,7 +89,8 @@ def precision_remarks(answer: Answer, exact: Exact) -> list[Sign]:
 
 def _of_single_precision(values: Array) -> BoolArray:
     """Return which values are numbers of 32 bits."""
-    same: BoolArray = values.astype(np.float32).astype(np.float64) == values
+    with np.errstate(over="ignore"):  # beyond the largest of them it is none
+        same: BoolArray = values.astype(np.float32).astype(np.float64) == values
     return same
 
 
