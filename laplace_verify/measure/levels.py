@@ -18,6 +18,8 @@ __all__ = [
 
 PLANE, SPACE = (8, 16, 32, 64), (6, 9, 13, 19, 28)
 SPACE_RATIO = 1.45
+MULTIPLE = 8
+SHORTEST_STEP = 1.4
 MOST_ROUNDS = 3
 MOST_PAID_ROUNDS = 4
 # a bound on work that does not depend on the machine, so that results do not either
@@ -85,7 +87,8 @@ def further_sizes(
     """Return the sizes worth running next; empty if there are none. `rounds` of additions have been run.
 
     If fewer than four levels can be judged, the first round is a ladder of four that starts at the coarsest
-    size to be judged (a multiple of four with h <= scale/2). Otherwise a round is one finer size: twice the
+    size to be judged (with h <= scale/2; a multiple of eight, like the default sizes, whose grid lines meet
+    the same points); its last step is shorter where a full one would be too long. Otherwise a round is one finer size: twice the
     last, 1.45 times in space. Sizes with more than the bounded number of unknowns are left out, so that what
     is run does not depend on the machine; with a `budget` in seconds it does: then sizes are left out whose
     time, predicted to grow like unknowns^(3/2), exceeds what is left.
@@ -94,15 +97,18 @@ def further_sizes(
         return []
     ratio = SPACE_RATIO if dim == 3 else 2.0
     last = levels[-1]
+    per_cell = (last.unknowns or last.size**dim) / last.size**dim
+    largest = math.floor((MOST_UNKNOWNS[dim] / per_cell) ** (1 / dim))
     wanted = [round(ratio * last.size)]
     if rounds == 0 and sum(level.judged for level in levels) < MINIMUM_LEVELS and math.isfinite(scale):
-        start = 4 * math.ceil(last.size * last.h / (scale / 2) / 4 - 1e-9)
+        start = MULTIPLE * math.ceil(last.size * last.h / (scale / 2) / MULTIPLE - 1e-9)
         wanted = [round(start * ratio**k) for k in range(MINIMUM_LEVELS)]
+        if budget is None and wanted[-2] * SHORTEST_STEP < largest < wanted[-1]:
+            wanted[-1] = largest // MULTIPLE * MULTIPLE
     known = {level.size for level in levels}
     wanted = [n for n in wanted if n not in known]
     if budget is None:
-        per_cell = (last.unknowns or last.size**dim) / last.size**dim
-        return [n for n in wanted if per_cell * n**dim <= MOST_UNKNOWNS[dim]]
+        return [n for n in wanted if n <= largest]
     chosen: list[int] = []
     for n in wanted:
         budget -= predicted_seconds(last, n, dim)
