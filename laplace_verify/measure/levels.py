@@ -88,10 +88,10 @@ def further_sizes(
 
     If fewer than four levels can be judged, the first round is a ladder of four that starts at the coarsest
     size to be judged (with h <= scale/2; a multiple of eight, like the default sizes, whose grid lines meet
-    the same points); its last step is shorter where a full one would be too long. Otherwise a round is one finer size: twice the
-    last, 1.45 times in space. Sizes with more than the bounded number of unknowns are left out, so that what
-    is run does not depend on the machine; with a `budget` in seconds it does: then sizes are left out whose
-    time, predicted to grow like unknowns^(3/2), exceeds what is left.
+    the same points); its last step is shorter where a full one would be too long. Otherwise a round is one
+    finer size: twice the last, 1.45 times in space. Sizes with more than the bounded number of unknowns are
+    left out, so that what is run does not depend on the machine; with a `budget` in seconds it does: then
+    sizes are left out whose time, predicted to grow like unknowns^(3/2), exceeds what is left.
     """
     if rounds >= (MOST_ROUNDS if budget is None else MOST_PAID_ROUNDS):
         return []
