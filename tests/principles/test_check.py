@@ -30,59 +30,56 @@ NOT_FOR_ALL = (  # they ask for kinds of solver
 )
 SOUND = {"five": five_point, "p1": p1_element, "chebyshev": chebyshev, "sources": fundamental_solutions}
 
-CONSTANTS, AFFINE, _, MAXIMUM, _, MEAN, *_ = LAWS
-FIRST_FOUR = (CONSTANTS, AFFINE, MAXIMUM, MEAN)
+CONSTANTS, AFFINE, SERIES, *_ = LAWS
 
-# Which of the first four laws catch which fault of finite differences, and why the others cannot.
-SEEN_BY = [
-    ((), "the problems drawn are of one material, on even grids, in Cartesian coordinates", (
-        "arithmetic mean of conductivities", "conductivity of the lower neighbour",
-        "equal spacings taken for granted", "radius of the outer node", "metric factor missing",
-        "metric factor doubled", "reciprocal metric factor",
+# Which law is the first to catch which fault of finite differences, or why none can.
+FIRST = [
+    (CONSTANTS, "weights that do not add up, systems that are not solved", (
+        "robin coefficient", "robin sign", "robin coefficient times conductivity", "robin edge length lost",
+        "robin only on high sides", "dirichlet side not carried", "dirichlet carried with the wrong sign",
+        "level not restored", "loose tolerance", "increment instead of residual", "cap on iterations",
+        "factors in single precision",
     )),
-    ((), "they are well posed, have no periodic sides, and are held somewhere", (
-        "ill-posed input accepted", "seam shifted", "seam reversed", "pinned twice", "regularised",
-        "level not restored",
+    (AFFINE, "data of a constant are zero, or the same everywhere", (
+        "flux sign", "normal of the low sides", "flux for gradient", "gradient for flux", "half-cell factor",
+        "whole edge in corners", "edge length of the other axis", "flux spacing from the number of nodes",
+        "flux on the opposite side", "flux lost", "robin at the inner neighbour",
+        "dirichlet data of the next node", "data of top and left reversed", "corners left to the flux",
+        "dirichlet by a weak penalty", "spacings exchanged", "spacing along x from the number of nodes",
+        "interior weight", "mixed derivative missing", "mixed derivative sign", "pinned twice", "regularised",
+        "value of the nearest node", "constant next to the boundary", "output exchanged",
+        "corners filled by means", "coordinates off by one",
     )),
-    ((), "exact for the zero flux of a constant and the constant flux of an affine field", (
-        "first-order flux", "flux of cell centres",
+    (SERIES, "one material, even grids, Cartesian coordinates and small whole numbers hide them", (
+        "flux of cell centres", "equal spacings taken for granted", "arithmetic mean of conductivities",
+        "conductivity of the lower neighbour", "metric factor missing", "metric factor doubled",
+        "reciprocal metric factor", "values in single precision",
     )),
-    ((), "no oblong plate with a flux is drawn", ("edge length of the other axis",)),
-    ((), "they do not look at reported gradients and fluxes", (
-        "gradient halved", "gradient exchanged", "reported fluxes of low sides", "reported fluxes one-sided",
-        "reported fluxes without conductivity", "pi with four decimals",
+    ("flux balance", "the values are right", (
+        "tensor exchanged", "gradient exchanged", "reported fluxes of low sides", "reported fluxes one-sided",
     )),
-    ((), "the numbers drawn have few binary digits", ("values in single precision",)),
-    ((), "harmless", (
+    ("conductivity scaling", "values and balance are right", ("reported fluxes without conductivity",)),
+    (None, "the error vanishes in the limit, as one of first order", (
+        "first-order flux", "radius of the outer node",
+    )),
+    (None, "problems drawn are well posed and have no periodic sides", (
+        "ill-posed input accepted", "seam shifted", "seam reversed",
+    )),
+    (None, "a common factor of all slopes, or of all fluxes about an axis, keeps the laws", (
+        "gradient halved", "pi with four decimals",
+    )),
+    (None, "harmless", (
         "second-order one-sided flux", "dirichlet by rows of the unit matrix", "other corner owner",
         "corner rows missing", "pinned with unbalanced data", "balanced, then pinned",
         "conjugate gradients in the plane", "red and black unknowns", "equations scaled",
     )),
-    ((AFFINE,), "data of a constant are zero, or the same everywhere", (
-        "flux sign", "normal of the low sides", "flux for gradient", "gradient for flux", "half-cell factor",
-        "whole edge in corners", "flux spacing from the number of nodes", "flux on the opposite side",
-        "flux lost", "robin at the inner neighbour", "dirichlet data of the next node",
-        "data of top and left reversed", "corners left to the flux", "dirichlet by a weak penalty",
-        "spacing along x from the number of nodes", "interior weight", "mixed derivative missing",
-        "mixed derivative sign", "tensor exchanged", "value of the nearest node",
-        "constant next to the boundary", "corners filled by means", "coordinates off by one",
-    )),
-    ((CONSTANTS, AFFINE), "data of a constant are alpha times it", (
-        "robin coefficient", "robin sign", "robin coefficient times conductivity", "robin edge length lost",
-        "robin only on high sides",
-    )),
-    ((CONSTANTS, AFFINE, MAXIMUM), "values are lost", (
-        "dirichlet side not carried", "dirichlet carried with the wrong sign",
-    )),
-    ((MEAN,), "second differences of affine fields vanish, whatever their weights", ("spacings exchanged",)),
-    ((AFFINE, MEAN), "a constant may be turned round", ("output exchanged",)),
-    ((CONSTANTS, AFFINE, MEAN), "the system is not solved", (
-        "loose tolerance", "increment instead of residual", "cap on iterations",
-        "factors in single precision",
-    )),
 ]  # fmt: skip
-CAUGHT = {name: laws for laws, _, names in SEEN_BY for name in names}
+CAUGHT = {name: law for law, _, names in FIRST for name in names}
 GRID_FAULTS = {name: fault for name, fault in FAULTS.items() if fault.sample == five_point.name}
+ONE_OF_EACH = (
+    "robin sign", "whole edge in corners", "arithmetic mean of conductivities", "reported fluxes one-sided",
+    "reported fluxes without conductivity",
+)  # fmt: skip
 
 
 def violation_of(check, solver):
@@ -151,17 +148,40 @@ def test_the_seven_point_sample_keeps_every_law(law, seed):
     assert check.verdict is (Verdict.NOT_APPLICABLE if law in NOT_FOR_ALL else Verdict.PASS), check.reason
 
 
-@pytest.mark.long
-@pytest.mark.parametrize("fault", GRID_FAULTS)
-@pytest.mark.parametrize("law", FIRST_FOUR)
-def test_faults_are_caught_by_the_laws_that_can_see_them(fault, law):
+def test_the_laws_alone_catch_most_faults_that_change_answers():
+    changing = [name for name, fault in GRID_FAULTS.items() if fault.effect != "harmless"]
+    caught = [name for name in changing if CAUGHT[name] is not None]
+    assert len(caught) >= 0.7 * len(changing)
+    assert all(fault.effect != "harmless" or CAUGHT[name] is None for name, fault in GRID_FAULTS.items())
+
+
+def assert_caught(fault):
+    """The law of the table fails; its code shows that again, and nothing on the sound sample."""
     solver = FAULTS[fault].adapter
-    check = check_principle(solver, law, seed=2)
-    expected = Verdict.FAIL if law in CAUGHT[fault] else Verdict.PASS
-    assert check.verdict is expected, check.reason
-    if expected is Verdict.FAIL:
-        assert violation_of(check, solver) == pytest.approx(check.violation, rel=1e-9)  # the same solve again
-        assert violation_of(check, five_point) < check.tolerance  # the problem itself is sound
+    check = check_principle(solver, CAUGHT[fault])
+    assert check.verdict is Verdict.FAIL, check.reason
+    assert violation_of(check, solver) == pytest.approx(check.violation, rel=1e-9)  # the same solve again
+    assert violation_of(check, five_point) < check.tolerance  # the problem itself is sound
+
+
+@pytest.mark.slow
+@pytest.mark.parametrize("fault", ONE_OF_EACH)
+def test_one_fault_for_each_law_is_caught(fault):
+    assert_caught(fault)
+
+
+@pytest.mark.long
+@pytest.mark.parametrize("fault", [name for name, law in CAUGHT.items() if law is not None])
+def test_every_fault_is_caught_by_the_law_that_can_see_it(fault):
+    assert_caught(fault)
+
+
+@pytest.mark.long
+@pytest.mark.parametrize("law", LAWS)
+@pytest.mark.parametrize("fault", [name for name, law in CAUGHT.items() if law is None])
+def test_no_law_catches_what_none_can_see(fault, law):
+    check = check_principle(FAULTS[fault].adapter, law)
+    assert check.verdict in (Verdict.PASS, Verdict.NOT_APPLICABLE), check.reason
 
 
 @pytest.mark.slow
