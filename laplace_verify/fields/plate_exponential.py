@@ -15,7 +15,9 @@ what is left of A_n is (-1)^K (r / m)^{2K} times as large, known without cancell
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+import math
+from dataclasses import dataclass, replace
+from fractions import Fraction
 from typing import Any, ClassVar
 
 import numpy as np
@@ -23,15 +25,18 @@ import numpy as np
 from laplace_verify.contexts import FLOAT, Number
 from laplace_verify.errors import FieldError
 from laplace_verify.fields._precision import working
-from laplace_verify.fields.exact import Exact, exact, show
+from laplace_verify.fields.exact import Exact, exact, rational, show
 from laplace_verify.fields.mode_sums import Decay
 from laplace_verify.fields.plate import Plate
+from laplace_verify.fields.plate_cells import TERMS
+from laplace_verify.fields.plate_cells_fit import HalfProblem, local_jumps
 from laplace_verify.fields.plate_split import PlateSplit, Split
 from laplace_verify.fields.singular import Basis
 from laplace_verify.fields.specs import registered
 
 __all__ = ["Exponential", "PlateExponential", "exponential"]
 
+JUMPS = 22  # derivatives at the ends for the cells: (STEEPEST / 2)^22 / 22! = 1e-17
 STEEPEST = 3  # |rate|: above it the corner polynomials grow and float64 loses digits, one of them at 4
 
 
@@ -98,6 +103,33 @@ class PlateExponential(PlateSplit):
     def basis(self) -> Basis:
         """Tail bound."""
         return "tail bound"
+
+    def half_problem(self) -> HalfProblem:
+        """Return what `plate_cells` needs to tabulate u for float64: f and its derivatives at the ends."""
+        size = tuple(
+            exact(rational(b) - rational(a), "extent") for a, b in zip(self.lower, self.upper, strict=True)
+        )
+        twin = replace(self, lower=(0, 0), upper=size)
+        length = twin.ends[1]
+        turn = float(rational(self.rate) / length)
+        first, last = (float(end) for end in self._at_ends(working(30)))
+
+        def line(c: Fraction) -> list[float]:
+            level = float(self.height) * math.exp(float(rational(self.rate) * c / length))
+            return [level * turn**k / math.factorial(k) for k in range(TERMS)]
+
+        # every second derivative jumps, by twice its size
+        starting, ending = (
+            [sign * end * turn**p if p % 2 == self.even else 0.0 for p in range(JUMPS)]
+            for sign, end in ((2, first), (-2, last))
+        )
+        jumps = [(-length, ending), (0 * length, starting), (length, ending), (2 * length, starting)]
+        return HalfProblem(
+            side=self.side, even=self.even, far=self.far, length=length, line=line,
+            places=local_jumps(self.side, jumps),
+            value=lambda s, d, h: twin._solve(FLOAT, s, d, h),
+            slopes=lambda s, d, h: twin._slopes(FLOAT, s, d, h),
+        )  # fmt: skip
 
     def _data_text(self) -> str:
         factor = "" if self.height == 1 else f"{show(self.height)} "
