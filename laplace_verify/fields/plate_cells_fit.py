@@ -24,7 +24,7 @@ from laplace_verify.fields.plate_cells import TERMS, ComplexArray
 from laplace_verify.fields.plate_cells_layout import Intervals
 from laplace_verify.fields.small_least_squares import least_squares
 
-__all__ = ["FRAMES", "HalfProblem", "fitted", "local_jumps"]
+__all__ = ["FRAMES", "HalfProblem", "NotAnalytic", "fitted", "local_jumps"]
 
 # side: direction of t over that of the coordinate along it, and e^{i phi}, the direction of t in the plane
 FRAMES: dict[str, tuple[int, complex]] = {
@@ -34,6 +34,7 @@ FRAMES: dict[str, tuple[int, complex]] = {
 NODES = (18, 18)  # on edges along and across, of a compact cell
 LONG_NODES = (36, 6)  # and of a long one: more than there are powers along it
 LEAST_WEIGHT = 1e-6  # of u in a long cell where it is constant
+FALLEN = 1e-15  # what the last powers of known coefficients may be of the largest
 NOTHING = 1e-60  # of u: smaller terms of a cell would only end as denormal numbers
 LIFTED = 0.15  # of the height of a cell at the side with data: so far from its places samples keep
 LONG = 5  # times the least radius: from here on a cell is long
@@ -50,7 +51,7 @@ class HalfProblem:
 
     `places` are where the continuation of the data jumps, up to a length beyond both ends, with J_p / p! in
     the direction of t. `line` returns the data in powers of s - c, for s just above c, or below if c is the
-    upper end.
+    upper end; where it does not fall to rounding in `TERMS` powers nothing is tabulated.
     """
 
     side: str
@@ -61,6 +62,11 @@ class HalfProblem:
     line: Callable[[Fraction], list[float]]
     value: Solver
     slopes: Slopes
+    widest: float = math.inf  # half width of a cell in which `line` still falls to rounding
+
+
+class NotAnalytic(Exception):  # noqa: N818  # caught in `tabulated`; no error of the user's
+    """The data are not given to rounding by as many powers as a cell has."""
 
 
 def local_jumps(
@@ -245,6 +251,8 @@ class _Task:
                 known[: len(row), k] = row
         radius, least = float(np.abs(v).max()), float(frame.across.above[0])
         known *= radius ** np.arange(TERMS)[:, None]
+        if not (np.abs(known[-2:]) <= FALLEN * np.abs(known).max(initial=1e-300)).all():
+            raise NotAnalytic
         unknown = _unknown(level, upright)
         powers = (v[:, None] / radius) ** np.arange(TERMS)
         slopes = np.arange(TERMS) * np.roll(powers, 1, axis=1) * (least / radius)

@@ -10,7 +10,7 @@ import numpy as np
 
 from laplace_verify.arrays import BoolArray
 from laplace_verify.fields.plate_cells import REACH, TERMS, Axis, Cells, ComplexArray, Places
-from laplace_verify.fields.plate_cells_fit import FRAMES, HalfProblem, fitted
+from laplace_verify.fields.plate_cells_fit import FRAMES, HalfProblem, NotAnalytic, fitted
 from laplace_verify.fields.plate_cells_layout import Intervals, intervals_across, intervals_along
 
 __all__ = ["tabulated"]
@@ -29,7 +29,7 @@ def tabulated(
 ) -> Cells | None:
     """Return the cells of the sum of problems plus c0 + c1 X + c2 Y + c3 X Y, X and Y counted from `lower`.
 
-    None if the rectangle is too slender or too small.
+    None if the rectangle is too slender or too small, or data are steeper than cells can tell.
     """
     size = (upper[0] - lower[0], upper[1] - lower[1])
     corners = [[_point(problem.side, place, size) for place, _ in problem.places] for problem in problems]
@@ -42,7 +42,10 @@ def tabulated(
     slope = np.zeros((TERMS - 1, len(near[0])), dtype=np.complex128)
     served &= np.array([sum(map(len, lists)) <= MOST_PLACES for lists in zip(*near, strict=True)])
     for problem, numbers in zip(problems, near, strict=True):
-        found = fitted(problem, x, y, numbers, served)
+        try:
+            found = fitted(problem, x, y, numbers, served)
+        except NotAnalytic:
+            return None
         value += found[0]
         slope += found[1]
     background = _background(x, y, bilinear)
@@ -86,7 +89,7 @@ def _axes(
     if not SMALLEST < across < 1 / SMALLEST:
         return None
     deep = len(problems) == 1 and (problems[0].side in ("left", "right")) == (axis == 0)
-    widest = 0.35 * float(across) if deep else math.inf
+    widest = min([0.35 * float(across) if deep else math.inf, *(problem.widest for problem in problems)])
     along = intervals_along(
         length, across, [p[axis] for p in points], widest,
         wanted=DEEP * across if deep else length, backward=problems[0].side in ("top", "right"),

@@ -8,6 +8,7 @@ its samples suggest is not known, hence the basis "uncertified".
 from __future__ import annotations
 
 import itertools
+import math
 from collections.abc import Callable
 from dataclasses import dataclass
 from fractions import Fraction
@@ -23,6 +24,8 @@ from laplace_verify.fields._precision import working
 from laplace_verify.fields._samples import converged, parsed, sampled
 from laplace_verify.fields.mode_sums import Decay
 from laplace_verify.fields.plate import Plate
+from laplace_verify.fields.plate_cells import TERMS
+from laplace_verify.fields.plate_cells_fit import HalfProblem, local_jumps
 from laplace_verify.fields.plate_split import PlateSplit, Split
 from laplace_verify.fields.polylog import horner
 from laplace_verify.fields.singular import Basis
@@ -31,6 +34,7 @@ from laplace_verify.fields.specs import registered
 __all__ = ["PlateSmooth"]
 
 FLOAT_INTERVALS = 8192
+CELL_DIGITS = 20  # of the derivatives for the cells
 PRECISE_INTERVALS = 1024
 
 
@@ -61,6 +65,31 @@ class PlateSmooth(PlateSplit):
     def basis(self) -> Basis:
         """Uncertified: the function is known at its samples only."""
         return "uncertified"
+
+    def half_problem(self) -> HalfProblem:
+        """Return what `plate_cells` needs to tabulate u for float64: Taylor's series of the data."""
+        start, stop = self.ends
+        origin, length = float(start), stop - start
+
+        def line(c: Fraction) -> list[float]:
+            found = _derivatives(self, start + c, -1 if c == length else 1, TERMS, CELL_DIGITS)
+            return [float(v / math.factorial(k)) for k, v in enumerate(found)]
+
+        # every second derivative jumps, by twice its size
+        starting, ending = (
+            [
+                sign * float(v) if p % 2 == self.even else 0.0
+                for p, v in enumerate(_derivatives(self, end, sign // 2, TERMS, CELL_DIGITS))
+            ]
+            for sign, end in ((2, start), (-2, stop))
+        )
+        jumps = [(-length, ending), (0 * length, starting), (length, ending), (2 * length, starting)]
+        return HalfProblem(
+            side=self.side, even=self.even, far=self.far, length=length, line=line,
+            places=local_jumps(self.side, jumps), widest=float(length) / 16,
+            value=lambda s, d, h: self._solve(FLOAT, s + origin, d, h),
+            slopes=lambda s, d, h: self._slopes(FLOAT, s + origin, d, h),
+        )  # fmt: skip
 
     def _data_text(self) -> str:
         if isinstance(self.data, str):
@@ -98,23 +127,26 @@ def _differences(plate: PlateSmooth, count: int, digits: int) -> tuple[list[Any]
     They are forward differences with steps of 10^-digits into the side, in so many digits that nothing is
     lost.
     """
-    highest = 2 * count - 1
-    ctx = working(digits * (highest + 2))
-    rounded = working(digits)  # whose numbers are exact from here on, so short ones are wanted
     start, stop = plate.ends
-    step = ctx.number(stop - start) * ctx.mpf(10) ** -digits
+    rounded = working(digits)  # whose numbers are exact from here on, so short ones are wanted
     result = []
     for end, direction in ((start, 1), (stop, -1)):
-        values = [
-            sampled(plate.data, plate.variable, ctx, ctx.number(end) + direction * j * step)
-            for j in range(highest + 1)
-        ]
-        derivatives = []
-        for order in range(highest + 1):
-            derivatives.append(rounded.mpf(values[0] / (direction * step) ** order))
-            values = [b - a for a, b in itertools.pairwise(values)]
+        derivatives = [rounded.mpf(v) for v in _derivatives(plate, end, direction, 2 * count, digits)]
         result.append(derivatives[1::2] if plate.even else derivatives[::2])
     return result[0], result[1]
+
+
+def _derivatives(plate: PlateSmooth, place: Fraction, direction: int, count: int, digits: int) -> list[Any]:
+    """Return the derivatives of order 0 ... count - 1 at a place, by differences in the given direction."""
+    ctx = working(digits * (count + 1))
+    start, stop = plate.ends
+    step = direction * ctx.number(stop - start) * ctx.mpf(10) ** -digits
+    values = [sampled(plate.data, plate.variable, ctx, ctx.number(place) + j * step) for j in range(count)]
+    derivatives = []
+    for order in range(count):
+        derivatives.append(values[0] / step**order)
+        values = [b - a for a, b in itertools.pairwise(values)]
+    return derivatives
 
 
 def _transformed(ctx: Any, plate: PlateSmooth, row: list[Any]) -> Any:
