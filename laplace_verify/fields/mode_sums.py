@@ -27,6 +27,7 @@ from typing import Any, TypeAlias
 
 import numpy as np
 
+from laplace_verify.contexts import FLOAT
 from laplace_verify.errors import FieldError
 from laplace_verify.fields.exact import Exact, offset
 from laplace_verify.fields.polylog import accuracy, unit
@@ -34,6 +35,7 @@ from laplace_verify.fields.polylog import accuracy, unit
 __all__ = ["MOST_TERMS", "Decay", "mode_slopes", "mode_value", "side_angles", "terms_needed"]
 
 MOST_TERMS = 20000
+FEW = 12  # terms that cost no more than sorting the points by the number they need
 
 Place: TypeAlias = tuple[Any, Any, Any, Any]  # (p, q, r, gap), see `_difference_sum`
 
@@ -102,6 +104,8 @@ def terms_needed(decay: Decay, p: float, weight: int, digits: float) -> int:
 def side_angles(ctx: Any, gamma: Any, x: Any, ends: tuple[Exact, Exact]) -> tuple[Any, Any]:
     """Return gamma s and pi - gamma s for the coordinate x along the side, from distances to its two ends."""
     s, rest = offset(ctx, x, ends[0]), -offset(ctx, x, ends[1])
+    if ctx is FLOAT:
+        return gamma * np.maximum(s, 0.0), gamma * np.maximum(rest, 0.0)
     return gamma * ctx.where(s > 0, s, 0 * s), gamma * ctx.where(rest > 0, rest, 0 * rest)
 
 
@@ -143,6 +147,9 @@ def _difference_sum(
     p, digits = place[0], accuracy(ctx)
     if not isinstance(p, np.ndarray):
         return _horner_pair(ctx, coefficients(terms_needed(decay, float(p), weight, digits)), *place)
+    most = terms_needed(decay, float(p.min()), weight, digits) if p.size else 1
+    if most <= FEW:
+        return _horner_pair(ctx, coefficients(most), *place)
     total = np.empty(p.shape, dtype=np.complex128)
     difference = np.empty(p.shape, dtype=np.complex128)
     band = np.clip(

@@ -125,7 +125,11 @@ class Plate(Field):
         x = _between(ctx, x, self.lower[axis], self.upper[axis])
         y = _between(ctx, y, self.lower[1 - axis], self.upper[1 - axis])
         low, high = offset(ctx, y, self.lower[1 - axis]), -offset(ctx, y, self.upper[1 - axis])
-        low, high = ctx.where(low > 0, low, 0 * low), ctx.where(high > 0, high, 0 * high)
+        low, high = (
+            (np.maximum(low, 0.0), np.maximum(high, 0.0))
+            if ctx is FLOAT
+            else (max(low, 0 * low), max(high, 0 * high))
+        )
         return (x, high, low) if end else (x, low, high)
 
     def half_problem(self) -> HalfProblem | None:
@@ -221,6 +225,8 @@ def side_ends(lower: Iterable[Number], upper: Iterable[Number], side: str) -> tu
 def _between(ctx: Any, x: Any, lower: Exact, upper: Exact) -> Any:
     """Return x, or the end it lies beyond by rounding."""
     low, high = ctx.number(lower), ctx.number(upper)
+    if ctx is FLOAT:
+        return np.minimum(np.maximum(x, low), high)
     return ctx.where(x < low, 0 * x + low, ctx.where(x > high, 0 * x + high, x))
 
 

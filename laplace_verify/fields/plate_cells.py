@@ -100,7 +100,14 @@ class Cells:
 
 def cells_value(table: Cells, x: Array, y: Array) -> tuple[Array, IntArray]:
     """Return u at points of the rectangle, and which points no cell serves: all that lie on the sides."""
-    cell, w = _located(table, x, y)
+    cell, w, kept, left_out = _located(table, x, y)
+    u = np.zeros(len(x))
+    u[kept] = _value(table, cell, w, x[kept], y[kept])
+    return u, left_out
+
+
+def _value(table: Cells, cell: IntArray, w: ComplexArray, x: Array, y: Array) -> Array:
+    """Return u at points in their cells."""
     u = np.ascontiguousarray(_polynomial(table.value, cell, w).real)
     here, which, groups = _near(table, cell)
     if here.size:
@@ -114,22 +121,29 @@ def cells_value(table: Cells, x: Array, y: Array) -> tuple[Array, IntArray]:
             part *= factor.real
             part += factor.imag * _log(t, d)
         part /= -math.pi
-        part += _undefined(t, d, table.places, which, 1)
         for group in groups:
             u[here[group]] += part[group]
-    return u, _unserved(table, cell, x, y)
+    return u
 
 
 def cells_gradient(table: Cells, x: Array, y: Array) -> tuple[Array, IntArray]:
     """Return both derivatives of u, shape (2, n), and which points no cell serves, as `cells_value`."""
-    cell, w = _located(table, x, y)
-    total = _polynomial(table.slope, cell, w)  # u_x - i u_y
+    cell, w, kept, left_out = _located(table, x, y)
+    slopes = np.zeros((2, len(x)))
+    total = _slope(table, cell, w, x[kept], y[kept])
+    slopes[0, kept], slopes[1, kept] = total.real, -total.imag
+    return slopes, left_out
+
+
+def _slope(table: Cells, cell: IntArray, w: ComplexArray, x: Array, y: Array) -> ComplexArray:
+    """Return u_x - i u_y at points in their cells."""
+    total = _polynomial(table.slope, cell, w)
     here, which, groups = _near(table, cell)
     if here.size:
         part = _log_slope(table.places, which, *table.places.seen_from(which, x[here], y[here]))
         for group in groups:
             total[here[group]] += part[group]
-    return np.stack([total.real, -total.imag]), _unserved(table, cell, x, y)
+    return total
 
 
 def _log_slope(places: Places, which: IntArray, t: Array, d: Array) -> ComplexArray:
@@ -144,17 +158,30 @@ def _log_slope(places: Places, which: IntArray, t: Array, d: Array) -> ComplexAr
         found += slope
     cosine, sine = places.directions(which)
     found *= (sine + 1j * cosine) / math.pi  # i e^{-i phi} / pi
-    found += (1 + 1j) * _undefined(t, d, places, which, 2)
     return found
 
 
-def _located(table: Cells, x: Array, y: Array) -> tuple[IntArray, ComplexArray]:
-    """Return the cell of each point and the offset from its centre."""
+def _located(table: Cells, x: Array, y: Array) -> tuple[IntArray, ComplexArray, IntArray | slice, IntArray]:
+    """Return cell and offset from its centre of the points that are kept, these, and those left out.
+
+    Points are left out on the sides, where sums are exact to the last bit, and in cells that are no good; a
+    few of them are evaluated all the same.
+    """
     i, dx = table.x.of(x)
     j, dy = table.y.of(y)
     i *= len(table.y.centre)
     i += j
-    return i, _complex(dx, dy)
+    outside = x <= table.x.low
+    outside |= x >= table.x.high
+    outside |= y <= table.y.low
+    outside |= y >= table.y.high
+    if not table.served.all():
+        outside |= ~table.served[i]
+    left_out = np.flatnonzero(outside)
+    if 4 * len(left_out) < len(x):
+        return i, _complex(dx, dy), slice(None), left_out
+    kept = np.flatnonzero(~outside)
+    return i[kept], _complex(dx[kept], dy[kept]), kept, left_out
 
 
 def _polynomial(coefficients: npt.NDArray[Any], which: IntArray, w: ComplexArray) -> ComplexArray:
@@ -179,26 +206,6 @@ def _near(table: Cells, cell: IntArray) -> tuple[IntArray, IntArray, list[slice]
         start += len(here)
     none = np.empty(0, dtype=np.int64)
     return np.concatenate([none, *points]), np.concatenate([none, *places]), groups
-
-
-def _unserved(table: Cells, cell: IntArray, x: Array, y: Array) -> IntArray:
-    """Return the points on the sides, where sums are exact to the last bit, and in cells that are no good."""
-    left_out = x <= table.x.low
-    left_out |= x >= table.x.high
-    left_out |= y <= table.y.low
-    left_out |= y >= table.y.high
-    if not table.served.all():
-        left_out |= ~table.served[cell]
-    return np.flatnonzero(left_out)
-
-
-def _undefined(t: Array, d: Array, places: Places, which: IntArray, orders: int) -> Array | float:
-    """Return NaN at a place where the data, or with orders = 2 their slope, jump; else 0."""
-    at = d == 0
-    at &= t == 0
-    if not at.any():
-        return 0.0
-    return np.where(at & places.jump[which, :orders].any(axis=1), math.nan, 0.0)
 
 
 def _log(t: Array, d: Array) -> Array:

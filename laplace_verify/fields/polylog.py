@@ -84,6 +84,11 @@ def power_series(ctx: Any, coefficients: Sequence[Any], p: Any, z: Any) -> Any:
 
 def unit(ctx: Any, q: Any, r: Any) -> Any:
     """Return e^{iq} for 0 <= q <= pi and r = pi - q, its imaginary part relatively accurate at both ends."""
+    if ctx is FLOAT:
+        closer = np.minimum(q, r)
+        result = np.empty(closer.shape, dtype=np.complex128)
+        result.real, result.imag = np.copysign(np.cos(closer), r - q), np.sin(closer)
+        return result
     closer = ctx.where(q < r, q, r)
     cosine, sine = ctx.cos(closer), ctx.sin(closer)
     return _complex(ctx, ctx.where(q < r, cosine, -cosine), sine)
