@@ -154,6 +154,9 @@ class Plate(Field):
         on_neighbour = (offset(ctx, along, self.lower[axis]) <= 0) | (
             offset(ctx, along, self.upper[axis]) >= 0
         )
+        if ctx is FLOAT:
+            u[on_neighbour] *= 0.0
+            return u
         return ctx.where(on_neighbour, 0 * u, u)  # exactly zero, but NaN stays NaN at a corner that jumps
 
     def _gradient(self, ctx: Any, x: tuple[Any, ...], side: Any) -> tuple[Any, ...]:  # noqa: ARG002  # no cut

@@ -10,6 +10,8 @@ from dataclasses import dataclass, replace
 from functools import lru_cache
 from typing import Any
 
+import numpy as np
+
 from laplace_verify.contexts import FLOAT
 from laplace_verify.fields.exact import Exact, exact, rational, show
 from laplace_verify.fields.piecewise import Continuation, Piecewise
@@ -109,6 +111,10 @@ def pieces_solution(ctx: Any, data: Continuation, depth: Depth, x: Any, d: Any, 
     if not _is_deep(ctx, data, depth):
         return strip_value(ctx, data, depth, x, d, h)
     u = row_value(ctx, data, depth, x, d, h)
+    if ctx is FLOAT:
+        here = np.flatnonzero(d <= 0)
+        u[here] = data_on_side(ctx, data, x[here]) + 0 * u[here]
+        return u
     return ctx.where(d <= 0, data_on_side(ctx, data, x) + 0 * u, u)  # the data to the last bit; NaN stays
 
 

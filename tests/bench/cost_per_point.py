@@ -5,6 +5,8 @@ Run by hand, from the top folder, on a quiet machine:
     python tests/bench/cost_per_point.py            # all rows
     python tests/bench/cost_per_point.py cylinder   # rows whose name holds one of the words
 
+For a series the first call also makes a table, a tenth of a second or so; it is not counted.
+
 The exponential is timed in the same run, block by block like the fields. Goals are those the project has set
 itself; a row beyond its goal is marked. Ratios wander by a quarter under load.
 """
@@ -56,11 +58,35 @@ def images(gap: str) -> Row:
     return Row(lv.fields.sphere_pair(1, gap), (-1, -1, 3), (1, 1, 5), 2 + 0.2 * count)
 
 
+def slender(upper: tuple[float, float], data: object, **words: str) -> Row:
+    """Return a rectangle from the origin with data on top."""
+    return Row(lv.fields.rectangle_series((0, 0), upper, data, **words), (0, 0), upper, 8, 20)
+
+
+teeth = lv.fields.piecewise(
+    (0, "0.1", "0.3", "0.7", 1, "1.5", "1.7", "1.9", 2), [(k % 3, 1) for k in range(8)]
+)
+sides = lv.fields.rectangle_sides(
+    (0, 0), (1, 1), left="1/2", bottom=lv.fields.ramp("1/2", 1), right=lv.fields.step("2/3", 1, -1),
+    top=lv.fields.tent("2/5"),
+)  # fmt: skip
+wind = lv.fields.rectangle_convection((0, 0), (1, 1), lv.fields.step("1/3"), 3)
 half = lv.fields.arcs((0, "1/2"), (1, 0))
 ROWS = {
     "rectangle, ramp": plate(lv.fields.ramp(0, 1)),
     "rectangle, step": plate(lv.fields.step()),
     "rectangle, parabola": plate(lv.fields.parabola(), "zero"),
+    "rectangle, eight pieces": slender((2, 1), teeth),
+    "rectangle, four sides": Row(sides, (0, 0), (1, 1), 8, 20),
+    "rectangle, convection": Row(wind, (0, 0), (1, 1), 8, 20),
+    "rectangle, exponential": plate(lv.fields.exponential(-2)),
+    "rectangle, formula": plate("exp(cos(3*x))"),
+    "rectangle, one mode": plate(lv.fields.modes([0, 1])),
+    "rectangle, 200 modes": Row(plate(lv.fields.modes([0] * 200 + [1])).field, (0, 0), (1, 1)),
+    "rectangle, 12 to 1": slender((12, 1), lv.fields.ramp(0, 1), neighbours="insulated"),
+    "rectangle, 1000 to 1": slender((1000, 1), lv.fields.step("1/3")),
+    "rectangle, 1 to 12": slender((1, 12), lv.fields.ramp(0, 1), neighbours="insulated"),
+    "rectangle, 1 to 1000": slender((1, 1000), lv.fields.step("1/3")),
     "disc, two arcs": Row(lv.fields.poisson_disc((0, 0), 1, half), (-0.7, -0.7), (0.7, 0.7), 2),
     "ball, two halves": Row(lv.fields.hemispheres((0, 0, 0), 1), (-0.57,) * 3, (0.57,) * 3, 12),
     "two spheres, gap 1": images("1"),
