@@ -61,7 +61,7 @@ class DiscField(Field):
     def _valid(self, points: Array) -> BoolArray:
         """Return which points lie in the closed disc, to rounding."""
         radius = float(self.radius)
-        x, y = (column - float(c) for column, c in zip(points.T, self.centre, strict=True))
+        x, y = (column - float(c) if c else column for column, c in zip(points.T, self.centre, strict=True))
         slack = OUTSIDE * radius + 4 * np.finfo(np.float64).eps * float(np.abs(self._floats()).max())
         inside: BoolArray = x * x + y * y <= (radius + slack) ** 2
         return inside
