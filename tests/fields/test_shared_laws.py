@@ -343,7 +343,7 @@ def test_bad_points_are_refused(row):
         row.field.value(np.zeros((4, d + 1)))
     with pytest.raises(FieldError, match=r"row 1 is"):
         row.field.gradient(np.vstack((points_of(row, 1), np.full((1, d), np.nan))))
-    with pytest.raises(FieldError, match="coordinates"):
+    with pytest.raises(FieldError, match="coordinate"):
         row.field.at((0.5,) * (d + 1), 20)
     for digits in (0, 401, 2.5, True):
         with pytest.raises(FieldError, match="digits must be a whole number from 1 to 200"):
