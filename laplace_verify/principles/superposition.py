@@ -1,17 +1,18 @@
 """Superposition and scaling.
 
 div(K grad u) = 0 and its conditions are linear: if u and v solve the problems with data f and g, then
-2 u - 3 v solves the one with data 2 f - 3 g (Gilbarg & Trudinger, Elliptic Partial Differential Equations
-of Second Order, 2nd edition, section 2.4 on the Dirichlet problem, from memory, unchecked). The factors
-differ in size and sign, so that scaling alone is tried too. It shows limiters, clipping, thresholds and
-tolerances that are absolute where they should be relative.
+2 u - 3 v solves the one with data 2 f - 3 g, and c u the one with data c f (Gilbarg & Trudinger, Elliptic
+Partial Differential Equations of Second Order, 2nd edition, section 2.4 on the Dirichlet problem, from
+memory, unchecked). Either two problems are combined, or one is scaled by c = 1000 or 1/1000. It shows
+limiters, clipping, thresholds and tolerances that are absolute where they should be relative.
 
 Conditions of validity: any bounded shape, conditions, K; both problems have the same shape, conditions and
 K. Pure Neumann answers are linear if their level is.
 
-Tolerance: |w_h - (2 u_h - 3 v_h)|, divided by 2 max|u| + 3 max|v| on the boundary, must be round-off if the
-solver declares "superposition" among its ``discrete_laws`` (a linear scheme on a mesh that does not depend
-on the data), and vanish *in the limit* otherwise, at the declared order (see `limits`).
+Tolerance: |w_h - (2 u_h - 3 v_h)|, divided by 2 max|u| + 3 max|v| on the boundary, or |w_h - c u_h| / (c
+max|u|), must be round-off if the solver declares "superposition" among its ``discrete_laws`` (a linear scheme
+on a mesh that does not depend on the data), and vanish *in the limit* otherwise, at the declared order (see
+`limits`).
 """
 
 from __future__ import annotations
@@ -31,6 +32,7 @@ from laplace_verify.solvers import Adapter
 __all__ = ["SUPERPOSITION"]
 
 FIRST, SECOND = 2, -3
+SCALES = st.sampled_from((1000.0, 0.001))
 DEGREE = 3
 
 
@@ -43,13 +45,31 @@ def _combined(pair: tuple[Posed, Posed]) -> Posed:
     return replace(first, beside={"second": second, "both": both}, note=note)
 
 
+def _scaled(posed: Posed, factor: float) -> Posed:
+    if posed.field is None:
+        raise TypeError("a field is needed to scale")
+    both = replace(posed, field=factor * posed.field)
+    return replace(posed, beside={"both": both}, note=f"; and {factor:g} times its data", drawn=factor)
+
+
 def _problems(solver: Adapter) -> st.SearchStrategy[Posed]:
-    return strategies.pairs(strategies.posed_for(solver, degree=DEGREE), degree=DEGREE).map(_combined)
+    drawn = strategies.posed_for(solver, degree=DEGREE)
+    return strategies.pairs(drawn, degree=DEGREE).map(_combined) | st.builds(_scaled, drawn, SCALES)
 
 
 def _measure(trial: Trial, size: int) -> Measurement:
     points, first, beside = together(trial, size)
-    second, both = beside["second"], beside["both"]
+    both, factor = beside["both"], trial.posed.drawn
+    if factor is not None:
+        return largest(
+            points,
+            np.abs(both - factor * first),
+            factor * trial.posed.size,
+            "at {place} the answer to " + f"{factor:g}" + " times the data is {both}, for the data {first}",
+            f"abs(both.value_at(x) - {factor!r} * answer.value_at(x))[0]",
+            {"both": both, "first": first},
+        )
+    second = beside["second"]
     expected = FIRST * first + SECOND * second
     unit = abs(FIRST) * trial.posed.size + abs(SECOND) * trial.companions["second"].posed.size
     return largest(

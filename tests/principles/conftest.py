@@ -60,6 +60,7 @@ def twins():
             lambda p, n, a: with_values(a, a.values + 0.01 * rng.standard_normal(len(a.values)))
         ),
         "clips": changed(lambda p, n, a: with_values(a, np.maximum(a.values, 0.0))),
+        "cuts off": changed(lambda p, n, a: with_values(a, np.where(np.abs(a.values) < 0.01, 0.0, a.values))),
         "drifts": changed(lambda p, n, a: with_values(a, a.values + 0.1 * a.points[:, 0])),
         "bulges": changed(lambda p, n, a: with_values(a, a.values + 0.1 * a.points[:, 0] ** 2)),
         "screened": five_point_with(replace(SCHEME, stencil=screened), "screened"),

@@ -31,6 +31,7 @@ def wrong(twins):
     ("name", "law", "says"),
     [
         ("clips", "superposition", "2 times the first and -3 times the second"),
+        ("cuts off", "superposition", "times the data is"),
         ("flux sign", "comparison", "for larger data"),
         ("drifts", "symmetry", "at the corresponding point of the problem"),
         ("flux for gradient", "conductivity scaling", "with 4 times the conductivity"),
