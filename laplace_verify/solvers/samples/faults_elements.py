@@ -337,21 +337,21 @@ SEEDS.add(
 )
 SEEDS.add(
     "flux by midpoints",
-    "prescribed flux by the midpoint rule: as accurate as linear elements are",
+    "prescribed flux by the midpoint rule: the order stays, affine fields are lost where data vary",
     replace(LINEAR, neumann=influx_by_midpoints),
     kind="under-integration",
-    effect="harmless",
-    suspects=(),
-    shown_by=(*FLUX, "wall-mixed-conditions", "sleeve-section-mixed"),
+    effect="accuracy",
+    suspects=("polynomial", "Robin"),
+    shown_by=("plate-affine", *FLUX, "wall-mixed-conditions", "sleeve-section-mixed"),
 )
 SEEDS.add(
     "lumped transfer",
-    "Robin's alpha u by the trapezoidal rule: another right quadrature",
+    "Robin's alpha u by the trapezoidal rule: the order stays, affine fields are lost where data vary",
     replace(LINEAR, robin=lumped_transfer),
     kind="under-integration",
-    effect="harmless",
-    suspects=(),
-    shown_by=(*ROBIN, "ball-section-convection"),
+    effect="accuracy",
+    suspects=("polynomial", "Robin"),
+    shown_by=("plate-affine", *ROBIN, "ball-section-convection"),
 )
 SEEDS.add(
     "conductivity transposed",
