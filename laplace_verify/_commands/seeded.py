@@ -57,7 +57,7 @@ def _seeded_faults(options: argparse.Namespace) -> int:
         ):
             outcomes.append(found)
             bar.update()
-    rows = [(*row[:4], row[4][:60], row[5]) for row in exercise_rows(outcomes)]
+    rows = [(*row[:5], row[5][:60], row[6]) for row in exercise_rows(outcomes)]
     say(tabulate(rows, headers=HEADERS, tablefmt="simple", disable_numparse=True))
     say(f"\n{exercise_summary(outcomes)}")
     if options.out is not None:

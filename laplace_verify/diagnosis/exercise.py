@@ -3,14 +3,14 @@
 Every fault is run on the cases that should show it and on contrasting ones, and so is the sound sample it was
 made from. A fault whose effect is "order" is caught by a FAIL of a case or law; one whose effect is
 "accuracy" by a verdict other than PASS or by a remark that the sound sample does not get; a "harmless" one
-must neither FAIL nor stay open. The first suspect is the first that `diagnose` names, or the first new remark
+must neither FAIL nor stay open. Laws are tried in turn until one is broken. The first suspect is the first that `diagnose` names, or the first new remark
 where nothing fails; it is right if it contains one of the words that the fault expects.
 """
 
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Iterator, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from laplace_verify.campaign import Record, verify
 from laplace_verify.cases import catalogue
@@ -18,6 +18,7 @@ from laplace_verify.diagnosis.suspects import diagnose
 from laplace_verify.errors import AdapterError, nearest_names
 from laplace_verify.measure.results import Study
 from laplace_verify.measure.verdict import Verdict
+from laplace_verify.principles import LAWS, Check, check_principle
 from laplace_verify.solvers.adapter import Adapter
 from laplace_verify.solvers.samples import ALL, FAULTS, Fault
 
@@ -55,6 +56,12 @@ class Outcome:
         """Cases and laws that FAIL."""
         found = [name for name, verdict in self.cases.items() if verdict is Verdict.FAIL]
         return found + [f"law: {name}" for name, verdict in self.laws.items() if verdict is Verdict.FAIL]
+
+    @property
+    def law(self) -> str:
+        """The law that is broken, "none", or "" if laws were not checked."""
+        broken = [name for name, verdict in self.laws.items() if verdict is Verdict.FAIL]
+        return broken[0] if broken else "none" if self.laws else ""
 
     @property
     def open(self) -> list[str]:
@@ -119,7 +126,7 @@ def exercise(
     workers
         Child processes at a time.
     principles
-        Whether the laws are checked too.
+        Whether laws are checked too, in turn until one is broken.
     seed
         Of everything random.
     progress
@@ -132,13 +139,25 @@ def exercise(
             progress(name)
         sound = samples[fault.sample]
         ids = [*fault.shown_by, *contrast_for(sound, fault.shown_by)]
-        record = verify(fault.adapter, ids, principles=principles, seed=seed, workers=workers)
+        record = verify(fault.adapter, ids, principles=False, seed=seed, workers=workers)
+        if principles:
+            record = replace(record, checks=_until_broken(fault.adapter, seed))
         known = usual.setdefault(sound.name, {})
         new = [id_ for id_ in ids if id_ not in known]
         if new:
             ran = verify(sound, new, principles=False, seed=seed, workers=workers)
             known.update({study.case_id: study for study in ran.studies})
         yield _outcome(name, fault, record, [known[id_] for id_ in ids])
+
+
+def _until_broken(solver: Adapter, seed: int) -> tuple[Check, ...]:
+    """Return the checks of the laws in turn, up to the first that is broken."""
+    checks: list[Check] = []
+    for law in LAWS:
+        checks.append(check_principle(solver, law, seed=seed))
+        if checks[-1].verdict is Verdict.FAIL:
+            break
+    return tuple(checks)
 
 
 def _outcome(name: str, fault: Fault, record: Record, usual: Sequence[Study]) -> Outcome:

@@ -12,7 +12,7 @@ from laplace_verify.diagnosis.exercise import Outcome
 
 __all__ = ["exercise_csv", "exercise_markdown", "exercise_rows", "exercise_summary"]
 
-HEADERS = ("fault", "effect", "as it should", "caught by", "first suspect", "right")
+HEADERS = ("fault", "effect", "as it should", "caught by", "law broken", "first suspect", "right")
 SHORT = 3
 EFFECTS = ("order", "accuracy", "harmless")
 
@@ -28,7 +28,7 @@ def exercise_rows(outcomes: Sequence[Outcome], limit: int | None = SHORT) -> lis
         by = ", ".join(shown[:limit]) + (f" and {more} more" if more > 0 else "")
         judged = "" if found.fault.effect == "harmless" else _yes(found.suspected)
         suspect = "" if found.fault.effect == "harmless" else found.suspect
-        rows.append((found.name, found.fault.effect, _yes(found.caught), by, suspect, judged))
+        rows.append((found.name, found.fault.effect, _yes(found.caught), by, found.law, suspect, judged))
     return rows
 
 
@@ -46,10 +46,11 @@ def exercise_summary(outcomes: Sequence[Outcome]) -> str:
         shares = [("", caught)]
         shares += [(f" ({effect})", [f for f in caught if f.fault.effect == effect]) for effect in EFFECTS]
         lines += [f"first suspect right{which}: {_share(group)}" for which, group in shares if group]
-    laws = [found for found in outcomes if found.fault.effect == "order" and found.laws]
+    laws = [found for found in outcomes if found.fault.effect != "harmless" and found.laws]
     if laws:
-        count = sum(any(verdict == "FAIL" for verdict in found.laws.values()) for found in laws)
-        lines.append(f"of the order faults, seen by the laws alone: {count} of {len(laws)}")
+        count = sum(found.law != "none" for found in laws)
+        share = f"{count} of {len(laws)} ({100 * count / len(laws):.0f} %)"
+        lines.append(f"of the faults that change answers, caught by the laws alone: {share}")
     return "\n".join([*lines, _sound(outcomes)])
 
 
@@ -82,8 +83,9 @@ def exercise_markdown(outcomes: Sequence[Outcome], command: str) -> str:
     return (
         "# Seeded faults\n\n"
         f"Written by `{command}`. Known mistakes are put into the sample solvers, one at a time; the table "
-        'says which cases and laws catch them and what the diagnosis suspects first. Effect "order": slower '
-        'convergence or a wrong limit, which must FAIL; "accuracy": a larger error or a floor, which must at '
+        "says which cases catch them, which law is broken first when laws are tried in turn, without an exact "
+        'solution, and what the diagnosis suspects first. Effect "order": slower convergence '
+        'or a wrong limit, which must FAIL; "accuracy": a larger error or a floor, which must at '
         'least be remarked; "harmless": another way of doing it right, which must pass. The first suspect '
         "is right if it contains one of the words that were written down with the fault beforehand.\n\n"
         f"{summary}\n\n{table}\n\n## The faults\n\n{faults}\n"

@@ -68,6 +68,14 @@ def test_the_summary_counts_rates_by_effect():
     assert "first suspect right (accuracy)" not in text
 
 
+def test_the_summary_counts_what_laws_alone_catch():
+    outcomes = [outcome("order", laws=(PASS, FAIL)), outcome("accuracy"), outcome("harmless")]
+    assert [found.law for found in outcomes] == ["law-1", "none", "none"]
+    text = exercise_summary(outcomes)
+    assert "of the faults that change answers, caught by the laws alone: 1 of 2 (50 %)" in text
+    assert "laws alone" not in exercise_summary([outcome("order", laws=())])
+
+
 def test_the_summary_counts_false_alarms_once_a_case():
     quiet = [outcome("order", sound=(PASS, PASS)), outcome("harmless", sound=(PASS,))]
     assert "sound solvers: of 2 cases over 1 samples 0 FAIL, 0 stay open" in exercise_summary(quiet)
