@@ -15,17 +15,16 @@ import scipy
 from laplace_verify.campaign.record import (
     CaseInfo,
     Environment,
-    PieceInfo,
     QuantityInfo,
     RegularityInfo,
     SolverIdentity,
 )
 from laplace_verify.problems import Case, Materials
+from laplace_verify.problems.drawing import drawn_pieces
 from laplace_verify.solvers import Adapter
 
 __all__ = ["case_info", "environment", "solver_identity"]
 
-OUTLINE_POINTS = 65  # per piece; a picture needs no more
 LISTED = ("mpmath", "matplotlib", "hypothesis", "scikit-fem", "FiPy", "python-flint")
 CAPABILITIES = ("dims", "shapes", "conditions", "conductivity", "coordinates", "claims")
 
@@ -71,16 +70,6 @@ def environment() -> Environment:
 def case_info(case: Case) -> CaseInfo:
     """Return what a report tells about a case: words, conditions, regularity, a drawing of the outline."""
     problem, regularity = case.problem, case.regularity
-    outline = problem.shape.outline(OUTLINE_POINTS) if case.dim == 2 else {}
-    kinds = {piece.name: piece.kind for piece in problem.pieces}
-    pieces = tuple(
-        PieceInfo(
-            name=piece.name,
-            condition=kinds.get(piece.name, "missing"),
-            outline=tuple(tuple(row) for row in outline[piece.name].tolist()) if outline else (),
-        )
-        for piece in problem.shape.pieces
-    )
     return CaseInfo(
         id=case.id,
         title=case.title,
@@ -90,7 +79,7 @@ def case_info(case: Case) -> CaseInfo:
         reading=case.reading,
         formula=case.exact.formula,
         conductivity=_conductivity_text(problem.conductivity),
-        pieces=pieces,
+        pieces=drawn_pieces(problem),
         ill_posed=problem.ill_posed or "",
         regularity=None
         if problem.ill_posed is not None

@@ -21,6 +21,7 @@ from laplace_verify.errors import RecordError
 from laplace_verify.files import json_content, write_atomically
 from laplace_verify.measure.results import Study
 from laplace_verify.principles.results import Check
+from laplace_verify.problems.drawing import PieceInfo
 
 __all__ = [
     "FORMAT",
@@ -78,18 +79,6 @@ class Settings:
     principles: bool = True
     time_limit: float | None = None  # seconds per study
     budget: float | None = None  # seconds per study for sizes beyond the planned ones
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class PieceInfo:
-    """A boundary piece: name, condition ("missing" if an ill-posed problem has none) and a polyline.
-
-    `outline` has shape (n, d): the two-dimensional pieces as polylines, others empty or a few points.
-    """
-
-    name: str
-    condition: str
-    outline: tuple[tuple[float, ...], ...] = ()
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -3,8 +3,9 @@
 Every fault is run on the cases that should show it and on contrasting ones, and so is the sound sample it was
 made from. A fault whose effect is "order" is caught by a FAIL of a case or law; one whose effect is
 "accuracy" by a verdict other than PASS or by a remark that the sound sample does not get; a "harmless" one
-must neither FAIL nor stay open. Laws are tried in turn until one is broken. The first suspect is the first that `diagnose` names, or the first new remark
-where nothing fails; it is right if it contains one of the words that the fault expects.
+must neither FAIL nor stay open. Laws are tried in turn until one is broken. The first suspect is the first
+that `diagnose` names, or the first new remark where nothing fails; it is right if it contains one of the
+words that the fault expects.
 """
 
 from __future__ import annotations

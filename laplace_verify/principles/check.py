@@ -13,6 +13,7 @@ from laplace_verify.principles.law import Finding, Law, Trial
 from laplace_verify.principles.laws import LAWS
 from laplace_verify.principles.repeatability import REPEATABILITY
 from laplace_verify.principles.results import Check
+from laplace_verify.problems.drawing import drawn_pieces
 from laplace_verify.solvers import Adapter, Refused
 
 __all__ = ["check_principle"]
@@ -147,6 +148,7 @@ def _failed(law: Law, failure: BrokenLawError) -> Check:
         example=example_code(trial, finding.sizes[-1], finding.body),
         points=_rows(finding),
         features=problem_features(trial.problem),
+        pieces=drawn_pieces(trial.problem),
     )
 
 

@@ -6,6 +6,7 @@ from dataclasses import dataclass, field
 
 from laplace_verify.measure.results import Feature
 from laplace_verify.measure.verdict import Verdict
+from laplace_verify.problems.drawing import PieceInfo
 
 __all__ = ["Check"]
 
@@ -33,6 +34,8 @@ class Check:
         Where the law was broken, one row of d coordinates a point.
     features : dict
         What the simplest problem that breaks the law contains, as `Study.features` has it of a case.
+    pieces : tuple of PieceInfo
+        The boundary of that problem, as it is drawn.
     """
 
     law: str
@@ -43,3 +46,4 @@ class Check:
     example: str = ""
     points: tuple[tuple[float, ...], ...] = ()
     features: dict[str, Feature] = field(default_factory=dict)
+    pieces: tuple[PieceInfo, ...] = ()

@@ -19,7 +19,8 @@ from laplace_verify.report.content import (
     Table,
 )
 from laplace_verify.report.figures import convergence_figure, is_exponential, order_figure, shown_norms
-from laplace_verify.report.maps import case_figure, error_figure
+from laplace_verify.report.maps import error_figure
+from laplace_verify.report.shape_figures import case_figure
 from laplace_verify.report.text import (
     accepted,
     expected_order,

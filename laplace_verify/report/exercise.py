@@ -83,8 +83,8 @@ def exercise_markdown(outcomes: Sequence[Outcome], command: str) -> str:
     return (
         "# Seeded faults\n\n"
         f"Written by `{command}`. Known mistakes are put into the sample solvers, one at a time; the table "
-        "says which cases catch them, which law is broken first when laws are tried in turn, without an exact "
-        'solution, and what the diagnosis suspects first. Effect "order": slower convergence '
+        "says which cases catch them, which law is broken first when laws are tried in turn, without an "
+        'exact solution, and what the diagnosis suspects first. Effect "order": slower convergence '
         'or a wrong limit, which must FAIL; "accuracy": a larger error or a floor, which must at '
         'least be remarked; "harmless": another way of doing it right, which must pass. The first suspect '
         "is right if it contains one of the words that were written down with the fault beforehand.\n\n"

@@ -1,4 +1,4 @@
-"""Pictures in space: the error of the finest level, and a case with its conditions.
+"""Pictures in space: the error of the finest level.
 
 In two dimensions every pixel inside the outline takes the error of the nearest measured point, without
 interpolation. In one dimension the error is drawn against x; in three, each of three views shows the
@@ -17,6 +17,7 @@ from scipy.spatial import cKDTree
 from laplace_verify.arrays import Array, BoolArray
 from laplace_verify.campaign.record import CaseInfo, PieceInfo
 from laplace_verify.measure.results import ErrorMap
+from laplace_verify.report.shape_figures import few_ticks
 from laplace_verify.report.style import (
     HEIGHT,
     INK,
@@ -25,7 +26,6 @@ from laplace_verify.report.style import (
     WIDTH,
     decade,
     drawing,
-    legend_above,
     log_axis,
     new_figure,
     round_numbers,
@@ -35,18 +35,10 @@ if TYPE_CHECKING:
     from matplotlib.axes import Axes
     from matplotlib.figure import Figure
 
-__all__ = ["case_figure", "error_figure", "inside_outline"]
+__all__ = ["error_figure", "inside_outline"]
 
 _PIXELS = 150
 _DECADES = 4.0  # shades span at most this many powers of ten below the largest error
-_NAME_LETTER = 0.025  # width of a letter of a name in parts of a drawn shape
-_LINES = {
-    "dirichlet": ("-", SERIES[0]),
-    "neumann": ((0, (5, 2)), SERIES[1]),
-    "robin": ((0, (4, 1.5, 1, 1.5)), SERIES[3]),
-    "periodic": ((0, (1, 1.5)), SERIES[2]),
-    "axis": ((0, (8, 2, 1, 2)), SERIES[6]),
-}
 
 
 def error_figure(field: ErrorMap, info: CaseInfo | None) -> Figure:
@@ -125,7 +117,7 @@ def _plane_map(figure: Figure, points: Array, errors: Array, pieces: Sequence[Pi
     axes.set_ylim(lower[1] - margin, upper[1] + margin)
     axes.set_xlabel("x")
     axes.set_ylabel("y")
-    _few_ticks(axes, upper - lower)
+    few_ticks(axes, upper - lower)
     _scale(figure.add_axes((0.79, 0.2, 0.03, 0.66)), low, high)
 
 
@@ -201,77 +193,3 @@ def _scale(axes: Axes, low: float, high: float, *, across: bool = False) -> None
     other.set_major_locator(FixedLocator([]))
     for spine in axes.spines.values():
         spine.set_visible(False)
-
-
-def case_figure(info: CaseInfo) -> Figure:
-    """Return the shape of a case: its pieces by name, lines by condition, singular points marked."""
-    with drawing():
-        figure = new_figure(WIDTH, HEIGHT)
-        axes = figure.add_subplot(projection="3d" if info.dim == 3 else None)
-        rows = [row for piece in info.pieces for row in piece.outline]
-        sides = np.ptp(np.asarray(rows, dtype=np.float64), axis=0) if rows else np.ones(info.dim)
-        extent = float(sides.max())
-        seen: set[str] = set()
-        for piece in info.pieces:
-            label = "" if piece.condition in seen else piece.condition
-            _draw_piece(axes, piece, info.dim, label=label, extent=extent)
-            seen.add(piece.condition)
-        if info.regularity is not None and info.dim < 3:
-            _draw_points(axes, info)
-        axes.set_xlabel("x")
-        if info.dim == 1:
-            axes.set_yticks([])
-            axes.set_ylim(-1, 1)
-            axes.spines["left"].set_visible(False)
-        else:
-            axes.set_ylabel("y")
-            axes.set_aspect("equal")
-            axes.margins(0.12)
-            if info.dim == 2:
-                _few_ticks(axes, sides)
-        legend_above(axes)
-        return figure
-
-
-def _few_ticks(axes: Axes, extent: Array) -> None:
-    """Take as many ticks as a shape of this width and height has room for."""
-    width, height = extent.tolist()
-    axes.locator_params(axis="x", nbins=2 if width < 0.3 * height else 5)
-    axes.locator_params(axis="y", nbins=2 if height < 0.3 * width else 5)
-
-
-def _draw_piece(axes: Axes, piece: PieceInfo, dim: int, *, label: str, extent: float) -> None:
-    """Draw one piece of a shape of this extent, and its name where the piece is long enough for it."""
-    line = np.asarray(piece.outline, dtype=np.float64)
-    if not line.size:
-        return
-    style, colour = _LINES.get(piece.condition, ("-", INK))
-    if dim == 1:
-        axes.plot(line[:, 0], np.zeros(len(line)), "s", color=colour, label=label or None)
-        axes.annotate(piece.name, (line[0, 0], 0.0), xytext=(0, 9), textcoords="offset points", ha="center")
-    elif dim == 2:
-        axes.plot(line[:, 0], line[:, 1], color=colour, linestyle=style, linewidth=2.0, label=label or None)
-        length = float(np.linalg.norm(np.diff(line, axis=0), axis=1).sum())
-        if len(piece.name) * _NAME_LETTER * extent > length:
-            return
-        middle = line[len(line) // 2] if len(line) > 2 else line.mean(axis=0)
-        axes.annotate(
-            piece.name, (middle[0], middle[1]), ha="center", va="center", fontsize=8,
-            bbox={"boxstyle": "round,pad=0.15", "facecolor": "white", "edgecolor": "none", "alpha": 0.85},
-        )  # fmt: skip
-    else:
-        axes.plot(*line.T, ".", color=colour, markersize=2.0, label=label or None)
-
-
-def _draw_points(axes: Axes, info: CaseInfo) -> None:
-    """Mark singular points and jumps of the data."""
-    if info.regularity is None:
-        return
-    for points, marker, label in (
-        (info.regularity.singular_points, "*", "singular"),
-        (info.regularity.jumps, "x", "jump of data"),
-    ):
-        if points:
-            place = np.asarray(points, dtype=np.float64)
-            y = place[:, 1] if info.dim == 2 else np.zeros(len(place))
-            axes.plot(place[:, 0], y, marker, color=SERIES[3], markersize=8, linestyle="none", label=label)

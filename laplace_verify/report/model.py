@@ -12,6 +12,7 @@ from laplace_verify.diagnosis import diagnose
 from laplace_verify.diagnosis.suspects import Suspect
 from laplace_verify.measure.results import Study
 from laplace_verify.measure.verdict import Verdict
+from laplace_verify.principles import Check
 from laplace_verify.report.case_sections import case_anchor, case_section
 from laplace_verify.report.content import (
     Block,
@@ -28,6 +29,7 @@ from laplace_verify.report.content import (
 )
 from laplace_verify.report.coverage import coverage_section
 from laplace_verify.report.criteria import criteria_section, results_section
+from laplace_verify.report.shape_figures import law_figure
 from laplace_verify.report.summary_figures import summary_figure
 from laplace_verify.report.text import (
     CAUTIONS,
@@ -235,8 +237,26 @@ def _laws_section(record: Record) -> Section:
         if check.verdict in (Verdict.FAIL, Verdict.ERROR) and (check.example or check.points):
             where = f" Broken at {joined(map(vector, check.points[:3]))}." if check.points else ""
             blocks.append(Paragraph(label=f"{check.law}.", text=f"{check.reason}.{where}".replace("..", ".")))
+            blocks += [_broken_law_picture(check)] if _is_drawn(check) else []
             blocks += [Code(text=check.example)] if check.example else []
     return Section(anchor="laws", title="Laws of harmonic functions", blocks=tuple(blocks))
+
+
+def _is_drawn(check: Check) -> bool:
+    """Return whether a broken law has a place in the plane to show."""
+    return bool(check.points) and any(len(piece.outline) > 1 for piece in check.pieces)
+
+
+def _broken_law_picture(check: Check) -> Picture:
+    """Return the simplest problem that breaks a law, and where it does."""
+    where = joined(map(vector, check.points[:3]))
+    return Picture(
+        key=f"law-{check.law.replace(' ', '-')}",
+        title=check.law.capitalize(),
+        alt=f"The simplest problem found that breaks the law, pieces by name; broken at {where}.",
+        caption="The simplest problem found that breaks the law, and where.",
+        draw=lambda: law_figure(check),
+    )
 
 
 def _diagnosis_section(record: Record, suspects: list[Suspect]) -> Section:

@@ -14,7 +14,7 @@ from laplace_verify.files import write_atomically
 from laplace_verify.measure.results import Study
 from laplace_verify.problems import Case
 from laplace_verify.report.figures import convergence_figure
-from laplace_verify.report.maps import case_figure
+from laplace_verify.report.shape_figures import case_figure
 from laplace_verify.report.style import drawing
 from laplace_verify.report.summary_figures import summary_figure
 

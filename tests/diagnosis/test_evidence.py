@@ -13,7 +13,7 @@ from laplace_verify.errors import RecordError
 from laplace_verify.measure.floors import floor_kind
 from laplace_verify.measure.study import study as run_study
 from laplace_verify.measure.verdict import Verdict
-from laplace_verify.principles import Check, check_principle
+from laplace_verify.principles import LAWS, Check, check_principle
 from laplace_verify.solvers.samples import FAULTS, five_point
 
 PASS, FAIL, OPEN = Verdict.PASS, Verdict.FAIL, Verdict.INCONCLUSIVE
@@ -214,6 +214,12 @@ def test_a_law_says_what_its_simplest_problem_needs(study, record):
     assert "the simplest problem that shows it has Neumann condition, conductivity other than 1" in text
     kept = check_principle(five_point, "affine fields reproduced")
     assert suspects(record, study("p", PASS, {}), checks=[kept]) == []
+
+
+@pytest.mark.parametrize("law", LAWS)
+def test_every_law_says_what_breaking_it_is_typical_of(record, law):
+    (suspect,) = diagnose(record([], checks=[Check(law=law, verdict=FAIL, reason="broken")]))
+    assert "typical of" in suspect.text
 
 
 def test_a_law_without_a_case_has_none(record):

@@ -281,6 +281,7 @@ def make_record():
                 reason="u exceeds its boundary values",
                 example="lv.problem(lv.Rectangle((0, 0), (1, 1)), {})",
                 points=((0.5, 0.25), (0.5, 0.75)),
+                pieces=(PieceInfo(name="left", condition="dirichlet", outline=((0.0, 1.0), (0.0, 0.0))),),
             ),
             Check(law="mean value", verdict=Verdict.NOT_APPLICABLE, reason="no callable answer"),
         ),

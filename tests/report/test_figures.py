@@ -13,11 +13,14 @@ from laplace_verify.errors import RecordError
 from laplace_verify.fields import field
 from laplace_verify.geometry import Box, Interval, Rectangle
 from laplace_verify.measure.results import ErrorMap
+from laplace_verify.principles import check_principle
 from laplace_verify.problems import case
 from laplace_verify.report import plot
 from laplace_verify.report.figures import convergence_figure, order_figure
 from laplace_verify.report.maps import error_figure, inside_outline
+from laplace_verify.report.shape_figures import law_figure
 from laplace_verify.report.svg import figure_to_svg
+from laplace_verify.solvers.samples import FAULTS
 
 
 def texts(figure):
@@ -127,6 +130,14 @@ def test_a_case_is_plotted_with_its_conditions(shape, exact):
     assert "neumann" in found
     if shape.dim < 3:
         assert "right" in found
+
+
+def test_a_broken_law_shows_its_problem_and_where():
+    solver = FAULTS["flux sign"].adapter
+    figure = law_figure(check_principle(solver, "affine fields reproduced"))
+    assert {"left", "right", "neumann", "broken here"} <= set(texts(figure))
+    (marks,) = [line for line in figure.axes[0].lines if line.get_label() == "broken here"]
+    np.testing.assert_array_equal(marks.get_xydata(), [[1.0, 0.5]])  # where the flux enters
 
 
 def test_what_cannot_be_plotted_is_refused():

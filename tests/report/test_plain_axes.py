@@ -4,8 +4,9 @@ import numpy as np
 import pytest
 
 from laplace_verify.report.figures import convergence_figure, order_figure
-from laplace_verify.report.maps import case_figure, error_figure
+from laplace_verify.report.maps import error_figure
 from laplace_verify.report.plain_axes import plain_axes
+from laplace_verify.report.shape_figures import case_figure
 from laplace_verify.report.style import drawing, new_figure
 from laplace_verify.report.summary_figures import summary_figure
 

@@ -297,3 +297,11 @@ def test_an_empty_record_still_makes_a_report(record, tmp_path):
     plain = json.loads(record_to_json(record)) | {"studies": [], "checks": [], "cases": []}
     paths = write_report(record_from_json(json.dumps(plain).encode()), tmp_path)
     assert "Nothing was run." in paths["html"].read_text(encoding="utf-8")
+
+
+def test_a_broken_law_has_its_picture_in_every_form_that_shows_pictures(written):
+    folder, _ = written
+    assert "law-maximum-principle" in (folder / "report.html").read_text(encoding="utf-8")
+    assert "The simplest problem found that breaks the law" in (folder / "report.tex").read_text(
+        encoding="utf-8"
+    )
