@@ -20,6 +20,7 @@ HELPERS = {
     "deep_points": "laplace_verify.principles.reading",
     "inside_points": "laplace_verify.principles.reading",
     "slope_of_energy": "laplace_verify.principles.dirichlet_principle",
+    "ball": "laplace_verify.principles.spheres",
     "sphere": "laplace_verify.principles.spheres",
 }
 

@@ -1,9 +1,9 @@
 """Mean value.
 
-If u is harmonic in a neighbourhood of a closed ball, its value at the centre is the mean over the sphere,
-in the plane over the circle, on a line over the two ends:
+If u is harmonic in a neighbourhood of a closed ball, its value at the centre is the mean over the sphere and
+over the ball, in the plane over circle and disc, on a line over the two ends and the segment:
 
-    u(c) = mean of u over |x - c| = r.
+    u(c) = mean of u over |x - c| = r = mean of u over |x - c| < r.
 
 (Gauss 1840; Gilbarg & Trudinger, Elliptic Partial Differential Equations of Second Order, 2nd edition,
 theorem 2.1; from memory, unchecked.)
@@ -12,11 +12,11 @@ Conditions of validity: K is a number; any boundary conditions; values can be ha
 function or from cells. A bare cloud of nodes says nothing on a circle: not applicable.
 
 Tolerance: the mean is taken by the trapezoidal rule with 64 points on circles and by 8 Gauss points times
-16 on spheres, which is exact for harmonic polynomials of degree 15 and less. The fields drawn are smooth,
-so |mean - u_h(c)|, the largest over the eight deepest of 64 seeded points with r = 0.6 of the distance to
-the boundary, must vanish *in the limit* (see `limits`) at the solver's declared order in the maximum
-norm; at order one if the answer is constant on each cell, whose value between centres is only as good as
-that.
+16 on spheres, which is exact for harmonic polynomials of degree 15 and less, and over the radius by 3 Gauss
+points. The fields drawn are smooth, so |mean - u_h(c)|, the largest over the eight deepest of 64 seeded
+points with r = 0.6 of the distance to the boundary, must vanish *in the limit* (see `limits`) at the solver's
+declared order in the maximum norm; at order one if the answer is constant on each cell, whose value between
+centres is only as good as that.
 """
 
 from __future__ import annotations
@@ -29,12 +29,13 @@ from laplace_verify.principles.law import Finding, Law, Trial
 from laplace_verify.principles.limits import Measurement, between_nodes
 from laplace_verify.principles.posed import Posed
 from laplace_verify.principles.reading import values_at
-from laplace_verify.principles.spheres import spheres_inside
+from laplace_verify.principles.spheres import ball, sphere, spheres_inside
 from laplace_verify.solvers import Adapter
 
 __all__ = ["MEAN_VALUE"]
 
 DEGREE = 4
+MEANS = {"sphere": sphere, "ball": ball}
 
 
 def _problems(solver: Adapter) -> st.SearchStrategy[Posed]:
@@ -42,22 +43,26 @@ def _problems(solver: Adapter) -> st.SearchStrategy[Posed]:
 
 
 def _measure(trial: Trial, size: int) -> Measurement:
-    centres, radii, points, weights = spheres_inside(trial)
-    values = values_at(trial, size, np.concatenate([centres, points]))
-    middle, around = values[: len(centres)], values[len(centres) :].reshape(weights.shape)
-    means = np.sum(weights * around, axis=1)
-    gap = np.abs(means - middle)
+    centres, radii, _, _ = spheres_inside(trial)
+    places = list(zip(centres, radii.tolist(), strict=True))
+    rules = [(name, *mean(*place)) for name, mean in MEANS.items() for place in places]
+    values = values_at(trial, size, np.concatenate([centres, *(points for _, points, _ in rules)]))
+    ends = np.cumsum([len(centres), *(len(points) for _, points, _ in rules)])
+    parts = np.split(values, ends[:-1])
+    means = [float(weights @ part) for (_, _, weights), part in zip(rules, parts[1:], strict=True)]
+    gap = np.abs(np.array(means) - np.tile(values[: len(centres)], len(MEANS)))
     worst, unit = int(np.argmax(gap)), trial.posed.size
-    centre, radius = centres[worst].tolist(), float(radii[worst])
+    name, which = rules[worst][0], worst % len(centres)
+    centre, radius = centres[which].tolist(), float(radii[which])
     place = tuple(round(c, 6) for c in centre)
     return Measurement(
         violation=float(np.max(gap)) / unit,
-        points=centres[worst : worst + 1],
-        words=f"the value at {place} is {middle[worst]:.6g}, the mean at the distance {radius:.4g} from it "
-        f"{means[worst]:.6g}",
+        points=centres[which : which + 1],
+        words=f"the value at {place} is {values[which]:.6g}, the mean over the {name} of radius {radius:.4g} "
+        f"about it {means[worst]:.6g}",
         body=(
             f"centre, radius = np.array({centre}), {radius!r}",
-            "points, weights = sphere(centre, radius)",
+            f"points, weights = {name}(centre, radius)",
             f"abs(weights @ answer.value_at(points) - answer.value_at([centre])[0]) / {unit!r}",
         ),
     )
@@ -69,7 +74,7 @@ def _judge(trial: Trial) -> Finding:
 
 MEAN_VALUE = Law(
     name="mean value",
-    statement="the value at a point is the mean over every circle or sphere about it that fits inside",
+    statement="the value at a point is the mean over every sphere and ball (circle, disc) about it inside",
     inapplicable=strategies.beyond_numbers,
     problems=_problems,
     judge=_judge,

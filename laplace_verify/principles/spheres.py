@@ -1,20 +1,23 @@
-"""Spheres (circles, pairs of ends) that fit inside a shape, with points and weights on them.
+"""Spheres (circles, pairs of ends) that fit inside a shape and the balls in them, with points and weights.
 
 The mean is taken by the trapezoidal rule with 64 points on circles and by 8 Gauss points times 16 on
-spheres, which is exact for harmonic polynomials of degree 15 and less.
+spheres, which is exact for harmonic polynomials of degree 15 and less; over the radius of a ball by 3 Gauss
+points for the weight r^(d-1).
 """
 
 from __future__ import annotations
 
 import numpy as np
+from scipy.special import roots_jacobi
 
 from laplace_verify.arrays import Array
 from laplace_verify.principles.law import Trial
 
-__all__ = ["sphere", "spheres_inside"]
+__all__ = ["ball", "sphere", "spheres_inside"]
 
 ON_CIRCLE = 64
 GAUSS, AROUND = 8, 16
+SHELLS = 3
 DRAWN_CENTRES, CENTRES = 64, 8
 SHARE = 0.6  # of the distance to the boundary
 
@@ -40,6 +43,20 @@ def sphere(centre: Array, radius: float) -> tuple[Array, Array]:
     across = np.sqrt(1.0 - level**2)
     unit = np.stack([across * np.cos(turn), across * np.sin(turn), level], axis=1)
     return centre + radius * unit, np.repeat(weights / (2.0 * AROUND), AROUND)
+
+
+def ball(centre: Array, radius: float) -> tuple[Array, Array]:
+    """Return points (m, d) in the ball (disc, segment) and weights (m,) with sum one.
+
+    >>> import numpy as np
+    >>> points, weights = ball(np.array([1.0, 0.0]), 2.0)
+    >>> round(float(weights @ points[:, 0] ** 2), 12)  # 1 + 2^2 / 4
+    2.0
+    """
+    nodes, shares = roots_jacobi(SHELLS, 0.0, len(centre) - 1.0)
+    shells = [sphere(centre, radius * (1.0 + node) / 2.0) for node in nodes.tolist()]
+    weights = [share * part for share, (_, part) in zip(shares / shares.sum(), shells, strict=True)]
+    return np.concatenate([points for points, _ in shells]), np.concatenate(weights)
 
 
 def spheres_inside(trial: Trial) -> tuple[Array, Array, Array, Array]:
