@@ -425,3 +425,9 @@ def test_a_small_constant_violation_asks_for_the_iteration_tolerance():
     check = check_principle(solver, "constants reproduced")
     assert check.verdict == Verdict.FAIL
     assert "declare it as error_floor" in check.reason
+
+
+def test_another_quadrature_under_a_curved_robin_piece_breaks_no_law_of_constants():
+    solver = FAULTS["more quadrature points"].adapter  # misses constants by 4e-9 there, as any sound twin may
+    check = check_principle(solver, "constants reproduced")
+    assert check.verdict is Verdict.PASS, check.reason
