@@ -38,6 +38,7 @@ _SHOWN = 0.1  # once chance is allowed for
 _GAIN_OF_A_PAIR = 0.1
 _LIMIT = 5
 _SURPRISING = 0.02  # probability of a split by chance from which it counts in full
+_SMOOTH = "tag smooth"  # where most is expected, any mistake shows: no cause
 _SEVERAL = 3  # failing cases from which it is said that nothing sets them apart
 _EVERYWHERE = 0.4
 _LABEL = 0.7  # weight of tags
@@ -56,7 +57,7 @@ def feature_names(study: Study) -> frozenset[str]:
     """
     names = set()
     for name, value in study.features.items():
-        if value is True:
+        if value is True and name != _SMOOTH:
             names.add(name)
         elif isinstance(value, str):
             names.add(f"{name}: {value}")
