@@ -87,7 +87,7 @@ def exercise_markdown(outcomes: Sequence[Outcome], command: str) -> str:
         'exact solution, and what the diagnosis suspects first. Effect "order": slower convergence '
         'or a wrong limit, which must FAIL; "accuracy": a larger error or a floor, which must at '
         'least be remarked; "harmless": another way of doing it right, which must pass. The first suspect '
-        "is right if it contains one of the words that were written down with the fault beforehand.\n\n"
+        "is right if it contains one of the words that are written down with the fault.\n\n"
         f"{summary}\n\n{table}\n\n## The faults\n\n{faults}\n"
     )
 
