@@ -128,7 +128,7 @@ def test_value_prints_digits_radius_and_basis(capsys):
         (["value", "plate-sadle", "1", "1"], "did you mean 'plate-saddle'"),
         (["value", "plate-saddle", "1"], "dimension|coordinates"),
         (["value", "plate-saddle", "a", "b"], "number|decimal|fraction"),
-        (["value", "plate-saddle", "1", "1", "--digits", "0"], "digits must be"),
+        (["value", "plate-saddle", "1", "1/2", "--digits", "0"], "digits must be"),
         (["show", "disk-fourier"], "did you mean 'disc-fourier'"),
         (["run", "no_such_module_here:solve"], "cannot import no_such_module_here"),
         (["run", "no_such_file.py:solve"], "there is no file no_such_file.py"),

@@ -240,9 +240,10 @@ class _Task:
         sign, depth = FRAMES[frame.problem.side][0], frame.depths()[0]
         for k, (cell, i, j) in enumerate(cells):
             s, d = frame.along.low[i] + sign * v.real, depth[j] + v.imag  # as they were sampled
+            beyond = np.maximum(offset(FLOAT, s, frame.problem.length), 0.0)  # taken to be at the end
             for number in near[cell]:
                 place, jump = frame.problem.places[number]
-                w = sign * offset(FLOAT, s, place) + 1j * d
+                w = sign * (offset(FLOAT, s, place) - beyond) + 1j * d
                 term, slope = _log_term(jump, w)
                 gradient[:, k] -= slope
                 values[:, k] -= term

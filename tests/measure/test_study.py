@@ -225,7 +225,7 @@ def test_levels_coarser_than_the_smallest_length_are_shown_and_finer_ones_added(
     assert found.verdict is lv.Verdict.PASS, found
     assert [level.judged for level in found.levels][:2] == [False, False]
     assert "too coarse" in found.levels[0].note
-    assert any("added: 20, 40, 80, 160" in remark for remark in found.remarks)
+    assert any("added: 24, 48, 96, 192" in remark for remark in found.remarks)
     held = study(perturbed(case, power(2)), case, sizes=(8, 16, 32, 64))
     assert held.verdict is lv.Verdict.INCONCLUSIVE
     assert [level.size for level in held.levels] == [8, 16, 32, 64]
