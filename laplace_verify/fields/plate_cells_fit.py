@@ -93,6 +93,14 @@ class _Frame:
         """Whether the data are at the upper end of the axis across."""
         return self.problem.side in ("top", "right")
 
+    def within(self, s: Array) -> Array:
+        """Return s, but where rounding puts it beyond the end the last float before it."""
+        end = float(self.problem.length)
+        if Fraction(end) > self.problem.length:
+            end = math.nextafter(end, 0.0)
+        inside: Array = np.minimum(s, end)
+        return inside
+
     def depths(self) -> tuple[Array, Array, Array, Array]:
         """Return d, h and the reach towards and away from the side, of the intervals across."""
         a = self.across
@@ -189,7 +197,7 @@ def _sampled(
 
     parts = [
         np.stack([
-            frame.along.low[i] + sign * v.real[:, None], depth[j] + v.imag[:, None],
+            frame.within(frame.along.low[i] + sign * v.real[:, None]), depth[j] + v.imag[:, None],
             height[j] - v.imag[:, None],
         ])
         for _, v, i, j in samples
@@ -239,11 +247,10 @@ class _Task:
         steepness = float(np.abs(gradient).max()) / (float(np.abs(values).max()) or 1.0)
         sign, depth = FRAMES[frame.problem.side][0], frame.depths()[0]
         for k, (cell, i, j) in enumerate(cells):
-            s, d = frame.along.low[i] + sign * v.real, depth[j] + v.imag  # as they were sampled
-            beyond = np.maximum(offset(FLOAT, s, frame.problem.length), 0.0)  # taken to be at the end
+            s, d = frame.within(frame.along.low[i] + sign * v.real), depth[j] + v.imag  # as they were sampled
             for number in near[cell]:
                 place, jump = frame.problem.places[number]
-                w = sign * (offset(FLOAT, s, place) - beyond) + 1j * d
+                w = sign * offset(FLOAT, s, place) + 1j * d
                 term, slope = _log_term(jump, w)
                 gradient[:, k] -= slope
                 values[:, k] -= term
