@@ -18,8 +18,8 @@ __all__ = [
 
 PLANE, SPACE = (8, 16, 32, 64), (6, 9, 13, 19, 28)
 SPACE_RATIO = 1.45
-MULTIPLE = 8
-SHORTEST_STEP = 1.4
+MULTIPLE = 8  # of this is the start of a ladder, as the default sizes are
+SHORTEST_STEP = 1.4  # of the last size of a ladder over the one before: less tells little
 MOST_ROUNDS = 3
 MOST_PAID_ROUNDS = 4
 # a bound on work that does not depend on the machine, so that results do not either

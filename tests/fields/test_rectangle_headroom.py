@@ -173,3 +173,12 @@ def test_a_point_costs_a_bounded_number_of_exponentials(name):
     one = seconds(np.exp, numbers)
     assert seconds(u.value, points) <= 100 * one
     assert seconds(u.gradient, points) <= 200 * one
+
+
+@pytest.mark.parametrize("width", ["8/5", "13/10", "3/2"])
+def test_the_corner_at_an_end_between_two_floats_is_as_good_as_the_other(width):
+    """8/5 lies below its nearest float: samples there once cost the cell at that end two digits."""
+    u = fields.rectangle_series((0, 0), (width, "9/10"), 1, neighbours="zero")
+    right = float(Fraction(width))
+    for x, y in ((right - 0.008, 0.8643878469050799), (right - 0.02, 0.87), (0.008, 0.8643878469050799)):
+        assert abs(u.value([[x, y]])[0] - float(u.at((x, y), 25))) <= 8 * EPS
